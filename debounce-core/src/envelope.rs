@@ -1,0 +1,237 @@
+//! The envelope a claim is made for, and the answer to it: [`Envelope`], [`Bounds`], [`Verdict`].
+
+use crate::machine::{Change, Position};
+
+/// One value for each change of the contact.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug, Default)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+pub struct PerChange<T> {
+    /// For the change from open to closed.
+    pub make: T,
+    /// For the change from closed to open.
+    pub break_: T,
+}
+
+impl<T: Copy> PerChange<T> {
+    /// The value for `change`.
+    #[must_use]
+    pub const fn at(&self, change: Change) -> T {
+        match change {
+            Change::Make => self.make,
+            Change::Break => self.break_,
+        }
+    }
+}
+
+/// One value for each position of the contact.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug, Default)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+pub struct PerPosition<T> {
+    /// For the open contact.
+    pub open: T,
+    /// For the closed contact.
+    pub closed: T,
+}
+
+impl<T: Copy> PerPosition<T> {
+    /// The value for `position`.
+    #[must_use]
+    pub const fn at(&self, position: Position) -> T {
+        match position {
+            Position::Open => self.open,
+            Position::Closed => self.closed,
+        }
+    }
+}
+
+/// The set of waveforms a claim is made for. Every number is in ticks.
+///
+/// * `dwell`: the contact holds a position for at least this many ticks, at least 1; it changes just before a sample.
+/// * `bounce`: that sample and the ones after it, any number from 0 to this, may read either way.
+/// * `glitch`: a disturbance is a window of at most this many samples, each of which may read either way;
+///   the position is the one in which the window began, and the window may straddle a change.
+/// * `quiet`: a disturbance may begin only when at least this many samples have passed since the last one ended
+///   (bounce samples count).
+/// * `calm`: outside bounce, a disturbance may begin only when at least this many settled samples have passed
+///   since the bounce ended; 0 means that disturbances know nothing of the contact.
+/// * `lost`: ticks that may be lost in a row; no stretch of the shortest dwell, quiet or calm holds more than one
+///   such run. See [`Envelope::delivered`].
+///
+/// Every other sample is the contact's position.
+///
+/// # Examples
+/// ```
+/// use debounce_core::{Envelope, PerChange};
+/// const BUTTON: Envelope = Envelope::clean(20, 20).bounce(5, 3).glitch(1, 1).quiet(10);
+/// assert_eq!(BUTTON.limit(), Some(PerChange { make: 8, break_: 6 }));
+/// ```
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+#[non_exhaustive]
+pub struct Envelope {
+    /// Shortest time in each position.
+    pub dwell: PerPosition<u32>,
+    /// Longest bounce after each change.
+    pub bounce: PerChange<u32>,
+    /// Widest disturbance begun in each position.
+    pub glitch: PerPosition<u32>,
+    /// Fewest samples between two disturbances.
+    pub quiet: u32,
+    /// Fewest settled samples between the end of a bounce and a disturbance.
+    pub calm: u32,
+    /// Ticks that may be lost in a row.
+    pub lost: u32,
+}
+
+impl Envelope {
+    /// A contact that holds each position for at least the given ticks, without bounce or disturbance.
+    #[must_use]
+    pub const fn clean(dwell_open: u32, dwell_closed: u32) -> Self {
+        Self {
+            dwell: PerPosition { open: dwell_open, closed: dwell_closed },
+            bounce: PerChange { make: 0, break_: 0 },
+            glitch: PerPosition { open: 0, closed: 0 },
+            quiet: 1,
+            calm: 0,
+            lost: 0,
+        }
+    }
+
+    /// Sets the longest bounce after a make and after a break.
+    #[must_use]
+    pub const fn bounce(mut self, make: u32, break_: u32) -> Self {
+        self.bounce = PerChange { make, break_ };
+        self
+    }
+
+    /// Sets the widest disturbance begun while open and while closed.
+    #[must_use]
+    pub const fn glitch(mut self, open: u32, closed: u32) -> Self {
+        self.glitch = PerPosition { open, closed };
+        self
+    }
+
+    /// Sets the fewest samples between two disturbances.
+    #[must_use]
+    pub const fn quiet(mut self, quiet: u32) -> Self {
+        self.quiet = quiet;
+        self
+    }
+
+    /// Sets the fewest settled samples between a bounce and a disturbance.
+    #[must_use]
+    pub const fn calm(mut self, calm: u32) -> Self {
+        self.calm = calm;
+        self
+    }
+
+    /// Sets the number of ticks that may be lost in a row.
+    #[must_use]
+    pub const fn lost(mut self, lost: u32) -> Self {
+        self.lost = lost;
+        self
+    }
+
+    /// The same envelope counted in the samples that are delivered, with no more losses in it.
+    ///
+    /// A run of lost ticks can only take samples away, so bounce and disturbances keep their width, while
+    /// dwell, quiet and calm are seen by `lost` samples fewer. A dwell of 0 then means that an operation may
+    /// fall between two samples.
+    #[must_use]
+    pub const fn delivered(mut self) -> Self {
+        self.dwell.open = self.dwell.open.saturating_sub(self.lost);
+        self.dwell.closed = self.dwell.closed.saturating_sub(self.lost);
+        self.quiet = self.quiet.saturating_sub(self.lost);
+        self.calm = self.calm.saturating_sub(self.lost);
+        self.lost = 0;
+        self
+    }
+
+    /// The least worst-case latency, in samples, that any logic whatever can have at make and at break.
+    ///
+    /// `None` where the closed form is not proved: quiet at or below a disturbance width, calm between 1 and
+    /// the widest disturbance, or a dwell so short that the question has no such answer.
+    #[must_use]
+    pub const fn limit(&self) -> Option<PerChange<u32>> {
+        let e = self.delivered();
+        let (open, closed) = (e.glitch.open, e.glitch.closed);
+        let widest = if open > closed { open } else { closed };
+        if e.quiet <= widest {
+            return None;
+        }
+        let (make, break_) = if e.calm == 0 {
+            (
+                max(e.bounce.make + closed, open.saturating_sub(1)) + open + 1,
+                max(e.bounce.break_ + open, closed.saturating_sub(1)) + closed + 1,
+            )
+        } else if e.calm > widest {
+            (
+                max(e.bounce.make, open.saturating_sub(1)) + open + 1,
+                max(e.bounce.break_, closed.saturating_sub(1)) + closed + 1,
+            )
+        } else {
+            return None;
+        };
+        Some(PerChange { make, break_ })
+    }
+}
+
+const fn max(a: u32, b: u32) -> u32 {
+    if a > b { a } else { b }
+}
+
+/// Best and worst latency, in samples: reporting on the first sample that could see the new position is 1.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug, Default)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+pub struct Latency {
+    /// The shortest that occurs.
+    pub best: u32,
+    /// The longest that occurs.
+    pub worst: u32,
+}
+
+/// What a law guarantees inside an envelope: every operation is reported once, within these latencies.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug, Default)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+pub struct Bounds {
+    /// Latency of each change, in samples.
+    pub latency: PerChange<Latency>,
+}
+
+/// The promise that a law breaks inside an envelope.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+#[non_exhaustive]
+pub enum Clause {
+    /// An edge is reported that no change of the contact stands behind.
+    FalseEdge,
+    /// A change of the contact is never reported.
+    Missed,
+    /// A dwell may fall between two samples, so that no logic can see it.
+    DwellUnseen,
+    /// Disturbances come faster than the clock can tell apart.
+    NoQuiet,
+}
+
+/// The answer of a closed form to an envelope.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+pub enum Verdict {
+    /// Proved: the law is faithful, with these exact bounds.
+    Holds(Bounds),
+    /// Refuted: there is a waveform in the envelope that breaks this promise.
+    Fails(Clause),
+    /// Outside the range in which the closed form is proved; the harness can explore it.
+    Unknown,
+}
+
+impl Verdict {
+    /// Whether the law is proved faithful with worst latencies of at most `make` and `break_` samples.
+    #[must_use]
+    pub const fn holds_within(&self, make: u32, break_: u32) -> bool {
+        match self {
+            Self::Holds(bounds) => bounds.latency.make.worst <= make && bounds.latency.break_.worst <= break_,
+            _ => false,
+        }
+    }
+}

@@ -1,0 +1,1 @@
+//! Holds nothing: the examples stand in the files beside this one.

@@ -1,0 +1,4 @@
+//! The workbench: records, characterises, chooses, proves and ships the conditioning of a contact.
+#![forbid(unsafe_code)]
+
+pub mod trace;

@@ -1,0 +1,1 @@
+//! Holds nothing: the tests stand in the files beside this one.
