@@ -1,4 +1,5 @@
 //! The workbench: records, characterises, chooses, proves and ships the conditioning of a contact.
 #![forbid(unsafe_code)]
 
+pub mod prove;
 pub mod trace;

@@ -1,0 +1,337 @@
+//! The envelope as an automaton: every way in which the contact, its bounce and the disturbances may go on.
+
+use debounce_core::{Envelope, Position};
+use rustc_hash::FxHashMap;
+
+use super::ProveError;
+
+/// What the environment remembers between two ticks.
+///
+/// The counters run only as far as they matter and stop there, so the automaton is finite.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+pub struct EnvironmentState {
+    /// Where the contact is.
+    pub contact: Position,
+    /// Samples since the contact changed, up to the dwell.
+    pub held: u32,
+    /// Samples that may still bounce.
+    pub bounce_left: u32,
+    /// Samples that an open disturbance window may still cover; 0 when there is none.
+    pub window_left: u32,
+    /// Samples since the last disturbance ended, up to quiet.
+    pub quiet_served: u32,
+    /// Settled samples since the bounce ended, up to calm.
+    pub calm_served: u32,
+}
+
+/// One way to go on from an environment state, packed: the target and what happened on the way.
+#[derive(Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash, Debug)]
+pub struct Branch(u32);
+
+impl Branch {
+    const SAMPLE: u32 = 1;
+    const CHANGED: u32 = 1 << 1;
+    const BOUNCING: u32 = 1 << 2;
+    const COVERED: u32 = 1 << 3;
+    const BEGINS: u32 = 1 << 4;
+    const SHIFT: u32 = 5;
+
+    /// Index of the environment state it leads to.
+    #[inline]
+    pub fn target(self) -> usize {
+        (self.0 >> Self::SHIFT) as usize
+    }
+
+    /// What the logic is given.
+    #[inline]
+    pub fn sample(self) -> Position {
+        Position::closed_if(self.0 & Self::SAMPLE != 0)
+    }
+
+    /// The sample as an index: 0 open, 1 closed.
+    #[inline]
+    pub fn sample_index(self) -> usize {
+        (self.0 & Self::SAMPLE) as usize
+    }
+
+    /// 1 when the contact changed just before the sample.
+    #[inline]
+    pub fn changes(self) -> u32 {
+        (self.0 >> 1) & 1
+    }
+
+    /// Whether the sample lies in a bounce.
+    pub fn bouncing(self) -> bool {
+        self.0 & Self::BOUNCING != 0
+    }
+
+    /// Whether the sample lies in a disturbance window.
+    pub fn disturbed(self) -> bool {
+        self.0 & Self::COVERED != 0
+    }
+
+    /// Whether a disturbance window begins with the sample.
+    pub fn begins_disturbance(self) -> bool {
+        self.0 & Self::BEGINS != 0
+    }
+
+    /// Everything but the kind of disturbance: branches alike in this lead to the same place by the same word.
+    fn essence(self) -> u32 {
+        self.0 & !(Self::BOUNCING | Self::COVERED | Self::BEGINS)
+    }
+}
+
+/// How many transitions of each kind an exploration fired; a proof in which one that the envelope allows
+/// never fired would be vacuous.
+#[derive(Clone, Copy, PartialEq, Eq, Debug, Default)]
+pub struct Fired {
+    /// Changes of the contact.
+    pub changes: u64,
+    /// Samples inside a bounce.
+    pub bouncing: u64,
+    /// Beginnings of disturbances.
+    pub begins: u64,
+    /// Samples inside a disturbance.
+    pub disturbed: u64,
+}
+
+impl Fired {
+    pub(super) fn count(&mut self, branch: Branch) {
+        self.changes += u64::from(branch.changes());
+        self.bouncing += u64::from(branch.bouncing());
+        self.begins += u64::from(branch.begins_disturbance());
+        self.disturbed += u64::from(branch.disturbed());
+    }
+
+    /// Whether every kind that the other fired was fired here too.
+    #[must_use]
+    pub fn covers(&self, other: &Self) -> bool {
+        let both = |mine: u64, theirs: u64| mine > 0 || theirs == 0;
+        both(self.changes, other.changes)
+            && both(self.bouncing, other.bouncing)
+            && both(self.begins, other.begins)
+            && both(self.disturbed, other.disturbed)
+    }
+}
+
+/// All reachable states of the environment of one envelope, and every branch between them.
+#[derive(Clone, Debug)]
+pub struct Environment {
+    states: Vec<EnvironmentState>,
+    branches: Vec<Branch>,
+    first: Vec<u32>,
+    starts: [u32; 2],
+}
+
+impl Environment {
+    /// Enumerates the automaton of `envelope`, counted in delivered samples.
+    ///
+    /// # Errors
+    /// When a dwell or quiet comes out at 0 samples, or the automaton is larger than 2^27 states.
+    pub fn of(envelope: &Envelope) -> Result<Self, ProveError> {
+        let rules = Rules::of(envelope)?;
+        let mut enumeration = Enumeration::default();
+        let starts = Position::BOTH.map(|contact| enumeration.number(rules.settled(contact)));
+        let mut branches = Vec::new();
+        let mut first = vec![0];
+        let mut next = 0;
+        let mut fan = Vec::new();
+        while next < enumeration.states.len() {
+            let state = enumeration.states[next];
+            fan.clear();
+            rules.branches(state, |flags, target| {
+                fan.push(Branch(flags | (enumeration.number(target) << Branch::SHIFT)));
+            });
+            // Two readings of one sample that lead to the same state are one branch; the plainer one stays.
+            fan.sort_unstable_by_key(|branch| (branch.essence(), branch.0));
+            fan.dedup_by_key(|branch| branch.essence());
+            branches.extend_from_slice(&fan);
+            first.push(u32::try_from(branches.len()).map_err(|_| ProveError::environment_too_large())?);
+            next += 1;
+            if next > 1 << 27 {
+                return Err(ProveError::environment_too_large());
+            }
+        }
+        Ok(Self { states: enumeration.states, branches, first, starts })
+    }
+
+    /// Number of states.
+    #[must_use]
+    pub fn len(&self) -> usize {
+        self.states.len()
+    }
+
+    /// Whether there is no state; there always is one.
+    #[must_use]
+    pub fn is_empty(&self) -> bool {
+        self.states.is_empty()
+    }
+
+    /// Index of the start: settled at `contact`, dwell, quiet and calm served.
+    #[must_use]
+    pub fn start(&self, contact: Position) -> usize {
+        self.starts[contact as usize] as usize
+    }
+
+    /// The state of an index.
+    #[must_use]
+    #[inline]
+    pub fn state(&self, index: usize) -> &EnvironmentState {
+        &self.states[index]
+    }
+
+    /// Every way to go on from a state.
+    #[must_use]
+    #[inline]
+    pub fn branches(&self, index: usize) -> &[Branch] {
+        &self.branches[self.first[index] as usize..self.first[index + 1] as usize]
+    }
+
+    /// Every kind of transition that the envelope allows.
+    #[must_use]
+    pub fn allowed(&self) -> Fired {
+        let mut all = Fired::default();
+        self.branches.iter().for_each(|&branch| all.count(branch));
+        all
+    }
+}
+
+#[derive(Default)]
+struct Enumeration {
+    states: Vec<EnvironmentState>,
+    numbers: FxHashMap<EnvironmentState, u32>,
+}
+
+impl Enumeration {
+    fn number(&mut self, state: EnvironmentState) -> u32 {
+        // `Environment::of` stops long before the numbers reach the width of the packed target.
+        *self.numbers.entry(state).or_insert_with(|| {
+            self.states.push(state);
+            (self.states.len() - 1) as u32
+        })
+    }
+}
+
+/// The envelope's rules, applied to one state at a time.
+struct Rules {
+    envelope: Envelope,
+}
+
+impl Rules {
+    fn of(envelope: &Envelope) -> Result<Self, ProveError> {
+        let envelope = envelope.delivered();
+        for position in Position::BOTH {
+            if envelope.dwell.at(position) == 0 {
+                return Err(ProveError::DwellUnseen { position });
+            }
+        }
+        if envelope.quiet == 0 && (envelope.glitch.open > 0 || envelope.glitch.closed > 0) {
+            return Err(ProveError::NoQuiet);
+        }
+        Ok(Self { envelope })
+    }
+
+    fn settled(&self, contact: Position) -> EnvironmentState {
+        EnvironmentState {
+            contact,
+            held: self.envelope.dwell.at(contact),
+            bounce_left: 0,
+            window_left: 0,
+            quiet_served: self.quiet(),
+            calm_served: self.envelope.calm,
+        }
+    }
+
+    /// Quiet as far as it matters: without disturbances nobody waits for it.
+    fn quiet(&self) -> u32 {
+        if self.envelope.glitch.open == 0 && self.envelope.glitch.closed == 0 {
+            0
+        } else {
+            self.envelope.quiet
+        }
+    }
+
+    /// Calls `found` with the flags and the target of every way to go on.
+    fn branches(&self, state: EnvironmentState, mut found: impl FnMut(u32, EnvironmentState)) {
+        self.with_position(state, 0, &mut found);
+        if state.held >= self.envelope.dwell.at(state.contact) {
+            let contact = state.contact.opposite();
+            let changed = EnvironmentState {
+                contact,
+                held: 0,
+                bounce_left: self.envelope.bounce.at(contact.reached_by()),
+                calm_served: 0,
+                ..state
+            };
+            self.with_position(changed, Branch::CHANGED, &mut found);
+        }
+    }
+
+    /// The contact's position at this sample is fixed; does its bounce go on?
+    fn with_position(
+        &self,
+        state: EnvironmentState,
+        flags: u32,
+        found: &mut impl FnMut(u32, EnvironmentState),
+    ) {
+        self.with_bounce(state, flags, found);
+        // Without calm nothing depends on when a bounce ends, and a longer one can do all that a shorter can.
+        if state.bounce_left > 0 && self.envelope.calm > 0 {
+            self.with_bounce(EnvironmentState { bounce_left: 0, ..state }, flags, found);
+        }
+    }
+
+    /// The bounce is fixed; is the sample disturbed?
+    fn with_bounce(
+        &self,
+        state: EnvironmentState,
+        flags: u32,
+        found: &mut impl FnMut(u32, EnvironmentState),
+    ) {
+        let bouncing = state.bounce_left > 0;
+        if state.window_left > 0 {
+            self.with_window(state, flags | Branch::COVERED, found);
+            self.with_window(EnvironmentState { window_left: 0, quiet_served: 0, ..state }, flags, found);
+            return;
+        }
+        self.with_window(state, flags, found);
+        let width = self.envelope.glitch.at(state.contact);
+        let quiet = state.quiet_served >= self.quiet();
+        let calm = bouncing || state.calm_served >= self.envelope.calm;
+        if width > 0 && quiet && calm {
+            let begun = EnvironmentState { window_left: width, ..state };
+            self.with_window(begun, flags | Branch::COVERED | Branch::BEGINS, found);
+        }
+    }
+
+    /// Everything is fixed but the reading.
+    fn with_window(
+        &self,
+        state: EnvironmentState,
+        mut flags: u32,
+        found: &mut impl FnMut(u32, EnvironmentState),
+    ) {
+        let covered = flags & Branch::COVERED != 0;
+        let bouncing = state.bounce_left > 0;
+        if bouncing {
+            flags |= Branch::BOUNCING;
+        }
+        let mut next = state;
+        next.held = (state.held + 1).min(self.envelope.dwell.at(state.contact));
+        next.bounce_left = state.bounce_left.saturating_sub(1);
+        if covered {
+            next.window_left = state.window_left - 1;
+            next.quiet_served = 0;
+        } else {
+            next.quiet_served = (state.quiet_served + 1).min(self.quiet());
+        }
+        if !covered && !bouncing {
+            next.calm_served = (state.calm_served + 1).min(self.envelope.calm);
+        }
+        let contact_sample = flags | u32::from(state.contact.is_closed());
+        found(contact_sample, next);
+        if covered || bouncing {
+            found(contact_sample ^ Branch::SAMPLE, next);
+        }
+    }
+}
