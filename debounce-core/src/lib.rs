@@ -2,12 +2,24 @@
 #![no_std]
 #![forbid(unsafe_code)]
 
+mod count;
 mod envelope;
+mod error;
+mod integrator;
 mod law;
 mod machine;
+mod majority_register;
+mod shift_register;
+mod state_machine;
 mod time;
 
+pub use count::Count;
 pub use envelope::{Bounds, Clause, Envelope, Latency, PerChange, PerPosition, Verdict};
+pub use error::{Parameter, ParameterError};
+pub use integrator::{Integrator, IntegratorState};
 pub use law::{Law, is_settled};
 pub use machine::{Change, Machine, Position};
+pub use majority_register::{MajorityRegister, MajorityRegisterState, WindowWord};
+pub use shift_register::{ShiftRegister, ShiftRegisterState};
+pub use state_machine::{Phase, StateMachine, StateMachineParameters, StateMachineState};
 pub use time::{Period, TickClock};

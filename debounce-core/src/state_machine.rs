@@ -1,0 +1,268 @@
+//! Four states, each change with a count of its own: [`StateMachine`].
+
+use crate::count::Count;
+use crate::envelope::{Envelope, PerChange};
+use crate::error::{Parameter, ParameterError};
+use crate::law::Law;
+use crate::machine::{Change, Machine, Position};
+
+/// The parameters of a [`StateMachine`], in ticks, each for a make and for a break.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+pub struct StateMachineParameters<C = u8> {
+    /// Samples of the new position that are needed to report the change; at least 1.
+    pub confirm: PerChange<C>,
+    /// Samples of the old position *in a row* that clear a count that has begun; at least 1.
+    pub patience: PerChange<C>,
+    /// Ticks that are ignored after the change was reported.
+    pub lockout: PerChange<C>,
+}
+
+impl<C: Count> StateMachineParameters<C> {
+    /// The textbook machine: the given confirm counts, patience 1, no lock-out.
+    #[must_use]
+    pub const fn confirm(make: C, break_: C) -> Self {
+        Self {
+            confirm: PerChange { make, break_ },
+            patience: PerChange { make: C::ONE, break_: C::ONE },
+            lockout: PerChange { make: C::ZERO, break_: C::ZERO },
+        }
+    }
+
+    /// Sets the patience.
+    #[must_use]
+    pub const fn patience(mut self, make: C, break_: C) -> Self {
+        self.patience = PerChange { make, break_ };
+        self
+    }
+
+    /// Sets the lock-out.
+    #[must_use]
+    pub const fn lockout(mut self, make: C, break_: C) -> Self {
+        self.lockout = PerChange { make, break_ };
+        self
+    }
+}
+
+/// Settles a contact by four states: open, closing, closed, opening; with confirm, patience and lock-out.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+pub struct StateMachine<C = u8> {
+    parameters: StateMachineParameters<C>,
+}
+
+/// What a [`StateMachine`] remembers.
+// `seen == 0` with `agree > 0` means locked out for `agree` more ticks: a count that has not begun needs no
+// agreeing samples, so the field is free.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+pub struct StateMachineState<C = u8> {
+    output: Position,
+    seen: C,
+    agree: C,
+}
+
+const _: () = assert!(size_of::<StateMachineState<u8>>() == 3);
+const _: () = assert!(size_of::<StateMachineState<u16>>() == 6);
+
+/// The four states that give the machine its name.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+pub enum Phase {
+    /// Open, and no make is being counted.
+    Open,
+    /// Open, and closed samples have begun to count.
+    Closing,
+    /// Closed, and no break is being counted.
+    Closed,
+    /// Closed, and open samples have begun to count.
+    Opening,
+}
+
+impl<C: Count> StateMachineState<C> {
+    /// Which of the four states this is; the lock-out belongs to open or closed.
+    #[must_use]
+    pub fn phase(&self) -> Phase {
+        match (self.output, self.seen == C::ZERO) {
+            (Position::Open, true) => Phase::Open,
+            (Position::Open, false) => Phase::Closing,
+            (Position::Closed, true) => Phase::Closed,
+            (Position::Closed, false) => Phase::Opening,
+        }
+    }
+
+    /// How many more ticks will be ignored.
+    #[must_use]
+    pub fn locked_out(&self) -> C {
+        if self.seen == C::ZERO { self.agree } else { C::ZERO }
+    }
+}
+
+impl<C: Count> StateMachine<C> {
+    /// The parameters.
+    #[must_use]
+    pub const fn parameters(&self) -> StateMachineParameters<C> {
+        self.parameters
+    }
+
+    /// Which of the four states `state` is; the lock-out belongs to open or closed.
+    #[must_use]
+    pub fn phase(&self, state: &StateMachineState<C>) -> Phase {
+        state.phase()
+    }
+}
+
+macro_rules! constructors {
+    ($($width:ty),*) => {$(
+        impl StateMachine<$width> {
+            /// A machine with the given parameters.
+            ///
+            /// # Panics
+            /// When [`try_new`](Self::try_new) refuses; in a constant that is an error at compile time.
+            #[must_use]
+            pub const fn new(parameters: StateMachineParameters<$width>) -> Self {
+                match Self::try_new(parameters) {
+                    Ok(law) => law,
+                    Err(error) => panic!("{}", error.refusal()),
+                }
+            }
+
+            /// [`new`](Self::new) for values known at run time; links no panic.
+            ///
+            /// # Errors
+            /// When a confirm count or a patience is 0.
+            pub const fn try_new(parameters: StateMachineParameters<$width>) -> Result<Self, ParameterError> {
+                let zero = if parameters.confirm.make == 0 {
+                    Parameter::ConfirmMake
+                } else if parameters.confirm.break_ == 0 {
+                    Parameter::ConfirmBreak
+                } else if parameters.patience.make == 0 {
+                    Parameter::PatienceMake
+                } else if parameters.patience.break_ == 0 {
+                    Parameter::PatienceBreak
+                } else {
+                    return Ok(Self { parameters });
+                };
+                Err(ParameterError::Zero(zero))
+            }
+
+            /// The machine whose worst latency inside `envelope` is the least that any logic can have.
+            ///
+            /// # Errors
+            /// Where no closed form is proved: quiet not longer than the widest disturbance, or calm neither 0 nor
+            /// longer than it; and where a parameter does not fit the count.
+            pub const fn for_envelope(envelope: &Envelope) -> Result<Self, ParameterError> {
+                let wanted = match reaching_the_limit(envelope) {
+                    Ok(wanted) => wanted,
+                    Err(error) => return Err(error),
+                };
+                let most = <$width>::MAX as u32;
+                if let Some(error) = wanted.beyond(most) {
+                    return Err(error);
+                }
+                // Every value was compared with the width just above.
+                let (confirm, patience, lockout) = (wanted.confirm, wanted.patience, wanted.lockout);
+                Self::try_new(StateMachineParameters {
+                    confirm: PerChange { make: confirm.make as $width, break_: confirm.break_ as $width },
+                    patience: PerChange { make: patience.make as $width, break_: patience.break_ as $width },
+                    lockout: PerChange { make: lockout.make as $width, break_: lockout.break_ as $width },
+                })
+            }
+        }
+    )*};
+}
+
+constructors!(u8, u16);
+
+impl StateMachineParameters<u32> {
+    /// The first parameter that is more than `most`, as an error.
+    const fn beyond(&self, most: u32) -> Option<ParameterError> {
+        let (parameter, ticks) = if self.confirm.make > most {
+            (Parameter::ConfirmMake, self.confirm.make)
+        } else if self.confirm.break_ > most {
+            (Parameter::ConfirmBreak, self.confirm.break_)
+        } else if self.patience.make > most {
+            (Parameter::PatienceMake, self.patience.make)
+        } else if self.patience.break_ > most {
+            (Parameter::PatienceBreak, self.patience.break_)
+        } else if self.lockout.make > most {
+            (Parameter::LockoutMake, self.lockout.make)
+        } else if self.lockout.break_ > most {
+            (Parameter::LockoutBreak, self.lockout.break_)
+        } else {
+            return None;
+        };
+        // No count is wider than 16 bits.
+        Some(ParameterError::CountTooNarrow { parameter, ticks, most: most as u16 })
+    }
+}
+
+/// The parameters of [`StateMachine::for_envelope`] before they are narrowed to a count.
+const fn reaching_the_limit(envelope: &Envelope) -> Result<StateMachineParameters<u32>, ParameterError> {
+    let e = envelope.delivered();
+    let (open, closed) = (e.glitch.open, e.glitch.closed);
+    let glitch = if open > closed { open } else { closed };
+    if e.quiet <= glitch {
+        return Err(ParameterError::QuietTooShort { quiet: e.quiet, glitch });
+    }
+    // A width of u32::MAX saturates here and is refused by every count.
+    let confirm = PerChange { make: open.saturating_add(1), break_: closed.saturating_add(1) };
+    let patience = if e.calm == 0 {
+        PerChange { make: confirm.break_, break_: confirm.make }
+    } else if e.calm > glitch {
+        PerChange { make: 1, break_: 1 }
+    } else {
+        return Err(ParameterError::CalmTooShort { calm: e.calm, glitch });
+    };
+    let lockout =
+        PerChange { make: e.bounce.make.saturating_sub(1), break_: e.bounce.break_.saturating_sub(1) };
+    Ok(StateMachineParameters { confirm, patience, lockout })
+}
+
+impl<C: Count> Machine for StateMachine<C> {
+    type Input = Position;
+    type Output = Option<Change>;
+    type State = StateMachineState<C>;
+
+    #[inline]
+    fn step(&self, state: &mut Self::State, sample: Position) -> Option<Change> {
+        if state.seen == C::ZERO {
+            if state.agree != C::ZERO {
+                state.agree = state.agree.minus(C::ONE);
+                return None;
+            }
+            if sample == state.output {
+                return None;
+            }
+        }
+        let change = state.output.opposite().reached_by();
+        if sample == state.output {
+            state.agree = state.agree.plus(C::ONE);
+            if state.agree >= self.parameters.patience.at(change) {
+                state.seen = C::ZERO;
+                state.agree = C::ZERO;
+            }
+            return None;
+        }
+        state.seen = state.seen.plus(C::ONE);
+        state.agree = C::ZERO;
+        if state.seen < self.parameters.confirm.at(change) {
+            return None;
+        }
+        *state =
+            StateMachineState { output: sample, seen: C::ZERO, agree: self.parameters.lockout.at(change) };
+        Some(change)
+    }
+}
+
+impl<C: Count> Law for StateMachine<C> {
+    #[inline]
+    fn rest(&self, position: Position) -> Self::State {
+        StateMachineState { output: position, seen: C::ZERO, agree: C::ZERO }
+    }
+
+    #[inline]
+    fn output(&self, state: &Self::State) -> Position {
+        state.output
+    }
+}
