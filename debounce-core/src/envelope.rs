@@ -52,8 +52,9 @@ impl<T: Copy> PerPosition<T> {
 ///   the position is the one in which the window began, and the window may straddle a change.
 /// * `quiet`: a disturbance may begin only when at least this many samples have passed since the last one ended
 ///   (bounce samples count).
-/// * `calm`: outside bounce, a disturbance may begin only when at least this many settled samples have passed
-///   since the bounce ended; 0 means that disturbances know nothing of the contact.
+/// * `calm`: a disturbance may begin only outside bounce, when at least this many settled samples (neither bouncing
+///   nor disturbed) have passed since the bounce ended; 0 means that disturbances know nothing of the contact.
+///   With calm, whatever strikes during a bounce and outlasts it counts as bounce.
 /// * `lost`: ticks that may be lost in a row; no stretch of the shortest dwell, quiet or calm holds more than one
 ///   such run. See [`Envelope::delivered`].
 ///

@@ -1,1 +1,3 @@
-//! Holds nothing: the tests stand in the files beside this one.
+//! What several tests share: the envelope written a second time, as a predicate on words.
+
+pub mod predicate;

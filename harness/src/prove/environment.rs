@@ -259,7 +259,8 @@ impl Rules {
             let changed = EnvironmentState {
                 contact,
                 held: 0,
-                bounce_left: self.envelope.bounce.at(contact.reached_by()),
+                // A bounce that is cut short by the next change may still ring on under it.
+                bounce_left: state.bounce_left.max(self.envelope.bounce.at(contact.reached_by())),
                 calm_served: 0,
                 ..state
             };
@@ -297,7 +298,8 @@ impl Rules {
         self.with_window(state, flags, found);
         let width = self.envelope.glitch.at(state.contact);
         let quiet = state.quiet_served >= self.quiet();
-        let calm = bouncing || state.calm_served >= self.envelope.calm;
+        // With calm, what strikes during a bounce and outlasts it is no disturbance but a longer bounce.
+        let calm = self.envelope.calm == 0 || (!bouncing && state.calm_served >= self.envelope.calm);
         if width > 0 && quiet && calm {
             let begun = EnvironmentState { window_left: width, ..state };
             self.with_window(begun, flags | Branch::COVERED | Branch::BEGINS, found);
