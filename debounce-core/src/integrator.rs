@@ -1,6 +1,8 @@
 //! Saturating up/down counter with both ends as thresholds: [`Integrator`].
 
+use crate::closed_form::UpDown;
 use crate::count::Count;
+use crate::envelope::{Envelope, PerChange, Verdict};
 use crate::error::{Parameter, ParameterError};
 use crate::law::Law;
 use crate::machine::{Change, Machine, Position};
@@ -67,6 +69,17 @@ impl<C: Count> Integrator<C> {
 macro_rules! constructors {
     ($($width:ty),*) => {$(
         impl Integrator<$width> {
+            /// What the integrator guarantees inside `envelope`.
+            #[must_use]
+            pub const fn verdict(&self, envelope: &Envelope) -> Verdict {
+                // Every count is narrower than 32 bits.
+                UpDown {
+                    full_scale: self.full_scale as u32,
+                    step: PerChange { make: self.up as u32, break_: self.down as u32 },
+                }
+                .verdict(envelope)
+            }
+
             /// An integrator that moves by 1 at every sample.
             ///
             /// # Panics

@@ -2,6 +2,7 @@
 #![no_std]
 #![forbid(unsafe_code)]
 
+mod closed_form;
 mod count;
 mod envelope;
 mod error;

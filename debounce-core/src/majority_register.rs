@@ -3,6 +3,8 @@
 use core::fmt::Debug;
 use core::hash::Hash;
 
+use crate::closed_form;
+use crate::envelope::{Envelope, Verdict};
 use crate::error::{Parameter, ParameterError};
 use crate::law::Law;
 use crate::machine::{Change, Machine, Position};
@@ -128,6 +130,12 @@ impl<W: WindowWord> MajorityRegister<W> {
     #[must_use]
     pub fn window(&self) -> u8 {
         self.mask.ones()
+    }
+
+    /// What the register guarantees inside `envelope`; beyond the certain failure, the harness explores it.
+    #[must_use]
+    pub const fn verdict(&self, envelope: &Envelope) -> Verdict {
+        closed_form::majority(self.majority as u32, envelope)
     }
 
     /// The number of samples that decide.

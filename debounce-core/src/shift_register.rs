@@ -1,5 +1,7 @@
 //! The last n samples, all of one mind: [`ShiftRegister`].
 
+use crate::closed_form::Counting;
+use crate::envelope::{Envelope, PerChange, Verdict};
 use crate::error::{Parameter, ParameterError};
 use crate::law::Law;
 use crate::machine::{Change, Machine, Position};
@@ -49,6 +51,18 @@ impl ShiftRegister {
             return Err(ParameterError::WindowTooLong { window, most: Self::LONGEST });
         }
         Ok(Self { window })
+    }
+
+    /// What the register guarantees inside `envelope`.
+    #[must_use]
+    pub const fn verdict(&self, envelope: &Envelope) -> Verdict {
+        let window = self.window as u32;
+        Counting {
+            confirm: PerChange { make: window, break_: window },
+            patience: PerChange { make: 1, break_: 1 },
+            lockout: PerChange { make: 0, break_: 0 },
+        }
+        .verdict(envelope)
     }
 
     /// The number of samples that must agree.

@@ -1,7 +1,8 @@
 //! Four states, each change with a count of its own: [`StateMachine`].
 
+use crate::closed_form::Counting;
 use crate::count::Count;
-use crate::envelope::{Envelope, PerChange};
+use crate::envelope::{Envelope, PerChange, Verdict};
 use crate::error::{Parameter, ParameterError};
 use crate::law::Law;
 use crate::machine::{Change, Machine, Position};
@@ -144,6 +145,19 @@ macro_rules! constructors {
                     return Ok(Self { parameters });
                 };
                 Err(ParameterError::Zero(zero))
+            }
+
+            /// What the machine guarantees inside `envelope`.
+            #[must_use]
+            pub const fn verdict(&self, envelope: &Envelope) -> Verdict {
+                let p = &self.parameters;
+                // Every count is narrower than 32 bits.
+                Counting {
+                    confirm: PerChange { make: p.confirm.make as u32, break_: p.confirm.break_ as u32 },
+                    patience: PerChange { make: p.patience.make as u32, break_: p.patience.break_ as u32 },
+                    lockout: PerChange { make: p.lockout.make as u32, break_: p.lockout.break_ as u32 },
+                }
+                .verdict(envelope)
             }
 
             /// The machine whose worst latency inside `envelope` is the least that any logic can have.

@@ -12,9 +12,8 @@ pub type Letter = (Position, Position);
 /// Whether some bounce lengths and disturbance windows explain `word`, begun settled at `start`.
 #[must_use]
 pub fn is_legal(word: &[Letter], start: Position, envelope: &Envelope) -> bool {
-    let changes: Vec<usize> = (0..word.len())
-        .filter(|&at| word[at].0 != if at == 0 { start } else { word[at - 1].0 })
-        .collect();
+    let changes: Vec<usize> =
+        (0..word.len()).filter(|&at| word[at].0 != if at == 0 { start } else { word[at - 1].0 }).collect();
     let dwells = changes.windows(2).all(|pair| {
         let held = (pair[1] - pair[0]) as u32;
         held >= envelope.dwell.at(word[pair[0]].0)
@@ -51,8 +50,9 @@ fn some_windows(
     from: usize,
     envelope: &Envelope,
 ) -> bool {
-    let explained =
-        |at: usize, windows: &[(usize, usize)]| word[at].0 == word[at].1 || bouncing[at] || covered(windows, at);
+    let explained = |at: usize, windows: &[(usize, usize)]| {
+        word[at].0 == word[at].1 || bouncing[at] || covered(windows, at)
+    };
     if (0..from).any(|at| !explained(at, windows)) {
         return false;
     }
@@ -60,9 +60,10 @@ fn some_windows(
         return true;
     }
     for first in from..word.len() {
-        let bounce_ended = changes.iter().rfind(|&&change| change <= first).map(|&change| {
-            (change..first).rfind(|&sample| bouncing[sample]).map_or(change, |last| last + 1)
-        });
+        let bounce_ended = changes
+            .iter()
+            .rfind(|&&change| change <= first)
+            .map(|&change| (change..first).rfind(|&sample| bouncing[sample]).map_or(change, |last| last + 1));
         let calm = bounce_ended.is_none_or(|ended| {
             let settled = (ended..first).filter(|&sample| !covered(windows, sample)).count();
             settled as u32 >= envelope.calm

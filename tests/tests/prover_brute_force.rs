@@ -122,9 +122,12 @@ fn laws_agree(envelope: Envelope, length: usize) -> (u64, u32) {
     for (m, n) in [(2, 3), (3, 4), (3, 5)] {
         add(agree(&MajorityRegister::<u8>::new(m, n), envelope, length));
     }
-    for (confirm, patience, lockout) in
-        [((2, 1), (2, 1), (0, 0)), ((2, 2), (2, 2), (1, 2)), ((1, 1), (1, 1), (2, 1)), ((1, 2), (2, 1), (3, 0))]
-    {
+    for (confirm, patience, lockout) in [
+        ((2, 1), (2, 1), (0, 0)),
+        ((2, 2), (2, 2), (1, 2)),
+        ((1, 1), (1, 1), (2, 1)),
+        ((1, 2), (2, 1), (3, 0)),
+    ] {
         let parameters = StateMachineParameters::<u8>::confirm(confirm.0, confirm.1)
             .patience(patience.0, patience.1)
             .lockout(lockout.0, lockout.1);
