@@ -36,8 +36,11 @@
 
 mod environment;
 mod explore;
+mod frontier;
+mod immunity;
 mod latency;
 mod product;
+mod recovery;
 mod tabulate;
 mod witness;
 
@@ -46,6 +49,9 @@ use core::hash::Hash;
 use debounce_core::{Bounds, Change, Clause, Envelope, Law, PerChange, Position};
 
 pub use environment::{Branch, Environment, EnvironmentState, Fired};
+pub use frontier::shortest_operations;
+pub use immunity::{immunity, widest_lone_disturbance};
+pub use recovery::{Recovery, recovery_from_any_state, recovery_from_short_operations};
 pub use tabulate::{Entry, LawTable};
 pub use witness::{Witness, WitnessTick};
 
