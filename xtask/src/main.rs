@@ -14,7 +14,7 @@ use std::process::ExitCode;
 use std::time::Instant;
 
 use checks::Check;
-use session::Session;
+use session::{Session, give_up, say};
 use table::Row;
 
 fn main() -> ExitCode {
@@ -30,10 +30,7 @@ fn main() -> ExitCode {
     match done {
         Ok(true) => ExitCode::SUCCESS,
         Ok(false) => ExitCode::FAILURE,
-        Err(error) => {
-            eprintln!("error: cannot write the results: {error}");
-            ExitCode::from(2)
-        }
+        Err(error) => give_up(&error),
     }
 }
 
@@ -61,7 +58,7 @@ fn run(plan: &[&'static Check]) -> io::Result<bool> {
     let mut session = Session::new();
     let mut rows = Vec::new();
     for check in plan {
-        println!("\n==> {}: {}", check.name, check.about);
+        say(&format!("\n==> {}: {}", check.name, check.about));
         let start = Instant::now();
         (check.run)(&mut session);
         rows.push(Row {

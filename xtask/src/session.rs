@@ -69,8 +69,8 @@ impl Session {
         match ran {
             Ok((tally, result)) => {
                 self.tally += tally;
-                self.expect(result);
-                self.expect(tally.complete().map_err(|reason| format!("`{text}`: {reason}")));
+                let complete = || tally.complete().map_err(|reason| format!("`{text}`: {reason}"));
+                self.expect(result.and_then(|()| complete()));
             }
             Err(error) => self.fail(format!("cannot run `{text}`: {error}")),
         }
@@ -134,7 +134,23 @@ fn tee(command: &mut Command) -> io::Result<(Tally, Result<(), String>)> {
 }
 
 fn announce(command: &Command) {
-    println!("$ {}", shown(command));
+    say(&format!("$ {}", shown(command)));
+}
+
+/// Prints a line. Where nobody can read the result there is nothing to go on for.
+pub(crate) fn say(line: &str) {
+    let mut out = io::stdout().lock();
+    if let Err(error) = writeln!(out, "{line}").and_then(|()| out.flush()) {
+        give_up(&error);
+    }
+}
+
+/// Ends the program because the results cannot be written; without a word if the reader has just gone.
+pub(crate) fn give_up(error: &io::Error) -> ! {
+    if error.kind() != io::ErrorKind::BrokenPipe {
+        eprintln!("error: cannot write the results: {error}");
+    }
+    std::process::exit(2)
 }
 
 /// The command as one would type it: the program without its folder, and the words after it.

@@ -31,12 +31,12 @@ impl Tally {
     pub(crate) fn complete(&self) -> Result<(), String> {
         if self.unread > 0 {
             return Err(format!(
-                "{} result lines could not be read, so the tests are not counted",
+                "result lines that could not be read: {}; so the tests are not counted",
                 self.unread
             ));
         }
         if self.ignored > 0 {
-            return Err(format!("{} tests are ignored; assert what holds today instead", self.ignored));
+            return Err(format!("tests that are ignored: {}; assert what holds today instead", self.ignored));
         }
         if self.passed + self.failed == 0 {
             return Err("no test ran".to_owned());

@@ -15,9 +15,9 @@ pub(super) fn run(session: &mut Session) {
         Err(error) => return session.fail(format!("cannot read {}: {error}", path.display())),
     };
     for set in sets(&manifest::features(&text)) {
-        let set = set.join(",");
+        let set = format!("--features={}", set.join(","));
         let package = ["clippy", "--package", "debounce-core", "--all-targets", "--no-default-features"];
-        let rest = ["--features", &set, "--", "-D", "warnings"];
+        let rest = [&set, "--", "-D", "warnings"];
         session.cargo(&[&package[..], &rest[..]].concat());
     }
     session.cargo_test(&["--package", "debounce-core", "--no-default-features"]);

@@ -5,7 +5,7 @@ use std::fs;
 use std::process::Command;
 
 use crate::install;
-use crate::session::{Session, output_of};
+use crate::session::{Session, output_of, say};
 
 /// What must stand in the root.
 const REQUIRED: [&str; 13] = [
@@ -50,7 +50,7 @@ fn names() -> Result<BTreeSet<String>, String> {
         let names = listed.split('\0').filter_map(|path| path.split('/').next());
         return Ok(names.filter(|name| !name.is_empty()).map(str::to_owned).collect());
     }
-    println!("no .git here: judging the folder itself");
+    say("no .git here: judging the folder itself");
     let unreadable = |error| format!("cannot list {}: {error}", root.display());
     let mut names = BTreeSet::new();
     for entry in fs::read_dir(root).map_err(unreadable)? {
