@@ -1,0 +1,39 @@
+//! The checks, in the order in which `verify` runs them: the quick and the likely to fail first.
+
+mod docs;
+mod documents;
+mod features;
+mod format;
+mod host;
+mod lints;
+mod targets;
+mod top_level;
+
+use crate::session::Session;
+
+/// One check.
+pub(crate) struct Check {
+    pub(crate) name: &'static str,
+    /// What it makes sure of, in a few words.
+    pub(crate) about: &'static str,
+    /// Notes what fails in the session and goes on to the end.
+    pub(crate) run: fn(&mut Session),
+}
+
+/// Every check.
+pub(crate) const ALL: &[Check] = &[
+    Check { name: "check-format", about: "the sources are formatted", run: format::run },
+    Check { name: "check-lints", about: "no lint warns, in any target, all features on", run: lints::run },
+    Check {
+        name: "check-docs",
+        about: "the docs build without a warning and agree with the code",
+        run: docs::run,
+    },
+    Check { name: "check-host", about: "all tests and doctests pass on this machine", run: host::run },
+    Check {
+        name: "check-features",
+        about: "debounce-core holds with every set of features",
+        run: features::run,
+    },
+    Check { name: "check-targets", about: "debounce-core builds for bare metal", run: targets::run },
+];
