@@ -2,5 +2,7 @@
 #![forbid(unsafe_code)]
 
 pub mod nearest;
+pub mod problem;
 pub mod quantity;
+pub mod requirement;
 pub mod trace;

@@ -28,6 +28,12 @@ const RATES: &[Unit] = &[("Hz", 1), ("kHz", 1_000), ("MHz", 1_000_000)];
 const NS_PER_S: u128 = 1_000_000_000;
 
 impl TickPeriod {
+    /// A period of whole nanoseconds, or `None` for 0.
+    #[must_use]
+    pub fn try_from_ns(ns: u64) -> Option<Self> {
+        Period::try_from_ratio(ns, 1).map(Self)
+    }
+
     /// The same period as the core crate holds it.
     #[must_use]
     pub const fn period(self) -> Period {
