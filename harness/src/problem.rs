@@ -36,7 +36,7 @@ impl SourceText {
     /// Line and column of a byte, both from 1; columns count characters.
     #[must_use]
     pub fn line_column(&self, byte: usize) -> (usize, usize) {
-        let before = &self.text[..self.text.floor_char_boundary(byte)];
+        let before = &self.text[..boundary(&self.text, byte)];
         let line_start = before.rfind('\n').map_or(0, |newline| newline + 1);
         (before.matches('\n').count() + 1, before[line_start..].chars().count() + 1)
     }
@@ -174,9 +174,15 @@ impl Problem {
 
 /// Keeps a span inside the text and on character boundaries, whatever a parser reported.
 fn clamp(span: &Range<usize>, text: &str) -> Range<usize> {
-    let start = text.floor_char_boundary(span.start.min(text.len()));
-    let end = text.ceil_char_boundary(span.end.clamp(start, text.len()));
+    let start = boundary(text, span.start);
+    let inside = span.end.clamp(start, text.len());
+    let end = (inside..=text.len()).find(|&byte| text.is_char_boundary(byte)).unwrap_or(text.len());
     start..end
+}
+
+/// The last start of a character at or before `byte`.
+fn boundary(text: &str, byte: usize) -> usize {
+    (0..=byte.min(text.len())).rev().find(|&byte| text.is_char_boundary(byte)).unwrap_or(0)
 }
 
 impl fmt::Display for Problem {
