@@ -1,6 +1,8 @@
 //! The workbench: records, characterises, chooses, proves and ships the conditioning of a contact.
 #![forbid(unsafe_code)]
 
+pub mod cli;
+pub mod law_text;
 pub mod nearest;
 pub mod problem;
 pub mod quantity;

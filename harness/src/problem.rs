@@ -165,10 +165,15 @@ impl Problem {
             }
             group = group.element(snippet);
         }
-        for help in &self.help {
-            group = group.element(Level::HELP.message(help.as_str()));
+        if let Place::Text { .. } = &self.place {
+            group = group.elements(self.help.iter().map(|help| Level::HELP.message(help.as_str())));
+            return renderer.render(&[group]);
         }
-        renderer.render(&[group])
+        // Without a text to hang it on, the help stands on a line of its own.
+        let helps = self.help.iter().map(|help| Group::with_title(Level::HELP.primary_title(help.as_str())));
+        let shown: Vec<String> =
+            std::iter::once(group).chain(helps).map(|group| renderer.render(&[group])).collect();
+        shown.join("\n")
     }
 }
 
@@ -247,6 +252,15 @@ impl fmt::Display for Problems {
 
 impl std::error::Error for Problem {}
 impl std::error::Error for Problems {}
+
+/// An operating system's reason in lower case, without the number that Rust puts after it.
+#[must_use]
+pub fn plain_reason(error: &std::io::Error) -> String {
+    let text = error.to_string();
+    let reason = text.split(" (os error").next().unwrap_or(&text);
+    let mut letters = reason.chars();
+    letters.next().map(|first| first.to_lowercase().chain(letters).collect()).unwrap_or_default()
+}
 
 #[cfg(test)]
 mod tests {

@@ -69,8 +69,8 @@ pub struct RequirementOptions {
     /// Widest disturbance: "300 us" or "open=300 us,closed=100 us"
     #[arg(long, value_name = "TIME", help_heading = "Requirement")]
     pub disturbance: Option<ForPositions<Time>>,
-    /// Shortest time between two disturbances
-    #[arg(long, value_name = "TIME", help_heading = "Requirement")]
+    /// Shortest time between two disturbances, `quiet` in the requirement file
+    #[arg(long = "quiet-time", id = "quiet_time", value_name = "TIME", help_heading = "Requirement")]
     pub quiet: Option<Time>,
     /// Shortest settled time between a bounce and a disturbance
     #[arg(long, value_name = "TIME", help_heading = "Requirement")]
@@ -154,7 +154,7 @@ impl RequirementOptions {
         let ForPositions(disturbance) = self.disturbance.as_ref().unwrap_or(&no_position);
         over(&mut required.disturbance.open, &disturbance.open, "--disturbance");
         over(&mut required.disturbance.closed, &disturbance.closed, "--disturbance");
-        over(&mut required.quiet, &self.quiet, "--quiet");
+        over(&mut required.quiet, &self.quiet, "--quiet-time");
         over(&mut required.calm, &self.calm, "--calm");
         over(&mut requirement.confidence, &self.confidence, "--confidence");
         over(&mut requirement.coverage, &self.coverage, "--coverage");

@@ -13,7 +13,7 @@ use super::section::{Reader, Section};
 use super::{
     Budget, Clock, Contact, Figures, Level, Recording, Requirement, Sourced, Thresholds, TickChoice,
 };
-use crate::problem::{Problem, Problems, SourceText};
+use crate::problem::{Problem, Problems, SourceText, plain_reason};
 use crate::quantity::{Quantity, TickPeriod, Time, Voltage};
 
 /// A requirement file is written by hand; anything larger than this is something else.
@@ -36,7 +36,9 @@ fn load(path: &Path) -> Result<String, Problem> {
             std::io::ErrorKind::IsADirectory => "give the requirement file in this folder",
             _ => "make the file readable",
         };
-        Problem::new(format!("the requirement cannot be read: {}", plain(&error))).in_file(path).help(help)
+        Problem::new(format!("the requirement cannot be read: {}", plain_reason(&error)))
+            .in_file(path)
+            .help(help)
     };
     let size = fs::metadata(path).map_err(unreadable)?.len();
     if size > MOST_BYTES {
@@ -61,14 +63,6 @@ fn load(path: &Path) -> Result<String, Problem> {
             .help("write at least [required] with latency = \"20 ms\", or leave --requirement out"));
     }
     Ok(text)
-}
-
-/// An operating system's reason, without the number that Rust puts after it.
-pub(crate) fn plain(error: &std::io::Error) -> String {
-    let text = error.to_string();
-    let reason = text.split(" (os error").next().unwrap_or(&text);
-    let mut letters = reason.chars();
-    letters.next().map(|first| first.to_lowercase().chain(letters).collect()).unwrap_or_default()
 }
 
 /// Reads the text of a requirement file; paths in it are relative to the folder of the file.

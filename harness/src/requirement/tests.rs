@@ -288,9 +288,9 @@ fn options_stand_over_the_file_and_say_so() {
 #[test]
 fn options_that_contradict_the_file_are_refused() {
     let file = accepts("[required]\ndisturbance = \"2 ms\"\n");
-    let problems = options(&["--quiet", "1 ms"]).over(file, &[]).expect_err("contradiction").to_string();
+    let problems = options(&["--quiet-time", "1 ms"]).over(file, &[]).expect_err("contradiction").to_string();
     assert!(problems.starts_with("bench/contact.toml:2:15: the quiet of 1 ms is not longer"), "{problems}");
-    assert!(problems.contains("the quiet (1 ms) is from the option --quiet"), "{problems}");
+    assert!(problems.contains("the quiet (1 ms) is from the option --quiet-time"), "{problems}");
 }
 
 #[test]
