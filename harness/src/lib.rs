@@ -1,5 +1,11 @@
 //! The workbench: records, characterises, chooses, proves and ships the conditioning of a contact.
 #![forbid(unsafe_code)]
 
+pub mod cli;
+pub mod law_text;
+pub mod nearest;
+pub mod problem;
 pub mod prove;
+pub mod quantity;
+pub mod requirement;
 pub mod trace;

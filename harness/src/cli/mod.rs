@@ -1,0 +1,33 @@
+//! The command line: what is typed, how a run ends, where output goes. One file for each command.
+//!
+//! Exit codes: 0 holds, 1 does not hold, 2 bad input, bad usage or an output that cannot be written. A reader
+//! of standard output that goes away ends the run quietly, with the exit code that the answer has.
+
+mod characterise;
+mod choose;
+mod emit;
+mod envelope_text;
+mod failure;
+mod files;
+mod prove;
+mod recordings;
+mod replay;
+mod run;
+mod session;
+mod study;
+
+#[cfg(test)]
+mod tests;
+
+pub use characterise::CharacteriseArguments;
+pub use choose::ChooseArguments;
+pub use emit::EmitArguments;
+pub use envelope_text::{EnvelopeText, EnvelopeTextError};
+pub use failure::{Failure, Outcome};
+pub use files::{OutputFolder, StagedFiles};
+pub use prove::ProveArguments;
+pub use recordings::RequirementInput;
+pub use replay::ReplayArguments;
+pub use run::run;
+pub use session::{Answer, GlobalOptions, SCHEMA, Session};
+pub use study::StudyArguments;

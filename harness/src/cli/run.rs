@@ -1,0 +1,89 @@
+//! From what was typed to an exit code.
+
+use std::ffi::OsString;
+use std::io::Write;
+use std::process::ExitCode;
+
+use clap::error::ErrorKind;
+use clap::{CommandFactory, Parser, Subcommand};
+
+use super::session::to_stdout;
+use super::{Answer, Failure, GlobalOptions, Session};
+
+/// The workbench for mechanical contacts: from a recording to a proven debouncer.
+#[derive(Parser, Debug)]
+#[command(
+    name = "harness",
+    version,
+    after_help = "Exit codes: 0 holds, 1 does not hold, 2 bad input or usage.",
+    disable_help_subcommand = true
+)]
+pub(super) struct CommandLine {
+    #[command(flatten)]
+    global: GlobalOptions,
+    #[command(subcommand)]
+    command: Option<Command>,
+}
+
+/// The commands whose parts are all there.
+#[derive(Subcommand, Debug)]
+enum Command {}
+
+impl Command {
+    const fn name(&self) -> &'static str {
+        match *self {}
+    }
+
+    fn run(&self, _session: &Session) -> Result<Box<dyn Answer>, Failure> {
+        match *self {}
+    }
+}
+
+/// Runs the command line `arguments`, the first of which is the name of the program.
+pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
+    let line = match CommandLine::try_parse_from(arguments) {
+        Ok(line) => line,
+        Err(error) => return usage(&error),
+    };
+    let Some(command) = line.command else {
+        return end(first_steps(), 0);
+    };
+    let session = Session::new(command.name(), line.global);
+    let (printed, code) = match command.run(&session) {
+        Ok(answer) => (session.print(answer.as_ref()), answer.outcome().code()),
+        Err(failure) => (session.print_failure(&failure), Failure::CODE),
+    };
+    end(printed, code)
+}
+
+/// The exit code, unless the output was lost.
+fn end(printed: Result<(), Failure>, code: u8) -> ExitCode {
+    match printed {
+        Ok(()) => ExitCode::from(code),
+        Err(failure) => {
+            // Standard error is all that is left; if that is closed too, the exit code stays.
+            drop(write!(anstream::stderr(), "{}", failure.rendered()));
+            failure.into()
+        }
+    }
+}
+
+/// Help and version go to standard output, a slip to standard error.
+fn usage(error: &clap::Error) -> ExitCode {
+    let rendered = error.render();
+    if matches!(error.kind(), ErrorKind::DisplayHelp | ErrorKind::DisplayVersion) {
+        return end(to_stdout(|out| write!(out, "{}", rendered.ansi())), 0);
+    }
+    drop(write!(anstream::stderr(), "{}", rendered.ansi()));
+    ExitCode::from(Failure::CODE)
+}
+
+/// What to do first, for someone who typed nothing but the name.
+fn first_steps() -> Result<(), Failure> {
+    let help = CommandLine::command().render_help();
+    to_stdout(|out| {
+        writeln!(out, "Start with the built-in demo:  harness study")?;
+        writeln!(out, "Then with your own recording:  harness study gate.vcd --latency \"20 ms\"\n")?;
+        write!(out, "{}", help.ansi())
+    })
+}

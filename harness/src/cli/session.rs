@@ -1,0 +1,168 @@
+//! What every command shares: where output, warnings and progress go.
+
+use std::io::{self, BufWriter, IsTerminal, Write};
+use std::time::Duration;
+
+use anstream::AutoStream;
+use clap::Args;
+use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
+use serde_json::{Value, json};
+
+use super::{Failure, Outcome};
+use crate::problem::Problem;
+
+/// The version of the JSON output; it goes up when a field changes its meaning or goes away.
+pub const SCHEMA: u32 = 1;
+
+/// Options of every command.
+#[derive(Args, Clone, Copy, PartialEq, Eq, Debug, Default)]
+pub struct GlobalOptions {
+    /// Print one JSON document instead of text
+    #[arg(long, global = true)]
+    pub json: bool,
+    /// Print no warnings and no progress
+    #[arg(long, short, global = true)]
+    pub quiet: bool,
+}
+
+/// What a command has found out, ready to be printed.
+pub trait Answer {
+    /// Whether what was asked holds.
+    fn outcome(&self) -> Outcome;
+
+    /// The answer for a person. Colour codes are welcome: they are stripped where they do not belong.
+    ///
+    /// # Errors
+    /// Those of `out`.
+    fn write_text(&self, out: &mut dyn Write) -> io::Result<()>;
+
+    /// The answer for a program.
+    fn to_json(&self) -> Value;
+}
+
+/// One run of the command.
+#[derive(Clone, Copy, Debug)]
+pub struct Session {
+    options: GlobalOptions,
+    command: &'static str,
+}
+
+impl Session {
+    /// A run of `command`.
+    #[must_use]
+    pub const fn new(command: &'static str, options: GlobalOptions) -> Self {
+        Self { options, command }
+    }
+
+    /// Tells a person something on standard error, unless they asked for quiet. It ends with what to try.
+    pub fn warn(&self, message: &str) {
+        if !self.options.quiet {
+            // Losing a warning because nobody reads standard error is no reason to lose the answer.
+            drop(writeln!(anstream::stderr(), "warning: {message}"));
+        }
+    }
+
+    /// A progress bar on standard error for `steps` steps; it draws nothing where no person would see it.
+    #[must_use]
+    pub fn progress(&self, what: &'static str, steps: u64) -> ProgressBar {
+        let seen = !self.options.quiet && io::stderr().is_terminal();
+        let target = if seen { ProgressDrawTarget::stderr_with_hz(8) } else { ProgressDrawTarget::hidden() };
+        let style = ProgressStyle::with_template("{msg} {wide_bar} {percent} %  {eta} left")
+            .unwrap_or_else(|_| ProgressStyle::default_bar());
+        let bar = ProgressBar::with_draw_target(Some(steps), target).with_style(style).with_message(what);
+        if seen {
+            bar.enable_steady_tick(Duration::from_millis(250));
+        }
+        bar
+    }
+
+    /// Prints an answer.
+    ///
+    /// A reader that went away has seen what it wanted: that ends quietly, and the exit code still tells the
+    /// outcome.
+    ///
+    /// # Errors
+    /// Where standard output cannot be written for any other reason.
+    pub fn print(&self, answer: &dyn Answer) -> Result<(), Failure> {
+        if self.options.json {
+            let document = self.document(answer.outcome().word(), "result", answer.to_json());
+            return self.print_json(&document);
+        }
+        to_stdout(|out| answer.write_text(out))
+    }
+
+    /// Reports a failure: to a person on standard error and, with `--json`, as a document on standard output.
+    ///
+    /// # Errors
+    /// Where standard output cannot be written.
+    pub fn print_failure(&self, failure: &Failure) -> Result<(), Failure> {
+        // Nothing is left to tell it to if standard error is closed too; the exit code stays.
+        drop(write!(anstream::stderr(), "{}", failure.rendered()));
+        if !self.options.json {
+            return Ok(());
+        }
+        let problems: Value = failure.problems().iter().map(problem_json).collect();
+        self.print_json(&self.document("failed", "problems", problems))
+    }
+
+    fn document(&self, outcome: &str, key: &str, value: Value) -> Value {
+        json!({
+            "schema": SCHEMA,
+            "version": env!("CARGO_PKG_VERSION"),
+            "command": self.command,
+            "outcome": outcome,
+            key: value,
+        })
+    }
+
+    fn print_json(&self, document: &Value) -> Result<(), Failure> {
+        to_stdout(|out| {
+            serde_json::to_writer_pretty(&mut *out, document)?;
+            out.write_all(b"\n")
+        })
+    }
+}
+
+fn problem_json(problem: &Problem) -> Value {
+    let place = problem.line_column();
+    json!({
+        "message": problem.message(),
+        "file": problem.path().map(|path| path.display().to_string()),
+        "line": place.map(|(line, _)| line),
+        "column": place.map(|(_, column)| column),
+        "help": problem.helps(),
+    })
+}
+
+/// Writes to standard output, colours only on a terminal; a closed pipe ends quietly.
+pub(super) fn to_stdout(write: impl FnOnce(&mut dyn Write) -> io::Result<()>) -> Result<(), Failure> {
+    let stdout = io::stdout();
+    let mut out = BufWriter::new(AutoStream::auto(stdout.lock()));
+    let result = write(&mut out).and_then(|()| out.flush());
+    // What could not be written is not tried again when the buffer goes.
+    drop(out.into_parts());
+    match result {
+        Err(error) if error.kind() != io::ErrorKind::BrokenPipe => Err(Failure::of_stdout(&error)),
+        _ => Ok(()),
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn document_of_a_failure_holds_its_place_and_help() {
+        let problem = Problem::new("\"12\" has no unit").at("contact.toml", 2, 9).help("write \"12 ms\"");
+        let expected = json!({
+            "message": "\"12\" has no unit", "file": "contact.toml", "line": 2, "column": 9,
+            "help": ["write \"12 ms\""],
+        });
+        assert_eq!(problem_json(&problem), expected);
+        let document =
+            Session::new("choose", GlobalOptions::default()).document("failed", "problems", json!([]));
+        assert_eq!(document["schema"], SCHEMA);
+        assert_eq!(document["command"], "choose");
+        assert_eq!(document["outcome"], "failed");
+    }
+}
