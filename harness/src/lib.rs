@@ -7,5 +7,8 @@ pub mod nearest;
 pub mod problem;
 pub mod prove;
 pub mod quantity;
+pub mod replay;
 pub mod requirement;
+pub mod sample;
 pub mod trace;
+pub mod truth;
