@@ -1,4 +1,7 @@
 //! The workbench: records, characterises, chooses, proves and ships the conditioning of a contact.
 #![forbid(unsafe_code)]
 
+pub mod characterise;
+pub mod envelope;
+pub mod generate;
 pub mod trace;
