@@ -1,7 +1,10 @@
 //! The workbench: records, characterises, chooses, proves and ships the conditioning of a contact.
 #![forbid(unsafe_code)]
 
+pub mod characterise;
 pub mod cli;
+pub mod envelope;
+pub mod generate;
 pub mod law_text;
 pub mod nearest;
 pub mod problem;

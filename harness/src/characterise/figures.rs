@@ -1,0 +1,327 @@
+//! The summary of a recording, and the envelope it supports.
+
+use debounce_core::{Change, PerChange, PerPosition, Position};
+
+use super::operations::{Ambiguity, Disturbance, Doubt, Operation, Segmentation};
+use super::quantile::Spread;
+use crate::envelope::PhysicalEnvelope;
+
+/// What the operations of one kind have in common.
+#[derive(Clone, PartialEq, Eq, Debug)]
+pub struct ChangeFigures {
+    /// Operations recorded whole.
+    pub count: usize,
+    /// How many of them are in doubt.
+    pub ambiguous: usize,
+    /// Bounce duration in nanoseconds, first edge to last, as recorded.
+    pub bounce_ns: Option<Spread>,
+    /// Number of edges.
+    pub edges: Option<Spread>,
+    /// Every bounce duration as recorded, from the shortest to the longest.
+    pub sorted_bounces_ns: Vec<u64>,
+    /// The longest bounce if every doubtful disturbance after a change were a second burst of its bounce.
+    pub longest_bounce_in_doubt_ns: u64,
+}
+
+/// What the disturbances begun in one position have in common.
+#[derive(Clone, PartialEq, Eq, Debug)]
+pub struct DisturbanceFigures {
+    /// Disturbances recorded whole.
+    pub count: usize,
+    /// How many of them are in doubt.
+    pub ambiguous: usize,
+    /// Width in nanoseconds, as recorded.
+    pub width_ns: Option<Spread>,
+    /// The widest part of a bounce that may be a disturbance instead, 0 where there is none.
+    pub widest_in_doubt_ns: u64,
+}
+
+/// How long the contact stayed in one position.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+pub struct DwellFigures {
+    /// Shortest time from the first edge of the change to it to the first edge of the change from it.
+    pub shortest_ns: Option<u64>,
+    /// Shortest time from the end of the bounce to the first edge of the change from it.
+    pub shortest_settled_ns: Option<u64>,
+    /// Shortest run that may have been an operation of its own, where there is one.
+    pub shortest_in_doubt_ns: Option<u64>,
+}
+
+/// The summary of a recording. Times are as recorded; what the recorder could not see is added in
+/// [`envelope`](Self::envelope).
+#[derive(Clone, PartialEq, Eq, Debug)]
+pub struct Figures {
+    /// Makes and breaks.
+    pub changes: PerChange<ChangeFigures>,
+    /// Disturbances by the position in which they began.
+    pub disturbances: PerPosition<DisturbanceFigures>,
+    /// Time between the end of a disturbance and the beginning of the next.
+    pub spacing_ns: Option<Spread>,
+    /// The shortest rest beside a disturbance that the recording supports, doubtful ones included.
+    pub quiet_ns: Option<u64>,
+    /// The shortest time between a bounce and a disturbance after it, doubtful ones included.
+    pub calm_ns: Option<u64>,
+    /// Time in each position.
+    pub dwell: PerPosition<DwellFigures>,
+    /// Bursts cut off by an end of the recording; they count in no other figure.
+    pub fragments: usize,
+    /// The recorder's own sample period: a time read from the recording may be off by that much.
+    pub resolution_ns: u64,
+}
+
+/// What is put on top of the figures, and what is left out.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+pub struct Allowance {
+    /// Added to bounce and disturbance widths, in percent of them.
+    pub above_percent: u32,
+    /// Taken off dwell, quiet and calm, in percent of them, at most 100.
+    pub below_percent: u32,
+    /// Whether a calm is claimed.
+    pub calm: Calm,
+}
+
+/// Whether the envelope says anything about disturbances soon after a bounce.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+pub enum Calm {
+    /// Disturbances know nothing of the contact: the safe default.
+    Unclaimed,
+    /// They kept clear of the bounces in this recording, and that is claimed to go on.
+    AsRecorded,
+}
+
+impl Allowance {
+    /// The figures as they are: an envelope that the recording fills to the brim, and no calm.
+    pub const NONE: Self = Self { above_percent: 0, below_percent: 0, calm: Calm::Unclaimed };
+
+    fn above(&self, ns: u64) -> u64 {
+        scale(ns, 100 + u128::from(self.above_percent), |scaled| scaled.div_ceil(100))
+    }
+
+    fn below(&self, ns: u64) -> u64 {
+        scale(ns, u128::from(100 - self.below_percent.min(100)), |scaled| scaled / 100)
+    }
+}
+
+fn scale(ns: u64, percent: u128, divide: impl Fn(u128) -> u128) -> u64 {
+    u64::try_from(divide(u128::from(ns) * percent)).unwrap_or(u64::MAX)
+}
+
+/// A figure that the recording does not hold.
+#[derive(Clone, Copy, PartialEq, Eq, Debug, thiserror::Error)]
+#[non_exhaustive]
+pub enum MissingFigure {
+    /// No operation of this kind was recorded whole.
+    #[error("the recording holds no whole {}; record at least one, or state the bounce at {}", change_word(*.change), change_word(*.change))]
+    Bounce {
+        /// The kind.
+        change: Change,
+    },
+    /// The contact was never seen to enter this position and leave it again.
+    #[error(
+        "the recording does not show how long the contact stays {}; record an operation there and back, \
+         or state the shortest time {}",
+        position_word(*.position), position_word(*.position)
+    )]
+    Dwell {
+        /// The position.
+        position: Position,
+    },
+}
+
+fn change_word(change: Change) -> &'static str {
+    match change {
+        Change::Make => "make",
+        Change::Break => "break",
+    }
+}
+
+fn position_word(position: Position) -> &'static str {
+    match position {
+        Position::Open => "open",
+        Position::Closed => "closed",
+    }
+}
+
+impl Figures {
+    /// Sums up a segmented recording.
+    #[must_use]
+    pub fn of(segmentation: &Segmentation) -> Self {
+        let change = |change| change_figures(segmentation, change);
+        let position = |position| disturbance_figures(segmentation, position);
+        let dwell = |position| dwell_figures(segmentation, position);
+        let mut spacing: Vec<u64> =
+            segmentation.disturbances.iter().filter_map(|d| d.since_disturbance_ns).collect();
+        Self {
+            changes: PerChange { make: change(Change::Make), break_: change(Change::Break) },
+            disturbances: PerPosition { open: position(Position::Open), closed: position(Position::Closed) },
+            spacing_ns: Spread::of(&mut spacing),
+            quiet_ns: quiet(segmentation),
+            calm_ns: calm(segmentation),
+            dwell: PerPosition { open: dwell(Position::Open), closed: dwell(Position::Closed) },
+            fragments: segmentation.fragments.len(),
+            resolution_ns: segmentation.resolution_ns,
+        }
+    }
+
+    /// The longest bounce that this recording supports: the longest recorded, doubtful tails included, plus
+    /// the recorder's sample period.
+    #[must_use]
+    pub fn longest_bounce_ns(&self, change: Change) -> Option<u64> {
+        let figures = match change {
+            Change::Make => &self.changes.make,
+            Change::Break => &self.changes.break_,
+        };
+        let longest = figures.bounce_ns?.max.max(figures.longest_bounce_in_doubt_ns);
+        Some(longest.saturating_add(self.resolution_ns))
+    }
+
+    /// The widest disturbance begun in a position, parts of bounces that may be one included, plus the
+    /// recorder's sample period; 0 where none was seen, which does not mean that there are none.
+    #[must_use]
+    pub fn widest_glitch_ns(&self, position: Position) -> u64 {
+        let figures = match position {
+            Position::Open => &self.disturbances.open,
+            Position::Closed => &self.disturbances.closed,
+        };
+        match figures.width_ns.map_or(0, |width| width.max).max(figures.widest_in_doubt_ns) {
+            0 => 0,
+            widest => widest.saturating_add(self.resolution_ns),
+        }
+    }
+
+    /// The shortest time in a position, runs that may be operations included, less the recorder's sample period.
+    #[must_use]
+    pub fn shortest_dwell_ns(&self, position: Position) -> Option<u64> {
+        let figures = self.dwell.at(position);
+        let shortest = figures.shortest_ns.into_iter().chain(figures.shortest_in_doubt_ns).min()?;
+        Some(shortest.saturating_sub(self.resolution_ns))
+    }
+
+    /// The envelope that the recording supports, with the stated allowance on the safe side of every figure.
+    ///
+    /// The recording conforms to it; whether operations to come do is what [`tolerance`](super::tolerance)
+    /// speaks about.
+    ///
+    /// # Errors
+    /// When a make, a break, or the time in a position was never recorded whole.
+    pub fn envelope(&self, allowance: &Allowance) -> Result<PhysicalEnvelope, MissingFigure> {
+        let bounce = |change| {
+            let longest = self.longest_bounce_ns(change).ok_or(MissingFigure::Bounce { change })?;
+            Ok(allowance.above(longest))
+        };
+        let dwell = |position| {
+            let shortest = self.shortest_dwell_ns(position).ok_or(MissingFigure::Dwell { position })?;
+            Ok(allowance.below(shortest))
+        };
+        let glitch = |position| allowance.above(self.widest_glitch_ns(position));
+        let seen = |ns: Option<u64>| allowance.below(ns.unwrap_or(0).saturating_sub(self.resolution_ns));
+        Ok(PhysicalEnvelope {
+            bounce_ns: PerChange { make: bounce(Change::Make)?, break_: bounce(Change::Break)? },
+            glitch_ns: PerPosition { open: glitch(Position::Open), closed: glitch(Position::Closed) },
+            quiet_ns: seen(self.quiet_ns),
+            calm_ns: match allowance.calm {
+                Calm::Unclaimed => 0,
+                Calm::AsRecorded => seen(self.calm_ns),
+            },
+            dwell_ns: PerPosition { open: dwell(Position::Open)?, closed: dwell(Position::Closed)? },
+        })
+    }
+}
+
+fn change_figures(segmentation: &Segmentation, change: Change) -> ChangeFigures {
+    let of_kind = || segmentation.operations.iter().filter(|o| o.change == change);
+    let mut bounces: Vec<u64> = of_kind().map(Operation::bounce_ns).collect();
+    let mut edges: Vec<u64> = of_kind().map(|o| o.burst.edges as u64).collect();
+    let doubtful = |d: &&Disturbance| {
+        matches!(d.ambiguity, Some(Ambiguity { doubt: Doubt::SecondBurstOrDisturbance, .. }))
+            && d.position == change.to()
+    };
+    let longest_bounce_in_doubt_ns = segmentation
+        .disturbances
+        .iter()
+        .filter(doubtful)
+        .filter_map(|d| {
+            let before = segmentation.operations.partition_point(|o| o.burst.first_ns < d.burst.first_ns);
+            Some(d.burst.last_ns - segmentation.operations[before.checked_sub(1)?].burst.first_ns)
+        })
+        .max()
+        .unwrap_or(0);
+    ChangeFigures {
+        count: bounces.len(),
+        ambiguous: of_kind().filter(|o| o.ambiguity.is_some()).count(),
+        bounce_ns: Spread::of(&mut bounces),
+        edges: Spread::of(&mut edges),
+        sorted_bounces_ns: bounces,
+        longest_bounce_in_doubt_ns,
+    }
+}
+
+/// A part of a change's burst that may be a disturbance: where it began, from when to when.
+fn disturbance_in_doubt(operation: &Operation) -> Option<(Position, u64, u64)> {
+    let Ambiguity { doubt, at_ns, run_ns } = operation.ambiguity?;
+    let Operation { burst, change, .. } = operation;
+    match doubt {
+        // Only a run inside the burst; one after it belongs to the disturbance there.
+        Doubt::SecondBurstOrDisturbance if at_ns < burst.last_ns => {
+            Some((change.to(), at_ns + run_ns, burst.last_ns))
+        }
+        Doubt::DisturbanceBeforeChange if at_ns >= burst.first_ns && at_ns < burst.last_ns => {
+            Some((change.to().opposite(), burst.first_ns, at_ns))
+        }
+        _ => None,
+    }
+}
+
+fn disturbance_figures(segmentation: &Segmentation, position: Position) -> DisturbanceFigures {
+    let there = || segmentation.disturbances.iter().filter(|d| d.position == position);
+    let mut widths: Vec<u64> = there().map(|d| d.burst.width_ns()).collect();
+    let in_doubt = segmentation.operations.iter().filter_map(disturbance_in_doubt);
+    DisturbanceFigures {
+        count: widths.len(),
+        ambiguous: there().filter(|d| d.ambiguity.is_some()).count(),
+        width_ns: Spread::of(&mut widths),
+        widest_in_doubt_ns: in_doubt.filter(|d| d.0 == position).map(|d| d.2 - d.1).max().unwrap_or(0),
+    }
+}
+
+/// The shortest rest between two disturbances, doubtful ones included. With a single one there is no such rest;
+/// then the shorter of the stretches from it to the ends of the recording is what was seen.
+fn quiet(segmentation: &Segmentation) -> Option<u64> {
+    let mut all: Vec<(u64, u64)> =
+        segmentation.disturbances.iter().map(|d| (d.burst.first_ns, d.burst.last_ns)).collect();
+    all.extend(segmentation.operations.iter().filter_map(disturbance_in_doubt).map(|d| (d.1, d.2)));
+    all.sort_unstable();
+    match all.as_slice() {
+        [] => None,
+        [(first, last)] => Some((first - segmentation.recorded_ns.0).min(segmentation.recorded_ns.1 - last)),
+        several => several.windows(2).map(|pair| pair[1].0 - pair[0].1).min(),
+    }
+}
+
+fn calm(segmentation: &Segmentation) -> Option<u64> {
+    let inside = segmentation.operations.iter().filter_map(|operation| {
+        let Ambiguity { doubt, at_ns, run_ns } = operation.ambiguity?;
+        (doubt == Doubt::SecondBurstOrDisturbance && at_ns < operation.burst.last_ns).then_some(run_ns)
+    });
+    segmentation.disturbances.iter().filter_map(|d| d.since_bounce_ns).chain(inside).min()
+}
+
+fn dwell_figures(segmentation: &Segmentation, position: Position) -> DwellFigures {
+    let pairs = || segmentation.operations.windows(2).filter(|pair| pair[0].change.to() == position);
+    let operations = segmentation.operations.iter().filter_map(|o| {
+        let found = o.ambiguity?;
+        let inside = found.at_ns >= o.burst.first_ns && found.at_ns < o.burst.last_ns;
+        (found.doubt == Doubt::OneOrSeveralOperations && inside).then_some(found.run_ns)
+    });
+    let disturbances = segmentation.disturbances.iter().filter(|d| d.position == position.opposite());
+    let there_and_back = disturbances.filter_map(|d| {
+        let found = d.ambiguity?;
+        (found.doubt == Doubt::DisturbanceOrOperation).then_some(found.run_ns)
+    });
+    DwellFigures {
+        shortest_ns: pairs().map(|pair| pair[1].burst.first_ns - pair[0].burst.first_ns).min(),
+        shortest_settled_ns: pairs().map(|pair| pair[1].burst.first_ns - pair[0].burst.last_ns).min(),
+        // A burst that may be several operations puts both positions in doubt.
+        shortest_in_doubt_ns: operations.chain(there_and_back).min(),
+    }
+}

@@ -1,0 +1,21 @@
+//! What a recording says about a contact: operations, disturbances, and what may be claimed from them.
+//!
+//! [`segment`] turns a trace into makes, breaks and disturbances; [`Figures`] sums them up and turns them into
+//! a [`PhysicalEnvelope`](crate::envelope::PhysicalEnvelope) with stated margins; [`tolerance`] says what n
+//! operations allow to claim.
+
+mod ambiguity;
+mod figures;
+mod gap;
+mod operations;
+mod quantile;
+mod segment;
+pub mod tolerance;
+
+pub use figures::{Allowance, Calm, ChangeFigures, DisturbanceFigures, DwellFigures, Figures, MissingFigure};
+pub use gap::{Gap, GapOrigin};
+pub use operations::{
+    Ambiguity, Burst, Disturbance, Doubt, Extent, Fragment, Operation, RecordingEnd, Segmentation,
+};
+pub use quantile::{Spread, quantile_type_7};
+pub use segment::{SegmentError, SegmentOptions, segment};
