@@ -9,7 +9,9 @@ use crate::machine::{Change, Machine, Position};
 
 /// The parameters of a [`ConstLaw`].
 ///
-/// A parameter that the law refuses does not compile.
+/// A program that uses a law with refused parameters does not build. Being an associated constant, [`LAW`](Self::LAW)
+/// is looked at only where it is used, and not by `cargo check`; `const _: () = { let _ = Door::LAW; };` beside it
+/// refuses at once.
 pub trait Config {
     /// The law.
     type Law: Law;

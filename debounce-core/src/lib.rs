@@ -15,6 +15,7 @@ mod shift_register;
 mod starting;
 mod state_machine;
 mod time;
+mod wiring;
 #[cfg(test)]
 mod words;
 
@@ -31,3 +32,6 @@ pub use shift_register::{ShiftRegister, ShiftRegisterState};
 pub use starting::{Started, Starting, StartingState};
 pub use state_machine::{Phase, StateMachine, StateMachineParameters, StateMachineState};
 pub use time::{Period, TickClock};
+#[cfg(feature = "embedded-hal")]
+pub use wiring::DebouncedPin;
+pub use wiring::Polarity;
