@@ -197,3 +197,51 @@ impl fmt::Display for ParameterError {
 }
 
 impl core::error::Error for ParameterError {}
+
+#[cfg(test)]
+mod tests {
+    extern crate std;
+
+    use std::string::ToString;
+
+    use super::{Parameter, ParameterError};
+
+    #[track_caller]
+    fn says(error: ParameterError, expected: &str) {
+        assert_eq!(error.to_string(), expected);
+        assert!(!error.refusal().ends_with('.'));
+    }
+
+    #[test]
+    fn parameter_error_message_names_both_numbers_that_clash() {
+        says(ParameterError::Zero(Parameter::FullScale), "a full scale of 0 has no two ends; use at least 1");
+        says(
+            ParameterError::StepBeyondFullScale { step: 5, full_scale: 4 },
+            "a step of 5 is longer than the full scale of 4; use at most 4",
+        );
+        says(
+            ParameterError::WindowTooLong { window: 65, most: 64 },
+            "a window of 65 samples does not fit the register; use at most 64",
+        );
+        says(
+            ParameterError::NotAMajority { majority: 2, window: 4 },
+            "2 of 4 samples is not a majority; use at least 3",
+        );
+        says(
+            ParameterError::MajorityBeyondWindow { majority: 6, window: 5 },
+            "6 of 5 samples can never be reached; use at most 5",
+        );
+        says(
+            ParameterError::QuietTooShort { quiet: 3, glitch: 3 },
+            "a quiet of 3 samples is not longer than the widest disturbance of 3; use at least 4",
+        );
+        says(
+            ParameterError::CalmTooShort { calm: 1, glitch: 3 },
+            "a calm of 1 samples is not longer than the widest disturbance of 3; use 0 or at least 4",
+        );
+        says(
+            ParameterError::CountTooNarrow { parameter: Parameter::LockoutMake, ticks: 256, most: 255 },
+            "a lock-out after a make of 256 ticks does not fit the count; the most it holds is 255",
+        );
+    }
+}

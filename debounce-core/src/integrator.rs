@@ -30,6 +30,13 @@ const _: () = assert!(size_of::<IntegratorState<u8>>() == 2);
 const _: () = assert!(size_of::<IntegratorState<u16>>() == 4);
 
 impl<C: Count> IntegratorState<C> {
+    /// Settled at `position`; what [`Law::rest`] returns, for constants.
+    #[must_use]
+    #[inline]
+    pub const fn at_rest(position: Position) -> Self {
+        Self { away: C::ZERO, output: position }
+    }
+
     /// How far the count is from the end at which the present output rests.
     #[must_use]
     pub const fn away(&self) -> C {
@@ -165,11 +172,130 @@ impl<C: Count> Machine for Integrator<C> {
 impl<C: Count> Law for Integrator<C> {
     #[inline]
     fn rest(&self, position: Position) -> Self::State {
-        IntegratorState { away: C::ZERO, output: position }
+        IntegratorState::at_rest(position)
     }
 
     #[inline]
     fn output(&self, state: &Self::State) -> Position {
         state.output
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::Integrator;
+    use crate::words::assert_same;
+    use crate::{Change, Count, Machine, Parameter, ParameterError, Position, Running};
+
+    /// The textbook count: one number from 0 to full scale, cut off at both ends.
+    fn counted(
+        start: Position,
+        full_scale: i32,
+        up: i32,
+        down: i32,
+    ) -> impl FnMut(Position) -> Position + Clone {
+        let mut output = start;
+        let mut count = if start.is_closed() { full_scale } else { 0 };
+        move |sample| {
+            count = if sample.is_closed() { full_scale.min(count + up) } else { 0.max(count - down) };
+            if count == full_scale {
+                output = Position::Closed;
+            } else if count == 0 {
+                output = Position::Open;
+            }
+            output
+        }
+    }
+
+    #[test]
+    fn integrator_every_word_equals_a_plain_count() {
+        for full_scale in 1..=6 {
+            for up in 1..=full_scale {
+                for down in 1..=full_scale {
+                    let model = |start| counted(start, full_scale.into(), up.into(), down.into());
+                    let narrow = Integrator::<u8>::try_with_steps(full_scale, up, down).unwrap();
+                    assert_same(&narrow, 12, model);
+                    let (full_scale, up, down) = (full_scale.into(), up.into(), down.into());
+                    let wide = Integrator::<u16>::try_with_steps(full_scale, up, down).unwrap();
+                    assert_same(&wide, 12, model);
+                }
+            }
+        }
+    }
+
+    /// Makes after `latency` closed samples exactly, and breaks after as many open ones.
+    #[track_caller]
+    fn makes_and_breaks_after<C: Count>(law: Integrator<C>, latency: u32) {
+        let mut running = Running::new(law, Position::Open);
+        for sample in [Position::Closed, Position::Open] {
+            for _ in 1..latency {
+                assert_eq!(running.tick(sample), None);
+            }
+            assert_eq!(running.tick(sample), Some(sample.reached_by()));
+            assert!(running.is_settled());
+        }
+    }
+
+    #[test]
+    fn integrator_clean_change_takes_full_scale_ticks() {
+        makes_and_breaks_after(Integrator::<u8>::new(1), 1);
+        makes_and_breaks_after(Integrator::<u8>::new(2), 2);
+        makes_and_breaks_after(Integrator::<u8>::new(254), 254);
+        makes_and_breaks_after(Integrator::<u8>::new(255), 255);
+        makes_and_breaks_after(Integrator::<u16>::new(256), 256);
+        makes_and_breaks_after(Integrator::<u16>::new(65_535), 65_535);
+    }
+
+    #[test]
+    fn integrator_sum_beyond_the_width_of_the_count_still_switches() {
+        // 2 * 200 and 2 * 40 000 do not fit their widths.
+        makes_and_breaks_after(Integrator::<u8>::with_steps(255, 200, 200), 2);
+        makes_and_breaks_after(Integrator::<u16>::with_steps(65_535, 40_000, 40_000), 2);
+    }
+
+    #[test]
+    fn integrator_close_glitches_add_up() {
+        let mut running = Running::new(Integrator::<u8>::new(3), Position::Open);
+        let line = [1, 1, 0, 1].map(|bit| Position::closed_if(bit == 1));
+        assert_eq!(line.map(|sample| running.tick(sample)), [None; 4]);
+        assert_eq!(running.state().away(), 2);
+        assert_eq!(running.tick(Position::Closed), Some(Change::Make));
+    }
+
+    #[test]
+    fn integrator_any_state_whatever_finds_the_line_again() {
+        let law = Integrator::<u8>::with_steps(9, 2, 3);
+        for away in 0..=u8::MAX {
+            for output in Position::BOTH {
+                for line in Position::BOTH {
+                    let mut state = super::IntegratorState { away, output };
+                    for _ in 0..=u8::MAX {
+                        let _ = law.step(&mut state, line);
+                    }
+                    assert_eq!(state, super::IntegratorState::at_rest(line));
+                }
+            }
+        }
+    }
+
+    #[track_caller]
+    fn answer(full_scale: u8, up: u8, down: u8, expected: Result<(), ParameterError>) {
+        assert_eq!(Integrator::<u8>::try_with_steps(full_scale, up, down).map(|_| ()), expected);
+        let wide = Integrator::<u16>::try_with_steps(full_scale.into(), up.into(), down.into());
+        assert_eq!(wide.map(|_| ()), expected);
+    }
+
+    #[test]
+    fn integrator_parameters_at_their_limits_are_taken_or_refused() {
+        answer(0, 1, 1, Err(ParameterError::Zero(Parameter::FullScale)));
+        answer(1, 1, 1, Ok(()));
+        answer(4, 0, 1, Err(ParameterError::Zero(Parameter::UpStep)));
+        answer(4, 1, 0, Err(ParameterError::Zero(Parameter::DownStep)));
+        answer(4, 4, 4, Ok(()));
+        answer(4, 5, 1, Err(ParameterError::StepBeyondFullScale { step: 5, full_scale: 4 }));
+        answer(4, 1, 5, Err(ParameterError::StepBeyondFullScale { step: 5, full_scale: 4 }));
+        assert_eq!(Integrator::<u8>::try_new(0), Err(ParameterError::Zero(Parameter::FullScale)));
+        let law = Integrator::<u8>::try_new(7).unwrap();
+        assert_eq!((law.full_scale(), law.up(), law.down()), (7, 1, 1));
     }
 }

@@ -1,4 +1,4 @@
-//! Debouncing laws, and the three ways to run one: [`Running`], [`ConstLaw`], [`Starting`].
+//! What a debouncing law is: [`Law`], and when it is settled: [`is_settled`].
 
 use crate::machine::{Change, Machine, Position};
 
@@ -19,6 +19,18 @@ pub trait Law: Machine<Input = Position, Output = Option<Change>> {
 }
 
 impl<L: Law + ?Sized> Law for &L {
+    #[inline]
+    fn rest(&self, position: Position) -> Self::State {
+        (**self).rest(position)
+    }
+
+    #[inline]
+    fn output(&self, state: &Self::State) -> Position {
+        (**self).output(state)
+    }
+}
+
+impl<L: Law + ?Sized> Law for &mut L {
     #[inline]
     fn rest(&self, position: Position) -> Self::State {
         (**self).rest(position)

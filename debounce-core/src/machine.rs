@@ -112,3 +112,14 @@ impl<M: Machine + ?Sized> Machine for &M {
         (**self).step(state, input)
     }
 }
+
+impl<M: Machine + ?Sized> Machine for &mut M {
+    type Input = M::Input;
+    type Output = M::Output;
+    type State = M::State;
+
+    #[inline]
+    fn step(&self, state: &mut Self::State, input: Self::Input) -> Self::Output {
+        (**self).step(state, input)
+    }
+}

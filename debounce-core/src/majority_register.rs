@@ -125,6 +125,15 @@ macro_rules! widths {
 
 widths!(u8, u16, u32);
 
+impl<W: WindowWord> MajorityRegisterState<W> {
+    /// Settled at `position`; what [`Law::rest`] returns, for constants.
+    #[must_use]
+    #[inline]
+    pub const fn at_rest(position: Position) -> Self {
+        Self { contrary: W::NONE, output: position }
+    }
+}
+
 impl<W: WindowWord> MajorityRegister<W> {
     /// The number of samples held.
     #[must_use]
@@ -169,11 +178,132 @@ impl<W: WindowWord> Machine for MajorityRegister<W> {
 impl<W: WindowWord> Law for MajorityRegister<W> {
     #[inline]
     fn rest(&self, position: Position) -> Self::State {
-        MajorityRegisterState { contrary: W::NONE, output: position }
+        MajorityRegisterState::at_rest(position)
     }
 
     #[inline]
     fn output(&self, state: &Self::State) -> Position {
         state.output
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    extern crate std;
+
+    use std::collections::VecDeque;
+
+    use proptest::prelude::*;
+
+    use super::{MajorityRegister, MajorityRegisterState, WindowWord};
+    use crate::words::assert_same;
+    use crate::{Law, Machine, Parameter, ParameterError, Position, ShiftRegister};
+
+    /// The window itself, filled with the start; closed and open samples are counted each by itself.
+    fn windowed(start: Position, majority: u8, window: u8) -> impl FnMut(Position) -> Position + Clone {
+        let mut output = start;
+        let mut held: VecDeque<_> = (0..window).map(|_| start).collect();
+        move |sample| {
+            held.pop_front();
+            held.push_back(sample);
+            for position in Position::BOTH {
+                if held.iter().filter(|&&one| one == position).count() >= majority.into() {
+                    output = position;
+                }
+            }
+            output
+        }
+    }
+
+    #[test]
+    fn majority_register_every_word_equals_a_window() {
+        for window in 1..=8 {
+            for majority in window / 2 + 1..=window {
+                let model = |start| windowed(start, majority, window);
+                assert_same(&MajorityRegister::<u8>::new(majority, window), 12, model);
+                assert_same(&MajorityRegister::<u16>::new(majority, window), 12, model);
+                assert_same(&MajorityRegister::<u32>::new(majority, window), 12, model);
+            }
+        }
+    }
+
+    fn equals_window<W: WindowWord>(law: MajorityRegister<W>, samples: &[bool]) -> Result<(), TestCaseError> {
+        let mut model = windowed(Position::Open, law.majority(), law.window());
+        let mut state = law.rest(Position::Open);
+        for &bit in samples {
+            let sample = Position::closed_if(bit);
+            let _ = law.step(&mut state, sample);
+            prop_assert_eq!(law.output(&state), model(sample));
+        }
+        Ok(())
+    }
+
+    proptest! {
+        #[test]
+        fn majority_register_full_word_equals_a_window(samples in prop::collection::vec(any::<bool>(), 1..400)) {
+            equals_window(MajorityRegister::<u8>::new(5, 8), &samples)?;
+            equals_window(MajorityRegister::<u16>::new(9, 16), &samples)?;
+            equals_window(MajorityRegister::<u32>::new(17, 32), &samples)?;
+        }
+    }
+
+    #[test]
+    fn majority_register_of_all_samples_equals_the_unanimous_one() {
+        for window in 1..=6 {
+            let unanimous = ShiftRegister::new(window);
+            assert_same(&MajorityRegister::<u8>::new(window, window), 13, |start| {
+                let mut state = unanimous.rest(start);
+                move |sample| {
+                    let _ = unanimous.step(&mut state, sample);
+                    unanimous.output(&state)
+                }
+            });
+        }
+    }
+
+    #[test]
+    fn majority_register_any_state_whatever_finds_the_line_again() {
+        let law = MajorityRegister::<u8>::new(3, 5);
+        for contrary in 0..=u8::MAX {
+            for output in Position::BOTH {
+                for line in Position::BOTH {
+                    let mut state = MajorityRegisterState { contrary, output };
+                    for _ in 0..6 {
+                        let _ = law.step(&mut state, line);
+                    }
+                    assert_eq!(state, MajorityRegisterState::at_rest(line), "{contrary:08b} {output:?}");
+                }
+            }
+        }
+    }
+
+    #[track_caller]
+    fn answer(majority: u8, window: u8, expected: Result<(u8, u8), ParameterError>) {
+        let law = MajorityRegister::<u8>::try_new(majority, window);
+        assert_eq!(law.map(|law| (law.majority(), law.window())), expected);
+    }
+
+    #[test]
+    fn majority_register_parameters_at_their_limits_are_taken_or_refused() {
+        answer(1, 0, Err(ParameterError::Zero(Parameter::Window)));
+        answer(0, 1, Err(ParameterError::Zero(Parameter::Majority)));
+        answer(1, 1, Ok((1, 1)));
+        answer(2, 1, Err(ParameterError::MajorityBeyondWindow { majority: 2, window: 1 }));
+        answer(2, 4, Err(ParameterError::NotAMajority { majority: 2, window: 4 }));
+        answer(3, 4, Ok((3, 4)));
+        answer(2, 5, Err(ParameterError::NotAMajority { majority: 2, window: 5 }));
+        answer(3, 5, Ok((3, 5)));
+        answer(8, 8, Ok((8, 8)));
+        answer(9, 9, Err(ParameterError::WindowTooLong { window: 9, most: 8 }));
+        let wide = MajorityRegister::<u32>::new(32, 32);
+        assert_eq!((wide.majority(), wide.window()), (32, 32));
+        assert_eq!(
+            MajorityRegister::<u32>::try_new(17, 33),
+            Err(ParameterError::WindowTooLong { window: 33, most: 32 })
+        );
+        assert_eq!(
+            MajorityRegister::<u16>::try_new(9, 17),
+            Err(ParameterError::WindowTooLong { window: 17, most: 16 })
+        );
     }
 }

@@ -23,6 +23,15 @@ pub struct ShiftRegisterState {
 
 const _: () = assert!(size_of::<ShiftRegisterState>() == 2);
 
+impl ShiftRegisterState {
+    /// Settled at `position`; what [`Law::rest`] returns, for constants.
+    #[must_use]
+    #[inline]
+    pub const fn at_rest(position: Position) -> Self {
+        Self { contrary: 0, output: position }
+    }
+}
+
 impl ShiftRegister {
     /// The longest window.
     pub const LONGEST: u8 = 64;
@@ -96,11 +105,130 @@ impl Machine for ShiftRegister {
 impl Law for ShiftRegister {
     #[inline]
     fn rest(&self, position: Position) -> Self::State {
-        ShiftRegisterState { contrary: 0, output: position }
+        ShiftRegisterState::at_rest(position)
     }
 
     #[inline]
     fn output(&self, state: &Self::State) -> Position {
         state.output
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    extern crate std;
+
+    use std::collections::VecDeque;
+
+    use proptest::prelude::*;
+
+    use super::{ShiftRegister, ShiftRegisterState};
+    use crate::words::assert_same;
+    use crate::{Change, Law, Machine, Parameter, ParameterError, Position, Running};
+
+    /// The window itself, filled with the start.
+    fn windowed(start: Position, window: u8) -> impl FnMut(Position) -> Position + Clone {
+        let mut output = start;
+        let mut held: VecDeque<_> = (0..window).map(|_| start).collect();
+        move |sample| {
+            held.pop_front();
+            held.push_back(sample);
+            if held.iter().all(|&one| one == sample) {
+                output = sample;
+            }
+            output
+        }
+    }
+
+    #[test]
+    fn shift_register_every_word_equals_a_window() {
+        for window in 1..=9 {
+            assert_same(&ShiftRegister::new(window), 13, |start| windowed(start, window));
+        }
+    }
+
+    proptest! {
+        /// Runs of samples, so that a window of 64 fills now and then.
+        #[test]
+        fn shift_register_long_runs_equal_a_64_bit_word(
+            window in 60_u8..=64,
+            runs in prop::collection::vec((any::<bool>(), 1_usize..90), 1..40),
+        ) {
+            let law = ShiftRegister::new(window);
+            let mask = u64::MAX >> (64 - window);
+            let (mut word, mut output, mut state) = (0_u64, Position::Open, law.rest(Position::Open));
+            for (bit, length) in runs {
+                for _ in 0..length {
+                    word = word << 1 | u64::from(bit);
+                    let before = output;
+                    if word & mask == mask {
+                        output = Position::Closed;
+                    } else if word & mask == 0 {
+                        output = Position::Open;
+                    }
+                    let edge = (output != before).then(|| output.reached_by());
+                    prop_assert_eq!(law.step(&mut state, Position::closed_if(bit)), edge);
+                    prop_assert_eq!(law.output(&state), output);
+                }
+            }
+        }
+    }
+
+    /// Source: a thread on a debounce state machine in the newsgroup comp.arch.fpga, window of 3, reset output 1.
+    #[test]
+    fn shift_register_published_vector_gives_the_published_output() {
+        let input = [1, 0, 0, 1, 0, 1, 0, 0, 0, 1, 0, 1, 1, 1];
+        let output = [1, 1, 1, 1, 1, 1, 1, 1, 0, 0, 0, 0, 0, 1];
+        let mut running = Running::new(ShiftRegister::new(3), Position::Closed);
+        let seen = input.map(|bit| {
+            let _ = running.tick(Position::closed_if(bit == 1));
+            u8::from(running.position().is_closed())
+        });
+        assert_eq!(seen, output);
+    }
+
+    #[track_caller]
+    fn pulse(window: u8, length: u8, expected: Option<u8>) {
+        let mut running = Running::new(ShiftRegister::new(window), Position::Open);
+        let made = (1..=length).find(|_| running.tick(Position::Closed) == Some(Change::Make));
+        assert_eq!(made, expected);
+        let broken = expected.map(|_| Change::Break);
+        let after = (0..window).filter_map(|_| running.tick(Position::Open)).last();
+        assert_eq!(after, broken);
+    }
+
+    #[test]
+    fn shift_register_pulse_of_the_window_makes_and_one_less_does_not() {
+        pulse(1, 1, Some(1));
+        pulse(3, 2, None);
+        pulse(3, 3, Some(3));
+        pulse(3, 4, Some(3));
+        pulse(64, 63, None);
+        pulse(64, 64, Some(64));
+    }
+
+    #[test]
+    fn shift_register_any_state_whatever_finds_the_line_again() {
+        let law = ShiftRegister::new(5);
+        for contrary in 0..=u8::MAX {
+            for output in Position::BOTH {
+                for line in Position::BOTH {
+                    let mut state = ShiftRegisterState { contrary, output };
+                    for _ in 0..5 {
+                        let _ = law.step(&mut state, line);
+                    }
+                    assert_eq!(state, ShiftRegisterState::at_rest(line));
+                }
+            }
+        }
+    }
+
+    #[test]
+    fn shift_register_window_at_its_limits_is_taken_or_refused() {
+        assert_eq!(ShiftRegister::try_new(0), Err(ParameterError::Zero(Parameter::Window)));
+        assert_eq!(ShiftRegister::try_new(1).unwrap().window(), 1);
+        assert_eq!(ShiftRegister::try_new(64).unwrap().window(), 64);
+        assert_eq!(ShiftRegister::try_new(65), Err(ParameterError::WindowTooLong { window: 65, most: 64 }));
+        assert_eq!(ShiftRegister::try_new(255), Err(ParameterError::WindowTooLong { window: 255, most: 64 }));
     }
 }

@@ -81,6 +81,13 @@ pub enum Phase {
 }
 
 impl<C: Count> StateMachineState<C> {
+    /// Settled at `position`; what [`Law::rest`] returns, for constants.
+    #[must_use]
+    #[inline]
+    pub const fn at_rest(position: Position) -> Self {
+        Self { output: position, seen: C::ZERO, agree: C::ZERO }
+    }
+
     /// Which of the four states this is; the lock-out belongs to open or closed.
     #[must_use]
     pub fn phase(&self) -> Phase {
@@ -272,7 +279,7 @@ impl<C: Count> Machine for StateMachine<C> {
 impl<C: Count> Law for StateMachine<C> {
     #[inline]
     fn rest(&self, position: Position) -> Self::State {
-        StateMachineState { output: position, seen: C::ZERO, agree: C::ZERO }
+        StateMachineState::at_rest(position)
     }
 
     #[inline]
@@ -280,3 +287,6 @@ impl<C: Count> Law for StateMachine<C> {
         state.output
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -1,7 +1,15 @@
 //! From time to samples and back, in one place, always rounding toward the safe side.
 
 /// The time between two ticks, held exactly: a rate of 30 Hz is a period of 1/30 s, not of 33 333 us.
-#[derive(Clone, Copy, Debug)]
+///
+/// # Examples
+/// ```
+/// use debounce_core::Period;
+/// assert_eq!(Period::from_hz(1_000), Period::from_ms(1));
+/// assert_eq!(Period::try_from_ratio(100_000_000, 3), Some(Period::from_hz(30)));
+/// ```
+// Always in lowest terms, so that equal periods are equal field by field.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
 #[cfg_attr(feature = "defmt", derive(defmt::Format))]
 pub struct Period {
     numerator_ns: u64,
@@ -79,15 +87,6 @@ impl Period {
     }
 }
 
-impl PartialEq for Period {
-    fn eq(&self, other: &Self) -> bool {
-        // Both are in lowest terms.
-        self.numerator_ns == other.numerator_ns && self.denominator == other.denominator
-    }
-}
-
-impl Eq for Period {}
-
 const fn gcd(mut a: u64, mut b: u64) -> u64 {
     while b != 0 {
         (a, b) = (b, a % b);
@@ -100,12 +99,39 @@ const MILLION: u128 = 1_000_000;
 /// A sample clock as far as rounding is concerned: its period, how far that may be off, how far a sample
 /// instant may wander, and how many ticks in a row may be lost.
 ///
-/// With Tmin and Tmax the shortest and longest period, and J the peak-to-peak jitter:
+/// # Method
+/// Derived here. With Tmin and Tmax the shortest and longest period and J the peak-to-peak jitter, the k-th sample
+/// is taken between `t_k` and `t_k + J`, where the `t_k` follow each other by Tmin to Tmax.
 ///
-/// * a disturbance or bounce of time t touches at most `ceil((t + J) / Tmin)` samples;
-/// * a dwell, quiet or calm of time t is seen by at least `floor((t - J) / Tmax) - lost` samples;
-/// * a latency of k samples is a delay in `[(k - 1) * Tmin - J, (k + lost) * Tmax + J)`.
-#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+/// * A disturbance or bounce of time t touches at most `ceil((t + J) / Tmin)` samples: its `t_k` lie in a half-open
+///   interval of length t + J, at least Tmin apart.
+/// * A dwell, quiet or calm of time t is seen by at least `floor((t - J) / Tmax) - lost` samples: every `t_k` in a
+///   half-open interval of length t - J is inside it for certain, and they are at most Tmax apart.
+/// * A latency of k samples is a delay in `[(k - 1) * Tmin - J, (k + lost) * Tmax + J)`: the change may fall just
+///   before its first sample or just after the sample before that one.
+///
+/// Put what a recorder adds to a measured time (its own sample period) into J.
+///
+/// # Units
+/// Times in nanoseconds, tolerance in parts per million, everything else in ticks. Periods are exact fractions.
+///
+/// # Bounds
+/// Each of the three is attained up to the open end; proofs: the tests of this module, against samples taken one by
+/// one in exact arithmetic. They hold for J shorter than Tmin, where samples keep their order, and while no stretch
+/// that is asked about holds more than one run of lost ticks. Results that do not fit stop at the largest number.
+///
+/// # Panics
+/// Only [`tolerance_ppm`](Self::tolerance_ppm), and the constructors of [`Period`].
+///
+/// # Examples
+/// ```
+/// use debounce_core::{Period, TickClock};
+/// const CLOCK: TickClock = TickClock::new(Period::from_ms(1)).tolerance_ppm(20_000).jitter_ns(50_000);
+/// assert_eq!(CLOCK.samples_touched(5_000_000), 6); // 5.05 ms in periods of 0.98 ms, rounded up
+/// assert_eq!(CLOCK.samples_seen(5_000_000), 4); // 4.95 ms in periods of 1.02 ms, rounded down
+/// assert_eq!(CLOCK.delay_ns(4), (2_890_000, 4_130_000));
+/// ```
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
 #[cfg_attr(feature = "defmt", derive(defmt::Format))]
 pub struct TickClock {
     period: Period,
@@ -126,10 +152,21 @@ impl TickClock {
     /// # Panics
     /// At 1 000 000 (100 %) or more; in a constant that is an error at compile time.
     #[must_use]
-    pub const fn tolerance_ppm(mut self, ppm: u32) -> Self {
-        assert!(ppm < 1_000_000, "a clock tolerance must be less than 1 000 000 ppm (100 %)");
+    pub const fn tolerance_ppm(self, ppm: u32) -> Self {
+        match self.try_tolerance_ppm(ppm) {
+            Some(clock) => clock,
+            None => panic!("a clock tolerance must be less than 1 000 000 ppm (100 %)"),
+        }
+    }
+
+    /// [`tolerance_ppm`](Self::tolerance_ppm) for a value known at run time: `None` at 1 000 000 or more.
+    #[must_use]
+    pub const fn try_tolerance_ppm(mut self, ppm: u32) -> Option<Self> {
+        if ppm >= 1_000_000 {
+            return None;
+        }
         self.tolerance_ppm = ppm;
-        self
+        Some(self)
     }
 
     /// Sets the peak-to-peak jitter of a sample instant plus the sampling aperture.
@@ -180,14 +217,14 @@ impl TickClock {
         }
         // (t + J) / (n/d * (1 - ppm/1e6)) with every factor an integer.
         let above = (time_ns as u128 + self.jitter_ns as u128) * self.period.denominator as u128 * MILLION;
-        saturate(above.div_ceil(self.shortest()))
+        saturate(rounded_up(above, self.shortest()))
     }
 
     /// Fewest samples that see a dwell, quiet or calm of `time_ns`.
     #[must_use]
     pub const fn samples_seen(&self, time_ns: u64) -> u32 {
         let time = time_ns.saturating_sub(self.jitter_ns) as u128;
-        let seen = time * self.period.denominator as u128 * MILLION / self.longest();
+        let seen = rounded_down(time * self.period.denominator as u128 * MILLION, self.longest());
         saturate(seen).saturating_sub(self.lost)
     }
 
@@ -195,8 +232,8 @@ impl TickClock {
     #[must_use]
     pub const fn delay_ns(&self, samples: u32) -> (u64, u64) {
         let unit = self.period.denominator as u128 * MILLION;
-        let least = samples.saturating_sub(1) as u128 * self.shortest() / unit;
-        let below = ((samples as u128 + self.lost as u128) * self.longest()).div_ceil(unit);
+        let least = rounded_down(samples.saturating_sub(1) as u128 * self.shortest(), unit);
+        let below = rounded_up((samples as u128 + self.lost as u128) * self.longest(), unit);
         (saturate_ns(least).saturating_sub(self.jitter_ns), saturate_ns(below).saturating_add(self.jitter_ns))
     }
 
@@ -211,6 +248,20 @@ impl TickClock {
     }
 }
 
+// The widest product here is of 118 bits: 33 of ticks, 64 of the numerator and 21 of a million and the tolerance.
+// No divisor is ever 0, but the compiler cannot know that; asking it this way links no panic.
+
+const fn rounded_down(a: u128, b: u128) -> u128 {
+    match a.checked_div(b) {
+        Some(quotient) => quotient,
+        None => u128::MAX,
+    }
+}
+
+const fn rounded_up(a: u128, b: u128) -> u128 {
+    rounded_down(a + (b - 1), b)
+}
+
 const fn saturate(samples: u128) -> u32 {
     if samples > u32::MAX as u128 { u32::MAX } else { samples as u32 }
 }
@@ -218,3 +269,6 @@ const fn saturate(samples: u128) -> u32 {
 const fn saturate_ns(ns: u128) -> u64 {
     if ns > u64::MAX as u128 { u64::MAX } else { ns as u64 }
 }
+
+#[cfg(test)]
+mod tests;

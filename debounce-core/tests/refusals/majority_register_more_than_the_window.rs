@@ -1,0 +1,3 @@
+use debounce_core::MajorityRegister;
+
+pub const LAW: MajorityRegister = MajorityRegister::<u8>::new(6, 5);

@@ -1,0 +1,3 @@
+use debounce_core::Period;
+
+pub const TICK: Period = Period::from_hz(0);

@@ -1,0 +1,3 @@
+use debounce_core::ShiftRegister;
+
+pub const LAW: ShiftRegister = ShiftRegister::new(65);
