@@ -2,10 +2,12 @@
 #![forbid(unsafe_code)]
 
 pub mod characterise;
+pub mod choose;
 pub mod cli;
 pub mod envelope;
 pub mod generate;
 pub mod law_text;
+pub mod logic;
 pub mod nearest;
 pub mod problem;
 pub mod prove;
