@@ -8,6 +8,43 @@ use crate::law::Law;
 use crate::machine::{Change, Machine, Position};
 
 /// Settles a contact by counting samples: up on closed, down on open, switching only at 0 and at full scale.
+///
+/// # Method
+/// Saturating up/down count whose two ends are the two thresholds; common practice. Steps of different size up and
+/// down make the two changes differ. Held as the distance from the end that belongs to the output, which is proved
+/// equal to the plain count by `integrator_every_word_equals_a_plain_count`.
+///
+/// # Units
+/// One step takes one sample and is one tick. Full scale and steps are in units of the count; with steps of 1 they
+/// are ticks.
+///
+/// # Bounds
+/// From a settled start, counting the first sample of the new position as 1:
+///
+/// | quantity                          | value, in ticks                         | proof                                           |
+/// |-----------------------------------|-----------------------------------------|-------------------------------------------------|
+/// | latency of a clean make           | exactly full scale / up, rounded up     | `integrator_clean_change_takes_full_scale_ticks` |
+/// | latency of a clean break          | exactly full scale / down, rounded up   | the same                                        |
+/// | longest lone disturbance rejected | one less than that latency              | the same                                        |
+///
+/// Not promised: disturbances that follow each other closely add up. With full scale 3, closed, closed, open,
+/// closed, closed makes at tick 5.
+///
+/// # State
+/// [`IntegratorState`]: 2 bytes for `u8`, 4 for `u16`, held by assertions beside it.
+///
+/// # Panics
+/// Never in a step. Of the constructors, [`new`](Self::new) and [`with_steps`](Self::with_steps) do, which are meant
+/// for constants: there a bad value does not compile.
+///
+/// # Examples
+/// ```
+/// use debounce_core::{Change, Integrator, Position::{Closed, Open}, Running};
+/// const LAW: Integrator = Integrator::<u8>::new(3);
+/// let mut key = Running::new(LAW, Open);
+/// assert_eq!([Closed, Closed, Open, Closed].map(|sample| key.tick(sample)), [None; 4]);
+/// assert_eq!(key.tick(Closed), Some(Change::Make));
+/// ```
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
 #[cfg_attr(feature = "defmt", derive(defmt::Format))]
 pub struct Integrator<C = u8> {
@@ -244,6 +281,17 @@ mod tests {
         makes_and_breaks_after(Integrator::<u8>::new(255), 255);
         makes_and_breaks_after(Integrator::<u16>::new(256), 256);
         makes_and_breaks_after(Integrator::<u16>::new(65_535), 65_535);
+    }
+
+    #[test]
+    fn integrator_steps_that_do_not_divide_full_scale_round_up() {
+        makes_and_breaks_after(Integrator::<u8>::with_steps(7, 2, 2), 4);
+        makes_and_breaks_after(Integrator::<u8>::with_steps(8, 2, 2), 4);
+        makes_and_breaks_after(Integrator::<u8>::with_steps(9, 2, 2), 5);
+        let mut running = Running::new(Integrator::<u8>::with_steps(7, 3, 2), Position::Open);
+        let line = [1, 1, 1, 0, 0, 0, 0].map(|bit| Position::closed_if(bit == 1));
+        let (make, break_) = (Some(Change::Make), Some(Change::Break));
+        assert_eq!(line.map(|sample| running.tick(sample)), [None, None, make, None, None, None, break_]);
     }
 
     #[test]

@@ -1,4 +1,81 @@
-//! Debouncing laws for mechanical contacts.
+//! Debouncing laws for mechanical contacts: small, pure, provable.
+//!
+//! # The model
+//!
+//! A contact is [open or closed](Position); its [changes](Change) are the make and the break. Once a *tick* the line is
+//! read into a *sample*, the position that the contact looks to be in. A *law* takes one sample a tick and reports an
+//! edge when it is sure of a change:
+//!
+//! ```text
+//!  line ──[Polarity]──> sample ──[Law::step]──> Option<Change>
+//!                                  │    ▲
+//!                                  └state┘
+//! ```
+//!
+//! * A law is a [`Machine`]: its step depends on the law, the state and the sample, and on nothing else. No clock is
+//!   read, nothing is global. So the type that runs in an interrupt handler is the type that is explored exhaustively.
+//! * Law and state are apart. One law in flash serves any number of inputs; each costs only its state in RAM.
+//!   [`Running`] holds both for the common case of one input, and a [`ConstLaw`] takes no room at all.
+//! * Times are turned into ticks once, by a [`TickClock`], and always toward the safe side.
+//! * An [`Envelope`] is the set of waveforms that a claim is made for, in ticks. Its [`limit`](Envelope::limit) is the
+//!   least worst-case latency that any logic whatever can have there.
+//! * A law that is [settled](is_settled) at the position of the line stays as it is: the tick may stop, the processor
+//!   sleep.
+//! * At power-up nothing is known; [`Starting`] finds the position without reporting an operation that nobody made.
+//!
+//! # The laws
+//!
+//! | law                  | changes its output when                                     | state, bytes |
+//! |----------------------|-------------------------------------------------------------|--------------|
+//! | [`Integrator`]       | an up/down count reaches its other end                      | 2 or 4       |
+//! | [`ShiftRegister`]    | all of the last n samples read the other position           | 2            |
+//! | [`MajorityRegister`] | m of the last n samples read the other position             | 2, 4 or 8    |
+//! | [`StateMachine`]     | enough contrary samples came in before enough agreeing ones | 3 or 6       |
+//!
+//! Where nothing else decides, take [`StateMachine::for_envelope`](StateMachine::<u8>::for_envelope).
+//!
+//! # Examples
+//! A door contact, sampled every millisecond, that bounces for up to 4 ms and picks up disturbances of up to 1.5 ms:
+//! ```
+//! use debounce_core::{Change, Config, ConstLaw, Envelope, Period, Position, Running, StateMachine, TickClock};
+//!
+//! const CLOCK: TickClock = TickClock::new(Period::from_ms(1)).tolerance_ppm(20_000);
+//! const BOUNCE: u32 = CLOCK.samples_touched(4_000_000);
+//! const GLITCH: u32 = CLOCK.samples_touched(1_500_000);
+//! const DWELL: u32 = CLOCK.samples_seen(50_000_000);
+//! const QUIET: u32 = CLOCK.samples_seen(10_000_000);
+//! const ENVELOPE: Envelope =
+//!     Envelope::clean(DWELL, DWELL).bounce(BOUNCE, BOUNCE).glitch(GLITCH, GLITCH).quiet(QUIET);
+//!
+//! struct Door;
+//! impl Config for Door {
+//!     type Law = StateMachine;
+//!     const LAW: StateMachine = match StateMachine::<u8>::for_envelope(&ENVELOPE) {
+//!         Ok(law) => law,
+//!         Err(_) => panic!("the door's envelope has no closed form"),
+//!     };
+//! }
+//!
+//! let mut door = Running::new(ConstLaw::<Door>::new(), Position::Open);
+//! let made = (1..).find(|_| door.tick(Position::Closed) == Some(Change::Make));
+//! assert_eq!(made, Some(3)); // a clean make is reported at the third sample
+//! ```
+//!
+//! # Parameters
+//! The `new` of a law is for constants: a bad one does not compile, and the compiler says why. `try_new` is for values
+//! known at run time and links no panic.
+//!
+//! # Features
+//! None is on by default; with none of them the crate has no dependencies.
+//!
+//! | feature        | adds                                             |
+//! |----------------|--------------------------------------------------|
+//! | `defmt`        | `defmt::Format` for the public types             |
+//! | `embedded-hal` | `DebouncedPin`, a debounced `InputPin` of embedded-hal 1.0 |
+//!
+//! # Caution
+//! Debouncing makes no input safe. Where a contact guards people or property (interlocks, limit switches of powered
+//! machines, emergency stops, doors), use parts certified for it, assessed by qualified people under the local code.
 #![no_std]
 #![forbid(unsafe_code)]
 

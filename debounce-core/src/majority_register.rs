@@ -35,6 +35,40 @@ pub trait WindowWord: sealed::Sealed + Copy + Eq + Hash + Debug + Send + Sync + 
 }
 
 /// Settles a contact by its last `window` samples: the output changes when a majority reads the other position.
+///
+/// # Method
+/// m-of-n window; common practice. It makes when at least `majority` of the last `window` samples are closed,
+/// breaks when at least as many are open, and otherwise keeps its output.
+///
+/// # Units
+/// One step takes one sample and is one tick. Window and majority are in samples.
+///
+/// # Bounds
+/// From a settled start, counting the first sample of the new position as 1:
+///
+/// | quantity                          | value, in ticks      | proof                                                        |
+/// |-----------------------------------|----------------------|--------------------------------------------------------------|
+/// | latency of a clean make or break  | exactly the majority | `majority_register_pulse_of_the_majority_makes_and_one_less_does_not` |
+/// | longest lone disturbance rejected | the majority less 1  | the same                                                     |
+///
+/// Not promised: disturbances within one window add up. With 3 of 5, closed, open, closed, open, closed makes at
+/// tick 5.
+///
+/// # State
+/// [`MajorityRegisterState`]: 2, 4 or 8 bytes for windows in `u8`, `u16` and `u32`, held by assertions beside it.
+///
+/// # Panics
+/// Never in a step. Of the constructors, [`new`](Self::new) does, which is meant for constants: there a bad value
+/// does not compile.
+///
+/// # Examples
+/// ```
+/// use debounce_core::{Change, MajorityRegister, Position::{Closed, Open}, Running};
+/// const LAW: MajorityRegister = MajorityRegister::<u8>::new(3, 5);
+/// let mut key = Running::new(LAW, Open);
+/// assert_eq!([Closed, Open, Closed, Open].map(|sample| key.tick(sample)), [None; 4]);
+/// assert_eq!(key.tick(Closed), Some(Change::Make));
+/// ```
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
 #[cfg_attr(feature = "defmt", derive(defmt::Format))]
 pub struct MajorityRegister<W = u8> {
@@ -197,7 +231,7 @@ mod tests {
 
     use super::{MajorityRegister, MajorityRegisterState, WindowWord};
     use crate::words::assert_same;
-    use crate::{Law, Machine, Parameter, ParameterError, Position, ShiftRegister};
+    use crate::{Change, Law, Machine, Parameter, ParameterError, Position, Running, ShiftRegister};
 
     /// The window itself, filled with the start; closed and open samples are counted each by itself.
     fn windowed(start: Position, majority: u8, window: u8) -> impl FnMut(Position) -> Position + Clone {
@@ -274,6 +308,23 @@ mod tests {
                     assert_eq!(state, MajorityRegisterState::at_rest(line), "{contrary:08b} {output:?}");
                 }
             }
+        }
+    }
+
+    #[track_caller]
+    fn pulse(law: MajorityRegister, length: u8, expected: Option<u8>) {
+        let mut running = Running::new(law, Position::Open);
+        let made = (1..=length).find(|_| running.tick(Position::Closed) == Some(Change::Make));
+        assert_eq!(made, expected);
+    }
+
+    #[test]
+    fn majority_register_pulse_of_the_majority_makes_and_one_less_does_not() {
+        for (majority, window) in [(1, 1), (2, 3), (3, 5), (5, 8), (8, 8)] {
+            let law = MajorityRegister::<u8>::new(majority, window);
+            pulse(law, majority - 1, None);
+            pulse(law, majority, Some(majority));
+            pulse(law, majority + 1, Some(majority));
         }
     }
 

@@ -7,6 +7,42 @@ use crate::law::Law;
 use crate::machine::{Change, Machine, Position};
 
 /// Settles a contact by its last `window` samples: the output changes when they all read the other position.
+///
+/// # Method
+/// Unanimous window of the last samples. Source: a thread on a debounce state machine in the newsgroup
+/// comp.arch.fpga, whose vector of inputs and outputs is a test here. Differs from the source in holding no window:
+/// how many samples in a row have read otherwise is all that matters of it, which is proved by
+/// `shift_register_every_word_equals_a_window` and, for 64 samples, by
+/// `shift_register_long_runs_equal_a_64_bit_word`.
+///
+/// # Units
+/// One step takes one sample and is one tick. The window is in samples.
+///
+/// # Bounds
+/// From a settled start, counting the first sample of the new position as 1:
+///
+/// | quantity                          | value, in ticks    | proof                                                         |
+/// |-----------------------------------|--------------------|---------------------------------------------------------------|
+/// | latency of a clean make or break  | exactly the window | `shift_register_pulse_of_the_window_makes_and_one_less_does_not` |
+/// | longest lone disturbance rejected | the window less 1  | the same                                                      |
+///
+/// Not promised: a line that reads the old position at least once in every window is never followed.
+///
+/// # State
+/// [`ShiftRegisterState`]: 2 bytes, held by an assertion beside it.
+///
+/// # Panics
+/// Never in a step. Of the constructors, [`new`](Self::new) does, which is meant for constants: there a bad value
+/// does not compile.
+///
+/// # Examples
+/// ```
+/// use debounce_core::{Change, Position::{Closed, Open}, Running, ShiftRegister};
+/// const LAW: ShiftRegister = ShiftRegister::new(3);
+/// let mut key = Running::new(LAW, Open);
+/// assert_eq!([Closed, Closed, Open, Closed, Closed].map(|sample| key.tick(sample)), [None; 5]);
+/// assert_eq!(key.tick(Closed), Some(Change::Make));
+/// ```
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
 #[cfg_attr(feature = "defmt", derive(defmt::Format))]
 pub struct ShiftRegister {

@@ -45,7 +45,53 @@ impl<C: Count> StateMachineParameters<C> {
     }
 }
 
-/// Settles a contact by four states: open, closing, closed, opening; with confirm, patience and lock-out.
+/// Settles a contact by four states, open, closing, closed and opening, with confirm, patience and lock-out ticks.
+///
+/// # Method
+/// Each change has a waiting state. Source: Virginia Tech embedded systems course, "Debouncing alternative" (the
+/// four states; and, beside them, a wait without looking, the lock-out here). Differs from the source in counting:
+///
+/// * *confirm*: a contrary sample begins a count, and this many of them report the change;
+/// * *patience*, derived here: only this many agreeing samples *in a row* clear a count that has begun. Patience 1 is
+///   the textbook machine, which begins anew after every one;
+/// * *lock-out*: so many ticks after a report are not looked at.
+///
+/// Proved equal to a look back over all samples by `state_machine_every_word_equals_looking_back`.
+///
+/// # Units
+/// One step takes one sample and is one tick. All parameters are in ticks.
+///
+/// # Bounds
+/// From a settled start, counting the first sample of the new position as 1:
+///
+/// | quantity                          | value, in ticks       | proof                                                   |
+/// |-----------------------------------|-----------------------|---------------------------------------------------------|
+/// | latency of a clean change         | exactly its confirm   | `state_machine_counts_at_the_end_of_their_width_still_serve` |
+/// | longest lone disturbance rejected | its confirm less 1    | the same                                                |
+/// | ticks not looked at after it      | exactly its lock-out  | the same                                                |
+///
+/// Not promised: disturbances with fewer agreeing samples between them than the patience add up.
+/// [`for_envelope`](Self::for_envelope) chooses the parameters so that they do not.
+///
+/// # State
+/// [`StateMachineState`]: 3 bytes for `u8`, 6 for `u16`, held by assertions beside it.
+///
+/// # Panics
+/// Never in a step. Of the constructors, [`new`](Self::new) does, which is meant for constants: there a bad value
+/// does not compile.
+///
+/// # Examples
+/// ```
+/// use debounce_core::{Change, Position::{Closed, Open}, Running, StateMachine, StateMachineParameters};
+/// const LAW: StateMachine =
+///     StateMachine::<u8>::new(StateMachineParameters::confirm(2, 2).patience(2, 2).lockout(1, 0));
+/// let mut key = Running::new(LAW, Open);
+/// assert_eq!(key.tick(Closed), None);
+/// assert_eq!(key.tick(Open), None); // one agreeing sample is not enough to forget
+/// assert_eq!(key.tick(Closed), Some(Change::Make));
+/// assert_eq!(key.tick(Open), None); // locked out
+/// assert!(key.is_settled());
+/// ```
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
 #[cfg_attr(feature = "defmt", derive(defmt::Format))]
 pub struct StateMachine<C = u8> {
