@@ -160,25 +160,25 @@ impl Envelope {
         if e.quiet <= widest {
             return None;
         }
-        let (make, break_) = if e.calm == 0 {
-            (
-                max(e.bounce.make + closed, open.saturating_sub(1)) + open + 1,
-                max(e.bounce.break_ + open, closed.saturating_sub(1)) + closed + 1,
-            )
-        } else if e.calm > widest {
-            (
-                max(e.bounce.make, open.saturating_sub(1)) + open + 1,
-                max(e.bounce.break_, closed.saturating_sub(1)) + closed + 1,
-            )
-        } else {
-            return None;
+        // With enough calm no disturbance can follow the bounce closely.
+        let (after_make, after_break) = match e.calm {
+            0 => (closed, open),
+            calm if calm > widest => (0, 0),
+            _ => return None,
         };
+        let make = least_latency(e.bounce.make, after_make, open);
+        let break_ = least_latency(e.bounce.break_, after_break, closed);
         Some(PerChange { make, break_ })
     }
 }
 
-const fn max(a: u32, b: u32) -> u32 {
-    if a > b { a } else { b }
+/// The limit for one change: the bounce with a disturbance behind it, or one that straddles the change, then
+/// one sample more than the widest disturbance of the old position.
+const fn least_latency(bounce: u32, following: u32, before: u32) -> u32 {
+    let silent = bounce.saturating_add(following);
+    let straddling = before.saturating_sub(1);
+    let hidden = if silent > straddling { silent } else { straddling };
+    hidden.saturating_add(before).saturating_add(1)
 }
 
 /// Best and worst latency, in samples: reporting on the first sample that could see the new position is 1.
