@@ -2,6 +2,7 @@
 #![forbid(unsafe_code)]
 
 pub mod characterise;
+pub mod conformance;
 pub mod envelope;
 pub mod generate;
 pub mod trace;

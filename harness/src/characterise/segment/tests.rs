@@ -311,7 +311,7 @@ fn segment_synthetic_disturbances_after_bounce_are_marked_or_exact() {
     let mut tally = Tally::default();
     for contact in contacts() {
         for noise in noises().into_iter().flatten() {
-            for seed in 9100..9112 {
+            for seed in 9200..9212 {
                 let scenario =
                     Scenario { after_bounce_permille: 250, ..scenario(seed, contact, Some(noise)) };
                 tally.add(&scenario.generate().unwrap());
@@ -323,5 +323,11 @@ fn segment_synthetic_disturbances_after_bounce_are_marked_or_exact() {
     assert!(tally.wrong * 1000 <= tally.exact, "{tally:?}");
 }
 
-const PINNED_AFTER_BOUNCE: Tally =
-    Tally { operations: 0, exact: 0, ambiguous: 0, wrong: 0, disturbances: 0, disturbances_exact: 0 };
+const PINNED_AFTER_BOUNCE: Tally = Tally {
+    operations: 8640,
+    exact: 6562,
+    ambiguous: 2078,
+    wrong: 0,
+    disturbances: 6742,
+    disturbances_exact: 4803,
+};
