@@ -3,6 +3,7 @@
 
 pub mod characterise;
 pub mod conformance;
+pub mod demo;
 pub mod envelope;
 pub mod generate;
 pub mod trace;

@@ -74,9 +74,9 @@ pub(super) type Burden = [u64; 6];
 
 /// The rules of an envelope, ready for use.
 pub(super) struct Rules<'a> {
-    pub(super) envelope: &'a PhysicalEnvelope,
+    envelope: &'a PhysicalEnvelope,
     /// A run longer than this is longer than every clause: it binds everything before it off.
-    pub(super) reach_ns: u64,
+    reach_ns: u64,
     narrower_glitch: u64,
 }
 
@@ -100,6 +100,12 @@ impl<'a> Rules<'a> {
         }
     }
 
+    /// Whether the run is longer than every clause, so that nothing before it matters after it.
+    pub(super) fn is_long(&self, stretch: &Stretch) -> bool {
+        stretch.until - stretch.from > self.reach_ns
+    }
+
+    /// The clocks of a contact that has been settled for long.
     pub(super) fn start(position: Position) -> Clocks {
         Clocks {
             contact: position,
@@ -117,7 +123,7 @@ impl<'a> Rules<'a> {
         if away == (role == Role::Return) {
             return None;
         }
-        let long = stretch.until - stretch.from > self.reach_ns;
+        let long = self.is_long(stretch);
         let mut violations = [None; 3];
         let mut outside_ns = 0;
         match role {
@@ -126,7 +132,8 @@ impl<'a> Rules<'a> {
                 if let Some(changed) = clocks.change_at {
                     let allowed = self.envelope.dwell_ns.at(clocks.contact);
                     let clause = BrokenClause::DwellTooShort(clocks.contact);
-                    violations[0] = short(clause, changed, stretch.from - changed, allowed, &mut outside_ns);
+                    violations[0] =
+                        too_short(clause, changed, stretch.from - changed, allowed, &mut outside_ns);
                 }
                 clocks.contact = stretch.line;
                 clocks.change_at = Some(stretch.from);
@@ -141,7 +148,7 @@ impl<'a> Rules<'a> {
                 let over = |end: u64| (end - changed).saturating_sub(allowed);
                 outside_ns += over(stretch.until) - over(clocks.bounce_end);
                 violations[0] =
-                    long_(BrokenClause::BounceTooLong(change), changed, stretch.until - changed, allowed);
+                    too_long(BrokenClause::BounceTooLong(change), changed, stretch.until - changed, allowed);
                 clocks.bounce_end = stretch.until;
             }
             Role::Disturbed => {
@@ -156,12 +163,12 @@ impl<'a> Rules<'a> {
                 let at = stretch.from;
                 if let Some(last) = clocks.window {
                     let (clause, allowed) = (BrokenClause::QuietTooShort, self.envelope.quiet_ns);
-                    violations[1] = short(clause, at, at - last.until, allowed, &mut outside_ns);
+                    violations[1] = too_short(clause, at, at - last.until, allowed, &mut outside_ns);
                 }
                 if self.envelope.calm_ns > 0 {
                     if let Some(since) = self.calm_since(&clocks) {
                         let (clause, allowed) = (BrokenClause::CalmTooShort, self.envelope.calm_ns);
-                        violations[2] = short(clause, at, at - since, allowed, &mut outside_ns);
+                        violations[2] = too_short(clause, at, at - since, allowed, &mut outside_ns);
                     }
                     clocks.bounce_open = false;
                     clocks.calm_served = true;
@@ -193,7 +200,7 @@ impl<'a> Rules<'a> {
         let over = width.saturating_sub(allowed);
         *outside_ns += over.saturating_sub(window.over);
         window.over = window.over.max(over);
-        long_(BrokenClause::DisturbanceTooWide(window.position), window.from, width, allowed)
+        too_long(BrokenClause::DisturbanceTooWide(window.position), window.from, width, allowed)
     }
 
     fn width_allowed(&self, clocks: &Clocks, window: &Window) -> u64 {
@@ -230,7 +237,7 @@ impl<'a> Rules<'a> {
 }
 
 /// A violation where `found` is less than `allowed`; what is missing counts as outside.
-fn short(
+fn too_short(
     clause: BrokenClause,
     at_ns: u64,
     found_ns: u64,
@@ -242,7 +249,7 @@ fn short(
 }
 
 /// A violation where `found` is more than `allowed`.
-fn long_(clause: BrokenClause, at_ns: u64, found_ns: u64, allowed_ns: u64) -> Option<Violation> {
+fn too_long(clause: BrokenClause, at_ns: u64, found_ns: u64, allowed_ns: u64) -> Option<Violation> {
     (found_ns > allowed_ns).then_some(Violation { clause, at_ns, found_ns, allowed_ns })
 }
 

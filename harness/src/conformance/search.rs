@@ -32,47 +32,89 @@ struct Node {
 const ROOT: usize = usize::MAX;
 
 /// The role of each edge in the best reading.
+///
+/// A run longer than every clause binds nothing on its far side, so the stretches between such runs are searched
+/// one by one: first for a reading inside the envelope, and only where there is none for the nearest.
 pub(super) fn best_reading(trace: &Trace, envelope: &PhysicalEnvelope) -> (Vec<Role>, Search) {
     let rules = Rules::new(envelope);
-    let clocks = Rules::start(trace.initial());
-    let burden = rules.burden(&clocks, trace.start_ns());
-    let mut paths = vec![Path { clocks, outside_ns: 0, disturbances: 0, burden, node: ROOT }];
-    let mut arena: Vec<Node> = Vec::new();
     let mut roles = Vec::with_capacity(trace.edges().len());
     let mut search = Search::Complete;
-    for stretch in stretches(trace) {
+    let mut position = trace.initial();
+    let mut cluster: Vec<Stretch> = Vec::new();
+    let mut rest = stretches(trace).peekable();
+    while let Some(stretch) = rest.next() {
+        cluster.push(stretch);
+        if !rules.is_long(&stretch) && rest.peek().is_some() {
+            continue;
+        }
+        let start = Rules::start(position);
+        let strict = search_cluster(&rules, start, &cluster, 0);
+        let found = match strict.roles {
+            Some(found) => found,
+            None => {
+                let nearest = search_cluster(&rules, start, &cluster, u64::MAX);
+                if strict.search == Search::Narrowed || nearest.search == Search::Narrowed {
+                    search = Search::Narrowed;
+                }
+                let Some(found) = nearest.roles else {
+                    unreachable!("taking every edge for a change is always a reading");
+                };
+                found
+            }
+        };
+        roles.extend(found);
+        // After the long run the contact is where the line is.
+        position = stretch.line;
+        cluster.clear();
+    }
+    (roles, search)
+}
+
+/// The best reading of a cluster, if one leaves at most `most_outside_ns` outside the envelope.
+struct Found {
+    roles: Option<Vec<Role>>,
+    search: Search,
+}
+
+fn search_cluster(rules: &Rules<'_>, start: Clocks, cluster: &[Stretch], most_outside_ns: u64) -> Found {
+    let burden = rules.burden(&start, cluster.first().map_or(0, |first| first.from));
+    let mut paths = vec![Path { clocks: start, outside_ns: 0, disturbances: 0, burden, node: ROOT }];
+    let mut arena: Vec<Node> = Vec::new();
+    let mut search = Search::Complete;
+    for stretch in cluster {
         let mut next = Vec::with_capacity(paths.len() * 2);
         for path in &paths {
-            extend(&rules, path, &stretch, &mut next, &mut arena);
+            extend(rules, path, stretch, most_outside_ns, &mut next, &mut arena);
         }
         paths = keep_best(next);
         if paths.len() > MOST_READINGS {
             paths.truncate(MOST_READINGS);
             search = Search::Narrowed;
         }
-        // With one reading left its past is settled: write it down and start a new arena.
-        if let [only] = paths.as_mut_slice() {
-            write_down(&arena, only.node, &mut roles);
-            only.node = ROOT;
-            only.outside_ns = 0;
-            only.disturbances = 0;
-            arena.clear();
-        }
     }
-    if let Some(best) = paths.iter().min_by_key(|path| (path.outside_ns, path.disturbances)) {
-        write_down(&arena, best.node, &mut roles);
-    }
-    (roles, search)
+    let best = paths.iter().min_by_key(|path| (path.outside_ns, path.disturbances));
+    Found { roles: best.map(|path| steps(&arena, path.node)), search }
 }
 
-fn extend(rules: &Rules<'_>, path: &Path, stretch: &Stretch, next: &mut Vec<Path>, arena: &mut Vec<Node>) {
+fn extend(
+    rules: &Rules<'_>,
+    path: &Path,
+    stretch: &Stretch,
+    most_outside_ns: u64,
+    next: &mut Vec<Path>,
+    arena: &mut Vec<Node>,
+) {
     let mut take = |role| {
         if let Some(step) = rules.step(path.clocks, role, stretch) {
+            let outside_ns = path.outside_ns.saturating_add(step.outside_ns);
+            if outside_ns > most_outside_ns {
+                return;
+            }
             arena.push(Node { parent: path.node, role });
             next.push(Path {
                 burden: rules.burden(&step.clocks, stretch.until),
                 clocks: step.clocks,
-                outside_ns: path.outside_ns.saturating_add(step.outside_ns),
+                outside_ns,
                 disturbances: path.disturbances + u32::from(role == Role::NewDisturbance),
                 node: arena.len() - 1,
             });
@@ -102,12 +144,14 @@ fn keep_best(mut paths: Vec<Path>) -> Vec<Path> {
     kept
 }
 
-fn write_down(arena: &[Node], last: usize, roles: &mut Vec<Role>) {
-    let settled = roles.len();
+/// The roles that lead to `last`, in order of time.
+fn steps(arena: &[Node], last: usize) -> Vec<Role> {
+    let mut roles = Vec::new();
     let mut node = last;
     while node != ROOT {
         roles.push(arena[node].role);
         node = arena[node].parent;
     }
-    roles[settled..].reverse();
+    roles.reverse();
+    roles
 }

@@ -109,7 +109,7 @@ fn check_doubt(gap_us: u64, edges_us: &[u64], expected: Option<Doubt>) {
     let edges = among_clean_operations(edges_us);
     let options = SegmentOptions { gap_ns: Some(gap_us * US) };
     let found = segment(&trace(3_000_000, &edges), &options).unwrap();
-    let at = |ns: u64| ns >= 1_000 * MS && ns < 1_150 * MS;
+    let at = |ns: u64| (1_000 * MS..1_150 * MS).contains(&ns);
     let operations = found.operations.iter().filter(|o| at(o.burst.first_ns)).filter_map(|o| o.ambiguity);
     let disturbances = found.disturbances.iter().filter(|d| at(d.burst.first_ns)).filter_map(|d| d.ambiguity);
     let doubts: Vec<Ambiguity> = operations.chain(disturbances).collect();

@@ -1,8 +1,7 @@
 //! The envelope in ticks as a predicate on words of samples, written straight from its definition.
 
-use std::collections::HashSet;
-
 use debounce_core::{Envelope, Position};
+use rustc_hash::FxHashSet as HashSet;
 
 #[derive(Clone, Copy, PartialEq, Eq, Hash)]
 struct State {
@@ -24,9 +23,9 @@ pub(super) fn fits(word: &[Position], e: &Envelope) -> bool {
     let held = e.dwell.open.max(e.dwell.closed);
     let start =
         State { contact: Position::Open, held, bounce_left: 0, window_left: 0, quiet: e.quiet, calm: e.calm };
-    let mut states = HashSet::from([start]);
+    let mut states = HashSet::from_iter([start]);
     for &sample in word {
-        let mut next = HashSet::new();
+        let mut next = HashSet::default();
         for state in states {
             after(state, sample, e, held, &mut next);
         }
