@@ -114,7 +114,6 @@ mod tests {
     use crate::characterise::{Doubt, Figures, SegmentOptions, segment};
     use crate::conformance;
     use crate::envelope::PhysicalEnvelope;
-    use crate::generate::Truth;
 
     #[test]
     fn demo_recording_is_what_its_generator_makes() {
@@ -131,9 +130,7 @@ mod tests {
     fn demo_recording_holds_what_makes_it_hard() {
         let made = recording().unwrap();
         let found = segment(&made.trace, &SegmentOptions::default()).unwrap();
-        let segmented: Vec<Truth> =
-            found.operations.iter().map(|o| Truth { change: o.change, at_ns: o.burst.first_ns }).collect();
-        assert_eq!(segmented, made.truth);
+        assert_eq!(found.truth(), made.truth);
         let after_bounce = |o: &&crate::characterise::Operation| matches!(o.ambiguity, Some(a) if a.doubt == Doubt::SecondBurstOrDisturbance);
         let soon = made.noise.iter().filter(|n| {
             made.bounce_ends_ns.iter().any(|&end| n.from_ns > end && n.from_ns - end <= 4 * MS + US)
