@@ -4,6 +4,8 @@
 pub mod characterise;
 pub mod choose;
 pub mod cli;
+pub mod conformance;
+pub mod demo;
 pub mod envelope;
 pub mod generate;
 pub mod law_text;
