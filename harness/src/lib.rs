@@ -3,6 +3,7 @@
 
 pub mod characterise;
 pub mod cli;
+pub mod emit;
 pub mod envelope;
 pub mod generate;
 pub mod law_text;
