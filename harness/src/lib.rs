@@ -6,6 +6,7 @@ pub mod choose;
 pub mod cli;
 pub mod conformance;
 pub mod demo;
+pub mod emit;
 pub mod envelope;
 pub mod generate;
 pub mod law_text;
