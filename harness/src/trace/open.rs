@@ -9,7 +9,7 @@ use super::error::{Faults, ReadError, plain};
 use super::{ReadOptions, Recording, csv, vcd};
 
 /// So much of a file is looked at to find out what it is.
-const PREFIX: usize = 1 << 16;
+pub(super) const PREFIX: usize = 1 << 16;
 
 /// Reads the channel that the options name, or the only one, from a file.
 ///
@@ -69,9 +69,7 @@ pub fn list_channels(path: impl AsRef<Path>, options: &ReadOptions) -> Result<Ve
     let mut faults = Faults::default();
     let channels = match sniff(open(path, &name)?, &mut faults) {
         Some((Format::Vcd, prefix, rest)) => vcd::channels(prefix.as_slice().chain(rest), &mut faults),
-        Some((Format::Csv, prefix, rest)) => {
-            csv::channels(prefix.as_slice().chain(rest), &prefix, options, &mut faults)
-        }
+        Some((Format::Csv, prefix, _)) => csv::channels(&prefix, options, &mut faults),
         None => Vec::new(),
     };
     if faults.is_empty() { Ok(channels) } else { Err(faults.into_error(&name)) }
