@@ -11,8 +11,12 @@ mod csv;
 mod error;
 mod open;
 mod options;
+#[cfg(test)]
+mod oracle_tests;
 mod polarity;
 mod recording;
+#[cfg(test)]
+mod round_trip_tests;
 mod vcd;
 mod write;
 
