@@ -86,11 +86,13 @@ pub enum NotHeld {
 }
 
 impl Configuration {
-    /// A law for a requirement at one tick period, with the bounds that were proved for it.
+    /// A law for a requirement at one tick period, with the envelope in samples of that clock and the bounds that
+    /// were proved for it.
     #[must_use]
     pub fn new(
         resolved: &Resolved,
         tick: TickPeriod,
+        envelope: Envelope,
         law: LawParameters,
         bounds: Bounds,
         proof: Proof,
@@ -101,7 +103,7 @@ impl Configuration {
             closed: resolved.closed.value,
             law,
             clock: resolved.clock(tick),
-            envelope: resolved.envelope(tick),
+            envelope,
             bounds,
             proof,
             required: resolved.required.clone().map(|time| time.value),

@@ -1,9 +1,10 @@
 //! Fills in what was not given, from the recordings or from stated defaults, and says which.
 
-use debounce_core::{Envelope, PerChange, PerPosition, TickClock};
+use debounce_core::{PerChange, PerPosition, TickClock};
 
 use super::check;
 use super::{ContactKind, Figures, Level, Origin, Requirement, Role, Sourced, TickChoice};
+use crate::envelope::PhysicalEnvelope;
 use crate::problem::{Problem, Problems};
 use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time};
 
@@ -266,17 +267,21 @@ impl Resolved {
             .lost(self.lost.value.0)
     }
 
-    /// The required times as an envelope in delivered samples of that clock: lost ticks are taken off already.
+    /// The waveforms that must be served, in time.
     #[must_use]
-    pub fn envelope(&self, tick: TickPeriod) -> Envelope {
-        let (clock, required) = (self.clock(tick), &self.required);
-        let touched = |time: Sourced<Time>| clock.samples_touched(time.value.ns());
-        let seen = |time: Sourced<Time>| clock.samples_seen(time.value.ns());
-        Envelope::clean(seen(required.shortest.open), seen(required.shortest.closed))
-            .bounce(touched(required.bounce.make), touched(required.bounce.break_))
-            .glitch(touched(required.disturbance.open), touched(required.disturbance.closed))
-            .quiet(seen(required.quiet))
-            .calm(seen(required.calm))
+    pub fn physical(&self) -> PhysicalEnvelope {
+        let required = &self.required;
+        let ns = |time: Sourced<Time>| time.value.ns();
+        PhysicalEnvelope {
+            bounce_ns: PerChange { make: ns(required.bounce.make), break_: ns(required.bounce.break_) },
+            glitch_ns: PerPosition {
+                open: ns(required.disturbance.open),
+                closed: ns(required.disturbance.closed),
+            },
+            quiet_ns: ns(required.quiet),
+            calm_ns: ns(required.calm),
+            dwell_ns: PerPosition { open: ns(required.shortest.open), closed: ns(required.shortest.closed) },
+        }
     }
 
     /// The most samples of latency whose delay stays within the required latency; 0 where none does.

@@ -365,7 +365,7 @@ fn resolved_envelope_rounds_to_the_safe_side() {
     let resolved = accepts(text).resolve(&Measured::default()).unwrap();
     let tick = resolved.ticks.value[0];
     let expected = Envelope::clean(49, 59).bounce(5, 5).glitch(1, 0).quiet(8);
-    assert_eq!(resolved.envelope(tick), expected);
+    assert_eq!(resolved.physical().in_ticks(&resolved.clock(tick)), Ok(expected));
     // 20 ms hold 20 samples, one of which may be lost.
     assert_eq!(resolved.allowed_samples(tick), PerChange { make: 19, break_: 19 });
 }

@@ -1,0 +1,3 @@
+//! What a person sees of a result.
+
+pub mod timing;
