@@ -90,6 +90,17 @@ fn conformance_calm_at_its_limit_conforms_and_below_does_not() {
 }
 
 #[test]
+fn conformance_calm_is_counted_from_the_end_of_the_whole_bounce() {
+    // The pulse at 51 500 keeps the calm after the make, but then the bounce is over; the run to 55 000 is too wide
+    // for a disturbance, so it is bounce, the first pulse is too, and the last one comes 500 after it.
+    let calm = PhysicalEnvelope { calm_ns: 1_000, quiet_ns: 1_000, ..envelope() };
+    let clause = BrokenClause::CalmTooShort;
+    let edges = [50_000, 51_500, 52_000, 52_400, 55_000, 55_500, 56_000];
+    check_violation(&calm, &edges, clause, 55_500, 500, 1_000);
+    check_conforms(&calm, &[50_000, 51_500, 52_000, 52_400, 55_000, 56_000, 56_500]);
+}
+
+#[test]
 fn conformance_dwell_at_its_limit_conforms_and_below_does_not() {
     check_conforms(&envelope(), &[50_000, 80_000, 120_000]);
     let clause = BrokenClause::DwellTooShort(Position::Closed);
@@ -214,6 +225,59 @@ fn conformance_traces_made_inside_an_envelope_conform() {
         assert!(answer.conforms(), "case {case}: {envelope:?} {trace:?} {:?}", answer.violations);
         assert_eq!(answer.search, Search::Complete);
     }
+}
+
+/// Edges from 1000 on that break exactly one clause of `e`; none where the numbers of `e` leave no room for it.
+fn random_edges_breaking(clause: u64, e: &PhysicalEnvelope, dice: &mut Dice) -> Option<Vec<u64>> {
+    let widest = e.glitch_ns.open.max(e.glitch_ns.closed);
+    let mut between =
+        |least: u64, greatest: u64| (least <= greatest).then(|| dice.draw(Between(least, greatest)));
+    let runs = match clause {
+        // Bounce: two runs too wide for any disturbance, together longer than the bounce, too short for dwells.
+        0 => {
+            let (first, second) = (between(widest + 1, 80)?, between(widest + 1, 80)?);
+            (first + second > e.bounce_ns.make).then_some(vec![first, second])?
+        }
+        // Width: too wide for a disturbance, too short for an operation.
+        1 => vec![between(e.glitch_ns.open + 1, e.dwell_ns.closed - 1)?],
+        // Quiet: two disturbances too far apart to be one.
+        2 => {
+            let width = between(1, e.glitch_ns.open)?;
+            vec![width, between(e.glitch_ns.open, e.quiet_ns - 1)?, between(1, e.glitch_ns.open)?]
+        }
+        // Calm: a disturbance too late to be bounce and too soon after it; closed too long before it for the make
+        // to be a disturbance itself.
+        3 => {
+            let least = e.bounce_ns.make.max(e.glitch_ns.open) + 1;
+            vec![between(least, e.calm_ns.checked_sub(1)?)?, between(1, e.glitch_ns.closed)?]
+        }
+        // Dwell: as for the width, from the far end.
+        _ => vec![e.dwell_ns.closed - 1],
+    };
+    let mut now = 1_000;
+    let mut edges = vec![now];
+    edges.extend(runs.iter().map(|run| {
+        now += run;
+        now
+    }));
+    Some(edges)
+}
+
+#[test]
+fn conformance_traces_with_one_clause_broken_do_not_conform() {
+    let mut broken = [0; 5];
+    for case in 0..5_000 {
+        let mut dice = Dice::new(34, case);
+        let envelope = random_envelope(&mut dice);
+        let clause = case % 5;
+        let Some(edges) = random_edges_breaking(clause, &envelope, &mut dice) else { continue };
+        broken[clause as usize] += 1;
+        let trace = Trace::new(Position::Open, 0, edges[edges.len() - 1] + 1_000, edges, 1).unwrap();
+        let answer = check(&trace, &envelope);
+        assert!(!answer.conforms(), "clause {clause}: {envelope:?} {trace:?}");
+        assert_eq!(answer.search, Search::Complete);
+    }
+    assert!(broken.iter().all(|&count| count > 100), "{broken:?}");
 }
 
 /// Whatever conforms, sampled at any phase, lies in the envelope in ticks; the predicate on words is written apart.
