@@ -71,6 +71,8 @@ fn csv_even_samples_stand_for_a_period_each() {
     // Rounding in the file makes steps of 3 and 4 units: the greater one is the safe period.
     let recording = check("t/us,level\n0,0\n3,0\n7,1\n10,1\n", &plain(), Open, &[7_000], 13_000);
     assert_eq!(recording.trace.resolution_ns(), 4_000);
+    let given = ReadOptions { resolution_ns: Some(77), ..plain() };
+    assert_eq!(read("t/us,level\n0,0\n10,1\n", &given).expect("reads").trace.resolution_ns(), 77);
     // Uneven rows are changes, and nothing is known after the last.
     check("t/us,level\n0,0\n3,0\n9,1\n10,1\n", &plain(), Open, &[9_000], 10_000);
 }
