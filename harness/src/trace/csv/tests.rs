@@ -294,6 +294,19 @@ fn csv_bad_rows_are_all_listed_with_their_places() {
 }
 
 #[test]
+fn csv_bad_first_row_behind_a_header_is_no_preamble() {
+    refused("time (ms),level\nabc,1\n0,0\n5,1\n", &plain(), &["2:1: \"abc\" is not a time"]);
+    refused(
+        "time (ms),level\n1,\n2,0\n5,1\n",
+        &plain(),
+        &["2:3: \"\" is not a level; use 0 or 1, or low or high"],
+    );
+    // Without a header it looks like one more line of a preamble: that is told.
+    let recording = check("abc,1\n0.1,0\n0.5,1\n", &plain(), Open, &[500 * MS], 500 * MS);
+    assert!(recording.notes.contains(&Note::PreambleSkipped { lines: 1 }));
+}
+
+#[test]
 fn csv_many_bad_rows_stop_at_the_maximum() {
     let text = format!("time (ms),level\n0,0\n{}", "1\n".repeat(1000));
     let error = read(&text, &plain()).expect_err("bad");
