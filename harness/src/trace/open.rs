@@ -237,7 +237,7 @@ mod tests {
             }
         }
         let start = b"$timescale 1us $end $var wire 1 ! a $end $enddefinitions $end #0 0! ";
-        let mut long = start.repeat(1);
+        let mut long = start.to_vec();
         long.resize(PREFIX + 1, b' ');
         let error = read_stream("f", long.chain(Breaks), &ReadOptions::default()).expect_err("broken");
         assert_eq!(error.to_string(), "f: cannot be read: cable pulled");

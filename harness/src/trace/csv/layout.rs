@@ -115,7 +115,7 @@ pub(super) fn detect(lines: Vec<&[u8]>, options: &ReadOptions, faults: &mut Faul
         })?,
         None => columns.iter().position(Column::is_time).unwrap_or(guess),
     };
-    let first = first_row(&sample, &rows, time_column);
+    let first = header.last().map_or_else(|| first_row(&sample, &rows, time_column), |last| last + 1);
     let rows: Vec<usize> = rows.into_iter().filter(|&row| row >= first).collect();
     let time_unit = options.time_unit.or(match columns.get(time_column).and_then(|column| column.unit) {
         Some(Unit::Time(unit)) => Some(unit),
@@ -216,6 +216,16 @@ fn header_above(sample: &Sample<'_>, first: usize, time_column: usize) -> (Vec<C
         return (columns, names_line.into_iter().chain([last]).collect());
     }
     let columns = names(last);
+    if !columns.iter().any(Column::is_time)
+        && let Some(earlier) = (0..last).rev().find(|&line| {
+            cells(line).len() == last_cells.len()
+                && !sample.is_row(line)
+                && names(line).iter().any(Column::is_time)
+        })
+    {
+        // What lies between is no preamble but rows gone bad, and they must be said to be.
+        return (names(earlier), vec![earlier]);
+    }
     let is_named = columns.iter().any(Column::is_time)
         || !last_cells.iter().any(|cell| number::is_number(cell, sample.mark)) && columns.len() > time_column;
     if is_named { (columns, vec![last]) } else { Default::default() }

@@ -210,7 +210,7 @@ impl<'a> Rows<'a> {
         // Each of even samples stands for one period, the last one too.
         let tail_ns = if self.is_sampled() { whole_ns(self.least_step).unwrap_or(0) } else { 0 };
         let end_ns = self.now_ns.saturating_add(tail_ns);
-        let resolution_ns = self.resolution_ns();
+        let resolution_ns = self.options.resolution_ns.unwrap_or_else(|| self.resolution_ns());
         let shift = whole_ns(self.shift).filter(|&by_ns| by_ns > 0).map(|by_ns| Note::Shifted { by_ns });
         let assumed = self.layout.time_unit.is_none().then_some(Note::SecondsAssumed);
         let preamble = Some(self.layout.preamble)

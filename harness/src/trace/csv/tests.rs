@@ -71,6 +71,8 @@ fn csv_even_samples_stand_for_a_period_each() {
     // Rounding in the file makes steps of 3 and 4 units: the greater one is the safe period.
     let recording = check("t/us,level\n0,0\n3,0\n7,1\n10,1\n", &plain(), Open, &[7_000], 13_000);
     assert_eq!(recording.trace.resolution_ns(), 4_000);
+    let given = ReadOptions { resolution_ns: Some(77), ..plain() };
+    assert_eq!(read("t/us,level\n0,0\n10,1\n", &given).expect("reads").trace.resolution_ns(), 77);
     // Uneven rows are changes, and nothing is known after the last.
     check("t/us,level\n0,0\n3,0\n9,1\n10,1\n", &plain(), Open, &[9_000], 10_000);
 }
@@ -289,6 +291,19 @@ fn csv_bad_rows_are_all_listed_with_their_places() {
             "4:5: \"1e999\" is not a voltage: it is too large",
         ],
     );
+}
+
+#[test]
+fn csv_bad_first_row_behind_a_header_is_no_preamble() {
+    refused("time (ms),level\nabc,1\n0,0\n5,1\n", &plain(), &["2:1: \"abc\" is not a time"]);
+    refused(
+        "time (ms),level\n1,\n2,0\n5,1\n",
+        &plain(),
+        &["2:3: \"\" is not a level; use 0 or 1, or low or high"],
+    );
+    // Without a header it looks like one more line of a preamble: that is told.
+    let recording = check("abc,1\n0.1,0\n0.5,1\n", &plain(), Open, &[500 * MS], 500 * MS);
+    assert!(recording.notes.contains(&Note::PreambleSkipped { lines: 1 }));
 }
 
 #[test]

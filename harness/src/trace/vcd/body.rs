@@ -129,10 +129,21 @@ impl<'a> Body<'a> {
             faults.at(place, format!("{} is not a time; use # and a whole number", quoted(digits)));
             return;
         }
-        let parsed = digits
-            .iter()
-            .try_fold(0_u64, |sum, digit| sum.checked_mul(10)?.checked_add(u64::from(digit - b'0')))
-            .and_then(|mark| Some((mark, (mark / self.scale.divide).checked_mul(self.scale.multiply)?)));
+        // Nineteen digits always fit, and so need no check at each.
+        let value = |sum: u64, digit: &u8| sum * 10 + u64::from(digit - b'0');
+        let mark = match digits {
+            short if short.len() <= 19 => Some(short.iter().fold(0, value)),
+            long => long
+                .iter()
+                .try_fold(0_u64, |sum, digit| sum.checked_mul(10)?.checked_add(u64::from(digit - b'0'))),
+        };
+        let Scale { multiply, divide } = self.scale;
+        let parsed = mark.and_then(|mark| {
+            // Division is slow, and most files need none.
+            let whole = if divide == 1 { mark } else { mark / divide };
+            self.was_rounded |= whole * divide != mark;
+            Some((mark, whole.checked_mul(multiply)?))
+        });
         let Some((mark, now_ns)) = parsed else {
             let digits = String::from_utf8_lossy(&digits[..digits.len().min(32)]).into_owned();
             faults.at(place, format!("time {digits} exceeds the {} ns that fit 64 bits", u64::MAX));
@@ -143,7 +154,6 @@ impl<'a> Body<'a> {
             return;
         }
         self.mark = Some(mark);
-        self.was_rounded |= mark % self.scale.divide != 0;
         self.now_ns = now_ns;
         self.start();
     }
@@ -236,8 +246,9 @@ impl<'a> Body<'a> {
     /// One recording for each channel, in the order in which they were chosen.
     pub(super) fn finish(self, faults: &mut Faults) -> Vec<Recording> {
         let mut recordings = Vec::with_capacity(self.targets.len());
+        let resolution_ns = self.options.resolution_ns.unwrap_or(self.scale.multiply);
         for target in self.targets {
-            match target.builder.finish(self.now_ns, self.scale.multiply) {
+            match target.builder.finish(self.now_ns, resolution_ns) {
                 Some((trace, mut notes)) => {
                     if self.was_rounded {
                         notes.push(Note::RoundedTimes);

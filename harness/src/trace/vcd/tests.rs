@@ -91,6 +91,9 @@ fn vcd_every_timescale_is_exact() {
         assert_eq!(recording.trace.edges(), [expected], "{text}");
         assert_eq!(recording.trace.resolution_ns(), resolution, "{text}");
     }
+    let given = ReadOptions { resolution_ns: Some(1_000), ..options("a") };
+    let recording = read_bytes("f", format!("{HEADER}#0 0! #9").as_bytes(), &given).expect("legal");
+    assert_eq!(recording.trace.resolution_ns(), 1_000);
     let bad = "$timescale 2 ns $end\n$var wire 1 ! a $end $enddefinitions $end #0 0!";
     refused(bad, "a", &["1:1: \"2 ns\" is not a time scale; use 1, 10 or 100 with s, ms, us, ns, ps or fs"]);
 }

@@ -46,17 +46,22 @@ impl<R: Read> Tokens<R> {
     /// The next token, or none at the end of the stream.
     #[inline]
     pub(super) fn next(&mut self) -> io::Result<Option<Token<'_>>> {
-        'skip: loop {
-            while let Some(&byte) = self.buffer[..self.filled].get(self.next) {
+        loop {
+            // Locals, because the compiler would store every step of a field.
+            let (mut at, mut line, mut line_start) = (self.next, self.line, self.line_start);
+            let block = &self.buffer[..self.filled];
+            while let Some(&byte) = block.get(at).filter(|&&byte| is_white_space(byte)) {
+                at += 1;
                 if byte == b'\n' {
-                    self.line += 1;
-                    self.line_start = self.base + self.next as u64 + 1;
-                } else if !is_white_space(byte) {
-                    break 'skip;
+                    line += 1;
+                    line_start = self.base + at as u64;
                 }
-                self.next += 1;
             }
-            if self.refill(self.next)? == 0 {
+            (self.next, self.line, self.line_start) = (at, line, line_start);
+            if at < self.filled {
+                break;
+            }
+            if self.refill(at)? == 0 {
                 return Ok(None);
             }
         }
@@ -65,11 +70,13 @@ impl<R: Read> Tokens<R> {
         loop {
             // Any byte up to the space ends a token: the one comparison is what makes this loop fast, and a
             // control character that is no white space then stands as a token of its own and is refused.
-            while end < self.filled && self.buffer[end] > b' ' {
-                end += 1;
-            }
-            if end < self.filled {
-                break;
+            let rest = self.buffer[..self.filled].get(end..).unwrap_or_default();
+            match rest.iter().position(|&byte| byte <= b' ') {
+                Some(length) => {
+                    end += length;
+                    break;
+                }
+                None => end = self.filled,
             }
             let length = end - start;
             if length > LONGEST_TOKEN {
@@ -174,6 +181,18 @@ mod tests {
     #[test]
     fn tokens_control_character_stands_alone() {
         check("a\0b \x01", &[("a", 1, 1), ("\0b", 1, 2), ("\x01", 1, 5)]);
+    }
+
+    #[test]
+    fn tokens_of_a_long_file_need_one_block_of_memory() {
+        let file = b"#123456789 1!\n".repeat(200_000);
+        assert!(file.len() > 10 * BLOCK);
+        let mut tokens = Tokens::new(&file[..]);
+        let mut count = 0;
+        while tokens.next().expect("reads").is_some() {
+            count += 1;
+        }
+        assert_eq!((count, tokens.buffer.len()), (400_000, BLOCK));
     }
 
     #[test]
