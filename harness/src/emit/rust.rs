@@ -105,7 +105,8 @@ fn law(law: &LawParameters) -> LawCode {
                 ]
                 .join("\n"),
                 new: format!("MajorityRegister::<{word}>::new(MAJORITY, WINDOW)"),
-                pins: vec![pin("LAW.majority()", majority.into()), pin("LAW.window()", window.into())],
+                // `window()` counts bits and is no constant function: its parameter is pinned instead.
+                pins: vec![pin("LAW.majority()", majority.into()), pin("WINDOW", window.into())],
             }
         }
         LawParameters::StateMachine { confirm, patience, lockout } => {
@@ -403,8 +404,12 @@ fn checks(configuration: &Configuration, law: &LawCode) -> String {
         Proof::Explored { .. } => {
             let mut pins = law.pins.clone();
             pins.extend(envelope_pins(configuration));
-            checks
-                .push(assertion(&pins, "LAW or ENVELOPE is not what was proved by exploring; prove it anew"));
+            let bounds = configuration.bounds.latency;
+            for (edge, latency) in [("make", bounds.make), ("break_", bounds.break_)] {
+                pins.push(format!("BOUNDS.latency.{edge}.worst == {}", grouped(latency.worst.into())));
+            }
+            let message = "LAW, ENVELOPE or BOUNDS is not what was proved by exploring; prove it anew";
+            checks.push(assertion(&pins, message));
         }
     }
     checks.push(assertion(&late, LATE));
