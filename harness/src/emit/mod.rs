@@ -1,6 +1,7 @@
 //! A chosen configuration as code for the firmware.
 
 mod identifier;
+mod law_code;
 mod layout;
 mod rust;
 
