@@ -19,8 +19,13 @@ use crate::quantity::{Rounding, TickPeriod, Time};
 /// When the configuration does not hold; nothing is written then.
 pub fn rust_module(configuration: &Configuration) -> Result<String, NotHeld> {
     configuration.check()?;
+    Ok(module_text(configuration))
+}
+
+/// The text, whether the configuration holds or not.
+pub(super) fn module_text(configuration: &Configuration) -> String {
     let law = law_code(&configuration.law);
-    Ok([
+    [
         header(configuration),
         imports(configuration, &law),
         clock(configuration),
@@ -30,7 +35,7 @@ pub fn rust_module(configuration: &Configuration) -> Result<String, NotHeld> {
         types(configuration, &law),
         checks(configuration, &law),
     ]
-    .join("\n"))
+    .join("\n")
 }
 
 /// The documentation of the module.
