@@ -40,12 +40,12 @@ fn resolved(text: &str) -> Resolved {
 }
 
 fn envelope(resolved: &Resolved) -> Envelope {
-    resolved.envelope(resolved.ticks.value[0])
+    resolved.physical().in_ticks(&resolved.clock(resolved.ticks.value[0])).expect("quiet is seen")
 }
 
 fn configuration(resolved: &Resolved, law: LawParameters, verdict: Verdict) -> Configuration {
     let Verdict::Holds(bounds) = verdict else { panic!("{law} does not hold: {verdict:?}") };
-    Configuration::new(resolved, resolved.ticks.value[0], law, bounds, Proof::ClosedForm)
+    Configuration::new(resolved, resolved.ticks.value[0], envelope(resolved), law, bounds, Proof::ClosedForm)
 }
 
 /// The state machine that reaches the limit of the envelope.
@@ -128,7 +128,14 @@ fn pinned(resolved: &Resolved, law: LawParameters) -> Configuration {
         Verdict::Unknown => Bounds { latency: PerChange { make: latency, break_: latency } },
         Verdict::Fails(clause) => panic!("{law} fails: {clause:?}"),
     };
-    Configuration::new(resolved, resolved.ticks.value[0], law, bounds, Proof::Explored { states: 4_321 })
+    Configuration::new(
+        resolved,
+        resolved.ticks.value[0],
+        envelope(resolved),
+        law,
+        bounds,
+        Proof::Explored { states: 4_321 },
+    )
 }
 
 #[test]

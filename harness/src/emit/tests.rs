@@ -35,7 +35,9 @@ fn configuration(requirement: &str, law: &str, worst: u32, proof: Proof) -> Conf
     let resolved = requirement.resolve(&Measured::default()).unwrap_or_else(|error| panic!("{error}"));
     let latency = Latency { best: 3, worst };
     let bounds = Bounds { latency: PerChange { make: latency, break_: latency } };
-    Configuration::new(&resolved, resolved.ticks.value[0], law.parse().unwrap(), bounds, proof)
+    let tick = resolved.ticks.value[0];
+    let envelope = resolved.physical().in_ticks(&resolved.clock(tick)).expect("quiet is seen");
+    Configuration::new(&resolved, tick, envelope, law.parse().unwrap(), bounds, proof)
         .provenance("harness 0.1.0, contact.toml, gate.vcd (64 operations)")
 }
 
