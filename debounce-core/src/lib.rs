@@ -2,16 +2,23 @@
 #![no_std]
 #![forbid(unsafe_code)]
 
+mod analog;
 mod bank;
+mod changeover;
 mod envelope;
 mod law;
 mod machine;
 mod time;
 
+pub use analog::{
+    AnalogSample, Chord, Hysteresis, HysteresisError, HysteresisState, Ladder, LadderError, LadderParts,
+    LadderReading, Window,
+};
 pub use bank::{
-    Bank, BankState, Changes, EdgeRule, Lane, PatientBank, PatientState, PortLaw, Started, StartingBank,
+    Bank, BankState, Changes, EdgeRule, Lane, LanesStarted, PatientBank, PatientState, PortLaw, StartingBank,
     StartingState, Word,
 };
+pub use changeover::{Changeover, ChangeoverFault, ChangeoverReport, ChangeoverState, Throws};
 pub use envelope::{Bounds, Clause, Envelope, Latency, PerChange, PerPosition, Verdict};
 pub use law::{Law, is_settled};
 pub use machine::{Change, Machine, Position};

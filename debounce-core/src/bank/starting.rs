@@ -81,7 +81,7 @@ impl<W: Word, S: Copy, const K: usize> StartingState<W, S, K> {
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
 #[cfg_attr(feature = "defmt", derive(defmt::Format))]
 #[must_use]
-pub struct Started<W> {
+pub struct LanesStarted<W> {
     /// Lanes that have got their first position; it is no operation.
     pub initial: W,
     /// Lanes that changed from a position they had.
@@ -111,13 +111,13 @@ where
     B: PortLaw<W> + Machine<Input = W>,
 {
     type Input = W;
-    type Output = Started<W>;
+    type Output = LanesStarted<W>;
     type State = StartingState<W, B::State, K>;
 
     #[inline]
-    fn step(&self, state: &mut Self::State, port: W) -> Started<W> {
+    fn step(&self, state: &mut Self::State, port: W) -> LanesStarted<W> {
         if state.waiting == W::NONE {
-            return Started { initial: W::NONE, changes: self.bank.step(&mut state.inner, port) };
+            return LanesStarted { initial: W::NONE, changes: self.bank.step(&mut state.inner, port) };
         }
         let waiting = state.waiting;
         let closed = self.bank.looks_closed(port);
@@ -136,7 +136,7 @@ where
         }
         self.bank.seat(&mut state.inner, waiting, closed);
         state.waiting &= !carry;
-        Started { initial: carry, changes: self.bank.step(&mut state.inner, port) }
+        LanesStarted { initial: carry, changes: self.bank.step(&mut state.inner, port) }
     }
 }
 
