@@ -8,6 +8,7 @@ mod changeover;
 mod envelope;
 mod law;
 mod machine;
+mod meaning;
 mod time;
 
 pub use analog::{
@@ -22,4 +23,8 @@ pub use changeover::{Changeover, ChangeoverFault, ChangeoverReport, ChangeoverSt
 pub use envelope::{Bounds, Clause, Envelope, Latency, PerChange, PerPosition, Verdict};
 pub use law::{Law, is_settled};
 pub use machine::{Change, Machine, Position};
+pub use meaning::{
+    DetentState, Detents, Gesture, GestureError, GestureEvent, GestureState, GestureTicks, Phases,
+    Quadrature, QuadratureEvent, QuadratureState, Resolution, RestPhases, Speed, SpeedState, Turn,
+};
 pub use time::{Period, TickClock};
