@@ -24,7 +24,9 @@ pub use envelope::{Bounds, Clause, Envelope, Latency, PerChange, PerPosition, Ve
 pub use law::{Law, is_settled};
 pub use machine::{Change, Machine, Position};
 pub use meaning::{
-    DetentState, Detents, Gesture, GestureError, GestureEvent, GestureState, GestureTicks, Phases,
-    Quadrature, QuadratureEvent, QuadratureState, Resolution, RestPhases, Speed, SpeedState, Turn,
+    ContactPair, DetentState, Detents, Gesture, GestureError, GestureEvent, GestureState, GestureTicks,
+    PairFault, PairKind, PairPositions, PairReport, PairState, Phases, PulseCounter, PulseEvent, PulseFlaw,
+    PulseLimits, PulseLimitsError, PulseState, PulseTally, Quadrature, QuadratureEvent, QuadratureState,
+    Resolution, RestPhases, Speed, SpeedState, TallyFull, Turn,
 };
 pub use time::{Period, TickClock};
