@@ -25,8 +25,10 @@ pub use law::{Law, is_settled};
 pub use machine::{Change, Machine, Position};
 pub use meaning::{
     ContactPair, DetentState, Detents, Gesture, GestureError, GestureEvent, GestureState, GestureTicks,
-    PairFault, PairKind, PairPositions, PairReport, PairState, Phases, PulseCounter, PulseEvent, PulseFlaw,
-    PulseLimits, PulseLimitsError, PulseState, PulseTally, Quadrature, QuadratureEvent, QuadratureState,
-    Resolution, RestPhases, Speed, SpeedState, TallyFull, Turn,
+    KeyDiodes, Matrix, MatrixReport, MatrixState, PairFault, PairKind, PairPositions, PairReport, PairState,
+    Phases, PulseCounter, PulseEvent, PulseFlaw, PulseLimits, PulseLimitsError, PulseState, PulseTally,
+    Quadrature, QuadratureEvent, QuadratureState, Resolution, RestPhases, Speed, SpeedState, TallyFull, Turn,
 };
+#[cfg(feature = "embedded-hal")]
+pub use meaning::{MatrixPins, ScanError};
 pub use time::{Period, TickClock};

@@ -2,6 +2,7 @@
 
 mod detent;
 mod gesture;
+mod matrix;
 mod pair;
 mod pulse;
 mod quadrature;
@@ -9,6 +10,9 @@ mod speed;
 
 pub use detent::{DetentState, Detents, RestPhases};
 pub use gesture::{Gesture, GestureError, GestureEvent, GestureState, GestureTicks};
+pub use matrix::{KeyDiodes, Matrix, MatrixReport, MatrixState};
+#[cfg(feature = "embedded-hal")]
+pub use matrix::{MatrixPins, ScanError};
 pub use pair::{ContactPair, PairFault, PairKind, PairPositions, PairReport, PairState};
 pub use pulse::{
     PulseCounter, PulseEvent, PulseFlaw, PulseLimits, PulseLimitsError, PulseState, PulseTally, TallyFull,
