@@ -159,14 +159,17 @@ impl<const N: usize> LadderParts<N> {
             }
             let mut other = 0;
             while other < key {
-                if keys[key].overlaps(keys[other]) {
-                    let swap = keys[other].greatest > keys[key].greatest;
-                    let (low, high) = if swap { (key, other) } else { (other, key) };
+                // Both by value: indexing again below would link a bounds check.
+                let (this, that) = (keys[key], keys[other]);
+                if this.overlaps(that) {
+                    let (this, that) = ((key as u8, this), (other as u8, that));
+                    let (low, high) =
+                        if that.1.greatest > this.1.greatest { (this, that) } else { (that, this) };
                     return Err(LadderError::Overlap {
-                        low: low as u8,
-                        low_greatest: keys[low].greatest,
-                        high: high as u8,
-                        high_least: keys[high].least,
+                        low: low.0,
+                        low_greatest: low.1.greatest,
+                        high: high.0,
+                        high_least: high.1.least,
                     });
                 }
                 other += 1;

@@ -23,6 +23,12 @@ impl EdgeRule {
         Self { confirm, patience: 1, lockout: 0 }
     }
 
+    /// A whole rule from values known at run time, `None` where confirm or patience is 0; links no panic.
+    #[must_use]
+    pub const fn try_new(confirm: u16, patience: u16, lockout: u16) -> Option<Self> {
+        if confirm == 0 || patience == 0 { None } else { Some(Self { confirm, patience, lockout }) }
+    }
+
     /// Sets how many agreeing samples in a row clear a count that has begun.
     ///
     /// # Panics

@@ -129,6 +129,13 @@ fn patient_lane_every_state_and_sample_equals_scalar() {
 }
 
 #[test]
+fn edge_rule_without_confirm_or_patience_is_refused() {
+    assert_eq!(EdgeRule::try_new(3, 2, 1), Some(EdgeRule::new(3).patience(2).lockout(1)));
+    assert_eq!(EdgeRule::try_new(1, 1, 0), Some(EdgeRule::new(1)));
+    assert_eq!((EdgeRule::try_new(0, 1, 0), EdgeRule::try_new(1, 0, 0)), (None, None));
+}
+
+#[test]
 fn patient_bank_rule_beyond_widths_is_refused() {
     let fits = EdgeRule::new(4).patience(2).lockout(7);
     let try_make = |rule| PatientBank::<u8, 2, 1, 3>::try_new(0, rule, EdgeRule::new(1)).is_some();
