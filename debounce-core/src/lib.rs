@@ -10,6 +10,7 @@ mod law;
 mod machine;
 mod meaning;
 mod time;
+mod wiring;
 
 pub use analog::{
     AnalogSample, Chord, Hysteresis, HysteresisError, HysteresisState, Ladder, LadderError, LadderParts,
@@ -32,3 +33,8 @@ pub use meaning::{
 #[cfg(feature = "embedded-hal")]
 pub use meaning::{MatrixPins, ScanError};
 pub use time::{Period, TickClock};
+pub use wiring::{
+    Burst, Bursts, BurstsState, Monitor, MonitorLimits, MonitorState, Outside, Recorder, RecorderMode, Wear,
+};
+#[cfg(feature = "mailbox")]
+pub use wiring::{Delivery, Mailbox};

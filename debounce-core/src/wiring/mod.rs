@@ -1,0 +1,15 @@
+//! Between the line and the program: hand-over, recording, and what the field shows.
+
+mod bursts;
+#[cfg(feature = "mailbox")]
+mod mailbox;
+mod monitor;
+mod recorder;
+mod wear;
+
+pub use bursts::{Burst, Bursts, BurstsState};
+#[cfg(feature = "mailbox")]
+pub use mailbox::{Delivery, Mailbox};
+pub use monitor::{Monitor, MonitorLimits, MonitorState, Outside};
+pub use recorder::{Recorder, RecorderMode};
+pub use wear::Wear;
