@@ -33,6 +33,8 @@ pub use meaning::{
 #[cfg(feature = "embedded-hal")]
 pub use meaning::{MatrixPins, ScanError};
 pub use time::{Period, TickClock};
+#[cfg(feature = "embedded-hal-async")]
+pub use wiring::AsyncPin;
 pub use wiring::{
     Burst, Bursts, BurstsState, Monitor, MonitorLimits, MonitorState, Outside, Recorder, RecorderMode, Wear,
 };

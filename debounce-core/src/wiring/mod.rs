@@ -4,6 +4,8 @@ mod bursts;
 #[cfg(feature = "mailbox")]
 mod mailbox;
 mod monitor;
+#[cfg(feature = "embedded-hal-async")]
+mod pin_async;
 mod recorder;
 mod wear;
 
@@ -11,5 +13,7 @@ pub use bursts::{Burst, Bursts, BurstsState};
 #[cfg(feature = "mailbox")]
 pub use mailbox::{Delivery, Mailbox};
 pub use monitor::{Monitor, MonitorLimits, MonitorState, Outside};
+#[cfg(feature = "embedded-hal-async")]
+pub use pin_async::AsyncPin;
 pub use recorder::{Recorder, RecorderMode};
 pub use wear::Wear;
