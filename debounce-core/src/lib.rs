@@ -18,7 +18,7 @@ pub use analog::{
 };
 pub use bank::{
     Bank, BankState, Changes, EdgeRule, Lane, LanesStarted, PatientBank, PatientState, PortLaw, StartingBank,
-    StartingState, Word,
+    StartingBankState, Word,
 };
 pub use changeover::{Changeover, ChangeoverFault, ChangeoverReport, ChangeoverState, Throws};
 pub use envelope::{Bounds, Clause, Envelope, Latency, PerChange, PerPosition, Verdict};

@@ -9,7 +9,7 @@ mod word;
 
 pub use lane::{Lane, PortLaw};
 pub use patient::{EdgeRule, PatientBank, PatientState};
-pub use starting::{LanesStarted, StartingBank, StartingState};
+pub use starting::{LanesStarted, StartingBank, StartingBankState};
 pub use word::Word;
 
 use crate::machine::Machine;

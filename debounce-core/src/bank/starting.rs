@@ -21,11 +21,11 @@ use crate::machine::Machine;
 /// | changes of a lane before its initial position | none               | same                                           |
 /// | initial positions of a lane                   | exactly 1          | same                                           |
 ///
-/// A lane that never reads alike `2^K` times in a row never gets a position; [`StartingState::waiting`] shows it.
+/// A lane that never reads alike `2^K` times in a row never gets a position; [`StartingBankState::waiting`] shows it.
 ///
 /// # State
 /// That of the inner bank and `K + 1` words; checked by a `const` assertion below the type. Once nothing waits,
-/// [`StartingState::into_inner`] gives the inner state back, and the rest may go.
+/// [`StartingBankState::into_inner`] gives the inner state back, and the rest may go.
 ///
 /// # Panics
 /// Never. `K` outside 1 to 16 does not compile.
@@ -49,15 +49,15 @@ pub struct StartingBank<B, const K: usize> {
 /// What a [`StartingBank`] remembers.
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
 #[cfg_attr(feature = "defmt", derive(defmt::Format))]
-pub struct StartingState<W, S, const K: usize> {
+pub struct StartingBankState<W, S, const K: usize> {
     inner: S,
     waiting: W,
     alike: [W; K],
 }
 
-const _: () = assert!(size_of::<StartingState<u8, super::BankState<u8, 2>, 2>>() == 6);
+const _: () = assert!(size_of::<StartingBankState<u8, super::BankState<u8, 2>, 2>>() == 6);
 
-impl<W: Word, S: Copy, const K: usize> StartingState<W, S, K> {
+impl<W: Word, S: Copy, const K: usize> StartingBankState<W, S, K> {
     /// The lanes that have no position yet.
     #[must_use]
     pub const fn waiting(&self) -> W {
@@ -98,11 +98,11 @@ impl<B, const K: usize> StartingBank<B, K> {
 
     /// The state at power-up: every lane waits.
     #[must_use]
-    pub fn power_up<W: Word>(&self) -> StartingState<W, B::State, K>
+    pub fn power_up<W: Word>(&self) -> StartingBankState<W, B::State, K>
     where
         B: PortLaw<W>,
     {
-        StartingState { inner: self.bank.at_rest(W::NONE), waiting: W::ALL, alike: [W::NONE; K] }
+        StartingBankState { inner: self.bank.at_rest(W::NONE), waiting: W::ALL, alike: [W::NONE; K] }
     }
 }
 
@@ -112,7 +112,7 @@ where
 {
     type Input = W;
     type Output = LanesStarted<W>;
-    type State = StartingState<W, B::State, K>;
+    type State = StartingBankState<W, B::State, K>;
 
     #[inline]
     fn step(&self, state: &mut Self::State, port: W) -> LanesStarted<W> {
@@ -143,7 +143,7 @@ where
 impl<B, const K: usize> StartingBank<B, K> {
     /// Whether a tick that reads `port` would change nothing: the tick may be stopped while the port reads so.
     #[must_use]
-    pub fn is_settled<W: Word>(&self, state: &StartingState<W, B::State, K>, port: W) -> bool
+    pub fn is_settled<W: Word>(&self, state: &StartingBankState<W, B::State, K>, port: W) -> bool
     where
         B: PortLaw<W>,
     {

@@ -8,7 +8,7 @@ mod tests;
 #[cfg(feature = "embedded-hal")]
 pub use pins::{MatrixPins, ScanError};
 
-use crate::bank::{Bank, BankState, LanesStarted, PortLaw, StartingBank, StartingState, Word};
+use crate::bank::{Bank, BankState, LanesStarted, PortLaw, StartingBank, StartingBankState, Word};
 use crate::machine::Machine;
 
 /// What keeps the keys of a matrix apart.
@@ -94,7 +94,7 @@ pub struct Matrix<W, const R: usize, const K: usize> {
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
 #[cfg_attr(feature = "defmt", derive(defmt::Format))]
 pub struct MatrixState<W, const R: usize, const K: usize> {
-    rows: [StartingState<W, BankState<W, K>, K>; R],
+    rows: [StartingBankState<W, BankState<W, K>, K>; R],
 }
 
 const _: () = assert!(size_of::<MatrixState<u8, 4, 2>>() == 4 * 6);
