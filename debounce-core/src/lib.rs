@@ -9,6 +9,7 @@ mod envelope;
 mod law;
 mod machine;
 mod meaning;
+mod still;
 mod time;
 mod wiring;
 
@@ -32,11 +33,15 @@ pub use meaning::{
 };
 #[cfg(feature = "embedded-hal")]
 pub use meaning::{MatrixPins, ScanError};
+pub use still::is_still;
 pub use time::{Period, TickClock};
 #[cfg(feature = "embedded-hal-async")]
 pub use wiring::AsyncPin;
+#[cfg(feature = "embedded-hal")]
+pub use wiring::PinPort;
 pub use wiring::{
-    Burst, Bursts, BurstsState, Monitor, MonitorLimits, MonitorState, Outside, Recorder, RecorderMode, Wear,
+    Burst, Bursts, BurstsState, Monitor, MonitorLimits, MonitorState, Outside, ReadPort, Recorder,
+    RecorderMode, Wear,
 };
 #[cfg(feature = "mailbox")]
 pub use wiring::{Delivery, Mailbox};

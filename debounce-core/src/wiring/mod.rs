@@ -6,6 +6,7 @@ mod mailbox;
 mod monitor;
 #[cfg(feature = "embedded-hal-async")]
 mod pin_async;
+mod port;
 mod recorder;
 mod wear;
 
@@ -15,5 +16,8 @@ pub use mailbox::{Delivery, Mailbox};
 pub use monitor::{Monitor, MonitorLimits, MonitorState, Outside};
 #[cfg(feature = "embedded-hal-async")]
 pub use pin_async::AsyncPin;
+#[cfg(feature = "embedded-hal")]
+pub use port::PinPort;
+pub use port::ReadPort;
 pub use recorder::{Recorder, RecorderMode};
 pub use wear::Wear;
