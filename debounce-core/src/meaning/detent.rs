@@ -188,4 +188,13 @@ mod tests {
             [None, None, None, Some(QuadratureEvent::Step(Turn::Forward))]
         );
     }
+
+    #[test]
+    fn detents_lost_step_on_the_way_is_not_made_a_click() {
+        // Forward by a quarter, two quarters nobody saw, and on to the rest: one click, two, or none. It is not guessed.
+        let knob = Detents::new(RestPhases::BothAlike);
+        let mut state = Detents::POWER_UP;
+        let events = [0, 1, 3, 0].map(|quarter: usize| knob.step(&mut state, Phases::CYCLE[quarter]));
+        assert_eq!(events, [None, None, Some(QuadratureEvent::Lost), None]);
+    }
 }
