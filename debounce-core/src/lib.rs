@@ -12,6 +12,7 @@ mod machine;
 mod majority_register;
 mod shift_register;
 mod state_machine;
+mod table;
 mod time;
 
 pub use count::Count;
@@ -23,4 +24,5 @@ pub use machine::{Change, Machine, Position};
 pub use majority_register::{MajorityRegister, MajorityRegisterState, WindowWord};
 pub use shift_register::{ShiftRegister, ShiftRegisterState};
 pub use state_machine::{Phase, StateMachine, StateMachineParameters, StateMachineState};
+pub use table::{TableLaw, TableLawError, TableState};
 pub use time::{Period, TickClock};
