@@ -2,7 +2,6 @@
 
 use core::fmt;
 
-use crate::envelope::PerPosition;
 use crate::law::Law;
 use crate::machine::{Change, Machine, Position};
 
@@ -32,14 +31,14 @@ use crate::machine::{Change, Machine, Position};
 /// # Examples
 /// Two closed samples in a row make, one open sample breaks:
 /// ```
-/// use debounce_core::{Change, Law, Machine, PerPosition, Position::{Closed, Open}, TableLaw};
+/// use debounce_core::{Change, Law, Machine, Position::{Closed, Open}, TableLaw};
 ///
 /// static ROWS: [[u8; 2]; 3] = [
 ///     [0, 1], // open, at rest
 ///     [0, 2], // open, one closed sample seen
 ///     [0, 2], // closed, at rest
 /// ];
-/// static LAW: TableLaw<'static> = TableLaw::new(&ROWS, 2, PerPosition { open: 0, closed: 2 });
+/// static LAW: TableLaw<'static> = TableLaw::new(&ROWS, 2, [0, 2]);
 ///
 /// let mut state = LAW.rest(Open);
 /// assert_eq!(LAW.step(&mut state, Closed), None); // the last sample that may still be a glitch
@@ -49,15 +48,15 @@ use crate::machine::{Change, Machine, Position};
 ///
 /// A row that leads out of the table is refused by the compiler:
 /// ```compile_fail,E0080
-/// use debounce_core::{PerPosition, TableLaw};
-/// const LAW: TableLaw<'static> = TableLaw::new(&[[0, 2], [0, 1]], 1, PerPosition { open: 0, closed: 1 });
+/// use debounce_core::TableLaw;
+/// const LAW: TableLaw<'static> = TableLaw::new(&[[0, 2], [0, 1]], 1, [0, 1]);
 /// ```
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
 #[cfg_attr(feature = "defmt", derive(defmt::Format))]
 pub struct TableLaw<'a> {
     rows: &'a [[u8; 2]],
     closed_from: u8,
-    rests: PerPosition<u8>,
+    rests: [u8; 2],
 }
 
 /// What a [`TableLaw`] remembers: the number of a state.
@@ -83,12 +82,12 @@ impl<'a> TableLaw<'a> {
     /// A law from its rows: next state at an open sample, next state at a closed one.
     ///
     /// The output is open in the states before `closed_from` and closed in the others; `rests` are the states in
-    /// which the law is settled.
+    /// which the law is settled, at open and at closed.
     ///
     /// # Panics
     /// When [`try_new`](Self::try_new) refuses; in a constant that is an error at compile time.
     #[must_use]
-    pub const fn new(rows: &'a [[u8; 2]], closed_from: u8, rests: PerPosition<u8>) -> Self {
+    pub const fn new(rows: &'a [[u8; 2]], closed_from: u8, rests: [u8; 2]) -> Self {
         match Self::try_new(rows, closed_from, rests) {
             Ok(law) => law,
             Err(error) => panic!("{}", error.refusal()),
@@ -102,7 +101,7 @@ impl<'a> TableLaw<'a> {
     pub const fn try_new(
         rows: &'a [[u8; 2]],
         closed_from: u8,
-        rests: PerPosition<u8>,
+        rests: [u8; 2],
     ) -> Result<Self, TableLawError> {
         if rows.len() > Self::MOST_STATES {
             return Err(TableLawError::TooManyStates { states: rows.len() });
@@ -111,7 +110,11 @@ impl<'a> TableLaw<'a> {
         while at < rows.len() {
             let [open, closed] = rows[at];
             if open as usize >= rows.len() {
-                return Err(TableLawError::NextOutside { state: at as u8, sample: Position::Open, next: open });
+                return Err(TableLawError::NextOutside {
+                    state: at as u8,
+                    sample: Position::Open,
+                    next: open,
+                });
             }
             if closed as usize >= rows.len() {
                 let sample = Position::Closed;
@@ -119,17 +122,17 @@ impl<'a> TableLaw<'a> {
             }
             at += 1;
         }
-        if rests.open as usize >= rows.len() || rests.open >= closed_from {
-            return Err(TableLawError::NotARest { position: Position::Open, state: rests.open });
+        if rests[0] as usize >= rows.len() || rests[0] >= closed_from {
+            return Err(TableLawError::NotARest { position: Position::Open, state: rests[0] });
         }
-        if rests.closed as usize >= rows.len() || rests.closed < closed_from {
-            return Err(TableLawError::NotARest { position: Position::Closed, state: rests.closed });
+        if rests[1] as usize >= rows.len() || rests[1] < closed_from {
+            return Err(TableLawError::NotARest { position: Position::Closed, state: rests[1] });
         }
-        if rows[rests.open as usize][0] != rests.open {
-            return Err(TableLawError::RestMoves { position: Position::Open, state: rests.open });
+        if rows[rests[0] as usize][0] != rests[0] {
+            return Err(TableLawError::RestMoves { position: Position::Open, state: rests[0] });
         }
-        if rows[rests.closed as usize][1] != rests.closed {
-            return Err(TableLawError::RestMoves { position: Position::Closed, state: rests.closed });
+        if rows[rests[1] as usize][1] != rests[1] {
+            return Err(TableLawError::RestMoves { position: Position::Closed, state: rests[1] });
         }
         Ok(Self { rows, closed_from, rests })
     }
@@ -162,7 +165,8 @@ impl Machine for TableLaw<'_> {
 impl Law for TableLaw<'_> {
     #[inline]
     fn rest(&self, position: Position) -> TableState {
-        TableState(self.rests.at(position))
+        let [open, closed] = self.rests;
+        TableState(if position.is_closed() { closed } else { open })
     }
 
     #[inline]
@@ -234,11 +238,17 @@ impl fmt::Display for TableLawError {
         };
         match *self {
             Self::TooManyStates { states } => {
-                write!(f, "a table of {states} states is more than the 256 that a byte can number; minimise it")
+                write!(
+                    f,
+                    "a table of {states} states is more than the 256 that a byte can number; minimise it"
+                )
             }
             Self::NextOutside { state, sample, next } => {
                 let sample = word(sample);
-                write!(f, "state {state} leads to state {next} at a {sample} sample, but there is no such row")
+                write!(
+                    f,
+                    "state {state} leads to state {next} at a {sample} sample, but there is no such row"
+                )
             }
             Self::NotARest { position, state } => {
                 let position = word(position);
@@ -259,11 +269,12 @@ mod tests {
     use super::*;
     use Position::{Closed, Open};
 
-    const RESTS: PerPosition<u8> = PerPosition { open: 0, closed: 1 };
+    const RESTS: [u8; 2] = [0, 1];
 
     #[test]
     fn table_law_whose_numbers_fit_is_accepted_and_others_are_refused() {
-        let refused = |rows: &[[u8; 2]], closed_from, rests| TableLaw::try_new(rows, closed_from, rests).err();
+        let refused =
+            |rows: &[[u8; 2]], closed_from, rests| TableLaw::try_new(rows, closed_from, rests).err();
         assert_eq!(refused(&[[0, 1], [0, 1]], 1, RESTS), None);
         assert_eq!(
             refused(&[[0, 2], [0, 1]], 1, RESTS),

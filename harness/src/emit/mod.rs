@@ -1,0 +1,3 @@
+//! Rust for the firmware.
+
+pub mod table;

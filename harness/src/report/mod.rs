@@ -1,0 +1,3 @@
+//! What a person looks at.
+
+pub mod state_diagram;
