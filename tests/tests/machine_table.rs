@@ -3,7 +3,7 @@
 use std::hash::Hash;
 
 use debounce_core::{
-    Change, Envelope, Integrator, Law, Machine, MajorityRegister, Position, ShiftRegister, StateMachine,
+    Change, Envelope, Integrator, Law, MajorityRegister, Position, ShiftRegister, StateMachine,
     StateMachineParameters, TableLaw,
 };
 use harness::emit::table::TableRows;

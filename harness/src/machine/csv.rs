@@ -52,7 +52,8 @@ pub fn read_csv(name: &str, bytes: &[u8], reading: Reading) -> Result<MachineTab
         );
     }
     let found = match lines.first() {
-        Some(first) if lines.len() == meant => {
+        // A fault in one line must not be reported again as a gap in the table.
+        Some(first) if lines.len() == meant && faults.is_empty() => {
             let reset = first.state.clone();
             check::machine(&lines, &reset, reading, &mut faults)
         }

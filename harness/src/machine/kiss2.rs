@@ -208,10 +208,10 @@ impl File {
             self.faults.whole_file("the table names no reset state", help);
         }
         // A fault in one line must not be reported again as a gap in the table.
-        let whole = self.lines.len() == self.meant;
+        let whole = self.lines.len() == self.meant && self.meant > 0;
         let found = match &self.reset {
             Some(reset) if whole => check::machine(&self.lines, reset, reading, &mut self.faults),
-            None if whole && self.meant > 0 => {
+            None if whole => {
                 // Everything that does not need the reset state is still said.
                 check::states_alone(&self.lines, &mut self.faults);
                 None

@@ -14,6 +14,8 @@
 //! # Ok::<(), harness::prove::ProveError>(())
 //! ```
 
+#[cfg(test)]
+mod any_bytes;
 mod arrange;
 mod check;
 mod compare;

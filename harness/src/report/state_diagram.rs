@@ -204,6 +204,11 @@ impl RenderBackend for Canvas<'_> {
         let line_height = LETTER_SIZE as f64 * 1.2;
         let longest = lines.iter().map(|line| line.chars().count()).max().unwrap_or(0);
         let half_height = lines.len() as f64 * line_height / 2.0;
+        // A label is placed on its line; lifted a little it stands above it.
+        let at = match class {
+            "label" => Point::new(at.x, at.y - line_height * 0.6),
+            _ => at,
+        };
         self.extent.reach(at, longest as f64 * LETTER_SIZE as f64 * 0.3, half_height);
         for (index, line) in lines.iter().enumerate() {
             let y = at.y - half_height + line_height * (index as f64 + 0.5);
