@@ -242,11 +242,19 @@ impl File {
 /// Writes a machine in KISS2; reading it again with the same [`Reading`] gives the same machine.
 #[must_use]
 pub fn write_kiss2(machine: &MachineTable, reading: Reading) -> String {
+    write_named(machine, reading, |state| machine.name(state))
+}
+
+/// As [`write_kiss2`], with bare numbers for the names of the states: some readers take nothing else.
+#[must_use]
+pub fn write_kiss2_numbered(machine: &MachineTable, reading: Reading) -> String {
+    write_named(machine, reading, |state| state.to_string())
+}
+
+fn write_named(machine: &MachineTable, reading: Reading, name: impl Fn(usize) -> String) -> String {
     let states = machine.len();
-    let mut text = String::new();
-    let reset = machine.name(machine.reset());
-    // Writing to a string does not fail.
-    let _ = write!(text, ".i 1\n.o 1\n.p {}\n.s {states}\n.r {reset}\n", 2 * states);
+    let reset = name(machine.reset());
+    let mut text = format!(".i 1\n.o 1\n.p {}\n.s {states}\n.r {reset}\n", 2 * states);
     for state in 0..states {
         for sample in Position::BOTH {
             let next = machine.next(state, sample);
@@ -254,8 +262,8 @@ pub fn write_kiss2(machine: &MachineTable, reading: Reading) -> String {
                 Reading::Moore => machine.output_of(state),
                 Reading::Mealy => machine.output_of(next),
             };
-            let (name, next) = (machine.name(state), machine.name(next));
-            let _ = writeln!(text, "{} {name} {next} {}", sample as u8, output as u8);
+            // Writing to a string does not fail.
+            let _ = writeln!(text, "{} {} {} {}", sample as u8, name(state), name(next), output as u8);
         }
     }
     text.push_str(".e\n");

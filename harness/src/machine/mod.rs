@@ -41,7 +41,7 @@ pub use diagram::{LARGEST_DIAGRAM, terminal_diagram};
 pub(crate) use dot::arrows;
 pub use dot::dot;
 pub use fault::{TableFault, TableFileError};
-pub use kiss2::{read_kiss2, write_kiss2};
+pub use kiss2::{read_kiss2, write_kiss2, write_kiss2_numbered};
 pub use minimise::Minimised;
 pub use text::table_text;
 
