@@ -11,6 +11,7 @@ use harness::prove::observe::{Observed, Observer, Start, World, observe};
 use harness::prove::{
     Contract, Environment, LawTable, Limits, Outcome, Proof, prove, prove_contract, prove_within,
 };
+use integration_tests::predicate::each_legal_word;
 use integration_tests::toggle::{Lamp, TOGGLE};
 
 fn toggle() -> MachineTable {
@@ -212,6 +213,68 @@ fn alternate_proof_of_many_machines_agrees_with_the_observer() {
         held.iter_mut().zip(verdicts).for_each(|(count, verdict)| *count += u32::from(verdict));
     }
     assert_eq!(held, [9, 27, 27, 12, 0], "pinned, of 80 envelopes");
+}
+
+/// What all legal words up to a length show, by the separate predicate: samples of the shortest word that ends with a
+/// false edge, and worst latency of the makes that turn the output to closed and back.
+fn by_force<L: Law>(law: &L, envelope: &Envelope, length: usize) -> (Option<usize>, PerChange<u32>) {
+    let mut false_edge: Option<usize> = None;
+    let mut worst = PerChange::<u32>::default();
+    for start in Position::BOTH {
+        each_legal_word(start, envelope, length, &mut |word| {
+            let (mut state, mut contact, mut waiting) = (law.rest(start), start, Vec::new());
+            for (at, &(position, sample)) in word.iter().enumerate() {
+                if core::mem::replace(&mut contact, position) != position && position.is_closed() {
+                    waiting.push(at);
+                }
+                let Some(edge) = law.step(&mut state, sample) else { continue };
+                if waiting.is_empty() {
+                    false_edge = Some(false_edge.map_or(word.len(), |least| least.min(word.len())));
+                    return false;
+                }
+                let latency = (at - waiting.remove(0) + 1) as u32;
+                let slot = match edge {
+                    Change::Make => &mut worst.make,
+                    Change::Break => &mut worst.break_,
+                };
+                *slot = latency.max(*slot);
+            }
+            true
+        });
+    }
+    (false_edge, worst)
+}
+
+/// Compares the proof with every word of up to 9 samples; returns whether the law alternates.
+#[track_caller]
+fn agrees_with_words<L: Law>(law: &L, envelope: &Envelope) -> bool
+where
+    L::State: Hash,
+{
+    let (false_edge, worst) = by_force(law, envelope, 9);
+    match alternate(law, envelope).outcome {
+        Outcome::Faithful { bounds, .. } => {
+            let PerChange { make, break_ } = bounds.latency;
+            assert_eq!((make.worst, break_.worst), (worst.make, worst.break_), "{envelope:?}");
+            assert_eq!(false_edge, None, "{envelope:?}");
+            true
+        }
+        Outcome::Refuted { clause, witness } => {
+            assert_eq!((clause, Some(witness.ticks.len())), (Clause::FalseEdge, false_edge), "{envelope:?}");
+            false
+        }
+    }
+}
+
+#[test]
+fn alternate_proof_agrees_with_every_legal_word() {
+    let bouncing = Envelope::clean(3, 3).bounce(1, 1);
+    let disturbed = Envelope::clean(4, 4).glitch(1, 1).quiet(3);
+    let drawn = [Envelope::clean(1, 1), Envelope::clean(2, 2), bouncing, disturbed];
+    assert_eq!(drawn.map(|envelope| agrees_with_words(&toggle(), &envelope)), [true, true, true, false]);
+    let slower = [bouncing, disturbed, Envelope::clean(5, 5).bounce(1, 1).glitch(1, 0).quiet(4)];
+    let two = Lamp(ShiftRegister::new(2));
+    assert_eq!(slower.map(|envelope| agrees_with_words(&two, &envelope)), [true, true, true]);
 }
 
 /// A lamp that turns over at the break would answer a held contact never; it has no closed rest.

@@ -218,6 +218,20 @@ fn state_diagram_is_well_formed_has_classes_and_no_colours_and_is_the_same_each_
 }
 
 #[test]
+fn table_of_either_format_with_comments_windows_line_ends_or_a_byte_order_mark_is_read() {
+    let (plain, _) = machines().swap_remove(0);
+    let kiss2 = write_kiss2(&plain, Reading::Moore).replace('\n', "\r\n");
+    let csv = write_csv(&plain, Reading::Moore).replace('\n', "\r\n");
+    for text in [format!("# drawn, by hand\r\n{kiss2}"), format!("# drawn, by hand\r\n\r\n{csv}"), kiss2, csv]
+    {
+        for mark in ["", "\u{feff}"] {
+            let read = read_table("t", format!("{mark}{text}").as_bytes(), Reading::Moore).expect("a table");
+            assert_eq!(compare(&read, &plain), None, "{mark}{text}");
+        }
+    }
+}
+
+#[test]
 fn csv_table_with_words_and_either_sample_is_read() {
     let table = "# one tick of delay\nstate,sample,next,output\nidle,open,idle,open\nidle,closed,held,open\n\
                  held,1,held,1\nheld,0,idle,closed\n";

@@ -124,8 +124,7 @@ impl MajorityCopy {
     fn step_of_copy(&self, state: &mut State, sample: Position) -> Option<Change> {
         let mask = |at| (1 << self.mutation.used(at, self.window)) - 1;
         state.1 = (state.1 << 1 | i32::from(sample != state.0)) & mask(0);
-        // The window is never negative.
-        if (state.1.count_ones() as i32) < self.mutation.used(1, self.majority) {
+        if state.1.count_ones().cast_signed() < self.mutation.used(1, self.majority) {
             return None;
         }
         let contrary = !state.1 & mask(Self::TURNING);

@@ -3,7 +3,7 @@
 use proptest::prelude::*;
 use proptest::strategy::ValueTree;
 
-use super::{Reading, TableFileError, compare, read_csv, read_kiss2, write_csv, write_kiss2};
+use super::{Reading, TableFileError, compare, read_csv, read_kiss2, read_table, write_csv, write_kiss2};
 
 type Read = fn(&str, &[u8], Reading) -> Result<super::MachineTable, TableFileError>;
 
@@ -57,6 +57,7 @@ proptest! {
     fn table_of_any_bytes_is_read_or_refused(bytes in prop::collection::vec(any::<u8>(), 0..200)) {
         reads(read_kiss2, &bytes);
         reads(read_csv, &bytes);
+        reads(read_table, &bytes);
     }
 
     #[test]

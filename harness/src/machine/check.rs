@@ -291,7 +291,7 @@ fn at_rest(drawn: Drawn, reset: &Named, faults: &mut Faults) -> Option<MachineTa
         state
     };
     let rests = PerPosition { open: settled(Position::Open), closed: settled(Position::Closed) };
-    faults.is_empty().then(|| MachineTable {
+    faults.is_empty().then_some(MachineTable {
         outputs,
         next,
         names: Names::Given(names),

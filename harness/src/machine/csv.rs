@@ -1,24 +1,27 @@
 //! A next-state table as plain CSV: `state,sample,next,output`, a header and one line for each state and sample.
-//!
-//! Sample and output are 0 or `open`, 1 or `closed`; a sample of `-` stands for both. The state of the first line is
-//! the reset state. To which state or step an output belongs is the [`Reading`].
 
 use debounce_core::Position;
 
 use super::check::{self, Line, Named, refused_name};
 use super::fault::{Faults, Place, TableFileError, quoted};
-use super::{MachineTable, Reading};
+use super::{MachineTable, Reading, without_mark};
 
 const HEADER: [&str; 4] = ["state", "sample", "next", "output"];
 
 /// Reads a table in CSV.
 ///
+/// Sample and output are 0 or `open`, 1 or `closed`; a sample of `-` stands for both. The state of the first line is
+/// the reset state. To which state or step an output belongs is the [`Reading`].
+///
 /// # Errors
 /// Everything that is wrong with it, each with its place.
 pub fn read_csv(name: &str, bytes: &[u8], reading: Reading) -> Result<MachineTable, TableFileError> {
     let mut faults = Faults::default();
-    let mut reader =
-        csv::ReaderBuilder::new().has_headers(false).flexible(true).comment(Some(b'#')).from_reader(bytes);
+    let mut reader = csv::ReaderBuilder::new()
+        .has_headers(false)
+        .flexible(true)
+        .comment(Some(b'#'))
+        .from_reader(without_mark(bytes));
     let mut lines = Vec::new();
     let mut meant = 0;
     let mut has_header = false;

@@ -1,23 +1,4 @@
 //! KISS2, the open text format for state tables, as used in the benchmark sets of logic synthesis.
-//!
-//! One input bit, the sample (1: it reads closed), and one output bit, the debounced position (1: closed):
-//!
-//! ```text
-//! .i 1
-//! .o 1
-//! .p 4              the number of lines, optional
-//! .s 2              the number of states, optional
-//! .r off            the reset state
-//! 0 off off 0       sample, present state, next state, output
-//! 1 off on  0
-//! 0 on  off 1
-//! 1 on  on  1
-//! .e
-//! ```
-//!
-//! A sample of `-` stands for both. A next state of `-` or `*`, which leaves the next state open, is refused, and so
-//! is an open output: what is not said cannot be proved. `#` begins a comment. To which state or step an output
-//! belongs is the [`Reading`].
 
 use std::fmt::Write as _;
 
@@ -25,15 +6,34 @@ use debounce_core::Position;
 
 use super::check::{self, Line, Named, refused_name};
 use super::fault::{Faults, Place, TableFileError, quoted};
-use super::{MachineTable, Reading};
+use super::{MachineTable, Reading, without_mark};
 
 /// Reads a table in KISS2.
+///
+/// One input bit, the sample (1: it reads closed), and one output bit, the debounced position (1: closed):
+///
+/// ```text
+/// .i 1
+/// .o 1
+/// .p 4              the number of lines, optional
+/// .s 2              the number of states, optional
+/// .r off            the reset state
+/// 0 off off 0       sample, present state, next state, output
+/// 1 off on  0
+/// 0 on  off 1
+/// 1 on  on  1
+/// .e
+/// ```
+///
+/// A sample of `-` stands for both. A next state of `-` or `*`, which leaves the next state open, is refused, and so
+/// is an open output: what is not said cannot be proved. `#` begins a comment. To which state or step an output
+/// belongs is the [`Reading`].
 ///
 /// # Errors
 /// Everything that is wrong with it, each with its place.
 pub fn read_kiss2(name: &str, bytes: &[u8], reading: Reading) -> Result<MachineTable, TableFileError> {
     let mut file = File::default();
-    for (index, line) in bytes.split(|&byte| byte == b'\n').enumerate() {
+    for (index, line) in without_mark(bytes).split(|&byte| byte == b'\n').enumerate() {
         let line_number = index + 1;
         let Ok(text) = core::str::from_utf8(line) else {
             file.faults.at(Place { line: line_number, column: 1 }, "this line is not UTF-8 text");

@@ -223,14 +223,21 @@ impl Law for MachineTable {
     }
 }
 
-/// Reads a table in either format: KISS2 begins with a directive, such as `.i 1`, and everything else is CSV.
+/// Reads a table in either format: one whose first line, after comments, has a comma is CSV, any other KISS2.
 ///
 /// # Errors
 /// Everything that is wrong with it, each with its place.
 pub fn read_table(name: &str, bytes: &[u8], reading: Reading) -> Result<MachineTable, TableFileError> {
-    let first = bytes.split(|&byte| byte == b'\n').map(<[u8]>::trim_ascii).find(|line| !line.is_empty());
-    let is_kiss2 = first.is_some_and(|line| matches!(line[0], b'.' | b'#'));
-    if is_kiss2 { read_kiss2(name, bytes, reading) } else { read_csv(name, bytes, reading) }
+    let bytes = without_mark(bytes);
+    let mut lines = bytes.split(|&byte| byte == b'\n').map(<[u8]>::trim_ascii);
+    let first = lines.find(|line| !line.is_empty() && line[0] != b'#');
+    let is_csv = first.is_some_and(|line| line.contains(&b','));
+    if is_csv { read_csv(name, bytes, reading) } else { read_kiss2(name, bytes, reading) }
+}
+
+/// Some editors put a byte order mark first.
+fn without_mark(bytes: &[u8]) -> &[u8] {
+    bytes.strip_prefix(b"\xef\xbb\xbf").unwrap_or(bytes)
 }
 
 fn word(position: Position) -> &'static str {

@@ -250,7 +250,8 @@ impl RenderBackend for Canvas<'_> {
         let marker = |end: &str| format!(" marker-{end}=\"url(#{id}-head)\"");
         let heads = [(head_at_start, "start"), (head_at_end, "end")]
             .into_iter()
-            .filter_map(|(is_there, end)| is_there.then(|| marker(end)))
+            .filter(|(is_there, _)| *is_there)
+            .map(|(_, end)| marker(end))
             .collect::<String>();
         self.add(format_args!(
             "<path class=\"{class}\" d=\"{d}\" fill=\"none\" stroke=\"currentColor\"{heads}/>\n"
