@@ -15,10 +15,10 @@ use super::{MachineTable, Reading, without_mark};
 /// ```text
 /// .i 1
 /// .o 1
-/// .p 4              the number of lines, optional
-/// .s 2              the number of states, optional
-/// .r off            the reset state
-/// 0 off off 0       sample, present state, next state, output
+/// .p 4            # the number of lines, optional
+/// .s 2            # the number of states, optional
+/// .r off          # the reset state
+/// 0 off off 0     # sample, present state, next state, output
 /// 1 off on  0
 /// 0 on  off 1
 /// 1 on  on  1
