@@ -125,6 +125,45 @@ pub enum ProveError {
         /// The sample.
         sample: Position,
     },
+    /// A table has no states.
+    #[error("the table is no law: it has no states")]
+    NoStates,
+    /// A table has not one output for each state.
+    #[error("the table is no law: it has {states} states but {outputs} outputs")]
+    OutputsMismatch {
+        /// Number of states.
+        states: usize,
+        /// Number of outputs.
+        outputs: usize,
+    },
+    /// A step of a table leads to a state that is not there.
+    #[error(
+        "the table is no law: from state {state} {} sample leads to state {target}; the states are 0 to {}",
+        a_word(*.sample), .states - 1
+    )]
+    NoSuchState {
+        /// The state stepped from.
+        state: usize,
+        /// The sample.
+        sample: Position,
+        /// Where it should lead.
+        target: u32,
+        /// Number of states.
+        states: usize,
+    },
+    /// A table rests in a state that is not there.
+    #[error(
+        "the table is no law: it rests {} in state {target}; the states are 0 to {}",
+        word(*.position), .states - 1
+    )]
+    NoSuchRest {
+        /// Where it should rest.
+        position: Position,
+        /// The state named.
+        target: u32,
+        /// Number of states.
+        states: usize,
+    },
     /// The law has too many states.
     #[error("unfinished: the law has more than {} states ({states} found so far)", LawTable::MOST_STATES)]
     LawTooLarge {
@@ -161,6 +200,13 @@ fn word(position: Position) -> &'static str {
     match position {
         Position::Open => "open",
         Position::Closed => "closed",
+    }
+}
+
+fn a_word(position: Position) -> &'static str {
+    match position {
+        Position::Open => "an open",
+        Position::Closed => "a closed",
     }
 }
 
