@@ -88,6 +88,7 @@ mod integrator;
 mod law;
 mod machine;
 mod majority_register;
+pub mod proofs;
 mod running;
 mod shift_register;
 mod starting;
