@@ -59,7 +59,7 @@ const MOST_BELIEFS: usize = 1 << 14;
 #[derive(Clone, Debug)]
 #[non_exhaustive]
 pub enum LimitAnswer {
-    /// The least worst latencies in samples, by the proof in the docs of [`Envelope::limit`].
+    /// The least worst latencies in samples, by the [proof](debounce_core::proofs) of the closed form.
     ClosedForm(PerChange<u32>),
     /// The least worst latencies, found by exploring all that a logic can know.
     Solved(Solution),
@@ -195,9 +195,13 @@ pub fn promptest_logic(envelope: &Envelope, limits: &Limits) -> Result<LimitAnsw
 }
 
 fn solve(envelope: &Envelope, limits: &Limits, memory: Memory) -> Result<LimitAnswer, ProveError> {
-    if let Some(reason) = no_logic(envelope) {
-        return Ok(LimitAnswer::Unsolvable(reason));
+    match no_logic(envelope) {
+        Some(reason) => Ok(LimitAnswer::Unsolvable(reason)),
+        None => by_beliefs(envelope, limits, memory),
     }
+}
+
+fn by_beliefs(envelope: &Envelope, limits: &Limits, memory: Memory) -> Result<LimitAnswer, ProveError> {
     let environment = match Environment::of(envelope) {
         Err(ProveError::EnvironmentTooLarge { .. }) => {
             return Ok(LimitAnswer::Unknown { beliefs: 0, bytes: 0 });
@@ -246,4 +250,36 @@ fn no_logic(envelope: &Envelope) -> Option<NoLogic> {
     let glitch = open.min(closed);
     (e.quiet <= glitch && e.calm <= open.max(closed))
         .then_some(NoLogic::AlwaysDisturbed { quiet: e.quiet, glitch })
+}
+
+#[cfg(test)]
+mod tests {
+    use debounce_core::Envelope;
+
+    use super::{LimitAnswer, Limits, Memory, NoLogic, by_beliefs, no_logic};
+
+    /// What is read off the envelope without looking at a single belief is what the beliefs say too.
+    #[test]
+    fn no_logic_read_off_the_envelope_agrees_with_beliefs() {
+        let mut agreed = 0;
+        for (bounce, open, closed) in [(0, 1, 1), (1, 1, 2), (2, 2, 1), (0, 2, 2), (1, 3, 2)] {
+            for quiet in 1..=2 {
+                for calm in 0..=3 {
+                    let envelope = Envelope::clean(20, 20)
+                        .bounce(bounce, 1)
+                        .glitch(open, closed)
+                        .quiet(quiet)
+                        .calm(calm);
+                    let answer = by_beliefs(&envelope, &Limits::default(), Memory::WhatMatters);
+                    let unsolvable = matches!(
+                        answer,
+                        Ok(LimitAnswer::Unsolvable(NoLogic::AlwaysInDoubt { ref witness })) if witness.loop_from.is_some()
+                    );
+                    assert_eq!(unsolvable, no_logic(&envelope).is_some(), "{envelope:?}: {answer:?}");
+                    agreed += u32::from(unsolvable);
+                }
+            }
+        }
+        assert_eq!(agreed, 0);
+    }
 }

@@ -308,6 +308,31 @@ pub fn prove_within(logic: &LawTable, envelope: &Envelope, limits: &Limits) -> R
     })
 }
 
+/// Calls `visit` with every state that `law` and `envelope` can be in together: the envelope's, the law's, and how many
+/// changes are unreported. For an invariant of one's own. Returns how many there are; where the law is refuted, those
+/// up to the samples that refute it.
+///
+/// # Errors
+/// As [`prove`]; and where a dwell falls between two samples.
+pub fn each_reachable_state<L: Law>(
+    law: &L,
+    envelope: &Envelope,
+    limits: &Limits,
+    mut visit: impl FnMut(&EnvironmentState, &L::State, u32),
+) -> Result<u64, ProveError>
+where
+    L::State: Hash,
+{
+    let environment = Environment::of(envelope)?;
+    let (logic, states) = LawTable::with_states(law)?;
+    let product = Product { environment: &environment, logic: &logic };
+    let explored = explore::explore(&product, limits)?;
+    for node in explored.visited.nodes() {
+        visit(environment.state(node.environment()), &states[node.logic()], product.pending(node));
+    }
+    Ok(explored.states)
+}
+
 /// The verdict where a dwell may fall between two samples: a miss, whatever the logic.
 fn unseen(logic: &LawTable, envelope: &Envelope, position: Position) -> Proof {
     let outcome =
