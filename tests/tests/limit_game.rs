@@ -225,6 +225,24 @@ fn limit_short_dwells_forgetting_costs_nothing() {
     assert_eq!((envelopes.len(), solvable), (576, 221));
 }
 
+/// Envelopes as wide as occur in practice; the numbers of beliefs and states change only with the solver.
+#[test]
+fn limit_wide_envelopes_are_solved_with_few_beliefs() {
+    let alike = |bounce, glitch, dwell| {
+        Envelope::clean(dwell, dwell).bounce(bounce, bounce).glitch(glitch, glitch).quiet(glitch + 1)
+    };
+    for (envelope, beliefs, states) in [(alike(8, 3, 24), 82, 46), (alike(16, 4, 60), 179, 92)] {
+        let solution = solved(&envelope);
+        assert_eq!(Some(solution.latency), envelope.limit(), "{envelope:?}");
+        assert_eq!((solution.beliefs, solution.logic.len()), (beliefs, states), "{envelope:?}");
+    }
+    let between = Envelope::clean(80, 80).bounce(8, 8).glitch(4, 6).quiet(5);
+    let solution = solved(&between);
+    assert_eq!(proved(&solution, &between), solution.latency);
+    assert_eq!(solution.latency, PerChange { make: 23, break_: 23 });
+    assert_eq!((solution.beliefs, solution.logic.len()), (303, 88));
+}
+
 #[track_caller]
 fn unsolvable(envelope: Envelope) -> NoLogic {
     match limit(&envelope, &Limits::default()) {

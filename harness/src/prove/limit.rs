@@ -172,7 +172,7 @@ pub fn limit(envelope: &Envelope, limits: &Limits) -> Result<LimitAnswer, ProveE
 /// // Quiet lies between the two widths, where no formula is known.
 /// let line = Envelope::clean(30, 30).bounce(3, 2).glitch(1, 3).quiet(2);
 /// let LimitAnswer::Solved(best) = solve_limit(&line, &Limits::default())? else { panic!("a small game") };
-/// assert_eq!(best.latency, PerChange { make: 10, break_: 7 });
+/// assert_eq!(best.latency, PerChange { make: 9, break_: 8 });
 /// # Ok::<(), harness::prove::ProveError>(())
 /// ```
 ///
