@@ -21,6 +21,10 @@
 //!   worst latencies at make and at break are each the least that exist. Make and break never have to be traded
 //!   for each other: the frontier of the two is always a single point.
 //!
+//! A law must rest, so the table begins not with the start itself but with the belief after ever so many samples of the
+//! position there. The start may always stay as it is, so these samples teach nothing and only add members; whatever
+//! can come after them can come after the start too, and the worst is the same.
+//!
 //! The prompt logic is a finite table over beliefs. It is proved like any other logic, and its worst latencies are
 //! the limit.
 //!
