@@ -1,8 +1,8 @@
 //! Why the closed form of the [limit](crate::Envelope::limit) holds for numbers of any size.
 //!
 //! This module is text only. What it proves is also compared with exhaustive search inside stated sizes (tests
-//! `limit_*`); the proof is what carries beyond them. The conditions of the closed forms behind
-//! [`Verdict`](crate::Verdict) are not proved here: each is compared with the search in `closed_forms.rs`.
+//! `limit_*`); the proof is what carries beyond them. The closed forms behind [`Verdict`](crate::Verdict) are proved in
+//! [`verdict`].
 //!
 //! # Words
 //!
@@ -105,3 +105,5 @@
 //! A dwell shorter than asked for in 2 is not always too short for the limit, but it may be: with `B = 5` at make and 1 at
 //! break, without disturbances and with a closed dwell of 8, no logic reports a break within 2 samples, as the form
 //! would say, but one does within 3.
+
+pub mod verdict;
