@@ -83,6 +83,12 @@ impl StudyAnswer {
                 .map(|times| format!(", {times:.2} x what no tick could beat"))
                 .unwrap_or_default(),
         ))?;
+        if let Some(wider) = found.explored_wider() {
+            lines.more(&format!(
+                "explored with dwells of {} open and {} closed and a quiet of {} samples, which allows all that the envelope does and more",
+                wider.dwell.open, wider.dwell.closed, wider.quiet
+            ))?;
+        }
         if let Some(line) = beyond(found, tick) {
             lines.more(&line)?;
         }

@@ -302,6 +302,7 @@ pub fn prove_contract(
     contract: Contract,
     limits: &Limits,
 ) -> Result<Proof, ProveError> {
+    refuse_hopeless(logic, envelope, limits)?;
     let environment = match Environment::under(envelope, contract) {
         Err(ProveError::DwellUnseen { position }) => return Ok(unseen(logic, envelope, contract, position)),
         other => other?,
@@ -351,6 +352,25 @@ where
     }
     Ok(explored.states)
 }
+
+/// Refuses an envelope whose automaton alone would not fit, before its states are enumerated.
+///
+/// Every time that the contact has held occurs together with every time since the last disturbance, up to dwell
+/// and quiet, so the automaton has at least about so many states.
+fn refuse_hopeless(logic: &LawTable, envelope: &Envelope, limits: &Limits) -> Result<(), ProveError> {
+    let e = envelope.delivered();
+    let quiet = if e.glitch.open == 0 && e.glitch.closed == 0 { 1 } else { u128::from(e.quiet) + 1 };
+    let states = (u128::from(e.dwell.open) + u128::from(e.dwell.closed)) * quiet;
+    let (pairs, limit) = (states * logic.len() as u128, limits.memory_bytes);
+    // Two bits a pair in the set of visited ones, and about 64 bytes a state while the automaton is built.
+    let bytes = (pairs / 4).max(states * 64);
+    let allowed =
+        u128::from(limit).max(if pairs / 4 <= u128::from(limit) { MOST_ENVIRONMENT_BYTES } else { 0 });
+    if bytes > allowed { Err(ProveError::TooLarge { pairs, bytes, limit }) } else { Ok(()) }
+}
+
+/// An automaton may take this much while it is built, even where the set of visited states must be smaller.
+const MOST_ENVIRONMENT_BYTES: u128 = 1 << 27;
 
 /// The verdict where a dwell may fall between two samples: a miss, whatever the logic.
 fn unseen(logic: &LawTable, envelope: &Envelope, contract: Contract, position: Position) -> Proof {
