@@ -2,7 +2,7 @@
 
 use std::fs;
 use std::io::{self, Write};
-use std::path::PathBuf;
+use std::path::{Path, PathBuf};
 
 use clap::{Args, ValueEnum};
 use debounce_core::{Change, Envelope, PerChange, Period, TickClock};
@@ -13,11 +13,17 @@ use super::input::Input;
 use super::lines::{Lines, grouped, strong};
 use super::recordings::RequirementInput;
 use super::{Answer, Failure, Outcome, OutputFolder, Session};
+use crate::emit::module_name;
+use crate::emit::table::table_law;
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
-use crate::machine::{MachineTable, Reading, TableFault, TableFileError, read_table};
+use crate::machine::{
+    MachineTable, Reading, TableFault, TableFileError, dot, read_table, table_text, terminal_diagram,
+    write_csv, write_kiss2,
+};
 use crate::problem::{Problem, Problems, plain_reason};
 use crate::prove::{self, Contract, LawTable, Limits, Proof, prove_contract};
+use crate::report::state_diagram::state_diagram;
 use crate::report::timing::TimingDiagram;
 use crate::report::witness::write_witness;
 use crate::report::{json as report, words};
@@ -53,6 +59,9 @@ pub struct ProveArguments {
     /// Where a counter-example is written, as VCD
     #[arg(long, value_name = "FILE")]
     pub witness: Option<PathBuf>,
+    /// Where the machine behind the law is written, minimised; the ending says how: kiss2, csv, txt, dot, svg, rs
+    #[arg(long, value_name = "FILE")]
+    pub machine: Option<PathBuf>,
 }
 
 /// What an output of a table belongs to.
@@ -116,12 +125,19 @@ impl ProveArguments {
         let proof = prove_contract(&logic.table, &envelope, contract, &limits)
             .map_err(|error| Problem::new(error.to_string()))?;
         let limit = envelope.limit().filter(|_| contract == Contract::Follow);
-        let mut written = None;
+        let mut written = Vec::new();
+        if let Some(path) = &self.machine {
+            let (folder, name) = OutputFolder::of_file(path)?;
+            let text = machine_file(&logic, path)?;
+            let mut files = folder.stage();
+            files.add(&name, |out| out.write_all(text.as_bytes()))?;
+            written.extend(files.commit()?);
+        }
         if let (Some((folder, name)), Some((_, witness))) = (file, proof.refutation()) {
             let period = tick.unwrap_or_else(|| Period::from_ms(1));
             let mut files = folder.stage();
             files.add(&name, |out| write_witness(out, witness, period, &self.again()))?;
-            written = files.commit()?.pop();
+            written.extend(files.commit()?);
         }
         Ok(Box::new(Proved { logic, envelope, tick, proof, limit, written, again: self.again() }))
     }
@@ -213,6 +229,35 @@ impl ProveArguments {
     }
 }
 
+/// The machine behind a law, minimised, in the format that the ending of the file names.
+fn machine_file(logic: &Named, path: &Path) -> Result<String, Problem> {
+    let machine = logic.machine.minimised().machine;
+    let refused = |message: String| Problem::new(message).in_file(path);
+    let ending = path.extension().and_then(|ending| ending.to_str()).unwrap_or_default();
+    match ending {
+        "kiss2" => Ok(write_kiss2(&machine, Reading::Moore)),
+        "csv" => Ok(write_csv(&machine, Reading::Moore)),
+        "txt" => {
+            let diagram = terminal_diagram(&machine).map_or(String::new(), |diagram| format!("\n{diagram}"));
+            Ok(format!("{}{diagram}", table_text(&machine)))
+        }
+        "dot" => Ok(dot(&machine)),
+        "svg" => state_diagram(&machine, "machine").ok_or_else(|| {
+            refused(format!("a diagram of {} states cannot be read", machine.len()))
+                .help("write it as .dot or .kiss2 instead")
+        }),
+        "rs" => table_law(&machine, &constant_name(path)).map_err(|error| refused(error.to_string())),
+        other => Err(refused(format!("\"{other}\" is no format for a machine"))
+            .help("end the file in .kiss2, .csv, .txt, .dot, .svg or .rs")),
+    }
+}
+
+/// The name of the table in the module: that of the file, as constants are written.
+fn constant_name(path: &Path) -> String {
+    let stem = path.file_stem().and_then(|stem| stem.to_str()).unwrap_or("logic");
+    module_name(stem).to_uppercase()
+}
+
 /// Every fault of a table, with its place.
 fn table_problems(error: &TableFileError) -> Problems {
     let one = |fault: &TableFault| {
@@ -244,7 +289,7 @@ struct Proved {
     tick: Option<Period>,
     proof: Proof,
     limit: Option<PerChange<u32>>,
-    written: Option<PathBuf>,
+    written: Vec<PathBuf>,
     again: String,
 }
 
@@ -317,13 +362,13 @@ impl Answer for Proved {
                 lines.item("Refuted", &strong(words::clause(*clause)))?;
                 self.size(&mut lines)?;
                 lines.plain(&format!("\na shortest waveform that shows it:\n{}", TimingDiagram(witness)))?;
-                lines.plain(&format!("\nagain: {}\n", self.again))?;
-                if let Some(path) = &self.written {
-                    lines.plain(&format!("written: {}\n", path.display()))?;
-                }
-                Ok(())
+                lines.plain(&format!("\nagain: {}\n", self.again))
             }
+        }?;
+        for path in &self.written {
+            lines.plain(&format!("written: {}\n", path.display()))?;
         }
+        Ok(())
     }
 
     fn to_json(&self) -> Value {
