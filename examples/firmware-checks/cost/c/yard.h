@@ -10,18 +10,45 @@ enum edge { NONE = -1, BREAK = 0, MAKE = 1 };
 /* What a program does at an edge: a call that returns at once. */
 void cost_report(int edge);
 
-/*
- * Takes every sample from `next` to `end`. The state is in memory between two ticks, as it is in a program that
- * does something else in between; the empty statement makes the compiler believe that.
- */
+/* Gives the samples one by one and notes the time at each, as the Rust side has it. */
+struct feed {
+    const uint8_t *last;
+    uint32_t *note;
+    const volatile uint32_t *clock;
+};
+
+/* The place of the next sample; the same instructions as on the Rust side. */
+static inline const uint8_t *next(struct feed *feed)
+{
+    const uint8_t *place;
+    uint32_t time;
+    __asm__ volatile(".syntax unified\n"
+                     "ldr %1, [%2, #8]\n"
+                     "ldr %1, [%1]\n"
+                     "ldr %0, [%2, #4]\n"
+                     "str %1, [%0]\n"
+                     "adds %0, #4\n"
+                     "str %0, [%2, #4]\n"
+                     "ldr %0, [%2]\n"
+                     "adds %0, #1\n"
+                     "str %0, [%2]\n"
+                     : "=&l"(place), "=&l"(time)
+                     : "l"(feed)
+                     : "memory", "cc");
+    return place;
+}
+
+/* Takes the samples that the feed gives until it stands at `end`, with the state in memory. */
 #define LOOP(name, state_type, step)                                                       \
-    void name(const uint8_t *next, const uint8_t *end, state_type *state)                  \
+    void name(struct feed *feed, const uint8_t *end, state_type *state)                    \
     {                                                                                      \
-        while (next != end) {                                                              \
-            int edge = step(state, *next++);                                               \
+        for (;;) {                                                                         \
+            const uint8_t *place = next(feed);                                             \
+            if (place == end)                                                              \
+                break;                                                                     \
+            int edge = step(state, *place);                                                \
             if (edge != NONE)                                                              \
                 cost_report(edge);                                                         \
-            __asm__ volatile("" : "+r"(next), "+r"(state) : : "memory");                   \
         }                                                                                  \
     }
 

@@ -1,12 +1,12 @@
 //! Everything that is measured.
 
 use debounce_core::{
-    Change, Config, ConstLaw, Integrator, Law, Machine, MajorityRegister, Position, ShiftRegister, StateMachine,
-    StateMachineParameters,
+    Change, Config, ConstLaw, Integrator, Law, Machine, MajorityRegister, Position, ShiftRegister,
+    StateMachine, StateMachineParameters,
 };
 use rig::Counter;
 
-use crate::measure::{elsewhere, measure, report};
+use crate::measure::{Feed, measure, next, report};
 
 /// A law with constant parameters: inlined into the loop, and as a function that the loop calls.
 macro_rules! laws {
@@ -33,36 +33,34 @@ macro_rules! laws {
             }
 
             #[inline(never)]
-            pub(super) unsafe extern "C" fn inlined(
-                mut next: *const Position,
-                end: *const Position,
-                mut state: *mut State,
-            ) {
-                while next != end {
-                    // SAFETY: the caller gives a slice by its ends, and a state.
-                    let change = unsafe { LAW.step(&mut *state, *next) };
+            pub(super) unsafe extern "C" fn inlined(feed: *mut Feed, end: *const Position, state: *mut State) {
+                loop {
+                    // SAFETY: the caller gives a feed with room for the notes, and a state.
+                    let place = unsafe { next(feed) };
+                    if place == end {
+                        break;
+                    }
+                    // SAFETY: the same.
+                    let change = unsafe { LAW.step(&mut *state, *place) };
                     if let Some(change) = change {
                         report(change);
                     }
-                    next = next.wrapping_add(1);
-                    elsewhere(&mut next, &mut state);
                 }
             }
 
             #[inline(never)]
-            pub(super) unsafe extern "C" fn called(
-                mut next: *const Position,
-                end: *const Position,
-                mut state: *mut State,
-            ) {
-                while next != end {
-                    // SAFETY: the caller gives a slice by its ends, and a state.
-                    let change = unsafe { step(&mut *state, *next) };
+            pub(super) unsafe extern "C" fn called(feed: *mut Feed, end: *const Position, state: *mut State) {
+                loop {
+                    // SAFETY: the caller gives a feed with room for the notes, and a state.
+                    let place = unsafe { next(feed) };
+                    if place == end {
+                        break;
+                    }
+                    // SAFETY: the same.
+                    let change = unsafe { step(&mut *state, *place) };
                     if let Some(change) = change {
                         report(change);
                     }
-                    next = next.wrapping_add(1);
-                    elsewhere(&mut next, &mut state);
                 }
             }
         }
@@ -89,8 +87,8 @@ laws! {
 macro_rules! plain_c {
     ($($name:ident: $bytes:literal, $inlined:ident, $called:ident;)*) => {
         unsafe extern "C" {$(
-            fn $inlined(next: *const Position, end: *const Position, state: *mut [u8; $bytes]);
-            fn $called(next: *const Position, end: *const Position, state: *mut [u8; $bytes]);
+            fn $inlined(feed: *mut Feed, end: *const Position, state: *mut [u8; $bytes]);
+            fn $called(feed: *mut Feed, end: *const Position, state: *mut [u8; $bytes]);
         )*}
 
         fn plain_c(counter: &Counter) {$(

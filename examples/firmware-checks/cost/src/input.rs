@@ -20,27 +20,40 @@ pub(crate) enum Kind {
 
 impl Kind {
     pub(crate) const ALL: [Self; 3] = [Self::Constant, Self::Random, Self::Contact];
+}
 
-    /// Fills `samples` with this kind, the same every time.
-    pub(crate) fn fill(self, samples: &mut [Position]) {
-        let mut dice = Dice(0x9e37_79b9);
-        match self {
-            Self::Constant => samples.fill(Position::Open),
-            Self::Random => samples.fill_with(|| dice.position()),
-            Self::Contact => {
-                let (mut held, mut left, mut noise) = (Position::Open, 40, 0);
-                samples.fill_with(|| {
-                    if noise > 0 {
-                        noise -= 1;
-                        return dice.position();
-                    }
-                    let sample = held;
-                    left -= 1;
-                    if left == 0 {
-                        (held, left, noise) = (held.opposite(), 40 + dice.roll() % 128, 8);
-                    }
-                    sample
-                });
+/// Samples of one kind, the same ones every time.
+pub(crate) struct Source {
+    kind: Kind,
+    dice: Dice,
+    held: Position,
+    /// Ticks until the noise.
+    left: u32,
+    /// Ticks of noise before it is held.
+    noise: u32,
+}
+
+impl Source {
+    pub(crate) fn new(kind: Kind) -> Self {
+        Self { kind, dice: Dice(0x9e37_79b9), held: Position::Open, left: 40, noise: 0 }
+    }
+
+    pub(crate) fn sample(&mut self) -> Position {
+        match self.kind {
+            Kind::Constant => Position::Open,
+            Kind::Random => self.dice.position(),
+            Kind::Contact if self.noise > 0 => {
+                self.noise -= 1;
+                self.dice.position()
+            }
+            Kind::Contact => {
+                let sample = self.held;
+                self.left -= 1;
+                if self.left == 0 {
+                    (self.held, self.left, self.noise) =
+                        (self.held.opposite(), 40 + self.dice.roll() % 128, 8);
+                }
+                sample
             }
         }
     }

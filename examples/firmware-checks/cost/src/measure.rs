@@ -6,10 +6,23 @@ use core::fmt::{self, Write};
 use debounce_core::{Change, Position};
 use rig::{Counter, say};
 
-use crate::input::{Kind, TICKS};
+use crate::input::{Kind, Source, TICKS};
 
-/// A loop over samples: from the first to the end, with the state in memory.
-pub(crate) type Loop<S> = unsafe extern "C" fn(*const Position, *const Position, *mut S);
+/// A loop over the samples that `feed` gives until it stands at `end`, with the state in memory.
+pub(crate) type Loop<S> = unsafe extern "C" fn(feed: *mut Feed, end: *const Position, state: *mut S);
+
+/// Gives the samples one by one and notes the time at each.
+#[repr(C)]
+pub(crate) struct Feed {
+    last: *const Position,
+    note: *mut u32,
+    clock: *const u32,
+}
+
+/// The instructions in a tick that are the loop's: those of [`next`], the look whether that was the last (2), and the
+/// load of the sample.
+const OF_THE_LOOP: u32 = OF_NEXT + 2 + 1;
+const OF_NEXT: u32 = if cfg!(target_arch = "arm") { 9 } else { 8 };
 
 /// What a program does at an edge: a call that returns at once. It is counted where an edge is reported.
 #[unsafe(no_mangle)]
@@ -24,74 +37,81 @@ pub(crate) fn report(change: Change) {
     cost_report(change as i32);
 }
 
-/// Makes the compiler believe that something else happens here, which may look at the state.
+/// The place of the next sample; the time is noted.
+///
+/// It is found by the same instructions in every loop that is measured, so that what the compiler makes of a loop does
+/// not count for or against what is in it; and the compiler must believe that the state is looked at here, as it is in
+/// a program that does something else between two ticks.
+///
+/// # Safety
+/// The feed has room for another note.
 #[inline(always)]
-pub(crate) fn elsewhere<S>(next: &mut *const Position, state: &mut *mut S) {
-    // SAFETY: nothing is done.
-    unsafe { asm!("/* {0} {1} */", inout(reg) *next, inout(reg) *state, options(nostack, preserves_flags)) };
-}
-
-/// The loop with nothing in it but the sample: what is not the tick's.
-#[inline(never)]
-unsafe extern "C" fn empty(mut next: *const Position, end: *const Position, mut state: *mut ()) {
-    while next != end {
-        // SAFETY: the caller gives a slice by its ends.
-        let sample = unsafe { *next };
-        // SAFETY: nothing is done with it.
-        unsafe { asm!("/* {0} */", in(reg) sample as u32, options(nomem, nostack, preserves_flags)) };
-        next = next.wrapping_add(1);
-        elsewhere(&mut next, &mut state);
+pub(crate) unsafe fn next(feed: *mut Feed) -> *const Position {
+    let place;
+    // SAFETY: the caller's promise.
+    unsafe {
+        #[cfg(target_arch = "arm")]
+        asm!(
+            "ldr {time}, [{feed}, #8]",
+            "ldr {time}, [{time}]",
+            "ldr {place}, [{feed}, #4]",
+            "str {time}, [{place}]",
+            "adds {place}, #4",
+            "str {place}, [{feed}, #4]",
+            "ldr {place}, [{feed}]",
+            "adds {place}, #1",
+            "str {place}, [{feed}]",
+            feed = in(reg) feed, place = out(reg) place, time = out(reg) _, options(nostack)
+        );
+        #[cfg(target_arch = "riscv32")]
+        asm!(
+            "csrr {time}, minstret",
+            "lw {place}, 4({feed})",
+            "sw {time}, 0({place})",
+            "addi {place}, {place}, 4",
+            "sw {place}, 4({feed})",
+            "lw {place}, 0({feed})",
+            "addi {place}, {place}, 1",
+            "sw {place}, 0({feed})",
+            feed = in(reg) feed, place = out(reg) place, time = out(reg) _, options(nostack)
+        );
     }
+    place
 }
 
-static mut SAMPLES: [Position; TICKS] = [Position::Open; TICKS];
+/// How many ticks are measured at once: as many as the smallest memory holds.
+const CHUNK: usize = 2000;
+const CHUNKS: usize = TICKS / CHUNK;
+
+static mut SAMPLES: [Position; CHUNK] = [Position::Open; CHUNK];
+// One more than samples: the time at the end.
+static mut NOTES: [u32; CHUNK + 1] = [0; CHUNK + 1];
 
 /// Measures `run` from the state `start` and prints the row that begins with `name`.
 pub(crate) fn measure<S: Copy>(counter: &Counter, name: fmt::Arguments<'_>, start: S, run: Loop<S>) {
     let mut row = Row { text: [0; 200], length: 0 };
     let _ = write!(row, "{name}: state {} bytes", size_of::<S>());
     for kind in Kind::ALL {
-        // SAFETY: there is one thread, and nobody else holds the samples.
-        let samples = unsafe { &mut *(&raw mut SAMPLES) };
-        kind.fill(samples);
-        let idle = Cost::of(counter, samples, (), empty);
-        let cost = Cost::of(counter, samples, start, run);
-        let _ = write!(row, "; {kind} total {} worst {}", cost.total - idle.total, cost.worst - idle.worst);
+        let (mut source, mut state) = (Source::new(kind), start);
+        let (mut total, mut worst) = (0, 0);
+        for _ in 0..CHUNKS {
+            // SAFETY: there is one thread, and nobody else holds samples and notes.
+            let (samples, notes) = unsafe { (&mut *(&raw mut SAMPLES), &mut *(&raw mut NOTES)) };
+            samples.fill_with(|| source.sample());
+            let ends = samples.as_ptr_range();
+            let mut feed =
+                Feed { last: ends.start.wrapping_sub(1), note: notes.as_mut_ptr(), clock: Counter::CLOCK };
+            // SAFETY: the feed stands before the samples of a slice, and there is a note for each and the end.
+            unsafe { run(&raw mut feed, ends.end, &raw mut state) };
+            for pair in notes.windows(2) {
+                let tick = counter.between(pair[0], pair[1]) - OF_THE_LOOP;
+                total += tick;
+                worst = worst.max(tick);
+            }
+        }
+        let _ = write!(row, "; {kind} total {total} worst {worst}");
     }
     say!("{}", row.text());
-}
-
-struct Cost {
-    /// Instructions of all ticks.
-    total: u32,
-    /// Instructions of the dearest tick.
-    worst: u32,
-}
-
-impl Cost {
-    fn of<S: Copy>(counter: &Counter, samples: &[Position], start: S, run: Loop<S>) -> Self {
-        let mut state = start;
-        let together = timed(counter, samples, &mut state, run);
-        // One tick at a time: the same ticks, and as many times what happens around the loop.
-        let (mut state, mut apart, mut dearest) = (start, 0, 0);
-        for sample in samples {
-            let cost = timed(counter, core::slice::from_ref(sample), &mut state, run);
-            apart += cost;
-            dearest = dearest.max(cost);
-        }
-        let rounds = samples.len() as u32 - 1;
-        let around = (apart - together) / rounds;
-        assert_eq!(around * rounds, apart - together, "the loop was unrolled: a tick has no cost of its own");
-        Self { total: together - around, worst: dearest - around }
-    }
-}
-
-/// A function of its own, so that what happens around the loop is the same every time.
-#[inline(never)]
-fn timed<S>(counter: &Counter, samples: &[Position], state: &mut S, run: Loop<S>) -> u32 {
-    let ends = samples.as_ptr_range();
-    // SAFETY: the ends of a slice, and a state.
-    counter.count(|| unsafe { run(ends.start, ends.end, state) })
 }
 
 struct Row {

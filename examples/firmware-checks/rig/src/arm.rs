@@ -62,8 +62,14 @@ const CONTROL: *mut u32 = 0xe000_e010 as *mut u32;
 const RELOAD: *mut u32 = 0xe000_e014 as *mut u32;
 const CURRENT: *mut u32 = 0xe000_e018 as *mut u32;
 
+pub(crate) const CLOCK: *const u32 = CURRENT;
+
 /// SysTick counts down in 24 bits.
-pub(crate) const WRAP: u32 = 0x00ff_ffff;
+const WRAP: u32 = 0x00ff_ffff;
+
+pub(crate) fn steps(before: u32, after: u32) -> u32 {
+    before.wrapping_sub(after) & WRAP
+}
 
 pub(crate) fn start_clock() {
     // SAFETY: the registers of SysTick, which nothing else uses; on, at the processor clock, without interrupt.
@@ -74,11 +80,10 @@ pub(crate) fn start_clock() {
     }
 }
 
-/// A clock that counts up.
 #[inline(always)]
 pub(crate) fn clock() -> u32 {
     // SAFETY: reading SysTick changes nothing.
-    !unsafe { CURRENT.read_volatile() } & WRAP
+    unsafe { CURRENT.read_volatile() }
 }
 
 /// `2 * rounds` instructions more than for no round.

@@ -4,15 +4,13 @@ use core::sync::atomic::{Ordering, compiler_fence};
 
 use crate::machine;
 
-/// Counts the instructions of a piece of code, exactly.
+/// Counts the instructions between two readings of a clock, exactly.
 ///
 /// With `-icount` the emulator's time advances by a fixed amount with every instruction, and a timer shows it. How
-/// much the timer moves in an instruction is found from a loop whose length is known, and checked with another.
+/// much the timer moves in an instruction is found from a loop whose length is known, and checked with others.
 pub struct Counter {
-    // Clock steps in `UNIT` instructions.
+    /// Clock steps in `UNIT` instructions.
     steps: u32,
-    // Clock steps of a measurement of nothing.
-    idle: u32,
 }
 
 const UNIT: u32 = 20_000;
@@ -26,7 +24,7 @@ impl Counter {
     pub fn new() -> Self {
         machine::start_clock();
         let short = spinning(1);
-        let counter = Self { steps: spinning(1 + UNIT / 2) - short, idle: steps(|| ()) };
+        let counter = Self { steps: spinning(1 + UNIT / 2) - short };
         assert!(counter.steps >= UNIT, "the timer is too coarse: run the emulator with -icount shift=10");
         for rounds in [2, 3, 10, 777, 12_345] {
             let found = counter.instructions(spinning(rounds) - short);
@@ -35,10 +33,13 @@ impl Counter {
         counter
     }
 
-    /// The instructions that `work` takes, its call included.
-    #[inline(always)]
-    pub fn count(&self, work: impl FnOnce()) -> u32 {
-        self.instructions(steps(work) - self.idle)
+    /// Where the clock is read; a null pointer where an instruction reads it.
+    pub const CLOCK: *const u32 = machine::CLOCK;
+
+    /// The instructions from the one that read `before` to the one that read `after`.
+    #[must_use]
+    pub fn between(&self, before: u32, after: u32) -> u32 {
+        self.instructions(machine::steps(before, after))
     }
 
     fn instructions(&self, steps: u32) -> u32 {
@@ -57,14 +58,9 @@ impl Default for Counter {
 /// The steps of a loop; a function of its own, so that all that differs between two calls is the rounds.
 #[inline(never)]
 fn spinning(rounds: u32) -> u32 {
-    steps(|| machine::spin(rounds))
-}
-
-#[inline(always)]
-fn steps(work: impl FnOnce()) -> u32 {
     let before = machine::clock();
     compiler_fence(Ordering::SeqCst);
-    work();
+    machine::spin(rounds);
     compiler_fence(Ordering::SeqCst);
-    machine::clock().wrapping_sub(before) & machine::WRAP
+    machine::steps(before, machine::clock())
 }
