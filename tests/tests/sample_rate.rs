@@ -3,7 +3,7 @@
 //! The rule of thumb: 30 Hz catches every press of 70 ms and more with bounce up to 33 ms; 10 Hz and 5 Hz cannot
 //! guarantee even a press of 150 ms. The tool is not told so; it must come out of envelope, clock and proof.
 
-use debounce_core::{Clause, Period, PerChange, ShiftRegister, TickClock};
+use debounce_core::{Clause, PerChange, Period, ShiftRegister, TickClock};
 use harness::envelope::PhysicalEnvelope;
 use harness::prove::{Outcome, prove};
 

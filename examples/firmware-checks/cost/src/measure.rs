@@ -82,10 +82,12 @@ pub(crate) unsafe fn next(feed: *mut Feed) -> *const Position {
 /// How many ticks are measured at once: as many as the smallest memory holds.
 const CHUNK: usize = 2000;
 const CHUNKS: usize = TICKS / CHUNK;
+/// And one before them, which is not counted: what a loop does once, before its first tick, falls into it.
+const SAMPLES_OF_A_CHUNK: usize = 1 + CHUNK;
 
-static mut SAMPLES: [Position; CHUNK] = [Position::Open; CHUNK];
+static mut SAMPLES: [Position; SAMPLES_OF_A_CHUNK] = [Position::Open; SAMPLES_OF_A_CHUNK];
 // One more than samples: the time at the end.
-static mut NOTES: [u32; CHUNK + 1] = [0; CHUNK + 1];
+static mut NOTES: [u32; SAMPLES_OF_A_CHUNK + 1] = [0; SAMPLES_OF_A_CHUNK + 1];
 
 /// Measures `run` from the state `start` and prints the row that begins with `name`.
 pub(crate) fn measure<S: Copy>(counter: &Counter, name: fmt::Arguments<'_>, start: S, run: Loop<S>) {
@@ -103,7 +105,7 @@ pub(crate) fn measure<S: Copy>(counter: &Counter, name: fmt::Arguments<'_>, star
                 Feed { last: ends.start.wrapping_sub(1), note: notes.as_mut_ptr(), clock: Counter::CLOCK };
             // SAFETY: the feed stands before the samples of a slice, and there is a note for each and the end.
             unsafe { run(&raw mut feed, ends.end, &raw mut state) };
-            for pair in notes.windows(2) {
+            for pair in notes.windows(2).skip(1) {
                 let tick = counter.between(pair[0], pair[1]) - OF_THE_LOOP;
                 total += tick;
                 worst = worst.max(tick);
