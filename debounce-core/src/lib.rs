@@ -79,6 +79,9 @@
 #![no_std]
 #![forbid(unsafe_code)]
 
+mod analog;
+mod bank;
+mod changeover;
 mod closed_form;
 mod const_law;
 mod count;
@@ -88,15 +91,26 @@ mod integrator;
 mod law;
 mod machine;
 mod majority_register;
+mod meaning;
 mod running;
 mod shift_register;
 mod starting;
 mod state_machine;
+mod still;
 mod time;
 mod wiring;
 #[cfg(test)]
 mod words;
 
+pub use analog::{
+    AnalogSample, Chord, Hysteresis, HysteresisError, HysteresisState, Ladder, LadderError, LadderParts,
+    LadderReading, Window,
+};
+pub use bank::{
+    Bank, BankState, Changes, EdgeRule, Lane, LanesStarted, PatientBank, PatientState, PortLaw, StartingBank,
+    StartingBankState, Word,
+};
+pub use changeover::{Changeover, ChangeoverFault, ChangeoverReport, ChangeoverState, Throws};
 pub use const_law::{Config, ConstLaw};
 pub use count::Count;
 pub use envelope::{Bounds, Clause, Envelope, Latency, PerChange, PerPosition, Verdict};
@@ -105,11 +119,30 @@ pub use integrator::{Integrator, IntegratorState};
 pub use law::{Law, is_settled};
 pub use machine::{Change, Machine, Position};
 pub use majority_register::{MajorityRegister, MajorityRegisterState, WindowWord};
+pub use meaning::{
+    ContactPair, DetentState, Detents, Gesture, GestureError, GestureEvent, GestureState, GestureTicks,
+    KeyDiodes, Matrix, MatrixReport, MatrixState, PairFault, PairKind, PairPositions, PairReport, PairState,
+    Phases, PulseCounter, PulseEvent, PulseFlaw, PulseLimits, PulseLimitsError, PulseState, PulseTally,
+    Quadrature, QuadratureEvent, QuadratureState, Resolution, RestPhases, Speed, SpeedState, TallyFull, Turn,
+};
+#[cfg(feature = "embedded-hal")]
+pub use meaning::{MatrixPins, ScanError};
 pub use running::Running;
 pub use shift_register::{ShiftRegister, ShiftRegisterState};
 pub use starting::{Started, Starting, StartingState};
 pub use state_machine::{Phase, StateMachine, StateMachineParameters, StateMachineState};
+pub use still::is_still;
 pub use time::{Period, TickClock};
+#[cfg(feature = "embedded-hal-async")]
+pub use wiring::AsyncPin;
 #[cfg(feature = "embedded-hal")]
 pub use wiring::DebouncedPin;
+#[cfg(feature = "embedded-hal")]
+pub use wiring::PinPort;
 pub use wiring::Polarity;
+pub use wiring::{
+    Burst, Bursts, BurstsState, Monitor, MonitorLimits, MonitorState, Outside, ReadPort, Recorder,
+    RecorderMode, Wear,
+};
+#[cfg(feature = "mailbox")]
+pub use wiring::{Delivery, Mailbox};
