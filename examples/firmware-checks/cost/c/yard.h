@@ -18,37 +18,53 @@ struct feed {
 };
 
 /* The place of the next sample; the same instructions as on the Rust side. */
-static inline const uint8_t *next(struct feed *feed)
-{
-    const uint8_t *place;
-    uint32_t time;
-    __asm__ volatile(".syntax unified\n"
-                     "ldr %1, [%2, #8]\n"
-                     "ldr %1, [%1]\n"
-                     "ldr %0, [%2, #4]\n"
-                     "str %1, [%0]\n"
-                     "adds %0, #4\n"
-                     "str %0, [%2, #4]\n"
-                     "ldr %0, [%2]\n"
-                     "adds %0, #1\n"
-                     "str %0, [%2]\n"
-                     : "=&l"(place), "=&l"(time)
-                     : "l"(feed)
-                     : "memory", "cc");
-    return place;
-}
+#define NEXT(name, sample_type, size)                                                      \
+    static inline const sample_type *name(struct feed *feed)                               \
+    {                                                                                      \
+        const sample_type *place;                                                          \
+        uint32_t time;                                                                     \
+        __asm__ volatile(".syntax unified\n"                                               \
+                         "ldr %1, [%2, #8]\n"                                              \
+                         "ldr %1, [%1]\n"                                                  \
+                         "ldr %0, [%2, #4]\n"                                              \
+                         "str %1, [%0]\n"                                                  \
+                         "adds %0, #4\n"                                                   \
+                         "str %0, [%2, #4]\n"                                              \
+                         "ldr %0, [%2]\n"                                                  \
+                         "adds %0, #" size "\n"                                            \
+                         "str %0, [%2]\n"                                                  \
+                         : "=&l"(place), "=&l"(time)                                       \
+                         : "l"(feed)                                                       \
+                         : "memory", "cc");                                                \
+        return place;                                                                      \
+    }
+
+NEXT(next_sample, uint8_t, "1")
+NEXT(next_port, uint32_t, "4")
 
 /* Takes the samples that the feed gives until it stands at `end`, with the state in memory. */
 #define LOOP(name, state_type, step)                                                       \
     void name(struct feed *feed, const uint8_t *end, state_type *state)                    \
     {                                                                                      \
         for (;;) {                                                                         \
-            const uint8_t *place = next(feed);                                             \
+            const uint8_t *place = next_sample(feed);                                             \
             if (place == end)                                                              \
                 break;                                                                     \
             int edge = step(state, *place);                                                \
             if (edge != NONE)                                                              \
                 cost_report(edge);                                                         \
+        }                                                                                  \
+    }
+
+/* The same, the state holding the output, and nobody looking at a change. */
+#define PORT_LOOP(name, state_type, step)                                                  \
+    void name(struct feed *feed, const uint32_t *end, state_type *state)                   \
+    {                                                                                      \
+        for (;;) {                                                                         \
+            const uint32_t *place = next_port(feed);                                       \
+            if (place == end)                                                              \
+                break;                                                                     \
+            step(state, *place);                                                           \
         }                                                                                  \
     }
 
@@ -60,5 +76,13 @@ static inline const uint8_t *next(struct feed *feed)
     }                                                                                      \
     LOOP(cost_c_##name##_inlined, state_type, name)                                        \
     LOOP(cost_c_##name##_called, state_type, cost_c_##name##_step)
+
+#define PORT_CONTENDER(name, state_type)                                                   \
+    __attribute__((noinline)) void cost_c_##name##_step(state_type *state, uint32_t port)  \
+    {                                                                                      \
+        name(state, port);                                                                 \
+    }                                                                                      \
+    PORT_LOOP(cost_c_##name##_inlined, state_type, name)                                   \
+    PORT_LOOP(cost_c_##name##_called, state_type, cost_c_##name##_step)
 
 #endif

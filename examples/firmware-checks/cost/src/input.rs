@@ -22,6 +22,29 @@ impl Kind {
     pub(crate) const ALL: [Self; 3] = [Self::Constant, Self::Random, Self::Contact];
 }
 
+/// What a tick takes.
+pub(crate) trait Sample {
+    /// The next of its kind.
+    fn draw(source: &mut Source) -> Self;
+}
+
+impl Sample for Position {
+    fn draw(source: &mut Source) -> Self {
+        source.sample()
+    }
+}
+
+/// A port of 32 contacts that are operated together and bounce apart.
+impl Sample for u32 {
+    fn draw(source: &mut Source) -> Self {
+        if matches!(source.kind, Kind::Random) || source.noise > 0 {
+            source.noise = source.noise.saturating_sub(1);
+            return source.dice.roll() << 16 ^ source.dice.roll();
+        }
+        if source.sample().is_closed() { Self::MAX } else { 0 }
+    }
+}
+
 /// Samples of one kind, the same ones every time.
 pub(crate) struct Source {
     kind: Kind,

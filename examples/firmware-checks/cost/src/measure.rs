@@ -3,18 +3,18 @@
 use core::arch::asm;
 use core::fmt::{self, Write};
 
-use debounce_core::{Change, Position};
+use debounce_core::Change;
 use rig::{Counter, say};
 
-use crate::input::{Kind, Source, TICKS};
+use crate::input::{Kind, Sample, Source, TICKS};
 
 /// A loop over the samples that `feed` gives until it stands at `end`, with the state in memory.
-pub(crate) type Loop<S> = unsafe extern "C" fn(feed: *mut Feed, end: *const Position, state: *mut S);
+pub(crate) type Loop<T, S> = unsafe extern "C" fn(feed: *mut Feed, end: *const T, state: *mut S);
 
 /// Gives the samples one by one and notes the time at each.
 #[repr(C)]
 pub(crate) struct Feed {
-    last: *const Position,
+    last: *const (),
     note: *mut u32,
     clock: *const u32,
 }
@@ -32,6 +32,13 @@ pub(crate) extern "C" fn cost_report(edge: i32) {
     unsafe { asm!("/* {0} */", in(reg) edge, options(nomem, nostack, preserves_flags)) };
 }
 
+/// The same for the lanes of a bank.
+#[inline(never)]
+pub(crate) extern "C" fn report_lanes(make: u32, break_: u32) {
+    // SAFETY: nothing is done.
+    unsafe { asm!("/* {0} {1} */", in(reg) make, in(reg) break_, options(nomem, nostack, preserves_flags)) };
+}
+
 #[inline(always)]
 pub(crate) fn report(change: Change) {
     cost_report(change as i32);
@@ -46,7 +53,7 @@ pub(crate) fn report(change: Change) {
 /// # Safety
 /// The feed has room for another note.
 #[inline(always)]
-pub(crate) unsafe fn next(feed: *mut Feed) -> *const Position {
+pub(crate) unsafe fn next<T>(feed: *mut Feed) -> *const T {
     let place;
     // SAFETY: the caller's promise.
     unsafe {
@@ -59,9 +66,10 @@ pub(crate) unsafe fn next(feed: *mut Feed) -> *const Position {
             "adds {place}, #4",
             "str {place}, [{feed}, #4]",
             "ldr {place}, [{feed}]",
-            "adds {place}, #1",
+            "adds {place}, #{size}",
             "str {place}, [{feed}]",
-            feed = in(reg) feed, place = out(reg) place, time = out(reg) _, options(nostack)
+            feed = in(reg) feed, place = out(reg) place, time = out(reg) _, size = const size_of::<T>(),
+            options(nostack)
         );
         #[cfg(target_arch = "riscv32")]
         asm!(
@@ -71,40 +79,50 @@ pub(crate) unsafe fn next(feed: *mut Feed) -> *const Position {
             "addi {place}, {place}, 4",
             "sw {place}, 4({feed})",
             "lw {place}, 0({feed})",
-            "addi {place}, {place}, 1",
+            "addi {place}, {place}, {size}",
             "sw {place}, 0({feed})",
-            feed = in(reg) feed, place = out(reg) place, time = out(reg) _, options(nostack)
+            feed = in(reg) feed, place = out(reg) place, time = out(reg) _, size = const size_of::<T>(),
+            options(nostack)
         );
     }
     place
 }
 
 /// How many ticks are measured at once: as many as the smallest memory holds.
-const CHUNK: usize = 2000;
+const CHUNK: usize = 1000;
 const CHUNKS: usize = TICKS / CHUNK;
 /// And one before them, which is not counted: what a loop does once, before its first tick, falls into it.
 const SAMPLES_OF_A_CHUNK: usize = 1 + CHUNK;
 
-static mut SAMPLES: [Position; SAMPLES_OF_A_CHUNK] = [Position::Open; SAMPLES_OF_A_CHUNK];
+static mut SAMPLES: [u32; SAMPLES_OF_A_CHUNK] = [0; SAMPLES_OF_A_CHUNK];
 // One more than samples: the time at the end.
 static mut NOTES: [u32; SAMPLES_OF_A_CHUNK + 1] = [0; SAMPLES_OF_A_CHUNK + 1];
 
 /// Measures `run` from the state `start` and prints the row that begins with `name`.
-pub(crate) fn measure<S: Copy>(counter: &Counter, name: fmt::Arguments<'_>, start: S, run: Loop<S>) {
+pub(crate) fn measure<T: Sample, S: Copy>(
+    counter: &Counter,
+    name: fmt::Arguments<'_>,
+    start: S,
+    run: Loop<T, S>,
+) {
+    const { assert!(align_of::<T>() <= align_of::<u32>() && size_of::<T>() <= size_of::<u32>()) };
     let mut row = Row { text: [0; 200], length: 0 };
     let _ = write!(row, "{name}: state {} bytes", size_of::<S>());
     for kind in Kind::ALL {
         let (mut source, mut state) = (Source::new(kind), start);
         let (mut total, mut worst) = (0, 0);
         for _ in 0..CHUNKS {
-            // SAFETY: there is one thread, and nobody else holds samples and notes.
-            let (samples, notes) = unsafe { (&mut *(&raw mut SAMPLES), &mut *(&raw mut NOTES)) };
-            samples.fill_with(|| source.sample());
-            let ends = samples.as_ptr_range();
-            let mut feed =
-                Feed { last: ends.start.wrapping_sub(1), note: notes.as_mut_ptr(), clock: Counter::CLOCK };
-            // SAFETY: the feed stands before the samples of a slice, and there is a note for each and the end.
-            unsafe { run(&raw mut feed, ends.end, &raw mut state) };
+            let samples: *mut T = (&raw mut SAMPLES).cast();
+            for index in 0..SAMPLES_OF_A_CHUNK {
+                // SAFETY: there is one thread, nobody else holds the samples, and a sample is no larger than theirs.
+                unsafe { samples.add(index).write(T::draw(&mut source)) };
+            }
+            // SAFETY: the same.
+            let notes = unsafe { &mut *(&raw mut NOTES) };
+            let last = samples.wrapping_sub(1).cast();
+            let mut feed = Feed { last, note: notes.as_mut_ptr(), clock: Counter::CLOCK };
+            // SAFETY: the feed stands before the samples, and there is a note for each and the end.
+            unsafe { run(&raw mut feed, samples.add(SAMPLES_OF_A_CHUNK), &raw mut state) };
             for pair in notes.windows(2).skip(1) {
                 let tick = counter.between(pair[0], pair[1]) - OF_THE_LOOP;
                 total += tick;
