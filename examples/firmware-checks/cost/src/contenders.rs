@@ -33,13 +33,9 @@ macro_rules! laws {
             }
 
             #[inline(never)]
-            pub(super) unsafe extern "C" fn inlined(feed: *mut Feed, end: *const Position, state: *mut State) {
-                loop {
-                    // SAFETY: the caller gives a feed with room for the notes, and a state.
-                    let place = unsafe { next(feed) };
-                    if place == end {
-                        break;
-                    }
+            pub(super) unsafe extern "C" fn inlined(feed: *mut Feed, state: *mut State) {
+                // SAFETY: the caller gives a feed with room for the notes, and a state.
+                while let Some(place) = unsafe { next(feed) } {
                     // SAFETY: the same.
                     let change = unsafe { LAW.step(&mut *state, *place) };
                     if let Some(change) = change {
@@ -49,13 +45,9 @@ macro_rules! laws {
             }
 
             #[inline(never)]
-            pub(super) unsafe extern "C" fn called(feed: *mut Feed, end: *const Position, state: *mut State) {
-                loop {
-                    // SAFETY: the caller gives a feed with room for the notes, and a state.
-                    let place = unsafe { next(feed) };
-                    if place == end {
-                        break;
-                    }
+            pub(super) unsafe extern "C" fn called(feed: *mut Feed, state: *mut State) {
+                // SAFETY: the caller gives a feed with room for the notes, and a state.
+                while let Some(place) = unsafe { next(feed) } {
                     // SAFETY: the same.
                     let change = unsafe { step(&mut *state, *place) };
                     if let Some(change) = change {
@@ -68,8 +60,8 @@ macro_rules! laws {
 
     fn laws(counter: &Counter) {$(
         let start = ConstLaw::<$name::Parameters>::new().rest(Position::Open);
-        measure(counter, format_args!("{} rust inlined", stringify!($name)), start, $name::inlined);
-        measure(counter, format_args!("{} rust called", stringify!($name)), start, $name::called);
+        measure::<Position, _>(counter, format_args!("{} rust inlined", stringify!($name)), start, $name::inlined);
+        measure::<Position, _>(counter, format_args!("{} rust called", stringify!($name)), start, $name::called);
     )*}};
 }
 
@@ -97,26 +89,18 @@ macro_rules! banks {
             }
 
             #[inline(never)]
-            unsafe extern "C" fn inlined(feed: *mut Feed, end: *const u32, state: *mut $state) {
-                loop {
-                    // SAFETY: the caller gives a feed with room for the notes, and a state.
-                    let place = unsafe { next(feed) };
-                    if place == end {
-                        break;
-                    }
+            unsafe extern "C" fn inlined(feed: *mut Feed, state: *mut $state) {
+                // SAFETY: the caller gives a feed with room for the notes, and a state.
+                while let Some(place) = unsafe { next(feed) } {
                     // SAFETY: the same.
                     let _ = unsafe { BANK.step(&mut *state, *place) };
                 }
             }
 
             #[inline(never)]
-            unsafe extern "C" fn looked_at(feed: *mut Feed, end: *const u32, state: *mut $state) {
-                loop {
-                    // SAFETY: the caller gives a feed with room for the notes, and a state.
-                    let place = unsafe { next(feed) };
-                    if place == end {
-                        break;
-                    }
+            unsafe extern "C" fn looked_at(feed: *mut Feed, state: *mut $state) {
+                // SAFETY: the caller gives a feed with room for the notes, and a state.
+                while let Some(place) = unsafe { next(feed) } {
                     // SAFETY: the same.
                     let changes = unsafe { BANK.step(&mut *state, *place) };
                     if !changes.is_none() {
@@ -126,13 +110,9 @@ macro_rules! banks {
             }
 
             #[inline(never)]
-            unsafe extern "C" fn called(feed: *mut Feed, end: *const u32, state: *mut $state) {
-                loop {
-                    // SAFETY: the caller gives a feed with room for the notes, and a state.
-                    let place = unsafe { next(feed) };
-                    if place == end {
-                        break;
-                    }
+            unsafe extern "C" fn called(feed: *mut Feed, state: *mut $state) {
+                // SAFETY: the caller gives a feed with room for the notes, and a state.
+                while let Some(place) = unsafe { next(feed) } {
                     // SAFETY: the same.
                     unsafe { step(&mut *state, *place) };
                 }
@@ -140,9 +120,9 @@ macro_rules! banks {
 
             pub(super) fn measured(counter: &Counter) {
                 let (name, start) = (stringify!($name), BANK.all_open());
-                measure(counter, format_args!("{name} rust inlined"), start, inlined);
-                measure(counter, format_args!("{name} rust looked-at"), start, looked_at);
-                measure(counter, format_args!("{name} rust called"), start, called);
+                measure::<u32, _>(counter, format_args!("{name} rust inlined"), start, inlined);
+                measure::<u32, _>(counter, format_args!("{name} rust looked-at"), start, looked_at);
+                measure::<u32, _>(counter, format_args!("{name} rust called"), start, called);
             }
         }
     )*
@@ -167,13 +147,13 @@ banks! {
 macro_rules! plain_c {
     ($($name:ident: $sample:ty, $state:ty, $inlined:ident, $called:ident;)*) => {
         unsafe extern "C" {$(
-            fn $inlined(feed: *mut Feed, end: *const $sample, state: *mut $state);
-            fn $called(feed: *mut Feed, end: *const $sample, state: *mut $state);
+            fn $inlined(feed: *mut Feed, state: *mut $state);
+            fn $called(feed: *mut Feed, state: *mut $state);
         )*}
 
         fn plain_c(counter: &Counter) {$(
-            measure(counter, format_args!("{} c inlined", stringify!($name)), <$state>::default(), $inlined);
-            measure(counter, format_args!("{} c called", stringify!($name)), <$state>::default(), $called);
+            measure::<$sample, _>(counter, format_args!("{} c inlined", stringify!($name)), <$state>::default(), $inlined);
+            measure::<$sample, _>(counter, format_args!("{} c called", stringify!($name)), <$state>::default(), $called);
         )*}
     };
 }

@@ -8,8 +8,8 @@ use rig::{Counter, say};
 
 use crate::input::{Kind, Sample, Source, TICKS};
 
-/// A loop over the samples that `feed` gives until it stands at `end`, with the state in memory.
-pub(crate) type Loop<T, S> = unsafe extern "C" fn(feed: *mut Feed, end: *const T, state: *mut S);
+/// A loop over the samples that `feed` gives until there is none left, with the state in memory.
+pub(crate) type Loop<S> = unsafe extern "C" fn(feed: *mut Feed, state: *mut S);
 
 /// Gives the samples one by one and notes the time at each.
 #[repr(C)]
@@ -17,12 +17,15 @@ pub(crate) struct Feed {
     last: *const (),
     note: *mut u32,
     clock: *const u32,
+    end: *const (),
 }
 
-/// The instructions in a tick that are the loop's: those of [`next`], the look whether that was the last (2), and the
-/// load of the sample.
-const OF_THE_LOOP: u32 = OF_NEXT + 2 + 1;
-const OF_NEXT: u32 = if cfg!(target_arch = "arm") { 9 } else { 8 };
+/// The instructions in a tick that are the loop's: those of [`next`], the look whether that was the last, and the load
+/// of the sample.
+const OF_THE_LOOP: u32 = if cfg!(target_arch = "arm") { 15 + 2 + 1 } else { 15 + 1 + 1 };
+
+/// What [`next`] gives at the end: not an address of a sample, and not 0, for which some branches are shorter.
+const END: usize = 1;
 
 /// What a program does at an edge: a call that returns at once. It is counted where an edge is reported.
 #[unsafe(no_mangle)]
@@ -44,7 +47,7 @@ pub(crate) fn report(change: Change) {
     cost_report(change as i32);
 }
 
-/// The place of the next sample; the time is noted.
+/// The place of the next sample, none at the end; the time is noted.
 ///
 /// It is found by the same instructions in every loop that is measured, so that what the compiler makes of a loop does
 /// not count for or against what is in it; and the compiler must believe that the state is looked at here, as it is in
@@ -53,39 +56,54 @@ pub(crate) fn report(change: Change) {
 /// # Safety
 /// The feed has room for another note.
 #[inline(always)]
-pub(crate) unsafe fn next<T>(feed: *mut Feed) -> *const T {
-    let place;
+pub(crate) unsafe fn next<T>(feed: *mut Feed) -> Option<*const T> {
+    let place: *const T;
     // SAFETY: the caller's promise.
     unsafe {
         #[cfg(target_arch = "arm")]
         asm!(
-            "ldr {time}, [{feed}, #8]",
-            "ldr {time}, [{time}]",
+            "ldr {more}, [{feed}, #8]",
+            "ldr {more}, [{more}]",
             "ldr {place}, [{feed}, #4]",
-            "str {time}, [{place}]",
+            "str {more}, [{place}]",
             "adds {place}, #4",
             "str {place}, [{feed}, #4]",
             "ldr {place}, [{feed}]",
             "adds {place}, #{size}",
             "str {place}, [{feed}]",
-            feed = in(reg) feed, place = out(reg) place, time = out(reg) _, size = const size_of::<T>(),
+            // At the end all ones, else 0; and so 1 or the place.
+            "ldr {more}, [{feed}, #12]",
+            "subs {more}, {more}, {place}",
+            "subs {more}, #1",
+            "sbcs {more}, {more}",
+            "bics {place}, {more}",
+            "subs {place}, {place}, {more}",
+            feed = in(reg) feed, place = out(reg) place, more = out(reg) _, size = const size_of::<T>(),
             options(nostack)
         );
         #[cfg(target_arch = "riscv32")]
         asm!(
-            "csrr {time}, minstret",
+            "csrr {more}, minstret",
             "lw {place}, 4({feed})",
-            "sw {time}, 0({place})",
+            "sw {more}, 0({place})",
             "addi {place}, {place}, 4",
             "sw {place}, 4({feed})",
             "lw {place}, 0({feed})",
             "addi {place}, {place}, {size}",
             "sw {place}, 0({feed})",
-            feed = in(reg) feed, place = out(reg) place, time = out(reg) _, size = const size_of::<T>(),
+            // At the end 0, else all ones; and so 1 or the place.
+            "lw {more}, 12({feed})",
+            "sub {more}, {more}, {place}",
+            "snez {more}, {more}",
+            "neg {more}, {more}",
+            "and {place}, {place}, {more}",
+            "addi {more}, {more}, 1",
+            "or {place}, {place}, {more}",
+            feed = in(reg) feed, place = out(reg) place, more = out(reg) _, size = const size_of::<T>(),
             options(nostack)
         );
     }
-    place
+    (place.addr() != END).then_some(place)
 }
 
 /// How many ticks are measured at once: as many as the smallest memory holds.
@@ -103,7 +121,7 @@ pub(crate) fn measure<T: Sample, S: Copy>(
     counter: &Counter,
     name: fmt::Arguments<'_>,
     start: S,
-    run: Loop<T, S>,
+    run: Loop<S>,
 ) {
     const { assert!(align_of::<T>() <= align_of::<u32>() && size_of::<T>() <= size_of::<u32>()) };
     let mut row = Row { text: [0; 200], length: 0 };
@@ -119,10 +137,12 @@ pub(crate) fn measure<T: Sample, S: Copy>(
             }
             // SAFETY: the same.
             let notes = unsafe { &mut *(&raw mut NOTES) };
+            // SAFETY: the end of the samples.
+            let end = unsafe { samples.add(SAMPLES_OF_A_CHUNK) }.cast_const().cast();
             let last = samples.wrapping_sub(1).cast();
-            let mut feed = Feed { last, note: notes.as_mut_ptr(), clock: Counter::CLOCK };
+            let mut feed = Feed { last, note: notes.as_mut_ptr(), clock: Counter::CLOCK, end };
             // SAFETY: the feed stands before the samples, and there is a note for each and the end.
-            unsafe { run(&raw mut feed, samples.add(SAMPLES_OF_A_CHUNK), &raw mut state) };
+            unsafe { run(&raw mut feed, &raw mut state) };
             for pair in notes.windows(2).skip(1) {
                 let tick = counter.between(pair[0], pair[1]) - OF_THE_LOOP;
                 total += tick;
