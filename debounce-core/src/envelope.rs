@@ -12,6 +12,17 @@ pub struct PerChange<T> {
     pub break_: T,
 }
 
+impl<T> PerChange<T> {
+    /// The value for `change`, by reference.
+    #[must_use]
+    pub const fn of(&self, change: Change) -> &T {
+        match change {
+            Change::Make => &self.make,
+            Change::Break => &self.break_,
+        }
+    }
+}
+
 impl<T: Copy> PerChange<T> {
     /// The value for `change`.
     #[must_use]
@@ -31,6 +42,17 @@ pub struct PerPosition<T> {
     pub open: T,
     /// For the closed contact.
     pub closed: T,
+}
+
+impl<T> PerPosition<T> {
+    /// The value for `position`, by reference.
+    #[must_use]
+    pub const fn of(&self, position: Position) -> &T {
+        match position {
+            Position::Open => &self.open,
+            Position::Closed => &self.closed,
+        }
+    }
 }
 
 impl<T: Copy> PerPosition<T> {

@@ -1,4 +1,4 @@
-//! From the line to the law, and from the law to the program: pins, hand-over, recording, what the field shows.
+//! Between the line and the program: hand-over, recording, and what the field shows.
 
 mod bursts;
 #[cfg(feature = "mailbox")]

@@ -2,15 +2,20 @@
 //!
 //! Every rule looks at one run on which the decision rests, and compares it with the gap g that ends a burst:
 //!
-//! * inside a burst, a run in the new position of at least g/8 and at least twice every other such run of the
-//!   burst: what follows may be a disturbance instead of bounce;
+//! * inside a burst, a run in the new position of at least 1 ms (g/8 if that is less) and at least twice every
+//!   other such run of the burst: what follows may be a disturbance instead of bounce;
 //! * inside a burst, runs of g/2 and more are nearly long enough to have ended it;
 //! * between bursts, runs shorter than 2g are nearly short enough to have joined them; and a disturbance that
 //!   follows a bounce within twice the longest bounce seen may be a late second burst of it.
 //!
-//! g/8 leaves out the ordinary quiet stretches of one bounce, which would make nearly every bounce ambiguous.
+//! The 1 ms and the g/8 leave out the ordinary quiet stretches of one bounce, which would make nearly every bounce
+//! ambiguous: real closures show second bursts after 0.2 to 0.5 ms (plots of eight switches by G. Sutherland,
+//! "switch_bouncing", public domain); 1 ms is twice that.
 
 use super::operations::{Ambiguity, Doubt};
+
+/// From this run on, what follows in the same burst may be something else than its bounce.
+const LONG_REST_NS: u64 = 1_000_000;
 
 /// Judges the inside of a burst with an odd number of edges, a change.
 pub(super) fn inside_change(edges: &[u64], gap_ns: u64) -> Option<Ambiguity> {
@@ -26,7 +31,7 @@ pub(super) fn inside_change(edges: &[u64], gap_ns: u64) -> Option<Ambiguity> {
     if let Some(longest) = (0..runs).step_by(2).max_by_key(|&i| run(edges, i)) {
         let ns = run(edges, longest);
         let stands_out = (0..runs).step_by(2).all(|i| i == longest || run(edges, i) <= ns / 2);
-        if near(longest) || stands_out && ns >= gap_ns.div_ceil(8) {
+        if near(longest) || stands_out && ns >= gap_ns.div_ceil(8).min(LONG_REST_NS) {
             return Some(doubt(longest, Doubt::SecondBurstOrDisturbance));
         }
     }

@@ -325,3 +325,6 @@ fn dwell_figures(segmentation: &Segmentation, position: Position) -> DwellFigure
         shortest_in_doubt_ns: operations.chain(there_and_back).min(),
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -3,6 +3,7 @@
 use debounce_core::{Change, Position};
 
 use super::gap::Gap;
+use crate::generate::TruthChange;
 
 /// Edges that belong together: no two neighbours are as far apart as the gap that ends a burst.
 #[derive(Clone, Copy, PartialEq, Eq, Debug)]
@@ -179,6 +180,23 @@ pub struct Segmentation {
 }
 
 impl Segmentation {
+    /// The changes of the contact as truth for a replay over the same recording.
+    ///
+    /// They alternate and begin away from the recording's first position. So that they do, a burst that an end of
+    /// the recording cut off counts as a change here where its recorded edges are odd in number.
+    #[must_use]
+    pub fn truth(&self) -> Vec<TruthChange> {
+        let whole = self.operations.iter().map(|o| TruthChange { change: o.change, at_ns: o.burst.first_ns });
+        let cut = self
+            .fragments
+            .iter()
+            .filter(|f| !f.burst.edges.is_multiple_of(2))
+            .map(|f| TruthChange { change: f.before.opposite().reached_by(), at_ns: f.burst.first_ns });
+        let mut truth: Vec<TruthChange> = whole.chain(cut).collect();
+        truth.sort_by_key(|change| change.at_ns);
+        truth
+    }
+
     /// How many operations and disturbances are in doubt.
     #[must_use]
     pub fn ambiguous(&self) -> usize {

@@ -9,12 +9,15 @@ mod emit;
 mod envelope_text;
 mod failure;
 mod files;
+mod input;
+mod lines;
 mod prove;
 mod recordings;
 mod replay;
 mod run;
 mod session;
 mod study;
+mod study_answer;
 
 #[cfg(test)]
 mod tests;

@@ -8,7 +8,7 @@ use clap::error::ErrorKind;
 use clap::{CommandFactory, Parser, Subcommand};
 
 use super::session::to_stdout;
-use super::{Answer, Failure, GlobalOptions, Session};
+use super::{Answer, Failure, GlobalOptions, Session, StudyArguments};
 
 /// The workbench for mechanical contacts: from a recording to a proven debouncer.
 #[derive(Parser, Debug)]
@@ -27,15 +27,21 @@ pub(super) struct CommandLine {
 
 /// The commands whose parts are all there.
 #[derive(Subcommand, Debug)]
-enum Command {}
+enum Command {
+    Study(StudyArguments),
+}
 
 impl Command {
     const fn name(&self) -> &'static str {
-        match *self {}
+        match self {
+            Self::Study(_) => "study",
+        }
     }
 
-    fn run(&self, _session: &Session) -> Result<Box<dyn Answer>, Failure> {
-        match *self {}
+    fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
+        match self {
+            Self::Study(arguments) => arguments.run(session),
+        }
     }
 }
 

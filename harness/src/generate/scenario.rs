@@ -9,7 +9,7 @@ use crate::trace::{Trace, TraceError};
 
 /// A change of the contact as it really was.
 #[derive(Clone, Copy, PartialEq, Eq, Debug)]
-pub struct Truth {
+pub struct TruthChange {
     /// What the contact did.
     pub change: Change,
     /// When.
@@ -62,7 +62,7 @@ pub struct Generated {
     /// What a recorder would have shown.
     pub trace: Trace,
     /// What the contact did, in order.
-    pub truth: Vec<Truth>,
+    pub truth: Vec<TruthChange>,
     /// Last edge of the bounce of each change of `truth`.
     pub bounce_ends_ns: Vec<u64>,
     /// What was not the contact's doing, in order.
@@ -102,7 +102,7 @@ impl Scenario {
         let at_sample = |ns: u64| ns.next_multiple_of(resolution);
         Ok(Generated {
             trace: Trace::new(Position::Open, 0, end, seen, self.resolution_ns)?,
-            truth: made.truth.iter().map(|t| Truth { at_ns: at_sample(t.at_ns), ..*t }).collect(),
+            truth: made.truth.iter().map(|t| TruthChange { at_ns: at_sample(t.at_ns), ..*t }).collect(),
             bounce_ends_ns: made.bounce_ends.iter().map(|&ns| at_sample(ns)).collect(),
             noise: made
                 .noise
@@ -118,7 +118,7 @@ struct Making<'a> {
     scenario: &'a Scenario,
     now: u64,
     edges: Vec<u64>,
-    truth: Vec<Truth>,
+    truth: Vec<TruthChange>,
     bounce_ends: Vec<u64>,
     noise: Vec<Noise>,
 }
@@ -130,7 +130,7 @@ impl Making<'_> {
         // The contact model always gives the edge at `at_ns`.
         let bounce_end = edges.last().copied().unwrap_or(at_ns);
         self.edges.extend(edges);
-        self.truth.push(Truth { change, at_ns });
+        self.truth.push(TruthChange { change, at_ns });
         self.bounce_ends.push(bounce_end);
         let mut clear_from = bounce_end;
         let mut until = at_ns + dwell;

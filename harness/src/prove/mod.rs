@@ -34,11 +34,13 @@
 //! # Ok::<(), harness::prove::ProveError>(())
 //! ```
 
+mod contract;
 mod environment;
 mod explore;
 mod frontier;
 mod immunity;
 mod latency;
+pub mod observe;
 mod product;
 mod recovery;
 mod tabulate;
@@ -48,6 +50,7 @@ use core::hash::Hash;
 
 use debounce_core::{Bounds, Change, Clause, Envelope, Law, PerChange, Position};
 
+pub use contract::Contract;
 pub use environment::{Branch, Environment, EnvironmentState, Fired};
 pub use frontier::shortest_operations;
 pub use immunity::{immunity, widest_lone_disturbance};
@@ -169,6 +172,8 @@ fn word(position: Position) -> &'static str {
 pub struct Proof {
     /// The envelope, as it was given.
     pub envelope: Envelope,
+    /// What was promised.
+    pub contract: Contract,
     /// What came out.
     pub outcome: Outcome,
     /// States of the law.
@@ -236,8 +241,21 @@ where
 /// # Errors
 /// As [`prove`].
 pub fn prove_within(logic: &LawTable, envelope: &Envelope, limits: &Limits) -> Result<Proof, ProveError> {
-    let environment = match Environment::of(envelope) {
-        Err(ProveError::DwellUnseen { position }) => return Ok(unseen(logic, envelope, position)),
+    prove_contract(logic, envelope, Contract::Follow, limits)
+}
+
+/// As [`prove_within`], against either contract.
+///
+/// # Errors
+/// As [`prove`].
+pub fn prove_contract(
+    logic: &LawTable,
+    envelope: &Envelope,
+    contract: Contract,
+    limits: &Limits,
+) -> Result<Proof, ProveError> {
+    let environment = match Environment::under(envelope, contract) {
+        Err(ProveError::DwellUnseen { position }) => return Ok(unseen(logic, envelope, contract, position)),
         other => other?,
     };
     let product = Product { environment: &environment, logic };
@@ -252,6 +270,7 @@ pub fn prove_within(logic: &LawTable, envelope: &Envelope, limits: &Limits) -> R
     };
     Ok(Proof {
         envelope: *envelope,
+        contract,
         outcome,
         law_states: logic.len(),
         environment_states: environment.len(),
@@ -261,11 +280,12 @@ pub fn prove_within(logic: &LawTable, envelope: &Envelope, limits: &Limits) -> R
 }
 
 /// The verdict where a dwell may fall between two samples: a miss, whatever the logic.
-fn unseen(logic: &LawTable, envelope: &Envelope, position: Position) -> Proof {
+fn unseen(logic: &LawTable, envelope: &Envelope, contract: Contract, position: Position) -> Proof {
     let outcome =
         Outcome::Refuted { clause: Clause::DwellUnseen, witness: Witness::between_samples(position) };
     Proof {
         envelope: *envelope,
+        contract,
         outcome,
         law_states: logic.len(),
         environment_states: 0,

@@ -111,3 +111,32 @@ impl Law for Divided {
         state.1.0
     }
 }
+
+/// Turns its output over whenever the line opens again, as a latching push-button does: it settles with the line at
+/// either position, whatever its output, and may report later.
+pub(crate) struct Latching;
+
+impl Machine for Latching {
+    type Input = Position;
+    type Output = Option<Change>;
+    type State = (Position, Position);
+
+    fn step(&self, (output, line): &mut Self::State, sample: Position) -> Option<Change> {
+        let opens = line.is_closed() && !sample.is_closed();
+        *line = sample;
+        opens.then(|| {
+            *output = output.opposite();
+            output.reached_by()
+        })
+    }
+}
+
+impl Law for Latching {
+    fn rest(&self, position: Position) -> Self::State {
+        (position, position)
+    }
+
+    fn output(&self, state: &Self::State) -> Position {
+        state.0
+    }
+}

@@ -167,15 +167,23 @@ impl PreparedTrace {
         let mut walked: Vec<Strand<L::State>> = Vec::new();
         for segment in &self.segments {
             let (a, b) = (segment.from.residue, segment.until.residue);
-            let cuts = [a.min(b), a.max(b), u64::MAX];
+            let (low, high) = (a.min(b), a.max(b));
             for strand in strands.drain(..) {
-                let mut from = strand.phase.from;
-                for until in cuts.map(|cut| cut.min(strand.phase.until)) {
-                    if until <= from {
-                        continue;
-                    }
+                let PhaseSpan { mut from, until: end } = strand.phase;
+                while from < end {
+                    let cut = if from < low {
+                        low
+                    } else if from < high {
+                        high
+                    } else {
+                        end
+                    };
+                    let until = cut.min(end);
                     let mut part = Strand { phase: PhaseSpan { from, until }, ..strand };
-                    segment.pass(law, &mut part, &mut outcome);
+                    // Most bounces fall between two samples: nothing to do then but to carry the strand on.
+                    if segment.arriving.is_some() || segment.ticks(from) > 0 {
+                        segment.pass(law, &mut part, &mut outcome);
+                    }
                     push(&mut walked, part, joining);
                     from = until;
                 }
@@ -207,6 +215,10 @@ impl PreparedTrace {
 }
 
 impl Segment {
+    fn ticks(&self, phase: u64) -> u64 {
+        self.until.first_sample(phase) - self.from.first_sample(phase)
+    }
+
     fn pass<L: Law>(&self, law: &L, strand: &mut Strand<L::State>, outcome: &mut Outcome) {
         let Strand { phase, state, waiting } = strand;
         let phase = *phase;
@@ -216,8 +228,7 @@ impl Segment {
             outcome.miss(change - 2, phase);
         }
         let first = self.from.first_sample(phase.from);
-        let ticks = self.until.first_sample(phase.from) - first;
-        let motion = feed(law, state, self.line, ticks, |offset, change| {
+        let motion = feed(law, state, self.line, self.ticks(phase.from), |offset, change| {
             let tick = first + offset;
             match waiting.edge(change, self.contact) {
                 Judgement::False => outcome.report_falsely(change, tick, phase),

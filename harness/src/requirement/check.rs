@@ -170,7 +170,12 @@ fn from(origin: &Origin) -> String {
 }
 
 /// Marks the value in the file, if it stands there.
-fn point(problem: Problem, source: Option<&Arc<SourceText>>, origin: &Origin, label: &str) -> Problem {
+pub(super) fn point(
+    problem: Problem,
+    source: Option<&Arc<SourceText>>,
+    origin: &Origin,
+    label: &str,
+) -> Problem {
     match (source, origin.span()) {
         (Some(source), Some(span)) => problem.mark(source, span, label),
         _ => problem,

@@ -65,7 +65,7 @@ use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time, Voltage};
 pub use options::RequirementOptions;
 pub use pair::{ForChanges, ForPositions};
 pub use read::{parse, read};
-pub use resolve::{Measured, Resolved, ResolvedRow};
+pub use resolve::{Measured, Resolved, ResolvedRow, allowed_samples};
 pub use source::{Origin, Sourced};
 pub use words::{ContactKind, Level, Role, Word};
 

@@ -1,10 +1,11 @@
 //! Fills in what was not given, from the recordings or from stated defaults, and says which.
 
-use debounce_core::{Envelope, PerChange, PerPosition, TickClock};
+use debounce_core::{PerChange, PerPosition, TickClock};
 
 use super::check;
 use super::{ContactKind, Figures, Level, Origin, Requirement, Role, Sourced, TickChoice};
-use crate::problem::Problems;
+use crate::envelope::PhysicalEnvelope;
+use crate::problem::{Problem, Problems};
 use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time};
 
 /// What the recordings show, as far as they show it.
@@ -126,6 +127,8 @@ impl Requirement {
         if let Some(problems) = Problems::from_found(check::figures(&known, self.source())) {
             return Err(problems);
         }
+        let ticks = self.ticks();
+        let jitter = self.jitter(&ticks)?;
         Ok(Resolved {
             name: or_default(&self.contact.name, "contact".to_owned(), OURS),
             kind: or_default(&self.contact.kind, ContactKind::Other, "nobody said"),
@@ -139,17 +142,42 @@ impl Requirement {
             confidence: or_default(&self.confidence, Share::from_percent(95), OURS),
             coverage: or_default(&self.coverage, Share::from_percent(95), OURS),
             margin,
-            ticks: self.ticks(),
+            ticks,
             tolerance: or_default(&self.clock.tolerance, Share::from_percent(2), TOLERANCE),
-            jitter: or_default(
-                &self.clock.jitter,
-                Time::from_us(20),
-                "a short interrupt latency (our choice)",
-            ),
+            jitter,
             lost: or_default(&self.clock.lost, Ticks(0), "the timer never misses"),
             ram: self.budget.ram,
             fastest_tick: self.budget.fastest_tick,
         })
+    }
+
+    /// The jitter, which must be shorter than every tick period: else two samples could change places.
+    fn jitter(&self, ticks: &Sourced<Vec<TickPeriod>>) -> Result<Sourced<Time>, Problems> {
+        let tolerance = self.clock.tolerance.map_or(Share::from_percent(2), |tolerance| tolerance.value);
+        // The list is never empty; without a shortest period there is nothing to compare with.
+        let shortest = ticks.value.first().map_or(u64::MAX, |tick| tick.nearest_ns());
+        let least =
+            u128::from(shortest) * u128::from(1_000_000_u32.saturating_sub(tolerance.ppm())) / 1_000_000;
+        match &self.clock.jitter {
+            Some(jitter) if u128::from(jitter.value.ns()) >= least => {
+                let message = format!(
+                    "a jitter of {} is not shorter than the tick period of {}, less its tolerance",
+                    jitter.value, ticks.value[0]
+                );
+                let problem =
+                    check::point(Problem::new(message), self.source(), &jitter.origin, "the jitter");
+                let problem = check::point(problem, self.source(), &ticks.origin, "the tick period");
+                Err(problem
+                    .help("two samples could change places; write a shorter jitter or a longer tick")
+                    .into())
+            }
+            Some(jitter) => Ok(*jitter),
+            None => {
+                let default = Time::from_ns((shortest / 50).min(20_000));
+                let why = "a short interrupt latency: 20 us, or 2 % of the shortest tick period (our choice)";
+                Ok(Sourced::new(default, Origin::Default(why)))
+            }
+        }
     }
 
     /// The tick periods to try, shortest first, none faster than the budget allows.
@@ -202,6 +230,18 @@ fn scale(ns: u64, numerator: u64, denominator: u64) -> u64 {
     u64::try_from(product.div_ceil(u128::from(denominator))).unwrap_or(u64::MAX)
 }
 
+/// The most samples of latency whose delay by `clock` is no longer than `latency`; 0 where none is.
+#[must_use]
+pub fn allowed_samples(clock: &TickClock, latency: Time) -> u32 {
+    // The delay grows with the samples: find the last that fits.
+    let (mut fits, mut too_many) = (0_u32, u32::MAX);
+    while too_many - fits > 1 {
+        let middle = fits + (too_many - fits) / 2;
+        if clock.delay_ns(middle).1 <= latency.ns() { fits = middle } else { too_many = middle }
+    }
+    fits
+}
+
 impl<V> Figures<V> {
     /// Every figure through `f`.
     #[must_use]
@@ -227,34 +267,31 @@ impl Resolved {
             .lost(self.lost.value.0)
     }
 
-    /// The required times as an envelope in delivered samples of that clock: lost ticks are taken off already.
+    /// The waveforms that must be served, in time.
     #[must_use]
-    pub fn envelope(&self, tick: TickPeriod) -> Envelope {
-        let (clock, required) = (self.clock(tick), &self.required);
-        let touched = |time: Sourced<Time>| clock.samples_touched(time.value.ns());
-        let seen = |time: Sourced<Time>| clock.samples_seen(time.value.ns());
-        Envelope::clean(seen(required.shortest.open), seen(required.shortest.closed))
-            .bounce(touched(required.bounce.make), touched(required.bounce.break_))
-            .glitch(touched(required.disturbance.open), touched(required.disturbance.closed))
-            .quiet(seen(required.quiet))
-            .calm(seen(required.calm))
+    pub fn physical(&self) -> PhysicalEnvelope {
+        let required = &self.required;
+        let ns = |time: Sourced<Time>| time.value.ns();
+        PhysicalEnvelope {
+            bounce_ns: PerChange { make: ns(required.bounce.make), break_: ns(required.bounce.break_) },
+            glitch_ns: PerPosition {
+                open: ns(required.disturbance.open),
+                closed: ns(required.disturbance.closed),
+            },
+            quiet_ns: ns(required.quiet),
+            calm_ns: ns(required.calm),
+            dwell_ns: PerPosition { open: ns(required.shortest.open), closed: ns(required.shortest.closed) },
+        }
     }
 
     /// The most samples of latency whose delay stays within the required latency; 0 where none does.
     #[must_use]
     pub fn allowed_samples(&self, tick: TickPeriod) -> PerChange<u32> {
-        let clock = self.clock(tick);
-        let most = |latency: Sourced<Time>| {
-            // The delay grows with the samples: find the last that fits.
-            let (mut fits, mut too_many) = (0_u32, u32::MAX);
-            while too_many - fits > 1 {
-                let middle = fits + (too_many - fits) / 2;
-                let below_ns = clock.delay_ns(middle).1;
-                if below_ns <= latency.value.ns() { fits = middle } else { too_many = middle }
-            }
-            fits
-        };
-        PerChange { make: most(self.required.latency.make), break_: most(self.required.latency.break_) }
+        let (clock, latency) = (self.clock(tick), &self.required.latency);
+        PerChange {
+            make: allowed_samples(&clock, latency.make.value),
+            break_: allowed_samples(&clock, latency.break_.value),
+        }
     }
 
     /// The caution for the role, which cannot be switched off.

@@ -365,7 +365,18 @@ fn resolved_envelope_rounds_to_the_safe_side() {
     let resolved = accepts(text).resolve(&Measured::default()).unwrap();
     let tick = resolved.ticks.value[0];
     let expected = Envelope::clean(49, 59).bounce(5, 5).glitch(1, 0).quiet(8);
-    assert_eq!(resolved.envelope(tick), expected);
+    assert_eq!(resolved.physical().in_ticks(&resolved.clock(tick)), Ok(expected));
     // 20 ms hold 20 samples, one of which may be lost.
     assert_eq!(resolved.allowed_samples(tick), PerChange { make: 19, break_: 19 });
+}
+
+#[test]
+fn resolved_jitter_stays_below_the_tick() {
+    let resolve = |text: &str| accepts(text).resolve(&Measured::default());
+    let text = "[clock]\ntick = \"1 ms\"\ntolerance = \"0 %\"\njitter = \"1 ms\"";
+    let problems = resolve(text).expect_err("as long as the tick").to_string();
+    assert!(problems.starts_with("bench/contact.toml:4:10: a jitter of 1 ms is not shorter"), "{problems}");
+    assert!(resolve(&text.replace("jitter = \"1 ms\"", "jitter = \"999 us\"")).is_ok());
+    let fast = resolve("[clock]\ntick = \"10 us\"").unwrap();
+    assert_eq!(fast.jitter.value, Time::from_ns(200));
 }

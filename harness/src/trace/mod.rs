@@ -1,6 +1,32 @@
-//! A recorded line as runs of position, in integer nanoseconds.
+//! A recorded line as runs of position, in integer nanoseconds; and the files such a recording comes from.
+//!
+//! [`read_path`] tells a VCD from a CSV by its content and turns one channel of it into a [`Recording`];
+//! [`write_vcd`] goes the other way. What the readers had to decide on their own comes back as [`Note`]s.
 
 use debounce_core::Position;
+
+mod builder;
+mod channel;
+mod csv;
+mod error;
+mod open;
+mod options;
+#[cfg(test)]
+mod oracle_tests;
+mod polarity;
+mod recording;
+#[cfg(test)]
+mod round_trip_tests;
+mod vcd;
+mod write;
+
+pub use channel::{Channel, ChannelKind};
+pub use error::{Fault, MAX_FAULTS, ReadError};
+pub use open::{list_channels, read_bytes, read_channels, read_path, read_stream};
+pub use options::{DecimalMark, Delimiter, ReadOptions, ThresholdError, Thresholds, TimeUnit};
+pub use polarity::{Level, Polarity, Unknown};
+pub use recording::{Note, Recording};
+pub use write::write_vcd;
 
 /// A recorded line: which position it looked to be in, from `start_ns` to `end_ns`.
 ///

@@ -73,6 +73,9 @@ fn segment_operation_cut_by_start_or_end_is_a_fragment() {
     assert_eq!(found.operations.len(), 1);
     assert_eq!(found.operations[0].change, Change::Break);
     assert_eq!(found.operations[0].dwell_before, Extent::AtLeast(299_800 * US));
+    // As truth for a replay the cut changes count, so that the positions fit the trace.
+    let changes: Vec<(Change, u64)> = found.truth().iter().map(|t| (t.change, t.at_ns / US)).collect();
+    assert_eq!(changes, [(Change::Make, 50), (Change::Break, 300_000), (Change::Make, 600_000)]);
     assert_eq!(found.operations[0].dwell_after, Extent::AtLeast(300 * MS));
 }
 
@@ -109,7 +112,7 @@ fn check_doubt(gap_us: u64, edges_us: &[u64], expected: Option<Doubt>) {
     let edges = among_clean_operations(edges_us);
     let options = SegmentOptions { gap_ns: Some(gap_us * US) };
     let found = segment(&trace(3_000_000, &edges), &options).unwrap();
-    let at = |ns: u64| ns >= 1_000 * MS && ns < 1_150 * MS;
+    let at = |ns: u64| (1_000 * MS..1_150 * MS).contains(&ns);
     let operations = found.operations.iter().filter(|o| at(o.burst.first_ns)).filter_map(|o| o.ambiguity);
     let disturbances = found.disturbances.iter().filter(|d| at(d.burst.first_ns)).filter_map(|d| d.ambiguity);
     let doubts: Vec<Ambiguity> = operations.chain(disturbances).collect();
@@ -158,6 +161,54 @@ fn segment_recording_without_operation_is_refused() {
     assert_eq!(zero, Err(SegmentError::GapOfZero));
 }
 
+/// An opening of the tactile switch TC-1103-B-A as read off the published plot, in microseconds, +-2 us: brief
+/// opens, then open for good (G. Sutherland, "switch_bouncing", public domain, level 2.0 V). Brief opens of which
+/// only one instant was legible are taken as 1 us.
+const PUBLISHED_OPENING: [u64; 23] = [
+    487, 488, 551, 552, 626, 635, 692, 700, 771, 772, 840, 841, 882, 883, 958, 964, 1028, 1035, 1086, 1087,
+    1162, 1168, 1218,
+];
+
+#[test]
+fn segment_published_opening_of_a_tactile_switch_is_one_break() {
+    let edges: Vec<u64> =
+        [200_000].into_iter().chain(PUBLISHED_OPENING.iter().map(|us| 500_000 + us)).collect();
+    let found = segmented(1_000_000, &edges);
+    let [_, opening] = found.operations.as_slice() else { panic!("{:?}", found.operations) };
+    assert_eq!((opening.change, opening.burst.edges), (Change::Break, 23));
+    assert_eq!(opening.bounce_ns(), 731 * US);
+    assert_eq!(opening.burst.longest_gap_ns, 75 * US);
+    assert_eq!(opening.ambiguity, None);
+    assert!(found.disturbances.is_empty());
+}
+
+/// The worst of 32 operations of each synthetic contact against the worst of 32 of the real part it imitates, as
+/// read off the published plots (G. Sutherland, "switch_bouncing", public domain; level 2.0 V): tactile
+/// TC-1103-B-A 5.5 and 1219 us, push-button KPB22 (NO) 1652 and 863 us. Plausible means within a factor of 2,
+/// or below 50 us on both sides, where the plots show no single edges. The rocker imitates no part: ordinary
+/// switches bounce for up to 50 ms (Pico Technology), 6.2 ms was the worst of 16 in one series (J. Ganssle, "A
+/// Guide to Debouncing", second-hand), and it must stay below 10 ms (Panasonic EVPBF data sheet's limit).
+#[test]
+fn synthetic_contacts_bounce_as_long_as_published_switches() {
+    let worst = |contact: ContactModel, change: Change| {
+        let last =
+            |stream| *contact.edges(change, 0, &mut crate::generate::Dice::new(77, stream)).last().unwrap();
+        (0..32).map(last).max().unwrap()
+    };
+    let [dome, push, rocker] = contacts();
+    for (contact, change, published_us) in
+        [(dome, Change::Break, 1219), (push, Change::Make, 1652), (push, Change::Break, 863)]
+    {
+        let found = worst(contact, change) / US;
+        assert!(found >= published_us / 2 && found <= published_us * 2, "{found} against {published_us} us");
+    }
+    assert!(worst(dome, Change::Make) < 50 * US);
+    for change in [Change::Make, Change::Break] {
+        let found = worst(rocker, change);
+        assert!(found > MS && found < 10 * MS, "{found} ns");
+    }
+}
+
 fn bounce(first: Between, restitution: Between, touch: Between, second: Option<SecondBurst>) -> Bounce {
     Bounce {
         first_flight_ns: first,
@@ -172,7 +223,7 @@ fn bounce(first: Between, restitution: Between, touch: Between, second: Option<S
 /// a push-button with second bursts after 0.2 to 0.5 ms, a slow rocker with bounces of several milliseconds.
 fn contacts() -> [ContactModel; 3] {
     let dome = PerChange {
-        make: bounce(Between(20 * US, 40 * US), Between(200, 300), Between(2 * US, 5 * US), None),
+        make: bounce(Between(15 * US, 30 * US), Between(200, 300), Between(2 * US, 5 * US), None),
         break_: bounce(Between(300 * US, 400 * US), Between(500, 700), Between(5 * US, 60 * US), None),
     };
     let second = SecondBurst {
@@ -190,7 +241,7 @@ fn contacts() -> [ContactModel; 3] {
         ),
     };
     let rocker = PerChange {
-        make: bounce(Between(2 * MS, 3 * MS), Between(400, 700), Between(50 * US, 200 * US), None),
+        make: bounce(Between(2 * MS, 3 * MS), Between(400, 600), Between(50 * US, 200 * US), None),
         break_: bounce(Between(MS, 2 * MS), Between(300, 500), Between(50 * US, 200 * US), None),
     };
     [dome, push, rocker].map(|bounce| ContactModel { bounce })
@@ -301,8 +352,8 @@ const PINNED_CLEAR: Tally = Tally {
     exact: 11_520,
     ambiguous: 0,
     wrong: 0,
-    disturbances: 4844,
-    disturbances_exact: 4844,
+    disturbances: 4928,
+    disturbances_exact: 4928,
 };
 
 /// Disturbances right after a bounce can pass for bounce: those operations must be marked, not silently wrong.
@@ -311,7 +362,7 @@ fn segment_synthetic_disturbances_after_bounce_are_marked_or_exact() {
     let mut tally = Tally::default();
     for contact in contacts() {
         for noise in noises().into_iter().flatten() {
-            for seed in 9100..9112 {
+            for seed in 9200..9212 {
                 let scenario =
                     Scenario { after_bounce_permille: 250, ..scenario(seed, contact, Some(noise)) };
                 tally.add(&scenario.generate().unwrap());
@@ -323,5 +374,11 @@ fn segment_synthetic_disturbances_after_bounce_are_marked_or_exact() {
     assert!(tally.wrong * 1000 <= tally.exact, "{tally:?}");
 }
 
-const PINNED_AFTER_BOUNCE: Tally =
-    Tally { operations: 0, exact: 0, ambiguous: 0, wrong: 0, disturbances: 0, disturbances_exact: 0 };
+const PINNED_AFTER_BOUNCE: Tally = Tally {
+    operations: 8640,
+    exact: 6557,
+    ambiguous: 2083,
+    wrong: 0,
+    disturbances: 6766,
+    disturbances_exact: 4822,
+};

@@ -1,0 +1,139 @@
+//! The main job: from recordings and a requirement to a chosen, proven configuration.
+//!
+//! [`observe`] reads a recording as operations; [`measured`] sums several up; [`Study::of`] fills in the
+//! requirement, chooses, proves the choice by exploration, and checks that the recordings lie inside the envelope
+//! the proof speaks of.
+
+mod observed;
+mod proof;
+
+use debounce_core::PerChange;
+
+use crate::choose::{Candidate, Evidence, Judgement, Preference, Question, Ranking, choose};
+use crate::conformance::{self, Conformance};
+use crate::emit::{Configuration, Proof as Proved};
+use crate::envelope::PhysicalEnvelope;
+use crate::problem::{Problem, Problems};
+use crate::prove::{Limits, ProveError};
+use crate::quantity::TickPeriod;
+use crate::replay::PrepareError;
+use crate::requirement::{Requirement, Resolved};
+
+pub use observed::{Claim, Observed, measured, observe};
+pub use proof::Guarantees;
+
+/// Why a study could not be finished.
+#[derive(Debug, thiserror::Error)]
+#[non_exhaustive]
+pub enum StudyError {
+    /// The requirement contradicts itself or the recordings.
+    #[error("the requirement does not fit")]
+    Requirement(Problems),
+    /// A recording cannot be replayed.
+    #[error(transparent)]
+    Replay(#[from] PrepareError),
+    /// The chosen configuration could not be explored.
+    #[error("the recommended configuration could not be proved: {0}")]
+    Prove(#[from] ProveError),
+}
+
+/// What a study found out.
+#[derive(Debug)]
+pub struct Study {
+    /// The recordings, read.
+    pub observed: Vec<Observed>,
+    /// The requirement with everything filled in.
+    pub resolved: Resolved,
+    /// The waveforms that everything is claimed for.
+    pub physical: PhysicalEnvelope,
+    /// Whether the recordings lie inside; one for each.
+    pub conformance: Vec<Conformance>,
+    /// All candidates, best first.
+    pub ranking: Ranking,
+    /// The exploration of the recommended candidate; `None` when none holds.
+    pub guarantees: Option<Guarantees>,
+}
+
+impl Study {
+    /// Studies `observed` for `requirement`; `progress` is called with the number of candidates judged so far.
+    ///
+    /// # Errors
+    /// When the requirement contradicts itself, or something cannot be replayed or explored.
+    pub fn of(
+        observed: Vec<Observed>,
+        requirement: &Requirement,
+        preference: Preference,
+        progress: impl Fn(usize) + Sync,
+    ) -> Result<Self, StudyError> {
+        let resolved = requirement.resolve(&measured(&observed)).map_err(StudyError::Requirement)?;
+        let physical = resolved.physical();
+        let conformance =
+            observed.iter().map(|one| conformance::check(&one.recording.trace, &physical)).collect();
+        let question = question(&resolved, &observed, preference);
+        let ranking = choose(&question, progress)?;
+        if ranking.clocks.iter().all(|view| view.envelope.is_err()) {
+            return Err(StudyError::Requirement(no_clock(&ranking).into()));
+        }
+        let guarantees = match ranking.recommended() {
+            Some(candidate) => Some(Guarantees::of(candidate, ranking.view(candidate))?),
+            None => None,
+        };
+        Ok(Self { observed, resolved, physical, conformance, ranking, guarantees })
+    }
+
+    /// Whether there is a recommendation and every recording lies inside the envelope it is proved for.
+    #[must_use]
+    pub fn holds(&self) -> bool {
+        self.guarantees.is_some() && self.conformance.iter().all(Conformance::conforms)
+    }
+
+    /// The tick period of a candidate.
+    #[must_use]
+    pub fn tick(&self, candidate: &Candidate) -> TickPeriod {
+        self.ranking.view(candidate).clock.period().into()
+    }
+
+    /// The recommended candidate as something to write for the firmware.
+    #[must_use]
+    pub fn configuration(&self) -> Option<Configuration> {
+        let candidate = self.ranking.recommended()?;
+        let Judgement::Faithful { bounds, evidence } = candidate.judgement else { return None };
+        let view = self.ranking.view(candidate);
+        let envelope = view.envelope.ok()?;
+        let proof = match evidence {
+            Evidence::ClosedForm => Proved::ClosedForm,
+            Evidence::Explored { states } => Proved::Explored { states },
+        };
+        let tick = self.tick(candidate);
+        let mut configuration =
+            Configuration::new(&self.resolved, tick, envelope, candidate.parameters, bounds, proof);
+        for one in &self.observed {
+            configuration = configuration
+                .provenance(format!("recording {}, channel {}", one.name, one.recording.channel));
+        }
+        Some(configuration)
+    }
+}
+
+fn question<'a>(resolved: &Resolved, observed: &'a [Observed], preference: Preference) -> Question<'a> {
+    let latency = resolved.required.latency;
+    Question {
+        physical: resolved.physical(),
+        latency_ns: PerChange { make: latency.make.value.ns(), break_: latency.break_.value.ns() },
+        clocks: resolved.ticks.value.iter().map(|&tick| resolved.clock(tick)).collect(),
+        ram_bytes: resolved.ram.map(|ram| ram.value.0),
+        recordings: observed.iter().map(|one| (&one.recording.trace, one.truth.as_slice())).collect(),
+        preference,
+        // A candidate that needs more than this is shown as unproven; the usual one needs a thousandth.
+        limits: Limits { memory_bytes: 1 << 20, threads: 1, ..Limits::default() },
+    }
+}
+
+/// The problem of a requirement whose disturbances come faster than every tick period can tell apart.
+fn no_clock(ranking: &Ranking) -> Problem {
+    let reasons: Vec<String> =
+        ranking.clocks.iter().filter_map(|view| view.envelope.err()).map(|error| error.to_string()).collect();
+    let first = reasons.into_iter().next().unwrap_or_else(|| "no tick period is given".to_owned());
+    Problem::new(format!("no tick period serves the requirement: {first}"))
+        .help("add a shorter tick period under [clock] or with --tick, or state a longer quiet")
+}

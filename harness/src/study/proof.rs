@@ -1,0 +1,77 @@
+//! The recommended candidate, explored in full.
+
+use debounce_core::{Envelope, PerPosition, Position};
+
+use crate::choose::{Candidate, ClockView, Judgement};
+use crate::prove::{
+    LawTable, Limits, Proof, ProveError, Recovery, immunity, prove_within, recovery_from_any_state,
+    recovery_from_short_operations, shortest_operations, widest_lone_disturbance,
+};
+
+/// What exploration shows of a candidate, beyond its bounds.
+#[derive(Clone, PartialEq, Debug)]
+pub struct Guarantees {
+    /// The envelope in samples.
+    pub envelope: Envelope,
+    /// The proof, with the slowest waveforms.
+    pub proof: Proof,
+    /// States of the law.
+    pub law_states: usize,
+    /// The widest lone disturbance from rest that is never reported, in samples.
+    pub lone_disturbance: PerPosition<Option<u32>>,
+    /// The widest disturbance that the proof still bears; `None` where the search would take too long.
+    pub immunity: Option<PerPosition<Option<u32>>>,
+    /// The shortest operations that are always served; empty where the search would take too long.
+    pub shortest_operations: Vec<PerPosition<u32>>,
+    /// After operations that were too short; `None` where the search would take too long.
+    pub after_short_operations: Option<Recovery>,
+    /// From any state; `None` where the search would take too long.
+    pub from_any_state: Option<Recovery>,
+}
+
+/// Searches that repeat the proof many times are made only up to this size, so that a study stays quick.
+const REPEATABLE: u64 = 30_000;
+
+impl Guarantees {
+    /// Explores a candidate that is known to be faithful.
+    ///
+    /// # Errors
+    /// When the exploration does not fit its limits.
+    pub(super) fn of(candidate: &Candidate, view: &ClockView) -> Result<Self, ProveError> {
+        let limits = Limits::default();
+        let envelope = view.envelope.expect("a candidate was judged in an envelope");
+        let logic = candidate.logic.table()?;
+        let proof = prove_within(&logic, &envelope, &limits)?;
+        if let Judgement::Faithful { bounds, .. } = candidate.judgement {
+            // The closed forms are themselves tested against exploration; this is the last line of defence.
+            assert_eq!(
+                proof.bounds(),
+                Some(bounds),
+                "closed form and exploration disagree: please report this"
+            );
+        }
+        let lone = |position| widest_lone_disturbance(&logic, position);
+        let mut guarantees = Self {
+            envelope,
+            law_states: logic.len(),
+            lone_disturbance: PerPosition { open: lone(Position::Open), closed: lone(Position::Closed) },
+            immunity: None,
+            shortest_operations: Vec::new(),
+            after_short_operations: None,
+            from_any_state: None,
+            proof,
+        };
+        if guarantees.proof.states <= REPEATABLE {
+            guarantees.repeat(&logic, &envelope, &limits)?;
+        }
+        Ok(guarantees)
+    }
+
+    fn repeat(&mut self, logic: &LawTable, envelope: &Envelope, limits: &Limits) -> Result<(), ProveError> {
+        self.immunity = Some(immunity(logic, envelope, limits)?);
+        self.shortest_operations = shortest_operations(logic, envelope, limits)?;
+        self.after_short_operations = Some(recovery_from_short_operations(logic, envelope, limits)?);
+        self.from_any_state = Some(recovery_from_any_state(logic, envelope, limits)?);
+        Ok(())
+    }
+}

@@ -1,0 +1,321 @@
+//! The rows of a recording: times that rise, and what the chosen columns say at each.
+
+use std::io::{self, Read};
+use std::ops::Range;
+
+use super::cell::{self, Cell};
+use super::header::{Unit, VoltUnit};
+use super::layout::Layout;
+use super::line::{Lines, is_skipped, split};
+use super::number::{self, PER_NS, Yoctoseconds};
+use crate::trace::builder::{Reading, TraceBuilder};
+use crate::trace::error::{Faults, Place, quoted};
+use crate::trace::{Note, ReadOptions, Recording, Thresholds, TimeUnit};
+
+/// A column that is followed.
+#[derive(Debug)]
+struct Lane {
+    name: String,
+    column: usize,
+    unit: VoltUnit,
+    /// Whether the header calls it volts, so that even 0 and 1 are no levels.
+    is_volts: bool,
+    builder: TraceBuilder,
+    before: Option<Reading>,
+    /// Where the first number stands that is no level, and the least and the greatest number of the column.
+    first_number: Option<Place>,
+    least: f64,
+    greatest: f64,
+}
+
+/// The state of reading rows.
+#[derive(Debug)]
+pub(super) struct Rows<'a> {
+    layout: &'a Layout,
+    options: &'a ReadOptions,
+    lanes: Vec<Lane>,
+    unit_power: i32,
+    shift: Yoctoseconds,
+    before: Option<Yoctoseconds>,
+    before_text: Vec<u8>,
+    least_step: Yoctoseconds,
+    greatest_step: Yoctoseconds,
+    last_place: i32,
+    rows: u64,
+    now_ns: u64,
+    /// Some row says the same as the one before: the file holds samples and not only changes.
+    repeats: bool,
+    was_rounded: bool,
+}
+
+/// The beginning of a nanosecond as whole nanoseconds, if it is one that fits.
+fn whole_ns(at: Yoctoseconds) -> Option<u64> {
+    u64::try_from(at.div_euclid(PER_NS)).ok()
+}
+
+impl<'a> Rows<'a> {
+    pub(super) fn new(layout: &'a Layout, chosen: &[usize], options: &'a ReadOptions) -> Self {
+        let lane = |&column: &usize| {
+            let volts = match layout.columns.get(column).and_then(|column| column.unit) {
+                Some(Unit::Volts(unit)) => Some(unit),
+                _ => None,
+            };
+            Lane {
+                name: layout.name(column),
+                column,
+                unit: volts.unwrap_or_default(),
+                is_volts: volts.is_some(),
+                builder: TraceBuilder::new(options.unknown),
+                before: None,
+                first_number: None,
+                least: f64::INFINITY,
+                greatest: f64::NEG_INFINITY,
+            }
+        };
+        Self {
+            layout,
+            options,
+            lanes: chosen.iter().map(lane).collect(),
+            unit_power: layout.time_unit.unwrap_or(TimeUnit::Seconds).power_of_ten(),
+            shift: 0,
+            before: None,
+            before_text: Vec::new(),
+            least_step: Yoctoseconds::MAX,
+            greatest_step: 0,
+            last_place: 0,
+            rows: 0,
+            now_ns: 0,
+            repeats: false,
+            was_rounded: false,
+        }
+    }
+
+    pub(super) fn read<R: Read>(&mut self, lines: &mut Lines<R>, faults: &mut Faults) -> io::Result<()> {
+        let mut fields: Vec<Range<usize>> = Vec::new();
+        while !faults.is_full() {
+            let Some((number, line)) = lines.next()? else { break };
+            if number < self.layout.first_row || is_skipped(line) {
+                continue;
+            }
+            split(line, self.layout.delimiter, &mut fields);
+            self.row(number, line, &fields, faults);
+        }
+        Ok(())
+    }
+
+    fn row(&mut self, number: u64, line: &[u8], fields: &[Range<usize>], faults: &mut Faults) {
+        let place = |column: usize| Place { line: number, column: column as u64 + 1 };
+        let needed =
+            self.lanes.iter().map(|lane| lane.column).chain([self.layout.time_column]).max().unwrap_or(0);
+        if fields.len() <= needed {
+            let (has, needs) = (fields.len(), needed + 1);
+            faults.at(place(line.len()), format!("the row has {has} of the {needs} fields that it needs"));
+            return;
+        }
+        let time = &fields[self.layout.time_column];
+        if let Err(message) = self.time(&line[time.clone()]) {
+            faults.at(place(time.start), message);
+            return;
+        }
+        let mut is_repeat = true;
+        for lane in &mut self.lanes {
+            let field = &fields[lane.column];
+            let cell = &line[field.clone()];
+            let reading = match lane.reading(cell, place(field.start), self.layout, self.options) {
+                Ok(reading) => reading,
+                Err(message) => {
+                    faults.at(place(field.start), message);
+                    continue;
+                }
+            };
+            is_repeat &= lane.before == Some(reading);
+            lane.before = Some(reading);
+            if lane.builder.record(self.now_ns, reading).is_err() {
+                let cell = quoted(cell);
+                faults.at(place(field.start), format!("channel {} has the unknown value {cell}", lane.name));
+                faults.help(
+                    "unknown values are to be refused here; they could be held, or count as open or closed",
+                );
+            }
+        }
+        self.repeats |= is_repeat;
+    }
+
+    /// Takes the time of a row, or says what is wrong with it.
+    fn time(&mut self, cell: &[u8]) -> Result<(), String> {
+        let time = number::time(cell, self.layout.mark, self.unit_power)
+            .map_err(|error| format!("{} {}", quoted(cell), error.reason("a time")))?;
+        match self.before {
+            None => {
+                if time.at < 0 {
+                    // Up by whole nanoseconds, so that the shift can be told exactly.
+                    self.shift = (-time.at.div_euclid(PER_NS)) * PER_NS;
+                }
+                self.last_place = time.last_place;
+            }
+            Some(before) if time.at <= before => {
+                let before = String::from_utf8_lossy(&self.before_text).into_owned();
+                return Err(format!(
+                    "time {} is not later than the {before} before it",
+                    quoted(cell).trim_matches('"')
+                ));
+            }
+            Some(before) => {
+                self.least_step = self.least_step.min(time.at - before);
+                self.greatest_step = self.greatest_step.max(time.at - before);
+            }
+        }
+        let shifted = time.at.checked_add(self.shift).and_then(|at| Some((at, whole_ns(at)?)));
+        let Some((at, now_ns)) = shifted else {
+            return Err(format!("time {} exceeds the {} ns that fit 64 bits", quoted(cell), u64::MAX));
+        };
+        if self.before.is_none() {
+            for lane in &mut self.lanes {
+                lane.builder.start(now_ns);
+            }
+        }
+        self.last_place = self.last_place.min(time.last_place);
+        self.was_rounded |= at % PER_NS != 0;
+        self.before = Some(time.at);
+        self.before_text.clear();
+        self.before_text.extend_from_slice(cell);
+        self.now_ns = now_ns;
+        self.rows += 1;
+        Ok(())
+    }
+
+    /// Whether the rows are evenly spaced samples: steps that differ only as rounding makes them differ.
+    fn is_sampled(&self) -> bool {
+        self.rows >= 3
+            && self.greatest_step <= self.least_step + self.least_step / 2
+            && (self.repeats || self.options.thresholds.is_some())
+    }
+
+    /// The recorder's period: the greatest step of even samples, else the worth of the last digit of the times.
+    fn resolution_ns(&self) -> u64 {
+        let finest = if self.is_sampled() {
+            self.greatest_step
+        } else {
+            let power = u32::try_from(self.last_place + 24).ok();
+            power.and_then(|power| 10_i128.checked_pow(power)).unwrap_or(1)
+        };
+        whole_ns(finest + PER_NS - 1).unwrap_or(u64::MAX).max(1)
+    }
+
+    pub(super) fn finish(self, faults: &mut Faults) -> Vec<Recording> {
+        if self.rows == 0 {
+            faults.whole_file("holds no row that can be read");
+            return Vec::new();
+        }
+        // Each of even samples stands for one period, the last one too.
+        let tail_ns = if self.is_sampled() { whole_ns(self.least_step).unwrap_or(0) } else { 0 };
+        let end_ns = self.now_ns.saturating_add(tail_ns);
+        let resolution_ns = self.options.resolution_ns.unwrap_or_else(|| self.resolution_ns());
+        let shift = whole_ns(self.shift).filter(|&by_ns| by_ns > 0).map(|by_ns| Note::Shifted { by_ns });
+        let assumed = self.layout.time_unit.is_none().then_some(Note::SecondsAssumed);
+        let preamble = Some(self.layout.preamble)
+            .filter(|&lines| lines > 0)
+            .map(|lines| Note::PreambleSkipped { lines });
+        let rounded = self.was_rounded.then_some(Note::RoundedTimes);
+        let mut recordings = Vec::new();
+        for lane in self.lanes {
+            if lane.lacks_thresholds(self.options.thresholds, faults) {
+                continue;
+            }
+            let (least, greatest) = (lane.least, lane.greatest);
+            match (lane.builder.finish(end_ns, resolution_ns), self.options.thresholds) {
+                (Some((trace, mut notes)), _) => {
+                    notes.extend([shift, assumed, preamble, rounded].into_iter().flatten());
+                    recordings.push(Recording { channel: lane.name, trace, notes });
+                }
+                // What is wrong with each cell stands in the list already.
+                (None, _) if !faults.is_empty() => {}
+                (None, Some(pair)) => {
+                    faults.whole_file(format!(
+                        "channel {} never leaves the band between {} V and {} V: it holds {least} V to {greatest} V",
+                        lane.name,
+                        pair.falling_v(),
+                        pair.rising_v()
+                    ));
+                    propose(least, greatest, faults);
+                }
+                (None, None) => faults.whole_file(format!("channel {} never has a known value", lane.name)),
+            }
+        }
+        recordings
+    }
+}
+
+impl Lane {
+    fn reading(
+        &mut self,
+        cell: &[u8],
+        place: Place,
+        layout: &Layout,
+        options: &ReadOptions,
+    ) -> Result<Reading, String> {
+        let known = |level| Reading::Known(options.polarity.position(level));
+        if let Some(thresholds) = options.thresholds {
+            let value = number::real(cell, layout.mark)
+                .map_err(|error| format!("{} {}", quoted(cell), error.reason("a voltage")))?;
+            let volts = self.unit.volts(value);
+            self.see(volts);
+            return Ok(thresholds.level(volts).map_or(Reading::Between, known));
+        }
+        let cell = cell::parse(cell, layout.mark).map_err(|error| {
+            let wanted = if self.is_volts { "a voltage" } else { "a level; use 0 or 1, or low or high" };
+            format!("{} {}", quoted(cell), error.reason(wanted))
+        })?;
+        let (reading, number) = match cell {
+            Cell::Unknown => return Ok(Reading::Unknown),
+            Cell::Level(level) => (known(level), f64::from(u8::from(level == crate::trace::Level::High))),
+            Cell::Number(number) => (Reading::Between, number),
+        };
+        self.see(self.unit.volts(number));
+        if self.is_volts || matches!(cell, Cell::Number(_)) {
+            self.first_number.get_or_insert(place);
+        }
+        Ok(reading)
+    }
+
+    fn see(&mut self, volts: f64) {
+        self.least = self.least.min(volts);
+        self.greatest = self.greatest.max(volts);
+    }
+
+    /// Says so when the column holds voltages and there is nothing to turn them into levels.
+    fn lacks_thresholds(&self, thresholds: Option<Thresholds>, faults: &mut Faults) -> bool {
+        let Some(place) = self.first_number.filter(|_| thresholds.is_none()) else { return false };
+        let (name, least, greatest) = (&self.name, self.least, self.greatest);
+        faults.at(
+            place,
+            format!(
+                "channel {name} holds voltages, from {least} V to {greatest} V; levels need two thresholds"
+            ),
+        );
+        propose(least, greatest, faults);
+        true
+    }
+}
+
+/// Thresholds at 30 % and 70 % of the range seen, as CMOS inputs have them of their supply (common practice).
+fn propose(least: f64, greatest: f64, faults: &mut Faults) {
+    let at = |part: f64| {
+        let volts = least + part * (greatest - least);
+        // Three digits of the range are as much as a proposal is worth.
+        let digits = 2 - (greatest - least).log10().floor().clamp(-9.0, 9.0) as i32;
+        let factor = 10_f64.powi(digits);
+        (volts * factor).round() / factor
+    };
+    match Thresholds::try_new(at(0.3), at(0.7)) {
+        Ok(pair) => {
+            faults.help(format!(
+                "give a falling and a rising threshold, such as {} V and {} V (30 % and 70 % of that range)",
+                pair.falling_v(),
+                pair.rising_v()
+            ));
+            faults.propose(pair);
+        }
+        Err(_) => faults.help("the voltage never changes: is this the right channel?"),
+    }
+}

@@ -1,0 +1,92 @@
+//! A trace with where it came from and what the reader had to decide.
+
+use std::fmt;
+
+use debounce_core::Position;
+
+use super::{Trace, Unknown};
+
+/// One channel of a file, as a trace.
+#[derive(Clone, PartialEq, Eq, Debug)]
+#[non_exhaustive]
+pub struct Recording {
+    /// The full name of the channel in the file.
+    pub channel: String,
+    /// What was recorded, polarity turned.
+    pub trace: Trace,
+    /// What the reader decided or left out, for the user to know; empty when there was nothing to decide.
+    pub notes: Vec<Note>,
+}
+
+/// Something that a reader decided on its own.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+#[non_exhaustive]
+pub enum Note {
+    /// The times began below zero and were moved up.
+    Shifted {
+        /// By how much.
+        by_ns: u64,
+    },
+    /// Times finer than a nanosecond were rounded down to it.
+    RoundedTimes,
+    /// Edges fell into one nanosecond with others and are not in the trace: of all the levels in one
+    /// nanosecond the last counts.
+    MergedEdges {
+        /// How many edges are missing.
+        edges: u64,
+    },
+    /// Values that are neither 0 nor 1 were replaced.
+    UnknownValues {
+        /// How many stretches of such values.
+        stretches: u64,
+        /// When the first began.
+        first_ns: u64,
+        /// What was made of them.
+        policy: Unknown,
+    },
+    /// The channel had no known value at the start; the first known one was taken.
+    StartAssumed {
+        /// When the first known value came.
+        until_ns: u64,
+        /// What it was.
+        position: Position,
+    },
+    /// Neither the file nor the options gave the unit of the times; seconds were taken.
+    SecondsAssumed,
+    /// Lines before the data were left out.
+    PreambleSkipped {
+        /// How many lines.
+        lines: u64,
+    },
+}
+
+impl fmt::Display for Note {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match *self {
+            Self::Shifted { by_ns } => write!(f, "times began below zero; all were moved up by {by_ns} ns"),
+            Self::RoundedTimes => f.write_str("times finer than 1 ns were rounded down to whole nanoseconds"),
+            Self::MergedEdges { edges } => write!(
+                f,
+                "{edges} edges shared a nanosecond with another and were merged (the last level in it counts)"
+            ),
+            Self::UnknownValues { stretches, first_ns, policy } => {
+                let made = match policy {
+                    Unknown::Hold => "the position before was held",
+                    Unknown::Open => "taken as open",
+                    Unknown::Closed => "taken as closed",
+                    Unknown::Refuse => "refused",
+                };
+                write!(f, "{stretches} stretches of unknown values, the first at {first_ns} ns: {made}")
+            }
+            Self::StartAssumed { until_ns, position } => {
+                let position = match position {
+                    Position::Open => "open",
+                    Position::Closed => "closed",
+                };
+                write!(f, "no known value before {until_ns} ns; taken as {position} from the start")
+            }
+            Self::SecondsAssumed => f.write_str("no unit was given for the times; taken as seconds"),
+            Self::PreambleSkipped { lines } => write!(f, "{lines} lines before the data were skipped"),
+        }
+    }
+}
