@@ -136,7 +136,7 @@ pub(crate) fn measure<T: Sample, S: Copy>(
                 unsafe { samples.add(index).write(T::draw(&mut source)) };
             }
             // SAFETY: the same.
-            let notes = unsafe { &mut *(&raw mut NOTES) };
+            let notes = unsafe { (&raw mut NOTES).as_mut() }.expect("a static has an address");
             // SAFETY: the end of the samples.
             let end = unsafe { samples.add(SAMPLES_OF_A_CHUNK) }.cast_const().cast();
             let last = samples.wrapping_sub(1).cast();

@@ -180,14 +180,10 @@ fn claims() {
         }
     }
     keep(&PerPosition { open: any(), closed: any() }.at(position()));
-    if let Some(period) = Period::try_from_ratio(u64::from(any()), any()) {
-        if let Some(clock) = TickClock::new(period).try_tolerance_ppm(any()) {
-            let clock = clock.jitter_ns(u64::from(any())).lost(any());
-            keep(&(
-                clock.samples_touched(any().into()),
-                clock.samples_seen(any().into()),
-                clock.delay_ns(any()),
-            ));
-        }
+    let clock = Period::try_from_ratio(u64::from(any()), any())
+        .and_then(|period| TickClock::new(period).try_tolerance_ppm(any()));
+    if let Some(clock) = clock {
+        let clock = clock.jitter_ns(u64::from(any())).lost(any());
+        keep(&(clock.samples_touched(any().into()), clock.samples_seen(any().into()), clock.delay_ns(any())));
     }
 }

@@ -40,7 +40,7 @@ fn analog() {
         pull_up_ohms: any(),
         key_ohms: [any(), any(), any()],
         tolerance_ppm: any(),
-        adc_bits: any_u8().into(),
+        adc_bits: any_u8(),
         slack_counts: any_u16(),
     };
     let chord: Option<Chord> = parts.chord_alias();

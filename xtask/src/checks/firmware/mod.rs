@@ -25,7 +25,7 @@ pub(super) fn run(session: &mut Session) {
     if !ready(session) {
         return;
     }
-    lint(session, RIG);
+    lint(session, RIG, &IMAGES);
     if !build(session) {
         return;
     }
@@ -61,11 +61,13 @@ fn manifest(workspace: &str) -> String {
     format!("{workspace}/Cargo.toml")
 }
 
-fn lint(session: &mut Session, workspace: &str) {
+fn lint(session: &mut Session, workspace: &str, images: &[&str]) {
     let manifest = manifest(workspace);
     session.cargo(&words("fmt", &manifest, &["--all", "--check"]));
     if session.expect(install::component("clippy", "clippy")) {
-        let rest = ["--release", "--locked", "--target", ALL[0].target, "--", "-D", "warnings"];
+        let mut rest = vec!["--release", "--locked", "--target", ALL[0].target];
+        rest.extend(images.iter().flat_map(|image| ["--bin", image]));
+        rest.extend(["--", "-D", "warnings"]);
         session.cargo(&words("clippy", &manifest, &rest));
     }
 }
@@ -140,7 +142,7 @@ fn panel(session: &mut Session) {
     if !Session::root().join(&manifest).exists() {
         return session.fail(format!("{PANEL} is missing"));
     }
-    lint(session, PANEL);
+    lint(session, PANEL, &["control-panel"]);
     let expected = match std::fs::read_to_string(Session::root().join(PANEL).join("expected.txt")) {
         Ok(expected) => expected,
         Err(error) => return session.fail(format!("cannot read {PANEL}/expected.txt: {error}")),
