@@ -154,7 +154,7 @@ fn panel(session: &mut Session) {
         }
         let image =
             Session::root().join(PANEL).join("target").join(machine.target).join("release/control-panel");
-        match machine.run(&image, Time::Counted) {
+        match machine.run(&image, Time::Steady) {
             Ok(found) => match first_difference(&expected, &found) {
                 Some(found) => session.fail(format!("{PANEL} on {}: {found}", machine.name)),
                 None => say(&format!("{PANEL} on {}: as expected", machine.name)),
