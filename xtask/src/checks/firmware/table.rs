@@ -239,11 +239,11 @@ mod tests {
     #[test]
     fn one_instruction_more_is_a_fault_and_one_less_a_saving() {
         let stated = row();
-        assert!(faults(&[stated.clone()], &[row()]).is_empty());
+        assert!(faults(std::slice::from_ref(&stated), &[row()]).is_empty());
         let mut more = row();
         more.totals[2] += 1;
         let text = "cortex-m3 bank rust inlined: instructions of 8000 ticks, contact input: 72003, in the table 72002";
-        assert_eq!(faults(&[stated.clone()], &[more.clone()]), [text]);
+        assert_eq!(faults(std::slice::from_ref(&stated), std::slice::from_ref(&more)), [text]);
         assert_eq!(savings(&[more], &[stated]).len(), 1);
     }
 
