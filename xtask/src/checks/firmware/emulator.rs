@@ -16,7 +16,6 @@ pub(super) struct Machine {
     options: &'static [&'static str],
     /// Whether the C compiler and its tools know it.
     pub(super) is_arm: bool,
-    pub(super) runs_panel: bool,
 }
 
 /// Every machine; the first is the one that is linted for.
@@ -28,7 +27,6 @@ pub(super) const ALL: &[Machine] = &[
         packages: &["qemu-system-arm"],
         options: &["-machine", "lm3s6965evb"],
         is_arm: true,
-        runs_panel: true,
     },
     Machine {
         name: "cortex-m0",
@@ -37,7 +35,6 @@ pub(super) const ALL: &[Machine] = &[
         packages: &["qemu-system-arm"],
         options: &["-machine", "microbit"],
         is_arm: true,
-        runs_panel: true,
     },
     Machine {
         name: "riscv32imc",
@@ -46,7 +43,6 @@ pub(super) const ALL: &[Machine] = &[
         packages: &["qemu-system-misc", "qemu-system-riscv"],
         options: &["-machine", "virt", "-bios", "none"],
         is_arm: false,
-        runs_panel: false,
     },
 ];
 

@@ -15,8 +15,32 @@ use emulator::{ALL, Machine, Time};
 
 /// The workspace of what is checked, below the root.
 const RIG: &str = "examples/firmware-checks";
-/// The example that a reader starts from, below the root.
-const PANEL: &str = "examples/firmware-cortex-m";
+
+/// An example that a reader may start from; what it prints is kept beside it.
+struct Example {
+    /// Below the root.
+    folder: &'static str,
+    image: &'static str,
+    /// The machines that run it, by name.
+    runs_on: &'static [&'static str],
+    /// What it is built for besides.
+    builds_for: &'static [&'static str],
+}
+
+const EXAMPLES: [Example; 2] = [
+    Example {
+        folder: "examples/firmware-cortex-m",
+        image: "control-panel",
+        runs_on: &["cortex-m3", "cortex-m0"],
+        builds_for: &[],
+    },
+    Example {
+        folder: "examples/async-panel",
+        image: "async-panel",
+        runs_on: &["cortex-m3"],
+        builds_for: &["thumbv7em-none-eabihf"],
+    },
+];
 
 /// The images of [`RIG`].
 const IMAGES: [&str; 4] = ["cost", "replay-target", "uses", "twin"];
@@ -32,7 +56,7 @@ pub(super) fn run(session: &mut Session) {
     same_on_host(session);
     panics::check(session);
     costs::check(session);
-    panel(session);
+    EXAMPLES.iter().for_each(|example| example.check(session));
 }
 
 /// Measures, and writes the table anew.
@@ -136,31 +160,39 @@ fn first_difference(expected: &str, found: &str) -> Option<String> {
     }
 }
 
-/// The example firmware runs and prints what is kept beside it.
-fn panel(session: &mut Session) {
-    let manifest = manifest(PANEL);
-    if !Session::root().join(&manifest).exists() {
-        return session.fail(format!("{PANEL} is missing"));
+impl Example {
+    /// The example builds, runs, and prints what is kept beside it.
+    fn check(&self, session: &mut Session) {
+        lint(session, self.folder, &[self.image]);
+        for target in self.builds_for {
+            if session.expect(install::target(target)) {
+                self.build(session, target);
+            }
+        }
+        let folder = Session::root().join(self.folder);
+        let expected = match std::fs::read_to_string(folder.join("expected.txt")) {
+            Ok(expected) => expected,
+            Err(error) => return session.fail(format!("cannot read {}/expected.txt: {error}", self.folder)),
+        };
+        for machine in ALL.iter().filter(|machine| self.runs_on.contains(&machine.name)) {
+            if !self.build(session, machine.target) {
+                continue;
+            }
+            let image = folder.join("target").join(machine.target).join("release").join(self.image);
+            match machine.run(&image, Time::Steady) {
+                Ok(found) => match first_difference(&expected, &found) {
+                    Some(found) => session.fail(format!("{} on {}: {found}", self.folder, machine.name)),
+                    None => say(&format!("{} on {}: as expected", self.folder, machine.name)),
+                },
+                Err(message) => session.fail(message),
+            }
+        }
     }
-    lint(session, PANEL, &["control-panel"]);
-    let expected = match std::fs::read_to_string(Session::root().join(PANEL).join("expected.txt")) {
-        Ok(expected) => expected,
-        Err(error) => return session.fail(format!("cannot read {PANEL}/expected.txt: {error}")),
-    };
-    for machine in ALL.iter().filter(|machine| machine.runs_panel) {
-        let rest = ["--release", "--locked", "--target", machine.target];
-        if !session.expect(crate::session::run(&mut cargo(&words("build", &manifest, &rest)))) {
-            continue;
-        }
-        let image =
-            Session::root().join(PANEL).join("target").join(machine.target).join("release/control-panel");
-        match machine.run(&image, Time::Steady) {
-            Ok(found) => match first_difference(&expected, &found) {
-                Some(found) => session.fail(format!("{PANEL} on {}: {found}", machine.name)),
-                None => say(&format!("{PANEL} on {}: as expected", machine.name)),
-            },
-            Err(message) => session.fail(message),
-        }
+
+    fn build(&self, session: &mut Session, target: &str) -> bool {
+        let manifest = manifest(self.folder);
+        let words = words("build", &manifest, &["--release", "--locked", "--target", target]);
+        session.expect(crate::session::run(&mut cargo(&words)))
     }
 }
 
