@@ -93,6 +93,7 @@ mod law;
 mod machine;
 mod majority_register;
 mod meaning;
+pub mod proofs;
 mod running;
 mod shift_register;
 mod starting;

@@ -39,6 +39,9 @@ impl fmt::Display for Reason {
         let Self { preference, holding, tried, alike, tick, state_bytes } = self;
         write!(f, "of {tried} candidates {holding} hold; ")?;
         match preference {
+            Preference::FewTicks if *alike == 1 => {
+                write!(f, "{tick} is the slowest tick at which any does, and this is the only one there")
+            }
             Preference::FewTicks => write!(
                 f,
                 "{tick} is the slowest tick at which any does, and of the {alike} there this one has the shortest worst delay"

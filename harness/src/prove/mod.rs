@@ -40,6 +40,7 @@ mod explore;
 mod frontier;
 mod immunity;
 mod latency;
+mod limit;
 pub mod observe;
 mod product;
 mod recovery;
@@ -54,6 +55,7 @@ pub use contract::Contract;
 pub use environment::{Branch, Environment, EnvironmentState, Fired};
 pub use frontier::shortest_operations;
 pub use immunity::{immunity, widest_lone_disturbance};
+pub use limit::{LimitAnswer, NoLogic, Solution, limit, promptest_logic, solve_limit};
 pub use recovery::{Recovery, recovery_from_any_state, recovery_from_short_operations};
 pub use tabulate::{Entry, LawTable};
 pub use witness::{Witness, WitnessTick};
@@ -128,6 +130,45 @@ pub enum ProveError {
         /// The sample.
         sample: Position,
     },
+    /// A table has no states.
+    #[error("the table is no law: it has no states")]
+    NoStates,
+    /// A table has not one output for each state.
+    #[error("the table is no law: it has {states} states but {outputs} outputs")]
+    OutputsMismatch {
+        /// Number of states.
+        states: usize,
+        /// Number of outputs.
+        outputs: usize,
+    },
+    /// A step of a table leads to a state that is not there.
+    #[error(
+        "the table is no law: from state {state} {} sample leads to state {target}; the states are 0 to {}",
+        a_word(*.sample), .states - 1
+    )]
+    NoSuchState {
+        /// The state stepped from.
+        state: usize,
+        /// The sample.
+        sample: Position,
+        /// Where it should lead.
+        target: u32,
+        /// Number of states.
+        states: usize,
+    },
+    /// A table rests in a state that is not there.
+    #[error(
+        "the table is no law: it rests {} in state {target}; the states are 0 to {}",
+        word(*.position), .states - 1
+    )]
+    NoSuchRest {
+        /// Where it should rest.
+        position: Position,
+        /// The state named.
+        target: u32,
+        /// Number of states.
+        states: usize,
+    },
     /// The law has too many states.
     #[error("unfinished: the law has more than {} states ({states} found so far)", LawTable::MOST_STATES)]
     LawTooLarge {
@@ -164,6 +205,13 @@ fn word(position: Position) -> &'static str {
     match position {
         Position::Open => "open",
         Position::Closed => "closed",
+    }
+}
+
+fn a_word(position: Position) -> &'static str {
+    match position {
+        Position::Open => "an open",
+        Position::Closed => "a closed",
     }
 }
 
@@ -254,6 +302,7 @@ pub fn prove_contract(
     contract: Contract,
     limits: &Limits,
 ) -> Result<Proof, ProveError> {
+    refuse_hopeless(logic, envelope, limits)?;
     let environment = match Environment::under(envelope, contract) {
         Err(ProveError::DwellUnseen { position }) => return Ok(unseen(logic, envelope, contract, position)),
         other => other?,
@@ -278,6 +327,50 @@ pub fn prove_contract(
         transitions: explored.transitions,
     })
 }
+
+/// Calls `visit` with every state that `law` and `envelope` can be in together: the envelope's, the law's, and how many
+/// changes are unreported. For an invariant of one's own. Returns how many there are; where the law is refuted, those
+/// up to the samples that refute it.
+///
+/// # Errors
+/// As [`prove`]; and where a dwell falls between two samples.
+pub fn each_reachable_state<L: Law>(
+    law: &L,
+    envelope: &Envelope,
+    limits: &Limits,
+    mut visit: impl FnMut(&EnvironmentState, &L::State, u32),
+) -> Result<u64, ProveError>
+where
+    L::State: Hash,
+{
+    let environment = Environment::of(envelope)?;
+    let (logic, states) = LawTable::with_states(law)?;
+    let product = Product { environment: &environment, logic: &logic };
+    let explored = explore::explore(&product, limits)?;
+    for node in explored.visited.nodes() {
+        visit(environment.state(node.environment()), &states[node.logic()], product.pending(node));
+    }
+    Ok(explored.states)
+}
+
+/// Refuses an envelope whose automaton alone would not fit, before its states are enumerated.
+///
+/// Every time that the contact has held occurs together with every time since the last disturbance, up to dwell
+/// and quiet, so the automaton has at least about so many states.
+fn refuse_hopeless(logic: &LawTable, envelope: &Envelope, limits: &Limits) -> Result<(), ProveError> {
+    let e = envelope.delivered();
+    let quiet = if e.glitch.open == 0 && e.glitch.closed == 0 { 1 } else { u128::from(e.quiet) + 1 };
+    let states = (u128::from(e.dwell.open) + u128::from(e.dwell.closed)) * quiet;
+    let (pairs, limit) = (states * logic.len() as u128, limits.memory_bytes);
+    // Two bits a pair in the set of visited ones, and about 64 bytes a state while the automaton is built.
+    let bytes = (pairs / 4).max(states * 64);
+    let allowed =
+        u128::from(limit).max(if pairs / 4 <= u128::from(limit) { MOST_ENVIRONMENT_BYTES } else { 0 });
+    if bytes > allowed { Err(ProveError::TooLarge { pairs, bytes, limit }) } else { Ok(()) }
+}
+
+/// An automaton may take this much while it is built, even where the set of visited states must be smaller.
+const MOST_ENVIRONMENT_BYTES: u128 = 1 << 27;
 
 /// The verdict where a dwell may fall between two samples: a miss, whatever the logic.
 fn unseen(logic: &LawTable, envelope: &Envelope, contract: Contract, position: Position) -> Proof {

@@ -3,4 +3,5 @@
 pub mod json;
 pub mod state_diagram;
 pub mod timing;
+pub mod witness;
 pub mod words;

@@ -1,6 +1,6 @@
 //! The recommended candidate, explored in full.
 
-use debounce_core::{Envelope, PerPosition, Position};
+use debounce_core::{Envelope, PerPosition, Position, Verdict};
 
 use crate::choose::{Candidate, ClockView, Judgement};
 use crate::prove::{
@@ -13,7 +13,8 @@ use crate::prove::{
 pub struct Guarantees {
     /// The envelope in samples.
     pub envelope: Envelope,
-    /// The proof, with the slowest waveforms.
+    /// The proof, with the slowest waveforms. Its own envelope may be wider than [`envelope`](Self::envelope), see
+    /// [`explored_wider`](Self::explored_wider).
     pub proof: Proof,
     /// States of the law.
     pub law_states: usize,
@@ -41,7 +42,8 @@ impl Guarantees {
         let limits = Limits::default();
         let envelope = view.envelope.expect("a candidate was judged in an envelope");
         let logic = candidate.logic.table()?;
-        let proof = prove_within(&logic, &envelope, &limits)?;
+        let explored = wider(candidate, envelope);
+        let proof = prove_within(&logic, &explored, &limits)?;
         if let Judgement::Faithful { bounds, .. } = candidate.judgement {
             // The closed forms are themselves tested against exploration; this is the last line of defence.
             assert_eq!(
@@ -62,9 +64,15 @@ impl Guarantees {
             proof,
         };
         if guarantees.proof.states <= REPEATABLE {
-            guarantees.repeat(&logic, &envelope, &limits)?;
+            guarantees.repeat(&logic, &explored, &limits)?;
         }
         Ok(guarantees)
+    }
+
+    /// The envelope that was explored, where it is not the one asked for but one that holds all its waveforms.
+    #[must_use]
+    pub fn explored_wider(&self) -> Option<Envelope> {
+        Some(self.proof.envelope).filter(|explored| *explored != self.envelope)
     }
 
     fn repeat(&mut self, logic: &LawTable, envelope: &Envelope, limits: &Limits) -> Result<(), ProveError> {
@@ -74,4 +82,37 @@ impl Guarantees {
         self.from_any_state = Some(recovery_from_any_state(logic, envelope, limits)?);
         Ok(())
     }
+}
+
+/// Environments smaller than about this many states are explored as they are.
+const SMALL: u64 = 20_000;
+
+/// An envelope with shorter dwell and quiet, for which the closed form gives the very same bounds.
+///
+/// It holds every waveform of the given one and more, so what is proved there holds here; and a contact that rests
+/// for seconds need not be counted through tick by tick.
+fn wider(candidate: &Candidate, envelope: Envelope) -> Envelope {
+    let verdict = candidate.logic.verdict(&envelope);
+    if !matches!(verdict, Verdict::Holds(_)) {
+        return envelope;
+    }
+    let size = |e: &Envelope| u64::from(e.dwell.open.max(e.dwell.closed)) * u64::from(e.quiet.max(1));
+    let mut explored = envelope.delivered();
+    while size(&explored) > SMALL {
+        let mut shorter = explored.quiet((explored.quiet / 2).max(1));
+        if shorter.quiet == explored.quiet || candidate.logic.verdict(&shorter) != verdict {
+            shorter = explored;
+        }
+        let halved = |ticks: u32| (ticks / 2).max(1);
+        let mut both = shorter;
+        both.dwell = PerPosition { open: halved(shorter.dwell.open), closed: halved(shorter.dwell.closed) };
+        if candidate.logic.verdict(&both) == verdict {
+            shorter = both;
+        }
+        if shorter == explored {
+            break;
+        }
+        explored = shorter;
+    }
+    explored
 }
