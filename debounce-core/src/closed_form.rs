@@ -88,13 +88,13 @@ impl Counting {
         let from_bounce = if clears {
             way.bounce + confirm - 1 + way.after
         } else if disturbed {
-            way.bounce + way.after * (1 + (confirm - 1 - way.calm) / way.quiet)
+            way.bounce + way.after * (1 + quotient(confirm - 1 - way.calm, way.quiet))
         } else {
             way.bounce
         };
         let first = if way.calm > way.quiet { way.calm } else { way.quiet };
         let from_straddle = if way.after > 0 && confirm > first {
-            straddle + way.after * (1 + (confirm - 1 - first) / way.quiet)
+            straddle + way.after * (1 + quotient(confirm - 1 - first, way.quiet))
         } else {
             straddle
         };
@@ -161,7 +161,7 @@ impl UpDown {
         let full = self.full_scale as u64;
         let toward = self.step.at(change) as u64;
         let back = self.step.at(change.to().opposite().reached_by()) as u64;
-        let climb = full.div_ceil(toward);
+        let climb = rounded_up(full, toward);
         if way.before > 0 && (way.before * toward >= full || way.quiet * back < way.before * toward) {
             return Err(Verdict::Fails(Clause::FalseEdge));
         }
@@ -186,7 +186,7 @@ impl UpDown {
         let from_bounce = if disturbed {
             let reached = (climb - 1) * toward;
             let left = reached.saturating_sub(lost);
-            way.bounce + climb - 1 + way.after + (full - left).div_ceil(toward)
+            way.bounce + climb - 1 + way.after + rounded_up(full - left, toward)
         } else {
             way.bounce + climb
         };
@@ -199,7 +199,7 @@ impl UpDown {
         let melts = if way.after == 0 {
             climb
         } else {
-            (full.div_ceil(way.quiet * toward - lost) + 1) * (way.quiet + way.after)
+            (rounded_up(full, way.quiet * toward - lost) + 1) * (way.quiet + way.after)
         };
         let cleared = way.bounce + way.after + melts;
         if way.dwell < worst || way.dwell < cleared || worst > u32::MAX as u64 {
@@ -212,7 +212,7 @@ impl UpDown {
     /// the way back.
     const fn can_fall_back(&self, way: &Way, toward: u64, back: u64) -> bool {
         let full = self.full_scale as u64;
-        let climb = full.div_ceil(toward);
+        let climb = rounded_up(full, toward);
         let unaided = way.bounce.saturating_sub(climb) * back;
         if unaided >= full || with_disturbance(unaided, way.calm * toward, way.after * back) >= full {
             return true;
@@ -222,7 +222,7 @@ impl UpDown {
         let mut ahead = 0;
         while ahead * back <= way.before * toward {
             let start = way.before * toward - ahead * back;
-            let rest = way.bounce.saturating_sub((full - start).div_ceil(toward)) * back;
+            let rest = way.bounce.saturating_sub(rounded_up(full - start, toward)) * back;
             let wait = way.quiet.saturating_sub(ahead + way.bounce);
             let wait = if wait > way.calm { wait } else { way.calm };
             if rest >= full || with_disturbance(rest, wait * toward, way.after * back) >= full {
@@ -237,4 +237,21 @@ impl UpDown {
 /// A count that melts and is then added to; a count that has melted away entirely adds nothing.
 const fn with_disturbance(count: u64, melts: u64, adds: u64) -> u64 {
     count.saturating_sub(melts) + adds
+}
+
+// No divisor is ever 0: quiet, steps and what is left of a stretch of quiet were looked at before. The compiler does
+// not see that everywhere; asking it this way links no panic, in firmware that judges an envelope at run time.
+
+const fn quotient(a: u64, b: u64) -> u64 {
+    match a.checked_div(b) {
+        Some(quotient) => quotient,
+        None => u64::MAX,
+    }
+}
+
+const fn rounded_up(a: u64, b: u64) -> u64 {
+    match a.checked_rem(b) {
+        Some(0) | None => quotient(a, b),
+        Some(_) => quotient(a, b) + 1,
+    }
 }

@@ -4,16 +4,36 @@ use core::fmt::Debug;
 use core::hash::Hash;
 
 mod sealed {
-    pub trait Sealed {}
-    impl Sealed for u8 {}
-    impl Sealed for u16 {}
+    use core::fmt::Debug;
+    use core::hash::Hash;
+
+    /// What a width has for the laws only.
+    pub trait Sealed: Sized {
+        /// Twice as wide: holds any sum of two counts, and a bit beside it.
+        type Packed: Copy + Eq + Hash + Debug + Send + Sync + 'static;
+
+        /// No bit set.
+        const BLANK: Self::Packed;
+        /// Only the lowest bit set.
+        const LOWEST: Self::Packed;
+
+        /// The same number.
+        fn widened(self) -> u32;
+        /// The low bits of `word`.
+        fn narrowed(word: u32) -> Self;
+        /// The low bits of `word`.
+        fn pack(word: u32) -> Self::Packed;
+        /// The same word.
+        fn unpack(packed: Self::Packed) -> u32;
+    }
 }
+pub(crate) use sealed::Sealed;
 
 /// An unsigned integer that laws count ticks in: `u8` or `u16`.
 ///
 /// A count never wraps: every operation stops at [`ZERO`](Self::ZERO) or [`MAX`](Self::MAX). The trait is sealed,
 /// because the constructors, being `const fn`, exist once for each width.
-pub trait Count: sealed::Sealed + Copy + Ord + Hash + Debug + Default + Send + Sync + 'static {
+pub trait Count: Sealed + Copy + Ord + Hash + Debug + Default + Send + Sync + 'static {
     /// No ticks.
     const ZERO: Self;
     /// One tick.
@@ -31,7 +51,36 @@ pub trait Count: sealed::Sealed + Copy + Ord + Hash + Debug + Default + Send + S
 }
 
 macro_rules! count {
-    ($($width:ty),*) => {$(
+    ($($width:ty => $packed:ty),*) => {$(
+        impl Sealed for $width {
+            type Packed = $packed;
+
+            const BLANK: $packed = 0;
+            const LOWEST: $packed = 1;
+
+            #[inline]
+            fn widened(self) -> u32 {
+                self.into()
+            }
+
+            #[inline]
+            fn narrowed(word: u32) -> Self {
+                // Cut off on purpose, as the trait says.
+                word as Self
+            }
+
+            #[inline]
+            fn pack(word: u32) -> $packed {
+                // Cut off on purpose, as the trait says.
+                word as $packed
+            }
+
+            #[inline]
+            fn unpack(packed: $packed) -> u32 {
+                packed.into()
+            }
+        }
+
         impl Count for $width {
             const ZERO: Self = 0;
             const ONE: Self = 1;
@@ -50,7 +99,7 @@ macro_rules! count {
     )*};
 }
 
-count!(u8, u16);
+count!(u8 => u16, u16 => u32);
 
 #[cfg(test)]
 mod tests {

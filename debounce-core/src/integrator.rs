@@ -1,5 +1,7 @@
 //! Saturating up/down counter with both ends as thresholds: [`Integrator`].
 
+use core::fmt;
+
 use crate::closed_form::UpDown;
 use crate::count::Count;
 use crate::envelope::{Envelope, PerChange, Verdict};
@@ -53,14 +55,13 @@ pub struct Integrator<C = u8> {
     down: C,
 }
 
-/// What an [`Integrator`] remembers.
-// Held as the distance from the end that belongs to the output: a settled contact is then the same 0 at both
-// ends, and one comparison serves both thresholds.
-#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
-#[cfg_attr(feature = "defmt", derive(defmt::Format))]
-pub struct IntegratorState<C = u8> {
-    away: C,
-    output: Position,
+/// What an [`Integrator`] remembers: its output, and how far the count is from the end that belongs to it.
+// Held as a distance, a settled contact is the same 0 at both ends, and one comparison serves both thresholds. The
+// distance stands in one word with the output below it: a settled state then *is* the sample that leaves it so, which
+// takes one comparison. The word is twice as wide as the count, so that no sum needs to be saturated.
+#[derive(Clone, Copy, PartialEq, Eq, Hash)]
+pub struct IntegratorState<C: Count = u8> {
+    word: C::Packed,
 }
 
 const _: () = assert!(size_of::<IntegratorState<u8>>() == 2);
@@ -71,13 +72,35 @@ impl<C: Count> IntegratorState<C> {
     #[must_use]
     #[inline]
     pub const fn at_rest(position: Position) -> Self {
-        Self { away: C::ZERO, output: position }
+        match position {
+            Position::Open => Self { word: C::BLANK },
+            Position::Closed => Self { word: C::LOWEST },
+        }
     }
 
     /// How far the count is from the end at which the present output rests.
     #[must_use]
-    pub const fn away(&self) -> C {
-        self.away
+    pub fn away(&self) -> C {
+        C::narrowed(C::unpack(self.word) >> 1)
+    }
+
+    #[inline]
+    fn output(self) -> Position {
+        Position::closed_if(C::unpack(self.word) & 1 == 1)
+    }
+}
+
+impl<C: Count> fmt::Debug for IntegratorState<C> {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let (away, output) = (self.away(), self.output());
+        f.debug_struct("IntegratorState").field("away", &away).field("output", &output).finish()
+    }
+}
+
+#[cfg(feature = "defmt")]
+impl<C: Count + defmt::Format> defmt::Format for IntegratorState<C> {
+    fn format(&self, f: defmt::Formatter<'_>) {
+        defmt::write!(f, "IntegratorState {{ away: {}, output: {} }}", self.away(), self.output());
     }
 }
 
@@ -189,16 +212,21 @@ impl<C: Count> Machine for Integrator<C> {
 
     #[inline]
     fn step(&self, state: &mut Self::State, sample: Position) -> Option<Change> {
-        if sample == state.output {
-            if state.away != C::ZERO {
-                state.away = state.away.minus(self.step_of(sample));
-            }
+        let word = C::unpack(state.word);
+        let rest = u32::from(sample.is_closed());
+        if word == rest {
             return None;
         }
-        // A sum that saturates is at full scale too.
-        let away = state.away.plus(self.step_of(sample));
-        if away < self.full_scale {
-            state.away = away;
+        let step = 2 * self.step_of(sample).widened();
+        if (word ^ rest) & 1 == 0 {
+            // The bit below stays, and a difference below 0 is the rest.
+            state.word = C::pack(if word < step { rest } else { word - step });
+            return None;
+        }
+        // Wraps for no state that a count leads to.
+        let word = word.wrapping_add(step);
+        if word >> 1 < self.full_scale.widened() {
+            state.word = C::pack(word);
             return None;
         }
         *state = self.rest(sample);
@@ -214,7 +242,7 @@ impl<C: Count> Law for Integrator<C> {
 
     #[inline]
     fn output(&self, state: &Self::State) -> Position {
-        state.output
+        state.output()
     }
 }
 
@@ -313,14 +341,15 @@ mod tests {
     #[test]
     fn integrator_any_state_whatever_finds_the_line_again() {
         let law = Integrator::<u8>::with_steps(9, 2, 3);
-        for away in 0..=u8::MAX {
-            for output in Position::BOTH {
-                for line in Position::BOTH {
-                    let mut state = super::IntegratorState { away, output };
-                    for _ in 0..=u8::MAX {
-                        let _ = law.step(&mut state, line);
-                    }
-                    assert_eq!(state, super::IntegratorState::at_rest(line));
+        for word in 0..=u16::MAX {
+            for line in Position::BOTH {
+                let mut state = super::IntegratorState { word };
+                // The farthest word comes down by 2 or by 3 a tick.
+                let mut ticks = 0;
+                while state != super::IntegratorState::at_rest(line) {
+                    let _ = law.step(&mut state, line);
+                    ticks += 1;
+                    assert!(ticks <= u32::from(word) / 4 + 6, "{word:#06x} {line:?}");
                 }
             }
         }

@@ -76,6 +76,7 @@
 //! # Caution
 //! Debouncing makes no input safe. Where a contact guards people or property (interlocks, limit switches of powered
 //! machines, emergency stops, doors), use parts certified for it, assessed by qualified people under the local code.
+#![doc = include_str!("../COST.md")]
 #![no_std]
 #![forbid(unsafe_code)]
 

@@ -128,9 +128,9 @@ impl Machine for ShiftRegister {
             state.contrary = 0;
             return None;
         }
-        let contrary = state.contrary.saturating_add(1);
-        if contrary < self.window {
-            state.contrary = contrary;
+        // The window is 1 or more, and a count below it has room for one more.
+        if state.contrary < self.window.wrapping_sub(1) {
+            state.contrary = state.contrary.wrapping_add(1);
             return None;
         }
         *state = self.rest(sample);

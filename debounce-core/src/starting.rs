@@ -254,7 +254,7 @@ mod tests {
 
     #[test]
     fn starting_state_of_a_packed_law_is_small() {
-        assert!(size_of::<StartingState<<Integrator as Machine>::State>>() <= 5);
+        assert!(size_of::<StartingState<<Integrator as Machine>::State>>() <= 6);
         assert!(size_of::<StartingState<<StateMachine as Machine>::State>>() <= 7);
     }
 }

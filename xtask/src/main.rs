@@ -41,16 +41,21 @@ fn plan(words: &[String]) -> Result<Vec<&'static Check>, String> {
         match word.as_str() {
             "help" | "--help" | "-h" => return Ok(Vec::new()),
             "verify" => plan.extend(checks::ALL),
-            name => match checks::ALL.iter().find(|check| check.name == name) {
+            name => match named().find(|check| check.name == name) {
                 Some(check) => plan.push(check),
                 None => {
-                    let names: Vec<&str> = checks::ALL.iter().map(|check| check.name).collect();
+                    let names: Vec<&str> = named().map(|check| check.name).collect();
                     return Err(format!("\"{name}\" is not a chore; use verify, {}", names.join(", ")));
                 }
             },
         }
     }
     Ok(plan)
+}
+
+/// Everything that has a name of its own.
+fn named() -> impl Iterator<Item = &'static Check> {
+    checks::ALL.iter().chain(checks::CHORES)
 }
 
 /// Runs every check of the plan, whatever the ones before it found, and then reports; true when all passed.
@@ -78,7 +83,7 @@ fn run(plan: &[&'static Check]) -> io::Result<bool> {
 fn write_help(out: &mut impl Write) -> io::Result<()> {
     writeln!(out, "usage: cargo xtask <chore>...\n")?;
     writeln!(out, "  {:<16} every check below, in this order", "verify")?;
-    for check in checks::ALL {
+    for check in named() {
         writeln!(out, "  {:<16} {}", check.name, check.about)?;
     }
     Ok(())

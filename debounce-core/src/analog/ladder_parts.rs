@@ -113,6 +113,15 @@ pub struct Chord {
 
 const MILLION: u128 = 1_000_000;
 
+// The resistors and the tolerance were looked at, and no divisor is ever 0. The compiler does not see that; asking it
+// this way links no panic, in firmware that works its windows out at run time.
+const fn rounded_down(a: u128, b: u128) -> u128 {
+    match a.checked_div(b) {
+        Some(quotient) => quotient,
+        None => u128::MAX,
+    }
+}
+
 impl<const N: usize> LadderParts<N> {
     /// The window of one key, from the nominal ohms to ground.
     const fn window(&self, ohms: u32) -> Window {
@@ -120,8 +129,9 @@ impl<const N: usize> LadderParts<N> {
         let (less, more) = (MILLION - self.tolerance_ppm as u128, MILLION + self.tolerance_ppm as u128);
         let (key, pull) = (ohms as u128, self.pull_up_ohms as u128);
         // The least count has a small key resistor below a large pull-up, rounded down; the greatest the reverse.
-        let least = scale * key * less / (key * less + pull * more);
-        let greatest = (scale * key * more).div_ceil(key * more + pull * less);
+        let least = rounded_down(scale * key * less, key * less + pull * more);
+        let most = key * more + pull * less;
+        let greatest = rounded_down(scale * key * more + (most - 1), most);
         let slack = self.slack_counts as u128;
         Window {
             least: least.saturating_sub(slack) as u16,

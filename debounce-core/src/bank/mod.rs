@@ -62,7 +62,7 @@ impl<W: Word> Changes<W> {
 /// ```text
 /// d  = sample ^ output            lanes that disagree
 /// a' = d & !b,   b' = d & a       00 10 11 01 00 while d, else 00
-/// t  = (d ^ a') & !a              the carry: 01 and still contrary; d is in it already
+/// t  = (d ^ b') & b              the carry: 01 and still contrary; d is in it already
 /// ```
 ///
 /// and every further plane ripples: `c' = (c ^ t) & d`, `t' = t & c`. The last carry is the change of the output.
@@ -86,14 +86,7 @@ impl<W: Word> Changes<W> {
 ///
 /// # State
 /// `K + 1` words, so `K + 1` bits an input, all planes zero at rest; checked by `const` assertions below the type.
-/// Instructions of a tick of 32 inputs, inlined, load and store of the state included, whatever the polarity
-/// (rustc 1.95, `opt-level = 3`, counted in the assembly):
-///
-/// | `K` | thumbv7m | thumbv6m |
-/// |-----|----------|----------|
-/// | 2   | 9        | 14       |
-/// | 3   | 12       | 20       |
-///
+/// The instructions of a tick of 32 inputs stand in the [table of costs](crate#cost), whatever the polarity.
 /// `make` and `break_` of a tick are one more each, and only where the program looks at them.
 ///
 /// # Panics
@@ -194,10 +187,12 @@ impl<W: Word, const K: usize> Machine for Bank<W, K> {
         let (mut carry, further) = match state.planes.as_mut_slice() {
             [a, b, further @ ..] => {
                 let (low, high) = (*a, *b);
+                let next = contrary & low;
                 *a = contrary & !high;
-                *b = contrary & low;
-                // Where the two low planes stood at 01 and the sample is contrary once more.
-                ((contrary ^ *a) & !low, further)
+                *b = next;
+                // Where the two low planes stood at 01 and the sample is contrary once more. From the new plane and
+                // not from the old one, which two-operand machines would have to copy first.
+                ((contrary ^ next) & high, further)
             }
             single => (contrary, single),
         };

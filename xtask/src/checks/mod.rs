@@ -3,6 +3,7 @@
 mod docs;
 mod documents;
 mod features;
+mod firmware;
 mod format;
 mod host;
 mod lints;
@@ -36,4 +37,16 @@ pub(crate) const ALL: &[Check] = &[
         run: features::run,
     },
     Check { name: "check-targets", about: "debounce-core builds for bare metal", run: targets::run },
+    Check {
+        name: "check-firmware",
+        about: "the firmware runs as the host says, at the cost stated, without a panic",
+        run: firmware::run,
+    },
 ];
+
+/// What is no check, and so not part of `verify`.
+pub(crate) const CHORES: &[Check] = &[Check {
+    name: "update-costs",
+    about: "measures the cost of a tick and writes the table anew",
+    run: firmware::update,
+}];

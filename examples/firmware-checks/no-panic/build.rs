@@ -1,0 +1,5 @@
+//! Links the images by the rig's script.
+
+fn main() {
+    println!("cargo:rustc-link-arg-bins=-Timage.x");
+}

@@ -1,0 +1,5 @@
+//! What the target must print, from this machine.
+
+fn main() {
+    replay::all(&mut |line| println!("{line}"));
+}
