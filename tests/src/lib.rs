@@ -2,3 +2,8 @@
 
 pub mod predicate;
 pub mod toggle;
+
+/// The examples of the README, compiled and run.
+#[cfg(doctest)]
+#[doc = include_str!("../../README.md")]
+pub struct Readme;
