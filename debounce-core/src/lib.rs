@@ -68,10 +68,12 @@
 //! # Features
 //! None is on by default; with none of them the crate has no dependencies.
 //!
-//! | feature        | adds                                             |
-//! |----------------|--------------------------------------------------|
-//! | `defmt`        | `defmt::Format` for the public types             |
-//! | `embedded-hal` | `DebouncedPin`, a debounced `InputPin` of embedded-hal 1.0 |
+//! | feature              | adds                                                               |
+//! |----------------------|--------------------------------------------------------------------|
+//! | `defmt`              | `defmt::Format` for the public types                               |
+//! | `embedded-hal`       | `DebouncedPin`, `DebouncedPins`, `PinRow`: `InputPin` of embedded-hal 1.0 |
+//! | `embedded-hal-async` | `DebouncedPin::next_report`, which sleeps until the line moves     |
+//! | `mailbox`            | `Mailbox`, from interrupt to main loop                             |
 //!
 //! # Caution
 //! Debouncing makes no input safe. Where a contact guards people or property (interlocks, limit switches of powered
@@ -111,5 +113,7 @@ pub use starting::{Started, Starting, StartingState};
 pub use state_machine::{Phase, StateMachine, StateMachineParameters, StateMachineState};
 pub use time::{Period, TickClock};
 #[cfg(feature = "embedded-hal")]
-pub use wiring::DebouncedPin;
-pub use wiring::Polarity;
+pub use wiring::{DebouncedPin, DebouncedPins, PinRow};
+pub use wiring::{DebouncedPort, Level, Polarity, PortReader, Settling};
+#[cfg(feature = "mailbox")]
+pub use wiring::{Delivery, Mailbox};
