@@ -71,7 +71,7 @@
 //! | feature              | adds                                                               |
 //! |----------------------|--------------------------------------------------------------------|
 //! | `defmt`              | `defmt::Format` for the public types                               |
-//! | `embedded-hal`       | `DebouncedPin`, `DebouncedPins`, `PinRow`: `InputPin` of embedded-hal 1.0 |
+//! | `embedded-hal`       | `DebouncedPin`, `DebouncedPins`, `PinPort`, `MatrixPins`: `InputPin` of embedded-hal 1.0 |
 //! | `embedded-hal-async` | `DebouncedPin::next_report`, which sleeps until the line moves     |
 //! | `mailbox`            | `Mailbox`, from interrupt to main loop                             |
 //!
@@ -81,6 +81,9 @@
 #![no_std]
 #![forbid(unsafe_code)]
 
+mod analog;
+mod bank;
+mod changeover;
 mod closed_form;
 mod const_law;
 mod count;
@@ -90,15 +93,26 @@ mod integrator;
 mod law;
 mod machine;
 mod majority_register;
+mod meaning;
 mod running;
 mod shift_register;
 mod starting;
 mod state_machine;
+mod still;
 mod time;
 mod wiring;
 #[cfg(test)]
 mod words;
 
+pub use analog::{
+    AnalogSample, Chord, Hysteresis, HysteresisError, HysteresisState, Ladder, LadderError, LadderParts,
+    LadderReading, Window,
+};
+pub use bank::{
+    Bank, BankState, Changes, EdgeRule, Lane, LanesStarted, PatientBank, PatientState, PortLaw, StartingBank,
+    StartingBankState, Word,
+};
+pub use changeover::{Changeover, ChangeoverFault, ChangeoverReport, ChangeoverState, Throws};
 pub use const_law::{Config, ConstLaw};
 pub use count::Count;
 pub use envelope::{Bounds, Clause, Envelope, Latency, PerChange, PerPosition, Verdict};
@@ -107,13 +121,22 @@ pub use integrator::{Integrator, IntegratorState};
 pub use law::{Law, is_settled};
 pub use machine::{Change, Machine, Position};
 pub use majority_register::{MajorityRegister, MajorityRegisterState, WindowWord};
+pub use meaning::{
+    ContactPair, DetentState, Detents, Gesture, GestureError, GestureEvent, GestureState, GestureTicks,
+    KeyDiodes, Matrix, MatrixReport, MatrixState, PairFault, PairKind, PairPositions, PairReport, PairState,
+    Phases, PulseCounter, PulseEvent, PulseFlaw, PulseLimits, PulseLimitsError, PulseState, PulseTally,
+    Quadrature, QuadratureEvent, QuadratureState, Resolution, RestPhases, Speed, SpeedState, TallyFull, Turn,
+};
+#[cfg(feature = "embedded-hal")]
+pub use meaning::{MatrixPins, ScanError};
 pub use running::Running;
 pub use shift_register::{ShiftRegister, ShiftRegisterState};
 pub use starting::{Started, Starting, StartingState};
 pub use state_machine::{Phase, StateMachine, StateMachineParameters, StateMachineState};
+pub use still::is_still;
 pub use time::{Period, TickClock};
+pub use wiring::{Burst, Bursts, BurstsState, DebouncedPort, Level, Polarity, PortReader, Settling, Wear};
 #[cfg(feature = "embedded-hal")]
-pub use wiring::{DebouncedPin, DebouncedPins, PinRow};
-pub use wiring::{DebouncedPort, Level, Polarity, PortReader, Settling};
+pub use wiring::{DebouncedPin, DebouncedPins, PinPort};
 #[cfg(feature = "mailbox")]
 pub use wiring::{Delivery, Mailbox};
