@@ -135,7 +135,11 @@ pub use starting::{Started, Starting, StartingState};
 pub use state_machine::{Phase, StateMachine, StateMachineParameters, StateMachineState};
 pub use still::is_still;
 pub use time::{Period, TickClock};
-pub use wiring::{Burst, Bursts, BurstsState, DebouncedPort, Level, Polarity, PortReader, Settling, Wear};
+pub use wiring::{
+    Burst, Bursts, BurstsState, DebouncedPort, Heartbeat, Level, Monitor, MonitorState, Outside, Polarity,
+    PortReader, Recorded, RecordedRun, Recorder, RecorderMode, RecorderText, Settling, Tally, TickFault,
+    Wear,
+};
 #[cfg(feature = "embedded-hal")]
 pub use wiring::{DebouncedPin, DebouncedPins, PinPort};
 #[cfg(feature = "mailbox")]
