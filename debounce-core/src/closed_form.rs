@@ -1,4 +1,4 @@
-//! The closed forms behind `verdict`, in one place, each with its proof.
+//! The closed forms behind `verdict`, in one place; each is compared with exploration inside stated sizes.
 
 use crate::envelope::{Bounds, Clause, Envelope, Latency, PerChange, Verdict};
 use crate::machine::Change;

@@ -94,11 +94,13 @@ mod law;
 mod machine;
 mod majority_register;
 mod meaning;
+pub mod proofs;
 mod running;
 mod shift_register;
 mod starting;
 mod state_machine;
 mod still;
+mod table;
 mod time;
 mod wiring;
 #[cfg(test)]
@@ -134,6 +136,7 @@ pub use shift_register::{ShiftRegister, ShiftRegisterState};
 pub use starting::{Started, Starting, StartingState};
 pub use state_machine::{Phase, StateMachine, StateMachineParameters, StateMachineState};
 pub use still::is_still;
+pub use table::{TableLaw, TableLawError, TableState};
 pub use time::{Period, TickClock};
 pub use wiring::{
     Burst, Bursts, BurstsState, DebouncedPort, Heartbeat, Level, Monitor, MonitorState, Outside, Polarity,

@@ -3,7 +3,10 @@
 use std::fmt;
 use std::str::FromStr;
 
-use debounce_core::PerChange;
+use debounce_core::{
+    Envelope, Integrator, MajorityRegister, ParameterError, PerChange, ShiftRegister, StateMachine,
+    StateMachineParameters, Verdict,
+};
 
 use crate::nearest::nearest;
 
@@ -63,6 +66,29 @@ impl LawParameters {
             Self::MajorityRegister { .. } => NAMES[2],
             Self::StateMachine { .. } => NAMES[3],
         }
+    }
+}
+
+impl LawParameters {
+    /// What the closed form of the law says about `envelope`.
+    ///
+    /// # Errors
+    /// When the law refuses the parameters.
+    pub fn verdict(&self, envelope: &Envelope) -> Result<Verdict, ParameterError> {
+        // The widest counts hold every parameter, and the width does not matter to the answer.
+        Ok(match *self {
+            Self::Integrator { full_scale, up, down } => {
+                Integrator::<u16>::try_with_steps(full_scale, up, down)?.verdict(envelope)
+            }
+            Self::ShiftRegister { window } => ShiftRegister::try_new(window)?.verdict(envelope),
+            Self::MajorityRegister { majority, window } => {
+                MajorityRegister::<u32>::try_new(majority, window)?.verdict(envelope)
+            }
+            Self::StateMachine { confirm, patience, lockout } => {
+                StateMachine::<u16>::try_new(StateMachineParameters { confirm, patience, lockout })?
+                    .verdict(envelope)
+            }
+        })
     }
 }
 
@@ -238,6 +264,17 @@ mod tests {
             "state-machine lockout=4/0 confirm=3 patience=2/1",
             "state-machine confirm=3 patience=2/1 lockout=4/0",
         );
+    }
+
+    #[test]
+    fn law_text_verdict_is_that_of_the_law() {
+        let envelope = Envelope::clean(20, 20).bounce(3, 3);
+        let verdict = |text: &str| text.parse::<LawParameters>().expect(text).verdict(&envelope);
+        assert_eq!(verdict("shift-register 4"), Ok(ShiftRegister::new(4).verdict(&envelope)));
+        assert_eq!(verdict("integrator 4"), Ok(Integrator::<u8>::new(4).verdict(&envelope)));
+        assert!(matches!(verdict("state-machine confirm=1 lockout=2"), Ok(Verdict::Holds(_))));
+        assert!(verdict("majority-register 3 of 8").is_err());
+        assert!(verdict("integrator 0").is_err());
     }
 
     #[test]

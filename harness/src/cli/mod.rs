@@ -9,12 +9,17 @@ mod emit;
 mod envelope_text;
 mod failure;
 mod files;
+mod input;
+mod lines;
+mod preference;
 mod prove;
+mod recorded;
 mod recordings;
 mod replay;
 mod run;
 mod session;
 mod study;
+mod study_answer;
 
 #[cfg(test)]
 mod tests;
@@ -25,7 +30,8 @@ pub use emit::EmitArguments;
 pub use envelope_text::{EnvelopeText, EnvelopeTextError};
 pub use failure::{Failure, Outcome};
 pub use files::{OutputFolder, StagedFiles};
-pub use prove::ProveArguments;
+pub use preference::{Merit, PreferenceOption};
+pub use prove::{OutputOf, Promise, ProveArguments};
 pub use recordings::RequirementInput;
 pub use replay::ReplayArguments;
 pub use run::run;

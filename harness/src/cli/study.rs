@@ -4,7 +4,15 @@ use std::path::PathBuf;
 
 use clap::Args;
 
+use super::input::Input;
+use super::preference::PreferenceOption;
 use super::recordings::RequirementInput;
+use super::study_answer::StudyAnswer;
+use super::{Answer, Failure, OutputFolder, Session};
+use crate::emit::{module_name, rust_module};
+use crate::problem::Problem;
+use crate::report::json;
+use crate::study::{Study, StudyError};
 
 /// From recordings and a requirement to a proven, compilable configuration.
 #[derive(Args, Clone, PartialEq, Debug, Default)]
@@ -19,6 +27,9 @@ pub struct StudyArguments {
     /// Recordings and requirement.
     #[command(flatten)]
     pub input: RequirementInput,
+    /// What counts most.
+    #[command(flatten)]
+    pub preference: PreferenceOption,
     /// Folder for the results; made if it is not there
     #[arg(long, short, value_name = "FOLDER")]
     pub output: Option<PathBuf>,
@@ -34,4 +45,47 @@ Examples:
     harness study gate.vcd --channel top.gate --latency \"20 ms\"
   Everything from a requirement file, results into a folder:
     harness study --requirement contact.toml --output results";
+}
+
+impl StudyArguments {
+    /// Runs the command.
+    pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
+        let input = Input::or_demo(&self.input, session)?;
+        // A folder that cannot be written must not cost a long wait first.
+        let folder = self.output.as_ref().map(OutputFolder::prepare).transpose()?;
+        let ticks = input.requirement.clock.ticks.as_ref().map_or(0, |ticks| ticks.value.periods().len());
+        let bar = session.progress("judging candidates", ticks as u64);
+        let study = Study::of(input.observed, &input.requirement, self.preference.into(), |_| bar.inc(1))
+            .map_err(failure)?;
+        bar.finish_and_clear();
+        let written = match folder {
+            Some(folder) => write(&study, folder)?,
+            None => Vec::new(),
+        };
+        Ok(Box::new(StudyAnswer { study, demo: input.demo, written }))
+    }
+}
+
+pub(super) fn failure(error: StudyError) -> Failure {
+    match error {
+        StudyError::Requirement(problems) => problems.into(),
+        other => Problem::new(other.to_string()).into(),
+    }
+}
+
+/// The results as JSON, and the module where something holds.
+fn write(study: &Study, folder: OutputFolder) -> Result<Vec<PathBuf>, Failure> {
+    let mut files = folder.stage();
+    files.add("study.json", |out| {
+        serde_json::to_writer_pretty(&mut *out, &json::study(study))?;
+        out.write_all(b"\n")
+    })?;
+    if let Some(configuration) = study.configuration().filter(|_| study.holds()) {
+        let module = rust_module(&configuration).map_err(|error| {
+            Problem::new(format!("the recommended configuration does not keep the requirement: {error}"))
+        })?;
+        let name = format!("{}.rs", module_name(&configuration.name));
+        files.add(&name, |out| out.write_all(module.as_bytes()))?;
+    }
+    Ok(files.commit()?)
 }

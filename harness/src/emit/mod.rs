@@ -1,13 +1,15 @@
 //! A chosen configuration as code for the firmware.
 
 mod identifier;
+mod law_code;
 mod layout;
 mod rust;
+pub mod table;
 
 #[cfg(test)]
 mod tests;
 
-use debounce_core::{Bounds, Change, Envelope, Position, TickClock};
+use debounce_core::{Bounds, Change, Envelope, ParameterError, Position, TickClock, Verdict};
 
 use crate::law_text::LawParameters;
 use crate::quantity::{TickPeriod, Time};
@@ -68,6 +70,20 @@ pub enum NotHeld {
         samples: u32,
         /// The samples in the envelope.
         proved: u32,
+    },
+    /// The law refuses its parameters.
+    #[error("{law}: {error}")]
+    Refused {
+        /// The law.
+        law: LawParameters,
+        /// Why.
+        error: ParameterError,
+    },
+    /// The closed form does not answer with these bounds, or refutes bounds that were explored.
+    #[error("the closed form of {law} does not say what was proved")]
+    Disputed {
+        /// The law.
+        law: LawParameters,
     },
     /// The proved latency is longer than the required one.
     #[error(
@@ -151,6 +167,12 @@ impl Configuration {
                 return Err(NotHeld::TooLate { edge, samples, delay, required });
             }
         }
-        Ok(())
+        let law = self.law;
+        let verdict = law.verdict(envelope).map_err(|error| NotHeld::Refused { law, error })?;
+        match (self.proof, verdict) {
+            (_, Verdict::Holds(bounds)) if bounds == self.bounds => Ok(()),
+            (Proof::Explored { .. }, Verdict::Unknown) => Ok(()),
+            _ => Err(NotHeld::Disputed { law }),
+        }
     }
 }

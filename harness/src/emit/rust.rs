@@ -4,9 +4,9 @@ use std::fmt::Write;
 
 use debounce_core::{Bounds, Latency};
 
+use super::law_code::{LawCode, constant, law_code};
 use super::layout::{assertion, chain, comment, grouped, literal, paragraph};
 use super::{Configuration, NotHeld, Proof, module_name, type_name};
-use crate::law_text::LawParameters;
 use crate::quantity::{Rounding, TickPeriod, Time};
 
 /// The Rust module of a configuration: constants, a ready-made type, and assertions that stop the build when the
@@ -19,8 +19,13 @@ use crate::quantity::{Rounding, TickPeriod, Time};
 /// When the configuration does not hold; nothing is written then.
 pub fn rust_module(configuration: &Configuration) -> Result<String, NotHeld> {
     configuration.check()?;
-    let law = law(&configuration.law);
-    Ok([
+    Ok(module_text(configuration))
+}
+
+/// The text, whether the configuration holds or not.
+pub(super) fn module_text(configuration: &Configuration) -> String {
+    let law = law_code(&configuration.law);
+    [
         header(configuration),
         imports(configuration, &law),
         clock(configuration),
@@ -30,111 +35,7 @@ pub fn rust_module(configuration: &Configuration) -> Result<String, NotHeld> {
         types(configuration, &law),
         checks(configuration, &law),
     ]
-    .join("\n"))
-}
-
-/// A law as it is written in Rust.
-struct LawCode {
-    /// What has to be imported for it.
-    imports: &'static [&'static str],
-    /// `StateMachine<u8>`.
-    type_: String,
-    /// Documented constants that hold the parameters.
-    parameters: String,
-    /// The expression that makes the law of them.
-    new: String,
-    /// Conditions that hold for these parameters and no others.
-    pins: Vec<String>,
-}
-
-/// The narrowest count that holds every one of the values.
-fn width(values: &[u16]) -> &'static str {
-    if values.iter().all(|&value| value <= u16::from(u8::MAX)) { "u8" } else { "u16" }
-}
-
-fn constant(doc: &str, name: &str, type_: &str, value: u64) -> String {
-    format!("/// {doc}\npub const {name}: {type_} = {};\n", grouped(value))
-}
-
-fn law(law: &LawParameters) -> LawCode {
-    let pin = |what: &str, value: u64| format!("{what} == {}", grouped(value));
-    match *law {
-        LawParameters::Integrator { full_scale, up, down } => {
-            let width = width(&[full_scale, up, down]);
-            LawCode {
-                imports: &["Integrator"],
-                type_: format!("Integrator<{width}>"),
-                parameters: [
-                    constant(
-                        "Upper end of the count; the lower end is 0.",
-                        "FULL_SCALE",
-                        width,
-                        full_scale.into(),
-                    ),
-                    constant("Counted up for a closed sample.", "UP", width, up.into()),
-                    constant("Counted down for an open sample.", "DOWN", width, down.into()),
-                ]
-                .join("\n"),
-                new: format!("Integrator::<{width}>::with_steps(FULL_SCALE, UP, DOWN)"),
-                pins: vec![
-                    pin("LAW.full_scale()", full_scale.into()),
-                    pin("LAW.up()", up.into()),
-                    pin("LAW.down()", down.into()),
-                ],
-            }
-        }
-        LawParameters::ShiftRegister { window } => LawCode {
-            imports: &["ShiftRegister"],
-            type_: "ShiftRegister".to_owned(),
-            parameters: constant("Samples that must all be alike.", "WINDOW", "u8", window.into()),
-            new: "ShiftRegister::new(WINDOW)".to_owned(),
-            pins: vec![pin("LAW.window()", window.into())],
-        },
-        LawParameters::MajorityRegister { majority, window } => {
-            let word = match window {
-                0..=8 => "u8",
-                9..=16 => "u16",
-                _ => "u32",
-            };
-            LawCode {
-                imports: &["MajorityRegister"],
-                type_: format!("MajorityRegister<{word}>"),
-                parameters: [
-                    constant("So many of the last samples must be alike.", "MAJORITY", "u8", majority.into()),
-                    constant("So many of the last samples are looked at.", "WINDOW", "u8", window.into()),
-                ]
-                .join("\n"),
-                new: format!("MajorityRegister::<{word}>::new(MAJORITY, WINDOW)"),
-                pins: vec![pin("LAW.majority()", majority.into()), pin("LAW.window()", window.into())],
-            }
-        }
-        LawParameters::StateMachine { confirm, patience, lockout } => {
-            let all = [confirm, patience, lockout].map(|pair| [pair.make, pair.break_]).concat();
-            let width = width(&all);
-            let two =
-                |make: u16, break_: u16| format!("({}, {})", grouped(make.into()), grouped(break_.into()));
-            let parameters = chain(
-                &format!("pub const PARAMETERS: StateMachineParameters<{width}>"),
-                &format!("StateMachineParameters::confirm{}", two(confirm.make, confirm.break_)),
-                &[
-                    format!(".patience{}", two(patience.make, patience.break_)),
-                    format!(".lockout{}", two(lockout.make, lockout.break_)),
-                ],
-            );
-            let names = ["confirm", "patience", "lockout"];
-            let pins = names.iter().zip([confirm, patience, lockout]).flat_map(|(name, pair)| {
-                [("make", pair.make), ("break_", pair.break_)]
-                    .map(|(edge, value)| pin(&format!("LAW.parameters().{name}.{edge}"), value.into()))
-            });
-            LawCode {
-                imports: &["StateMachine", "StateMachineParameters"],
-                type_: format!("StateMachine<{width}>"),
-                parameters: format!("/// In ticks, each for a make and for a break.\n{parameters}"),
-                new: format!("StateMachine::<{width}>::new(PARAMETERS)"),
-                pins: pins.collect(),
-            }
-        }
-    }
+    .join("\n")
 }
 
 /// The documentation of the module.
@@ -403,8 +304,12 @@ fn checks(configuration: &Configuration, law: &LawCode) -> String {
         Proof::Explored { .. } => {
             let mut pins = law.pins.clone();
             pins.extend(envelope_pins(configuration));
-            checks
-                .push(assertion(&pins, "LAW or ENVELOPE is not what was proved by exploring; prove it anew"));
+            let bounds = configuration.bounds.latency;
+            for (edge, latency) in [("make", bounds.make), ("break_", bounds.break_)] {
+                pins.push(format!("BOUNDS.latency.{edge}.worst == {}", grouped(latency.worst.into())));
+            }
+            let message = "LAW, ENVELOPE or BOUNDS is not what was proved by exploring; prove it anew";
+            checks.push(assertion(&pins, message));
         }
     }
     checks.push(assertion(&late, LATE));

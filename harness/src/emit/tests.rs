@@ -4,6 +4,7 @@ use std::process::Command;
 
 use debounce_core::{Bounds, Latency, PerChange};
 
+use super::rust::module_text;
 use super::*;
 use crate::problem::SourceText;
 use crate::requirement::{Measured, parse};
@@ -34,7 +35,9 @@ fn configuration(requirement: &str, law: &str, worst: u32, proof: Proof) -> Conf
     let resolved = requirement.resolve(&Measured::default()).unwrap_or_else(|error| panic!("{error}"));
     let latency = Latency { best: 3, worst };
     let bounds = Bounds { latency: PerChange { make: latency, break_: latency } };
-    Configuration::new(&resolved, resolved.ticks.value[0], law.parse().unwrap(), bounds, proof)
+    let tick = resolved.ticks.value[0];
+    let envelope = resolved.physical().in_ticks(&resolved.clock(tick)).expect("quiet is seen");
+    Configuration::new(&resolved, tick, envelope, law.parse().unwrap(), bounds, proof)
         .provenance("harness 0.1.0, contact.toml, gate.vcd (64 operations)")
 }
 
@@ -58,7 +61,7 @@ fn module_of_every_law_is_laid_out_as_rustfmt_would() {
     for law in LAWS {
         for (requirement, worst) in [(SHORT, 12), (WIDE, 600_000_000)] {
             for proof in [Proof::ClosedForm, Proof::Explored { states: 12_345 }] {
-                let text = rust_module(&configuration(requirement, law, worst, proof)).unwrap();
+                let text = module_text(&configuration(requirement, law, worst, proof));
                 rustfmt(&text).unwrap_or_else(|changes| panic!("{law}, {proof:?}:\n{changes}\n{text}"));
                 let long = text.lines().find(|line| line.chars().count() > 100);
                 assert_eq!(long, None, "{law}, {proof:?}");
@@ -71,7 +74,7 @@ fn module_of_every_law_is_laid_out_as_rustfmt_would() {
 
 #[test]
 fn module_by_closed_form_asks_the_compiler() {
-    let text = rust_module(&configuration(SHORT, LAWS[6], 12, Proof::ClosedForm)).unwrap();
+    let text = module_text(&configuration(SHORT, LAWS[6], 12, Proof::ClosedForm));
     for part in [
         "pub struct SluiceGateUpperEnd;",
         "sluice_gate_upper_end::starting()",
@@ -88,7 +91,7 @@ fn module_by_closed_form_asks_the_compiler() {
 
 #[test]
 fn module_by_exploring_pins_and_claims_no_more() {
-    let text = rust_module(&configuration(SHORT, LAWS[6], 12, Proof::Explored { states: 12_345 })).unwrap();
+    let text = module_text(&configuration(SHORT, LAWS[6], 12, Proof::Explored { states: 12_345 }));
     assert!(!text.contains("verdict"), "{text}");
     for part in [
         "exploring all 12345 states",
@@ -103,10 +106,10 @@ fn module_by_exploring_pins_and_claims_no_more() {
 
 #[test]
 fn module_for_a_guarding_contact_carries_the_caution() {
-    let text = rust_module(&configuration(SHORT, LAWS[0], 12, Proof::ClosedForm)).unwrap();
+    let text = module_text(&configuration(SHORT, LAWS[0], 12, Proof::ClosedForm));
     assert!(text.contains("//! # Caution\n//!\n//! Debouncing makes no input safe"), "{text}");
     let control = SHORT.replace("guarding", "control");
-    let text = rust_module(&configuration(&control, LAWS[0], 12, Proof::ClosedForm)).unwrap();
+    let text = module_text(&configuration(&control, LAWS[0], 12, Proof::ClosedForm));
     assert!(!text.contains("Caution"));
 }
 
@@ -118,7 +121,21 @@ fn module_that_does_not_hold_is_refused() {
         error.to_string(),
         "the make latency of up to 30 samples can take 30.6 ms, longer than the required 30 ms"
     );
-    assert!(rust_module(&configuration(SHORT, LAWS[0], 29, Proof::ClosedForm)).is_ok());
+    // The time would do, but these bounds are not those of the law.
+    let error =
+        rust_module(&configuration(SHORT, LAWS[0], 29, Proof::ClosedForm)).expect_err("invented bounds");
+    assert_eq!(error.to_string(), "the closed form of integrator 5 does not say what was proved");
+    let explored = configuration(SHORT, LAWS[3], 29, Proof::Explored { states: 1 });
+    assert_eq!(explored.law.verdict(&explored.envelope), Ok(Verdict::Unknown));
+    assert!(rust_module(&explored).is_ok());
+    assert!(rust_module(&Configuration { proof: Proof::ClosedForm, ..explored.clone() }).is_err());
+    let minority = Configuration { law: "majority-register 3 of 8".parse().unwrap(), ..explored };
+    assert!(
+        rust_module(&minority)
+            .expect_err("no majority")
+            .to_string()
+            .starts_with("majority-register 3 of 8: ")
+    );
     let mut narrow = configuration(SHORT, LAWS[0], 12, Proof::ClosedForm);
     narrow.envelope = narrow.envelope.bounce(narrow.envelope.bounce.make - 1, narrow.envelope.bounce.break_);
     let error = rust_module(&narrow).expect_err("the bounce does not fit");

@@ -1,0 +1,95 @@
+//! Labelled lines of a summary, wrapped to the terminal.
+
+use std::io::{self, Write};
+
+use anstyle::{AnsiColor, Style};
+use unicode_width::UnicodeWidthStr;
+
+/// Columns of the labels.
+const INDENT: usize = 13;
+
+/// Columns where the width of the terminal is not known.
+const COLUMNS: usize = 100;
+
+const TITLE: Style = Style::new().bold().underline();
+const LABEL: Style = Style::new().fg_color(Some(anstyle::Color::Ansi(AnsiColor::Cyan)));
+const STRONG: Style = Style::new().bold();
+
+/// Writes labelled items, their text wrapped beside the labels.
+pub(super) struct Lines<'a> {
+    out: &'a mut dyn Write,
+    columns: usize,
+}
+
+/// A stretch of text that stands out where there is colour; its meaning must not hang on that.
+pub(super) fn strong(text: &str) -> String {
+    // Each word apart, so that a line may break between them.
+    let words: Vec<String> = text.split(' ').map(|word| format!("{STRONG}{word}{STRONG:#}")).collect();
+    words.join(" ")
+}
+
+impl<'a> Lines<'a> {
+    pub(super) fn new(out: &'a mut dyn Write) -> Self {
+        let columns = std::env::var("COLUMNS").ok().and_then(|text| text.parse().ok());
+        Self { out, columns: columns.unwrap_or(COLUMNS).clamp(40, 140) }
+    }
+
+    /// A heading.
+    pub(super) fn title(&mut self, text: &str) -> io::Result<()> {
+        writeln!(self.out, "{TITLE}{text}{TITLE:#}\n")
+    }
+
+    /// A labelled item.
+    pub(super) fn item(&mut self, label: &str, text: &str) -> io::Result<()> {
+        write!(self.out, "{LABEL}{label:<INDENT$}{LABEL:#}")?;
+        self.wrapped(text)
+    }
+
+    /// A further line of the item before.
+    pub(super) fn more(&mut self, text: &str) -> io::Result<()> {
+        write!(self.out, "{:INDENT$}", "")?;
+        self.wrapped(text)
+    }
+
+    /// Anything else, as it is.
+    pub(super) fn plain(&mut self, text: &str) -> io::Result<()> {
+        self.out.write_all(text.as_bytes())
+    }
+
+    fn wrapped(&mut self, text: &str) -> io::Result<()> {
+        let mut column = INDENT;
+        for (index, word) in text.split(' ').enumerate() {
+            let width = shown_width(word);
+            if index > 0 {
+                if column + 1 + width > self.columns {
+                    write!(self.out, "\n{:INDENT$}", "")?;
+                    column = INDENT;
+                } else {
+                    self.out.write_all(b" ")?;
+                    column += 1;
+                }
+            }
+            self.out.write_all(word.as_bytes())?;
+            column += width;
+        }
+        self.out.write_all(b"\n")
+    }
+}
+
+/// The columns a word takes, colour codes left out.
+fn shown_width(word: &str) -> usize {
+    UnicodeWidthStr::width(anstream::adapter::strip_str(word).to_string().as_str())
+}
+
+/// A number with its thousands apart.
+pub(super) fn grouped(number: u64) -> String {
+    let digits = number.to_string();
+    let mut text = String::new();
+    for (index, digit) in digits.chars().enumerate() {
+        if index > 0 && (digits.len() - index).is_multiple_of(3) {
+            text.push(' ');
+        }
+        text.push(digit);
+    }
+    text
+}

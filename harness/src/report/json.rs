@@ -1,0 +1,274 @@
+//! Results as JSON values. Times are in nanoseconds, latencies in samples; the field names say so.
+
+use debounce_core::{Bounds, Change, Envelope, Latency, PerChange, PerPosition, Position};
+use serde_json::{Value, json};
+
+use super::words;
+use crate::characterise::Spread;
+use crate::choose::{Candidate, Evidence, Judgement, Ranking};
+use crate::conformance::Conformance;
+use crate::envelope::PhysicalEnvelope;
+use crate::prove::{Proof, Recovery, Witness};
+use crate::quantity::TickPeriod;
+use crate::requirement::Resolved;
+use crate::study::{Guarantees, Observed, Study};
+
+/// A study.
+#[must_use]
+pub fn study(study: &Study) -> Value {
+    let conforming = study.observed.iter().zip(&study.conformance);
+    json!({
+        "recordings": conforming.map(|(one, conforms)| recording(one, conforms)).collect::<Value>(),
+        "requirement": requirement(&study.resolved),
+        "envelope": physical(&study.physical),
+        "envelope_in_words": words::envelope(&study.physical),
+        "choice": ranking(&study.ranking),
+        "proof": study.guarantees.as_ref().map(guarantees),
+        "caution": study.resolved.caution(),
+    })
+}
+
+/// A recording and whether it lies inside the envelope.
+#[must_use]
+pub fn recording(one: &Observed, conforms: &Conformance) -> Value {
+    let mut value = observed(one);
+    value["conforms"] = json!(conforms.conforms());
+    value["violations"] = conforms
+        .violations
+        .iter()
+        .map(|v| {
+            json!({
+                "clause": v.clause.text(),
+                "at_ns": v.at_ns,
+                "found_ns": v.found_ns,
+                "allowed_ns": v.allowed_ns,
+            })
+        })
+        .collect();
+    value
+}
+
+/// What a recording shows.
+#[must_use]
+pub fn observed(one: &Observed) -> Value {
+    let figures = &one.figures;
+    let change = |which: Change| {
+        let figures = figures.changes.of(which);
+        json!({
+            "count": figures.count,
+            "ambiguous": figures.ambiguous,
+            "bounce_ns": figures.bounce_ns.map(spread),
+            "edges": figures.edges.map(spread),
+            "longest_bounce_in_doubt_ns": figures.longest_bounce_in_doubt_ns,
+        })
+    };
+    let position = |which: Position| {
+        let disturbances = figures.disturbances.of(which);
+        let dwell = figures.dwell.of(which);
+        json!({
+            "disturbances": disturbances.count,
+            "ambiguous": disturbances.ambiguous,
+            "width_ns": disturbances.width_ns.map(spread),
+            "widest_in_doubt_ns": disturbances.widest_in_doubt_ns,
+            "shortest_dwell_ns": dwell.shortest_ns,
+            "shortest_dwell_in_doubt_ns": dwell.shortest_in_doubt_ns,
+        })
+    };
+    json!({
+        "name": one.name,
+        "channel": one.recording.channel,
+        "notes": one.recording.notes.iter().map(ToString::to_string).collect::<Vec<_>>(),
+        "from_ns": one.recording.trace.start_ns(),
+        "until_ns": one.recording.trace.end_ns(),
+        "resolution_ns": figures.resolution_ns,
+        "gap_ns": one.segmentation.gap.ns,
+        "make": change(Change::Make),
+        "break": change(Change::Break),
+        "open": position(Position::Open),
+        "closed": position(Position::Closed),
+        "disturbance_spacing_ns": figures.spacing_ns.map(spread),
+        "quiet_ns": figures.quiet_ns,
+        "calm_ns": figures.calm_ns,
+        "cut_off": figures.fragments,
+    })
+}
+
+fn spread(spread: Spread) -> Value {
+    json!({ "min": spread.min, "median": spread.median, "p95": spread.p95, "max": spread.max })
+}
+
+/// Every value of a requirement with its origin.
+#[must_use]
+pub fn requirement(resolved: &Resolved) -> Value {
+    resolved
+        .rows()
+        .iter()
+        .map(|row| {
+            json!({
+                "key": row.key,
+                "value": row.text,
+                "origin": row.origin.word(),
+                "because": row.origin.to_string(),
+            })
+        })
+        .collect()
+}
+
+/// An envelope in time.
+#[must_use]
+pub fn physical(physical: &PhysicalEnvelope) -> Value {
+    json!({
+        "bounce_ns": per_change(&physical.bounce_ns),
+        "glitch_ns": per_position(&physical.glitch_ns),
+        "quiet_ns": physical.quiet_ns,
+        "calm_ns": physical.calm_ns,
+        "dwell_ns": per_position(&physical.dwell_ns),
+    })
+}
+
+/// An envelope in samples.
+#[must_use]
+pub fn envelope(envelope: &Envelope) -> Value {
+    json!({
+        "bounce": per_change(&envelope.bounce),
+        "glitch": per_position(&envelope.glitch),
+        "quiet": envelope.quiet,
+        "calm": envelope.calm,
+        "dwell": per_position(&envelope.dwell),
+        "lost": envelope.lost,
+    })
+}
+
+fn per_change<T: serde::Serialize>(pair: &PerChange<T>) -> Value {
+    json!({ "make": pair.make, "break": pair.break_ })
+}
+
+fn per_position<T: serde::Serialize>(pair: &PerPosition<T>) -> Value {
+    json!({ "open": pair.open, "closed": pair.closed })
+}
+
+/// Bounds in samples.
+#[must_use]
+pub fn bounds(bounds: &Bounds) -> Value {
+    let one = |latency: Latency| json!({ "best": latency.best, "worst": latency.worst });
+    json!({ "make": one(bounds.latency.make), "break": one(bounds.latency.break_) })
+}
+
+/// A ranking: all that hold, and the nearest misses.
+#[must_use]
+pub fn ranking(ranking: &Ranking) -> Value {
+    json!({
+        "tried": ranking.candidates.len(),
+        "holding": ranking.holding(),
+        "physical_limit_ns": per_change(&ranking.physical_limit_ns),
+        "recommended": ranking.recommended().map(|best| candidate(ranking, best)),
+        "reason": ranking.reason.as_ref().map(ToString::to_string),
+        "candidates": ranking.candidates.iter().map(|one| candidate(ranking, one)).collect::<Value>(),
+    })
+}
+
+/// One candidate.
+#[must_use]
+pub fn candidate(ranking: &Ranking, one: &Candidate) -> Value {
+    let view = ranking.view(one);
+    let tick = TickPeriod::from(view.clock.period());
+    let (outcome, evidence) = match &one.judgement {
+        Judgement::Faithful { evidence, .. } => ("faithful", Some(evidence)),
+        Judgement::Refuted { evidence, .. } => ("refuted", Some(evidence)),
+        Judgement::Unproven(_) => ("unproven", None),
+    };
+    json!({
+        "law": one.parameters.to_string(),
+        "tick": tick.to_string(),
+        "ticks_per_second": tick.ticks_per_second(),
+        "outcome": outcome,
+        "evidence": evidence.map(|evidence| match evidence {
+            Evidence::ClosedForm => json!("closed-form"),
+            Evidence::Explored { states } => json!({ "explored_states": states }),
+        }),
+        "bounds_samples": one.bounds().as_ref().map(bounds),
+        "worst_below_ns": one.worst_below_ns.as_ref().map(per_change),
+        "limit_samples": view.limit.as_ref().map(per_change),
+        "times_limit": one.times_limit,
+        "times_physical_limit": one.times_physical_limit,
+        "state_bytes": one.state_bytes,
+        "holds": one.holds(),
+        "shortfalls": one.shortfalls.iter().map(words::shortfall).collect::<Vec<_>>(),
+        "pareto": one.pareto,
+        "measured": one
+            .measured
+            .iter()
+            .map(|m| json!({
+                "make": m.make.latency.as_ref().map(|l| json!({ "samples": l.samples.worst, "delay": l.delay })),
+                "break": m.break_.latency.as_ref().map(|l| json!({ "samples": l.samples.worst, "delay": l.delay })),
+                "missed": m.missed.len(),
+                "false_places": m.false_edges.places.len(),
+            }))
+            .collect::<Value>(),
+    })
+}
+
+/// The full exploration of the recommended candidate.
+#[must_use]
+pub fn guarantees(found: &Guarantees) -> Value {
+    json!({
+        "envelope": envelope(&found.envelope),
+        "exploration": proof(&found.proof),
+        "law_states": found.law_states,
+        "lone_disturbance": per_position(&found.lone_disturbance),
+        "immunity": found.immunity.as_ref().map(per_position),
+        "shortest_operations": found.shortest_operations.iter().map(per_position).collect::<Value>(),
+        "after_short_operations": found.after_short_operations.as_ref().map(recovery),
+        "from_any_state": found.from_any_state.as_ref().map(recovery),
+    })
+}
+
+fn recovery(recovery: &Recovery) -> Value {
+    match recovery {
+        Recovery::Within(samples) => json!({ "within_samples": samples }),
+        Recovery::Never(shown) => json!({ "never": witness(shown) }),
+    }
+}
+
+/// A proof with its counter-example or its slowest waveforms.
+#[must_use]
+pub fn proof(proof: &Proof) -> Value {
+    use crate::prove::Outcome;
+    let mut value = json!({
+        "law_states": proof.law_states,
+        "environment_states": proof.environment_states,
+        "states": proof.states,
+        "transitions": proof.transitions,
+    });
+    match &proof.outcome {
+        Outcome::Faithful { bounds: found, slowest } => {
+            value["outcome"] = json!("faithful");
+            value["bounds_samples"] = bounds(found);
+            value["slowest"] = json!({
+                "make": slowest.make.as_ref().map(witness),
+                "break": slowest.break_.as_ref().map(witness),
+            });
+        }
+        Outcome::Refuted { clause, witness: shown } => {
+            value["outcome"] = json!("refuted");
+            value["broken"] = json!(words::clause(*clause));
+            value["witness"] = witness(shown);
+        }
+    }
+    value
+}
+
+/// A witness: one character a tick in each lane, `0` open, `1` closed.
+#[must_use]
+pub fn witness(witness: &Witness) -> Value {
+    let digit = |position: Position| if position.is_closed() { '1' } else { '0' };
+    let lane =
+        |f: &dyn Fn(&crate::prove::WitnessTick) -> char| witness.ticks.iter().map(f).collect::<String>();
+    json!({
+        "start": words::position(witness.start),
+        "contact": lane(&|tick| digit(tick.contact)),
+        "samples": lane(&|tick| digit(tick.sample)),
+        "output": lane(&|tick| digit(tick.output)),
+        "repeats_from_tick": witness.loop_from.map(|from| from + 1),
+    })
+}

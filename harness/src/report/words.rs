@@ -1,0 +1,116 @@
+//! Times, shares and bounds in words, the same everywhere.
+
+use debounce_core::{Change, Clause, PerPosition, Position};
+
+use crate::choose::Shortfall;
+use crate::envelope::PhysicalEnvelope;
+use crate::quantity::{Rounding, Time};
+
+/// A time that must not be understated.
+#[must_use]
+pub fn at_most(ns: u64) -> String {
+    Time::from_ns(ns).shown(Rounding::Up).to_string()
+}
+
+/// A time that must not be overstated.
+#[must_use]
+pub fn at_least(ns: u64) -> String {
+    Time::from_ns(ns).shown(Rounding::Down).to_string()
+}
+
+/// A time as it was measured.
+#[must_use]
+pub fn about(ns: u64) -> String {
+    Time::from_ns(ns).to_string()
+}
+
+/// "make" or "break".
+#[must_use]
+pub fn change(change: Change) -> &'static str {
+    match change {
+        Change::Make => "make",
+        Change::Break => "break",
+    }
+}
+
+/// "open" or "closed".
+#[must_use]
+pub fn position(position: Position) -> &'static str {
+    match position {
+        Position::Open => "open",
+        Position::Closed => "closed",
+    }
+}
+
+/// A promise, as the clause of a sentence.
+#[must_use]
+pub fn clause(clause: Clause) -> &'static str {
+    match clause {
+        Clause::FalseEdge => "an edge is reported that the contact did not make",
+        Clause::Missed => "a change of the contact is never reported",
+        Clause::DwellUnseen => "an operation may fall between two samples",
+        Clause::NoQuiet => "disturbances come faster than the clock can tell apart",
+        _ => "a promise is broken",
+    }
+}
+
+/// What is asked and not given, with by how much.
+#[must_use]
+pub fn shortfall(shortfall: &Shortfall) -> String {
+    match shortfall {
+        Shortfall::Unfaithful(broken) => clause(*broken).to_owned(),
+        Shortfall::Unproven => "not proved within the limits".to_owned(),
+        Shortfall::TooSlow { change: which, below_ns, allowed_ns } => format!(
+            "{} can take {}, {} more than the {} allowed",
+            change(*which),
+            at_most(*below_ns),
+            at_most(below_ns - allowed_ns),
+            about(*allowed_ns)
+        ),
+        Shortfall::TooBig { bytes, allowed } => {
+            format!("needs {bytes} bytes an input, {} more than the {allowed} allowed", bytes - allowed)
+        }
+        Shortfall::FailsOnRecording { recording } => format!("fails on recording {}", recording + 1),
+    }
+}
+
+/// The envelope in words, one clause a line, so that all readers can agree on it.
+#[must_use]
+pub fn envelope(physical: &PhysicalEnvelope) -> Vec<String> {
+    let PhysicalEnvelope { bounce_ns, glitch_ns, quiet_ns, calm_ns, dwell_ns } = physical;
+    let mut lines = vec![
+        format!(
+            "stays closed for at least {} and open for at least {}",
+            at_least(dwell_ns.closed),
+            at_least(dwell_ns.open)
+        ),
+        format!(
+            "bounces for at most {} after a make and {} after a break",
+            at_most(bounce_ns.make),
+            at_most(bounce_ns.break_)
+        ),
+    ];
+    if physical.has_disturbances() {
+        let PerPosition { open, closed } = glitch_ns;
+        lines.push(format!(
+            "is disturbed for at most {} while open and {} while closed, with at least {} between two disturbances",
+            at_most(*open),
+            at_most(*closed),
+            at_least(*quiet_ns)
+        ));
+        lines.push(if *calm_ns == 0 {
+            "may be disturbed at any time, also just after a bounce".to_owned()
+        } else {
+            format!("is not disturbed within {} after a bounce", at_least(*calm_ns))
+        });
+    } else {
+        lines.push("is never disturbed".to_owned());
+    }
+    lines
+}
+
+/// A count with its noun: "1 make", "2 makes".
+#[must_use]
+pub fn count(number: usize, noun: &str) -> String {
+    if number == 1 { format!("1 {noun}") } else { format!("{number} {noun}s") }
+}
