@@ -61,6 +61,16 @@
 //! assert_eq!(made, Some(3)); // a clean make is reported at the third sample
 //! ```
 //!
+//! # Around the law
+//!
+//! | from, to                  | types                                                                        |
+//! |---------------------------|------------------------------------------------------------------------------|
+//! | pins and ports            | `DebouncedPin`, `DebouncedPins`, [`DebouncedPort`] over a [`PortReader`], `PinPort` |
+//! | asleep between operations | [`Settling`], [`is_still`], `DebouncedPin::wake_level`, `DebouncedPin::next_report` |
+//! | interrupt to main loop    | `Mailbox`                                                                    |
+//! | field to workbench        | [`Recorder`]                                                                 |
+//! | health in the field       | [`Monitor`], [`Heartbeat`], [`Tally`], [`Wear`]                              |
+//!
 //! # Parameters
 //! The `new` of a law is for constants: a bad one does not compile, and the compiler says why. `try_new` is for values
 //! known at run time and links no panic.

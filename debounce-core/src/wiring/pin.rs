@@ -10,8 +10,22 @@ use crate::running::Running;
 
 /// An input pin, its polarity and a running law: one call a tick reads and debounces.
 ///
-/// The law may be held by value, by reference, as a [`ConstLaw`](crate::ConstLaw), or started at power-up by
-/// [`Running::starting`].
+/// # Method
+/// Polarity is turned here and nowhere else. The law may be held by value, by reference, as a
+/// [`ConstLaw`](crate::ConstLaw), or started at power-up by [`Running::starting`].
+///
+/// # Units
+/// One call to [`tick`](Self::tick) takes one sample and is one tick.
+///
+/// # Bounds
+/// Those of the law. A pin that answers with an error takes no sample: the tick is lost. Proof:
+/// `pin_error_is_passed_on_and_takes_no_sample`.
+///
+/// # State
+/// The pin, one byte of polarity, and that of the law.
+///
+/// # Panics
+/// Never.
 ///
 /// # Examples
 /// ```
