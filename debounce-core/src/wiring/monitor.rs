@@ -223,19 +223,19 @@ impl Monitor {
         }
     }
 
-    /// Counts how long the contact can only have been where it is; true by the tick after the limit.
-    fn is_stuck(&self, state: &mut MonitorState) -> bool {
-        let Some(sure) = state.belief.only() else { return false };
+    /// Counts how long the contact can only have been where it is; the report by the tick after the limit.
+    fn stuck(&self, state: &mut MonitorState) -> Option<Outside> {
+        let sure = state.belief.only()?;
         if state.sure.replace(sure) != Some(sure) {
             state.stayed = 0;
         }
         let limit = self.stuck_after.at(sure);
         // Without a limit nothing is counted, and past it no more, so that the state comes to rest.
         if limit == u32::MAX || state.stayed > limit {
-            return false;
+            return None;
         }
         state.stayed = state.stayed.saturating_add(1);
-        state.stayed > limit
+        (state.stayed > limit).then_some(Outside::Stuck(sure))
     }
 }
 
@@ -271,12 +271,8 @@ impl Machine for Monitor {
         if rests {
             state.at_rest = Some(sample);
         }
-        if self.is_stuck(state) && report.is_none() {
-            if let Some(sure) = state.sure {
-                report = Some(Outside::Stuck(sure));
-            }
-        }
-        report
+        // One report a tick: where there is one, the count of a stuck contact waits.
+        report.or_else(|| self.stuck(state))
     }
 }
 

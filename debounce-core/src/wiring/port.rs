@@ -226,11 +226,10 @@ mod tests {
                 .map(|pair| u8::from(pair[0].is_closed()) | u8::from(pair[1].is_closed()) << 1)
                 .collect();
             let mut awake = Running::from_parts(BANK, BANK.all_open());
-            let mut now = readings.iter().copied();
             let asleep = Running::from_parts(BANK, BANK.all_open());
             let current = core::cell::Cell::new(0b10);
             let mut asleep = DebouncedPort::new(|| Ok::<u8, ()>(current.get()), asleep);
-            while let Some(reading) = now.next() {
+            for reading in readings {
                 current.set(reading);
                 let expected = awake.tick(reading);
                 if asleep.is_settled(reading) {

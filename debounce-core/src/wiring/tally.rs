@@ -105,7 +105,8 @@ mod tests {
 
     #[test]
     fn tally_counts_each_kind_up_to_its_end() {
-        let kinds: [(Outside, fn(&Tally) -> u16); 6] = [
+        type Kind = (Outside, fn(&Tally) -> u16);
+        let kinds: [Kind; 6] = [
             (Outside::BounceTooLong(Change::Break), |tally| tally.long_bounces),
             (Outside::DisturbanceTooWide(Position::Open), |tally| tally.wide_disturbances),
             (Outside::DisturbancesTooClose(Position::Open), |tally| tally.close_disturbances),
