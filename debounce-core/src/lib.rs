@@ -61,6 +61,16 @@
 //! assert_eq!(made, Some(3)); // a clean make is reported at the third sample
 //! ```
 //!
+//! # Around the law
+//!
+//! | from, to                  | types                                                                        |
+//! |---------------------------|------------------------------------------------------------------------------|
+//! | pins and ports            | `DebouncedPin`, `DebouncedPins`, [`DebouncedPort`] over a [`PortReader`], `PinPort` |
+//! | asleep between operations | [`Settling`], [`is_still`], `DebouncedPin::wake_level`, `DebouncedPin::next_report` |
+//! | interrupt to main loop    | `Mailbox`                                                                    |
+//! | field to workbench        | [`Recorder`]                                                                 |
+//! | health in the field       | [`Monitor`], [`Heartbeat`], [`Tally`], [`Wear`]                              |
+//!
 //! # Parameters
 //! The `new` of a law is for constants: a bad one does not compile, and the compiler says why. `try_new` is for values
 //! known at run time and links no panic.
@@ -68,10 +78,12 @@
 //! # Features
 //! None is on by default; with none of them the crate has no dependencies.
 //!
-//! | feature        | adds                                             |
-//! |----------------|--------------------------------------------------|
-//! | `defmt`        | `defmt::Format` for the public types             |
-//! | `embedded-hal` | `DebouncedPin`, a debounced `InputPin` of embedded-hal 1.0 |
+//! | feature              | adds                                                               |
+//! |----------------------|--------------------------------------------------------------------|
+//! | `defmt`              | `defmt::Format` for the public types                               |
+//! | `embedded-hal`       | `DebouncedPin`, `DebouncedPins`, `PinPort`, `MatrixPins`: `InputPin` of embedded-hal 1.0 |
+//! | `embedded-hal-async` | `DebouncedPin::next_report`, which sleeps until the line moves     |
+//! | `mailbox`            | `Mailbox`, from interrupt to main loop                             |
 //!
 //! # Caution
 //! Debouncing makes no input safe. Where a contact guards people or property (interlocks, limit switches of powered
@@ -137,16 +149,12 @@ pub use state_machine::{Phase, StateMachine, StateMachineParameters, StateMachin
 pub use still::is_still;
 pub use table::{TableLaw, TableLawError, TableState};
 pub use time::{Period, TickClock};
-#[cfg(feature = "embedded-hal-async")]
-pub use wiring::AsyncPin;
-#[cfg(feature = "embedded-hal")]
-pub use wiring::DebouncedPin;
-#[cfg(feature = "embedded-hal")]
-pub use wiring::PinPort;
-pub use wiring::Polarity;
 pub use wiring::{
-    Burst, Bursts, BurstsState, Monitor, MonitorLimits, MonitorState, Outside, ReadPort, Recorder,
-    RecorderMode, Wear,
+    Burst, Bursts, BurstsState, DebouncedPort, Heartbeat, Level, Monitor, MonitorState, Outside, Polarity,
+    PortReader, Recorded, RecordedRun, Recorder, RecorderMode, RecorderText, Settling, Tally, TickFault,
+    Wear,
 };
+#[cfg(feature = "embedded-hal")]
+pub use wiring::{DebouncedPin, DebouncedPins, PinPort};
 #[cfg(feature = "mailbox")]
 pub use wiring::{Delivery, Mailbox};

@@ -37,10 +37,10 @@ pub enum Delivery<T> {
 /// | time with interrupts off                             | one copy of an event | by reading: no loop under the lock      |
 ///
 /// # State
-/// `N` events with 2 bytes each, and the indices of the queue.
+/// `N` events with 2 bytes each, and up to five words; checked by a `const` assertion below the type.
 ///
 /// # Panics
-/// Never.
+/// Never. `N == 0` does not compile.
 ///
 /// # Examples
 /// ```
@@ -67,6 +67,8 @@ struct Inner<T, const N: usize> {
     queue: Deque<(u16, T), N>,
     lost_since: u16,
 }
+
+const _: () = assert!(size_of::<Mailbox<u16, 16>>() <= 16 * 4 + 5 * size_of::<usize>());
 
 impl<T, const N: usize> Mailbox<T, N> {
     /// An empty box.
@@ -194,5 +196,51 @@ mod tests {
         }
         poster.join().unwrap();
         assert_eq!((EDGES.take(), next), (None, 20_000));
+    }
+
+    /// From two lines through their laws and the box to a slow main loop: nothing comes out that no line did.
+    #[test]
+    fn mailbox_chain_at_power_up_invents_no_operation() {
+        use crate::words::{row, words};
+        use crate::{Running, ShiftRegister, Started};
+
+        const TICKS: usize = 6;
+        for word in words(2 * TICKS) {
+            for every in 1..=3 {
+                let mailbox = Mailbox::<(usize, Started), 2>::new();
+                let mut laws = [Running::starting(ShiftRegister::new(2)); 2];
+                let (mut posted, mut delivered, mut lost) = (Vec::new(), Vec::new(), 0);
+                let mut main = || {
+                    while let Some(delivery) = mailbox.take() {
+                        match delivery {
+                            Delivery::Event(event) => delivered.push(event),
+                            Delivery::Lost(more) => lost += usize::from(more),
+                        }
+                    }
+                };
+                for tick in 0..TICKS {
+                    for (line, law) in laws.iter_mut().enumerate() {
+                        let Some(report) = law.tick(word[line * TICKS + tick]) else { continue };
+                        posted.push((line, report));
+                        let _ = mailbox.post((line, report));
+                    }
+                    if tick % every == 0 {
+                        main();
+                    }
+                }
+                main();
+                for line in 0..2 {
+                    let mut reports = posted.iter().filter(|report| report.0 == line).map(|report| report.1);
+                    let samples = &word[line * TICKS..][..TICKS];
+                    let found = samples.windows(2).find(|pair| pair[0] == pair[1]).map(|pair| pair[0]);
+                    assert_eq!(reports.next(), found.map(Started::Initial), "{}", row(&word));
+                    assert!(reports.all(|report| matches!(report, Started::Edge(_))), "{}", row(&word));
+                }
+                // What came out was put in, in that order, and what did not is counted.
+                let mut rest = posted.iter();
+                assert!(delivered.iter().all(|event| rest.any(|post| post == event)), "{}", row(&word));
+                assert_eq!(delivered.len() + lost, posted.len(), "{}", row(&word));
+            }
+        }
     }
 }

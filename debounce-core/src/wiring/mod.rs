@@ -1,29 +1,43 @@
-//! Between the line and the program: hand-over, recording, and what the field shows.
+//! From the line to the law, and from there to the program.
 
+mod belief;
 mod bursts;
+mod heartbeat;
+mod monitor;
+mod polarity;
+mod port;
+mod recorder;
+mod recorder_text;
+mod settling;
+mod tally;
+mod wear;
+
 #[cfg(feature = "mailbox")]
 mod mailbox;
-mod monitor;
 #[cfg(feature = "embedded-hal")]
 mod pin;
 #[cfg(feature = "embedded-hal-async")]
 mod pin_async;
-mod polarity;
-mod port;
-mod recorder;
-mod wear;
+#[cfg(feature = "embedded-hal")]
+mod pin_port;
+#[cfg(feature = "embedded-hal")]
+mod pins;
 
 pub use bursts::{Burst, Bursts, BurstsState};
+pub use heartbeat::{Heartbeat, TickFault};
 #[cfg(feature = "mailbox")]
 pub use mailbox::{Delivery, Mailbox};
-pub use monitor::{Monitor, MonitorLimits, MonitorState, Outside};
+pub use monitor::{Monitor, MonitorState, Outside};
 #[cfg(feature = "embedded-hal")]
 pub use pin::DebouncedPin;
-#[cfg(feature = "embedded-hal-async")]
-pub use pin_async::AsyncPin;
-pub use polarity::Polarity;
 #[cfg(feature = "embedded-hal")]
-pub use port::PinPort;
-pub use port::ReadPort;
-pub use recorder::{Recorder, RecorderMode};
+pub use pin_port::PinPort;
+#[cfg(feature = "embedded-hal")]
+pub use pins::DebouncedPins;
+pub use polarity::{Level, Polarity};
+pub use port::{DebouncedPort, PortReader};
+pub use recorder::{Recorded, RecordedRun, Recorder, RecorderMode};
+pub use recorder_text::RecorderText;
+pub use settling::Settling;
+pub use tally::Tally;
 pub use wear::Wear;

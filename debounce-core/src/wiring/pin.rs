@@ -4,14 +4,28 @@ use core::fmt;
 
 use embedded_hal::digital::InputPin;
 
-use super::Polarity;
+use super::{Level, Polarity, Settling};
 use crate::machine::{Machine, Position};
 use crate::running::Running;
 
 /// An input pin, its polarity and a running law: one call a tick reads and debounces.
 ///
-/// The law may be held by value, by reference, as a [`ConstLaw`](crate::ConstLaw), or started at power-up by
-/// [`Running::starting`].
+/// # Method
+/// Polarity is turned here and nowhere else. The law may be held by value, by reference, as a
+/// [`ConstLaw`](crate::ConstLaw), or started at power-up by [`Running::starting`].
+///
+/// # Units
+/// One call to [`tick`](Self::tick) takes one sample and is one tick.
+///
+/// # Bounds
+/// Those of the law. A pin that answers with an error takes no sample: the tick is lost. Proof:
+/// `pin_error_is_passed_on_and_takes_no_sample`.
+///
+/// # State
+/// The pin, one byte of polarity, and that of the law.
+///
+/// # Panics
+/// Never.
 ///
 /// # Examples
 /// ```
@@ -45,6 +59,23 @@ impl<P, M: Machine<Input = Position>> DebouncedPin<P, M> {
     #[must_use]
     pub const fn running(&self) -> &Running<M> {
         &self.running
+    }
+
+    /// The level that has to restart the tick, when the tick may stop: the one opposite to the settled position.
+    ///
+    /// `None` while the tick has to go on. Arm a *level* wake-up with it, or an edge wake-up and then read the pin
+    /// once more before sleeping: a line that moved in between makes no edge any more.
+    #[must_use]
+    pub fn wake_level(&self) -> Option<Level>
+    where
+        M: Settling,
+    {
+        self.running.settled_at().map(|position| self.polarity.level(position.opposite()))
+    }
+
+    #[cfg(feature = "embedded-hal-async")]
+    pub(super) const fn pin_mut(&mut self) -> &mut P {
+        &mut self.pin
     }
 
     /// Gives the pin and the law back.
@@ -111,7 +142,7 @@ mod tests {
     use embedded_hal_mock::eh1::digital::{Mock, State, Transaction};
 
     use super::DebouncedPin;
-    use crate::{Change, Polarity, Position, Running, ShiftRegister, Started};
+    use crate::{Change, Level, Polarity, Position, Running, ShiftRegister, Started};
 
     #[track_caller]
     fn reports(polarity: Polarity, levels: &[State], expected: &[Option<Change>]) {
@@ -161,6 +192,30 @@ mod tests {
         assert_eq!(pin.running().position(), None);
         assert_eq!(pin.tick(), Ok(Some(Started::Initial(Position::Closed))));
         assert_eq!(pin.tick(), Ok(None));
+        pin.release().0.done();
+    }
+
+    #[test]
+    fn pin_wake_level_is_opposite_to_the_settled_position() {
+        for (polarity, open_wakes) in
+            [(Polarity::ClosedWhenLow, Level::Low), (Polarity::ClosedWhenHigh, Level::High)]
+        {
+            for position in Position::BOTH {
+                let running = Running::new(ShiftRegister::new(2), position);
+                let pin = DebouncedPin::new(Mock::new(&[]), polarity, running);
+                let same = pin.wake_level() == Some(open_wakes);
+                assert_eq!(same, position == Position::Open, "{polarity:?} {position:?}");
+                assert!(pin.wake_level().is_some());
+                pin.release().0.done();
+            }
+        }
+        let script = [Transaction::get(Low), Transaction::get(Low)];
+        let running = Running::new(ShiftRegister::new(2), Position::Open);
+        let mut pin = DebouncedPin::new(Mock::new(&script), Polarity::ClosedWhenLow, running);
+        assert_eq!(pin.tick(), Ok(None));
+        assert_eq!(pin.wake_level(), None);
+        assert_eq!(pin.tick(), Ok(Some(Change::Make)));
+        assert_eq!(pin.wake_level(), Some(Level::High));
         pin.release().0.done();
     }
 }

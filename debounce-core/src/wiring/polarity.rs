@@ -1,4 +1,4 @@
-//! Which level of the line means that the contact is closed: [`Polarity`].
+//! Which level of the line means that the contact is closed: [`Polarity`], [`Level`].
 
 use crate::machine::Position;
 
@@ -37,4 +37,24 @@ impl Polarity {
     pub const fn at_high(self) -> Position {
         self.at_low().opposite()
     }
+
+    /// The level of the line while the contact is in `position`.
+    #[must_use]
+    #[inline]
+    pub const fn level(self, position: Position) -> Level {
+        match (self, position) {
+            (Self::ClosedWhenLow, Position::Closed) | (Self::ClosedWhenHigh, Position::Open) => Level::Low,
+            (Self::ClosedWhenLow, Position::Open) | (Self::ClosedWhenHigh, Position::Closed) => Level::High,
+        }
+    }
+}
+
+/// The level of a line, before polarity.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+pub enum Level {
+    /// Logic 0.
+    Low,
+    /// Logic 1.
+    High,
 }

@@ -1,8 +1,9 @@
 //! Edges of a line in RAM: [`Recorder`].
 
-use core::fmt;
-
 use crate::machine::Position;
+use crate::time::Period;
+
+use super::recorder_text::RecorderText;
 
 /// What a [`Recorder`] does when it is full.
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
@@ -14,102 +15,153 @@ pub enum RecorderMode {
     StopWhenFull,
 }
 
-/// Records a line as the lengths of its runs, and writes them out as lines of text.
+/// What the line was in one run of a [`Recorder`].
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+pub enum Recorded {
+    /// It read this position throughout.
+    At(Position),
+    /// Ticks were lost: nothing is known.
+    Lost,
+}
+
+/// One run of a [`Recorder`].
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+pub struct RecordedRun {
+    /// What the line was.
+    pub recorded: Recorded,
+    /// For how many ticks, 1 to 268 435 455.
+    pub ticks: u32,
+}
+
+/// Records a line as the lengths of its runs, to be written out as a few lines of text that the `harness` reads.
 ///
 /// # Method
-/// Run-length coding, common practice: one number for each run of like samples. The text is one head line and one line
-/// of up to 16 lengths each:
+/// Run-length coding, common practice. A run takes one entry of 16 bits: 2 bits for what the line was and 14 bits for its
+/// ticks; from 16 384 ticks on it takes a second entry for 14 bits more, so that a long rest costs a ring two entries and
+/// not its contents. Ticks that the program knows to be lost are runs of their own.
+///
+/// The text, written by [`text`](Self::text), is the same over every [`core::fmt::Write`] and over defmt:
 ///
 /// ```text
-/// # debounce-core recorder 1
-/// first closed
+/// debounce-core recorder 1
+/// tick 1000000 ns
 /// forgotten 0
-/// runs 1200 3 1 14 66000
-/// end open
+/// o1200 c3 o1 c14 l2 c66000
+/// end 6 running
 /// ```
 ///
-/// `first` is the position of the first run kept, `forgotten` how many runs before it were dropped in ring mode, `end`
-/// the position of the last, or `end stopped` where the recorder was full before the line was over. Positions are after
-/// polarity; lengths are in ticks, and runs alternate. The run that was going on is the last. A run too long for its
-/// count is written as several, with runs of 0 ticks between them, so that alternation and length both stay true.
+/// * The first line names the format and its version, 1.
+/// * `tick` is the period in nanoseconds, or a fraction such as `100000000/3 ns` for 30 Hz.
+/// * `forgotten` says how many runs a ring has dropped before the first; at 4294967295 that or more.
+/// * Then come the runs, oldest first, up to 16 a line: `o` open, `c` closed (polarity is turned already), `l` lost, each
+///   with its ticks. The last may still have gone on. Runs of one kind that follow each other are one run.
+/// * `end` counts the runs, so that a text that was cut is found out, and says whether the recorder was `running` or
+///   had `stopped`, being full.
 ///
 /// # Units
-/// One call to [`sample`](Self::sample) takes one raw sample and is one tick. `N` is in runs.
+/// One call to [`sample`](Self::sample) takes one raw sample and is one tick. `N` is in entries.
 ///
 /// # Bounds
 ///
-/// | Quantity                                      | Value             | Proof                                    |
-/// |-----------------------------------------------|-------------------|------------------------------------------|
-/// | samples given back by the runs, until full    | exactly those taken | `recorder_every_history_reads_back`    |
-/// | runs kept                                     | the last or first `N` | same                                 |
-/// | runs forgotten or a stop, unreported          | none              | same                                     |
+/// | Quantity                                      | Value               | Proof                                        |
+/// |-----------------------------------------------|---------------------|----------------------------------------------|
+/// | samples that the runs stand for, until full   | exactly those taken | `recorder_every_history_reads_back`          |
+/// | runs shorter than 16 384 ticks kept           | the last or first `N` | same                                       |
+/// | runs forgotten, or a stop, unreported         | none                | same                                         |
 ///
-/// A lost tick is a sample that was never taken; the runs are shorter by it. If that can happen, say so beside the text.
+/// A lost tick that the program does not know of is a sample that was never taken: the runs are shorter by it.
 ///
 /// # State
-/// `2 N + 24` bytes at most on a 64-bit host, `2 N + 16` on a 32-bit part; checked by a `const` assertion below the type.
+/// `2 N` bytes, two words and 8 bytes; checked by a `const` assertion below the type.
 ///
 /// # Panics
-/// Never. `N == 0` does not compile.
+/// Never. `N` below 2 does not compile.
 ///
 /// # Examples
 /// ```
-/// use debounce_core::{Position::{Closed, Open}, Recorder, RecorderMode};
+/// use debounce_core::{Period, Position::{Closed, Open}, Recorder, RecorderMode};
 /// let mut recorder = Recorder::<8>::new(RecorderMode::StopWhenFull);
-/// for sample in [Open, Open, Closed, Open, Closed, Closed] {
+/// for sample in [Open, Open, Closed, Open] {
 ///     recorder.sample(sample);
 /// }
-/// let mut text = String::new();
-/// recorder.dump(&mut text)?;
-/// assert_eq!(text, "# debounce-core recorder 1\nfirst open\nforgotten 0\nruns 2 1 1 2\nend closed\n");
-/// # Ok::<(), core::fmt::Error>(())
+/// recorder.lost(3);
+/// recorder.sample(Closed);
+/// assert_eq!(
+///     recorder.text(Period::from_ms(1)).to_string(),
+///     "debounce-core recorder 1\ntick 1000000 ns\nforgotten 0\no2 c1 o1 l3 c1\nend 5 running\n"
+/// );
 /// ```
 #[derive(Clone, PartialEq, Eq, Debug)]
-#[cfg_attr(feature = "defmt", derive(defmt::Format))]
 pub struct Recorder<const N: usize> {
-    runs: [u16; N],
-    // Where the oldest run is, and how many there are; the newest is the one that goes on.
+    entries: [Entry; N],
+    // Where the oldest entry is, and how many there are; the newest is the one that goes on.
     oldest: usize,
     length: usize,
     forgotten: u32,
-    line: Position,
     mode: RecorderMode,
     stopped: bool,
 }
 
-const _: () = assert!(size_of::<Recorder<16>>() <= 32 + 4 + 4 + 2 * size_of::<usize>());
+/// Two bits of kind above fourteen bits of ticks.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+struct Entry(u16);
+
+const OPEN: u16 = 0;
+const CLOSED: u16 = 1;
+const LOST: u16 = 2;
+/// The upper fourteen bits of the run that the entry before began.
+const MORE: u16 = 3;
+
+const BITS: u32 = 14;
+const MOST_LOW: u32 = (1 << BITS) - 1;
+const MOST: u32 = (1 << (2 * BITS)) - 1;
+
+impl Entry {
+    /// The lower fourteen bits of `ticks`.
+    const fn new(kind: u16, ticks: u32) -> Self {
+        // The mask makes the cast keep its value.
+        Self(kind << BITS | (ticks & MOST_LOW) as u16)
+    }
+
+    const fn kind(self) -> u16 {
+        self.0 >> BITS
+    }
+
+    const fn ticks(self) -> u32 {
+        self.0 as u32 & MOST_LOW
+    }
+}
+
+const _: () = assert!(size_of::<Recorder<16>>() <= 2 * 16 + 2 * size_of::<usize>() + 8);
 
 impl<const N: usize> Recorder<N> {
     /// An empty recorder.
     #[must_use]
     pub const fn new(mode: RecorderMode) -> Self {
-        const { assert!(N >= 1, "a recorder holds at least 1 run") };
-        Self { runs: [0; N], oldest: 0, length: 0, forgotten: 0, line: Position::Open, mode, stopped: false }
+        const { assert!(N >= 2, "a recorder holds at least 2 entries") };
+        Self { entries: [Entry(0); N], oldest: 0, length: 0, forgotten: 0, mode, stopped: false }
     }
 
     /// Takes one sample.
     #[inline]
     pub fn sample(&mut self, sample: Position) {
-        if self.stopped {
-            return;
-        }
-        let room = N.saturating_sub(self.length);
-        if self.length > 0 && sample == self.line {
-            if let Some(run) = self.newest().filter(|run| **run < u16::MAX) {
-                *run += 1;
-                return;
-            }
-            // Too long: a run of 0 ticks at the other position, and another run at this one; both or neither, for
-            // the last run kept must be at the position of the line.
-            if self.mode == RecorderMode::StopWhenFull && room < 2 {
-                self.stopped = true;
-                return;
-            }
-            self.begin(0);
-        }
-        self.begin(1);
-        if !self.stopped {
-            self.line = sample;
+        let kind = match sample {
+            Position::Open => OPEN,
+            Position::Closed => CLOSED,
+        };
+        self.push(kind, 1);
+    }
+
+    /// Marks that so many ticks were lost here, for example as an overrun of the handler tells.
+    pub fn lost(&mut self, ticks: u32) {
+        // A run holds less than a number of ticks may be; the rest begins a run of its own.
+        let mut left = ticks;
+        while left > 0 {
+            let part = left.min(MOST);
+            self.push(LOST, part);
+            left = left.saturating_sub(part);
         }
     }
 
@@ -119,206 +171,125 @@ impl<const N: usize> Recorder<N> {
         self.stopped
     }
 
-    /// The lengths of the runs kept, oldest first.
-    pub fn runs(&self) -> impl Iterator<Item = u16> + '_ {
-        // The part from the oldest to the end of the store, and the part that went round.
-        let (round, straight) = self.runs.split_at_checked(self.oldest).unwrap_or_default();
-        straight.iter().chain(round).take(self.length).copied()
-    }
-
-    /// The position of the oldest run kept; `None` while there is none.
-    #[must_use]
-    pub const fn first(&self) -> Option<Position> {
-        if self.length == 0 {
-            return None;
-        }
-        Some(if self.length & 1 == 1 { self.line } else { self.line.opposite() })
-    }
-
     /// Runs that were dropped in ring mode; at its maximum, that or more.
     #[must_use]
     pub const fn forgotten(&self) -> u32 {
         self.forgotten
     }
 
+    /// The runs kept, oldest first; the last is the one that goes on.
+    pub fn runs(&self) -> impl Iterator<Item = RecordedRun> + '_ {
+        let mut nth = 0;
+        core::iter::from_fn(move || {
+            let entry = self.entry(nth)?;
+            nth = nth.saturating_add(1);
+            let recorded = match entry.kind() {
+                OPEN => Recorded::At(Position::Open),
+                CLOSED => Recorded::At(Position::Closed),
+                _ => Recorded::Lost,
+            };
+            let more = self.entry(nth).filter(|entry| entry.kind() == MORE);
+            let upper = more.map_or(0, Entry::ticks);
+            nth = nth.saturating_add(usize::from(more.is_some()));
+            Some(RecordedRun { recorded, ticks: upper << BITS | entry.ticks() })
+        })
+    }
+
+    /// The recording as text, for `write!` or for defmt; `tick` is the period of the samples.
+    #[must_use]
+    pub const fn text(&self, tick: Period) -> RecorderText<'_, N> {
+        RecorderText::new(self, tick)
+    }
+
     /// Empties the recorder.
-    pub fn clear(&mut self) {
-        *self = Self::new(self.mode);
+    pub const fn clear(&mut self) {
+        (self.oldest, self.length, self.forgotten, self.stopped) = (0, 0, 0, false);
     }
 
-    /// Writes everything out as text.
-    ///
-    /// # Errors
-    /// What the writer says; part of the text may have been written then.
-    pub fn dump(&self, out: &mut impl fmt::Write) -> fmt::Result {
-        out.write_str("# debounce-core recorder 1\n")?;
-        let Some(first) = self.first() else {
-            return out.write_str("empty\n");
-        };
-        writeln!(out, "first {}", name(first))?;
-        write!(out, "forgotten {}", self.forgotten)?;
-        for (column, run) in (0..16u8).cycle().zip(self.runs()) {
-            out.write_str(if column == 0 { "\nruns" } else { "" })?;
-            write!(out, " {run}")?;
+    fn push(&mut self, kind: u16, ticks: u32) {
+        if self.stopped {
+            return;
         }
-        writeln!(out, "\nend {}", if self.stopped { "stopped" } else { name(self.line) })
+        let last = self.length.wrapping_sub(1);
+        // The run that goes on is the last entry, or the last two.
+        let (first, upper) = match self.entry(last) {
+            Some(entry) if entry.kind() == MORE => (last.wrapping_sub(1), Some(entry.ticks())),
+            _ => (last, None),
+        };
+        let same = self.entry(first).filter(|entry| entry.kind() == kind);
+        let sum = same.map(|entry| (upper.unwrap_or(0) << BITS | entry.ticks()).saturating_add(ticks));
+        let done = match (sum, upper) {
+            (Some(sum @ ..=MOST_LOW), None) => {
+                self.set(first, Entry::new(kind, sum));
+                true
+            }
+            (Some(sum @ ..=MOST), Some(_)) => {
+                self.set(first, Entry::new(kind, sum));
+                self.set(last, Entry::new(MORE, sum >> BITS));
+                true
+            }
+            // The second entry goes first: it may move the run, which then is the last but one.
+            (Some(sum @ ..=MOST), None) => {
+                let added = self.add(Entry::new(MORE, sum >> BITS));
+                if added {
+                    self.set(self.length.wrapping_sub(2), Entry::new(kind, sum));
+                }
+                added
+            }
+            _ if ticks <= MOST_LOW => self.add(Entry::new(kind, ticks)),
+            _ => self.add_two(kind, ticks),
+        };
+        self.stopped = !done;
     }
 
-    fn newest(&mut self) -> Option<&mut u16> {
-        let last = self.length.checked_sub(1)?;
-        let place = self.place(last);
-        self.runs.get_mut(place)
+    /// A new run of two entries: both or neither.
+    fn add_two(&mut self, kind: u16, ticks: u32) -> bool {
+        let fits = self.mode == RecorderMode::Ring || N.saturating_sub(self.length) >= 2;
+        fits && self.add(Entry::new(kind, ticks)) && self.add(Entry::new(MORE, ticks >> BITS))
     }
 
-    /// Where the run lies that is `nth` from the oldest; neither is more than `N`, so nothing overflows.
+    /// Adds an entry, in ring mode at the cost of the oldest run; whether there was room.
+    fn add(&mut self, entry: Entry) -> bool {
+        if self.length >= N {
+            if self.mode == RecorderMode::StopWhenFull {
+                return false;
+            }
+            self.forget();
+        }
+        self.length = self.length.saturating_add(1);
+        self.set(self.length.wrapping_sub(1), entry);
+        true
+    }
+
+    /// Drops the oldest run with all its entries.
+    fn forget(&mut self) {
+        let entries = match self.entry(1) {
+            Some(entry) if entry.kind() == MORE => 2,
+            _ => 1,
+        };
+        self.oldest = self.place(entries);
+        self.length = self.length.saturating_sub(entries);
+        self.forgotten = self.forgotten.saturating_add(1);
+    }
+
+    fn entry(&self, nth: usize) -> Option<Entry> {
+        if nth < self.length { self.entries.get(self.place(nth)).copied() } else { None }
+    }
+
+    fn set(&mut self, nth: usize, entry: Entry) {
+        let place = self.place(nth);
+        if let Some(slot) = self.entries.get_mut(place) {
+            *slot = entry;
+        }
+    }
+
+    /// Where the entry lies that is `nth` from the oldest; neither is more than `N`, so nothing overflows.
     fn place(&self, nth: usize) -> usize {
         let place = self.oldest.wrapping_add(nth);
         if place >= N { place.wrapping_sub(N) } else { place }
     }
-
-    /// Begins a run.
-    fn begin(&mut self, ticks: u16) {
-        if self.length < N {
-            self.length += 1;
-        } else if self.mode == RecorderMode::StopWhenFull {
-            self.stopped = true;
-            return;
-        } else {
-            self.oldest = self.place(1);
-            self.forgotten = self.forgotten.saturating_add(1);
-        }
-        if let Some(run) = self.newest() {
-            *run = ticks;
-        }
-    }
-}
-
-const fn name(position: Position) -> &'static str {
-    match position {
-        Position::Open => "open",
-        Position::Closed => "closed",
-    }
 }
 
 #[cfg(test)]
-mod tests {
-    extern crate std;
-
-    use super::*;
-    use std::string::String;
-    use std::vec::Vec;
-
-    /// The samples that the runs stand for.
-    fn read_back<const N: usize>(recorder: &Recorder<N>) -> Vec<Position> {
-        let mut position = recorder.first().unwrap_or(Position::Open);
-        let mut samples = Vec::new();
-        for run in recorder.runs() {
-            samples.extend(std::iter::repeat_n(position, usize::from(run)));
-            position = !position;
-        }
-        samples
-    }
-
-    #[test]
-    fn recorder_every_history_reads_back() {
-        for bits in 0..1u32 << 12 {
-            let history: Vec<_> = (0..12).map(|i| Position::closed_if(bits >> i & 1 == 1)).collect();
-            for taken in 0..=12 {
-                let (mut ring, mut stop) =
-                    (Recorder::<4>::new(RecorderMode::Ring), Recorder::<4>::new(RecorderMode::StopWhenFull));
-                history[..taken].iter().for_each(|&s| {
-                    ring.sample(s);
-                    stop.sample(s);
-                });
-                let runs: Vec<_> = history[..taken].chunk_by(|a, b| a == b).collect();
-                let last = runs[runs.len().saturating_sub(4)..].concat();
-                let first = runs[..runs.len().min(4)].concat();
-                assert_eq!(read_back(&ring), last);
-                assert_eq!(read_back(&stop), first);
-                assert_eq!(ring.first(), last.first().copied());
-                assert_eq!(usize::try_from(ring.forgotten()), Ok(runs.len().saturating_sub(4)));
-                assert_eq!((stop.is_stopped(), stop.forgotten()), (runs.len() > 4, 0));
-            }
-        }
-    }
-
-    #[test]
-    fn recorder_run_longer_than_count_keeps_length_and_alternation() {
-        for extra in [0, 1, 70_000usize] {
-            let mut recorder = Recorder::<8>::new(RecorderMode::StopWhenFull);
-            recorder.sample(Position::Open);
-            (0..65_535 + extra).for_each(|_| recorder.sample(Position::Closed));
-            recorder.sample(Position::Open);
-            let samples = read_back(&recorder);
-            assert_eq!(samples.len(), 65_537 + extra);
-            assert!(samples[1..65_536 + extra].iter().all(|s| s.is_closed()));
-            assert_eq!((samples[0], samples.last()), (Position::Open, Some(&Position::Open)));
-        }
-    }
-
-    #[test]
-    fn recorder_run_longer_than_count_stops_or_forgets_in_whole_pairs() {
-        fn check<const N: usize>() {
-            for mode in [RecorderMode::Ring, RecorderMode::StopWhenFull] {
-                for before in [0u8, 1, 2] {
-                    let mut truth: Vec<_> =
-                        (0..before).map(|i| Position::closed_if((before - i) & 1 == 0)).collect();
-                    truth.resize(140_000, Position::Closed);
-                    let mut recorder = Recorder::<N>::new(mode);
-                    truth.iter().for_each(|&sample| recorder.sample(sample));
-                    let kept = read_back(&recorder);
-                    match mode {
-                        RecorderMode::Ring => assert!(!kept.is_empty() && truth.ends_with(&kept)),
-                        RecorderMode::StopWhenFull => {
-                            assert!(!kept.is_empty() && truth.starts_with(&kept));
-                            assert_eq!(recorder.is_stopped(), kept.len() < truth.len());
-                        }
-                    }
-                }
-            }
-        }
-        check::<1>();
-        check::<2>();
-        check::<3>();
-        check::<4>();
-        check::<5>();
-        check::<9>();
-    }
-
-    #[test]
-    fn recorder_dump_says_what_is_missing() {
-        let dump = |recorder: &Recorder<3>| {
-            let mut text = String::new();
-            recorder.dump(&mut text).unwrap();
-            text
-        };
-        let mut ring = Recorder::<3>::new(RecorderMode::Ring);
-        assert_eq!(dump(&ring), "# debounce-core recorder 1\nempty\n");
-        let mut stop = Recorder::<3>::new(RecorderMode::StopWhenFull);
-        for i in 0..5 {
-            ring.sample(Position::closed_if(i & 1 == 1));
-            stop.sample(Position::closed_if(i & 1 == 1));
-        }
-        assert_eq!(
-            dump(&ring),
-            "# debounce-core recorder 1\nfirst open\nforgotten 2\nruns 1 1 1\nend open\n"
-        );
-        assert_eq!(
-            dump(&stop),
-            "# debounce-core recorder 1\nfirst open\nforgotten 0\nruns 1 1 1\nend stopped\n"
-        );
-        ring.clear();
-        assert_eq!(dump(&ring), "# debounce-core recorder 1\nempty\n");
-    }
-
-    #[test]
-    fn recorder_dump_breaks_lines_after_sixteen_runs() {
-        let mut recorder = Recorder::<40>::new(RecorderMode::Ring);
-        (0..33).for_each(|i| recorder.sample(Position::closed_if(i & 1 == 1)));
-        let mut text = String::new();
-        recorder.dump(&mut text).unwrap();
-        let counts: Vec<_> =
-            text.lines().filter_map(|l| l.strip_prefix("runs ")).map(|l| l.split(' ').count()).collect();
-        assert_eq!(counts, [16, 16, 1]);
-    }
-}
+#[path = "recorder_tests.rs"]
+mod tests;

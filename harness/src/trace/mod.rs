@@ -1,6 +1,7 @@
 //! A recorded line as runs of position, in integer nanoseconds; and the files such a recording comes from.
 //!
-//! [`read_path`] tells a VCD from a CSV by its content and turns one channel of it into a [`Recording`];
+//! [`read_path`] tells a VCD, a CSV and the text of the firmware's own recorder apart by their content and turns one
+//! channel into a [`Recording`];
 //! [`write_vcd`] goes the other way. What the readers had to decide on their own comes back as [`Note`]s.
 
 use debounce_core::Position;
@@ -14,6 +15,7 @@ mod options;
 #[cfg(test)]
 mod oracle_tests;
 mod polarity;
+mod recorder;
 mod recording;
 #[cfg(test)]
 mod round_trip_tests;

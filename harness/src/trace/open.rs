@@ -6,7 +6,7 @@ use std::path::Path;
 
 use super::channel::{Channel, nearest};
 use super::error::{Faults, ReadError, plain};
-use super::{ReadOptions, Recording, csv, vcd};
+use super::{ReadOptions, Recording, csv, recorder, vcd};
 
 /// So much of a file is looked at to find out what it is.
 pub(super) const PREFIX: usize = 1 << 16;
@@ -69,6 +69,7 @@ pub fn list_channels(path: impl AsRef<Path>, options: &ReadOptions) -> Result<Ve
     let mut faults = Faults::default();
     let channels = match sniff(open(path, &name)?, &mut faults) {
         Some((Format::Vcd, prefix, rest)) => vcd::channels(prefix.as_slice().chain(rest), &mut faults),
+        Some((Format::Recorder, ..)) => recorder::channels(),
         Some((Format::Csv, prefix, _)) => csv::channels(&prefix, options, &mut faults),
         None => Vec::new(),
     };
@@ -86,6 +87,9 @@ fn read_any(
         Some((Format::Vcd, prefix, rest)) => {
             vcd::read(prefix.as_slice().chain(rest), channels, options, &mut faults)
         }
+        Some((Format::Recorder, prefix, rest)) => {
+            recorder::read(prefix.as_slice().chain(rest), channels, options, &mut faults)
+        }
         Some((Format::Csv, prefix, rest)) => {
             csv::read(prefix.as_slice().chain(rest), &prefix, channels, options, &mut faults)
         }
@@ -98,6 +102,7 @@ fn read_any(
 enum Format {
     Vcd,
     Csv,
+    Recorder,
 }
 
 /// Reads the beginning and says what the file is; the byte order mark of UTF-8 is dropped.
@@ -136,6 +141,9 @@ fn format_of(prefix: &[u8]) -> Result<Format, (&'static str, &'static str)> {
     // A stray control character is for the reader to find, with its place.
     if prefix.contains(&0) || prefix.iter().filter(is_odd).count() > prefix.len() / 32 {
         return Err(("is no text", "export the recording as VCD or CSV"));
+    }
+    if prefix.trim_ascii_start().starts_with(recorder::MAGIC) {
+        return Ok(Format::Recorder);
     }
     // A VCD begins with a keyword; no CSV does. One without declarations begins with a time mark.
     let looks_like_mark = *first == b'#'

@@ -53,6 +53,13 @@ pub enum Note {
     },
     /// Neither the file nor the options gave the unit of the times; seconds were taken.
     SecondsAssumed,
+    /// The recorder's ring had dropped runs before the first.
+    RunsForgotten {
+        /// How many runs; at 4294967295 that or more.
+        runs: u64,
+    },
+    /// The recorder was full: what the line did later is not in the recording.
+    RecorderStopped,
     /// Lines before the data were left out.
     PreambleSkipped {
         /// How many lines.
@@ -86,6 +93,15 @@ impl fmt::Display for Note {
                 write!(f, "no known value before {until_ns} ns; taken as {position} from the start")
             }
             Self::SecondsAssumed => f.write_str("no unit was given for the times; taken as seconds"),
+            Self::RunsForgotten { runs } => {
+                write!(
+                    f,
+                    "{runs} runs before the first were dropped by the recorder, which keeps the last ones"
+                )
+            }
+            Self::RecorderStopped => {
+                f.write_str("the recorder was full and stopped; what the line did later is not here")
+            }
             Self::PreambleSkipped { lines } => write!(f, "{lines} lines before the data were skipped"),
         }
     }

@@ -10,7 +10,7 @@ pub(super) const LONGEST_LINE: usize = 1 << 20;
 
 /// Reads line by line, in one buffer.
 #[derive(Debug)]
-pub(super) struct Lines<R> {
+pub(in crate::trace) struct Lines<R> {
     input: BufReader<R>,
     terminator: u8,
     text: Vec<u8>,
@@ -18,12 +18,12 @@ pub(super) struct Lines<R> {
 }
 
 impl<R: Read> Lines<R> {
-    pub(super) fn new(input: R, terminator: u8) -> Self {
+    pub(in crate::trace) fn new(input: R, terminator: u8) -> Self {
         Self { input: BufReader::with_capacity(1 << 17, input), terminator, text: Vec::new(), number: 0 }
     }
 
     /// The next line without its end, and its number from 1.
-    pub(super) fn next(&mut self) -> io::Result<Option<(u64, &[u8])>> {
+    pub(in crate::trace) fn next(&mut self) -> io::Result<Option<(u64, &[u8])>> {
         self.text.clear();
         let limit = LONGEST_LINE as u64 + 2;
         let read = (&mut self.input).take(limit).read_until(self.terminator, &mut self.text)?;

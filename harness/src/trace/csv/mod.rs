@@ -21,7 +21,7 @@ mod tests;
 use std::io::Read;
 
 use self::layout::Layout;
-use self::line::Lines;
+pub(super) use self::line::Lines;
 use self::rows::Rows;
 use super::error::Faults;
 use super::open::PREFIX;
