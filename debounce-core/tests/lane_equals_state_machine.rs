@@ -2,7 +2,9 @@
 
 use std::collections::HashSet;
 
-use debounce_core::{EdgeRule, Lane, Law, Machine, PatientBank, Position, StateMachine, StateMachineParameters};
+use debounce_core::{
+    EdgeRule, Lane, Law, Machine, PatientBank, Position, StateMachine, StateMachineParameters,
+};
 
 #[test]
 fn patient_lane_every_state_and_sample_equals_state_machine() {
@@ -13,10 +15,12 @@ fn patient_lane_every_state_and_sample_equals_state_machine() {
             for (lm, lb) in (0..=3u8).flat_map(|a| (0..=3u8).map(move |b| (a, b))) {
                 let rule = |c: u8, p: u8, l: u8| EdgeRule::new(c.into()).patience(p.into()).lockout(l.into());
                 let lane = Lane::new(PatientBank::<u8, 2, 2, 2>::new(0, rule(cm, pm, lm), rule(cb, pb, lb)));
-                let machine =
-                    StateMachine::<u8>::new(StateMachineParameters::confirm(cm, cb).patience(pm, pb).lockout(lm, lb));
+                let machine = StateMachine::<u8>::new(
+                    StateMachineParameters::confirm(cm, cb).patience(pm, pb).lockout(lm, lb),
+                );
                 let mut seen = HashSet::new();
-                let mut open: Vec<_> = Position::BOTH.iter().map(|&p| (lane.rest(p), machine.rest(p))).collect();
+                let mut open: Vec<_> =
+                    Position::BOTH.iter().map(|&p| (lane.rest(p), machine.rest(p))).collect();
                 while let Some(pair) = open.pop() {
                     if !seen.insert(pair) {
                         continue;
