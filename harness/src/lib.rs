@@ -19,6 +19,7 @@ pub mod replay;
 pub mod report;
 pub mod requirement;
 pub mod sample;
+pub mod strategy;
 pub mod study;
 pub mod trace;
 pub mod truth;
