@@ -4,7 +4,7 @@ use proptest::strategy::{NewTree, Strategy, ValueTree};
 use proptest::test_runner::TestRunner;
 
 use super::shrink::Shrink;
-use super::{Word, WordPlan, Words};
+use super::{Wave, WavePlan, Waves, Word, WordPlan, Words};
 
 impl Strategy for Words {
     type Tree = WordTree;
@@ -12,6 +12,15 @@ impl Strategy for Words {
 
     fn new_tree(&self, runner: &mut TestRunner) -> NewTree<Self> {
         Ok(WordTree(Shrink::new(self.plan(runner.rng()))))
+    }
+}
+
+impl Strategy for Waves {
+    type Tree = WaveTree;
+    type Value = Wave;
+
+    fn new_tree(&self, runner: &mut TestRunner) -> NewTree<Self> {
+        Ok(WaveTree(Shrink::new(self.plan(runner.rng()))))
     }
 }
 
@@ -42,4 +51,6 @@ macro_rules! trees {
 trees! {
     /// A word while it is made simpler.
     WordTree: WordPlan => Word;
+    /// A trace and its samples while they are made simpler.
+    WaveTree: WavePlan => Wave;
 }
