@@ -2,6 +2,7 @@
 #![forbid(unsafe_code)]
 
 pub mod characterise;
+pub mod check;
 pub mod choose;
 pub mod cli;
 pub mod conformance;
