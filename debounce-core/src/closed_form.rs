@@ -1,4 +1,5 @@
-//! The closed forms behind `verdict`, in one place, each with its proof.
+//! The closed forms behind `verdict`, in one place. Their proofs are the text of [`proofs::verdict`](crate::proofs::verdict),
+//! which names the conditions in the order in which they stand here.
 
 use crate::envelope::{Bounds, Clause, Envelope, Latency, PerChange, Verdict};
 use crate::machine::Change;

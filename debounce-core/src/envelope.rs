@@ -181,25 +181,52 @@ impl Envelope {
 
     /// The least worst-case latency, in samples, that any logic whatever can have at make and at break.
     ///
-    /// `None` where the closed form is not proved: quiet at or below a disturbance width, calm between 1 and
-    /// the widest disturbance, or a dwell so short that the question has no such answer.
+    /// [`StateMachine::for_envelope`](crate::StateMachine::<u8>::for_envelope) reaches it; [`proofs`](crate::proofs) shows
+    /// both for numbers of any size.
+    ///
+    /// `None` where the closed form is not proved:
+    ///
+    /// * calm between 1 and the widest disturbance;
+    /// * calm 0, disturbances at both positions, and quiet at or below the wider of them;
+    /// * no quiet at all between disturbances;
+    /// * a dwell shorter than the limit and the lock-out behind it (the bounce less 1) together: the limit may then
+    ///   be greater, or no logic may exist.
     #[must_use]
     pub const fn limit(&self) -> Option<PerChange<u32>> {
         let e = self.delivered();
         let (open, closed) = (e.glitch.open, e.glitch.closed);
-        let widest = if open > closed { open } else { closed };
-        if e.quiet <= widest {
+        if !e.disturbances_apart() {
             return None;
         }
         // With enough calm no disturbance can follow the bounce closely.
         let (after_make, after_break) = match e.calm {
             0 => (closed, open),
-            calm if calm > widest => (0, 0),
+            calm if calm > e.widest_glitch() => (0, 0),
             _ => return None,
         };
         let make = least_latency(e.bounce.make, after_make, open);
         let break_ = least_latency(e.bounce.break_, after_break, closed);
-        Some(PerChange { make, break_ })
+        if make + lockout(e.bounce.make) > e.dwell.closed as u64
+            || break_ + lockout(e.bounce.break_) > e.dwell.open as u64
+        {
+            return None;
+        }
+        // Neither is longer than a dwell, which is 32 bits wide.
+        Some(PerChange { make: make as u32, break_: break_ as u32 })
+    }
+
+    pub(crate) const fn widest_glitch(&self) -> u32 {
+        if self.glitch.open > self.glitch.closed { self.glitch.open } else { self.glitch.closed }
+    }
+
+    /// Whether disturbances, in delivered samples, keep far enough apart for the closed form of the limit.
+    pub(crate) const fn disturbances_apart(&self) -> bool {
+        let widest = self.widest_glitch();
+        if widest == 0 {
+            return true;
+        }
+        let one_sided = self.glitch.open == 0 || self.glitch.closed == 0;
+        self.quiet > widest || (self.quiet > 0 && (one_sided || self.calm > widest))
     }
 }
 
@@ -212,11 +239,16 @@ const fn with_straddling(bounce: u32, straddling: u32, of_new_position: u32, cal
 
 /// The limit for one change: the bounce with a disturbance behind it, or one that straddles the change, then
 /// one sample more than the widest disturbance of the old position.
-const fn least_latency(bounce: u32, following: u32, before: u32) -> u32 {
-    let silent = bounce.saturating_add(following);
-    let straddling = before.saturating_sub(1);
+const fn least_latency(bounce: u32, following: u32, before: u32) -> u64 {
+    let silent = bounce as u64 + following as u64;
+    let straddling = before.saturating_sub(1) as u64;
     let hidden = if silent > straddling { silent } else { straddling };
-    hidden.saturating_add(before).saturating_add(1)
+    hidden + before as u64 + 1
+}
+
+/// The lock-out that covers a bounce behind the earliest report.
+const fn lockout(bounce: u32) -> u64 {
+    bounce.saturating_sub(1) as u64
 }
 
 /// Best and worst latency, in samples: reporting on the first sample that could see the new position is 1.

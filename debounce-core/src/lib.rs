@@ -95,11 +95,13 @@ mod law;
 mod machine;
 mod majority_register;
 mod meaning;
+pub mod proofs;
 mod running;
 mod shift_register;
 mod starting;
 mod state_machine;
 mod still;
+mod table;
 mod time;
 mod wiring;
 #[cfg(test)]
@@ -136,6 +138,7 @@ pub use shift_register::{ShiftRegister, ShiftRegisterState};
 pub use starting::{Started, Starting, StartingState};
 pub use state_machine::{Phase, StateMachine, StateMachineParameters, StateMachineState};
 pub use still::is_still;
+pub use table::{TableLaw, TableLawError, TableState};
 pub use time::{Period, TickClock};
 #[cfg(feature = "embedded-hal-async")]
 pub use wiring::AsyncPin;

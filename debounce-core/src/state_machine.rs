@@ -215,9 +215,12 @@ macro_rules! constructors {
 
             /// The machine whose worst latency inside `envelope` is the least that any logic can have.
             ///
+            /// That is its [`limit`](Envelope::limit), by the [proof](crate::proofs). Where only the dwells are too short
+            /// for a limit in closed form there still is a machine, but nothing is promised of it.
+            ///
             /// # Errors
-            /// Where no closed form is proved: quiet not longer than the widest disturbance, or calm neither 0 nor
-            /// longer than it; and where a parameter does not fit the count.
+            /// Where no closed form is proved: disturbances at both positions and quiet not longer than the widest
+            /// of them, or calm neither 0 nor longer than it; and where a parameter does not fit the count.
             pub const fn for_envelope(envelope: &Envelope) -> Result<Self, ParameterError> {
                 let wanted = match reaching_the_limit(envelope) {
                     Ok(wanted) => wanted,
@@ -268,8 +271,8 @@ impl StateMachineParameters<u32> {
 const fn reaching_the_limit(envelope: &Envelope) -> Result<StateMachineParameters<u32>, ParameterError> {
     let e = envelope.delivered();
     let (open, closed) = (e.glitch.open, e.glitch.closed);
-    let glitch = if open > closed { open } else { closed };
-    if e.quiet <= glitch {
+    let glitch = e.widest_glitch();
+    if !e.disturbances_apart() {
         return Err(ParameterError::QuietTooShort { quiet: e.quiet, glitch });
     }
     // A width of u32::MAX saturates here and is refused by every count.

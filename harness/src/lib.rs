@@ -12,6 +12,7 @@ pub mod envelope;
 pub mod generate;
 pub mod law_text;
 pub mod logic;
+pub mod machine;
 pub mod nearest;
 pub mod problem;
 pub mod prove;

@@ -1,3 +1,4 @@
-//! What several tests share: the envelope written a second time, as a predicate on words.
+//! What several tests share.
 
 pub mod predicate;
+pub mod toggle;

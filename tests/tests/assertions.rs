@@ -115,7 +115,7 @@ fn assert_equivalent_of_two_laws_prints_a_shortest_word_and_its_replay() {
     let (one, other) = (MajorityRegister::<u8>::new(2, 3), ShiftRegister::new(2));
     let shown = message(|| assert_equivalent(&one, &other));
     let expected = "\
-not equivalent: from rest open, after the samples 101 the one law reports an edge and the other does not
+not equivalent: from rest open, after the samples 101 the one law reports make, the other nothing
 
 keep it as a test:
     assert_eq!(edges(&one, Position::Open, \"101\"), edges(&other, Position::Open, \"101\"));
@@ -205,7 +205,8 @@ fn sampled_time_stamps_that_serve_say_that_nothing_is_proved() {
 #[test]
 fn sampled_time_stamps_that_are_fooled_shrink_to_the_shortest_witness() {
     for seed in 0..5 {
-        let wide = BUTTON.glitch(2, 2);
+        // Without bounce, in which a word that is as simple as can be would be another one.
+        let wide = Envelope::clean(20, 20).glitch(2, 2).quiet(6);
         let sampled = sample_faithful(&Stamped { ticks: 2 }, &wide, 2_000, seed).unwrap();
         let found = sampled.refutation.as_ref().expect("a disturbance of two samples fills a window of two");
         assert_eq!(found.clause, Clause::FalseEdge);

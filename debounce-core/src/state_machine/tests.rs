@@ -225,10 +225,21 @@ fn state_machine_for_envelope_outside_the_closed_form_is_refused() {
     no_form(ENVELOPE.calm(1), ParameterError::CalmTooShort { calm: 1, glitch: 3 });
     no_form(ENVELOPE.calm(3), ParameterError::CalmTooShort { calm: 3, glitch: 3 });
     no_form(ENVELOPE.quiet(9).calm(4).lost(1), ParameterError::CalmTooShort { calm: 3, glitch: 3 });
-    no_form(ENVELOPE.quiet(0).glitch(0, 0), ParameterError::QuietTooShort { quiet: 0, glitch: 0 });
+    no_form(ENVELOPE.quiet(0).glitch(0, 2), ParameterError::QuietTooShort { quiet: 0, glitch: 2 });
     // A calm that losses may eat whole promises nothing, and the patient machine needs none.
     let eaten = StateMachine::<u8>::for_envelope(&ENVELOPE.quiet(9).calm(4).lost(4)).unwrap();
     assert_eq!(eaten, StateMachine::<u8>::for_envelope(&ENVELOPE).unwrap());
+}
+
+#[test]
+fn state_machine_for_envelope_with_short_quiet_serves_disturbances_of_one_position() {
+    let law = StateMachine::<u8>::for_envelope(&ENVELOPE.quiet(1).glitch(0, 3)).unwrap();
+    assert_eq!(law.parameters(), StateMachineParameters::confirm(1, 4).patience(4, 1).lockout(6, 3));
+    let calm = StateMachine::<u8>::for_envelope(&ENVELOPE.quiet(1).calm(4)).unwrap();
+    assert_eq!(calm, StateMachine::<u8>::for_envelope(&ENVELOPE.calm(4)).unwrap());
+    // Without disturbances nothing depends on quiet.
+    let undisturbed = StateMachine::<u8>::for_envelope(&ENVELOPE.quiet(0).glitch(0, 0)).unwrap();
+    assert_eq!(undisturbed.parameters(), StateMachineParameters::confirm(1, 1).lockout(6, 3));
 }
 
 #[track_caller]

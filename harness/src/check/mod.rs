@@ -17,7 +17,6 @@
 //! For logic whose state never ends, such as one with time stamps, there is [`assert_sampled_faithful`]: it tries many
 //! words and *proves nothing*; its [`Sampled`] says so.
 
-mod apart;
 mod follow;
 mod replay;
 mod sampled;
@@ -29,6 +28,7 @@ use debounce_core::{Bounds, Change, Envelope, Law, PerChange};
 pub use replay::{Replay, edges, replay, samples};
 pub use sampled::{Refutation, Sampled, sample_faithful};
 
+use crate::machine::{Apart, MachineTable, compare};
 use crate::prove::{LawTable, Limits, Outcome, Proof, ProveError, Recovery, prove, recovery_from_any_state};
 use crate::report::timing::TimingDiagram;
 use crate::report::words;
@@ -102,15 +102,17 @@ where
     A::State: Hash,
     B::State: Hash,
 {
-    let (a, b) = (proved(LawTable::of(one)), proved(LawTable::of(other)));
-    if let Some(apart::Apart { start, samples, first_reports }) = apart::apart(&a, &b) {
+    let (a, b) = (proved(MachineTable::of(one)), proved(MachineTable::of(other)));
+    if let Some(Apart { start, samples, edges }) = compare(&a, &b) {
         let row = row(samples);
-        let (reports, silent) = if first_reports { ("one", "other") } else { ("other", "one") };
+        let says = |edge: Option<Change>| edge.map_or("nothing", words::change);
         panic!(
-            "not equivalent: from rest {}, after the samples {row} the {reports} law reports an edge and the {silent} does not\n\n\
+            "not equivalent: from rest {}, after the samples {row} the one law reports {}, the other {}\n\n\
              keep it as a test:\n    \
              assert_eq!(edges(&one, Position::{start:?}, \"{row}\"), edges(&other, Position::{start:?}, \"{row}\"));\n",
             words::position(start),
+            says(edges[0]),
+            says(edges[1]),
         );
     }
 }

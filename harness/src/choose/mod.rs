@@ -38,6 +38,8 @@ pub struct Question<'a> {
     pub recordings: Vec<(&'a Trace, &'a [TruthChange])>,
     /// What counts most among those that hold.
     pub preference: Preference,
+    /// The laws to judge, where it is not all that could make sense.
+    pub only: Option<Vec<LawParameters>>,
     /// What exploring one candidate may use.
     pub limits: Limits,
 }
@@ -209,7 +211,10 @@ pub fn choose(question: &Question<'_>, progress: impl Fn(usize) + Sync) -> Resul
             .map(|(trace, truth)| PreparedTrace::new(trace, truth, ExactPeriod::nominal(&view.clock)))
             .collect::<Result<Vec<_>, _>>()?;
         let judge = judge::Judge::new(question, view, index, envelope, &prepared);
-        let laws = candidates::laws(&envelope, allowed_samples(question, &view.clock));
+        let laws = match &question.only {
+            Some(laws) => laws.clone(),
+            None => candidates::laws(&envelope, allowed_samples(question, &view.clock)),
+        };
         candidates.par_extend(laws.into_par_iter().filter_map(|parameters| judge.candidate(parameters)));
         progress(candidates.len());
     }

@@ -1,8 +1,20 @@
 //! `harness choose`: ranks the candidates for a requirement.
 
-use clap::Args;
+use std::io::{self, Write};
 
+use clap::Args;
+use comfy_table::Table;
+use serde_json::{Value, json};
+
+use super::input::Input;
+use super::lines::Lines;
+use super::preference::PreferenceOption;
 use super::recordings::RequirementInput;
+use super::study::failure;
+use super::{Answer, Failure, Outcome, Session};
+use crate::report::{json as report, words};
+use crate::requirement::Origin;
+use crate::study::Study;
 
 /// Ranks laws, parameters and tick periods for a requirement.
 #[derive(Args, Clone, PartialEq, Debug, Default)]
@@ -17,6 +29,9 @@ pub struct ChooseArguments {
     /// Recordings and requirement.
     #[command(flatten)]
     pub input: RequirementInput,
+    /// What counts most.
+    #[command(flatten)]
+    pub preference: PreferenceOption,
     /// So many candidates are listed
     #[arg(long, value_name = "COUNT", default_value_t = 12)]
     pub list: usize,
@@ -32,4 +47,85 @@ Examples:
     harness choose --requirement contact.toml --tick \"5 ms,10 ms\"
   For a recording, on firmware that can serve 1000 ticks a second at most:
     harness choose gate.vcd --fastest-tick \"1 kHz\" --ram \"4 bytes\"";
+}
+
+impl ChooseArguments {
+    /// Runs the command.
+    pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
+        let input = Input::with_or_without_recordings(&self.input, session)?;
+        let study =
+            Study::of(input.observed, &input.requirement, self.preference.into(), |_| {}).map_err(failure)?;
+        Ok(Box::new(Chosen { study, list: self.list }))
+    }
+}
+
+/// A ranking, so many candidates of it to be shown.
+struct Chosen {
+    study: Study,
+    list: usize,
+}
+
+impl Answer for Chosen {
+    fn outcome(&self) -> Outcome {
+        if self.study.ranking.recommended().is_some() { Outcome::Holds } else { Outcome::DoesNotHold }
+    }
+
+    fn write_text(&self, out: &mut dyn Write) -> io::Result<()> {
+        let ranking = &self.study.ranking;
+        let mut lines = Lines::new(out);
+        lines
+            .item("Envelope", &format!("the contact {}", words::envelope(&self.study.physical).join("; ")))?;
+        for row in self.study.resolved.rows() {
+            if !matches!(row.origin, Origin::Given { .. } | Origin::Option(_)) {
+                lines.item("Assumed", &format!("{} = {} ({})", row.key, row.text, row.origin))?;
+            }
+        }
+        for view in &ranking.clocks {
+            if let Err(error) = view.envelope {
+                lines.item("Left out", &error.to_string())?;
+            }
+        }
+        match &ranking.reason {
+            Some(reason) => lines.item("First", &reason.to_string())?,
+            None => lines
+                .item("None holds", &format!("{} candidates, nearest first", ranking.candidates.len()))?,
+        }
+        lines.plain("\n")?;
+        lines.plain(&candidate_table(&self.study, self.list))?;
+        lines.plain("\n* no other candidate that holds beats it in delay, ticks a second and RAM together\n")
+    }
+
+    fn to_json(&self) -> Value {
+        json!({
+            "requirement": report::requirement(&self.study.resolved),
+            "envelope": report::physical(&self.study.physical),
+            "choice": report::ranking(&self.study.ranking),
+        })
+    }
+}
+
+/// The first candidates as a table.
+fn candidate_table(study: &Study, list: usize) -> String {
+    let mut table = Table::new();
+    table.load_style(comfy_table::presets::NOTHING);
+    table.set_header(["", "law", "tick", "make <", "break <", "x limit", "median", "bytes", "says no"]);
+    for one in study.ranking.candidates.iter().take(list) {
+        let (make, break_) = one.worst_below_ns.map_or(("-".into(), "-".into()), |worst| {
+            (words::at_most(worst.make), words::at_most(worst.break_))
+        });
+        let median =
+            one.measured.iter().filter_map(|m| m.make.latency.as_ref()).map(|l| l.delay.median_ns).max();
+        table.add_row([
+            if one.pareto { "*".to_owned() } else { String::new() },
+            one.parameters.to_string(),
+            study.tick(one).to_string(),
+            make,
+            break_,
+            one.times_limit.map_or("-".into(), |times| format!("{times:.2}")),
+            median.map_or("-".into(), words::about),
+            one.state_bytes.to_string(),
+            one.shortfalls.first().map(words::shortfall).unwrap_or_default(),
+        ]);
+    }
+    table.trim_fmt() + "\n"
 }

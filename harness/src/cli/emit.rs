@@ -1,11 +1,23 @@
 //! `harness emit`: the Rust configuration for the firmware.
 
+use std::io::{self, Write};
 use std::path::PathBuf;
 
 use clap::Args;
+use serde_json::{Value, json};
 
+use super::input::Input;
+use super::lines::Lines;
+use super::preference::PreferenceOption;
 use super::recordings::RequirementInput;
+use super::study::failure;
+use super::study_answer::nothing_holds;
+use super::{Answer, Failure, Outcome, OutputFolder, Session};
+use crate::emit::rust_module;
 use crate::law_text::LawParameters;
+use crate::problem::Problem;
+use crate::report::json as report;
+use crate::study::Study;
 
 /// Writes the Rust configuration for the firmware.
 #[derive(Args, Clone, PartialEq, Debug, Default)]
@@ -23,6 +35,9 @@ pub struct EmitArguments {
     /// The law with its parameters in ticks, in place of the best candidate; needs one tick period
     #[arg(long, value_name = "LAW")]
     pub law: Option<LawParameters>,
+    /// What counts most.
+    #[command(flatten)]
+    pub preference: PreferenceOption,
     /// The file to write; standard output without it
     #[arg(long, short, value_name = "FILE")]
     pub output: Option<PathBuf>,
@@ -38,4 +53,56 @@ Examples:
     harness emit --requirement contact.toml --law \"integrator 5\" --tick \"1 ms\" --output src/gate.rs
   From figures alone, to standard output:
     harness emit --name \"sluice gate\" --bounce \"5 ms\" --latency \"20 ms\"";
+}
+
+impl EmitArguments {
+    /// Runs the command.
+    pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
+        let input = Input::with_or_without_recordings(&self.input, session)?;
+        let file = self.output.as_deref().map(OutputFolder::of_file).transpose()?;
+        let only = self.law.map(|law| vec![law]);
+        let study = Study::among(input.observed, &input.requirement, self.preference.into(), only, |_| {})
+            .map_err(failure)?;
+        let Some(configuration) = study.configuration() else {
+            return Ok(Box::new(Emitted { study, module: None, written: None }));
+        };
+        let module = rust_module(&configuration).map_err(|error| Problem::new(error.to_string()))?;
+        let mut written = None;
+        if let Some((folder, name)) = file {
+            let mut files = folder.stage();
+            files.add(&name, |out| out.write_all(module.as_bytes()))?;
+            written = files.commit()?.pop();
+        }
+        Ok(Box::new(Emitted { study, module: Some(module), written }))
+    }
+}
+
+/// A module, or why there is none.
+struct Emitted {
+    study: Study,
+    module: Option<String>,
+    written: Option<PathBuf>,
+}
+
+impl Answer for Emitted {
+    fn outcome(&self) -> Outcome {
+        if self.module.is_some() { Outcome::Holds } else { Outcome::DoesNotHold }
+    }
+
+    fn write_text(&self, out: &mut dyn Write) -> io::Result<()> {
+        let mut lines = Lines::new(out);
+        match (&self.module, &self.written) {
+            (Some(module), None) => lines.plain(module),
+            (Some(_), Some(path)) => lines.item("Written", &path.display().to_string()),
+            (None, _) => nothing_holds(&mut lines, &self.study),
+        }
+    }
+
+    fn to_json(&self) -> Value {
+        json!({
+            "choice": report::ranking(&self.study.ranking),
+            "module": self.module,
+            "written": self.written.as_ref().map(|path| path.display().to_string()),
+        })
+    }
 }

@@ -5,6 +5,7 @@ use std::path::Path;
 use crate::characterise::SegmentOptions;
 use crate::demo;
 use crate::problem::{Problem, Problems, SourceText};
+use crate::quantity::Time;
 use crate::requirement::{Level, Recording as Wanted, Requirement, parse};
 use crate::study::{Observed, observe};
 use crate::trace::{Polarity, ReadError, ReadOptions, Recording, Thresholds, read_bytes, read_path};
@@ -27,7 +28,7 @@ impl Input {
 
     /// What was asked for, with at least one recording.
     pub(super) fn with_recordings(input: &RequirementInput, session: &Session) -> Result<Self, Failure> {
-        Self::of(input.load_with_recordings()?, session)
+        Self::of(input.load_with_recordings()?, input, session)
     }
 
     /// What was asked for, with recordings or without.
@@ -35,17 +36,21 @@ impl Input {
         input: &RequirementInput,
         session: &Session,
     ) -> Result<Self, Failure> {
-        Self::of(input.load()?, session)
+        Self::of(input.load()?, input, session)
     }
 
-    fn of(requirement: Requirement, session: &Session) -> Result<Self, Failure> {
+    fn of(requirement: Requirement, input: &RequirementInput, session: &Session) -> Result<Self, Failure> {
+        let segmenting = SegmentOptions { gap_ns: input.gap.map(Time::ns) };
+        let resolution_ns = input.resolution.map(Time::ns);
         let (mut observed, mut problems) = (Vec::new(), Vec::new());
         for wanted in &requirement.recordings {
             let path = &wanted.path.value;
-            let read = read_options(wanted, &requirement)
+            let read = read_options(wanted, &requirement, resolution_ns)
                 .map_err(|problem| vec![problem])
                 .and_then(|options| read_path(path, &options).map_err(|error| recording_problems(&error)))
-                .and_then(|recording| observed_in(path, recording, session).map_err(|problem| vec![problem]));
+                .and_then(|recording| {
+                    observed_in(path, recording, &segmenting, session).map_err(|problem| vec![problem])
+                });
             match read {
                 Ok(one) => observed.push(one),
                 Err(found) => problems.extend(found),
@@ -59,37 +64,49 @@ impl Input {
 
     fn demo(session: &Session) -> Result<Self, Failure> {
         let requirement = parse(SourceText::new(demo::REQUIREMENT_NAME, demo::REQUIREMENT))?;
-        let recording = read_bytes(demo::RECORDING_NAME, demo::RECORDING, &ReadOptions::default())
+        let options = ReadOptions { resolution_ns: Some(demo::RESOLUTION_NS), ..ReadOptions::default() };
+        let recording = read_bytes(demo::RECORDING_NAME, demo::RECORDING, &options)
             .map_err(|error| failure(recording_problems(&error)))?;
-        let one = observed_in(Path::new(demo::RECORDING_NAME), recording, session)?;
+        let segmenting = SegmentOptions::default();
+        let one = observed_in(Path::new(demo::RECORDING_NAME), recording, &segmenting, session)?;
         Ok(Self { requirement, observed: vec![one], demo: true })
     }
 }
 
-fn read_options(wanted: &Wanted, requirement: &Requirement) -> Result<ReadOptions, Problem> {
+fn read_options(
+    wanted: &Wanted,
+    requirement: &Requirement,
+    resolution_ns: Option<u64>,
+) -> Result<ReadOptions, Problem> {
     let closed = wanted.closed.as_ref().or(requirement.contact.closed.as_ref());
-    let mut options = ReadOptions::default();
-    options.channel = wanted.channel.as_ref().map(|channel| channel.value.clone());
-    options.polarity = match closed.map(|closed| closed.value) {
+    let polarity = match closed.map(|closed| closed.value) {
         Some(Level::High) => Polarity::ClosedIsHigh,
         Some(Level::Low) | None => Polarity::ClosedIsLow,
     };
-    if let Some(thresholds) = &wanted.thresholds {
-        let (low, high) = (thresholds.value.low.volts(), thresholds.value.high.volts());
-        let pair = Thresholds::try_new(low, high)
-            .map_err(|error| Problem::new(error.to_string()).in_file(&wanted.path.value))?;
-        options.thresholds = Some(pair);
-    }
-    Ok(options)
+    let thresholds = wanted.thresholds.as_ref().map(|thresholds| {
+        Thresholds::try_new(thresholds.value.low.volts(), thresholds.value.high.volts())
+            .map_err(|error| Problem::new(error.to_string()).in_file(&wanted.path.value))
+    });
+    Ok(ReadOptions {
+        channel: wanted.channel.as_ref().map(|channel| channel.value.clone()),
+        polarity,
+        thresholds: thresholds.transpose()?,
+        resolution_ns,
+        ..ReadOptions::default()
+    })
 }
 
-fn observed_in(path: &Path, recording: Recording, session: &Session) -> Result<Observed, Problem> {
+fn observed_in(
+    path: &Path,
+    recording: Recording,
+    segmenting: &SegmentOptions,
+    session: &Session,
+) -> Result<Observed, Problem> {
     let name = path.display().to_string();
     for note in &recording.notes {
         session.warn(&format!("{name}: {note}"));
     }
-    observe(name, recording, &SegmentOptions::default())
-        .map_err(|error| Problem::new(error.to_string()).in_file(path))
+    observe(name, recording, segmenting).map_err(|error| Problem::new(error.to_string()).in_file(path))
 }
 
 /// Every fault of a recording, with its place.

@@ -80,3 +80,16 @@ impl<'a> Lines<'a> {
 fn shown_width(word: &str) -> usize {
     UnicodeWidthStr::width(anstream::adapter::strip_str(word).to_string().as_str())
 }
+
+/// A number with its thousands apart.
+pub(super) fn grouped(number: u64) -> String {
+    let digits = number.to_string();
+    let mut text = String::new();
+    for (index, digit) in digits.chars().enumerate() {
+        if index > 0 && (digits.len() - index).is_multiple_of(3) {
+            text.push(' ');
+        }
+        text.push(digit);
+    }
+    text
+}

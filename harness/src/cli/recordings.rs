@@ -5,6 +5,7 @@ use std::path::PathBuf;
 use clap::Args;
 
 use crate::problem::Problem;
+use crate::quantity::Time;
 use crate::requirement::{Requirement, RequirementOptions};
 
 use super::Failure;
@@ -15,8 +16,14 @@ pub struct RequirementInput {
     /// Recordings of the contact, VCD or CSV; they take the place of those in the requirement file
     #[arg(value_name = "RECORDING")]
     pub recordings: Vec<PathBuf>,
-    #[command(flatten)]
+    /// The rest that ends a burst of bounce; found from each recording without it
+    #[arg(long, value_name = "TIME", help_heading = "Recordings")]
+    pub gap: Option<Time>,
+    /// The recorder's own sample period, where the file does not show it (a VCD never does)
+    #[arg(long, value_name = "TIME", help_heading = "Recordings")]
+    pub resolution: Option<Time>,
     /// The requirement.
+    #[command(flatten)]
     pub requirement: RequirementOptions,
 }
 

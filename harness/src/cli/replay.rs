@@ -1,9 +1,27 @@
 //! `harness replay`: one law over recordings.
 
-use clap::Args;
+use std::io::{self, Write};
 
+use clap::Args;
+use debounce_core::{Change, Law, TickClock, is_settled};
+use serde_json::{Value, json};
+
+use super::input::Input;
+use super::lines::Lines;
 use super::recordings::RequirementInput;
+use super::{Answer, Failure, Outcome, Session};
+use crate::characterise::Burst;
 use crate::law_text::LawParameters;
+use crate::logic::Logic;
+use crate::problem::Problem;
+use crate::prove::{Witness, WitnessTick};
+use crate::quantity::TickPeriod;
+use crate::replay::{ClockMeasurement, Draws, PreparedClock};
+use crate::report::timing::TimingDiagram;
+use crate::report::words;
+use crate::sample::SampleClock;
+use crate::study::{Observed, measured};
+use crate::with_law;
 
 /// Runs one law over recordings and shows what it reports.
 #[derive(Args, Clone, PartialEq, Debug)]
@@ -20,6 +38,12 @@ pub struct ReplayArguments {
     /// Recordings and requirement.
     #[command(flatten)]
     pub input: RequirementInput,
+    /// Passes drawn with tolerance, jitter and lost ticks, on top of the exact ones
+    #[arg(long, value_name = "COUNT", default_value_t = 32)]
+    pub draws: u32,
+    /// Seed of the first drawn pass
+    #[arg(long, value_name = "NUMBER", default_value_t = 1)]
+    pub seed: u64,
 }
 
 impl ReplayArguments {
@@ -32,4 +56,203 @@ Examples:
     harness replay \"shift-register 1\" gate.vcd --tick \"30 Hz\"
   The recordings of a requirement file, for a program:
     harness replay \"state-machine confirm=3/2 lockout=4/0\" --requirement contact.toml --tick \"1 ms\" --json";
+}
+
+impl ReplayArguments {
+    /// Runs the command.
+    pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
+        let input = Input::with_recordings(&self.input, session)?;
+        let resolved = input.requirement.resolve(&measured(&input.observed))?;
+        let logic =
+            Logic::try_new(&self.law).map_err(|error| Problem::new(format!("{}: {error}", self.law)))?;
+        let shortest = &resolved.required.shortest;
+        let draws = Draws {
+            count: self.draws,
+            seed: self.seed,
+            shortest_dwell_ns: shortest.open.value.ns().min(shortest.closed.value.ns()),
+        };
+        let mut runs = Vec::new();
+        for (recording, one) in input.observed.iter().enumerate() {
+            for &tick in &resolved.ticks.value {
+                let clock = resolved.clock(tick);
+                let prepared = PreparedClock::new(&one.recording.trace, &one.truth, &clock, draws)
+                    .map_err(|error| Problem::new(format!("{}: {error}", one.name)))?;
+                let measured = with_law!(&logic, law => prepared.measure(law));
+                runs.push(Run { recording, tick, clock, measured });
+            }
+        }
+        Ok(Box::new(Replayed { logic, law: self.law, observed: input.observed, runs }))
+    }
+}
+
+/// One recording at one tick period.
+struct Run {
+    recording: usize,
+    tick: TickPeriod,
+    clock: TickClock,
+    measured: ClockMeasurement,
+}
+
+struct Replayed {
+    logic: Logic,
+    law: LawParameters,
+    observed: Vec<Observed>,
+    runs: Vec<Run>,
+}
+
+impl Answer for Replayed {
+    fn outcome(&self) -> Outcome {
+        if self.runs.iter().all(|run| run.measured.is_faithful()) {
+            Outcome::Holds
+        } else {
+            Outcome::DoesNotHold
+        }
+    }
+
+    fn write_text(&self, out: &mut dyn Write) -> io::Result<()> {
+        let mut lines = Lines::new(out);
+        for run in &self.runs {
+            let one = &self.observed[run.recording];
+            lines.item("Replayed", &format!("{} at {} over {}", self.law, run.tick, one.name))?;
+            self.figures(&mut lines, run)?;
+        }
+        if let [run] = self.runs.as_slice() {
+            self.slowest(&mut lines, run)?;
+        }
+        Ok(())
+    }
+
+    fn to_json(&self) -> Value {
+        let run = |run: &Run| {
+            json!({
+                "recording": self.observed[run.recording].name,
+                "tick": run.tick.to_string(),
+                "measured": run.measured,
+            })
+        };
+        json!({ "law": self.law.to_string(), "runs": self.runs.iter().map(run).collect::<Value>() })
+    }
+}
+
+impl Replayed {
+    fn figures(&self, lines: &mut Lines<'_>, run: &Run) -> io::Result<()> {
+        let exact = &run.measured.nominal;
+        for change in [Change::Make, Change::Break] {
+            let figures = exact.at(change);
+            let text = match &figures.latency {
+                None => format!("{} changes, none reported", figures.changes),
+                Some(latency) => format!(
+                    "{} changes; delay median {}, 95 % {}, 99 % {}, always less than {}; at most {} samples",
+                    figures.changes,
+                    words::about(latency.delay.median_ns),
+                    words::about(latency.delay.p95_ns),
+                    words::about(latency.delay.p99_ns),
+                    words::at_most(run.measured.worst_delay_ns(change).unwrap_or(latency.delay.below_ns)),
+                    latency.samples.worst,
+                ),
+            };
+            lines.item(if change == Change::Make { "Makes" } else { "Breaks" }, &text)?;
+        }
+        for missed in exact.missed.iter().take(SHOWN) {
+            lines.item(
+                "Missed",
+                &format!(
+                    "{} at {}, at {:.1} % of phases",
+                    words::change(missed.change),
+                    words::about(missed.at_ns),
+                    missed.probability * 100.0
+                ),
+            )?;
+        }
+        for place in exact.false_edges.places.iter().take(SHOWN) {
+            lines.item(
+                "False edge",
+                &format!(
+                    "{} between {} and {}, {:.3} on average in one pass",
+                    words::change(place.change),
+                    words::about(place.from_ns),
+                    words::about(place.until_ns),
+                    place.mean
+                ),
+            )?;
+        }
+        let (missed, places) = (exact.missed.len(), exact.false_edges.places.len());
+        if missed == 0 && places == 0 {
+            lines.more("none missed and none false, at any phase of the nominal tick")?;
+        } else if missed > SHOWN || places > SHOWN {
+            lines.more(&format!(
+                "in all {missed} missed at some phase, {places} places with false edges; --json lists them"
+            ))?;
+        }
+        if let Some(drawn) = &run.measured.drawn {
+            lines.more(&format!(
+                "sampled, not proved: {} passes with tolerance, jitter and lost ticks from seed {}; {} of them unfaithful",
+                drawn.draws.count, drawn.draws.seed, drawn.unfaithful
+            ))?;
+        }
+        Ok(())
+    }
+
+    /// The slowest make as a timing diagram, where it fits one.
+    fn slowest(&self, lines: &mut Lines<'_>, run: &Run) -> io::Result<()> {
+        let Some(latency) = &run.measured.nominal.make.latency else { return Ok(()) };
+        let one = &self.observed[run.recording];
+        let sampler = SampleClock::new(run.clock).phase_units(latency.slowest.phase.from);
+        let shown = with_law!(&self.logic, law => around(law, &sampler, one, latency.slowest.at_ns));
+        lines.plain(&format!(
+            "\nslowest make, at {}, one column a tick:\n{}",
+            words::about(latency.slowest.at_ns),
+            TimingDiagram(&shown)
+        ))
+    }
+}
+
+/// Places listed on the screen.
+const SHOWN: usize = 5;
+
+/// Columns before the change and in all.
+const BEFORE: u64 = 4;
+const COLUMNS: u64 = 60;
+
+/// What a law makes of the samples around an instant.
+fn around<L: Law>(law: &L, sampler: &SampleClock, one: &Observed, at_ns: u64) -> Witness {
+    let trace = &one.recording.trace;
+    let (period, phase) = (sampler.period(), u128::from(sampler.phase()));
+    let step = u128::from(period.units());
+    let change_tick = (period.to_units(at_ns - trace.start_ns()).saturating_sub(phase)).div_ceil(step) as u64;
+    let first = change_tick.saturating_sub(BEFORE);
+    let mut state = law.rest(trace.initial());
+    let mut shown = Witness { start: trace.initial(), ticks: Vec::new(), loop_from: None };
+    for stretch in sampler.train(trace).stretches() {
+        for tick in stretch.first_tick..stretch.first_tick + stretch.ticks {
+            if tick >= first + COLUMNS {
+                return shown;
+            }
+            let settled = is_settled(law, &state, stretch.position);
+            if settled && tick < first {
+                // Nothing will change until the columns or the end of the stretch.
+                if stretch.first_tick + stretch.ticks <= first {
+                    break;
+                }
+                continue;
+            }
+            let _edge: Option<Change> = law.step(&mut state, stretch.position);
+            if tick >= first {
+                let instant = phase + u128::from(tick) * step;
+                let instant_ns = trace.start_ns() + (instant / u128::from(period.units_per_ns())) as u64;
+                let before = one.truth.partition_point(|change| change.at_ns <= instant_ns);
+                let contact = if before == 0 { trace.initial() } else { one.truth[before - 1].change.to() };
+                let within = |burst: &Burst| (burst.first_ns..burst.last_ns).contains(&instant_ns);
+                let disturbed = one.segmentation.disturbances.iter().any(|found| within(&found.burst));
+                shown.ticks.push(WitnessTick {
+                    contact,
+                    sample: stretch.position,
+                    output: law.output(&state),
+                    bouncing: !disturbed,
+                    disturbed,
+                });
+            }
+        }
+    }
+    shown
 }

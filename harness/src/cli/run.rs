@@ -8,7 +8,10 @@ use clap::error::ErrorKind;
 use clap::{CommandFactory, Parser, Subcommand};
 
 use super::session::to_stdout;
-use super::{Answer, Failure, GlobalOptions, Session, StudyArguments};
+use super::{
+    Answer, CharacteriseArguments, ChooseArguments, EmitArguments, Failure, GlobalOptions, ProveArguments,
+    ReplayArguments, Session, StudyArguments,
+};
 
 /// The workbench for mechanical contacts: from a recording to a proven debouncer.
 #[derive(Parser, Debug)]
@@ -29,18 +32,33 @@ pub(super) struct CommandLine {
 #[derive(Subcommand, Debug)]
 enum Command {
     Study(StudyArguments),
+    Characterise(CharacteriseArguments),
+    Choose(ChooseArguments),
+    Prove(ProveArguments),
+    Replay(ReplayArguments),
+    Emit(EmitArguments),
 }
 
 impl Command {
     const fn name(&self) -> &'static str {
         match self {
             Self::Study(_) => "study",
+            Self::Characterise(_) => "characterise",
+            Self::Choose(_) => "choose",
+            Self::Prove(_) => "prove",
+            Self::Replay(_) => "replay",
+            Self::Emit(_) => "emit",
         }
     }
 
     fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         match self {
             Self::Study(arguments) => arguments.run(session),
+            Self::Characterise(arguments) => arguments.run(session),
+            Self::Choose(arguments) => arguments.run(session),
+            Self::Prove(arguments) => arguments.run(session),
+            Self::Replay(arguments) => arguments.run(session),
+            Self::Emit(arguments) => arguments.run(session),
         }
     }
 }

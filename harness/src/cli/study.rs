@@ -5,10 +5,10 @@ use std::path::PathBuf;
 use clap::Args;
 
 use super::input::Input;
+use super::preference::PreferenceOption;
 use super::recordings::RequirementInput;
 use super::study_answer::StudyAnswer;
 use super::{Answer, Failure, OutputFolder, Session};
-use crate::choose::Preference;
 use crate::emit::{module_name, rust_module};
 use crate::problem::Problem;
 use crate::report::json;
@@ -27,6 +27,9 @@ pub struct StudyArguments {
     /// Recordings and requirement.
     #[command(flatten)]
     pub input: RequirementInput,
+    /// What counts most.
+    #[command(flatten)]
+    pub preference: PreferenceOption,
     /// Folder for the results; made if it is not there
     #[arg(long, short, value_name = "FOLDER")]
     pub output: Option<PathBuf>,
@@ -52,7 +55,7 @@ impl StudyArguments {
         let folder = self.output.as_ref().map(OutputFolder::prepare).transpose()?;
         let ticks = input.requirement.clock.ticks.as_ref().map_or(0, |ticks| ticks.value.periods().len());
         let bar = session.progress("judging candidates", ticks as u64);
-        let study = Study::of(input.observed, &input.requirement, Preference::default(), |_| bar.inc(1))
+        let study = Study::of(input.observed, &input.requirement, self.preference.into(), |_| bar.inc(1))
             .map_err(failure)?;
         bar.finish_and_clear();
         let written = match folder {
@@ -63,7 +66,7 @@ impl StudyArguments {
     }
 }
 
-fn failure(error: StudyError) -> Failure {
+pub(super) fn failure(error: StudyError) -> Failure {
     match error {
         StudyError::Requirement(problems) => problems.into(),
         other => Problem::new(other.to_string()).into(),

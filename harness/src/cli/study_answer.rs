@@ -4,16 +4,17 @@
 use std::io::{self, Write};
 use std::path::PathBuf;
 
-use debounce_core::{Change, PerChange};
+use debounce_core::PerChange;
 use serde_json::{Value, json};
 
-use super::lines::{Lines, strong};
+use super::lines::{Lines, grouped, strong};
+use super::recorded::{claims, recorded};
 use super::{Answer, Outcome};
 use crate::choose::{Candidate, Judgement};
 use crate::prove::Recovery;
 use crate::quantity::TickPeriod;
 use crate::report::{json, words};
-use crate::study::{Claim, Guarantees, Observed, Study};
+use crate::study::{Guarantees, Study};
 
 /// A finished study and the files it wrote.
 pub(super) struct StudyAnswer {
@@ -35,11 +36,11 @@ impl Answer for StudyAnswer {
         for one in &study.observed {
             recorded(&mut lines, one)?;
         }
-        self.claims(&mut lines)?;
+        claims(&mut lines, &study.observed, &study.resolved)?;
         lines.item("Envelope", &format!("the contact {}", words::envelope(&study.physical).join("; ")))?;
         match (study.ranking.recommended(), &study.guarantees) {
             (Some(best), Some(found)) => self.recommended(&mut lines, best, found)?,
-            _ => self.nothing_holds(&mut lines)?,
+            _ => nothing_holds(&mut lines, study)?,
         }
         self.conformance(&mut lines)?;
         if let Some(caution) = study.resolved.caution() {
@@ -56,65 +57,7 @@ impl Answer for StudyAnswer {
     }
 }
 
-fn recorded(lines: &mut Lines<'_>, one: &Observed) -> io::Result<()> {
-    let figures = &one.figures;
-    let span = one.recording.trace.end_ns() - one.recording.trace.start_ns();
-    let disturbances = figures.disturbances.open.count + figures.disturbances.closed.count;
-    lines.item(
-        "Recorded",
-        &format!(
-            "{}, channel {}, {}: {}, {}, {}; {} in doubt",
-            one.name,
-            one.recording.channel,
-            words::about(span),
-            words::count(figures.changes.make.count, "make"),
-            words::count(figures.changes.break_.count, "break"),
-            words::count(disturbances, "disturbance"),
-            one.segmentation.ambiguous(),
-        ),
-    )?;
-    for change in [Change::Make, Change::Break] {
-        if let Some(bounce) = figures.changes.of(change).bounce_ns {
-            lines.more(&format!(
-                "bounce at a {:<6} median {:>8}, 95 % {:>8}, longest {:>8}",
-                words::change(change),
-                words::about(bounce.median),
-                words::about(bounce.p95),
-                words::about(bounce.max)
-            ))?;
-        }
-    }
-    Ok(())
-}
-
 impl StudyAnswer {
-    /// What the recorded operations allow to claim of those to come.
-    fn claims(&self, lines: &mut Lines<'_>) -> io::Result<()> {
-        let resolved = &self.study.resolved;
-        let (confidence, coverage) = (resolved.confidence.value, resolved.coverage.value);
-        for change in [Change::Make, Change::Break] {
-            let claim = Claim::of(&self.study.observed, change, confidence, coverage);
-            let Some(claim) = claim.map_err(io::Error::other)? else { continue };
-            let enough = if claim.operations >= claim.needed {
-                String::new()
-            } else {
-                format!("; {} are needed for {coverage}", claim.needed)
-            };
-            // Rounded down to a tenth of a percent, which understates what is covered.
-            let covered = (claim.covered * 1000.0).floor() / 10.0;
-            lines.item(
-                "Claim",
-                &format!(
-                    "with {confidence} confidence {covered:.1} % of {}s bounce no longer than {} ({} recorded{enough}), were they independent",
-                    words::change(change),
-                    words::at_most(claim.longest_ns),
-                    claim.operations,
-                ),
-            )?;
-        }
-        Ok(())
-    }
-
     fn recommended(&self, lines: &mut Lines<'_>, best: &Candidate, found: &Guarantees) -> io::Result<()> {
         let tick = self.study.tick(best);
         lines.item("Recommended", &strong(&format!("{} at a tick of {tick}", best.parameters)))?;
@@ -163,31 +106,6 @@ impl StudyAnswer {
             "Cost",
             &format!("{ram} bytes of RAM an input, {:.0} ticks a second", tick.ticks_per_second()),
         )
-    }
-
-    fn nothing_holds(&self, lines: &mut Lines<'_>) -> io::Result<()> {
-        let ranking = &self.study.ranking;
-        lines.item(
-            "Recommended",
-            &strong(&format!("nothing: none of {} candidates holds", ranking.candidates.len())),
-        )?;
-        let Some(nearest) = ranking.candidates.first() else {
-            return lines
-                .more("no tick period left anything to try; allow a longer latency or a shorter tick");
-        };
-        lines.more(&format!("nearest: {} at a tick of {}", nearest.parameters, self.study.tick(nearest)))?;
-        for shortfall in &nearest.shortfalls {
-            lines.more(&format!("  but {}", words::shortfall(shortfall)))?;
-        }
-        if let Judgement::Unproven(why) = &nearest.judgement {
-            lines.more(&format!("  {why}"))?;
-        }
-        let PerChange { make, break_ } = ranking.physical_limit_ns;
-        lines.more(&format!(
-            "no logic at any tick can promise less than {} at a make or {} at a break in this envelope",
-            words::at_most(make),
-            words::at_most(break_)
-        ))
     }
 
     fn conformance(&self, lines: &mut Lines<'_>) -> io::Result<()> {
@@ -261,15 +179,27 @@ fn beyond(found: &Guarantees, tick: TickPeriod) -> Option<String> {
     ))
 }
 
-/// A number with its thousands apart.
-fn grouped(number: u64) -> String {
-    let digits = number.to_string();
-    let mut text = String::new();
-    for (index, digit) in digits.chars().enumerate() {
-        if index > 0 && (digits.len() - index).is_multiple_of(3) {
-            text.push(' ');
-        }
-        text.push(digit);
+/// That nothing holds, what comes nearest, and what nothing could beat.
+pub(super) fn nothing_holds(lines: &mut Lines<'_>, study: &Study) -> io::Result<()> {
+    let ranking = &study.ranking;
+    lines.item(
+        "Recommended",
+        &strong(&format!("nothing: none of {} candidates holds", ranking.candidates.len())),
+    )?;
+    let Some(nearest) = ranking.candidates.first() else {
+        return lines.more("no tick period left anything to try; allow a longer latency or a shorter tick");
+    };
+    lines.more(&format!("nearest: {} at a tick of {}", nearest.parameters, study.tick(nearest)))?;
+    for shortfall in &nearest.shortfalls {
+        lines.more(&format!("  but {}", words::shortfall(shortfall)))?;
     }
-    text
+    if let Judgement::Unproven(why) = &nearest.judgement {
+        lines.more(&format!("  {why}"))?;
+    }
+    let PerChange { make, break_ } = ranking.physical_limit_ns;
+    lines.more(&format!(
+        "no logic at any tick can promise less than {} at a make or {} at a break in this envelope",
+        words::at_most(make),
+        words::at_most(break_)
+    ))
 }

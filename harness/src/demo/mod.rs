@@ -9,6 +9,9 @@ pub mod vent_button;
 /// The recording as a file: a VCD with one channel, `1` is closed. Made by [`vent_button::file`].
 pub const RECORDING: &[u8] = include_bytes!("vent_button.vcd");
 
+/// The sample period of the recorder in the story; a VCD does not carry it.
+pub const RESOLUTION_NS: u64 = 1_000;
+
 /// What the messages call the recording.
 pub const RECORDING_NAME: &str = "vent_button.vcd (built-in, invented)";
 

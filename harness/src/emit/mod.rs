@@ -4,6 +4,7 @@ mod identifier;
 mod law_code;
 mod layout;
 mod rust;
+pub mod table;
 
 #[cfg(test)]
 mod tests;

@@ -3,7 +3,7 @@
 use debounce_core::{Envelope, Position};
 use rustc_hash::FxHashMap;
 
-use super::ProveError;
+use super::{Contract, ProveError};
 
 /// What the environment remembers between two ticks.
 ///
@@ -12,6 +12,8 @@ use super::ProveError;
 pub struct EnvironmentState {
     /// Where the contact is.
     pub contact: Position,
+    /// Where the contract wants the output once everything is answered; to follow is to want the contact.
+    pub wanted: Position,
     /// Samples since the contact changed, up to the dwell.
     pub held: u32,
     /// Samples that may still bounce.
@@ -54,7 +56,7 @@ impl Branch {
         (self.0 & Self::SAMPLE) as usize
     }
 
-    /// 1 when the contact changed just before the sample.
+    /// 1 when just before the sample the contact changed in a way that the contract wants answered.
     #[inline]
     pub fn changes(self) -> u32 {
         (self.0 >> 1) & 1
@@ -85,7 +87,7 @@ impl Branch {
 /// never fired would be vacuous.
 #[derive(Clone, Copy, PartialEq, Eq, Debug, Default)]
 pub struct Fired {
-    /// Changes of the contact.
+    /// Changes of the contact that the contract wants answered.
     pub changes: u64,
     /// Samples inside a bounce.
     pub bouncing: u64,
@@ -129,7 +131,15 @@ impl Environment {
     /// # Errors
     /// When a dwell or quiet comes out at 0 samples, or the automaton is larger than 2^27 states.
     pub fn of(envelope: &Envelope) -> Result<Self, ProveError> {
-        let rules = Rules::of(envelope)?;
+        Self::under(envelope, Contract::Follow)
+    }
+
+    /// As [`of`](Self::of), and what the output owes under `contract`.
+    ///
+    /// # Errors
+    /// As [`of`](Self::of).
+    pub fn under(envelope: &Envelope, contract: Contract) -> Result<Self, ProveError> {
+        let rules = Rules::of(envelope, contract)?;
         let mut enumeration = Enumeration::default();
         let starts = Position::BOTH.map(|contact| enumeration.number(rules.settled(contact)));
         let mut branches = Vec::new();
@@ -160,7 +170,7 @@ impl Environment {
     /// # Errors
     /// When a dwell or quiet comes out at 0 samples.
     pub fn check(envelope: &Envelope) -> Result<(), ProveError> {
-        Rules::of(envelope).map(|_| ())
+        Rules::of(envelope, Contract::Follow).map(|_| ())
     }
 
     /// Number of states.
@@ -223,10 +233,11 @@ impl Enumeration {
 /// The envelope's rules, applied to one state at a time.
 struct Rules {
     envelope: Envelope,
+    contract: Contract,
 }
 
 impl Rules {
-    fn of(envelope: &Envelope) -> Result<Self, ProveError> {
+    fn of(envelope: &Envelope, contract: Contract) -> Result<Self, ProveError> {
         let envelope = envelope.delivered();
         for position in Position::BOTH {
             if envelope.dwell.at(position) == 0 {
@@ -236,12 +247,13 @@ impl Rules {
         if envelope.quiet == 0 && (envelope.glitch.open > 0 || envelope.glitch.closed > 0) {
             return Err(ProveError::NoQuiet);
         }
-        Ok(Self { envelope })
+        Ok(Self { envelope, contract })
     }
 
     fn settled(&self, contact: Position) -> EnvironmentState {
         EnvironmentState {
             contact,
+            wanted: contact,
             held: self.envelope.dwell.at(contact),
             bounce_left: 0,
             window_left: 0,
@@ -264,15 +276,17 @@ impl Rules {
         self.with_position(state, 0, &mut found);
         if state.held >= self.envelope.dwell.at(state.contact) {
             let contact = state.contact.opposite();
+            let wanted = self.contract.wanted_after(contact, state.wanted);
             let changed = EnvironmentState {
                 contact,
+                wanted,
                 held: 0,
                 // A bounce that is cut short by the next change may still ring on under it.
                 bounce_left: state.bounce_left.max(self.envelope.bounce.at(contact.reached_by())),
                 calm_served: 0,
                 ..state
             };
-            self.with_position(changed, Branch::CHANGED, &mut found);
+            self.with_position(changed, if wanted == state.wanted { 0 } else { Branch::CHANGED }, &mut found);
         }
     }
 

@@ -34,11 +34,14 @@
 //! # Ok::<(), harness::prove::ProveError>(())
 //! ```
 
+mod contract;
 mod environment;
 mod explore;
 mod frontier;
 mod immunity;
 mod latency;
+mod limit;
+pub mod observe;
 mod product;
 mod recovery;
 mod tabulate;
@@ -49,9 +52,11 @@ use core::hash::Hash;
 
 use debounce_core::{Bounds, Change, Clause, Envelope, Latency, Law, PerChange, Position};
 
+pub use contract::Contract;
 pub use environment::{Branch, Environment, EnvironmentState, Fired};
 pub use frontier::shortest_operations;
 pub use immunity::{immunity, widest_lone_disturbance};
+pub use limit::{LimitAnswer, NoLogic, Solution, limit, promptest_logic, solve_limit};
 pub use recovery::{Recovery, recovery_from_any_state, recovery_from_short_operations};
 pub use tabulate::{Entry, LawTable};
 pub use witness::{Witness, WitnessTick};
@@ -128,6 +133,45 @@ pub enum ProveError {
         /// The sample.
         sample: Position,
     },
+    /// A table has no states.
+    #[error("the table is no law: it has no states")]
+    NoStates,
+    /// A table has not one output for each state.
+    #[error("the table is no law: it has {states} states but {outputs} outputs")]
+    OutputsMismatch {
+        /// Number of states.
+        states: usize,
+        /// Number of outputs.
+        outputs: usize,
+    },
+    /// A step of a table leads to a state that is not there.
+    #[error(
+        "the table is no law: from state {state} {} sample leads to state {target}; the states are 0 to {}",
+        a_word(*.sample), .states - 1
+    )]
+    NoSuchState {
+        /// The state stepped from.
+        state: usize,
+        /// The sample.
+        sample: Position,
+        /// Where it should lead.
+        target: u32,
+        /// Number of states.
+        states: usize,
+    },
+    /// A table rests in a state that is not there.
+    #[error(
+        "the table is no law: it rests {} in state {target}; the states are 0 to {}",
+        word(*.position), .states - 1
+    )]
+    NoSuchRest {
+        /// Where it should rest.
+        position: Position,
+        /// The state named.
+        target: u32,
+        /// Number of states.
+        states: usize,
+    },
     /// The law has too many states.
     #[error("unfinished: the law has more than {} states ({states} found so far)", LawTable::MOST_STATES)]
     LawTooLarge {
@@ -167,11 +211,20 @@ fn word(position: Position) -> &'static str {
     }
 }
 
+fn a_word(position: Position) -> &'static str {
+    match position {
+        Position::Open => "an open",
+        Position::Closed => "a closed",
+    }
+}
+
 /// A finished exploration.
 #[derive(Clone, PartialEq, Debug)]
 pub struct Proof {
     /// The envelope, as it was given.
     pub envelope: Envelope,
+    /// What was promised.
+    pub contract: Contract,
     /// What came out.
     pub outcome: Outcome,
     /// States of the law.
@@ -261,8 +314,21 @@ where
 /// # Errors
 /// As [`prove`].
 pub fn prove_within(logic: &LawTable, envelope: &Envelope, limits: &Limits) -> Result<Proof, ProveError> {
-    let environment = match Environment::of(envelope) {
-        Err(ProveError::DwellUnseen { position }) => return Ok(unseen(logic, envelope, position)),
+    prove_contract(logic, envelope, Contract::Follow, limits)
+}
+
+/// As [`prove_within`], against either contract.
+///
+/// # Errors
+/// As [`prove`].
+pub fn prove_contract(
+    logic: &LawTable,
+    envelope: &Envelope,
+    contract: Contract,
+    limits: &Limits,
+) -> Result<Proof, ProveError> {
+    let environment = match Environment::under(envelope, contract) {
+        Err(ProveError::DwellUnseen { position }) => return Ok(unseen(logic, envelope, contract, position)),
         other => other?,
     };
     let product = Product { environment: &environment, logic };
@@ -277,6 +343,7 @@ pub fn prove_within(logic: &LawTable, envelope: &Envelope, limits: &Limits) -> R
     };
     Ok(Proof {
         envelope: *envelope,
+        contract,
         outcome,
         law_states: logic.len(),
         environment_states: environment.len(),
@@ -285,12 +352,38 @@ pub fn prove_within(logic: &LawTable, envelope: &Envelope, limits: &Limits) -> R
     })
 }
 
+/// Calls `visit` with every state that `law` and `envelope` can be in together: the envelope's, the law's, and how many
+/// changes are unreported. For an invariant of one's own. Returns how many there are; where the law is refuted, those
+/// up to the samples that refute it.
+///
+/// # Errors
+/// As [`prove`]; and where a dwell falls between two samples.
+pub fn each_reachable_state<L: Law>(
+    law: &L,
+    envelope: &Envelope,
+    limits: &Limits,
+    mut visit: impl FnMut(&EnvironmentState, &L::State, u32),
+) -> Result<u64, ProveError>
+where
+    L::State: Hash,
+{
+    let environment = Environment::of(envelope)?;
+    let (logic, states) = LawTable::with_states(law)?;
+    let product = Product { environment: &environment, logic: &logic };
+    let explored = explore::explore(&product, limits)?;
+    for node in explored.visited.nodes() {
+        visit(environment.state(node.environment()), &states[node.logic()], product.pending(node));
+    }
+    Ok(explored.states)
+}
+
 /// The verdict where a dwell may fall between two samples: a miss, whatever the logic.
-fn unseen(logic: &LawTable, envelope: &Envelope, position: Position) -> Proof {
+fn unseen(logic: &LawTable, envelope: &Envelope, contract: Contract, position: Position) -> Proof {
     let outcome =
         Outcome::Refuted { clause: Clause::DwellUnseen, witness: Witness::between_samples(position) };
     Proof {
         envelope: *envelope,
+        contract,
         outcome,
         law_states: logic.len(),
         environment_states: 0,

@@ -7,8 +7,8 @@ use super::tabulate::LawTable;
 
 /// One state of the product: environment, logic, and how far the reports lag behind the contact.
 ///
-/// A change of the contact is *pending* until its edge is reported. Output and contact differ exactly when an
-/// odd number is pending, so one bit more, `late`, tells 0 or 1 from 2 or 3. A logic that falls four changes
+/// A change of the contact is *pending* until its edge is reported. The output differs from the wanted one (under
+/// [`Contract::Follow`](super::Contract::Follow), from the contact) exactly when an odd number is pending, so one bit more, `late`, tells 0 or 1 from 2 or 3. A logic that falls four changes
 /// behind has lost two whole operations out of sight and counts as missing them.
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
 pub(super) struct Node(u64);
@@ -54,15 +54,16 @@ impl Product<'_> {
         Position::BOTH.map(|p| Node::new(self.environment.start(p), self.logic.rest(p), false))
     }
 
+    /// Where the contract wants the output once everything pending is reported.
     #[inline]
-    pub(super) fn contact(&self, node: Node) -> Position {
-        self.environment.state(node.environment()).contact
+    pub(super) fn wanted(&self, node: Node) -> Position {
+        self.environment.state(node.environment()).wanted
     }
 
     /// How many changes of the contact are unreported.
     #[inline]
     pub(super) fn pending(&self, node: Node) -> u32 {
-        let differs = self.logic.output(node.logic()) != self.contact(node);
+        let differs = self.logic.output(node.logic()) != self.wanted(node);
         u32::from(differs) + 2 * u32::from(node.late())
     }
 
@@ -92,9 +93,9 @@ impl Product<'_> {
         Step::To(Node::new(branch.target(), entry.next(), after > 1), entry.edges() != 0)
     }
 
-    /// The change that `branch` makes, if it makes one.
+    /// The change of the output that `branch` asks for, if it asks for one.
     #[inline]
     pub(super) fn change(&self, branch: Branch) -> Option<Change> {
-        (branch.changes() != 0).then(|| self.environment.state(branch.target()).contact.reached_by())
+        (branch.changes() != 0).then(|| self.environment.state(branch.target()).wanted.reached_by())
     }
 }

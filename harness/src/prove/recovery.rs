@@ -169,7 +169,7 @@ impl Graph {
         let wrong: Vec<bool> = self
             .nodes
             .iter()
-            .map(|&node| product.logic.output(node.logic()) != product.contact(node))
+            .map(|&node| product.logic.output(node.logic()) != product.wanted(node))
             .collect();
         let doomed = self.doomed(&wrong);
         // Only what an entry leads to counts.

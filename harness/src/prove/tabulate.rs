@@ -118,6 +118,65 @@ impl LawTable {
         Ok((Self { entries, outputs, settled, rests }, states))
     }
 
+    /// A table from its parts: for each state where an open and a closed sample lead, and the output; and the
+    /// states settled at open and at closed. An edge is reported exactly where the output changes.
+    ///
+    /// Every state is kept, also one that no samples lead to from rest.
+    ///
+    /// # Errors
+    /// When there are not as many outputs as states, a state named does not exist, an obligation at rest is
+    /// broken, or there are more than [`MOST_STATES`](Self::MOST_STATES) states.
+    pub fn from_parts(
+        next: &[[u32; 2]],
+        outputs: Vec<Position>,
+        rests: [u32; 2],
+    ) -> Result<Self, ProveError> {
+        let states = next.len();
+        if states == 0 {
+            return Err(ProveError::NoStates);
+        }
+        if states > Self::MOST_STATES {
+            return Err(ProveError::LawTooLarge { states });
+        }
+        if outputs.len() != states {
+            return Err(ProveError::OutputsMismatch { states, outputs: outputs.len() });
+        }
+        let checked = |from: Option<usize>, sample: Position, target: u32| {
+            // Usize is at least as wide as u32 on every host.
+            if (target as usize) < states {
+                return Ok(target as usize);
+            }
+            Err(match from {
+                Some(state) => ProveError::NoSuchState { state, sample, target, states },
+                None => ProveError::NoSuchRest { position: sample, target, states },
+            })
+        };
+        for position in Position::BOTH {
+            let rest = checked(None, position, rests[position as usize])?;
+            if outputs[rest] != position {
+                return Err(ProveError::RestOutput { position });
+            }
+            if next[rest][position as usize] as usize != rest {
+                return Err(ProveError::RestMoves { position });
+            }
+        }
+        let mut entries = Vec::with_capacity(states * 2);
+        let mut settled = Vec::with_capacity(states);
+        for (state, targets) in next.iter().enumerate() {
+            let mut mask = 0;
+            for sample in Position::BOTH {
+                let target = targets[sample as usize];
+                let edge = outputs[checked(Some(state), sample, target)?] != outputs[state];
+                if target as usize == state {
+                    mask |= 1 << sample as u8;
+                }
+                entries.push(Entry(target | if edge { Entry::EDGE } else { 0 }));
+            }
+            settled.push(mask);
+        }
+        Ok(Self { entries, outputs, settled, rests })
+    }
+
     /// Number of states.
     #[must_use]
     pub fn len(&self) -> usize {
@@ -155,5 +214,66 @@ impl LawTable {
     #[inline]
     pub fn is_settled(&self, state: usize, position: Position) -> bool {
         self.settled[state] >> position as u8 & 1 != 0
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use debounce_core::{Position, ShiftRegister};
+
+    use super::{LawTable, ProveError};
+
+    const OPEN: Position = Position::Open;
+    const CLOSED: Position = Position::Closed;
+
+    #[track_caller]
+    fn refused(next: &[[u32; 2]], outputs: &[Position], rests: [u32; 2], message: &str) {
+        let error = LawTable::from_parts(next, outputs.to_vec(), rests).expect_err("a bad table");
+        assert_eq!(error.to_string(), message);
+    }
+
+    #[test]
+    fn table_parts_of_a_law_make_the_same_table() {
+        let law = LawTable::of(&ShiftRegister::new(3)).expect("a law");
+        let next: Vec<[u32; 2]> =
+            (0..law.len()).map(|state| [0, 1].map(|sample| law.entry(state, sample).next() as u32)).collect();
+        let outputs: Vec<Position> = (0..law.len()).map(|state| law.output(state)).collect();
+        let rests = Position::BOTH.map(|position| law.rest(position) as u32);
+        let again = LawTable::from_parts(&next, outputs, rests).expect("the same law");
+        assert_eq!(again.entries, law.entries);
+        assert_eq!(again.outputs, law.outputs);
+        assert_eq!(again.settled, law.settled);
+        assert_eq!(again.rests, law.rests);
+    }
+
+    #[test]
+    fn table_parts_that_are_no_law_are_refused() {
+        assert!(LawTable::from_parts(&[[0, 1], [0, 1]], vec![OPEN, CLOSED], [0, 1]).is_ok());
+        refused(&[[0, 1], [0, 1]], &[OPEN], [0, 1], "the table is no law: it has 2 states but 1 outputs");
+        refused(
+            &[[0, 1], [2, 1]],
+            &[OPEN, CLOSED],
+            [0, 1],
+            "the table is no law: from state 1 an open sample leads to state 2; the states are 0 to 1",
+        );
+        refused(
+            &[[0, 1], [0, 1]],
+            &[OPEN, CLOSED],
+            [0, 2],
+            "the table is no law: it rests closed in state 2; the states are 0 to 1",
+        );
+        refused(&[], &[], [0, 0], "the table is no law: it has no states");
+        refused(
+            &[[0, 1], [0, 1]],
+            &[OPEN, CLOSED],
+            [1, 0],
+            &ProveError::RestOutput { position: OPEN }.to_string(),
+        );
+        refused(
+            &[[0, 1], [0, 0]],
+            &[OPEN, CLOSED],
+            [0, 1],
+            &ProveError::RestMoves { position: CLOSED }.to_string(),
+        );
     }
 }

@@ -33,7 +33,9 @@ pub struct Witness {
 impl Witness {
     /// A witness from a path through a product.
     pub(super) fn of(product: &Product<'_>, path: &[(Node, usize)], loop_from: Option<usize>) -> Self {
-        let start = path.first().map_or(Position::Open, |&(node, _)| product.contact(node));
+        let start = path
+            .first()
+            .map_or(Position::Open, |&(node, _)| product.environment.state(node.environment()).contact);
         let ticks = path
             .iter()
             .map(|&(node, at)| {

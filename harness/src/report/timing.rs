@@ -64,18 +64,13 @@ fn lane(ticks: &[WitnessTick], symbol: impl Fn(&WitnessTick) -> char) -> String 
     ticks.iter().map(symbol).collect()
 }
 
-/// The numbers of the first tick and of every tenth, each ending at its column where it has room.
+/// The numbers of the first tick and of every tenth, each beginning at its column where it has room.
 fn ruler(first: usize, length: usize) -> String {
-    let mut text = String::new();
-    for tick in first..first + length {
-        let number = tick.to_string();
+    let mut text = first.to_string();
+    for tick in (first + 1..first + length).filter(|tick| tick.is_multiple_of(10)) {
         let column = tick - first;
-        if tick == first {
-            text.push_str(&number);
-        } else if tick.is_multiple_of(10) && column + 1 >= text.len() + 1 + number.len() {
-            let width = column + 1;
-            text = format!("{text:<0$}", width - number.len());
-            text.push_str(&number);
+        if column > text.len() {
+            text = format!("{text:<column$}{tick}");
         }
     }
     text

@@ -197,8 +197,7 @@ impl ClockPlan {
         }
         for (at, loss) in self.losses.iter().enumerate() {
             let shorter = less(loss.ticks, 1).map(|ticks| Loss { ticks, ..*loss });
-            let sooner = loss.begin.simpler().into_iter().map(|begin| Loss { begin, ..*loss });
-            found.extend(shorter.chain(sooner).map(|loss| {
+            found.extend(shorter.map(|loss| {
                 let mut plan = self.clone();
                 plan.losses[at] = loss;
                 plan

@@ -2,6 +2,8 @@
 
 use rand::{Rng, RngExt};
 
+use super::shrink::less;
+
 /// Where something begins that has a place of its own.
 #[derive(Clone, Copy, PartialEq, Eq, Debug)]
 pub(super) enum Begin {
@@ -11,6 +13,8 @@ pub(super) enum Begin {
     Later(u64),
     /// So much after a change of the contact, or before it; at the earliest where that is not allowed.
     NearChange(i64),
+    /// From here on, counted from the start: what the others come to once a case has been built.
+    At(u64),
 }
 
 impl Begin {
@@ -31,6 +35,7 @@ impl Begin {
         match self {
             Self::Earliest => from,
             Self::Later(by) => from.saturating_add(by),
+            Self::At(at) => from.max(at),
             Self::NearChange(by) => {
                 let near = changes.iter().filter_map(|&change| change.checked_add_signed(by));
                 near.into_iter().find(|&at| at >= from).unwrap_or(from)
@@ -38,23 +43,25 @@ impl Begin {
         }
     }
 
+    /// Sooner ones.
     pub(super) fn simpler(self) -> Vec<Self> {
+        less(self.weight(), 0).map(Self::At).collect()
+    }
+
+    /// The same moment when the stretch of `length` from `from` on is taken out before it.
+    pub(super) fn without(self, from: u64, length: u64) -> Self {
         match self {
-            Self::Earliest => Vec::new(),
-            Self::Later(by) => {
-                let shorter = super::shrink::less(by, 1).map(Self::Later);
-                [Self::Earliest].into_iter().chain(shorter).collect()
-            }
-            Self::NearChange(_) => vec![Self::Earliest],
+            Self::At(at) if at >= from => Self::At(at.saturating_sub(length).max(from)),
+            other => other,
         }
     }
 
     /// For the measure of a plan.
     pub(super) fn weight(self) -> u64 {
         match self {
-            Self::Earliest => 0,
-            Self::Later(by) => 1 + by,
-            Self::NearChange(_) => 1,
+            Self::At(at) => at,
+            // Only before the first build.
+            Self::Earliest | Self::Later(_) | Self::NearChange(_) => 0,
         }
     }
 }

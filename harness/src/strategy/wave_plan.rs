@@ -108,7 +108,16 @@ impl WavePlan {
         let tail = if rng.random_bool(0.75) { dwell + span } else { rng.random_range(1..=dwell.max(1)) };
         let clock = ClockPlan::draw(tick, holds.len(), rng);
         let lead = extra(rng, period, span);
-        Self { envelope: *e, tick: *tick, start, lead, holds, tail, disturbances, clock }
+        Self { envelope: *e, tick: *tick, start, lead, holds, tail, disturbances, clock }.pinned()
+    }
+
+    /// The same trace with every disturbance at its place, so that it stays there when something before it is taken
+    /// away.
+    fn pinned(mut self) -> Self {
+        let (changes, end) = self.changes();
+        let (_, begun) = self.disturbances(&changes, &self.bounces(&changes), end);
+        self.disturbances = begun;
+        self
     }
 
     /// The changes, and the end of the trace.
@@ -136,9 +145,15 @@ impl WavePlan {
         strikes.collect()
     }
 
-    fn disturbances(&self, changes: &[TruthChange], bounces: &[Strike], end: u64) -> Vec<Strike> {
+    fn disturbances(
+        &self,
+        changes: &[TruthChange],
+        bounces: &[Strike],
+        end: u64,
+    ) -> (Vec<Strike>, Vec<Disturbance>) {
         let near: Vec<u64> = changes.iter().map(|change| change.at_ns).collect();
         let mut strikes: Vec<Strike> = Vec::new();
+        let mut begun = Vec::new();
         for disturbance in &self.disturbances {
             let free_from = strikes.last().map_or(0, |last| last.until + self.envelope.quiet_ns);
             let wanted = disturbance.begin.place(free_from, &near);
@@ -146,10 +161,12 @@ impl WavePlan {
                 continue;
             };
             let width = disturbance.width.min(widest);
-            let pulses = disturbance.pulses.iter().filter_map(|pulse| pulse.cut(0, width)).collect();
+            let pulses: Vec<Pulse> =
+                disturbance.pulses.iter().filter_map(|pulse| pulse.cut(0, width)).collect();
+            begun.push(Disturbance { begin: Begin::At(at), width, pulses: pulses.clone() });
             strikes.push(Strike { from: at, until: at + width, pulses });
         }
-        strikes
+        (strikes, begun)
     }
 
     /// The first instant from `at` on at which a disturbance may begin, and how wide it may be.
@@ -251,6 +268,65 @@ impl WavePlan {
         (self.lead + self.tail + sum).saturating_add(self.clock.weight())
     }
 
+    /// From the change at the begin of a hold that is not the last to the next change.
+    fn length(&self, at: usize) -> u64 {
+        let contact = if at.is_multiple_of(2) { self.start.opposite() } else { self.start };
+        (self.envelope.dwell_ns.at(contact) + self.holds[at].extra).max(1)
+    }
+
+    /// Moves what begins after a stretch that is taken out.
+    fn take_out(&mut self, from: u64, length: u64) {
+        for disturbance in &mut self.disturbances {
+            disturbance.begin = disturbance.begin.without(from, length);
+        }
+    }
+
+    /// Fewer changes: without the head, without the end, without two neighbours.
+    fn with_fewer_changes(&self) -> Vec<Self> {
+        let changes: Vec<u64> = self.changes().0.iter().map(|change| change.at_ns).collect();
+        let mut found = Vec::new();
+        for (at, &change) in changes.iter().enumerate() {
+            found.push(self.with(|plan| {
+                plan.lead = if at + 1 == changes.len() { 0 } else { self.length(at) };
+                plan.holds.drain(..=at);
+                plan.start = if at.is_multiple_of(2) { self.start.opposite() } else { self.start };
+                plan.take_out(0, change);
+            }));
+        }
+        for at in 0..changes.len() {
+            found.push(self.with(|plan| {
+                plan.holds.truncate(at);
+                plan.tail = if at == 0 { 1 } else { self.length(at - 1) };
+            }));
+        }
+        found.extend((1..changes.len()).map(|last| {
+            self.with(|plan| {
+                plan.holds.drain(last - 1..=last);
+                plan.take_out(changes[last - 1], self.length(last - 1) + self.length(last));
+            })
+        }));
+        found
+    }
+
+    /// Shorter times between changes; what begins later either stays with what follows, or where it was.
+    fn shortened(&self) -> Vec<Self> {
+        let mut found: Vec<Self> =
+            less(self.tail, 1).map(|tail| self.with(|plan| plan.tail = tail)).collect();
+        for lead in less(self.lead, 0) {
+            let shorter = self.with(|plan| plan.lead = lead);
+            found.extend([shorter.with(|plan| plan.take_out(0, self.lead - lead)), shorter]);
+        }
+        let (changes, _) = self.changes();
+        for (at, hold) in self.holds.iter().enumerate() {
+            for extra in less(hold.extra, 0) {
+                let shorter = self.with(|plan| plan.holds[at].extra = extra);
+                let moved = shorter.with(|plan| plan.take_out(changes[at].at_ns, hold.extra - extra));
+                found.extend([moved, shorter]);
+            }
+        }
+        found
+    }
+
     fn with(&self, change: impl FnOnce(&mut Self)) -> Self {
         let mut plan = self.clone();
         change(&mut plan);
@@ -264,7 +340,7 @@ impl Plan for WavePlan {
     fn value(&self) -> Wave {
         let (truth, end) = self.changes();
         let bounces = self.bounces(&truth);
-        let disturbances = self.disturbances(&truth, &bounces, end);
+        let (disturbances, _) = self.disturbances(&truth, &bounces, end);
         let edges = self.edges(&truth, &bounces, &disturbances, end);
         let mut events: Vec<u64> = truth.iter().map(|change| change.at_ns).collect();
         events.extend(disturbances.iter().flat_map(|strike| [strike.from, strike.until]));
@@ -288,8 +364,7 @@ impl Plan for WavePlan {
     }
 
     fn simpler(&self) -> Vec<Self> {
-        let mut found = Vec::new();
-        found.extend(shorter(&self.holds).into_iter().map(|holds| self.with(|plan| plan.holds = holds)));
+        let mut found = self.with_fewer_changes();
         let fewer = shorter(&self.disturbances).into_iter();
         found.extend(fewer.map(|disturbances| self.with(|plan| plan.disturbances = disturbances)));
         for (at, hold) in self.holds.iter().enumerate() {
@@ -301,11 +376,7 @@ impl Plan for WavePlan {
             found.extend(calmer.map(|pulses| self.with(|plan| plan.disturbances[at].pulses = pulses)));
         }
         found.extend(self.clock.simpler().into_iter().map(|clock| self.with(|plan| plan.clock = clock)));
-        found.extend(less(self.tail, 1).map(|tail| self.with(|plan| plan.tail = tail)));
-        found.extend(less(self.lead, 0).map(|lead| self.with(|plan| plan.lead = lead)));
-        for (at, hold) in self.holds.iter().enumerate() {
-            found.extend(less(hold.extra, 0).map(|extra| self.with(|plan| plan.holds[at].extra = extra)));
-        }
+        found.extend(self.shortened());
         for (at, disturbance) in self.disturbances.iter().enumerate() {
             let narrower = less(disturbance.width, 1);
             found.extend(narrower.map(|width| self.with(|plan| plan.disturbances[at].width = width)));

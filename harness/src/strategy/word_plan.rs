@@ -106,7 +106,25 @@ impl WordPlan {
             })
             .collect();
         let tail = if rng.random_bool(0.75) { dwell + span } else { rng.random_range(1..=dwell.max(1)) };
-        Self { envelope: *e, start, lead: extra(rng, 4, span), holds, tail, disturbances, losses }
+        let lead = extra(rng, 4, span);
+        Self { envelope: *e, start, lead, holds, tail, disturbances, losses }.pinned()
+    }
+
+    /// The same word with everything at its place, so that it stays there when something before it is taken away.
+    fn pinned(mut self) -> Self {
+        let (_, disturbances, losses) = self.built();
+        self.disturbances = disturbances;
+        self.losses = losses;
+        self
+    }
+
+    /// The word, and the disturbances and losses that came about in it, with their places.
+    fn built(&self) -> (Word, Vec<Disturbance>, Vec<Loss>) {
+        let mut word = Word { start: self.start, ticks: self.contact_and_bounces() };
+        let changes: Vec<u64> = word.changes().iter().map(|&at| at as u64).collect();
+        let disturbances = self.disturb(&mut word.ticks, &changes);
+        let losses = self.lose(&mut word.ticks, &changes);
+        (word, disturbances, losses)
     }
 
     fn contact_and_bounces(&self) -> Vec<WordTick> {
@@ -136,8 +154,9 @@ impl WordPlan {
         ticks
     }
 
-    fn disturb(&self, ticks: &mut [WordTick], changes: &[u64]) {
+    fn disturb(&self, ticks: &mut [WordTick], changes: &[u64]) -> Vec<Disturbance> {
         let e = &self.envelope;
+        let mut begun = Vec::new();
         let (mut quiet, mut calm) = (e.quiet, e.calm);
         let mut waiting = self.disturbances.iter().filter(|disturbance| !disturbance.window.is_empty());
         let mut next = waiting.next();
@@ -162,6 +181,7 @@ impl WordPlan {
                 if width > 0 && quiet >= e.quiet && is_calm && at as u64 >= place {
                     if left == 0 {
                         window = &disturbance.window[..width.min(disturbance.window.len())];
+                        begun.push(Disturbance { begin: Begin::At(at as u64), window: window.to_vec() });
                         next = waiting.next();
                         left = put_off(next);
                     } else {
@@ -177,10 +197,12 @@ impl WordPlan {
                 calm = if tick.bouncing { calm } else { calm.saturating_add(1) };
             }
         }
+        begun
     }
 
-    fn lose(&self, ticks: &mut [WordTick], changes: &[u64]) {
+    fn lose(&self, ticks: &mut [WordTick], changes: &[u64]) -> Vec<Loss> {
         let e = &self.envelope;
+        let mut begun = Vec::new();
         let spacing = e.dwell.open.max(e.dwell.closed).max(e.quiet).max(e.calm).max(1);
         let mut from = 0;
         for loss in &self.losses {
@@ -192,7 +214,9 @@ impl WordPlan {
             ticks.iter_mut().skip(first as usize).take(length as usize).for_each(|tick| tick.lost = true);
             // No stretch of `spacing` ticks holds both the last tick of this run and the first of the next.
             from = first + length - 1 + u64::from(spacing);
+            begun.push(Loss { begin: Begin::At(first), ticks: length });
         }
+        begun
     }
 
     fn weight(&self) -> u64 {
@@ -202,33 +226,80 @@ impl WordPlan {
         self.lead + self.tail + holds.chain(disturbances).chain(losses).sum::<u64>()
     }
 
-    /// Shorter lengths together with one thing that begins as much sooner, so that it stays where it was in what
-    /// follows.
-    fn shortened_before(&self, found: &mut Vec<Self>) {
-        let mut shortened: Vec<(u64, Self)> = Vec::new();
-        shortened
-            .extend(less(self.lead, 0).map(|lead| (self.lead - lead, self.with(|plan| plan.lead = lead))));
+    /// Ticks of a hold that is not the last.
+    fn length(&self, at: usize) -> u64 {
+        let contact = if at.is_multiple_of(2) { self.start.opposite() } else { self.start };
+        u64::from(self.envelope.dwell.at(contact)) + self.holds[at].extra
+    }
+
+    /// The tick before which each change happens.
+    fn changes(&self) -> Vec<u64> {
+        let mut at = self.lead;
+        (0..self.holds.len())
+            .map(|index| {
+                let change = at;
+                at += self.length(index);
+                change
+            })
+            .collect()
+    }
+
+    /// Moves what begins after a stretch that is taken out.
+    fn take_out(&mut self, from: u64, length: u64) {
+        for disturbance in &mut self.disturbances {
+            disturbance.begin = disturbance.begin.without(from, length);
+        }
+        for loss in &mut self.losses {
+            loss.begin = loss.begin.without(from, length);
+        }
+    }
+
+    /// Fewer changes: without the head, without the end, without two neighbours.
+    fn with_fewer_changes(&self) -> Vec<Self> {
+        let changes = self.changes();
+        let mut found = Vec::new();
+        for (at, &change) in changes.iter().enumerate() {
+            found.push(self.with(|plan| {
+                plan.lead = if at + 1 == changes.len() { 0 } else { self.length(at) };
+                plan.holds.drain(..=at);
+                plan.start = if at.is_multiple_of(2) { self.start.opposite() } else { self.start };
+                plan.take_out(0, change);
+            }));
+        }
+        for at in 0..changes.len() {
+            found.push(self.with(|plan| {
+                plan.holds.truncate(at);
+                plan.tail = if at == 0 { 1 } else { self.length(at - 1) };
+            }));
+        }
+        found.extend((1..changes.len()).map(|last| {
+            self.with(|plan| {
+                plan.holds.drain(last - 1..=last);
+                plan.take_out(changes[last - 1], self.length(last - 1) + self.length(last));
+            })
+        }));
+        found
+    }
+
+    /// Shorter times between changes; what begins later either stays with what follows, or where it was.
+    fn shortened(&self) -> Vec<Self> {
+        let mut found: Vec<Self> =
+            less(self.tail, 1).map(|tail| self.with(|plan| plan.tail = tail)).collect();
+        for lead in less(self.lead, 0) {
+            let shorter = self.with(|plan| plan.lead = lead);
+            found.extend([shorter.with(|plan| plan.take_out(0, self.lead - lead)), shorter]);
+        }
+        let changes = self.changes();
         for (at, hold) in self.holds.iter().enumerate() {
-            let shorter = less(hold.extra, 0)
-                .map(|extra| (hold.extra - extra, self.with(|plan| plan.holds[at].extra = extra)));
-            shortened.extend(shorter);
-        }
-        for (by, plan) in shortened {
-            for at in 0..self.disturbances.len() {
-                if let Begin::Later(later) = self.disturbances[at].begin
-                    && later >= by
-                {
-                    found.push(plan.with(|plan| plan.disturbances[at].begin = Begin::Later(later - by)));
-                }
-            }
-            for at in 0..self.losses.len() {
-                if let Begin::Later(later) = self.losses[at].begin
-                    && later >= by
-                {
-                    found.push(plan.with(|plan| plan.losses[at].begin = Begin::Later(later - by)));
-                }
+            for extra in less(hold.extra, 0) {
+                let by = hold.extra - extra;
+                let shorter = self.with(|plan| plan.holds[at].extra = extra);
+                let end = changes[at] + self.length(at) - by;
+                found.push(shorter.with(|plan| plan.take_out(changes[at], by)));
+                found.extend([shorter.with(|plan| plan.take_out(end, by)), shorter]);
             }
         }
+        found
     }
 
     fn with(&self, change: impl FnOnce(&mut Self)) -> Self {
@@ -242,11 +313,7 @@ impl Plan for WordPlan {
     type Value = Word;
 
     fn value(&self) -> Word {
-        let mut word = Word { start: self.start, ticks: self.contact_and_bounces() };
-        let changes: Vec<u64> = word.changes().iter().map(|&at| at as u64).collect();
-        self.disturb(&mut word.ticks, &changes);
-        self.lose(&mut word.ticks, &changes);
-        word
+        self.built().0
     }
 
     fn measure(&self) -> (usize, u64, u64) {
@@ -259,8 +326,7 @@ impl Plan for WordPlan {
     }
 
     fn simpler(&self) -> Vec<Self> {
-        let mut found = Vec::new();
-        found.extend(shorter(&self.holds).into_iter().map(|holds| self.with(|plan| plan.holds = holds)));
+        let mut found = self.with_fewer_changes();
         let fewer = shorter(&self.disturbances).into_iter();
         found.extend(fewer.map(|disturbances| self.with(|plan| plan.disturbances = disturbances)));
         found.extend(shorter(&self.losses).into_iter().map(|losses| self.with(|plan| plan.losses = losses)));
@@ -272,11 +338,7 @@ impl Plan for WordPlan {
             let calmer = simpler_patterns(&disturbance.window).into_iter();
             found.extend(calmer.map(|window| self.with(|plan| plan.disturbances[at].window = window)));
         }
-        found.extend(less(self.tail, 1).map(|tail| self.with(|plan| plan.tail = tail)));
-        found.extend(less(self.lead, 0).map(|lead| self.with(|plan| plan.lead = lead)));
-        for (at, hold) in self.holds.iter().enumerate() {
-            found.extend(less(hold.extra, 0).map(|extra| self.with(|plan| plan.holds[at].extra = extra)));
-        }
+        found.extend(self.shortened());
         for (at, disturbance) in self.disturbances.iter().enumerate() {
             let sooner = disturbance.begin.simpler().into_iter();
             found.extend(sooner.map(|begin| self.with(|plan| plan.disturbances[at].begin = begin)));
@@ -286,7 +348,6 @@ impl Plan for WordPlan {
             let sooner = loss.begin.simpler().into_iter();
             found.extend(sooner.map(|begin| self.with(|plan| plan.losses[at].begin = begin)));
         }
-        self.shortened_before(&mut found);
         found
     }
 }

@@ -13,6 +13,7 @@ use crate::choose::{Candidate, Evidence, Judgement, Preference, Question, Rankin
 use crate::conformance::{self, Conformance};
 use crate::emit::{Configuration, Proof as Proved};
 use crate::envelope::PhysicalEnvelope;
+use crate::law_text::LawParameters;
 use crate::problem::{Problem, Problems};
 use crate::prove::{Limits, ProveError};
 use crate::quantity::TickPeriod;
@@ -65,11 +66,25 @@ impl Study {
         preference: Preference,
         progress: impl Fn(usize) + Sync,
     ) -> Result<Self, StudyError> {
+        Self::among(observed, requirement, preference, None, progress)
+    }
+
+    /// As [`of`](Self::of), with only these laws for candidates where any are given.
+    ///
+    /// # Errors
+    /// As [`of`](Self::of).
+    pub fn among(
+        observed: Vec<Observed>,
+        requirement: &Requirement,
+        preference: Preference,
+        only: Option<Vec<LawParameters>>,
+        progress: impl Fn(usize) + Sync,
+    ) -> Result<Self, StudyError> {
         let resolved = requirement.resolve(&measured(&observed)).map_err(StudyError::Requirement)?;
         let physical = resolved.physical();
         let conformance =
             observed.iter().map(|one| conformance::check(&one.recording.trace, &physical)).collect();
-        let question = question(&resolved, &observed, preference);
+        let question = Question { only, ..question(&resolved, &observed, preference) };
         let ranking = choose(&question, progress)?;
         if ranking.clocks.iter().all(|view| view.envelope.is_err()) {
             return Err(StudyError::Requirement(no_clock(&ranking).into()));
@@ -124,6 +139,7 @@ fn question<'a>(resolved: &Resolved, observed: &'a [Observed], preference: Prefe
         ram_bytes: resolved.ram.map(|ram| ram.value.0),
         recordings: observed.iter().map(|one| (&one.recording.trace, one.truth.as_slice())).collect(),
         preference,
+        only: None,
         // A candidate that needs more than this is shown as unproven; the usual one needs a thousandth.
         limits: Limits { memory_bytes: 1 << 20, threads: 1, ..Limits::default() },
     }
