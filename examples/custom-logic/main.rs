@@ -13,7 +13,7 @@ use harness::prove::{ProveError, prove};
 use harness::report::timing::TimingDiagram;
 
 /// The shutter: what is claimed is claimed for every waveform in here, in ticks of 2 ms.
-const SHUTTER: Envelope = Envelope::clean(60, 60).bounce(4, 4).glitch(1, 1).quiet(8);
+const SHUTTER: Envelope = Envelope::clean(60, 60).bounce(2, 2).glitch(1, 1).quiet(8);
 
 /// Samples of the new position that are needed.
 const NEEDED: u8 = 3;

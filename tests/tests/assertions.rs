@@ -29,11 +29,12 @@ fn message<T>(assertion: impl FnOnce() -> T) -> String {
 #[test]
 fn assert_faithful_of_a_proven_law_gives_the_proof() {
     let proof = assert_faithful(&at_the_limit(), &BUTTON);
-    assert!(
-        proof
-            .to_string()
-            .starts_with("proved: every operation is reported once, a make after 2 to 7 samples")
+    let best = proof.bounds().expect("faithful").latency;
+    let begin = format!(
+        "proved: every operation is reported once, a make after {} to 7 samples, a break after {} to 5; all {} states",
+        best.make.best, best.break_.best, proof.states
     );
+    assert!(proof.to_string().starts_with(&begin), "{proof}");
 }
 
 #[test]

@@ -15,6 +15,7 @@ use harness::envelope::PhysicalEnvelope;
 use harness::prove::{Environment, prove};
 use harness::strategy::{Wave, Waves};
 use integration_tests::predicate::{Letter, is_legal};
+use proptest::test_runner::{Config, TestCaseError, TestError, TestRunner};
 use rand::SeedableRng;
 use rand::rngs::ChaCha8Rng;
 
@@ -117,6 +118,56 @@ fn samples_of_short_traces_are_legal_by_the_separate_predicate() {
             assert!(is_legal(&word, wave.trace.initial(), &envelope), "{envelope:?}\n{wave:?}");
         }
     }
+}
+
+/// The rounding cannot be made any tighter: with any number of the envelope off by one, some samples lie outside.
+#[test]
+fn samples_leave_an_envelope_that_is_tighter_by_one_in_any_number() {
+    let clocks = [
+        TickClock::new(Period::from_ms(1)),
+        TickClock::new(Period::from_ms(1)).tolerance_ppm(50_000).jitter_ns(100 * US),
+    ];
+    let physical = physical([12_500, 10_500], [2_300, 1_400], [1_300, 1_300], 4_500, 0);
+    for clock in clocks {
+        let e = physical.in_ticks(&clock).expect("quiet is seen");
+        let tighter = [
+            e.bounce(e.bounce.make - 1, e.bounce.break_),
+            e.bounce(e.bounce.make, e.bounce.break_ - 1),
+            e.glitch(e.glitch.open - 1, e.glitch.closed),
+            e.glitch(e.glitch.open, e.glitch.closed - 1),
+            e.quiet(e.quiet + 1),
+            with_dwell(e, 1, 0),
+            with_dwell(e, 0, 1),
+        ];
+        for (which, envelope) in tighter.into_iter().enumerate() {
+            let environment = Environment::of(&envelope).unwrap();
+            let leaves = waves(&physical, &clock, 20_000).any(|wave| !is_inside(&environment, &wave));
+            assert!(leaves, "tighter number {which} of {e:?} at {clock:?}");
+        }
+    }
+}
+
+fn with_dwell(mut envelope: Envelope, open: u32, closed: u32) -> Envelope {
+    envelope.dwell.open += open;
+    envelope.dwell.closed += closed;
+    envelope
+}
+
+#[test]
+fn shrinking_a_trace_leaves_the_one_pulse_that_matters() {
+    // Fooled by a contrary sample while the contact stays open.
+    let envelope = physical([30_000, 30_000], [2_000, 1_000], [1_500, 2_500], 7_000, 0);
+    let clock = TickClock::new(Period::from_ms(1)).tolerance_ppm(50_000).jitter_ns(100 * US);
+    let is_fooled =
+        |wave: &Wave| wave.truth.is_empty() && wave.delivered().any(|taken| taken.sample != taken.contact);
+    let config = Config { failure_persistence: None, cases: 5_000, ..Config::default() };
+    let outcome = TestRunner::new(config).run(&Waves::of(&envelope, &clock).unwrap(), |wave| {
+        if is_fooled(&wave) { Err(TestCaseError::fail("fooled")) } else { Ok(()) }
+    });
+    let Err(TestError::Fail(_, wave)) = outcome else { panic!("it must fail: {outcome:?}") };
+    assert!(is_fooled(&wave), "{wave:?}");
+    // One pulse is left, or its begin alone where the trace ends in it, and hardly a tick but the one it fools.
+    assert!(wave.trace.edges().len() <= 2 && wave.samples.len() <= 2, "{wave:?}");
 }
 
 /// Replays waves through a proven law; says how many changes it reported.
