@@ -160,8 +160,17 @@ impl Envelope {
     /// A run of lost ticks can only take samples away, so bounce and disturbances keep their width, while
     /// dwell, quiet and calm are seen by `lost` samples fewer. A dwell of 0 then means that an operation may
     /// fall between two samples.
+    ///
+    /// A disturbance may also begin in a lost tick just before a change: what is left of it then begins with the
+    /// change, where the old position's width or the lack of calm would forbid it. It counts as bounce.
     #[must_use]
     pub const fn delivered(mut self) -> Self {
+        if self.lost > 0 {
+            let calm = self.calm.saturating_sub(self.lost);
+            let (open, closed) = (self.glitch.open, self.glitch.closed);
+            self.bounce.make = with_straddling(self.bounce.make, open.saturating_sub(1), closed, calm);
+            self.bounce.break_ = with_straddling(self.bounce.break_, closed.saturating_sub(1), open, calm);
+        }
         self.dwell.open = self.dwell.open.saturating_sub(self.lost);
         self.dwell.closed = self.dwell.closed.saturating_sub(self.lost);
         self.quiet = self.quiet.saturating_sub(self.lost);
@@ -219,6 +228,13 @@ impl Envelope {
         let one_sided = self.glitch.open == 0 || self.glitch.closed == 0;
         self.quiet > widest || (self.quiet > 0 && (one_sided || self.calm > widest))
     }
+}
+
+/// The bounce after a change, where the last `straddling` samples of a disturbance may begin with the change although
+/// the first of it were never seen. Without calm, a disturbance of the new position explains up to its own width.
+const fn with_straddling(bounce: u32, straddling: u32, of_new_position: u32, calm: u32) -> u32 {
+    let is_explained = calm == 0 && straddling <= of_new_position;
+    if is_explained || straddling <= bounce { bounce } else { straddling }
 }
 
 /// The limit for one change: the bounce with a disturbance behind it, or one that straddles the change, then

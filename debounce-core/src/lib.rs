@@ -32,6 +32,8 @@
 //! | [`MajorityRegister`] | m of the last n samples read the other position             | 2, 4 or 8    |
 //! | [`StateMachine`]     | enough contrary samples came in before enough agreeing ones | 3 or 6       |
 //!
+//! A [`Chain`] puts one law in front of another and is itself a law.
+//!
 //! Where nothing else decides, take [`StateMachine::for_envelope`](StateMachine::<u8>::for_envelope).
 //!
 //! # Examples
@@ -94,6 +96,7 @@
 
 mod analog;
 mod bank;
+mod chain;
 mod changeover;
 mod closed_form;
 mod const_law;
@@ -125,6 +128,7 @@ pub use bank::{
     Bank, BankState, Changes, EdgeRule, Lane, LanesStarted, PatientBank, PatientState, PortLaw, StartingBank,
     StartingBankState, Word,
 };
+pub use chain::{Chain, ChainState};
 pub use changeover::{Changeover, ChangeoverFault, ChangeoverReport, ChangeoverState, Throws};
 pub use const_law::{Config, ConstLaw};
 pub use count::Count;

@@ -84,6 +84,9 @@ impl PhysicalEnvelope {
     /// see them. The clock's lost ticks are taken off there, so the result has `lost` = 0. A dwell may come
     /// out at 0: an operation that can fall between two samples, which the prover answers with a witness.
     ///
+    /// A disturbance may begin an instant before a change, between two samples: all its samples then follow the
+    /// change, where the old position's width or the lack of calm would forbid them. They count as bounce.
+    ///
     /// # Errors
     /// When quiet comes out at 0 while there are disturbances; the error names the tick period at which it
     /// would not.
@@ -96,11 +99,16 @@ impl PhysicalEnvelope {
         } else {
             1
         };
+        let (open, closed) =
+            (clock.samples_touched(self.glitch_ns.open), clock.samples_touched(self.glitch_ns.closed));
+        let calm = clock.samples_seen(self.calm_ns);
+        let make = with_straddling(clock.samples_touched(self.bounce_ns.make), open, closed, calm);
+        let break_ = with_straddling(clock.samples_touched(self.bounce_ns.break_), closed, open, calm);
         Ok(Envelope::clean(clock.samples_seen(self.dwell_ns.open), clock.samples_seen(self.dwell_ns.closed))
-            .bounce(clock.samples_touched(self.bounce_ns.make), clock.samples_touched(self.bounce_ns.break_))
-            .glitch(clock.samples_touched(self.glitch_ns.open), clock.samples_touched(self.glitch_ns.closed))
+            .bounce(make, break_)
+            .glitch(open, closed)
             .quiet(quiet)
-            .calm(clock.samples_seen(self.calm_ns)))
+            .calm(calm))
     }
 
     const fn quiet_error(&self, clock: &TickClock) -> TickError {
@@ -119,6 +127,13 @@ impl PhysicalEnvelope {
             longest_period_ns,
         }
     }
+}
+
+/// The bounce after a change, where a disturbance of `straddling` samples may begin just before the change and be seen
+/// only after it. Without calm, a disturbance of the new position explains up to its own width.
+const fn with_straddling(bounce: u32, straddling: u32, of_new_position: u32, calm: u32) -> u32 {
+    let is_explained = calm == 0 && straddling <= of_new_position;
+    if is_explained || straddling <= bounce { bounce } else { straddling }
 }
 
 #[cfg(test)]
@@ -142,6 +157,23 @@ mod tests {
     fn physical_envelope_at_1_ms_rounds_every_clause_to_the_safe_side() {
         let ticks = button().in_ticks(&TickClock::new(Period::from_ms(1))).unwrap();
         assert_eq!(ticks, Envelope::clean(60, 39).bounce(5, 4).glitch(1, 0).quiet(10).calm(3));
+    }
+
+    #[test]
+    fn physical_envelope_disturbance_unseen_before_a_change_counts_as_bounce() {
+        let clock = TickClock::new(Period::from_ms(1));
+        let ticks = |open, closed, calm_ns| {
+            let glitch_ns = PerPosition { open: open * MS, closed: closed * MS };
+            let bounce_ns = PerChange { make: 2 * MS, break_: 2 * MS };
+            let physical = PhysicalEnvelope { glitch_ns, bounce_ns, calm_ns, ..button() };
+            physical.in_ticks(&clock).unwrap().bounce
+        };
+        assert_eq!(ticks(2, 1, 0), PerChange { make: 2, break_: 2 });
+        assert_eq!(ticks(3, 1, 0), PerChange { make: 3, break_: 2 });
+        assert_eq!(ticks(1, 3, 0), PerChange { make: 2, break_: 3 });
+        assert_eq!(ticks(3, 3, 0), PerChange { make: 2, break_: 2 });
+        assert_eq!(ticks(3, 3, MS - 1), PerChange { make: 2, break_: 2 });
+        assert_eq!(ticks(3, 3, MS), PerChange { make: 3, break_: 3 });
     }
 
     #[test]

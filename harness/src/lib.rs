@@ -2,6 +2,7 @@
 #![forbid(unsafe_code)]
 
 pub mod characterise;
+pub mod check;
 pub mod choose;
 pub mod cli;
 pub mod conformance;
@@ -20,6 +21,7 @@ pub mod replay;
 pub mod report;
 pub mod requirement;
 pub mod sample;
+pub mod strategy;
 pub mod study;
 pub mod trace;
 pub mod truth;

@@ -4,7 +4,7 @@ use std::fmt::Debug;
 use std::hash::Hash;
 
 use debounce_core::{
-    Change, Clause, Envelope, Integrator, Law, MajorityRegister, PerChange, Position, ShiftRegister,
+    Chain, Change, Clause, Envelope, Integrator, Law, MajorityRegister, PerChange, Position, ShiftRegister,
     StateMachine, StateMachineParameters,
 };
 use harness::prove::{Outcome, prove};
@@ -154,4 +154,36 @@ fn prover_small_laws_agree_with_every_legal_word() {
     for (envelope, length, words, faithful) in table {
         assert_eq!(laws_agree(envelope, length), (words, faithful), "{envelope:?}");
     }
+}
+
+/// Filters in front of counting machines: words looked at, and how many of the six are faithful.
+#[test]
+fn prover_chains_agree_with_every_legal_word() {
+    let machine = |confirm, patience, lockout| {
+        let parameters = StateMachineParameters::<u8>::confirm(confirm, confirm);
+        StateMachine::<u8>::new(parameters.patience(patience, patience).lockout(lockout, lockout))
+    };
+    let chains = |envelope, length| {
+        let (mut words, mut faithful) = (0, 0);
+        for second in [machine(1, 1, 0), machine(2, 2, 0), machine(2, 1, 2)] {
+            let three = Chain::new(MajorityRegister::<u8>::new(2, 3), second);
+            let five = Chain::new(MajorityRegister::<u8>::new(3, 5), second);
+            for (more, holds) in [agree(&three, envelope, length), agree(&five, envelope, length)] {
+                words += more;
+                faithful += u32::from(holds);
+            }
+        }
+        (words, faithful)
+    };
+    let clean = Envelope::clean;
+    let table = [
+        (clean(5, 5), 16, 6780, 6),
+        (clean(7, 7).bounce(1, 1), 14, 6720, 6),
+        (clean(7, 7).glitch(1, 1).quiet(3), 12, 53282, 5),
+        (clean(8, 8).bounce(1, 0).glitch(1, 1).quiet(4), 12, 43455, 5),
+        // Operations shorter than the latency: the reports lag by more than one change.
+        (clean(2, 2), 14, 26066, 2),
+    ];
+    let found = table.map(|(envelope, length, _, _)| chains(envelope, length));
+    assert_eq!(found, table.map(|(_, _, words, faithful)| (words, faithful)));
 }

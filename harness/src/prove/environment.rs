@@ -165,6 +165,14 @@ impl Environment {
         Ok(Self { states: enumeration.states, branches, first, starts })
     }
 
+    /// Whether `envelope` is one at all, without enumerating it.
+    ///
+    /// # Errors
+    /// When a dwell or quiet comes out at 0 samples.
+    pub fn check(envelope: &Envelope) -> Result<(), ProveError> {
+        Rules::of(envelope, Contract::Follow).map(|_| ())
+    }
+
     /// Number of states.
     #[must_use]
     pub fn len(&self) -> usize {

@@ -47,9 +47,10 @@ mod recovery;
 mod tabulate;
 mod witness;
 
+use core::fmt;
 use core::hash::Hash;
 
-use debounce_core::{Bounds, Change, Clause, Envelope, Law, PerChange, Position};
+use debounce_core::{Bounds, Change, Clause, Envelope, Latency, Law, PerChange, Position};
 
 pub use contract::Contract;
 pub use environment::{Branch, Environment, EnvironmentState, Fired};
@@ -61,6 +62,8 @@ pub use tabulate::{Entry, LawTable};
 pub use witness::{Witness, WitnessTick};
 
 use product::{Product, Step};
+
+use crate::report::words;
 
 /// What an exploration may use.
 #[derive(Clone, Copy, PartialEq, Eq, Debug)]
@@ -250,6 +253,28 @@ impl Proof {
         match &self.outcome {
             Outcome::Faithful { .. } => None,
             Outcome::Refuted { clause, witness } => Some((*clause, witness)),
+        }
+    }
+}
+
+/// One line that says "proved" or "refuted", and of how much.
+impl fmt::Display for Proof {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match &self.outcome {
+            Outcome::Faithful { bounds, .. } => {
+                let Latency { best, worst } = bounds.latency.make;
+                write!(
+                    f,
+                    "proved: every operation is reported once, a make after {best} to {worst} samples"
+                )?;
+                let Latency { best, worst } = bounds.latency.break_;
+                write!(f, ", a break after {best} to {worst}")?;
+                write!(f, "; all {} states were visited", self.states)
+            }
+            Outcome::Refuted { clause, witness } => {
+                let samples = words::count(witness.ticks.len(), "sample");
+                write!(f, "refuted: {}, shown by {samples}", words::clause(*clause))
+            }
         }
     }
 }

@@ -19,7 +19,7 @@ const ROW: usize = 64;
 /// output   ______###
 /// ```
 /// `_` is open, `#` is closed; a reading that the contact does not explain is marked `b` in a bounce, `d` in a
-/// disturbance. The output is what the logic says after the tick.
+/// disturbance, `?` where the cause is not known. The output is what the logic says after the tick.
 #[derive(Clone, Copy, Debug)]
 pub struct TimingDiagram<'a>(pub &'a Witness);
 
@@ -55,7 +55,8 @@ fn reason(tick: &WitnessTick) -> char {
     match tick {
         tick if tick.sample == tick.contact => '.',
         WitnessTick { disturbed: true, .. } => 'd',
-        _ => 'b',
+        WitnessTick { bouncing: true, .. } => 'b',
+        _ => '?',
     }
 }
 
