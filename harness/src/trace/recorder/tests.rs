@@ -78,7 +78,8 @@ proptest! {
 fn recorder_samples_of_a_replay_are_those_that_were_taken() {
     // What the firmware's law saw can be given to it again.
     let law = debounce_core::ShiftRegister::new(2);
-    let line: Vec<_> = (0..200_u32).map(|tick| Some(Position::closed_if(tick * tick / 37 & 4 > 0))).collect();
+    let line: Vec<_> =
+        (0..200_u32).map(|tick| Some(Position::closed_if((tick * tick / 37) & 4 > 0))).collect();
     let text = record::<256>(&line, RecorderMode::Ring).text(Period::from_hz(30)).to_string();
     let trace = read(&text).trace;
     let mut states = [debounce_core::Law::rest(&law, Position::Open); 2];
@@ -135,8 +136,7 @@ fn recorder_runs_of_one_kind_in_a_row_are_one() {
 fn recorder_lost_ticks_follow_the_policy() {
     let text = format!("{HEAD}o5 l2 o3\nend 3 running\n");
     let with = |unknown| {
-        let mut options = ReadOptions::default();
-        options.unknown = unknown;
+        let options = ReadOptions { unknown, ..ReadOptions::default() };
         read_bytes("f", text.as_bytes(), &options)
     };
     assert_eq!(with(Unknown::Hold).unwrap().trace.edges(), [0; 0]);
