@@ -119,7 +119,7 @@ impl ClockPlan {
         let mut rng = ChaCha8Rng::seed_from_u64(self.seed);
         let mut at = match self.phase {
             Phase::Zero => 0,
-            Phase::Share(share) => (longest - 1) * u128::from(share) >> 32,
+            Phase::Share(share) => ((longest - 1) * u128::from(share)) >> 32,
             Phase::After { event, units } => {
                 let event = events.get(event as usize % events.len().max(1)).copied().unwrap_or(0);
                 // A whole number of periods more keeps it above zero whatever is taken off.
