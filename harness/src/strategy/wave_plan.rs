@@ -260,10 +260,9 @@ impl WavePlan {
     }
 
     fn weight(&self) -> u64 {
-        let pulses = |pulses: &[Pulse]| pulses.iter().map(|p| 1 + p.until - p.from).sum::<u64>();
-        let holds = self.holds.iter().map(|hold| 1 + pulses(&hold.bounce) + hold.extra);
-        let disturbances =
-            self.disturbances.iter().map(|d| 1 + d.width + pulses(&d.pulses) + d.begin.weight());
+        // Narrow pulses are not simpler: they only make it harder for a sample to meet them.
+        let holds = self.holds.iter().map(|hold| 1 + hold.bounce.len() as u64 + hold.extra);
+        let disturbances = self.disturbances.iter().map(|d| 1 + d.pulses.len() as u64 + d.begin.weight());
         let sum: u64 = holds.chain(disturbances).sum();
         (self.lead + self.tail + sum).saturating_add(self.clock.weight())
     }
@@ -368,37 +367,21 @@ impl Plan for WavePlan {
         let fewer = shorter(&self.disturbances).into_iter();
         found.extend(fewer.map(|disturbances| self.with(|plan| plan.disturbances = disturbances)));
         for (at, hold) in self.holds.iter().enumerate() {
-            let calmer = simpler_pulses(&hold.bounce).into_iter();
+            let calmer = shorter(&hold.bounce).into_iter();
             found.extend(calmer.map(|bounce| self.with(|plan| plan.holds[at].bounce = bounce)));
         }
         for (at, disturbance) in self.disturbances.iter().enumerate() {
-            let calmer = simpler_pulses(&disturbance.pulses).into_iter();
+            let calmer = shorter(&disturbance.pulses).into_iter();
             found.extend(calmer.map(|pulses| self.with(|plan| plan.disturbances[at].pulses = pulses)));
         }
         found.extend(self.clock.simpler().into_iter().map(|clock| self.with(|plan| plan.clock = clock)));
         found.extend(self.shortened());
         for (at, disturbance) in self.disturbances.iter().enumerate() {
-            let narrower = less(disturbance.width, 1);
-            found.extend(narrower.map(|width| self.with(|plan| plan.disturbances[at].width = width)));
             let sooner = disturbance.begin.simpler().into_iter();
             found.extend(sooner.map(|begin| self.with(|plan| plan.disturbances[at].begin = begin)));
         }
+        // Last, so that what matters has moved to the front before the end is cut off right behind it.
+        found.extend(less(self.tail, 1).map(|tail| self.with(|plan| plan.tail = tail)));
         found
     }
-}
-
-/// Pulses that are fewer, or shorter from either end.
-fn simpler_pulses(pulses: &[Pulse]) -> Vec<Vec<Pulse>> {
-    let mut found = shorter(pulses);
-    for (at, &pulse) in pulses.iter().enumerate() {
-        let sooner = less(pulse.until, pulse.from + 1).map(|until| Pulse { until, ..pulse });
-        let length = pulse.until - pulse.from;
-        let later = less(length, 1).map(|length| Pulse { from: pulse.until - length, ..pulse });
-        found.extend(sooner.chain(later).map(|pulse| {
-            let mut pulses = pulses.to_vec();
-            pulses[at] = pulse;
-            pulses
-        }));
-    }
-    found
 }
