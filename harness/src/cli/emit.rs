@@ -66,7 +66,7 @@ impl EmitArguments {
         let Some(configuration) = study.configuration() else {
             return Ok(Box::new(Emitted { study, module: None, written: None }));
         };
-        let module = rust_module(&configuration).map_err(|error| Problem::new(error.to_string()))?;
+        let module = rust_module(&configuration).map_err(|error| Problem::told(error))?;
         let mut written = None;
         if let Some((folder, name)) = file {
             let mut files = folder.stage();

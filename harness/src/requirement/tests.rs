@@ -263,7 +263,7 @@ fn requirement_file_that_cannot_be_read_is_one_clear_problem() {
     assert_eq!(
         refused("empty.toml", Some(b" \n")),
         "empty.toml: the requirement file is empty; \
-         write at least [required] with latency = \"20 ms\", or leave --requirement out"
+         write at least [required] with latency = \"20 ms\""
     );
     assert!(
         refused("rubbish.toml", Some(b"[contact]\nna\xff\xfe\x00"))

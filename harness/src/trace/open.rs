@@ -4,9 +4,11 @@ use std::fs::File;
 use std::io::{self, Read};
 use std::path::Path;
 
-use super::channel::{Channel, nearest};
-use super::error::{Faults, ReadError, plain};
+use super::channel::Channel;
+use super::error::{Faults, ReadError};
 use super::{ReadOptions, Recording, csv, vcd};
+use crate::nearest::nearest;
+use crate::problem::plain_reason;
 
 /// So much of a file is looked at to find out what it is.
 pub(super) const PREFIX: usize = 1 << 16;
@@ -157,11 +159,15 @@ fn open(path: &Path, name: &str) -> Result<File, ReadError> {
         Ok(file) => return Ok(file),
         Err(error) if error.kind() == io::ErrorKind::NotFound => {
             faults.whole_file("there is no such file");
-            if let Some(near) = neighbour(path) {
-                faults.help(format!("did you mean {near}?"));
-            }
+            faults.help(neighbour(path).map_or_else(
+                || "check the path: it begins at the current folder".to_owned(),
+                |near| format!("did you mean {near}?"),
+            ));
         }
-        Err(error) => faults.whole_file(format!("cannot be opened: {}", plain(&error))),
+        Err(error) => {
+            faults.whole_file(format!("cannot be opened: {}", plain_reason(&error)));
+            faults.help("make the file readable");
+        }
     }
     Err(faults.into_error(name))
 }

@@ -8,8 +8,9 @@ use super::header::{Unit, VoltUnit};
 use super::layout::Layout;
 use super::line::{Lines, is_skipped, split};
 use super::number::{self, PER_NS, Yoctoseconds};
+use crate::quoted::quoted;
 use crate::trace::builder::{Reading, TraceBuilder};
-use crate::trace::error::{Faults, Place, quoted};
+use crate::trace::error::{Faults, Lack, Place};
 use crate::trace::{Note, ReadOptions, Recording, Thresholds, TimeUnit};
 
 /// A column that is followed.
@@ -110,6 +111,7 @@ impl<'a> Rows<'a> {
         if fields.len() <= needed {
             let (has, needs) = (fields.len(), needed + 1);
             faults.at(place(line.len()), format!("the row has {has} of the {needs} fields that it needs"));
+            faults.help("write what is missing, or take the row out");
             return;
         }
         let time = &fields[self.layout.time_column];
@@ -156,7 +158,7 @@ impl<'a> Rows<'a> {
             Some(before) if time.at <= before => {
                 let before = String::from_utf8_lossy(&self.before_text).into_owned();
                 return Err(format!(
-                    "time {} is not later than the {before} before it",
+                    "time {} is not later than the {before} before it; put the rows in the order of their times",
                     quoted(cell).trim_matches('"')
                 ));
             }
@@ -314,7 +316,7 @@ fn propose(least: f64, greatest: f64, faults: &mut Faults) {
                 pair.falling_v(),
                 pair.rising_v()
             ));
-            faults.propose(pair);
+            faults.lack(Lack::Thresholds { proposed: Some(pair) });
         }
         Err(_) => faults.help("the voltage never changes: is this the right channel?"),
     }

@@ -3,7 +3,7 @@
 use debounce_core::Position::{self, Closed, Open};
 
 use crate::trace::{
-    ChannelKind, DecimalMark, Delimiter, Note, Polarity, ReadError, ReadOptions, Recording, Thresholds,
+    ChannelKind, DecimalMark, Delimiter, Lack, Note, Polarity, ReadError, ReadOptions, Recording, Thresholds,
     TimeUnit, Unknown, read_bytes,
 };
 
@@ -93,6 +93,13 @@ fn csv_unit_of_the_voltage_is_understood() {
     check(text, &with_thresholds(Some("CH2")), Open, &[], 3 * MS);
 }
 
+fn proposed(error: &ReadError) -> Option<Thresholds> {
+    match error.lacks() {
+        Some(&Lack::Thresholds { proposed }) => proposed,
+        _ => None,
+    }
+}
+
 #[test]
 fn csv_voltages_without_thresholds_are_refused_with_a_proposal() {
     let text = "time (ms),CH1 (V)\n0,0.0\n1,3.3\n2,0.1\n";
@@ -101,7 +108,7 @@ fn csv_voltages_without_thresholds_are_refused_with_a_proposal() {
     let help =
         "give a falling and a rising threshold, such as 0.99 V and 2.31 V (30 % and 70 % of that range)";
     assert_eq!(error.help(), Some(help));
-    let proposed = error.proposed_thresholds().expect("a proposal");
+    let proposed = proposed(&error).expect("a proposal");
     check(text, &ReadOptions { thresholds: Some(proposed), ..plain() }, Open, &[MS, 2 * MS], 3 * MS);
     // Without a header too: a number that is no level gives it away.
     refused(
@@ -124,7 +131,7 @@ fn csv_voltage_inside_the_band_throughout_is_refused() {
         &with_thresholds(None),
         &[" channel column 2 never leaves the band between 0.8 V and 2 V: it holds 1 V to 1.5 V"],
     );
-    assert_eq!(error.proposed_thresholds().map(|pair| pair.falling_v()), Some(1.15));
+    assert_eq!(proposed(&error).map(|pair| pair.falling_v()), Some(1.15));
 }
 
 #[test]
