@@ -17,7 +17,7 @@ pub mod nearest;
 pub mod problem;
 pub mod prove;
 pub mod quantity;
-mod quoted;
+mod raw_input;
 pub mod replay;
 pub mod report;
 pub mod requirement;

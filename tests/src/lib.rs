@@ -1,4 +1,5 @@
 //! What several tests share.
 
+pub mod firmware;
 pub mod predicate;
 pub mod toggle;

@@ -6,7 +6,7 @@ use rustc_hash::{FxHashMap, FxHashSet};
 use super::arrange::found_from;
 use super::fault::{Faults, Place};
 use super::{MachineTable, Names, Reading, word};
-use crate::quoted::quoted;
+use crate::raw_input::quoted;
 
 /// A name in a file.
 #[derive(Clone, Debug)]

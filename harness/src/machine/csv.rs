@@ -5,7 +5,7 @@ use debounce_core::Position;
 use super::check::{self, Line, Named, refused_name};
 use super::fault::{Faults, Place, TableFileError};
 use super::{MachineTable, Reading, without_mark};
-use crate::quoted::quoted;
+use crate::raw_input::quoted;
 
 const HEADER: [&str; 4] = ["state", "sample", "next", "output"];
 

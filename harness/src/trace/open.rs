@@ -9,6 +9,7 @@ use super::error::{Faults, ReadError};
 use super::{ReadOptions, Recording, csv, vcd};
 use crate::nearest::nearest;
 use crate::problem::plain_reason;
+use crate::raw_input::is_binary;
 
 /// So much of a file is looked at to find out what it is.
 pub(super) const PREFIX: usize = 1 << 16;
@@ -134,9 +135,7 @@ fn format_of(prefix: &[u8]) -> Result<Format, (&'static str, &'static str)> {
     let Some(first) = prefix.iter().find(|byte| !byte.is_ascii_whitespace()) else {
         return Err(("is empty", "export the recording again, as VCD or CSV"));
     };
-    let is_odd = |&&byte: &&u8| byte < b' ' && !byte.is_ascii_whitespace() && byte != 0x0b;
-    // A stray control character is for the reader to find, with its place.
-    if prefix.contains(&0) || prefix.iter().filter(is_odd).count() > prefix.len() / 32 {
+    if is_binary(prefix) {
         return Err(("is no text", "export the recording as VCD or CSV"));
     }
     // A VCD begins with a keyword; no CSV does. One without declarations begins with a time mark.

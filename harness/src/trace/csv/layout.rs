@@ -11,7 +11,7 @@ use super::header::{Column, Unit, unit_cell};
 use super::line::{decoded, is_skipped, split};
 use super::number::{self, Yoctoseconds};
 use crate::nearest::nearest_scoped;
-use crate::quoted::quoted;
+use crate::raw_input::quoted;
 use crate::trace::channel::listed;
 use crate::trace::error::{Faults, Lack};
 use crate::trace::{Channel, ChannelKind, DecimalMark, Delimiter, ReadOptions, TimeUnit};

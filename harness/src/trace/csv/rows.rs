@@ -8,7 +8,7 @@ use super::header::{Unit, VoltUnit};
 use super::layout::Layout;
 use super::line::{Lines, is_skipped, split};
 use super::number::{self, PER_NS, Yoctoseconds};
-use crate::quoted::quoted;
+use crate::raw_input::quoted;
 use crate::trace::builder::{Reading, TraceBuilder};
 use crate::trace::error::{Faults, Lack, Place};
 use crate::trace::{Note, ReadOptions, Recording, Thresholds, TimeUnit};

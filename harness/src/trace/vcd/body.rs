@@ -5,7 +5,7 @@ use std::io::{self, Read};
 use super::header::{Header, Scale, section};
 use super::select::{Part, Selected};
 use super::tokens::Tokens;
-use crate::quoted::quoted;
+use crate::raw_input::quoted;
 use crate::trace::builder::{Reading, TraceBuilder};
 use crate::trace::error::{Faults, Place};
 use crate::trace::{Level, Note, ReadOptions, Recording};

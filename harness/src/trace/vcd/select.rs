@@ -2,7 +2,7 @@
 
 use super::header::{Header, Kind, Variable, split_range};
 use crate::nearest::nearest_scoped;
-use crate::quoted::quoted;
+use crate::raw_input::quoted;
 use crate::trace::channel::{Channel, listed};
 use crate::trace::error::{Faults, Lack};
 use crate::trace::{ReadOptions, Thresholds};

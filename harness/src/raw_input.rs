@@ -1,4 +1,11 @@
-//! Pieces of input in messages.
+//! Input as it came: whether it is text at all, and how pieces of it are shown in messages.
+
+/// Whether these bytes are no text. A stray control character does not make them so: that is for a reader to find,
+/// with its place.
+pub(crate) fn is_binary(bytes: &[u8]) -> bool {
+    let is_odd = |&&byte: &&u8| byte < b' ' && !byte.is_ascii_whitespace() && byte != 0x0b;
+    bytes.contains(&0) || bytes.iter().filter(is_odd).count() > bytes.len() / 32
+}
 
 /// A piece of input for a message: quoted, printable, and short.
 pub(crate) fn quoted(input: impl AsRef<[u8]>) -> String {
@@ -16,6 +23,16 @@ pub(crate) fn quoted(input: impl AsRef<[u8]>) -> String {
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn binary_bytes_are_told_from_text_with_a_stray_character() {
+        assert!(!is_binary(b""));
+        assert!(!is_binary(b"time,gate\r\n\t0,1\x0b\n"));
+        assert!(is_binary(b"time,gate\n0,\0"));
+        let text = |odd: usize| [vec![b'a'; 64 - odd], vec![7; odd]].concat();
+        assert!(!is_binary(&text(2)));
+        assert!(is_binary(&text(3)));
+    }
 
     #[test]
     fn quoted_long_or_strange_input_stays_short_and_printable() {
