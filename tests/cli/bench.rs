@@ -43,7 +43,12 @@ impl Run {
         serde_json::from_str(&self.stdout).unwrap_or_else(|error| panic!("{error}: {self:?}"))
     }
 
-    /// Checks the exit code and that nothing was complained of.
+    /// Standard output with every run of white space as one space, so that it does not matter where lines break.
+    pub(crate) fn flowing(&self) -> String {
+        self.stdout.split_whitespace().collect::<Vec<_>>().join(" ")
+    }
+
+    /// Checks the exit code.
     #[track_caller]
     pub(crate) fn ends(self, code: i32) -> Self {
         assert_eq!(self.code, Some(code), "{}\n{}", self.stdout, self.stderr);
@@ -105,8 +110,9 @@ impl Bench {
             for entry in fs::read_dir(folder).expect("a folder") {
                 let path = entry.expect("an entry").path();
                 let name = path.strip_prefix(self.path()).expect("inside").display().to_string();
-                let content = path.is_file().then(|| fs::read(&path).expect("a file"));
-                if content.is_none() {
+                let kind = fs::symlink_metadata(&path).expect("an entry").file_type();
+                let content = kind.is_file().then(|| fs::read(&path).expect("a file"));
+                if kind.is_dir() {
                     folders.push(path);
                 }
                 found.insert(name, content);

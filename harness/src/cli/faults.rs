@@ -96,7 +96,7 @@ pub(super) fn table(error: &TableFileError) -> Vec<Problem> {
 /// A file that cannot be opened, with a name that was perhaps meant.
 pub(super) fn unreadable(what: &str, path: &Path, error: &std::io::Error) -> Problem {
     let help = match error.kind() {
-        std::io::ErrorKind::NotFound => "check the path: it begins at the current folder",
+        std::io::ErrorKind::NotFound => "check the path; a relative one begins at the current folder",
         std::io::ErrorKind::IsADirectory => "name a file in this folder",
         _ => "make the file readable",
     };

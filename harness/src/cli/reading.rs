@@ -32,14 +32,15 @@ impl ReadingOptions {
     /// The options of the reader, with everything else as it is by default.
     #[must_use]
     pub fn read_options(&self) -> ReadOptions {
-        let mut options = ReadOptions::default();
-        options.resolution_ns = self.resolution.map(Time::ns);
-        options.time_unit = self.time_unit.map(Into::into);
-        options.time_column = self.time_column.clone();
-        options.delimiter = self.delimiter.map(Into::into);
-        options.decimal_mark = self.decimal_mark.map(Into::into);
-        options.unknown = self.unknown.into();
-        options
+        ReadOptions {
+            resolution_ns: self.resolution.map(Time::ns),
+            time_unit: self.time_unit.map(Into::into),
+            time_column: self.time_column.clone(),
+            delimiter: self.delimiter.map(Into::into),
+            decimal_mark: self.decimal_mark.map(Into::into),
+            unknown: self.unknown.into(),
+            ..ReadOptions::default()
+        }
     }
 }
 

@@ -62,7 +62,7 @@ impl ReplayArguments {
     /// Runs the command.
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let input = Input::with_recordings(&self.input, session)?;
-        let resolved = input.requirement.resolve(&measured(&input.observed))?;
+        let resolved = input.requirement.fill_in(&measured(&input.observed))?;
         let logic =
             Logic::try_new(&self.law).map_err(|error| Problem::told(format!("{}: {error}", self.law)))?;
         let shortest = &resolved.required.shortest;

@@ -30,9 +30,7 @@ pub fn read(path: &Path) -> Result<Requirement, Problems> {
 fn load(path: &Path) -> Result<String, Problem> {
     let unreadable = |error: std::io::Error| {
         let help = match error.kind() {
-            std::io::ErrorKind::NotFound => {
-                "check the path: it begins at the current folder; every value can be given as an option, too"
-            }
+            std::io::ErrorKind::NotFound => "check the path; every value can be given as an option, too",
             std::io::ErrorKind::IsADirectory => "give the requirement file in this folder",
             _ => "make the file readable",
         };

@@ -159,7 +159,7 @@ fn open(path: &Path, name: &str) -> Result<File, ReadError> {
         Err(error) if error.kind() == io::ErrorKind::NotFound => {
             faults.whole_file("there is no such file");
             faults.help(neighbour(path).map_or_else(
-                || "check the path: it begins at the current folder".to_owned(),
+                || "check the path; a relative one begins at the current folder".to_owned(),
                 |near| format!("did you mean {near}?"),
             ));
         }

@@ -145,8 +145,9 @@ impl<'a> Rows<'a> {
 
     /// Takes the time of a row, or says what is wrong with it.
     fn time(&mut self, cell: &[u8]) -> Result<(), String> {
-        let time = number::time(cell, self.layout.mark, self.unit_power)
-            .map_err(|error| format!("{} {}", quoted(cell), error.reason("a time")))?;
+        let time = number::time(cell, self.layout.mark, self.unit_power).map_err(|error| {
+            format!("{} {}; a time is a number such as 0.001", quoted(cell), error.reason("a time"))
+        })?;
         match self.before {
             None => {
                 if time.at < 0 {
@@ -258,15 +259,19 @@ impl Lane {
     ) -> Result<Reading, String> {
         let known = |level| Reading::Known(options.polarity.position(level));
         if let Some(thresholds) = options.thresholds {
-            let value = number::real(cell, layout.mark)
-                .map_err(|error| format!("{} {}", quoted(cell), error.reason("a voltage")))?;
+            let value = number::real(cell, layout.mark).map_err(|error| {
+                format!("{} {}; a voltage is a number such as 3.3", quoted(cell), error.reason("a voltage"))
+            })?;
             let volts = self.unit.volts(value);
             self.see(volts);
             return Ok(thresholds.level(volts).map_or(Reading::Between, known));
         }
         let cell = cell::parse(cell, layout.mark).map_err(|error| {
-            let wanted = if self.is_volts { "a voltage" } else { "a level; use 0 or 1, or low or high" };
-            format!("{} {}", quoted(cell), error.reason(wanted))
+            let (wanted, instead) = match self.is_volts {
+                true => ("a voltage", "a voltage is a number such as 3.3"),
+                false => ("a level", "use 0 or 1, or low or high"),
+            };
+            format!("{} {}; {instead}", quoted(cell), error.reason(wanted))
         })?;
         let (reading, number) = match cell {
             Cell::Unknown => return Ok(Reading::Unknown),

@@ -279,13 +279,13 @@ fn csv_bad_rows_are_all_listed_with_their_places() {
         &plain(),
         &[
             "3:2: the row has 1 of the 2 fields that it needs",
-            "4:1: \"abc\" is not a time",
+            "4:1: \"abc\" is not a time; a time is a number such as 0.001",
             "5:3: \"up\" is not a level; use 0 or 1, or low or high",
-            "7:1: time 3 is not later than the 3 before it",
-            "8:1: time 2 is not later than the 3 before it",
+            "7:1: time 3 is not later than the 3 before it; put the rows in the order of their times",
+            "8:1: time 2 is not later than the 3 before it; put the rows in the order of their times",
             "9:3: \"\" is not a level; use 0 or 1, or low or high",
-            "10:1: \"nan\" is not a time: it is not finite",
-            "11:3: \"inf\" is not a level; use 0 or 1, or low or high: it is not finite",
+            "10:1: \"nan\" is not a time: it is not finite; a time is a number such as 0.001",
+            "11:3: \"inf\" is not a level: it is not finite; use 0 or 1, or low or high",
         ],
     );
     let text = "0.0,0.5\n0.1,NaN\n0.2,volts\n0.3,1e999\n";
@@ -293,16 +293,20 @@ fn csv_bad_rows_are_all_listed_with_their_places() {
         text,
         &with_thresholds(None),
         &[
-            "2:5: \"NaN\" is not a voltage: it is not finite",
-            "3:5: \"volts\" is not a voltage",
-            "4:5: \"1e999\" is not a voltage: it is too large",
+            "2:5: \"NaN\" is not a voltage: it is not finite; a voltage is a number such as 3.3",
+            "3:5: \"volts\" is not a voltage; a voltage is a number such as 3.3",
+            "4:5: \"1e999\" is not a voltage: it is too large; a voltage is a number such as 3.3",
         ],
     );
 }
 
 #[test]
 fn csv_bad_first_row_behind_a_header_is_no_preamble() {
-    refused("time (ms),level\nabc,1\n0,0\n5,1\n", &plain(), &["2:1: \"abc\" is not a time"]);
+    refused(
+        "time (ms),level\nabc,1\n0,0\n5,1\n",
+        &plain(),
+        &["2:1: \"abc\" is not a time; a time is a number such as 0.001"],
+    );
     refused(
         "time (ms),level\n1,\n2,0\n5,1\n",
         &plain(),
@@ -329,7 +333,11 @@ fn csv_times_beyond_64_bits_are_refused() {
         &plain(),
         &["3:1: time \"18446744073709551616\" exceeds the 18446744073709551615 ns that fit 64 bits"],
     );
-    refused("t/s,level\n0,0\n1e30,1\n", &plain(), &["3:1: \"1e30\" is not a time: it is too large"]);
+    refused(
+        "t/s,level\n0,0\n1e30,1\n",
+        &plain(),
+        &["3:1: \"1e30\" is not a time: it is too large; a time is a number such as 0.001"],
+    );
 }
 
 #[test]
