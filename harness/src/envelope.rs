@@ -1,6 +1,8 @@
 //! The envelope in time: what is claimed of the contact itself, before any clock looks at it.
 
-use debounce_core::{Envelope, PerChange, PerPosition, TickClock};
+use debounce_core::{Envelope, PerChange, PerPosition, Period, TickClock};
+
+use crate::quantity::{TickPeriod, Time};
 
 /// The set of waveforms a claim is made for, in nanoseconds. The same clauses as [`Envelope`], before sampling.
 ///
@@ -27,9 +29,10 @@ pub struct PhysicalEnvelope {
 pub enum TickError {
     /// The clock cannot tell one disturbance from the next.
     #[error(
-        "disturbances {quiet_ns} ns apart come faster than a tick of {} can tell apart; \
-         use a tick period of {longest_period_ns} ns or less",
-        period_text(*.period_numerator_ns, *.period_denominator)
+        "disturbances {} apart come faster than a tick of {} can tell apart; use a tick period of {} or less",
+        exact(*.quiet_ns),
+        period_text(*.period_numerator_ns, *.period_denominator),
+        exact(*.longest_period_ns)
     )]
     QuietUnseen {
         /// The quiet between disturbances.
@@ -44,8 +47,10 @@ pub enum TickError {
     },
     /// No tick period helps: the sample instants wander by more than the quiet.
     #[error(
-        "disturbances {quiet_ns} ns apart come closer than the sample instants wander ({jitter_ns} ns of jitter); \
-         no tick period can tell them apart, reduce the jitter or state a longer quiet"
+        "disturbances {} apart come closer than the sample instants wander ({} of jitter); \
+         no tick period can tell them apart, reduce the jitter or state a longer quiet",
+        exact(*.quiet_ns),
+        exact(*.jitter_ns)
     )]
     QuietBelowJitter {
         /// The quiet between disturbances.
@@ -55,8 +60,14 @@ pub enum TickError {
     },
 }
 
+/// Every digit: these figures are for comparing and copying.
+fn exact(ns: u64) -> String {
+    format!("{:.20}", Time::from_ns(ns))
+}
+
 fn period_text(numerator_ns: u64, denominator: u32) -> String {
-    if denominator == 1 { format!("{numerator_ns} ns") } else { format!("{numerator_ns}/{denominator} ns") }
+    let period = Period::try_from_ratio(numerator_ns, denominator).map(TickPeriod::from);
+    period.map_or_else(|| format!("{numerator_ns}/{denominator} ns"), |period| period.to_string())
 }
 
 impl PhysicalEnvelope {
@@ -139,7 +150,6 @@ const fn with_straddling(bounce: u32, straddling: u32, of_new_position: u32, cal
 #[cfg(test)]
 mod tests {
     use super::*;
-    use debounce_core::Period;
 
     const MS: u64 = 1_000_000;
 
@@ -215,8 +225,8 @@ mod tests {
         let error = button().in_ticks(&TickClock::new(Period::from_hz(30))).unwrap_err();
         assert_eq!(
             error.to_string(),
-            "disturbances 10000000 ns apart come faster than a tick of 100000000/3 ns can tell apart; \
-             use a tick period of 10000000 ns or less"
+            "disturbances 10 ms apart come faster than a tick of 30 Hz can tell apart; \
+             use a tick period of 10 ms or less"
         );
     }
 

@@ -3,11 +3,9 @@
 use std::fmt;
 use std::str::FromStr;
 
-use debounce_core::{
-    Envelope, Integrator, MajorityRegister, ParameterError, PerChange, ShiftRegister, StateMachine,
-    StateMachineParameters, Verdict,
-};
+use debounce_core::{Envelope, ParameterError, PerChange, Verdict};
 
+use crate::logic::Logic;
 use crate::nearest::nearest;
 
 /// One of the built-in laws with its parameters, in ticks.
@@ -75,20 +73,7 @@ impl LawParameters {
     /// # Errors
     /// When the law refuses the parameters.
     pub fn verdict(&self, envelope: &Envelope) -> Result<Verdict, ParameterError> {
-        // The widest counts hold every parameter, and the width does not matter to the answer.
-        Ok(match *self {
-            Self::Integrator { full_scale, up, down } => {
-                Integrator::<u16>::try_with_steps(full_scale, up, down)?.verdict(envelope)
-            }
-            Self::ShiftRegister { window } => ShiftRegister::try_new(window)?.verdict(envelope),
-            Self::MajorityRegister { majority, window } => {
-                MajorityRegister::<u32>::try_new(majority, window)?.verdict(envelope)
-            }
-            Self::StateMachine { confirm, patience, lockout } => {
-                StateMachine::<u16>::try_new(StateMachineParameters { confirm, patience, lockout })?
-                    .verdict(envelope)
-            }
-        })
+        Ok(Logic::try_new(self)?.verdict(envelope))
     }
 }
 
@@ -238,6 +223,8 @@ impl FromStr for LawParameters {
 
 #[cfg(test)]
 mod tests {
+    use debounce_core::{Integrator, ShiftRegister};
+
     use super::*;
 
     #[track_caller]

@@ -1,9 +1,10 @@
 //! The word that was probably meant: nearest by edits, for help texts.
+//!
+//! An edit is one character put in, left out, replaced or swapped with its neighbour; upper and lower case count
+//! as the same. A third of what was written may be wrong: a longer repair is a guess and not a slip. Of equally
+//! near candidates the first one wins.
 
 /// The candidate that takes the fewest edits to reach from `word`, if that is close enough to be a slip.
-///
-/// An edit is one character put in, left out, replaced or swapped with its neighbour; upper and lower case
-/// count as the same. Of equally near candidates the first one wins.
 ///
 /// # Examples
 /// ```
@@ -13,18 +14,48 @@
 /// ```
 #[must_use]
 pub fn nearest<'a>(word: &str, candidates: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
-    let word: Vec<char> = word.to_lowercase().chars().collect();
-    // A third of the word may be wrong; a longer repair is a guess and not a slip.
-    let allowed = (word.len() / 3).max(1);
-    let mut best: Option<(usize, &str)> = None;
-    for candidate in candidates {
-        let other: Vec<char> = candidate.to_lowercase().chars().collect();
-        let needed = edits(&word, &other);
-        if needed <= allowed && best.is_none_or(|(least, _)| needed < least) {
-            best = Some((needed, candidate));
-        }
+    least(word, candidates, |word, candidate| (edits(word, candidate), 0))
+}
+
+/// The same for names with scopes, such as `top.panel.button`: the last part alone may be the near one.
+///
+/// # Examples
+/// ```
+/// use harness::nearest::nearest_scoped;
+/// assert_eq!(nearest_scoped("buton", ["top.lamp", "top.panel.button"]), Some("top.panel.button"));
+/// ```
+#[must_use]
+pub fn nearest_scoped<'a>(name: &str, candidates: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
+    fn last_part(name: &[char]) -> &[char] {
+        name.rsplit(|&letter| letter == '.').next().unwrap_or_default()
     }
-    best.map(|(_, candidate)| candidate)
+    least(name, candidates, |name, candidate| {
+        let whole = edits(name, candidate);
+        (whole.min(edits(last_part(name), last_part(candidate))), whole)
+    })
+}
+
+/// The candidate of the least cost whose first part is small enough for a slip.
+fn least<'a>(
+    word: &str,
+    candidates: impl IntoIterator<Item = &'a str>,
+    cost: impl Fn(&[char], &[char]) -> (usize, usize),
+) -> Option<&'a str> {
+    // Longer input is no slip of the fingers, and the edits cost its square.
+    const LONGEST: usize = 256;
+    let letters = |text: &str| text.to_lowercase().chars().collect::<Vec<char>>();
+    if word.len() > LONGEST {
+        return None;
+    }
+    let word = letters(word);
+    let allowed = (word.len() / 3).max(1);
+    candidates
+        .into_iter()
+        .filter(|candidate| candidate.len() <= LONGEST)
+        .map(|candidate| (cost(&word, &letters(candidate)), candidate))
+        .filter(|((needed, _), _)| *needed <= allowed)
+        .min_by_key(|(cost, _)| *cost)
+        .map(|(_, candidate)| candidate)
 }
 
 /// Edits between two words, by the usual table of prefixes (optimal string alignment).
@@ -64,6 +95,43 @@ mod tests {
         check("shortest-open", Some("shortest_open"));
         check("shortest_close", Some("shortest_closed"));
         check("cal", Some("calm"));
+    }
+
+    #[test]
+    fn nearest_scoped_finds_the_slip_and_nothing_far() {
+        let names = ["top.panel.button", "top.panel.lamp", "clock"];
+        for (wanted, expected) in [
+            ("buton", Some("top.panel.button")),
+            ("top.panle.button", Some("top.panel.button")),
+            ("BUTTON", Some("top.panel.button")),
+            ("clok", Some("clock")),
+            ("encoder_a", None),
+        ] {
+            assert_eq!(nearest_scoped(wanted, names), expected, "{wanted}");
+        }
+    }
+
+    #[test]
+    fn nearest_of_overlong_words_is_not_sought() {
+        let (longest, longer) = ("a".repeat(256), "a".repeat(257));
+        assert_eq!(nearest(&longest, [longest.as_str()]), Some(longest.as_str()));
+        assert_eq!(nearest(&longer, [longest.as_str()]), None);
+        assert_eq!(nearest(&longest, [longer.as_str()]), None);
+    }
+
+    #[test]
+    fn edits_count_single_changes() {
+        let letters = |text: &str| text.chars().collect::<Vec<char>>();
+        for (a, b, expected) in [
+            ("", "", 0),
+            ("", "abc", 3),
+            ("button", "buton", 1),
+            ("button", "buttno", 1),
+            ("kitten", "sitting", 3),
+        ] {
+            assert_eq!(edits(&letters(a), &letters(b)), expected, "{a} {b}");
+            assert_eq!(edits(&letters(b), &letters(a)), expected, "{b} {a}");
+        }
     }
 
     #[test]

@@ -76,6 +76,16 @@ impl Problem {
         Self { message: message.into(), place: Place::Unplaced, help: Vec::new() }
     }
 
+    /// A problem from the text of an error, `what is wrong; what to do instead`: each part after a semicolon is
+    /// help. A semicolon in quotation marks belongs to the input and parts nothing.
+    #[must_use]
+    pub fn told(text: impl fmt::Display) -> Self {
+        let text = text.to_string();
+        let mut parts = sentences(&text).map(str::to_owned);
+        let message = parts.next().unwrap_or_default();
+        Self { message, place: Place::Unplaced, help: parts.collect() }
+    }
+
     /// Says in which file the problem lies.
     #[must_use]
     pub fn in_file(mut self, path: impl Into<PathBuf>) -> Self {
@@ -177,6 +187,25 @@ impl Problem {
     }
 }
 
+/// The parts of a text between semicolons that stand outside quotation marks.
+fn sentences(text: &str) -> impl Iterator<Item = &str> {
+    let (mut from, mut is_quoted, mut is_escaped) = (0, false, false);
+    let mut cuts = Vec::new();
+    for (at, letter) in text.char_indices() {
+        match letter {
+            '"' if !is_escaped => is_quoted = !is_quoted,
+            ';' if !is_quoted && text[at..].starts_with("; ") => {
+                cuts.push(&text[from..at]);
+                from = at + 2;
+            }
+            _ => {}
+        }
+        is_escaped = letter == '\\' && !is_escaped;
+    }
+    cuts.push(&text[from..]);
+    cuts.into_iter()
+}
+
 /// Keeps a span inside the text and on character boundaries, whatever a parser reported.
 fn clamp(span: &Range<usize>, text: &str) -> Range<usize> {
     let start = boundary(text, span.start);
@@ -210,10 +239,17 @@ impl fmt::Display for Problem {
 pub struct Problems(Vec<Problem>);
 
 impl Problems {
-    /// The problems, in the order in which they stand in the input; `None` where there are none.
+    /// The problems, file by file as they were found, and each file in its order; `None` where there are none.
     #[must_use]
     pub fn from_found(mut problems: Vec<Problem>) -> Option<Self> {
-        problems.sort_by_key(Problem::line_column);
+        let mut files: Vec<Option<PathBuf>> = Vec::new();
+        for problem in &problems {
+            if !files.iter().any(|known| known.as_deref() == problem.path()) {
+                files.push(problem.path().map(Path::to_path_buf));
+            }
+        }
+        let file = |problem: &Problem| files.iter().position(|known| known.as_deref() == problem.path());
+        problems.sort_by_key(|problem| (file(problem), problem.line_column()));
         (!problems.is_empty()).then_some(Self(problems))
     }
 
@@ -295,6 +331,28 @@ mod tests {
             let shown = Problem::new("odd").mark(&source, span.clone(), "").render(&Renderer::plain());
             assert!(shown.contains("odd"), "{span:?}: {shown}");
         }
+    }
+
+    #[test]
+    fn problem_told_by_an_error_parts_what_from_what_to_do() {
+        let told = |text: &str| {
+            let problem = Problem::told(text);
+            assert_eq!(problem.to_string(), text, "nothing is lost");
+            (problem.message().to_owned(), problem.helps().to_vec())
+        };
+        assert_eq!(told("a; b; c"), ("a".to_owned(), vec!["b".to_owned(), "c".to_owned()]));
+        assert_eq!(told("\"a; b\" is odd"), ("\"a; b\" is odd".to_owned(), vec![]));
+        assert_eq!(told(r#""\"; b" is odd; c"#), (r#""\"; b" is odd"#.to_owned(), vec!["c".to_owned()]));
+        assert_eq!(told("a;b"), ("a;b".to_owned(), vec![]));
+    }
+
+    #[test]
+    fn problems_of_several_files_stay_together() {
+        let at = |file: &str, line| Problem::new(format!("{file}{line}")).at(file, line, 1);
+        let found = vec![at("b", 9), at("a", 1), at("b", 2), Problem::new("whole").in_file("b"), at("a", 3)];
+        let problems = Problems::from_found(found).unwrap();
+        let order: Vec<&str> = problems.iter().map(Problem::message).collect();
+        assert_eq!(order, ["whole", "b2", "b9", "a1", "a3"]);
     }
 
     #[test]

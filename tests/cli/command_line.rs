@@ -1,13 +1,18 @@
 //! The command `harness` from outside: exit codes, output that cannot be written, readers that go away.
 
-use std::fs::File;
-use std::process::{Command, Output, Stdio};
+mod bad_output;
+mod bad_recording;
+mod bad_requirement;
+mod bench;
+mod choose_emit;
+mod prove;
+mod replay;
+mod study;
 
-fn harness() -> Command {
-    let mut command = Command::new(env!("CARGO_BIN_EXE_harness"));
-    command.env_remove("NO_COLOR").env_remove("CLICOLOR_FORCE").stdin(Stdio::null());
-    command
-}
+use std::fs::File;
+use std::process::Output;
+
+use bench::{Bench, harness};
 
 fn run(arguments: &[&str]) -> Output {
     harness().args(arguments).output().expect("the command runs")
@@ -39,29 +44,53 @@ fn command_help_and_version_go_to_stdout() {
 #[test]
 fn command_with_a_slip_ends_with_2() {
     check(&["--jsn"], 2, "", "--jsn");
+    let told =
+        ("", "invalid value '20' for '--latency <TIME>': \"20\" has no unit", &["write \"20 ms\""][..]);
+    Bench::new().refuses_usage(&["choose", "--latency", "20"], told);
+    Bench::new().refuses_usage(&["prove", "integrater 5"], ("", "is not a law", &["write \"integrator 5\""]));
+    Bench::new().refuses_usage(&["stduy"], ("", "unrecognized subcommand", &["'study'"]));
 }
+
+/// The commands with a long answer as well as those with a short one.
+const ANSWERS: [&[&str]; 5] =
+    [&[], &["--help"], &["--version"], &["study", "--json"], &["emit", "--bounce", "5 ms", "--tick", "1 ms"]];
 
 #[cfg(target_os = "linux")]
 #[test]
 fn command_on_a_full_disk_says_so_and_ends_with_2() {
     let full = File::options().write(true).open("/dev/full").expect("the kernel's full device");
-    for arguments in [&[][..], &["--help"], &["--version"]] {
+    for arguments in ANSWERS {
         let full = full.try_clone().expect("a handle");
         let output = harness().args(arguments).stdout(full).output().expect("the command runs");
         let stderr = String::from_utf8(output.stderr).expect("UTF-8");
         assert_eq!(output.status.code(), Some(2), "{arguments:?}: {stderr}");
         assert!(
-            stderr.starts_with("error: standard output cannot be written: no space left on device"),
-            "{stderr}"
+            stderr.starts_with(
+                "error: standard output cannot be written: no space left on device\nhelp: make room"
+            ),
+            "{arguments:?}: {stderr}"
         );
     }
 }
 
 #[test]
 fn command_whose_reader_goes_away_ends_quietly() {
-    let (reader, writer) = std::io::pipe().expect("a pipe");
-    drop(reader);
-    let output = harness().stdout(writer).output().expect("the command runs");
-    assert_eq!(output.status.code(), Some(0));
-    assert!(output.stderr.is_empty(), "{}", String::from_utf8_lossy(&output.stderr));
+    for arguments in ANSWERS {
+        let (reader, writer) = std::io::pipe().expect("a pipe");
+        drop(reader);
+        let output = harness().args(arguments).stdout(writer).output().expect("the command runs");
+        assert_eq!(output.status.code(), Some(0), "{arguments:?}");
+        assert!(output.stderr.is_empty(), "{arguments:?}: {}", String::from_utf8_lossy(&output.stderr));
+    }
+}
+
+#[test]
+fn command_whose_reader_goes_away_still_tells_the_outcome() {
+    for (code, law) in [(0, "shift-register 3"), (1, "shift-register 2")] {
+        let (reader, writer) = std::io::pipe().expect("a pipe");
+        drop(reader);
+        let arguments = ["prove", law, "--envelope", "dwell=30 bounce=5"];
+        let output = harness().args(arguments).stdout(writer).output().expect("the command runs");
+        assert_eq!(output.status.code(), Some(code), "{}", String::from_utf8_lossy(&output.stderr));
+    }
 }

@@ -3,9 +3,7 @@
 //!
 //! Each build is a program of its own in a folder of its own; all of them share one target folder.
 
-use std::fs;
 use std::path::{Path, PathBuf};
-use std::process::Command;
 
 use debounce_core::{
     Bounds, Envelope, Integrator, Latency, MajorityRegister, PerChange, ShiftRegister, StateMachine,
@@ -15,6 +13,7 @@ use harness::emit::{Configuration, Proof, rust_module};
 use harness::law_text::LawParameters;
 use harness::problem::SourceText;
 use harness::requirement::{Measured, Resolved, parse};
+use integration_tests::firmware;
 
 const HOST: Option<&str> = None;
 const CORTEX_M0: Option<&str> = Some("thumbv6m-none-eabi");
@@ -56,35 +55,8 @@ fn best(resolved: &Resolved) -> Configuration {
     configuration(resolved, parameters, law.verdict(&envelope(resolved)))
 }
 
-/// Type-checks the module, and evaluates its constants, in a program without the standard library.
 fn build(name: &str, module: &str, target: Option<&str>) -> Result<(), String> {
-    let folder = tempfile::tempdir().expect("a folder");
-    let core = Path::new(env!("CARGO_MANIFEST_DIR"))
-        .join("../debounce-core")
-        .canonicalize()
-        .expect("the core crate");
-    let manifest = format!(
-        "[package]\nname = \"{name}\"\nversion = \"0.0.0\"\nedition = \"2024\"\n\
-         [dependencies]\ndebounce-core = {{ path = {core:?} }}\n[workspace]\n"
-    );
-    let library = "#![no_std]\n#![deny(warnings, missing_docs)]\n//! Firmware.\npub mod contact;\n";
-    fs::create_dir(folder.path().join("src")).expect("a folder");
-    for (file, text) in
-        [("Cargo.toml", manifest.as_str()), ("src/lib.rs", library), ("src/contact.rs", module)]
-    {
-        fs::write(folder.path().join(file), text).expect("a file");
-    }
-    let mut cargo = Command::new(env!("CARGO"));
-    cargo.args(["check", "--quiet", "--offline", "--color", "never"]).current_dir(folder.path());
-    cargo.env("CARGO_TARGET_DIR", target_folder()).env_remove("RUSTFLAGS");
-    if let Some(target) = target {
-        cargo.args(["--target", target]);
-    }
-    let output = cargo.output().expect("cargo runs");
-    if output.status.success() {
-        return Ok(());
-    }
-    Err(String::from_utf8_lossy(&output.stderr).into_owned())
+    firmware::check(name, module, target, &target_folder())
 }
 
 fn target_folder() -> PathBuf {

@@ -3,7 +3,7 @@
 use debounce_core::{Change, Position};
 
 use super::gap::Gap;
-use crate::generate::TruthChange;
+use crate::truth::TruthChange;
 
 /// Edges that belong together: no two neighbours are as far apart as the gap that ends a burst.
 #[derive(Clone, Copy, PartialEq, Eq, Debug)]

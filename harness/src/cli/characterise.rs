@@ -46,7 +46,7 @@ impl CharacteriseArguments {
     /// Runs the command.
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let input = Input::with_recordings(&self.input, session)?;
-        let resolved = input.requirement.resolve(&measured(&input.observed))?;
+        let resolved = input.requirement.fill_in(&measured(&input.observed))?;
         Ok(Box::new(Characterised { observed: input.observed, resolved }))
     }
 }

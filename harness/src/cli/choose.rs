@@ -7,7 +7,7 @@ use comfy_table::Table;
 use serde_json::{Value, json};
 
 use super::input::Input;
-use super::lines::Lines;
+use super::lines::{Lines, strong};
 use super::preference::PreferenceOption;
 use super::recordings::RequirementInput;
 use super::study::failure;
@@ -86,7 +86,13 @@ impl Answer for Chosen {
             }
         }
         match &ranking.reason {
-            Some(reason) => lines.item("First", &reason.to_string())?,
+            Some(reason) => {
+                if let Some(first) = ranking.recommended() {
+                    let law = format!("{} at a tick of {}", first.parameters, self.study.tick(first));
+                    lines.item("First", &strong(&law))?;
+                }
+                lines.more(&reason.to_string())?;
+            }
             None => lines
                 .item("None holds", &format!("{} candidates, nearest first", ranking.candidates.len()))?,
         }

@@ -15,6 +15,7 @@ use super::study_answer::nothing_holds;
 use super::{Answer, Failure, Outcome, OutputFolder, Session};
 use crate::emit::rust_module;
 use crate::law_text::LawParameters;
+use crate::logic::Logic;
 use crate::problem::Problem;
 use crate::report::json as report;
 use crate::study::Study;
@@ -32,7 +33,7 @@ pub struct EmitArguments {
     /// Recordings and requirement.
     #[command(flatten)]
     pub input: RequirementInput,
-    /// The law with its parameters in ticks, in place of the best candidate; needs one tick period
+    /// The law with its parameters in ticks, in place of the best candidate, at the best of the tick periods
     #[arg(long, value_name = "LAW")]
     pub law: Option<LawParameters>,
     /// What counts most.
@@ -60,13 +61,17 @@ impl EmitArguments {
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let input = Input::with_or_without_recordings(&self.input, session)?;
         let file = self.output.as_deref().map(OutputFolder::of_file).transpose()?;
+        if let Some(law) = &self.law {
+            // A law that cannot be is bad input, and not a candidate that fails.
+            Logic::try_new(law).map_err(|error| Problem::told(format!("{law}: {error}")))?;
+        }
         let only = self.law.map(|law| vec![law]);
         let study = Study::among(input.observed, &input.requirement, self.preference.into(), only, |_| {})
             .map_err(failure)?;
         let Some(configuration) = study.configuration() else {
             return Ok(Box::new(Emitted { study, module: None, written: None }));
         };
-        let module = rust_module(&configuration).map_err(|error| Problem::new(error.to_string()))?;
+        let module = rust_module(&configuration).map_err(Problem::told)?;
         let mut written = None;
         if let Some((folder, name)) = file {
             let mut files = folder.stage();

@@ -1,5 +1,6 @@
 //! An envelope in ticks as one option: "dwell=20 bounce=5/3 glitch=1/1 quiet=10".
 
+use std::fmt;
 use std::str::FromStr;
 
 use debounce_core::Envelope;
@@ -20,6 +21,18 @@ pub struct EnvelopeTextError(String);
 
 const KEYS: [&str; 6] = ["dwell", "bounce", "glitch", "quiet", "calm", "lost"];
 const EXAMPLE: &str = "\"dwell=20 bounce=5/3 glitch=1/1 quiet=10 calm=0 lost=0\"";
+
+impl fmt::Display for EnvelopeText {
+    /// In full, so that it reads back as the same envelope.
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let Envelope { dwell, bounce, glitch, quiet, calm, lost, .. } = self.0;
+        write!(
+            f,
+            "dwell={}/{} bounce={}/{} glitch={}/{} quiet={quiet} calm={calm} lost={lost}",
+            dwell.open, dwell.closed, bounce.make, bounce.break_, glitch.open, glitch.closed
+        )
+    }
+}
 
 impl FromStr for EnvelopeText {
     type Err = EnvelopeTextError;
@@ -79,7 +92,9 @@ mod tests {
         let read = |text: &str| text.parse::<EnvelopeText>().map(|EnvelopeText(envelope)| envelope);
         assert_eq!(read("dwell=20"), Ok(Envelope::clean(20, 20)));
         let full = Envelope::clean(20, 30).bounce(5, 3).glitch(1, 2).quiet(10).calm(4).lost(1);
-        assert_eq!(read("dwell=20/30 bounce=5/3 glitch=1/2 quiet=10 calm=4 lost=1"), Ok(full));
+        let text = "dwell=20/30 bounce=5/3 glitch=1/2 quiet=10 calm=4 lost=1";
+        assert_eq!(read(text), Ok(full));
+        assert_eq!(EnvelopeText(full).to_string(), text);
     }
 
     #[test]

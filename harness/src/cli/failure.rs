@@ -44,6 +44,11 @@ impl Failure {
     /// The exit code of every failure.
     pub const CODE: u8 = 2;
 
+    /// Everything that was found wrong.
+    pub(super) fn from_found(problems: Vec<Problem>) -> Self {
+        Problems::from_found(problems).map_or_else(|| Problem::new("something is wrong").into(), Self::from)
+    }
+
     /// What was wrong.
     #[must_use]
     pub fn problems(&self) -> &Problems {

@@ -48,6 +48,7 @@ impl OutputFolder {
                 .in_file(file)
                 .help("add the name of the file, such as contact.rs"));
         };
+        refuse_special(file)?;
         folder.temporary().map_err(|error| folder.refused("written", &error))?;
         Ok((folder, name.to_owned()))
     }
@@ -82,9 +83,28 @@ impl OutputFolder {
     }
 
     fn refused(&self, what: &str, error: &io::Error) -> Problem {
+        let help = match error.kind() {
+            io::ErrorKind::NotFound => "make the folder first, or give another",
+            io::ErrorKind::AlreadyExists | io::ErrorKind::NotADirectory => {
+                "a file stands where a folder is needed; give another folder"
+            }
+            _ => "give another folder, or make this one writable",
+        };
         Problem::new(format!("the output folder cannot be {what}: {}", plain_reason(error)))
             .in_file(self.real_path())
-            .help("give another folder, or make this one writable")
+            .help(help)
+    }
+}
+
+/// A device or a pipe cannot be replaced by a file, and must not be.
+fn refuse_special(file: &Path) -> Result<(), Problem> {
+    match fs::metadata(file) {
+        Ok(found) if !found.is_file() => {
+            Err(Problem::new("this is a device or a pipe, not an ordinary file")
+                .in_file(file)
+                .help("give the name of a file"))
+        }
+        _ => Ok(()),
     }
 }
 
@@ -126,6 +146,7 @@ impl StagedFiles {
         if target.is_dir() {
             return Err(Problem::new("there is a folder of this name").in_file(&target).help("move it away"));
         }
+        refuse_special(&target)?;
         let file = self.folder.temporary().map_err(failed)?;
         let mut buffered = io::BufWriter::new(file);
         write(&mut buffered).map_err(failed)?;
@@ -279,6 +300,8 @@ mod tests {
         // Holds for root as well, unlike a folder without write permission.
         let problem = OutputFolder::prepare("/proc/harness-out").expect_err("no one makes folders there");
         assert!(problem.message().starts_with("the output folder cannot be made: "), "{problem}");
+        let problem = OutputFolder::of_file(Path::new("/dev/full")).expect_err("a device");
+        assert!(problem.message().starts_with("this is a device or a pipe"), "{problem}");
         let problem = OutputFolder::prepare("/proc/self").expect_err("no one writes files there");
         assert!(problem.message().starts_with("the output folder cannot be written: "), "{problem}");
     }

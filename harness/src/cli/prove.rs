@@ -12,21 +12,22 @@ use super::envelope_text::EnvelopeText;
 use super::input::Input;
 use super::lines::{Lines, grouped, strong};
 use super::recordings::RequirementInput;
-use super::{Answer, Failure, Outcome, OutputFolder, Session};
+use super::{Answer, Failure, Outcome, OutputFolder, Session, faults};
 use crate::emit::module_name;
 use crate::emit::table::table_law;
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
 use crate::machine::{
-    MachineTable, Reading, TableFault, TableFileError, dot, read_table, table_text, terminal_diagram,
-    write_csv, write_kiss2,
+    MachineTable, Reading, dot, read_table, table_text, terminal_diagram, write_csv, write_kiss2,
 };
-use crate::problem::{Problem, Problems, plain_reason};
+use crate::problem::Problem;
 use crate::prove::{self, Contract, LawTable, Limits, Proof, prove_contract};
+use crate::quantity::TickPeriod;
 use crate::report::state_diagram::state_diagram;
 use crate::report::timing::TimingDiagram;
 use crate::report::witness::write_witness;
 use crate::report::{json as report, words};
+use crate::requirement::RequirementOptions;
 use crate::study::measured;
 
 /// Proves or refutes one law in an envelope.
@@ -50,8 +51,8 @@ pub struct ProveArguments {
     /// What the logic promises
     #[arg(long, value_enum, default_value_t)]
     pub contract: Promise,
-    /// The envelope in ticks, in place of a requirement
-    #[arg(long, value_name = "ENVELOPE", conflicts_with = "requirement")]
+    /// The envelope in ticks, in place of a requirement; --tick then only adds times to the answer
+    #[arg(long, value_name = "ENVELOPE")]
     pub envelope: Option<EnvelopeText>,
     /// Recordings and requirement.
     #[command(flatten)]
@@ -122,8 +123,9 @@ impl ProveArguments {
         let file = self.witness.as_deref().map(OutputFolder::of_file).transpose()?;
         let contract = self.contract.into();
         let limits = Limits::default();
-        let proof = prove_contract(&logic.table, &envelope, contract, &limits)
-            .map_err(|error| Problem::new(error.to_string()))?;
+        let proof = prove_contract(&logic.table, &envelope, contract, &limits).map_err(Problem::told)?;
+        let again = self.again(&envelope, tick);
+        let tick = tick.map(TickPeriod::period);
         let limit = envelope.limit().filter(|_| contract == Contract::Follow);
         let mut written = Vec::new();
         if let Some(path) = &self.machine {
@@ -136,22 +138,19 @@ impl ProveArguments {
         if let (Some((folder, name)), Some((_, witness))) = (file, proof.refutation()) {
             let period = tick.unwrap_or_else(|| Period::from_ms(1));
             let mut files = folder.stage();
-            files.add(&name, |out| write_witness(out, witness, period, &self.again()))?;
+            files.add(&name, |out| write_witness(out, witness, period, &again))?;
             written.extend(files.commit()?);
         }
-        Ok(Box::new(Proved { logic, envelope, tick, proof, limit, written, again: self.again() }))
+        Ok(Box::new(Proved { logic, envelope, tick, proof, limit, written, again }))
     }
 
     fn logic(&self) -> Result<Named, Failure> {
         if let Some(path) = &self.table {
-            let bytes = fs::read(path).map_err(|error| {
-                Problem::new(format!("the table cannot be read: {}", plain_reason(&error))).in_file(path)
-            })?;
+            let bytes = fs::read(path).map_err(|error| faults::unreadable("table", path, &error))?;
             let name = path.display().to_string();
             let machine = read_table(&name, &bytes, self.reading.into())
-                .map_err(|error| Failure::from(table_problems(&error)))?;
-            let table =
-                LawTable::of(&machine).map_err(|error| Problem::new(error.to_string()).in_file(path))?;
+                .map_err(|error| Failure::from_found(faults::table(&error)))?;
+            let table = LawTable::of(&machine).map_err(|error| Problem::told(error).in_file(path))?;
             return Ok(Named { name, table, machine });
         }
         let Some(parameters) = &self.law else {
@@ -160,16 +159,16 @@ impl ProveArguments {
                 .into());
         };
         let logic =
-            Logic::try_new(parameters).map_err(|error| Problem::new(format!("{parameters}: {error}")))?;
-        let table = logic.table().map_err(|error| Problem::new(format!("{parameters}: {error}")))?;
+            Logic::try_new(parameters).map_err(|error| Problem::told(format!("{parameters}: {error}")))?;
+        let table = logic.table().map_err(|error| Problem::told(format!("{parameters}: {error}")))?;
         let machine = MachineTable::of_table(&table);
         Ok(Named { name: parameters.to_string(), table, machine })
     }
 
     /// The envelope in samples, and the tick period where there is one.
-    fn envelope(&self, session: &Session) -> Result<(Envelope, Option<Period>), Failure> {
+    fn envelope(&self, session: &Session) -> Result<(Envelope, Option<TickPeriod>), Failure> {
         if let Some(EnvelopeText(envelope)) = self.envelope {
-            return Ok((envelope, None));
+            return Ok((envelope, self.tick_beside_envelope()?));
         }
         if self.input.is_empty() {
             return Err(Problem::new("no envelope is given")
@@ -181,48 +180,46 @@ impl ProveArguments {
         }
         let input = Input::with_or_without_recordings(&self.input, session)?;
         let resolved = input.requirement.resolve(&measured(&input.observed))?;
-        let &[tick] = resolved.ticks.value.as_slice() else {
-            let periods: Vec<String> = resolved.ticks.value.iter().map(ToString::to_string).collect();
-            return Err(Problem::new(format!("there are several tick periods: {}", periods.join(", ")))
-                .help(format!("choose one, such as --tick \"{}\"", periods[0]))
-                .into());
-        };
-        let envelope = resolved
-            .physical()
-            .in_ticks(&resolved.clock(tick))
-            .map_err(|error| Problem::new(error.to_string()))?;
-        Ok((envelope, Some(tick.period())))
+        let tick = only(&resolved.ticks.value)?;
+        let envelope = resolved.physical().in_ticks(&resolved.clock(tick)).map_err(Problem::told)?;
+        Ok((envelope, Some(tick)))
     }
 
-    /// The command that proves the same again.
-    fn again(&self) -> String {
-        let law = match (&self.table, &self.law) {
-            (Some(path), _) => format!("--table {}", path.display()),
-            (None, Some(law)) => format!("\"{law}\""),
-            (None, None) => String::new(),
+    /// An envelope in ticks leaves nothing open but how long a tick is.
+    fn tick_beside_envelope(&self) -> Result<Option<TickPeriod>, Failure> {
+        let ticks = &self.input.requirement.tick;
+        let only_ticks = RequirementInput {
+            requirement: RequirementOptions { tick: ticks.clone(), ..RequirementOptions::default() },
+            ..RequirementInput::default()
         };
-        let mut text = format!("harness prove {law}");
+        if self.input != only_ticks {
+            return Err(Problem::new(
+                "the envelope is given in ticks and by a requirement or recordings as well",
+            )
+            .help("give either --envelope, with --tick for times in the answer, or the requirement alone")
+            .into());
+        }
+        if ticks.is_empty() { Ok(None) } else { Ok(Some(only(ticks)?)) }
+    }
+
+    /// The command that proves the same again, from the envelope in ticks, however it was given.
+    fn again(&self, envelope: &Envelope, tick: Option<TickPeriod>) -> String {
+        let mut text = "harness prove".to_owned();
+        match (&self.table, &self.law) {
+            (Some(path), _) => {
+                text.push_str(&format!(" --table {}", shell_word(&path.display().to_string())))
+            }
+            (None, Some(law)) => text.push_str(&format!(" \"{law}\"")),
+            (None, None) => {}
+        }
+        if self.table.is_some() && self.reading == OutputOf::Mealy {
+            text.push_str(" --reading mealy");
+        }
         if self.contract == Promise::Alternate {
             text.push_str(" --contract alternate");
         }
-        if let Some(EnvelopeText(e)) = self.envelope {
-            text.push_str(&format!(
-                " --envelope \"dwell={}/{} bounce={}/{} glitch={}/{} quiet={} calm={} lost={}\"",
-                e.dwell.open,
-                e.dwell.closed,
-                e.bounce.make,
-                e.bounce.break_,
-                e.glitch.open,
-                e.glitch.closed,
-                e.quiet,
-                e.calm,
-                e.lost
-            ));
-        }
-        if let Some(path) = &self.input.requirement.requirement {
-            text.push_str(&format!(" --requirement {}", path.display()));
-        }
-        if let [tick] = self.input.requirement.tick.as_slice() {
+        text.push_str(&format!(" --envelope \"{}\"", EnvelopeText(*envelope)));
+        if let Some(tick) = tick {
             text.push_str(&format!(" --tick \"{tick}\""));
         }
         text
@@ -258,21 +255,23 @@ fn constant_name(path: &Path) -> String {
     module_name(stem).to_uppercase()
 }
 
-/// Every fault of a table, with its place.
-fn table_problems(error: &TableFileError) -> Problems {
-    let one = |fault: &TableFault| {
-        let problem = Problem::new(fault.message());
-        let problem = match (fault.line(), fault.column()) {
-            (Some(line), Some(column)) => problem.at(error.path(), line, column),
-            _ => problem.in_file(error.path()),
-        };
-        match fault.help() {
-            Some(help) => problem.help(help),
-            None => problem,
-        }
-    };
-    Problems::from_found(error.faults().iter().map(one).collect())
-        .unwrap_or_else(|| Problem::new("the table could not be read").into())
+/// The one tick period that a proof is for.
+fn only(ticks: &[TickPeriod]) -> Result<TickPeriod, Problem> {
+    if let &[tick] = ticks {
+        return Ok(tick);
+    }
+    let periods: Vec<String> = ticks.iter().map(ToString::to_string).collect();
+    let example = periods.first().map_or("1 ms", String::as_str);
+    Err(Problem::new(format!("there are several tick periods: {}", periods.join(", ")))
+        .help(format!("a proof is for one tick period; choose one, such as --tick \"{example}\"")))
+}
+
+/// A word as a shell takes it: in single quotes where it holds anything but letters, digits and `._-/`.
+fn shell_word(text: &str) -> String {
+    if !text.is_empty() && text.chars().all(|letter| letter.is_alphanumeric() || "._-/".contains(letter)) {
+        return text.to_owned();
+    }
+    format!("'{}'", text.replace('\'', r"'\''"))
 }
 
 /// A logic with what it is called.
@@ -296,13 +295,10 @@ struct Proved {
 impl Proved {
     /// Samples, and the delay they stand for where the tick is known.
     fn latency(&self, samples: u32) -> String {
-        match self.tick {
-            Some(period) => {
-                let below_ns = TickClock::new(period).delay_ns(samples).1;
-                format!("{samples} samples (less than {} at the nominal tick)", words::at_most(below_ns))
-            }
-            None => format!("{samples} samples"),
-        }
+        let counted = words::count(samples as usize, "sample");
+        let Some(period) = self.tick else { return counted };
+        let below_ns = TickClock::new(period).delay_ns(samples).1;
+        format!("{counted} (less than {} at the nominal tick)", words::at_most(below_ns))
     }
 }
 
@@ -388,11 +384,11 @@ impl Proved {
         lines.item(
             "Explored",
             &format!(
-                "{} states of contact, disturbances and law together, {} transitions; the law alone has {} ({} bits)",
+                "{} states of contact, disturbances and law together, {} transitions; the law alone has {} ({})",
                 grouped(self.proof.states),
                 grouped(self.proof.transitions),
                 words::count(counts.states, "state"),
-                counts.state_bits,
+                words::count(counts.state_bits as usize, "bit"),
             ),
         )
     }

@@ -44,6 +44,7 @@ pub(super) fn recorded(lines: &mut Lines<'_>, one: &Observed) -> io::Result<()> 
 /// What the recorded operations allow to claim of those to come.
 pub(super) fn claims(lines: &mut Lines<'_>, observed: &[Observed], resolved: &Resolved) -> io::Result<()> {
     let (confidence, coverage) = (resolved.confidence.value, resolved.coverage.value);
+    let mut parts = Vec::new();
     for change in [Change::Make, Change::Break] {
         let claim = Claim::of(observed, change, confidence, coverage);
         let Some(claim) = claim.map_err(io::Error::other)? else { continue };
@@ -54,15 +55,16 @@ pub(super) fn claims(lines: &mut Lines<'_>, observed: &[Observed], resolved: &Re
         };
         // Rounded down to a tenth of a percent, which understates what is covered.
         let covered = (claim.covered * 1000.0).floor() / 10.0;
-        lines.item(
-            "Claim",
-            &format!(
-                "with {confidence} confidence {covered:.1} % of {}s bounce no longer than {} ({} recorded{enough}), were they independent",
-                words::change(change),
-                words::at_most(claim.longest_ns),
-                claim.operations,
-            ),
-        )?;
+        parts.push(format!(
+            "{covered:.1} % of {}s bounce no longer than {} ({} recorded{enough})",
+            words::change(change),
+            words::at_most(claim.longest_ns),
+            claim.operations,
+        ));
     }
-    Ok(())
+    if parts.is_empty() {
+        return Ok(());
+    }
+    let text = format!("with {confidence} confidence, were they independent: {}", parts.join(", and "));
+    lines.item("Claim", &text)
 }

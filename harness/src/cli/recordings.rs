@@ -8,7 +8,7 @@ use crate::problem::Problem;
 use crate::quantity::Time;
 use crate::requirement::{Requirement, RequirementOptions};
 
-use super::Failure;
+use super::{Failure, ReadingOptions};
 
 /// Recordings and requirement, the input of most commands.
 #[derive(Args, Clone, PartialEq, Debug, Default)]
@@ -19,9 +19,9 @@ pub struct RequirementInput {
     /// The rest that ends a burst of bounce; found from each recording without it
     #[arg(long, value_name = "TIME", help_heading = "Recordings")]
     pub gap: Option<Time>,
-    /// The recorder's own sample period, where the file does not show it (a VCD never does)
-    #[arg(long, value_name = "TIME", help_heading = "Recordings")]
-    pub resolution: Option<Time>,
+    /// How the recordings are read.
+    #[command(flatten)]
+    pub reading: ReadingOptions,
     /// The requirement.
     #[command(flatten)]
     pub requirement: RequirementOptions,

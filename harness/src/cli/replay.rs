@@ -62,9 +62,9 @@ impl ReplayArguments {
     /// Runs the command.
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let input = Input::with_recordings(&self.input, session)?;
-        let resolved = input.requirement.resolve(&measured(&input.observed))?;
+        let resolved = input.requirement.fill_in(&measured(&input.observed))?;
         let logic =
-            Logic::try_new(&self.law).map_err(|error| Problem::new(format!("{}: {error}", self.law)))?;
+            Logic::try_new(&self.law).map_err(|error| Problem::told(format!("{}: {error}", self.law)))?;
         let shortest = &resolved.required.shortest;
         let draws = Draws {
             count: self.draws,
@@ -76,7 +76,7 @@ impl ReplayArguments {
             for &tick in &resolved.ticks.value {
                 let clock = resolved.clock(tick);
                 let prepared = PreparedClock::new(&one.recording.trace, &one.truth, &clock, draws)
-                    .map_err(|error| Problem::new(format!("{}: {error}", one.name)))?;
+                    .map_err(|error| Problem::told(format!("{}: {error}", one.name)))?;
                 let measured = with_law!(&logic, law => prepared.measure(law));
                 runs.push(Run { recording, tick, clock, measured });
             }
@@ -159,7 +159,7 @@ impl Replayed {
                 &format!(
                     "{} at {}, at {:.1} % of phases",
                     words::change(missed.change),
-                    words::about(missed.at_ns),
+                    words::instant(missed.at_ns),
                     missed.probability * 100.0
                 ),
             )?;
@@ -170,8 +170,8 @@ impl Replayed {
                 &format!(
                     "{} between {} and {}, {:.3} on average in one pass",
                     words::change(place.change),
-                    words::about(place.from_ns),
-                    words::about(place.until_ns),
+                    words::instant(place.from_ns),
+                    words::instant(place.until_ns),
                     place.mean
                 ),
             )?;
@@ -181,7 +181,9 @@ impl Replayed {
             lines.more("none missed and none false, at any phase of the nominal tick")?;
         } else if missed > SHOWN || places > SHOWN {
             lines.more(&format!(
-                "in all {missed} missed at some phase, {places} places with false edges; --json lists them"
+                "{} missed at some phase and {} with a false edge in all; --json lists them",
+                words::count(missed, "operation"),
+                words::count(places, "place")
             ))?;
         }
         if let Some(drawn) = &run.measured.drawn {
@@ -201,7 +203,7 @@ impl Replayed {
         let shown = with_law!(&self.logic, law => around(law, &sampler, one, latency.slowest.at_ns));
         lines.plain(&format!(
             "\nslowest make, at {}, one column a tick:\n{}",
-            words::about(latency.slowest.at_ns),
+            words::instant(latency.slowest.at_ns),
             TimingDiagram(&shown)
         ))
     }

@@ -7,11 +7,12 @@ use std::process::ExitCode;
 use clap::error::ErrorKind;
 use clap::{CommandFactory, Parser, Subcommand};
 
-use super::session::to_stdout;
+use super::session::{print_problems, to_stdout};
 use super::{
     Answer, CharacteriseArguments, ChooseArguments, EmitArguments, Failure, GlobalOptions, ProveArguments,
     ReplayArguments, Session, StudyArguments,
 };
+use crate::problem::Problem;
 
 /// The workbench for mechanical contacts: from a recording to a proven debouncer.
 #[derive(Parser, Debug)]
@@ -65,9 +66,10 @@ impl Command {
 
 /// Runs the command line `arguments`, the first of which is the name of the program.
 pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
-    let line = match CommandLine::try_parse_from(arguments) {
+    let arguments: Vec<OsString> = arguments.into_iter().collect();
+    let line = match CommandLine::try_parse_from(&arguments) {
         Ok(line) => line,
-        Err(error) => return usage(&error),
+        Err(error) => return usage(&error, arguments.iter().any(|argument| argument == "--json")),
     };
     let Some(command) = line.command else {
         return end(first_steps(), 0);
@@ -92,14 +94,21 @@ fn end(printed: Result<(), Failure>, code: u8) -> ExitCode {
     }
 }
 
-/// Help and version go to standard output, a slip to standard error.
-fn usage(error: &clap::Error) -> ExitCode {
+/// Help and version go to standard output, a slip to standard error and, for a program, as a document as well.
+fn usage(error: &clap::Error, wants_json: bool) -> ExitCode {
     let rendered = error.render();
     if matches!(error.kind(), ErrorKind::DisplayHelp | ErrorKind::DisplayVersion) {
         return end(to_stdout(|out| write!(out, "{}", rendered.ansi())), 0);
     }
     drop(write!(anstream::stderr(), "{}", rendered.ansi()));
-    ExitCode::from(Failure::CODE)
+    if !wants_json {
+        return ExitCode::from(Failure::CODE);
+    }
+    let text = rendered.to_string();
+    let mut paragraphs = text.split("\n\n").map(|paragraph| paragraph.trim().trim_start_matches("error: "));
+    let problem = Problem::told(paragraphs.next().unwrap_or_default().replace("\n ", ""));
+    let problem = paragraphs.fold(problem, Problem::help);
+    end(print_problems("usage", &problem.into()), Failure::CODE)
 }
 
 /// What to do first, for someone who typed nothing but the name.

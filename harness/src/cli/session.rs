@@ -9,7 +9,7 @@ use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
 use serde_json::{Value, json};
 
 use super::{Failure, Outcome};
-use crate::problem::Problem;
+use crate::problem::{Problem, Problems};
 
 /// The version of the JSON output; it goes up when a field changes its meaning or goes away.
 pub const SCHEMA: u32 = 1;
@@ -85,8 +85,7 @@ impl Session {
     /// Where standard output cannot be written for any other reason.
     pub fn print(&self, answer: &dyn Answer) -> Result<(), Failure> {
         if self.options.json {
-            let document = self.document(answer.outcome().word(), "result", answer.to_json());
-            return self.print_json(&document);
+            return print_json(&document(self.command, answer.outcome().word(), "result", answer.to_json()));
         }
         to_stdout(|out| answer.write_text(out))
     }
@@ -101,26 +100,30 @@ impl Session {
         if !self.options.json {
             return Ok(());
         }
-        let problems: Value = failure.problems().iter().map(problem_json).collect();
-        self.print_json(&self.document("failed", "problems", problems))
+        print_problems(self.command, failure.problems())
     }
+}
 
-    fn document(&self, outcome: &str, key: &str, value: Value) -> Value {
-        json!({
-            "schema": SCHEMA,
-            "version": env!("CARGO_PKG_VERSION"),
-            "command": self.command,
-            "outcome": outcome,
-            key: value,
-        })
-    }
+/// What was wrong, for a program.
+pub(super) fn print_problems(command: &str, problems: &Problems) -> Result<(), Failure> {
+    print_json(&document(command, "failed", "problems", problems.iter().map(problem_json).collect()))
+}
 
-    fn print_json(&self, document: &Value) -> Result<(), Failure> {
-        to_stdout(|out| {
-            serde_json::to_writer_pretty(&mut *out, document)?;
-            out.write_all(b"\n")
-        })
-    }
+fn document(command: &str, outcome: &str, key: &str, value: Value) -> Value {
+    json!({
+        "schema": SCHEMA,
+        "version": env!("CARGO_PKG_VERSION"),
+        "command": command,
+        "outcome": outcome,
+        key: value,
+    })
+}
+
+fn print_json(document: &Value) -> Result<(), Failure> {
+    to_stdout(|out| {
+        serde_json::to_writer_pretty(&mut *out, document)?;
+        out.write_all(b"\n")
+    })
 }
 
 fn problem_json(problem: &Problem) -> Value {
@@ -159,8 +162,7 @@ mod tests {
             "help": ["write \"12 ms\""],
         });
         assert_eq!(problem_json(&problem), expected);
-        let document =
-            Session::new("choose", GlobalOptions::default()).document("failed", "problems", json!([]));
+        let document = document("choose", "failed", "problems", json!([]));
         assert_eq!(document["schema"], SCHEMA);
         assert_eq!(document["command"], "choose");
         assert_eq!(document["outcome"], "failed");

@@ -69,7 +69,11 @@ impl StudyArguments {
 pub(super) fn failure(error: StudyError) -> Failure {
     match error {
         StudyError::Requirement(problems) => problems.into(),
-        other => Problem::new(other.to_string()).into(),
+        StudyError::NoClock { reason } => {
+            let problem = Problem::new(format!("no tick period serves the requirement: {reason}"));
+            problem.help("add a shorter period with --tick or under [clock], or state a longer quiet").into()
+        }
+        other => Problem::told(other).into(),
     }
 }
 

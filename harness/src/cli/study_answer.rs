@@ -128,7 +128,7 @@ impl StudyAnswer {
             for violation in conforms.violations.iter().take(SHOWN) {
                 lines.more(&format!(
                     "{}: {} ({} found, {} allowed)",
-                    words::about(violation.at_ns),
+                    words::instant(violation.at_ns),
                     violation.clause.text(),
                     words::about(violation.found_ns),
                     words::about(violation.allowed_ns)

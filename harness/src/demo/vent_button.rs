@@ -3,12 +3,12 @@
 //! After a change here, rewrite the file with
 //! `HARNESS_REWRITE_DEMO=1 cargo test -p harness demo::vent_button`, and look at what changed.
 
-use std::io::{self, Write};
+use std::io;
 
-use debounce_core::{PerChange, Position};
+use debounce_core::PerChange;
 
 use crate::generate::{Between, Bounce, ContactModel, Disturbances, Generated, Scenario, SecondBurst};
-use crate::trace::{Trace, TraceError};
+use crate::trace::{TraceError, write_vcd};
 
 /// Name of the channel in the file.
 pub const CHANNEL: &str = "vent_button";
@@ -79,30 +79,12 @@ pub fn recording() -> Result<Generated, TraceError> {
 pub fn file() -> io::Result<Vec<u8>> {
     let made = recording().map_err(io::Error::other)?;
     let mut bytes = Vec::new();
-    write(&mut bytes, &made.trace)?;
+    write_vcd(&mut bytes, &[(CHANNEL, &made.trace)], COMMENT)?;
     Ok(bytes)
 }
 
 const COMMENT: &str = "invented: the vent push-button of a greenhouse control panel that does not exist, \
                        made by a seeded generator; edges at 1 MHz, 1 is closed";
-
-/// The only place that knows how a trace is written.
-fn write(out: &mut impl Write, trace: &Trace) -> io::Result<()> {
-    writeln!(out, "$comment\n  {COMMENT}\n$end\n$timescale 1 ns $end")?;
-    writeln!(
-        out,
-        "$scope module harness $end\n$var wire 1 ! {CHANNEL} $end\n$upscope $end\n$enddefinitions $end"
-    )?;
-    writeln!(out, "#{}\n$dumpvars\n{}!\n$end", trace.start_ns(), bit(trace.initial()))?;
-    for (index, at_ns) in trace.edges().iter().enumerate() {
-        writeln!(out, "#{at_ns}\n{}!", bit(trace.position_after(index + 1)))?;
-    }
-    if trace.edges().last() != Some(&trace.end_ns()) { writeln!(out, "#{}", trace.end_ns()) } else { Ok(()) }
-}
-
-fn bit(position: Position) -> u8 {
-    u8::from(position.is_closed())
-}
 
 #[cfg(test)]
 mod tests {
@@ -114,6 +96,7 @@ mod tests {
     use crate::characterise::{Doubt, Figures, SegmentOptions, segment};
     use crate::conformance;
     use crate::envelope::PhysicalEnvelope;
+    use crate::trace::Trace;
 
     #[test]
     fn demo_recording_is_what_its_generator_makes() {

@@ -11,4 +11,4 @@ pub mod scenario;
 pub use contact::{Bounce, ContactModel, SecondBurst, flight_times};
 pub use dice::{Between, Dice};
 pub use disturbance::Disturbances;
-pub use scenario::{Generated, Noise, Scenario, TruthChange};
+pub use scenario::{Generated, Noise, Scenario};

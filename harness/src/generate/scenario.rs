@@ -6,15 +6,7 @@ use super::contact::ContactModel;
 use super::dice::{Between, Dice};
 use super::disturbance::Disturbances;
 use crate::trace::{Trace, TraceError};
-
-/// A change of the contact as it really was.
-#[derive(Clone, Copy, PartialEq, Eq, Debug)]
-pub struct TruthChange {
-    /// What the contact did.
-    pub change: Change,
-    /// When.
-    pub at_ns: u64,
-}
+use crate::truth::TruthChange;
 
 /// A disturbance that really was none of the contact's doing.
 #[derive(Clone, Copy, PartialEq, Eq, Debug)]

@@ -4,8 +4,9 @@ use debounce_core::{PerPosition, Position};
 use rustc_hash::{FxHashMap, FxHashSet};
 
 use super::arrange::found_from;
-use super::fault::{Faults, Place, quoted};
+use super::fault::{Faults, Place};
 use super::{MachineTable, Names, Reading, word};
+use crate::raw_input::quoted;
 
 /// A name in a file.
 #[derive(Clone, Debug)]

@@ -3,8 +3,9 @@
 use debounce_core::Position;
 
 use super::check::{self, Line, Named, refused_name};
-use super::fault::{Faults, Place, TableFileError, quoted};
+use super::fault::{Faults, Place, TableFileError};
 use super::{MachineTable, Reading, without_mark};
+use crate::raw_input::quoted;
 
 const HEADER: [&str; 4] = ["state", "sample", "next", "output"];
 

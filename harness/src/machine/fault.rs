@@ -121,13 +121,3 @@ impl Faults {
         }
     }
 }
-
-/// A piece of input for a message: quoted, printable, and short.
-pub(super) fn quoted(text: &str) -> String {
-    const SHOWN: usize = 32;
-    let mut shown: String = text.chars().take(SHOWN).flat_map(char::escape_debug).collect();
-    if text.chars().nth(SHOWN).is_some() {
-        shown.push_str("...");
-    }
-    format!("\"{shown}\"")
-}

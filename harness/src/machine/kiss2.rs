@@ -5,8 +5,9 @@ use std::fmt::Write as _;
 use debounce_core::Position;
 
 use super::check::{self, Line, Named, refused_name};
-use super::fault::{Faults, Place, TableFileError, quoted};
+use super::fault::{Faults, Place, TableFileError};
 use super::{MachineTable, Reading, without_mark};
+use crate::raw_input::quoted;
 
 /// Reads a table in KISS2.
 ///

@@ -33,7 +33,9 @@ use core::hash::Hash;
 
 use debounce_core::{Change, Law, Machine, PerPosition, Position};
 
+use self::fault::Faults;
 use crate::prove::{LawTable, ProveError};
+use crate::raw_input::is_binary;
 
 pub use compare::{Apart, compare};
 pub use csv::{read_csv, write_csv};
@@ -231,6 +233,16 @@ pub fn read_table(name: &str, bytes: &[u8], reading: Reading) -> Result<MachineT
     let bytes = without_mark(bytes);
     let mut lines = bytes.split(|&byte| byte == b'\n').map(<[u8]>::trim_ascii);
     let first = lines.find(|line| !line.is_empty() && line[0] != b'#');
+    let wrong = match first {
+        None => Some("the table is empty"),
+        Some(_) if is_binary(bytes) => Some("the table is no text"),
+        Some(_) => None,
+    };
+    if let Some(message) = wrong {
+        let mut faults = Faults::default();
+        faults.whole_file(message, "write it as KISS2, or as CSV with the columns state,sample,next,output");
+        return faults.or(name, None);
+    }
     let is_csv = first.is_some_and(|line| line.contains(&b','));
     if is_csv { read_csv(name, bytes, reading) } else { read_kiss2(name, bytes, reading) }
 }

@@ -24,6 +24,13 @@ pub fn about(ns: u64) -> String {
     Time::from_ns(ns).to_string()
 }
 
+/// A place in a recording, to the microsecond, so that it can be found there.
+#[must_use]
+pub fn instant(ns: u64) -> String {
+    let us = ns / 1_000;
+    format!("{}.{:06} s", us / 1_000_000, us % 1_000_000)
+}
+
 /// "make" or "break".
 #[must_use]
 pub fn change(change: Change) -> &'static str {

@@ -30,9 +30,7 @@ pub fn read(path: &Path) -> Result<Requirement, Problems> {
 fn load(path: &Path) -> Result<String, Problem> {
     let unreadable = |error: std::io::Error| {
         let help = match error.kind() {
-            std::io::ErrorKind::NotFound => {
-                "check the path, or leave --requirement out and give the values as options"
-            }
+            std::io::ErrorKind::NotFound => "check the path; every value can be given as an option, too",
             std::io::ErrorKind::IsADirectory => "give the requirement file in this folder",
             _ => "make the file readable",
         };
@@ -60,7 +58,7 @@ fn load(path: &Path) -> Result<String, Problem> {
     if text.trim().is_empty() {
         return Err(Problem::new("the requirement file is empty")
             .in_file(path)
-            .help("write at least [required] with latency = \"20 ms\", or leave --requirement out"));
+            .help("write at least [required] with latency = \"20 ms\""));
     }
     Ok(text)
 }

@@ -81,6 +81,20 @@ impl Requirement {
     /// # Errors
     /// Where a value that was filled in contradicts another.
     pub fn resolve(&self, measured: &Measured) -> Result<Resolved, Problems> {
+        let resolved = self.fill_in(measured)?;
+        let known = resolved.required.clone().map(Some);
+        match Problems::from_found(check::figures(&known, self.source())) {
+            Some(problems) => Err(problems),
+            None => Ok(resolved),
+        }
+    }
+
+    /// As [`resolve`](Self::resolve), but what the recordings show may contradict what is asked: for looking at
+    /// recordings, when nothing is claimed of them.
+    ///
+    /// # Errors
+    /// Where the jitter is not shorter than the tick period.
+    pub fn fill_in(&self, measured: &Measured) -> Result<Resolved, Problems> {
         let margin = or_default(&self.margin, Share::from_percent(25), OURS);
         let longer = |time: Time| {
             Time::from_ns(scale(time.ns(), 1_000_000 + u64::from(margin.value.ppm()), 1_000_000))
@@ -123,10 +137,6 @@ impl Requirement {
             quiet: figure(given.quiet, measured.quiet.map(down), ms(9), QUIET),
             calm: figure(given.calm, None, Time::ZERO, CALM),
         };
-        let known = required.clone().map(Some);
-        if let Some(problems) = Problems::from_found(check::figures(&known, self.source())) {
-            return Err(problems);
-        }
         let ticks = self.ticks();
         let jitter = self.jitter(&ticks)?;
         Ok(Resolved {

@@ -196,6 +196,9 @@ impl Reader {
             }
             let place = if section.title.is_empty() { "the file" } else { &section.title };
             let help = match nearest(name, section.asked.iter().copied()) {
+                Some("recording") if section.title.is_empty() => "write [[recording]]".to_owned(),
+                // What stands at the top of the file is a section.
+                Some(known) if section.title.is_empty() => format!("write [{known}]"),
                 Some(known) => format!("write {known}"),
                 None => {
                     let known: Vec<String> = section.asked.iter().map(|&key| key.to_owned()).collect();

@@ -96,7 +96,10 @@ fn requirement_without_a_unit_says_what_to_write() {
 #[test]
 fn requirement_with_an_unknown_key_names_the_nearest() {
     refuses("[required]\nlatancy = \"1 ms\"", &["2:1: unknown key \"latancy\" in [required]; write latency"]);
-    refuses("[requierd]\nlatency = \"1 ms\"", &["1:2: unknown key \"requierd\" in the file; write required"]);
+    refuses(
+        "[requierd]\nlatency = \"1 ms\"",
+        &["1:2: unknown key \"requierd\" in the file; write [required]"],
+    );
     refuses(
         "[contact]\ncolour = \"red\"",
         &["2:1: unknown key \"colour\" in [contact]; [contact] knows name, kind, role and closed"],
@@ -258,12 +261,12 @@ fn requirement_file_that_cannot_be_read_is_one_clear_problem() {
     assert_eq!(
         refused("missing.toml", None),
         "missing.toml: the requirement cannot be read: no such file or directory; \
-         check the path, or leave --requirement out and give the values as options"
+         check the path; every value can be given as an option, too"
     );
     assert_eq!(
         refused("empty.toml", Some(b" \n")),
         "empty.toml: the requirement file is empty; \
-         write at least [required] with latency = \"20 ms\", or leave --requirement out"
+         write at least [required] with latency = \"20 ms\""
     );
     assert!(
         refused("rubbish.toml", Some(b"[contact]\nna\xff\xfe\x00"))

@@ -3,6 +3,7 @@
 use std::fmt;
 use std::str::FromStr;
 
+pub use crate::level::Level;
 use crate::nearest::nearest;
 
 /// A value that is one word of a fixed list.
@@ -52,6 +53,12 @@ macro_rules! words {
             $($(#[$variant_doc])* $variant,)+
         }
 
+        spelled! { $type, $name, { $($variant = $word,)+ } }
+    };
+}
+
+macro_rules! spelled {
+    ($type:ident, $name:literal, { $($variant:ident = $word:literal,)+ }) => {
         impl Word for $type {
             const NAME: &'static str = $name;
             const ALL: &'static [Self] = &[$(Self::$variant),+];
@@ -113,15 +120,7 @@ words! {
     }
 }
 
-words! {
-    /// A level of the line.
-    Level, "a level of the line", {
-        /// The low level.
-        Low = "low",
-        /// The high level.
-        High = "high",
-    }
-}
+spelled! { Level, "a level of the line", { Low = "low", High = "high", } }
 
 impl Role {
     /// The caution that every report, configuration and output for this role carries; it cannot be switched off.

@@ -14,7 +14,7 @@ use crate::conformance::{self, Conformance};
 use crate::emit::{Configuration, Proof as Proved};
 use crate::envelope::PhysicalEnvelope;
 use crate::law_text::LawParameters;
-use crate::problem::{Problem, Problems};
+use crate::problem::Problems;
 use crate::prove::{Limits, ProveError};
 use crate::quantity::TickPeriod;
 use crate::replay::PrepareError;
@@ -30,6 +30,12 @@ pub enum StudyError {
     /// The requirement contradicts itself or the recordings.
     #[error("the requirement does not fit")]
     Requirement(Problems),
+    /// Disturbances come faster than every tick period can tell apart.
+    #[error("no tick period serves the requirement: {reason}")]
+    NoClock {
+        /// Why the first of them does not.
+        reason: String,
+    },
     /// A recording cannot be replayed.
     #[error(transparent)]
     Replay(#[from] PrepareError),
@@ -87,7 +93,9 @@ impl Study {
         let question = Question { only, ..question(&resolved, &observed, preference) };
         let ranking = choose(&question, progress)?;
         if ranking.clocks.iter().all(|view| view.envelope.is_err()) {
-            return Err(StudyError::Requirement(no_clock(&ranking).into()));
+            let reason = ranking.clocks.iter().find_map(|view| view.envelope.err());
+            let reason = reason.map_or("there is none to choose from".to_owned(), |error| error.to_string());
+            return Err(StudyError::NoClock { reason });
         }
         let guarantees = match ranking.recommended() {
             Some(candidate) => Some(Guarantees::of(candidate, ranking.view(candidate))?),
@@ -143,13 +151,4 @@ fn question<'a>(resolved: &Resolved, observed: &'a [Observed], preference: Prefe
         // A candidate that needs more than this is shown as unproven; the usual one needs a thousandth.
         limits: Limits { memory_bytes: 1 << 20, threads: 1, ..Limits::default() },
     }
-}
-
-/// The problem of a requirement whose disturbances come faster than every tick period can tell apart.
-fn no_clock(ranking: &Ranking) -> Problem {
-    let reasons: Vec<String> =
-        ranking.clocks.iter().filter_map(|view| view.envelope.err()).map(|error| error.to_string()).collect();
-    let first = reasons.into_iter().next().unwrap_or_else(|| "no tick period is given".to_owned());
-    Problem::new(format!("no tick period serves the requirement: {first}"))
-        .help("add a shorter tick period under [clock] or with --tick, or state a longer quiet")
 }

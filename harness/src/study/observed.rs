@@ -34,11 +34,7 @@ pub fn observe(
 ) -> Result<Observed, SegmentError> {
     let segmentation = segment(&recording.trace, options)?;
     let figures = Figures::of(&segmentation);
-    let truth = segmentation
-        .operations
-        .iter()
-        .map(|operation| TruthChange { change: operation.change, at_ns: operation.burst.first_ns })
-        .collect();
+    let truth = segmentation.truth();
     Ok(Observed { name: name.into(), recording, segmentation, figures, truth })
 }
 

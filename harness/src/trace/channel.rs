@@ -49,81 +49,9 @@ pub(super) fn listed(channels: &[Channel]) -> String {
     text
 }
 
-/// The channel that was probably meant, if one comes near: by edit distance, case aside, to the whole name or
-/// to its last part.
-pub(super) fn nearest<'a>(wanted: &str, names: impl Iterator<Item = &'a str>) -> Option<&'a str> {
-    // Longer input is no slip of the fingers, and the distance costs its square.
-    const LONGEST: usize = 256;
-    if wanted.len() > LONGEST {
-        return None;
-    }
-    let wanted = wanted.to_lowercase();
-    let last_part = |name: &str| name.rsplit('.').next().unwrap_or_default().to_owned();
-    let allowed = (wanted.chars().count() / 3).max(1);
-    names
-        .filter(|name| name.len() <= LONGEST)
-        .map(|name| {
-            let lower = name.to_lowercase();
-            let whole = distance(&wanted, &lower);
-            (whole.min(distance(&last_part(&wanted), &last_part(&lower))), whole, name)
-        })
-        .filter(|&(best, ..)| best <= allowed)
-        .min_by_key(|&(best, whole, _)| (best, whole))
-        .map(|(.., name)| name)
-}
-
-/// Insertions, deletions, replacements and swaps of neighbours that turn one text into the other
-/// (optimal string alignment; the usual dynamic programme with three rows).
-fn distance(a: &str, b: &str) -> usize {
-    let a: Vec<char> = a.chars().collect();
-    let b: Vec<char> = b.chars().collect();
-    let mut before = vec![0; b.len() + 1];
-    let mut above: Vec<usize> = (0..=b.len()).collect();
-    for i in 1..=a.len() {
-        let mut row = vec![i; b.len() + 1];
-        for j in 1..=b.len() {
-            let replaced = above[j - 1] + usize::from(a[i - 1] != b[j - 1]);
-            row[j] = replaced.min(above[j] + 1).min(row[j - 1] + 1);
-            if i > 1 && j > 1 && a[i - 1] == b[j - 2] && a[i - 2] == b[j - 1] {
-                row[j] = row[j].min(before[j - 2] + 1);
-            }
-        }
-        before = std::mem::replace(&mut above, row);
-    }
-    above[b.len()]
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
-
-    #[test]
-    fn distance_counts_single_edits() {
-        for (a, b, expected) in [
-            ("", "", 0),
-            ("", "abc", 3),
-            ("button", "buton", 1),
-            ("button", "buttno", 1),
-            ("kitten", "sitting", 3),
-        ] {
-            assert_eq!(distance(a, b), expected, "{a} {b}");
-            assert_eq!(distance(b, a), expected, "{b} {a}");
-        }
-    }
-
-    #[test]
-    fn nearest_finds_the_slip_and_nothing_far() {
-        let names = ["top.panel.button", "top.panel.lamp", "clock"];
-        for (wanted, expected) in [
-            ("buton", Some("top.panel.button")),
-            ("top.panle.button", Some("top.panel.button")),
-            ("BUTTON", Some("top.panel.button")),
-            ("clok", Some("clock")),
-            ("encoder_a", None),
-        ] {
-            assert_eq!(nearest(wanted, names.into_iter()), expected, "{wanted}");
-        }
-    }
 
     #[test]
     fn listed_long_list_is_cut() {

@@ -4,6 +4,7 @@ use std::fmt;
 use std::io;
 
 use super::Thresholds;
+use crate::problem::plain_reason;
 
 /// So many bad lines are listed; reading stops at the next one.
 pub const MAX_FAULTS: usize = 20;
@@ -49,8 +50,30 @@ pub struct ReadError {
     faults: Vec<Fault>,
     more: Listed,
     help: Option<String>,
-    proposal: Option<Thresholds>,
+    lacks: Option<Lack>,
     cause: Option<io::Error>,
+}
+
+/// What a reader was not told and could not find out, so that a caller can say how to tell it.
+#[derive(Clone, PartialEq, Debug)]
+#[non_exhaustive]
+pub enum Lack {
+    /// Which channel is meant.
+    Channel {
+        /// A channel that there is: the one that was probably meant, else the first.
+        such_as: Option<String>,
+    },
+    /// Where a voltage turns into a level.
+    Thresholds {
+        /// Thresholds that would turn this channel into levels.
+        proposed: Option<Thresholds>,
+    },
+    /// The unit of the times.
+    TimeUnit,
+    /// Which column holds the times.
+    TimeColumn,
+    /// What stands between the fields of a row.
+    Delimiter,
 }
 
 /// Whether the list of faults is the whole of it.
@@ -74,10 +97,16 @@ impl ReadError {
         self.help.as_deref()
     }
 
-    /// Thresholds that would turn the channel into levels, where their absence was the trouble.
+    /// What the reader would have had to be told, where that was the trouble.
     #[must_use]
-    pub fn proposed_thresholds(&self) -> Option<Thresholds> {
-        self.proposal
+    pub fn lacks(&self) -> Option<&Lack> {
+        self.lacks.as_ref()
+    }
+
+    /// Whether the file has more faults than are listed.
+    #[must_use]
+    pub fn has_more(&self) -> bool {
+        self.more == Listed::FirstOnes
     }
 
     /// The name of the file, as it was given.
@@ -118,7 +147,7 @@ pub(super) struct Faults {
     list: Vec<Fault>,
     more: Listed,
     help: Option<String>,
-    proposal: Option<Thresholds>,
+    lacks: Option<Lack>,
     cause: Option<io::Error>,
 }
 
@@ -136,12 +165,13 @@ impl Faults {
         self.help.get_or_insert_with(|| text.into());
     }
 
-    pub(super) fn propose(&mut self, thresholds: Thresholds) {
-        self.proposal = Some(thresholds);
+    /// The first lack stays, as the first piece of advice does.
+    pub(super) fn lack(&mut self, lack: Lack) {
+        self.lacks.get_or_insert(lack);
     }
 
     pub(super) fn io(&mut self, error: io::Error) {
-        self.whole_file(format!("cannot be read: {}", plain(&error)));
+        self.whole_file(format!("cannot be read: {}", plain_reason(&error)));
         self.cause = Some(error);
     }
 
@@ -168,29 +198,10 @@ impl Faults {
             faults: self.list,
             more: self.more,
             help: self.help,
-            proposal: self.proposal,
+            lacks: self.lacks,
             cause: self.cause,
         }
     }
-}
-
-/// The system's message in the style of our own: lower case, without the number behind it.
-pub(super) fn plain(error: &io::Error) -> String {
-    let text = error.to_string();
-    let text = text.split(" (os error").next().unwrap_or_default();
-    let mut letters = text.chars();
-    letters.next().map_or_else(String::new, |first| first.to_lowercase().chain(letters).collect())
-}
-
-/// A piece of input for a message: quoted, printable, and short.
-pub(super) fn quoted(bytes: &[u8]) -> String {
-    const SHOWN: usize = 32;
-    let text = String::from_utf8_lossy(&bytes[..bytes.len().min(4 * SHOWN)]);
-    let mut shown: String = text.chars().take(SHOWN).flat_map(char::escape_debug).collect();
-    if text.chars().count() > SHOWN || bytes.len() > 4 * SHOWN {
-        shown.push_str("...");
-    }
-    format!("\"{shown}\"")
 }
 
 #[cfg(test)]
@@ -221,11 +232,5 @@ mod tests {
             assert_eq!(error.faults().len(), MAX_FAULTS);
             assert_eq!(error.to_string().contains("more bad lines follow"), full);
         }
-    }
-
-    #[test]
-    fn quoted_long_or_strange_input_stays_short_and_printable() {
-        assert_eq!(quoted(b"a\x00\"b"), "\"a\\0\\\"b\"");
-        assert_eq!(quoted(&[b'y'; 1000]), format!("\"{}...\"", "y".repeat(32)));
     }
 }

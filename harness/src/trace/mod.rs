@@ -22,11 +22,12 @@ mod round_trip_tests;
 mod vcd;
 mod write;
 
+pub use crate::level::Level;
 pub use channel::{Channel, ChannelKind};
-pub use error::{Fault, MAX_FAULTS, ReadError};
+pub use error::{Fault, Lack, MAX_FAULTS, ReadError};
 pub use open::{list_channels, read_bytes, read_channels, read_path, read_stream};
 pub use options::{DecimalMark, Delimiter, ReadOptions, ThresholdError, Thresholds, TimeUnit};
-pub use polarity::{Level, Polarity, Unknown};
+pub use polarity::{Polarity, Unknown};
 pub use recording::{Note, Recording};
 pub use write::write_vcd;
 

@@ -4,9 +4,12 @@ use std::fs::File;
 use std::io::{self, Read};
 use std::path::Path;
 
-use super::channel::{Channel, nearest};
-use super::error::{Faults, ReadError, plain};
+use super::channel::Channel;
+use super::error::{Faults, ReadError};
 use super::{ReadOptions, Recording, csv, recorder, vcd};
+use crate::nearest::nearest;
+use crate::problem::plain_reason;
+use crate::raw_input::is_binary;
 
 /// So much of a file is looked at to find out what it is.
 pub(super) const PREFIX: usize = 1 << 16;
@@ -137,9 +140,7 @@ fn format_of(prefix: &[u8]) -> Result<Format, (&'static str, &'static str)> {
     let Some(first) = prefix.iter().find(|byte| !byte.is_ascii_whitespace()) else {
         return Err(("is empty", "export the recording again, as VCD or CSV"));
     };
-    let is_odd = |&&byte: &&u8| byte < b' ' && !byte.is_ascii_whitespace() && byte != 0x0b;
-    // A stray control character is for the reader to find, with its place.
-    if prefix.contains(&0) || prefix.iter().filter(is_odd).count() > prefix.len() / 32 {
+    if is_binary(prefix) {
         return Err(("is no text", "export the recording as VCD or CSV"));
     }
     if prefix.trim_ascii_start().starts_with(recorder::MAGIC) {
@@ -165,11 +166,15 @@ fn open(path: &Path, name: &str) -> Result<File, ReadError> {
         Ok(file) => return Ok(file),
         Err(error) if error.kind() == io::ErrorKind::NotFound => {
             faults.whole_file("there is no such file");
-            if let Some(near) = neighbour(path) {
-                faults.help(format!("did you mean {near}?"));
-            }
+            faults.help(neighbour(path).map_or_else(
+                || "check the path; a relative one begins at the current folder".to_owned(),
+                |near| format!("did you mean {near}?"),
+            ));
         }
-        Err(error) => faults.whole_file(format!("cannot be opened: {}", plain(&error))),
+        Err(error) => {
+            faults.whole_file(format!("cannot be opened: {}", plain_reason(&error)));
+            faults.help("make the file readable");
+        }
     }
     Err(faults.into_error(name))
 }

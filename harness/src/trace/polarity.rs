@@ -2,14 +2,7 @@
 
 use debounce_core::Position;
 
-/// The level of a recorded line, before polarity is turned.
-#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
-pub enum Level {
-    /// Logic 0.
-    Low,
-    /// Logic 1.
-    High,
-}
+use crate::level::Level;
 
 /// How the contact is wired: which level means that it conducts.
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug, Default)]
@@ -24,6 +17,15 @@ pub enum Polarity {
 }
 
 impl Polarity {
+    /// The polarity of a contact whose line is at `level` while it is closed.
+    #[must_use]
+    pub const fn closed_is(level: Level) -> Self {
+        match level {
+            Level::Low => Self::ClosedIsLow,
+            Level::High => Self::ClosedIsHigh,
+        }
+    }
+
     /// The position a level stands for.
     #[must_use]
     pub fn position(self, level: Level) -> Position {
@@ -64,6 +66,11 @@ mod tests {
             (Polarity::ClosedIsHigh, Level::High, Position::Closed),
         ] {
             assert_eq!(polarity.position(level), position, "{polarity:?} {level:?}");
+            assert_eq!(
+                Polarity::closed_is(level) == polarity,
+                position.is_closed(),
+                "{polarity:?} {level:?}"
+            );
         }
     }
 }

@@ -13,8 +13,9 @@ use debounce_core::{Period, Position};
 use super::builder::{Reading, TraceBuilder};
 use super::channel::{Channel, ChannelKind};
 use super::csv::Lines;
-use super::error::{Faults, Place, quoted};
+use super::error::{Faults, Place};
 use super::{Note, ReadOptions, Recording};
+use crate::raw_input::quoted;
 
 /// What a file of this kind begins with.
 pub(super) const MAGIC: &[u8] = b"debounce-core recorder";

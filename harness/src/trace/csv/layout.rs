@@ -10,8 +10,10 @@ use super::cell::{self, Cell};
 use super::header::{Column, Unit, unit_cell};
 use super::line::{decoded, is_skipped, split};
 use super::number::{self, Yoctoseconds};
-use crate::trace::channel::{listed, nearest};
-use crate::trace::error::{Faults, quoted};
+use crate::nearest::nearest_scoped;
+use crate::raw_input::quoted;
+use crate::trace::channel::listed;
+use crate::trace::error::{Faults, Lack};
 use crate::trace::{Channel, ChannelKind, DecimalMark, Delimiter, ReadOptions, TimeUnit};
 
 /// How a file is laid out.
@@ -102,6 +104,7 @@ pub(super) fn detect(lines: Vec<&[u8]>, options: &ReadOptions, faults: &mut Faul
     if rows.is_empty() {
         faults.whole_file("holds no row of a time and a level");
         faults.help("a row is a time and a level or a voltage, as in \"0.001,1\"; give the delimiter if it is unusual");
+        faults.lack(Lack::Delimiter);
         return None;
     }
     let guess = sample.rising_column(&rows);
@@ -110,7 +113,7 @@ pub(super) fn detect(lines: Vec<&[u8]>, options: &ReadOptions, faults: &mut Faul
     let columns = pad(columns, &sample, &rows);
     let time_column = match &options.time_column {
         Some(wanted) => find(&columns, wanted).or_else(|| {
-            no_column("time column", wanted, &columns, faults);
+            no_column("time column", wanted, &columns, |_| Lack::TimeColumn, faults);
             None
         })?,
         None => columns.iter().position(Column::is_time).unwrap_or(guess),
@@ -283,12 +286,20 @@ fn find(columns: &[Column], wanted: &str) -> Option<usize> {
         })
 }
 
-fn no_column(what: &str, wanted: &str, columns: &[Column], faults: &mut Faults) {
+fn no_column(
+    what: &str,
+    wanted: &str,
+    columns: &[Column],
+    lack: impl FnOnce(Option<String>) -> Lack,
+    faults: &mut Faults,
+) {
     let names: Vec<String> = (0..columns.len()).map(|index| name_of(columns, index)).collect();
     let mut message = format!("has no {what} {}", quoted(wanted.as_bytes()));
-    if let Some(near) = nearest(wanted, names.iter().map(String::as_str)) {
+    let near = nearest_scoped(wanted, names.iter().map(String::as_str));
+    if let Some(near) = near {
         message.push_str(&format!("; did you mean \"{near}\"?"));
     }
+    faults.lack(lack(near.map(str::to_owned)));
     faults.whole_file(message);
     faults.help(format!("the columns are: {}; a number from 1 does as well", names.join(", ")));
 }
@@ -321,7 +332,7 @@ impl Layout {
                 }
                 Some(index) => Some(index),
                 None => {
-                    no_column("channel", wanted, &self.columns, faults);
+                    no_column("channel", wanted, &self.columns, |such_as| Lack::Channel { such_as }, faults);
                     None
                 }
             },
@@ -334,6 +345,7 @@ impl Layout {
             (None, several) => {
                 faults.whole_file(format!("has {} channels; choose one", several.len()));
                 faults.help(format!("the channels are: {}", listed(&self.channels())));
+                faults.lack(Lack::Channel { such_as: several.first().map(|&(index, _)| self.name(index)) });
                 None
             }
         }

@@ -23,7 +23,7 @@ use std::io::Read;
 use self::layout::Layout;
 pub(super) use self::line::Lines;
 use self::rows::Rows;
-use super::error::Faults;
+use super::error::{Faults, Lack};
 use super::open::PREFIX;
 use super::{Channel, ReadOptions, Recording};
 
@@ -41,6 +41,7 @@ pub(super) fn read<R: Read>(
     if layout.time_unit.is_none() && layout.times_are_whole {
         faults.whole_file("has whole numbers as times and does not say in which unit");
         faults.help("give the unit, or name it in the header, as in \"time (us),level\"");
+        faults.lack(Lack::TimeUnit);
     }
     let mut chosen = Vec::new();
     if wanted.is_empty() {

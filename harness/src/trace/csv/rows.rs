@@ -8,8 +8,9 @@ use super::header::{Unit, VoltUnit};
 use super::layout::Layout;
 use super::line::{Lines, is_skipped, split};
 use super::number::{self, PER_NS, Yoctoseconds};
+use crate::raw_input::quoted;
 use crate::trace::builder::{Reading, TraceBuilder};
-use crate::trace::error::{Faults, Place, quoted};
+use crate::trace::error::{Faults, Lack, Place};
 use crate::trace::{Note, ReadOptions, Recording, Thresholds, TimeUnit};
 
 /// A column that is followed.
@@ -110,6 +111,7 @@ impl<'a> Rows<'a> {
         if fields.len() <= needed {
             let (has, needs) = (fields.len(), needed + 1);
             faults.at(place(line.len()), format!("the row has {has} of the {needs} fields that it needs"));
+            faults.help("write what is missing, or take the row out");
             return;
         }
         let time = &fields[self.layout.time_column];
@@ -143,8 +145,9 @@ impl<'a> Rows<'a> {
 
     /// Takes the time of a row, or says what is wrong with it.
     fn time(&mut self, cell: &[u8]) -> Result<(), String> {
-        let time = number::time(cell, self.layout.mark, self.unit_power)
-            .map_err(|error| format!("{} {}", quoted(cell), error.reason("a time")))?;
+        let time = number::time(cell, self.layout.mark, self.unit_power).map_err(|error| {
+            format!("{} {}; a time is a number such as 0.001", quoted(cell), error.reason("a time"))
+        })?;
         match self.before {
             None => {
                 if time.at < 0 {
@@ -156,7 +159,7 @@ impl<'a> Rows<'a> {
             Some(before) if time.at <= before => {
                 let before = String::from_utf8_lossy(&self.before_text).into_owned();
                 return Err(format!(
-                    "time {} is not later than the {before} before it",
+                    "time {} is not later than the {before} before it; put the rows in the order of their times",
                     quoted(cell).trim_matches('"')
                 ));
             }
@@ -256,15 +259,19 @@ impl Lane {
     ) -> Result<Reading, String> {
         let known = |level| Reading::Known(options.polarity.position(level));
         if let Some(thresholds) = options.thresholds {
-            let value = number::real(cell, layout.mark)
-                .map_err(|error| format!("{} {}", quoted(cell), error.reason("a voltage")))?;
+            let value = number::real(cell, layout.mark).map_err(|error| {
+                format!("{} {}; a voltage is a number such as 3.3", quoted(cell), error.reason("a voltage"))
+            })?;
             let volts = self.unit.volts(value);
             self.see(volts);
             return Ok(thresholds.level(volts).map_or(Reading::Between, known));
         }
         let cell = cell::parse(cell, layout.mark).map_err(|error| {
-            let wanted = if self.is_volts { "a voltage" } else { "a level; use 0 or 1, or low or high" };
-            format!("{} {}", quoted(cell), error.reason(wanted))
+            let (wanted, instead) = match self.is_volts {
+                true => ("a voltage", "a voltage is a number such as 3.3"),
+                false => ("a level", "use 0 or 1, or low or high"),
+            };
+            format!("{} {}; {instead}", quoted(cell), error.reason(wanted))
         })?;
         let (reading, number) = match cell {
             Cell::Unknown => return Ok(Reading::Unknown),
@@ -314,7 +321,7 @@ fn propose(least: f64, greatest: f64, faults: &mut Faults) {
                 pair.falling_v(),
                 pair.rising_v()
             ));
-            faults.propose(pair);
+            faults.lack(Lack::Thresholds { proposed: Some(pair) });
         }
         Err(_) => faults.help("the voltage never changes: is this the right channel?"),
     }

@@ -3,7 +3,7 @@
 use debounce_core::Position::{self, Closed, Open};
 
 use crate::trace::{
-    ChannelKind, DecimalMark, Delimiter, Note, Polarity, ReadError, ReadOptions, Recording, Thresholds,
+    ChannelKind, DecimalMark, Delimiter, Lack, Note, Polarity, ReadError, ReadOptions, Recording, Thresholds,
     TimeUnit, Unknown, read_bytes,
 };
 
@@ -93,6 +93,13 @@ fn csv_unit_of_the_voltage_is_understood() {
     check(text, &with_thresholds(Some("CH2")), Open, &[], 3 * MS);
 }
 
+fn proposed(error: &ReadError) -> Option<Thresholds> {
+    match error.lacks() {
+        Some(&Lack::Thresholds { proposed }) => proposed,
+        _ => None,
+    }
+}
+
 #[test]
 fn csv_voltages_without_thresholds_are_refused_with_a_proposal() {
     let text = "time (ms),CH1 (V)\n0,0.0\n1,3.3\n2,0.1\n";
@@ -101,7 +108,7 @@ fn csv_voltages_without_thresholds_are_refused_with_a_proposal() {
     let help =
         "give a falling and a rising threshold, such as 0.99 V and 2.31 V (30 % and 70 % of that range)";
     assert_eq!(error.help(), Some(help));
-    let proposed = error.proposed_thresholds().expect("a proposal");
+    let proposed = proposed(&error).expect("a proposal");
     check(text, &ReadOptions { thresholds: Some(proposed), ..plain() }, Open, &[MS, 2 * MS], 3 * MS);
     // Without a header too: a number that is no level gives it away.
     refused(
@@ -124,7 +131,7 @@ fn csv_voltage_inside_the_band_throughout_is_refused() {
         &with_thresholds(None),
         &[" channel column 2 never leaves the band between 0.8 V and 2 V: it holds 1 V to 1.5 V"],
     );
-    assert_eq!(error.proposed_thresholds().map(|pair| pair.falling_v()), Some(1.15));
+    assert_eq!(proposed(&error).map(|pair| pair.falling_v()), Some(1.15));
 }
 
 #[test]
@@ -272,13 +279,13 @@ fn csv_bad_rows_are_all_listed_with_their_places() {
         &plain(),
         &[
             "3:2: the row has 1 of the 2 fields that it needs",
-            "4:1: \"abc\" is not a time",
+            "4:1: \"abc\" is not a time; a time is a number such as 0.001",
             "5:3: \"up\" is not a level; use 0 or 1, or low or high",
-            "7:1: time 3 is not later than the 3 before it",
-            "8:1: time 2 is not later than the 3 before it",
+            "7:1: time 3 is not later than the 3 before it; put the rows in the order of their times",
+            "8:1: time 2 is not later than the 3 before it; put the rows in the order of their times",
             "9:3: \"\" is not a level; use 0 or 1, or low or high",
-            "10:1: \"nan\" is not a time: it is not finite",
-            "11:3: \"inf\" is not a level; use 0 or 1, or low or high: it is not finite",
+            "10:1: \"nan\" is not a time: it is not finite; a time is a number such as 0.001",
+            "11:3: \"inf\" is not a level: it is not finite; use 0 or 1, or low or high",
         ],
     );
     let text = "0.0,0.5\n0.1,NaN\n0.2,volts\n0.3,1e999\n";
@@ -286,16 +293,20 @@ fn csv_bad_rows_are_all_listed_with_their_places() {
         text,
         &with_thresholds(None),
         &[
-            "2:5: \"NaN\" is not a voltage: it is not finite",
-            "3:5: \"volts\" is not a voltage",
-            "4:5: \"1e999\" is not a voltage: it is too large",
+            "2:5: \"NaN\" is not a voltage: it is not finite; a voltage is a number such as 3.3",
+            "3:5: \"volts\" is not a voltage; a voltage is a number such as 3.3",
+            "4:5: \"1e999\" is not a voltage: it is too large; a voltage is a number such as 3.3",
         ],
     );
 }
 
 #[test]
 fn csv_bad_first_row_behind_a_header_is_no_preamble() {
-    refused("time (ms),level\nabc,1\n0,0\n5,1\n", &plain(), &["2:1: \"abc\" is not a time"]);
+    refused(
+        "time (ms),level\nabc,1\n0,0\n5,1\n",
+        &plain(),
+        &["2:1: \"abc\" is not a time; a time is a number such as 0.001"],
+    );
     refused(
         "time (ms),level\n1,\n2,0\n5,1\n",
         &plain(),
@@ -322,7 +333,11 @@ fn csv_times_beyond_64_bits_are_refused() {
         &plain(),
         &["3:1: time \"18446744073709551616\" exceeds the 18446744073709551615 ns that fit 64 bits"],
     );
-    refused("t/s,level\n0,0\n1e30,1\n", &plain(), &["3:1: \"1e30\" is not a time: it is too large"]);
+    refused(
+        "t/s,level\n0,0\n1e30,1\n",
+        &plain(),
+        &["3:1: \"1e30\" is not a time: it is too large; a time is a number such as 0.001"],
+    );
 }
 
 #[test]

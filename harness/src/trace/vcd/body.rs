@@ -5,8 +5,9 @@ use std::io::{self, Read};
 use super::header::{Header, Scale, section};
 use super::select::{Part, Selected};
 use super::tokens::Tokens;
+use crate::raw_input::quoted;
 use crate::trace::builder::{Reading, TraceBuilder};
-use crate::trace::error::{Faults, Place, quoted};
+use crate::trace::error::{Faults, Place};
 use crate::trace::{Level, Note, ReadOptions, Recording};
 
 /// No (further) target.
@@ -117,7 +118,10 @@ impl<'a> Body<'a> {
                     faults.help("export a four-state VCD");
                     break;
                 }
-                _ => faults.at(place, format!("{} is no value change and no time", quoted(token.text))),
+                _ => {
+                    faults.at(place, format!("{} is no value change and no time", quoted(token.text)));
+                    faults.help("a value change is a value and an identifier code, as in \"1!\"; a time is as in \"#100\"");
+                }
             }
         }
         Ok(())
@@ -151,6 +155,7 @@ impl<'a> Body<'a> {
         };
         if let Some(before) = self.mark.filter(|&before| mark < before) {
             faults.at(place, format!("time goes back from {before} to {mark}"));
+            faults.help("put the changes in the order of their times, or export the recording again");
             return;
         }
         self.mark = Some(mark);
@@ -176,6 +181,7 @@ impl<'a> Body<'a> {
             Some(number) => self.first[number as usize],
             None => {
                 faults.at(place, format!("identifier code {} was not declared", quoted(code)));
+                faults.help("declare it with $var before $enddefinitions, or take its changes out");
                 NONE
             }
         }

@@ -4,7 +4,8 @@ use std::io::{self, Read};
 
 use super::codes::Codes;
 use super::tokens::Tokens;
-use crate::trace::error::{Faults, Place, quoted};
+use crate::raw_input::quoted;
+use crate::trace::error::{Faults, Place};
 use crate::trace::{Channel, ChannelKind, TimeUnit};
 
 /// A declared variable.

@@ -25,7 +25,7 @@ use self::body::Body;
 use self::header::Scale;
 use self::tokens::Tokens;
 use super::channel::Channel;
-use super::error::Faults;
+use super::error::{Faults, Lack};
 use super::{ReadOptions, Recording};
 
 /// Reads the named channels, or the only one. Nothing returned is worth anything once `faults` holds some.
@@ -63,6 +63,7 @@ fn try_read<R: Read>(
     let Some(scale) = options.time_unit.map(Scale::one).or(header.scale) else {
         faults.whole_file("has no $timescale, so its times have no unit");
         faults.help("give the unit of the times, or add \"$timescale 1 ns $end\" to the file");
+        faults.lack(Lack::TimeUnit);
         return Ok(Vec::new());
     };
     if !faults.is_empty() {

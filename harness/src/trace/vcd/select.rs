@@ -1,8 +1,10 @@
 //! From a channel name as a person writes it to a variable and a bit of it.
 
 use super::header::{Header, Kind, Variable, split_range};
-use crate::trace::channel::{Channel, listed, nearest};
-use crate::trace::error::{Faults, quoted};
+use crate::nearest::nearest_scoped;
+use crate::raw_input::quoted;
+use crate::trace::channel::{Channel, listed};
+use crate::trace::error::{Faults, Lack};
 use crate::trace::{ReadOptions, Thresholds};
 
 /// What to follow in the file.
@@ -37,6 +39,7 @@ pub(super) fn select(
     let all = channels(header);
     if all.is_empty() {
         faults.whole_file("declares no variable that could be a contact");
+        faults.help("record the line of the contact as a wire of one bit, or as a voltage");
         return None;
     }
     let Some(wanted) = wanted else {
@@ -47,6 +50,7 @@ pub(super) fn select(
         }
         faults.whole_file(format!("has {} channels; choose one", all.len()));
         faults.help(format!("the channels are: {}", listed(&all)));
+        faults.lack(Lack::Channel { such_as: all.first().map(|channel| channel.name.clone()) });
         return None;
     };
     // The name may end in a bit, or in what merely looks like one: `mem[3]` may be a vector of its own.
@@ -74,6 +78,7 @@ pub(super) fn select(
             ));
             let several: Vec<_> = several.iter().filter_map(|variable| variable.channel()).collect();
             faults.help(format!("write one of these in full: {}", listed(&several)));
+            faults.lack(Lack::Channel { such_as: several.first().map(|channel| channel.name.clone()) });
             None
         }
     }
@@ -101,11 +106,13 @@ fn with_bit<'a>(header: &'a Header, base: &str, bit: i64) -> Vec<&'a Variable> {
 
 fn not_found(wanted: &str, all: &[Channel], faults: &mut Faults) {
     let mut message = format!("has no channel {}", quoted(wanted.as_bytes()));
-    if let Some(near) = nearest(wanted, all.iter().map(|channel| channel.name.as_str())) {
+    let near = nearest_scoped(wanted, all.iter().map(|channel| channel.name.as_str()));
+    if let Some(near) = near {
         message.push_str(&format!("; did you mean \"{near}\"?"));
     }
     faults.whole_file(message);
     faults.help(format!("the channels are: {}", listed(all)));
+    faults.lack(Lack::Channel { such_as: near.map(str::to_owned) });
 }
 
 fn part_of(
@@ -133,6 +140,7 @@ fn part_of(
             let width = left.abs_diff(right) + 1;
             faults.whole_file(format!("channel {name} is {width} bits wide; choose one bit of it"));
             faults.help(format!("write {name}[{right}] to {name}[{left}]"));
+            faults.lack(Lack::Channel { such_as: Some(format!("{name}[{right}]")) });
             None
         }
         (Kind::Bit(_), Some(bit)) => {
@@ -144,6 +152,7 @@ fn part_of(
             None => {
                 faults.whole_file(format!("channel {name} is a real number; levels need two thresholds"));
                 faults.help("give the falling and the rising threshold in volts");
+                faults.lack(Lack::Thresholds { proposed: None });
                 None
             }
         },

@@ -1,0 +1,74 @@
+//! `harness choose` and `harness emit` from outside.
+
+use std::process::Command;
+
+use crate::bench::Bench;
+
+const FIGURES: [&str; 8] =
+    ["--bounce", "5 ms", "--disturbance", "300 us", "--quiet-time", "5 ms", "--latency", "20 ms"];
+
+#[test]
+fn choose_from_figures_alone_ranks_what_holds_and_says_what_was_assumed() {
+    let run = Bench::new().run(&[&["choose"][..], &FIGURES].concat()).ends(0);
+    for part in [
+        "bounces for at most 5 ms after a make and 5 ms after a break",
+        "First state-machine confirm=2 patience=2 lockout=2 at a tick of 2 ms",
+        "Assumed required.shortest_closed = 70 ms (default: ",
+        "Left out disturbances 5 ms apart come faster than a tick of 5 ms can tell apart",
+        "* no other candidate that holds beats it",
+    ] {
+        assert!(run.flowing().contains(part), "\"{part}\" is not in {}", run.stdout);
+    }
+    assert!(!run.flowing().contains("Assumed required.latency"), "it was given: {}", run.stdout);
+    assert!(run.stderr.is_empty(), "{}", run.stderr);
+}
+
+#[test]
+fn choose_for_what_nothing_can_do_ends_with_1_and_says_by_how_much() {
+    let run = Bench::new().run(&["choose", "--bounce", "5 ms", "--latency", "2 ms"]).ends(1);
+    assert!(run.stdout.contains("None holds"), "{}", run.stdout);
+    assert!(run.stdout.contains("more than the 2 ms allowed"), "{}", run.stdout);
+    let json =
+        Bench::new().run(&["choose", "--bounce", "5 ms", "--latency", "2 ms", "--json"]).ends(1).json();
+    assert_eq!((&json["outcome"], &json["schema"]), (&"does-not-hold".into(), &1.into()));
+}
+
+#[test]
+fn choose_and_emit_give_the_same_bytes_twice() {
+    for command in [&["choose", "--json"][..], &["emit"]] {
+        let line = [command, &FIGURES].concat();
+        assert_eq!(Bench::new().run(&line), Bench::new().run(&line));
+    }
+}
+
+#[test]
+fn emit_to_standard_output_is_formatted_and_is_what_a_file_gets() {
+    let bench = Bench::new();
+    let run = bench.run(&[&["emit"][..], &FIGURES].concat()).ends(0);
+    bench.run(&[&["emit", "--output", "gate.rs"][..], &FIGURES].concat()).ends(0);
+    let file = bench.path().join("gate.rs");
+    assert_eq!(std::fs::read_to_string(&file).expect("a file"), run.stdout);
+    let formatted = Command::new("rustfmt")
+        .args(["--check", "--edition", "2024"])
+        .arg(&file)
+        .output()
+        .expect("rustfmt runs");
+    assert!(formatted.status.success(), "{}", String::from_utf8_lossy(&formatted.stdout));
+}
+
+#[test]
+fn emit_of_a_law_that_does_not_hold_writes_nothing_and_ends_with_1() {
+    let bench = Bench::new();
+    let law = ["emit", "--law", "shift-register 2", "--tick", "1 ms", "--output", "gate.rs"];
+    let run = bench.run(&[&law[..], &FIGURES].concat()).ends(1);
+    assert!(run.stdout.contains("Recommended  nothing: none of 1 candidates holds"), "{}", run.stdout);
+    assert!(bench.listing().is_empty());
+}
+
+#[test]
+fn emit_of_a_law_that_cannot_be_is_refused() {
+    let told = ("", "a window of 70 samples does not fit the register", &["use at most 64"][..]);
+    Bench::new().refuses(&["prove", "shift-register 70", "--envelope", "dwell=20"], &[told]);
+    let law = ["emit", "--law", "shift-register 70", "--tick", "1 ms"];
+    Bench::new().refuses(&[&law[..], &FIGURES].concat(), &[told]);
+}

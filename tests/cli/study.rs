@@ -1,0 +1,95 @@
+//! `harness study` from outside: the demo, the files it writes, and that nothing depends on the day.
+
+use integration_tests::firmware;
+
+use crate::bench::{Bench, Run, harness};
+
+#[test]
+fn study_of_the_demo_says_on_one_screen_what_to_do() {
+    let run = Bench::new().run(&["study"]).ends(0);
+    for part in [
+        "invented",
+        "Recorded     ",
+        "Envelope     ",
+        "Recommended  ",
+        "Proved       ",
+        "Measured     ",
+        "Next         ",
+    ] {
+        assert!(run.stdout.contains(part), "\"{part}\" is not in {}", run.stdout);
+    }
+    assert!(run.stdout.lines().count() <= 30, "{} lines:\n{}", run.stdout.lines().count(), run.stdout);
+    let widest = run.stdout.lines().map(|line| line.chars().count()).max();
+    assert!(widest <= Some(100), "{widest:?}\n{}", run.stdout);
+    assert!(run.stderr.is_empty() && !run.stdout.contains('\x1b'), "{run:?}");
+}
+
+#[test]
+fn study_writes_its_results_and_a_module_that_compiles() {
+    let bench = Bench::new();
+    let run = bench.run(&["study", "--output", "results"]).ends(0);
+    assert!(
+        run.stdout.contains("Written      results/study.json, results/vent_push_button.rs"),
+        "{}",
+        run.stdout
+    );
+    let names: Vec<String> = bench.listing().into_keys().collect();
+    assert_eq!(names, ["results", "results/study.json", "results/vent_push_button.rs"]);
+    let read = |name: &str| std::fs::read_to_string(bench.path().join(name)).expect("a file");
+    let results: serde_json::Value = serde_json::from_str(&read("results/study.json")).expect("JSON");
+    assert!(results.is_object(), "{results}");
+    let target = std::path::Path::new(env!("CARGO_TARGET_TMPDIR")).join("study");
+    firmware::check("study", &read("results/vent_push_button.rs"), None, &target)
+        .unwrap_or_else(|errors| panic!("{errors}"));
+}
+
+#[test]
+fn study_gives_the_same_bytes_twice() {
+    let [one, two] = [Bench::new(), Bench::new()];
+    assert_eq!(one.run(&["study", "-o", "out"]), two.run(&["study", "-o", "out"]));
+    assert_eq!(one.listing(), two.listing());
+    assert_eq!(one.run(&["study", "--json"]), two.run(&["study", "--json"]));
+}
+
+#[test]
+fn study_as_json_has_its_schema_and_outcome() {
+    let run = Bench::new().run(&["study", "--json"]).ends(0);
+    let json = run.json();
+    assert_eq!(
+        (&json["schema"], &json["command"], &json["outcome"]),
+        (&1.into(), &"study".into(), &"holds".into())
+    );
+    assert!(json["result"].is_object() && run.stderr.is_empty(), "{run:?}");
+}
+
+#[test]
+fn study_has_colours_only_where_they_are_asked_for() {
+    let run = |name: &str, value: &str| {
+        Run::of(harness().arg("study").env(name, value).output().expect("the command runs")).ends(0)
+    };
+    let plain = run("NO_COLOR", "1");
+    assert!(!plain.stdout.contains('\x1b'));
+    let forced = run("CLICOLOR_FORCE", "1");
+    assert!(forced.stdout.contains('\x1b'), "so the test above can fail");
+    let both = Run::of(
+        harness()
+            .arg("study")
+            .env("NO_COLOR", "1")
+            .env("CLICOLOR_FORCE", "0")
+            .output()
+            .expect("the command runs"),
+    );
+    assert_eq!(both, plain);
+    // Colour carries no meaning: without it the text is the same.
+    assert_eq!(anstream::adapter::strip_str(&forced.stdout).to_string(), plain.stdout);
+}
+
+#[test]
+fn study_that_does_not_hold_ends_with_1_and_writes_no_module() {
+    let bench = Bench::with("vent.vcd", harness::demo::RECORDING);
+    let line = ["study", "vent.vcd", "--closed", "high", "--latency", "5 ms", "--output", "results"];
+    let run = bench.run(&line).ends(1);
+    assert!(run.stdout.contains("Recommended  nothing: none of "), "{}", run.stdout);
+    let names: Vec<String> = bench.listing().into_keys().collect();
+    assert_eq!(names, ["results", "results/study.json", "vent.vcd"]);
+}
