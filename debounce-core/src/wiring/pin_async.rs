@@ -37,7 +37,8 @@ where
     /// The pin's own, from reading or from waiting. No sample is taken then; call again to go on.
     ///
     /// # Panics
-    /// Never.
+    /// Never where it is awaited. Polled by hand after its end it panics, as every `async fn` does; that check of the
+    /// language is the only one that a program links with it.
     ///
     /// # Examples
     /// ```

@@ -1,6 +1,6 @@
 //! The board, which is not there: its lines follow a script.
 //!
-//! On a real board a pin interrupt ends the wait for a level, and a timer that runs only then ends a delay.
+//! On a real board a pin interrupt ends the wait for a level, and a timer that runs only then makes the ticks.
 
 use core::convert::Infallible;
 use core::future::poll_fn;
@@ -8,7 +8,6 @@ use core::sync::atomic::{AtomicU32, Ordering};
 use core::task::Poll;
 
 use embedded_hal::digital::{ErrorType, InputPin};
-use embedded_hal_async::delay::DelayNs;
 use embedded_hal_async::digital::Wait;
 
 /// A millisecond at the clock of the emulated LM3S6965 after reset.
@@ -109,12 +108,20 @@ impl Wait for Line {
     }
 }
 
-/// Waits for whole milliseconds of the board.
-pub(crate) struct TickDelay;
+/// The ticks of one task, on the grid of the board's milliseconds.
+pub(crate) struct Ticker {
+    /// The first millisecond at which there was no tick yet.
+    due: u32,
+}
 
-impl DelayNs for TickDelay {
-    async fn delay_ns(&mut self, ns: u32) {
-        let end = now() + ns.div_ceil(1_000_000);
-        poll_fn(|_| if now() >= end { Poll::Ready(()) } else { Poll::Pending }).await;
+impl Ticker {
+    pub(crate) const fn new() -> Self {
+        Self { due: 0 }
+    }
+
+    /// Waits for the next millisecond that had no tick yet. Those that were slept through are not made up for.
+    pub(crate) async fn next(&mut self) {
+        poll_fn(|_| if now() >= self.due { Poll::Ready(()) } else { Poll::Pending }).await;
+        self.due = now() + 1;
     }
 }

@@ -22,10 +22,9 @@ use core::task::{Context, Waker};
 use cortex_m::peripheral::syst::SystClkSource;
 use cortex_m_rt::{entry, exception};
 use cortex_m_semihosting::{debug, hprintln};
-use debounce_core::{AsyncPin, StateMachine, StateMachineParameters};
-use embedded_hal::digital::PinState;
+use debounce_core::{DebouncedPin, Polarity, Running, Started, StateMachine, StateMachineParameters};
 
-use board::{Line, TickDelay};
+use board::{Line, Ticker};
 
 /// Four samples, 1 ms apart; two that agree clear a count; the bounce after a change is not looked at.
 const LAW: StateMachine =
@@ -62,12 +61,15 @@ fn main() -> ! {
 /// Prints what happens at a contact, for ever.
 async fn watch(name: &str, line: Line) {
     // Pull-up and contact to ground: closed reads low.
-    let mut contact = AsyncPin::new(line, TickDelay, LAW, PinState::Low, 1_000);
-    let Ok(position) = contact.wait_for_initial().await;
-    hprintln!("{:4} {} is {:?}", board::now(), name, position);
+    let mut contact = DebouncedPin::new(line, Polarity::ClosedWhenLow, Running::starting(LAW));
+    let mut ticker = Ticker::new();
     loop {
-        let Ok(change) = contact.wait_for_change().await;
-        hprintln!("{:4} {}: {:?}", board::now(), name, change);
+        let Ok(report) = contact.next_report(async || ticker.next().await).await;
+        match report {
+            // Found at power-up; nobody operated it.
+            Started::Initial(position) => hprintln!("{:4} {} is {:?}", board::now(), name, position),
+            Started::Edge(change) => hprintln!("{:4} {}: {:?}", board::now(), name, change),
+        }
     }
 }
 

@@ -4,7 +4,7 @@
 
 use core::cell::Cell;
 
-use debounce_core::{MatrixPins, ReadPort};
+use debounce_core::{MatrixPins, PortReader};
 use embedded_hal::delay::DelayNs;
 use embedded_hal::digital::{Error, ErrorKind, ErrorType, InputPin, OutputPin};
 
@@ -118,7 +118,7 @@ impl Board {
     }
 }
 
-impl ReadPort<u8> for &Board {
+impl PortReader<u8> for &Board {
     type Error = NotReady;
 
     fn read_port(&mut self) -> Result<u8, NotReady> {

@@ -2,7 +2,7 @@
 
 use debounce_core::{
     Bank, BankState, Change, DetentState, Detents, Gesture, GestureEvent, GestureState, GestureTicks,
-    KeyDiodes, Machine, Matrix, MatrixState, Phases, Position, QuadratureEvent, ReadPort, RestPhases,
+    KeyDiodes, Machine, Matrix, MatrixState, Phases, PortReader, Position, QuadratureEvent, RestPhases,
     StartingBank, StartingBankState, Turn,
 };
 

@@ -1,12 +1,12 @@
 //! The laws, what is said about them, and the banks.
 
 use debounce_core::{
-    Bank, BankState, Bounds, Changes, Clause, Config, ConstLaw, Count, EdgeRule, Envelope, Integrator,
-    IntegratorState, Lane, LanesStarted, Latency, Law, Machine, MajorityRegister, MajorityRegisterState,
-    Parameter, ParameterError, PatientBank, PatientState, PerChange, PerPosition, Period, Phase, PortLaw,
-    Running, ShiftRegister, ShiftRegisterState, Started, Starting, StartingBank, StartingBankState,
-    StartingState, StateMachine, StateMachineParameters, StateMachineState, TableLaw, TableLawError,
-    TableState, TickClock, Verdict, WindowWord, Word, is_settled, is_still,
+    Bank, BankState, Bounds, Chain, ChainState, Changes, Clause, Config, ConstLaw, Count, EdgeRule, Envelope,
+    Integrator, IntegratorState, Lane, LanesStarted, Latency, Law, Machine, MajorityRegister,
+    MajorityRegisterState, Parameter, ParameterError, PatientBank, PatientState, PerChange, PerPosition,
+    Period, Phase, PortLaw, Running, Settling, ShiftRegister, ShiftRegisterState, Started, Starting,
+    StartingBank, StartingBankState, StartingState, StateMachine, StateMachineParameters, StateMachineState,
+    TableLaw, TableLawError, TableState, TickClock, Verdict, WindowWord, Word, is_settled, is_still,
 };
 
 use crate::image::{any, any_u8, any_u16, keep};
@@ -16,6 +16,7 @@ pub(crate) fn all() {
     integrators();
     registers();
     state_machines();
+    chains();
     tables();
     banks::<u8>();
     banks::<u16>();
@@ -29,15 +30,17 @@ fn law<L: Law + Copy>(law: L) {
     let state = law.rest(position());
     keep(&is_settled(&law, &state, position()));
     keep(&is_still(&law, &state, position()));
+    keep(&Settling::settled_at(&law, &state));
     drive(&law, state, position);
     let starting: StartingState<L::State> = Starting::new(law).power_up();
     drive(&Starting::new(law), starting, position);
     let mut running = Running::new(law, position());
     keep(&running.tick(position()));
     keep(&(running.position(), running.is_settled(), running.state().eq(running.state())));
+    keep(&running.settled_at());
     let mut running = Running::starting(law);
     let report: Option<Started> = running.tick(position());
-    keep(&(report, running.position(), running.is_settled()));
+    keep(&(report, running.position(), running.is_settled(), running.settled_at()));
 }
 
 fn refused(error: ParameterError) {
@@ -106,6 +109,17 @@ fn state_machines() {
             StateMachine::<u8>::new(StateMachineParameters::confirm(3, 4).patience(4, 3));
     }
     law(ConstLaw::<Door>::new());
+}
+
+fn chains() {
+    let first = MajorityRegister::<u8>::try_new(any_u8(), any_u8());
+    let second = StateMachine::<u8>::try_new(StateMachineParameters::confirm(any_u8(), any_u8()));
+    if let (Ok(first), Ok(second)) = (first, second) {
+        let chain = Chain::new(first, second);
+        let state: ChainState<MajorityRegisterState<u8>, StateMachineState<u8>> = chain.rest(position());
+        keep(&(chain.first().eq(&first), state.second().phase()));
+        law(chain);
+    }
 }
 
 fn tables() {

@@ -1,17 +1,18 @@
 //! Pins, ports, hand-over and what the field shows.
 
-use core::fmt;
-use core::future::Future;
+use core::fmt::{self, Write as _};
+use core::future::{Future, poll_fn};
 use core::pin::pin;
-use core::task::{Context, Waker};
+use core::task::{Context, Poll, Waker};
 
 use debounce_core::{
-    AsyncPin, Burst, Bursts, BurstsState, Change, DebouncedPin, Delivery, KeyDiodes, Machine, Mailbox,
-    Matrix, MatrixPins, Monitor, MonitorLimits, MonitorState, Outside, PerChange, PerPosition, PinPort,
-    Polarity, ReadPort, Recorder, RecorderMode, Running, ScanError, ShiftRegister, Wear,
+    Bank, Burst, Bursts, BurstsState, Change, DebouncedPin, DebouncedPins, DebouncedPort, Delivery, Envelope,
+    Heartbeat, KeyDiodes, Level, Machine, Mailbox, Matrix, MatrixPins, Monitor, MonitorState, Outside,
+    Period, PinPort, Polarity, PortReader, Recorded, RecordedRun, Recorder, RecorderMode, RecorderText,
+    Running, ScanError, ShiftRegister, Started, StartingBank, Tally, TickFault, Wear,
 };
 use embedded_hal::delay::DelayNs;
-use embedded_hal::digital::{Error, ErrorKind, ErrorType, InputPin, OutputPin, PinState};
+use embedded_hal::digital::{Error, ErrorKind, ErrorType, InputPin, OutputPin};
 use embedded_hal_async::digital::Wait;
 
 use crate::image::{any, any_u8, any_u16, keep};
@@ -19,10 +20,12 @@ use crate::{change, drive, position};
 
 pub(crate) fn all() {
     pins();
+    ports();
     keypad();
     sleeping();
     mailbox();
-    field();
+    wear();
+    health();
     recorder();
 }
 
@@ -92,25 +95,41 @@ impl DelayNs for Clock {
     }
 }
 
-impl embedded_hal_async::delay::DelayNs for Clock {
-    async fn delay_ns(&mut self, ns: u32) {
-        keep(&ns);
+fn pins() {
+    let Ok(law) = ShiftRegister::try_new(any_u8()) else { return };
+    for polarity in [Polarity::ClosedWhenLow, Polarity::ClosedWhenHigh] {
+        let mut pin = DebouncedPin::new(Pin, polarity, Running::new(law, position()));
+        for _ in 0..any() {
+            keep(&pin.tick());
+        }
+        let wake: Option<Level> = pin.wake_level();
+        keep(&(pin.running().is_settled(), wake, polarity.level(position())));
+        keep(&pin.release().1.position());
     }
+    let key = || DebouncedPin::new(Pin, Polarity::ClosedWhenLow, Running::starting(law));
+    let mut keys = DebouncedPins::new([key(), key(), key(), key(), key()]);
+    for _ in 0..any() {
+        let reports: [Result<Option<Started>, Broken>; 5] = keys.tick();
+        keep(&reports);
+    }
+    keep(&(keys.are_settled(), keys.pins().iter().filter_map(DebouncedPin::wake_level).count()));
+    keep(&keys.release().map(|(_, running)| running.position()));
 }
 
-fn pins() {
-    if let Ok(law) = ShiftRegister::try_new(any_u8()) {
-        for polarity in [Polarity::ClosedWhenLow, Polarity::ClosedWhenHigh] {
-            let mut pin = DebouncedPin::new(Pin, polarity, Running::new(law, position()));
-            for _ in 0..any() {
-                keep(&pin.tick());
-            }
-            keep(&pin.running().is_settled());
-        }
-    }
+fn ports() {
     let mut port = PinPort::new([Pin, Pin, Pin, Pin, Pin, Pin]);
     let reading: Result<u8, Broken> = port.read_port();
     keep(&reading);
+    let bank = StartingBank::<_, 2>::new(Bank::<u8, 2>::new(any_u8()));
+    let mut port = DebouncedPort::new(port, Running::from_parts(bank, bank.power_up()));
+    for _ in 0..any() {
+        keep(&port.tick());
+    }
+    keep(&(port.is_settled(any_u8()), port.release().1.state()));
+    let register = || if any() & 1 == 0 { Ok(any()) } else { Err(Broken) };
+    let bank = Bank::<u32, 3>::new(any());
+    let mut port = DebouncedPort::new(register, Running::from_parts(bank, bank.all_open()));
+    keep(&port.tick());
 }
 
 fn keypad() {
@@ -122,15 +141,25 @@ fn keypad() {
     }
 }
 
+/// Each future is polled once: that runs everything in it, for every wait may be over at once or not.
+///
+/// Polled again it would bring the check of the language that an `async fn` which has ended is not resumed. That one is
+/// in every `async fn`, and no `.await` comes to it.
 fn sleeping() {
     let Ok(law) = ShiftRegister::try_new(any_u8()) else { return };
-    let mut key = AsyncPin::new(Pin, Clock, law, PinState::Low, any());
+    let mut key = DebouncedPin::new(Pin, Polarity::ClosedWhenLow, Running::starting(law));
     let mut context = Context::from_waker(Waker::noop());
-    {
-        let mut change = pin!(key.wait_for_change());
-        keep(&change.as_mut().poll(&mut context).is_ready());
+    for _ in 0..any() {
+        let mut report = pin!(key.next_report(async || poll_fn(|_| ready()).await));
+        let polled: Poll<Result<Started, Broken>> = report.as_mut().poll(&mut context);
+        keep(&polled);
     }
-    keep(&key.position());
+    keep(&key.running().position());
+}
+
+/// A tick that is over, or not yet.
+fn ready() -> Poll<()> {
+    if any() & 1 == 0 { Poll::Ready(()) } else { Poll::Pending }
 }
 
 /// There are no interrupts in this image.
@@ -156,7 +185,7 @@ fn mailbox() {
     keep(&delivery);
 }
 
-fn field() {
+fn wear() {
     if let Some(bursts) = Bursts::try_new(any_u16()) {
         let mut state: BurstsState = Bursts::POWER_UP;
         let mut wear = Wear::NEW;
@@ -167,18 +196,29 @@ fn field() {
         keep(&(wear.operations(), wear.longest_bounce(), wear.most_changes(), wear.is_ageing()));
         drive(&bursts, state, position);
     }
-    let limits = MonitorLimits {
-        bounce: PerChange { make: any_u16(), break_: any_u16() },
-        glitch: PerPosition { open: any_u16(), closed: any_u16() },
-        quiet: any_u16(),
-        stuck_256_ticks: PerPosition { open: any_u16(), closed: any_u16() },
-    };
-    if let Some(monitor) = Monitor::try_new(limits) {
-        let mut state: MonitorState = Monitor::POWER_UP;
+}
+
+fn health() {
+    let mut tally = Tally::NEW;
+    let envelope = Envelope::clean(any(), any()).bounce(any(), any()).glitch(any(), any());
+    if let Some(monitor) = Monitor::try_new(&envelope.quiet(any()).calm(any()).lost(any())) {
+        let monitor = monitor.stuck_after(any(), any());
+        let mut state: MonitorState = monitor.power_up();
         let outside: Option<Outside> = monitor.step(&mut state, position());
-        keep(&outside);
+        if let Some(outside) = outside {
+            tally.count(outside);
+        }
+        keep(&(monitor.rest(), state.is_outside()));
         drive(&monitor, state, position);
     }
+    let beat = Heartbeat::new(any());
+    let mut last = Heartbeat::POWER_UP;
+    let fault: Option<TickFault> = beat.step(&mut last, any());
+    if let Some(fault) = fault {
+        tally.count_tick_fault(fault);
+    }
+    keep(&(tally, tally.is_clean()));
+    drive(&beat, last, any);
 }
 
 /// Takes text a byte at a time.
@@ -197,7 +237,17 @@ fn recorder() {
     for _ in 0..any() {
         recorder.sample(position());
     }
-    keep(&(recorder.is_stopped(), recorder.first(), recorder.forgotten(), recorder.runs().count()));
-    keep(&recorder.dump(&mut Line));
+    recorder.lost(any());
+    keep(&(recorder.is_stopped(), recorder.forgotten()));
+    for run in recorder.runs() {
+        let run: RecordedRun = run;
+        let recorded: Recorded = run.recorded;
+        keep(&(recorded, run.ticks));
+    }
+    if let Some(period) = Period::try_from_ratio(any().into(), any()) {
+        let text: RecorderText<'_, 16> = recorder.text(period);
+        keep(&write!(Line, "{text}"));
+    }
     recorder.clear();
+    keep(&recorder);
 }

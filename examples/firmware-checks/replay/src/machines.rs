@@ -4,11 +4,11 @@ use core::fmt;
 use core::hash::{Hash, Hasher};
 
 use debounce_core::{
-    Bank, Bursts, Changeover, ContactPair, Detents, EdgeRule, Gesture, GestureTicks, Hysteresis, Integrator,
-    KeyDiodes, Ladder, LadderParts, Lane, Law, Machine, MajorityRegister, Matrix, Monitor, MonitorLimits,
-    PairKind, PairPositions, PatientBank, PerChange, PerPosition, Phases, Position, PulseCounter,
-    PulseLimits, Quadrature, Resolution, RestPhases, ShiftRegister, Speed, Starting, StartingBank,
-    StateMachine, StateMachineParameters, TableLaw, Throws,
+    Bank, Bursts, Chain, Changeover, ContactPair, Detents, EdgeRule, Envelope, Gesture, GestureTicks,
+    Heartbeat, Hysteresis, Integrator, KeyDiodes, Ladder, LadderParts, Lane, Law, Machine, MajorityRegister,
+    Matrix, Monitor, PairKind, PairPositions, PatientBank, Phases, Position, PulseCounter, PulseLimits,
+    Quadrature, Resolution, RestPhases, ShiftRegister, Speed, Starting, StartingBank, StateMachine,
+    StateMachineParameters, TableLaw, Throws,
 };
 
 use crate::digest::Digest;
@@ -99,6 +99,11 @@ fn laws(replay: &mut Replay<'_>) {
     replay.law("patient state machine u8", StateMachine::<u8>::new(patient));
     let patient = StateMachineParameters::confirm(3, 4).patience(4, 3).lockout(6, 3);
     replay.law("patient state machine u16", StateMachine::<u16>::new(patient));
+    let chain = Chain::new(
+        MajorityRegister::<u8>::new(2, 3),
+        StateMachine::<u8>::new(StateMachineParameters::confirm(3, 3)),
+    );
+    replay.law("chain", chain);
     replay.law("table", TableLaw::new(&ROWS, 2, [0, 2]));
     replay.law("lane of a bank", Lane::new(Bank::<u8, 3>::new(0)));
 }
@@ -138,13 +143,9 @@ fn meaning(replay: &mut Replay<'_>) {
     let pulses = PulseCounter::new(PulseLimits { shortest_closed: 3, longest_closed: 90, shortest_open: 2 });
     replay.line("pulse counter", pulses, PulseCounter::POWER_UP);
     replay.line("bursts", Bursts::new(5), Bursts::POWER_UP);
-    let monitor = Monitor::new(MonitorLimits {
-        bounce: PerChange { make: 4, break_: 6 },
-        glitch: PerPosition { open: 1, closed: 2 },
-        quiet: 9,
-        stuck_256_ticks: PerPosition { open: 2, closed: 1 },
-    });
-    replay.line("monitor", monitor, Monitor::POWER_UP);
+    let envelope = Envelope::clean(40, 30).bounce(4, 6).glitch(1, 2).quiet(9).calm(1);
+    let monitor = Monitor::new(&envelope).stuck_after(512, 256);
+    replay.line("monitor", monitor, monitor.power_up());
     for (line, kind) in lines() {
         replay.kind = kind;
         let phases = |line: &mut Line| Phases { a: line.sample(), b: line.sample() };
@@ -182,6 +183,11 @@ fn meaning(replay: &mut Replay<'_>) {
     }
     replay.kind = "random";
     let mut dice = Dice::new();
+    let mut ticks = 0_u32;
+    replay.run("heartbeat", &Heartbeat::new(5), Heartbeat::POWER_UP, FEWER, || {
+        ticks = ticks.wrapping_add(dice.roll() >> 29);
+        ticks
+    });
     let pedal = Hysteresis::new(300, 700, 8, 1015);
     replay.run("hysteresis", &pedal, Hysteresis::POWER_UP, FEWER, || (dice.roll() >> 22) as u16);
     let ladder = Ladder::<3>::new(&LadderParts {
