@@ -13,6 +13,7 @@ use super::input::Input;
 use super::lines::{Lines, grouped, strong};
 use super::recordings::RequirementInput;
 use super::{Answer, Failure, Outcome, OutputFolder, Session};
+use crate::choose::known_limit;
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
 use crate::machine::{MachineTable, Reading, TableFault, TableFileError, read_table};
@@ -115,7 +116,7 @@ impl ProveArguments {
         let limits = Limits::default();
         let proof = prove_contract(&logic.table, &envelope, contract, &limits)
             .map_err(|error| Problem::new(error.to_string()))?;
-        let limit = envelope.limit().filter(|_| contract == Contract::Follow);
+        let limit = if contract == Contract::Follow { known_limit(&envelope) } else { None };
         let mut written = None;
         if let (Some((folder, name)), Some((_, witness))) = (file, proof.refutation()) {
             let period = tick.unwrap_or_else(|| Period::from_ms(1));
@@ -289,13 +290,17 @@ impl Answer for Proved {
                 )?;
                 for change in [Change::Make, Change::Break] {
                     let latency = bounds.latency.at(change);
-                    let limit = self.limit.map_or(String::new(), |limit| {
-                        let limit = limit.at(change);
-                        format!(
-                            "; no logic can promise less than {limit} ({:.2} x)",
-                            f64::from(latency.worst) / f64::from(limit)
-                        )
-                    });
+                    let limit = match (self.limit, self.proof.contract) {
+                        (Some(limit), _) => {
+                            let limit = limit.at(change);
+                            format!(
+                                "; no logic can promise less than {limit} ({:.2} x)",
+                                f64::from(latency.worst) / f64::from(limit)
+                            )
+                        }
+                        (None, Contract::Follow) => "; limit unknown".to_owned(),
+                        (None, Contract::Alternate) => String::new(),
+                    };
                     lines.item(
                         if change == Change::Make { "Make" } else { "Break" },
                         &format!("at most {}, at least {}{limit}", self.latency(latency.worst), latency.best),
