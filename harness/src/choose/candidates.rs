@@ -23,7 +23,7 @@ fn shift_registers(allowed: u16, laws: &mut Vec<LawParameters>) {
 
 fn integrators(allowed: u16, laws: &mut Vec<LawParameters>) {
     for full_scale in spread(allowed) {
-        for (up, down) in [(1, 1), (1, 2), (2, 1)] {
+        for (up, down) in [(1, 1), (1, 2), (2, 1), (1, 3), (3, 1)] {
             if up <= full_scale && down <= full_scale {
                 laws.push(LawParameters::Integrator { full_scale, up, down });
             }
@@ -34,8 +34,13 @@ fn integrators(allowed: u16, laws: &mut Vec<LawParameters>) {
 fn majority_registers(allowed: u16, laws: &mut Vec<LawParameters>) {
     for window in (2..=16_u8).filter(|&window| u16::from(window) / 2 < allowed) {
         let least = window / 2 + 1;
-        // A unanimous window is the shift register; near to half and near to all is where these differ.
-        let mut majorities = vec![least, (3 * window).div_ceil(4), window - 1];
+        // A unanimous window is the shift register. The tables of wide windows are large, so of these only the
+        // majorities near to half, near to all and half-way between are tried.
+        let mut majorities: Vec<u8> = if window <= 12 {
+            (least..window).collect()
+        } else {
+            vec![least, (3 * window).div_ceil(4), window - 1]
+        };
         majorities.retain(|&majority| majority >= least && majority < window);
         majorities.dedup();
         laws.extend(
@@ -51,13 +56,14 @@ fn state_machines(envelope: &Envelope, allowed: u16, laws: &mut Vec<LawParameter
     let glitch = PerChange { make: narrow(envelope.glitch.open), break_: narrow(envelope.glitch.closed) };
     let bounce = PerChange { make: narrow(envelope.bounce.make), break_: narrow(envelope.bounce.break_) };
     let apart = |make: u16, break_: u16| PerChange { make, break_ };
-    for more in 0..=3_u16 {
+    for more in 0..=7_u16 {
         let confirm = apart(glitch.make.saturating_add(1 + more), glitch.break_.saturating_add(1 + more));
         if confirm.make.min(confirm.break_) > allowed {
             continue;
         }
         let clears = apart(glitch.break_.saturating_add(1), glitch.make.saturating_add(1));
-        let mut patiences = vec![apart(1, 1), clears];
+        let between = apart(clears.make.div_ceil(2), clears.break_.div_ceil(2));
+        let mut patiences = vec![apart(1, 1), between, clears];
         patiences.dedup();
         for patience in patiences {
             let least = |b: u16, k: u16| b.saturating_sub(k - 1);
@@ -65,8 +71,10 @@ fn state_machines(envelope: &Envelope, allowed: u16, laws: &mut Vec<LawParameter
                 apart(0, 0),
                 apart(least(bounce.make, confirm.make), least(bounce.break_, confirm.break_)),
                 apart(bounce.make.saturating_sub(1), bounce.break_.saturating_sub(1)),
+                bounce,
                 apart(bounce.make.saturating_add(glitch.break_), bounce.break_.saturating_add(glitch.make)),
             ];
+            lockouts.sort_unstable_by_key(|lockout| (lockout.make, lockout.break_));
             lockouts.dedup();
             laws.extend(lockouts.into_iter().map(|lockout| LawParameters::StateMachine {
                 confirm,

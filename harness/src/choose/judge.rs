@@ -1,11 +1,15 @@
 //! One candidate: proved, measured, costed, and held against what is asked.
 
-use debounce_core::{Change, Envelope, PerChange, Verdict};
+use std::sync::{Arc, Mutex, OnceLock};
+
+use debounce_core::{Change, Clause, Envelope, PerChange, Verdict};
+
+use rustc_hash::FxHashMap;
 
 use super::{Candidate, ClockView, Evidence, Judgement, Question, Shortfall, physical_limit};
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
-use crate::prove::{Outcome, ProveError, prove_within};
+use crate::prove::{Contract, Environment, LawTable, Outcome, ProveError, prove_in};
 use crate::replay::PreparedTrace;
 use crate::with_law;
 
@@ -14,8 +18,26 @@ pub(super) struct Judge<'a> {
     view: &'a ClockView,
     clock: usize,
     envelope: Envelope,
+    /// The envelope's automaton, the same for every law; made when the first needs it.
+    environment: OnceLock<Result<Environment, ProveError>>,
     prepared: &'a [PreparedTrace],
+    tables: &'a Tables,
     physical_limit_ns: PerChange<u64>,
+}
+
+/// The tables of laws already met: a law is the same at every tick period.
+#[derive(Default)]
+pub(super) struct Tables(Mutex<FxHashMap<Logic, Arc<TableOnce>>>);
+
+type TableOnce = OnceLock<Result<LawTable, ProveError>>;
+
+impl Tables {
+    fn of(&self, logic: &Logic) -> Arc<TableOnce> {
+        // The table itself is made outside the lock, so that others need not wait for it.
+        let once = Arc::clone(self.0.lock().expect("no thread panics").entry(*logic).or_default());
+        once.get_or_init(|| logic.table());
+        once
+    }
 }
 
 impl<'a> Judge<'a> {
@@ -25,9 +47,19 @@ impl<'a> Judge<'a> {
         clock: usize,
         envelope: Envelope,
         prepared: &'a [PreparedTrace],
+        tables: &'a Tables,
     ) -> Self {
         let physical_limit_ns = physical_limit(&question.physical);
-        Self { question, view, clock, envelope, prepared, physical_limit_ns }
+        Self {
+            question,
+            view,
+            clock,
+            envelope,
+            environment: OnceLock::new(),
+            prepared,
+            tables,
+            physical_limit_ns,
+        }
     }
 
     /// `None` where the law refuses the parameters.
@@ -80,7 +112,18 @@ impl<'a> Judge<'a> {
     }
 
     fn explored(&self, logic: &Logic) -> Result<Judgement, ProveError> {
-        let proof = prove_within(&logic.table()?, &self.envelope, &self.question.limits)?;
+        let environment = match self.environment.get_or_init(|| Environment::of(&self.envelope)) {
+            Ok(environment) => environment,
+            Err(ProveError::DwellUnseen { .. }) => {
+                let (clause, evidence) = (Clause::DwellUnseen, Evidence::ClosedForm);
+                return Ok(Judgement::Refuted { clause, evidence });
+            }
+            Err(error) => return Err(error.clone()),
+        };
+        let limits = &self.question.limits;
+        let table = self.tables.of(logic);
+        let table = table.get().expect("made when it was looked up").as_ref().map_err(Clone::clone)?;
+        let proof = prove_in(table, environment, &self.envelope, Contract::Follow, limits)?;
         let evidence = Evidence::Explored { states: proof.states };
         Ok(match proof.outcome {
             Outcome::Faithful { bounds, .. } => Judgement::Faithful { bounds, evidence },

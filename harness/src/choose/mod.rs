@@ -15,7 +15,7 @@ use rayon::prelude::*;
 use crate::envelope::{PhysicalEnvelope, TickError};
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
-use crate::prove::Limits;
+use crate::prove::{Limits, limit};
 use crate::replay::{Measurement, PrepareError, PreparedTrace};
 use crate::sample::ExactPeriod;
 use crate::trace::Trace;
@@ -201,7 +201,8 @@ impl Ranking {
 /// # Errors
 /// When a recording and its truth do not fit together.
 pub fn choose(question: &Question<'_>, progress: impl Fn(usize) + Sync) -> Result<Ranking, PrepareError> {
-    let clocks: Vec<ClockView> = question.clocks.iter().map(|&clock| view(question, clock)).collect();
+    let clocks: Vec<ClockView> = question.clocks.par_iter().map(|&clock| view(question, clock)).collect();
+    let tables = judge::Tables::default();
     let mut candidates = Vec::new();
     for (index, view) in clocks.iter().enumerate() {
         let Ok(envelope) = view.envelope else { continue };
@@ -210,7 +211,7 @@ pub fn choose(question: &Question<'_>, progress: impl Fn(usize) + Sync) -> Resul
             .iter()
             .map(|(trace, truth)| PreparedTrace::new(trace, truth, ExactPeriod::nominal(&view.clock)))
             .collect::<Result<Vec<_>, _>>()?;
-        let judge = judge::Judge::new(question, view, index, envelope, &prepared);
+        let judge = judge::Judge::new(question, view, index, envelope, &prepared, &tables);
         let laws = match &question.only {
             Some(laws) => laws.clone(),
             None => candidates::laws(&envelope, allowed_samples(question, &view.clock)),
@@ -225,8 +226,15 @@ pub fn choose(question: &Question<'_>, progress: impl Fn(usize) + Sync) -> Resul
 
 fn view(question: &Question<'_>, clock: TickClock) -> ClockView {
     let envelope = question.physical.in_ticks(&clock);
-    let limit = envelope.ok().and_then(|envelope| envelope.limit());
+    let limit = envelope.ok().and_then(|envelope| known_limit(&envelope));
     ClockView { clock, envelope, limit }
+}
+
+/// The limit by the closed form, else by beliefs as long as these are so few that nobody waits for them.
+#[must_use]
+pub fn known_limit(envelope: &Envelope) -> Option<PerChange<u32>> {
+    let few = Limits { memory_bytes: 1 << 19, threads: 1 };
+    limit(envelope, &few).ok()?.latency()
 }
 
 /// The most samples of latency that stay within what is allowed, the larger of make and break.

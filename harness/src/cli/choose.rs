@@ -127,7 +127,11 @@ fn candidate_table(study: &Study, list: usize) -> String {
             study.tick(one).to_string(),
             make,
             break_,
-            one.times_limit.map_or("-".into(), |times| format!("{times:.2}")),
+            match (one.times_limit, one.worst_below_ns) {
+                (Some(times), _) => format!("{times:.2}"),
+                (None, Some(_)) => "limit unknown".into(),
+                (None, None) => "-".into(),
+            },
             median.map_or("-".into(), words::about),
             one.state_bytes.to_string(),
             one.shortfalls.first().map(words::shortfall).unwrap_or_default(),

@@ -13,6 +13,7 @@ use super::input::Input;
 use super::lines::{Lines, grouped, strong};
 use super::recordings::RequirementInput;
 use super::{Answer, Failure, Outcome, OutputFolder, Session, faults};
+use crate::choose::known_limit;
 use crate::emit::module_name;
 use crate::emit::table::table_law;
 use crate::law_text::LawParameters;
@@ -126,7 +127,7 @@ impl ProveArguments {
         let proof = prove_contract(&logic.table, &envelope, contract, &limits).map_err(Problem::told)?;
         let again = self.again(&envelope, tick);
         let tick = tick.map(TickPeriod::period);
-        let limit = envelope.limit().filter(|_| contract == Contract::Follow);
+        let limit = if contract == Contract::Follow { known_limit(&envelope) } else { None };
         let mut written = Vec::new();
         if let Some(path) = &self.machine {
             let (folder, name) = OutputFolder::of_file(path)?;
@@ -330,13 +331,17 @@ impl Answer for Proved {
                 )?;
                 for change in [Change::Make, Change::Break] {
                     let latency = bounds.latency.at(change);
-                    let limit = self.limit.map_or(String::new(), |limit| {
-                        let limit = limit.at(change);
-                        format!(
-                            "; no logic can promise less than {limit} ({:.2} x)",
-                            f64::from(latency.worst) / f64::from(limit)
-                        )
-                    });
+                    let limit = match (self.limit, self.proof.contract) {
+                        (Some(limit), _) => {
+                            let limit = limit.at(change);
+                            format!(
+                                "; no logic can promise less than {limit} ({:.2} x)",
+                                f64::from(latency.worst) / f64::from(limit)
+                            )
+                        }
+                        (None, Contract::Follow) => "; limit unknown".to_owned(),
+                        (None, Contract::Alternate) => String::new(),
+                    };
                     lines.item(
                         if change == Change::Make { "Make" } else { "Break" },
                         &format!("at most {}, at least {}{limit}", self.latency(latency.worst), latency.best),

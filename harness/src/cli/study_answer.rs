@@ -76,9 +76,9 @@ impl StudyAnswer {
         lines.more(&format!(
             "for all {} reachable states of contact, disturbances and logic{}{}",
             grouped(found.proof.states),
-            best.times_limit
-                .map(|times| format!("; {times:.2} x the limit of any logic at this tick"))
-                .unwrap_or_default(),
+            best.times_limit.map_or("; limit unknown".to_owned(), |times| {
+                format!("; {times:.2} x the limit of any logic at this tick")
+            }),
             best.times_physical_limit
                 .map(|times| format!(", {times:.2} x what no tick could beat"))
                 .unwrap_or_default(),

@@ -1,6 +1,6 @@
 //! The envelope as an automaton: every way in which the contact, its bounce and the disturbances may go on.
 
-use debounce_core::{Envelope, Position};
+use debounce_core::{Envelope, PerPosition, Position};
 use rustc_hash::FxHashMap;
 
 use super::{Contract, ProveError};
@@ -123,6 +123,7 @@ pub struct Environment {
     branches: Vec<Branch>,
     first: Vec<u32>,
     starts: [u32; 2],
+    dwell: PerPosition<u32>,
 }
 
 impl Environment {
@@ -162,7 +163,7 @@ impl Environment {
                 return Err(ProveError::environment_too_large());
             }
         }
-        Ok(Self { states: enumeration.states, branches, first, starts })
+        Ok(Self { states: enumeration.states, branches, first, starts, dwell: rules.envelope.dwell })
     }
 
     /// Whether `envelope` is one at all, without enumerating it.
@@ -196,6 +197,13 @@ impl Environment {
     #[inline]
     pub fn state(&self, index: usize) -> &EnvironmentState {
         &self.states[index]
+    }
+
+    /// Whether the contact has held its position for the dwell, and so may change.
+    #[inline]
+    pub(super) fn dwell_served(&self, index: usize) -> bool {
+        let state = &self.states[index];
+        state.held >= self.dwell.at(state.contact)
     }
 
     /// Every way to go on from a state.

@@ -1,236 +1,247 @@
-//! All reachable states of a product, layer by layer, in a dense set of one bit each.
+//! All reachable states of a product.
+//!
+//! The order does not matter for what is reached, so it is chosen for speed: sweeps through the environment states in
+//! the order of their discovery, in which most branches lead onward. A word of states that waits its turn gathers all
+//! that comes in meanwhile and goes on with it at once. A violation ends the exploration; what takes the fewest
+//! samples to it is then found by [layers](super::layers).
 
-use core::sync::atomic::{AtomicU64, Ordering::Relaxed};
+use core::sync::atomic::{AtomicBool, AtomicUsize, Ordering::Relaxed};
+use std::sync::Mutex;
 
-use debounce_core::Clause;
-use rayon::prelude::*;
-
-use super::product::{Node, Product, Step};
+use super::product::Product;
+use super::reached::{Dense, Pages, Reached};
+use super::word::{Place, Words, ones};
 use super::{Limits, ProveError};
 
-/// A set of nodes: one bit for each pair of environment and logic state, and as much again only once some
-/// node is late.
-pub(super) struct Visited {
-    logic_states: usize,
-    on_time: Vec<AtomicU64>,
-    late: std::sync::OnceLock<Vec<AtomicU64>>,
-}
-
-impl Visited {
-    pub(super) fn for_product(product: &Product<'_>, limits: &Limits) -> Result<Self, ProveError> {
-        let pairs = product.environment.len() as u128 * product.logic.len() as u128;
-        // Two bits a pair in the worst case.
-        let bytes = pairs / 4 + 16;
-        if bytes > u128::from(limits.memory_bytes) {
-            return Err(ProveError::TooLarge { pairs, bytes, limit: limits.memory_bytes });
-        }
-        let words = (pairs as usize).div_ceil(64);
-        Ok(Self {
-            logic_states: product.logic.len(),
-            on_time: zeros(words),
-            late: std::sync::OnceLock::new(),
-        })
-    }
-
-    #[inline]
-    fn index(&self, node: Node) -> usize {
-        node.environment() * self.logic_states + node.logic()
-    }
-
-    #[inline]
-    fn word(&self, node: Node) -> (&AtomicU64, u64) {
-        let index = self.index(node);
-        let words =
-            if node.late() { self.late.get_or_init(|| zeros(self.on_time.len())) } else { &self.on_time };
-        (&words[index / 64], 1 << (index % 64))
-    }
-
-    /// Adds a node while no other thread does; true when it is new.
-    #[inline]
-    fn insert_alone(&self, node: Node) -> bool {
-        let (word, bit) = self.word(node);
-        let old = word.load(Relaxed);
-        if old & bit != 0 {
-            return false;
-        }
-        word.store(old | bit, Relaxed);
-        true
-    }
-
-    /// Adds a node while other threads may too; true for exactly one of them.
-    #[inline]
-    fn insert_shared(&self, node: Node) -> bool {
-        let (word, bit) = self.word(node);
-        word.load(Relaxed) & bit == 0 && word.fetch_or(bit, Relaxed) & bit == 0
-    }
-
-    /// Every node of the set, in the order of environment and logic states.
-    pub(super) fn nodes(&self) -> impl Iterator<Item = Node> + '_ {
-        let late = self.late.get().map_or(&[][..], |words| words);
-        ones(&self.on_time, self.logic_states, false).chain(ones(late, self.logic_states, true))
-    }
-}
-
-fn zeros(words: usize) -> Vec<AtomicU64> {
-    let mut set = Vec::new();
-    set.resize_with(words, AtomicU64::default);
-    set
-}
-
-fn ones(words: &[AtomicU64], logic_states: usize, late: bool) -> impl Iterator<Item = Node> + '_ {
-    words.iter().enumerate().flat_map(move |(at, word)| {
-        let mut left = word.load(Relaxed);
-        core::iter::from_fn(move || {
-            if left == 0 {
-                return None;
-            }
-            let index = at * 64 + left.trailing_zeros() as usize;
-            left &= left - 1;
-            Some(Node::new(index / logic_states, index % logic_states, late))
-        })
-    })
-}
-
-/// What an exploration came to.
+/// Everything that can be reached, where no promise is broken.
 pub(super) struct Explored {
-    pub(super) visited: Visited,
+    pub(super) reached: Reached,
     /// Number of nodes reached.
     pub(super) states: u64,
-    /// Number of branches taken.
+    /// Number of branches from them.
     pub(super) transitions: u64,
-    /// The first violation, by the number of samples it takes.
-    pub(super) violation: Option<Clause>,
 }
 
-/// Layers smaller than this are not worth sharing out.
-const SHARED_LAYER: usize = 1 << 14;
+/// Sets of fewer words than this are not worth sharing out.
+const SHARED_WORDS: usize = 1 << 14;
 
-/// Explores everything that can be reached from both starts, or up to the first layer with a violation.
-pub(super) fn explore(product: &Product<'_>, limits: &Limits) -> Result<Explored, ProveError> {
-    let visited = Visited::for_product(product, limits)?;
-    let mut layer: Vec<Node> = Vec::new();
-    for node in product.starts() {
-        if visited.insert_alone(node) {
-            layer.push(node);
-        }
-    }
-    let (mut states, mut transitions) = (0, 0);
-    let mut next = Vec::new();
-    let mut violation = None;
-    while !layer.is_empty() && violation.is_none() {
-        states += layer.len() as u64;
-        if layer.len() < SHARED_LAYER || limits.threads == 1 {
-            let found = expand(product, &layer, &mut next, |node| visited.insert_alone(node));
-            transitions += found.0;
-            violation = found.1;
-        } else {
-            let parts: Vec<_> = layer
-                .par_chunks(SHARED_LAYER / 4)
-                .map(|part| {
-                    let mut mine = Vec::with_capacity(part.len() * 2);
-                    let found = expand(product, part, &mut mine, |node| visited.insert_shared(node));
-                    (mine, found)
-                })
-                .collect();
-            for (mine, found) in parts {
-                next.extend_from_slice(&mine);
-                transitions += found.0;
-                violation = violation.or(found.1);
-            }
-        }
-        layer.clear();
-        core::mem::swap(&mut layer, &mut next);
-    }
-    Ok(Explored { visited, states, transitions, violation })
-}
-
-/// Takes every branch of every node of `layer`; returns how many, and a violation if there was one.
-#[inline]
-fn expand(
+/// Explores everything that can be reached from both starts; `None` as soon as a promise is broken.
+pub(super) fn explore(
     product: &Product<'_>,
-    layer: &[Node],
-    next: &mut Vec<Node>,
-    mut insert: impl FnMut(Node) -> bool,
-) -> (u64, Option<Clause>) {
-    let mut transitions = 0;
-    let mut violation = None;
-    for &node in layer {
-        let pending = product.pending(node);
-        let branches = product.branches(node);
-        transitions += branches.len() as u64;
-        for &branch in branches {
-            match product.step(node, pending, branch) {
-                Step::To(target, _) => {
-                    if insert(target) {
-                        next.push(target);
-                    }
-                }
-                Step::Violates(clause) => violation = violation.or(Some(clause)),
-            }
-        }
-    }
-    (transitions, violation)
-}
-
-/// A shortest path from a start to the first branch, in a fixed order, for which `wanted` holds.
-///
-/// The layers are kept, so a predecessor is found by looking through the layer before; nothing is stored per
-/// node. The search is sequential, so the same question has the same answer on any number of cores.
-pub(super) fn shortest_path(
-    product: &Product<'_>,
+    words: &Words<'_>,
     limits: &Limits,
-    mut wanted: impl FnMut(Node, usize, Step) -> bool,
-) -> Result<Option<Vec<(Node, usize)>>, ProveError> {
-    let visited = Visited::for_product(product, limits)?;
-    let mut layers: Vec<Vec<Node>> = vec![Vec::new()];
+) -> Result<Option<Explored>, ProveError> {
+    explore_into(product, words, limits, Reached::new(words, limits))
+}
+
+fn explore_into(
+    product: &Product<'_>,
+    words: &Words<'_>,
+    limits: &Limits,
+    mut reached: Reached,
+) -> Result<Option<Explored>, ProveError> {
+    let mut counts = Counts::default();
     for node in product.starts() {
-        if visited.insert_alone(node) {
-            layers[0].push(node);
-        }
+        let (place, bit) = words.place(node);
+        reached.add(place, bit);
     }
+    let threads = match limits.threads {
+        0 => rayon::current_num_threads(),
+        some => some,
+    };
     loop {
-        let layer = layers.last().expect("there is a first layer");
-        if layer.is_empty() {
+        let holds = if threads > 1 && words.len() >= SHARED_WORDS {
+            sweep_shared(words, &mut reached, threads, &mut counts)
+        } else {
+            sweep(words, &mut reached, &mut counts)
+        };
+        if !holds || !turn_pages(words, &mut reached, &mut counts)? {
             return Ok(None);
         }
-        let mut next = Vec::new();
-        let mut found = None;
-        'layer: for &node in layer {
-            let pending = product.pending(node);
-            for (at, &branch) in product.branches(node).iter().enumerate() {
-                let step = product.step(node, pending, branch);
-                if wanted(node, at, step) {
-                    found = Some((node, at));
-                    break 'layer;
-                }
-                if let Step::To(target, _) = step
-                    && visited.insert_alone(target)
-                {
-                    next.push(target);
-                }
-            }
+        if reached.dense.as_ref().is_none_or(Dense::is_clean) {
+            break;
         }
-        if let Some(last) = found {
-            return Ok(Some(walk_back(product, &layers, last)));
-        }
-        layers.push(next);
+    }
+    Ok(Some(Explored { reached, states: counts.states, transitions: counts.transitions }))
+}
+
+/// How much was gone on from: each state once, when it is fresh.
+#[derive(Clone, Copy, Default)]
+struct Counts {
+    states: u64,
+    transitions: u64,
+}
+
+impl Counts {
+    #[inline]
+    fn add(&mut self, words: &Words<'_>, place: Place, fresh: u64) {
+        let states = u64::from(fresh.count_ones());
+        self.states += states;
+        self.transitions += states * words.environment.branches(words.environment_of(place)).len() as u64;
     }
 }
 
-/// The path through `layers` that ends with `last`, a node of the last layer and the branch taken from it.
-fn walk_back(product: &Product<'_>, layers: &[Vec<Node>], last: (Node, usize)) -> Vec<(Node, usize)> {
-    let mut path = vec![last];
-    for layer in layers[..layers.len() - 1].iter().rev() {
-        let target = path.last().expect("the path is not empty").0;
-        let step = layer.iter().find_map(|&node| {
-            let pending = product.pending(node);
-            let reaches = |&branch: &_| {
-                matches!(product.step(node, pending, branch), Step::To(found, _) if found == target)
-            };
-            product.branches(node).iter().position(reaches).map(|at| (node, at))
-        });
-        path.push(step.expect("every node of a layer was reached from the layer before"));
+/// Goes on from every dirty word of the dense set, in order; false as soon as a promise is broken.
+fn sweep(words: &Words<'_>, reached: &mut Reached, counts: &mut Counts) -> bool {
+    let Some(groups) = reached.dense.as_ref().map(Dense::groups) else { return true };
+    for group in 0..groups {
+        loop {
+            let dirty = reached.dense.as_ref().map_or(0, |dense| dense.take_dirty(group));
+            if dirty == 0 {
+                break;
+            }
+            for at in ones(dirty) {
+                let place = Place { word: group * 64 + at, late: false };
+                let fresh = reached.dense.as_ref().map_or(0, |dense| dense.take(place.word));
+                counts.add(words, place, fresh);
+                if !words.expand(place, fresh, |place, bits| reached.add(place, bits)) {
+                    return false;
+                }
+            }
+        }
     }
-    path.reverse();
-    path
+    true
+}
+
+/// As [`sweep`], by several threads, each of which takes the next few groups when it is done with its last.
+fn sweep_shared(words: &Words<'_>, reached: &mut Reached, threads: usize, counts: &mut Counts) -> bool {
+    const GROUPS: usize = 16;
+    let Reached { dense: Some(dense), pages, .. } = reached else { return true };
+    let dense: &Dense = dense;
+    let pages: Mutex<&mut Pages> = Mutex::new(pages);
+    let (next, holds) = (AtomicUsize::new(0), AtomicBool::new(true));
+    let all = Mutex::new(counts);
+    let work = || {
+        let mut counts = Counts::default();
+        while holds.load(Relaxed) {
+            let from = next.fetch_add(GROUPS, Relaxed);
+            if from >= dense.groups() {
+                break;
+            }
+            for group in from..dense.groups().min(from + GROUPS) {
+                loop {
+                    let dirty = dense.take_dirty_shared(group);
+                    if dirty == 0 {
+                        break;
+                    }
+                    for at in ones(dirty) {
+                        let place = Place { word: group * 64 + at, late: false };
+                        let fresh = dense.take_shared(place.word);
+                        counts.add(words, place, fresh);
+                        let found = words.expand(place, fresh, |place, bits| {
+                            if place.late {
+                                pages.lock().expect("no thread panics").add(place, bits);
+                            } else {
+                                dense.add_shared(place.word, bits);
+                            }
+                        });
+                        if !found {
+                            holds.store(false, Relaxed);
+                            return;
+                        }
+                    }
+                }
+            }
+        }
+        let mut all = all.lock().expect("no thread panics");
+        all.states += counts.states;
+        all.transitions += counts.transitions;
+    };
+    rayon::scope(|scope| {
+        for _ in 0..threads {
+            scope.spawn(|_| work());
+        }
+    });
+    holds.into_inner()
+}
+
+/// Goes on from every page; false as soon as a promise is broken.
+fn turn_pages(words: &Words<'_>, reached: &mut Reached, counts: &mut Counts) -> Result<bool, ProveError> {
+    while let Some(page) = reached.pages.take() {
+        for (place, fresh) in page.into_iter().filter(|&(_, fresh)| fresh != 0) {
+            counts.add(words, place, fresh);
+            if !words.expand(place, fresh, |place, bits| reached.add(place, bits)) {
+                return Ok(false);
+            }
+        }
+        reached.check()?;
+    }
+    Ok(true)
+}
+
+#[cfg(test)]
+mod tests {
+    use debounce_core::{Envelope, Integrator, Law, MajorityRegister, StateMachine};
+
+    use super::{SHARED_WORDS, explore_into};
+    use crate::prove::environment::Environment;
+    use crate::prove::product::Product;
+    use crate::prove::reached::Reached;
+    use crate::prove::tabulate::LawTable;
+    use crate::prove::word::Words;
+    use crate::prove::{Limits, ProveError, prove_within};
+
+    fn limits(threads: usize) -> Limits {
+        Limits { threads, ..Limits::default() }
+    }
+
+    /// Dense or paged, by one thread or by two: the same states are reached. Returns how many.
+    #[track_caller]
+    fn alike<L: Law>(law: &L, envelope: &Envelope) -> Option<u64>
+    where
+        L::State: core::hash::Hash,
+    {
+        let environment = Environment::of(envelope).expect("a sound envelope");
+        let logic = LawTable::of(law).expect("a law");
+        let product = Product { environment: &environment, logic: &logic };
+        let words = Words::of(&product);
+        let explored = |threads, reached| {
+            let found = explore_into(&product, &words, &limits(threads), reached).expect("fits");
+            found.map(|found| {
+                let mut all: Vec<_> = found.reached.words().map(|(p, bits)| (p.late, p.word, bits)).collect();
+                all.sort_unstable();
+                assert_eq!(found.states, found.reached.len());
+                (found.states, found.transitions, all)
+            })
+        };
+        let dense = explored(1, Reached::new(&words, &limits(1)));
+        assert_eq!(explored(1, Reached::of_few(&limits(1))), dense);
+        assert_eq!(explored(2, Reached::new(&words, &limits(1))), dense);
+        dense.map(|found| found.0)
+    }
+
+    #[test]
+    fn explore_dense_paged_and_shared_reach_the_same() {
+        let small = Envelope::clean(12, 12).bounce(3, 2).glitch(1, 1).quiet(4);
+        let machine = StateMachine::<u8>::for_envelope(&small).expect("quiet is long enough");
+        assert!(alike(&machine, &small).is_some());
+        // A window scatters its states over the table, and needs no more than its samples on a clean line.
+        assert!(alike(&MajorityRegister::<u16>::new(6, 11), &Envelope::clean(12, 12)).is_some());
+        // More samples in a row than the contact holds still for: the promise breaks.
+        assert_eq!(alike(&Integrator::<u8>::new(13), &small), None);
+    }
+
+    #[test]
+    fn explore_large_product_is_shared_out_and_reaches_the_same() {
+        let large = Envelope::clean(160, 160).bounce(32, 32).glitch(8, 8).quiet(16);
+        let machine = StateMachine::<u16>::for_envelope(&large).expect("quiet is long enough");
+        let words = Environment::of(&large).expect("sound").len() * 4;
+        assert!(words >= SHARED_WORDS, "{words} words would not be shared out");
+        assert_eq!(alike(&machine, &large), Some(258_524));
+    }
+
+    #[test]
+    fn explore_out_of_memory_says_how_far_it_got() {
+        let envelope = Envelope::clean(40, 40).bounce(8, 8).glitch(2, 2).quiet(8);
+        let law = StateMachine::<u8>::for_envelope(&envelope).expect("quiet is long enough");
+        let table = LawTable::of(&law).expect("a law");
+        let states = prove_within(&table, &envelope, &limits(1)).expect("fits").states;
+        let little = Limits { memory_bytes: 4_000, threads: 1 };
+        let Err(ProveError::TooLarge { states: reached, limit: 4_000 }) =
+            prove_within(&table, &envelope, &little)
+        else {
+            panic!("a proof in 4 000 bytes")
+        };
+        assert!(reached > 0 && reached < states, "{reached} of {states}");
+    }
 }

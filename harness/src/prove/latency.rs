@@ -6,9 +6,13 @@
 
 use debounce_core::{Bounds, Change, Latency, PerChange};
 
+use rustc_hash::FxHashMap;
+
 use super::environment::Branch;
-use super::explore::Visited;
 use super::product::{Node, Product, Step};
+use super::reached::Reached;
+use super::word::Words;
+use super::{Limits, ProveError};
 
 /// Samples until a report, at least and at most.
 #[derive(Clone, Copy, PartialEq, Eq, Debug)]
@@ -33,16 +37,33 @@ pub(super) struct Reports {
 
 impl Reports {
     /// Walks the pending nodes of a product in which no violation was found.
-    pub(super) fn of(product: &Product<'_>, visited: &Visited) -> Result<Self, Circle> {
-        let nodes: Vec<Node> = visited.nodes().filter(|&node| product.pending(node) > 0).collect();
-        let index = PendingIndex::of(product, &nodes);
+    pub(super) fn of(
+        product: &Product<'_>,
+        words: &Words<'_>,
+        reached: &Reached,
+        limits: &Limits,
+    ) -> Result<Result<Self, Circle>, ProveError> {
+        let mut nodes = Vec::new();
+        for (place, bits) in reached.words() {
+            let pending = if place.late { bits } else { bits & words.differing(place) };
+            nodes.extend(words.nodes(place, pending));
+        }
+        // The node, two reports, its place in the order and in the index.
+        if nodes.len() as u64 * 48 > limits.memory_bytes {
+            return Err(ProveError::TooLarge { states: reached.len(), limit: limits.memory_bytes });
+        }
+        nodes.sort_unstable_by_key(|node| (node.late(), *node));
+        let index = PendingIndex::of(product, &nodes, reached.is_dense());
         let mut reports = Self { index, nodes, ahead: Vec::new() };
-        let order = reports.walk(product)?;
+        let order = match reports.walk(product) {
+            Ok(order) => order,
+            Err(circle) => return Ok(Err(circle)),
+        };
         let most = reports.nodes.iter().map(|&node| product.pending(node)).max().unwrap_or(0);
         for count in 2..=most {
             reports.later(product, &order, count);
         }
-        Ok(reports)
+        Ok(Ok(reports))
     }
 
     /// Fills in the first report of every node; returns the nodes so that each comes after all it leads to.
@@ -135,30 +156,20 @@ impl Reports {
     }
 
     /// The latencies over every change that can happen.
-    pub(super) fn bounds(&self, product: &Product<'_>, visited: &Visited) -> Bounds {
-        let mut latency = PerChange::<Option<Latency>>::default();
-        for node in visited.nodes() {
-            let pending = product.pending(node);
-            for &branch in product.branches(node) {
+    pub(super) fn bounds(&self, product: &Product<'_>, words: &Words<'_>, reached: &Reached) -> Bounds {
+        let mut seen = Seen::default();
+        for (place, bits) in reached.words() {
+            for (at, &branch) in product.environment.branches(words.environment_of(place)).iter().enumerate()
+            {
                 let Some(change) = product.change(branch) else { continue };
-                let found = self.of_change(product, node, product.step(node, pending, branch));
-                let slot = match change {
-                    Change::Make => &mut latency.make,
-                    Change::Break => &mut latency.break_,
-                };
-                let so_far = slot.unwrap_or(Latency { best: u32::MAX, worst: 0 });
-                *slot = Some(Latency {
-                    best: so_far.best.min(found.shortest),
-                    worst: so_far.worst.max(found.longest),
-                });
+                for node in words.nodes(place, bits) {
+                    let branch = product.branches(node)[at];
+                    let step = product.step(node, product.pending(node), branch);
+                    seen.add(change, self.of_change(product, node, step));
+                }
             }
         }
-        Bounds {
-            latency: PerChange {
-                make: latency.make.unwrap_or_default(),
-                break_: latency.break_.unwrap_or_default(),
-            },
-        }
+        seen.bounds()
     }
 
     /// The branches of a slowest way to the `count`-th report from `node`.
@@ -194,10 +205,13 @@ impl Remaining {
     }
 }
 
-/// Numbers the pending nodes in the order in which [`Visited::nodes`] gives them.
+/// Numbers the pending nodes, sorted by whether they are late, then by environment and logic state.
 struct PendingIndex {
     logic_states: usize,
-    sets: [Ranked; 2],
+    /// Those on time.
+    ranked: Option<Ranked>,
+    /// All others.
+    numbers: FxHashMap<Node, u32>,
 }
 
 /// A set of bits with the count of ones before each word.
@@ -207,33 +221,101 @@ struct Ranked {
 }
 
 impl PendingIndex {
-    fn of(product: &Product<'_>, nodes: &[Node]) -> Self {
+    fn of(product: &Product<'_>, nodes: &[Node], dense: bool) -> Self {
         let logic_states = product.logic.len();
-        let words = (product.environment.len() * logic_states).div_ceil(64);
-        let mut so_far = 0;
-        let sets = [false, true].map(|late| {
-            let mine = || nodes.iter().filter(|node| node.late() == late);
-            // Nearly always no node is late, and then the second set stays empty.
-            let mut set = vec![0_u64; if mine().next().is_some() { words } else { 0 }];
-            for node in mine() {
+        let on_time = if dense { nodes.partition_point(|node| !node.late()) } else { 0 };
+        let ranked = dense.then(|| {
+            let mut words = vec![0_u64; (product.environment.len() * logic_states).div_ceil(64)];
+            for node in &nodes[..on_time] {
                 let index = node.environment() * logic_states + node.logic();
-                set[index / 64] |= 1 << (index % 64);
+                words[index / 64] |= 1 << (index % 64);
             }
-            let mut before = Vec::with_capacity(set.len());
-            for word in &set {
-                before.push(so_far);
+            let mut so_far = 0;
+            let mut count = |word: &u64| {
+                let before = so_far;
                 so_far += word.count_ones();
-            }
-            Ranked { words: set, before }
+                before
+            };
+            let before = words.iter().map(&mut count).collect();
+            Ranked { words, before }
         });
-        Self { logic_states, sets }
+        let numbers = (on_time..nodes.len()).map(|at| (nodes[at], at as u32)).collect();
+        Self { logic_states, ranked, numbers }
     }
 
     #[inline]
     fn of_node(&self, node: Node) -> u32 {
-        let index = node.environment() * self.logic_states + node.logic();
-        let set = &self.sets[usize::from(node.late())];
-        let below = set.words[index / 64] & ((1 << (index % 64)) - 1);
-        set.before[index / 64] + below.count_ones()
+        match &self.ranked {
+            Some(set) if !node.late() => {
+                let index = node.environment() * self.logic_states + node.logic();
+                let below = set.words[index / 64] & ((1 << (index % 64)) - 1);
+                set.before[index / 64] + below.count_ones()
+            }
+            _ => self.numbers[&node],
+        }
     }
+}
+
+/// The least and the greatest latency seen so far at each change.
+#[derive(Default)]
+struct Seen(PerChange<Option<Latency>>);
+
+impl Seen {
+    fn add(&mut self, change: Change, found: Remaining) {
+        let slot = match change {
+            Change::Make => &mut self.0.make,
+            Change::Break => &mut self.0.break_,
+        };
+        let so_far = slot.unwrap_or(Latency { best: u32::MAX, worst: 0 });
+        *slot =
+            Some(Latency { best: so_far.best.min(found.shortest), worst: so_far.worst.max(found.longest) });
+    }
+
+    fn bounds(self) -> Bounds {
+        Bounds {
+            latency: PerChange {
+                make: self.0.make.unwrap_or_default(),
+                break_: self.0.break_.unwrap_or_default(),
+            },
+        }
+    }
+}
+
+/// The latencies read off the age of each change; `None` where some change can still be pending once the contact
+/// has served its dwell and may change again.
+///
+/// Until then the environment itself counts the samples since the change, and at most that one is pending; so
+/// every report tells its own latency, and since the count only rises there is no circle.
+pub(super) fn by_age(words: &Words<'_>, reached: &Reached) -> Option<Bounds> {
+    if reached.has_late() {
+        return None;
+    }
+    let environment = words.environment;
+    let mut seen = Seen::default();
+    for (place, bits) in reached.words() {
+        let at = words.environment_of(place);
+        let differing = words.differing(place);
+        let pending = bits & differing;
+        if pending != 0 {
+            if environment.dwell_served(at) {
+                return None;
+            }
+            let state = environment.state(at);
+            let reports = |branch: &Branch| pending & words.edges(place, branch.sample_index()) != 0;
+            if environment.branches(at).iter().any(reports) {
+                let age = state.held + 1;
+                seen.add(state.wanted.reached_by(), Remaining { longest: age, shortest: age });
+            }
+        }
+        let answered = bits & !differing;
+        if answered != 0 && environment.dwell_served(at) {
+            for branch in environment.branches(at) {
+                if branch.changes() != 0 && answered & words.edges(place, branch.sample_index()) != 0 {
+                    let change = environment.state(branch.target()).wanted.reached_by();
+                    seen.add(change, Remaining { longest: 1, shortest: 1 });
+                }
+            }
+        }
+    }
+    Some(seen.bounds())
 }

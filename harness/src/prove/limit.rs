@@ -219,9 +219,8 @@ fn by_beliefs(envelope: &Envelope, limits: &Limits, memory: Memory) -> Result<Li
     let Subsets { next, outputs, rests, .. } = minimal(&table);
     let logic = LawTable::from_parts(&next, outputs, rests)?;
     let proof = match prove_within(&logic, envelope, limits) {
-        Err(ProveError::TooLarge { bytes, .. }) => {
-            // A size that does not fit is as good as the greatest that does.
-            return Ok(LimitAnswer::Unknown { beliefs, bytes: bytes.try_into().unwrap_or(u64::MAX) });
+        Err(ProveError::TooLarge { limit, .. }) => {
+            return Ok(LimitAnswer::Unknown { beliefs, bytes: limit });
         }
         other => other?,
     };

@@ -40,17 +40,21 @@ mod explore;
 mod frontier;
 mod immunity;
 mod latency;
+mod layers;
 mod limit;
 pub mod observe;
 mod product;
+mod reached;
 mod recovery;
+mod slowest;
 mod tabulate;
 mod witness;
+mod word;
 
 use core::fmt;
 use core::hash::Hash;
 
-use debounce_core::{Bounds, Change, Clause, Envelope, Latency, Law, PerChange, Position};
+use debounce_core::{Bounds, Clause, Envelope, Latency, Law, PerChange, Position};
 
 pub use contract::Contract;
 pub use environment::{Branch, Environment, EnvironmentState, Fired};
@@ -61,7 +65,9 @@ pub use recovery::{Recovery, recovery_from_any_state, recovery_from_short_operat
 pub use tabulate::{Entry, LawTable};
 pub use witness::{Witness, WitnessTick};
 
-use product::{Product, Step};
+use layers::Layers;
+use product::{Node, Product, Step};
+use word::{Place, Words};
 
 use crate::report::words;
 
@@ -69,7 +75,7 @@ use crate::report::words;
 #[derive(Clone, Copy, PartialEq, Eq, Debug)]
 #[non_exhaustive]
 pub struct Limits {
-    /// Most bytes for the set of visited states.
+    /// Most bytes for the set of states reached; envelope, law and the layers of a witness come on top.
     pub memory_bytes: u64,
     /// Threads to share large layers among: 1 is none but the caller's, 0 is as many as there are.
     pub threads: usize,
@@ -186,13 +192,11 @@ pub enum ProveError {
     },
     /// The product does not fit the memory allowed.
     #[error(
-        "unfinished: {pairs} pairs of envelope and law states need {bytes} bytes, more than the {limit} allowed"
+        "unfinished: {states} states of envelope and law together were reached before the {limit} bytes allowed were full, and no promise was broken up to there"
     )]
     TooLarge {
-        /// Pairs of states.
-        pairs: u128,
-        /// Bytes needed.
-        bytes: u128,
+        /// States reached before the search stopped.
+        states: u64,
         /// Bytes allowed.
         limit: u64,
     },
@@ -327,20 +331,30 @@ pub fn prove_contract(
     contract: Contract,
     limits: &Limits,
 ) -> Result<Proof, ProveError> {
-    refuse_hopeless(logic, envelope, limits)?;
+    refuse_hopeless(envelope, limits)?;
     let environment = match Environment::under(envelope, contract) {
         Err(ProveError::DwellUnseen { position }) => return Ok(unseen(logic, envelope, contract, position)),
         other => other?,
     };
-    let product = Product { environment: &environment, logic };
-    let explored = explore::explore(&product, limits)?;
-    let outcome = if explored.violation.is_some() {
-        refute(&product, limits)?
-    } else {
-        match latency::Reports::of(&product, &explored.visited) {
-            Ok(reports) => faithful(&product, limits, &reports, &explored.visited)?,
-            Err(circle) => never_reported(&product, limits, &circle)?,
+    prove_in(logic, &environment, envelope, contract, limits)
+}
+
+/// As [`prove_contract`], in the automaton that [`Environment::under`] made of the envelope and the contract.
+pub(crate) fn prove_in(
+    logic: &LawTable,
+    environment: &Environment,
+    envelope: &Envelope,
+    contract: Contract,
+    limits: &Limits,
+) -> Result<Proof, ProveError> {
+    let product = Product { environment, logic };
+    let words = Words::of(&product);
+    let (outcome, states, transitions) = match explore::explore(&product, &words, limits)? {
+        Some(explored) => {
+            let outcome = slowest::outcome(&product, &words, limits, &explored.reached)?;
+            (outcome, explored.states, explored.transitions)
         }
+        None => refute(&product, &words, limits)?,
     };
     Ok(Proof {
         envelope: *envelope,
@@ -348,8 +362,8 @@ pub fn prove_contract(
         outcome,
         law_states: logic.len(),
         environment_states: environment.len(),
-        states: explored.states,
-        transitions: explored.transitions,
+        states,
+        transitions,
     })
 }
 
@@ -371,31 +385,46 @@ where
     let environment = Environment::of(envelope)?;
     let (logic, states) = LawTable::with_states(law)?;
     let product = Product { environment: &environment, logic: &logic };
-    let explored = explore::explore(&product, limits)?;
-    for node in explored.visited.nodes() {
-        visit(environment.state(node.environment()), &states[node.logic()], product.pending(node));
+    let words = Words::of(&product);
+    let mut count = 0;
+    let mut visit = |place, bits| {
+        for node in words.nodes(place, bits) {
+            count += 1;
+            visit(environment.state(node.environment()), &states[node.logic()], product.pending(node));
+        }
+    };
+    match explore::explore(&product, &words, limits)? {
+        Some(explored) => explored.reached.words().for_each(|(place, bits)| visit(place, bits)),
+        None => {
+            let mut layers = Layers::new(&product, &words, limits);
+            layers
+                .search::<1>(&product, usize::MAX, |_, place, bits| broken(&product, &words, place, bits))?;
+            layers.all().iter().flatten().for_each(|&(place, bits)| visit(place, bits));
+        }
     }
-    Ok(explored.states)
+    Ok(count)
 }
 
 /// Refuses an envelope whose automaton alone would not fit, before its states are enumerated.
 ///
 /// Every time that the contact has held occurs together with every time since the last disturbance, up to dwell
 /// and quiet, so the automaton has at least about so many states.
-fn refuse_hopeless(logic: &LawTable, envelope: &Envelope, limits: &Limits) -> Result<(), ProveError> {
+fn refuse_hopeless(envelope: &Envelope, limits: &Limits) -> Result<(), ProveError> {
     let e = envelope.delivered();
     let quiet = if e.glitch.open == 0 && e.glitch.closed == 0 { 1 } else { u128::from(e.quiet) + 1 };
     let states = (u128::from(e.dwell.open) + u128::from(e.dwell.closed)) * quiet;
-    let (pairs, limit) = (states * logic.len() as u128, limits.memory_bytes);
-    // Two bits a pair in the set of visited ones, and about 64 bytes a state while the automaton is built.
-    let bytes = (pairs / 4).max(states * 64);
-    let allowed =
-        u128::from(limit).max(if pairs / 4 <= u128::from(limit) { MOST_ENVIRONMENT_BYTES } else { 0 });
-    if bytes > allowed { Err(ProveError::TooLarge { pairs, bytes, limit }) } else { Ok(()) }
+    let limit = limits.memory_bytes.max(LEAST_ENVIRONMENT_BYTES) / ENVIRONMENT_STATE_BYTES;
+    if states <= u128::from(limit) {
+        return Ok(());
+    }
+    Err(ProveError::EnvironmentTooLarge { limit: usize::try_from(limit).unwrap_or(usize::MAX) })
 }
 
-/// An automaton may take this much while it is built, even where the set of visited states must be smaller.
-const MOST_ENVIRONMENT_BYTES: u128 = 1 << 27;
+/// About what a state of the automaton takes while it is built.
+const ENVIRONMENT_STATE_BYTES: u64 = 64;
+
+/// An automaton may take this much even where the set of visited states must be smaller.
+const LEAST_ENVIRONMENT_BYTES: u64 = 1 << 25;
 
 /// The verdict where a dwell may fall between two samples: a miss, whatever the logic.
 fn unseen(logic: &LawTable, envelope: &Envelope, contract: Contract, position: Position) -> Proof {
@@ -412,61 +441,36 @@ fn unseen(logic: &LawTable, envelope: &Envelope, contract: Contract, position: P
     }
 }
 
-fn refute(product: &Product<'_>, limits: &Limits) -> Result<Outcome, ProveError> {
-    let mut broken = None;
-    let path = explore::shortest_path(product, limits, |_, _, step| match step {
-        Step::Violates(clause) => {
-            broken = Some(clause);
-            true
-        }
-        Step::To(..) => false,
-    })?;
+/// The first state of a word, and branch from it, that breaks a promise.
+fn broken(product: &Product<'_>, words: &Words<'_>, place: Place, bits: u64) -> Option<(Node, usize)> {
+    let branches = product.environment.branches(words.environment_of(place));
+    let all = branches.iter().fold(0, |all, &branch| all | words.split(place, bits, branch).broken);
+    let node = words.nodes(place, all).next()?;
+    let pending = product.pending(node);
+    let breaks = |&branch: &_| matches!(product.step(node, pending, branch), Step::Violates(_));
+    Some((node, branches.iter().position(breaks)?))
+}
+
+/// A shortest refutation where there is one, and the states and transitions up to the samples that it takes.
+fn refute(
+    product: &Product<'_>,
+    words: &Words<'_>,
+    limits: &Limits,
+) -> Result<(Outcome, u64, u64), ProveError> {
+    let mut layers = Layers::new(product, words, limits);
+    let [path] =
+        layers.search::<1>(product, usize::MAX, |_, place, bits| broken(product, words, place, bits))?;
     let path = path.expect("the violation found once is found again");
-    let clause = broken.expect("the path ends with the violation");
-    Ok(Outcome::Refuted { clause, witness: Witness::of(product, &path, None) })
-}
-
-fn never_reported(
-    product: &Product<'_>,
-    limits: &Limits,
-    circle: &latency::Circle,
-) -> Result<Outcome, ProveError> {
-    let first = circle.0[0].0;
-    let reaches = |_, _, step| matches!(step, Step::To(target, _) if target == first);
-    let mut path = explore::shortest_path(product, limits, reaches)?.expect("every visited node has a path");
-    let loop_from = path.len();
-    path.extend_from_slice(&circle.0);
-    let witness = Witness::of(product, &path, Some(loop_from));
-    Ok(Outcome::Refuted { clause: Clause::Missed, witness })
-}
-
-fn faithful(
-    product: &Product<'_>,
-    limits: &Limits,
-    reports: &latency::Reports,
-    visited: &explore::Visited,
-) -> Result<Outcome, ProveError> {
-    let bounds = reports.bounds(product, visited);
-    let mut slowest = PerChange { make: None, break_: None };
-    for change in [Change::Make, Change::Break] {
-        let worst = bounds.latency.at(change).worst;
-        let path = explore::shortest_path(product, limits, |node, at, step| {
-            product.change(product.branches(node)[at]) == Some(change)
-                && reports.of_change(product, node, step).longest == worst
-        })?;
-        let witness = path.map(|mut path| {
-            let &(node, at) = path.last().expect("the path ends with the change");
-            let pending = product.pending(node);
-            let Step::To(target, edge) = product.step(node, pending, product.branches(node)[at]) else {
-                unreachable!("a product without violations was explored")
-            };
-            path.extend(reports.slowest(product, target, pending + 1 - u32::from(edge)));
-            Witness::of(product, &path, None)
-        });
-        match change {
-            Change::Make => slowest.make = witness,
-            Change::Break => slowest.break_ = witness,
-        }
+    let &(node, at) = path.last().expect("the path ends with the violation");
+    let Step::Violates(clause) = product.step(node, product.pending(node), product.branches(node)[at]) else {
+        unreachable!("the path ends with the violation")
+    };
+    let (mut states, mut transitions) = (0, 0);
+    for &(place, bits) in layers.all().iter().flatten() {
+        let here = u64::from(bits.count_ones());
+        states += here;
+        transitions += here * product.environment.branches(words.environment_of(place)).len() as u64;
     }
-    Ok(Outcome::Faithful { bounds, slowest })
+    let outcome = Outcome::Refuted { clause, witness: Witness::of(product, &path, None) };
+    Ok((outcome, states, transitions))
 }

@@ -10,7 +10,7 @@ use super::tabulate::LawTable;
 /// A change of the contact is *pending* until its edge is reported. The output differs from the wanted one (under
 /// [`Contract::Follow`](super::Contract::Follow), from the contact) exactly when an odd number is pending, so one bit more, `late`, tells 0 or 1 from 2 or 3. A logic that falls four changes
 /// behind has lost two whole operations out of sight and counts as missing them.
-#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+#[derive(Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash, Debug)]
 pub(super) struct Node(u64);
 
 impl Node {

@@ -101,8 +101,10 @@ impl Graph {
             return Ok(number);
         }
         if self.nodes.len() >= self.most {
-            let pairs = self.nodes.len() as u128;
-            return Err(ProveError::TooLarge { pairs, bytes: pairs * 80, limit: self.most as u64 * 80 });
+            return Err(ProveError::TooLarge {
+                states: self.nodes.len() as u64,
+                limit: self.most as u64 * 80,
+            });
         }
         let number = self.nodes.len() as u32;
         self.numbers.insert(node, number);

@@ -192,7 +192,7 @@ impl Requirement {
 
     /// The tick periods to try, shortest first, none faster than the budget allows.
     fn ticks(&self) -> Sourced<Vec<TickPeriod>> {
-        let usual = [200, 500, 1_000, 2_000, 5_000, 10_000];
+        let usual = [200, 500, 1_000, 2_000, 4_000, 5_000, 8_000, 10_000];
         let period = |us: u64| TickPeriod::try_from_ns(us * 1_000);
         let mut ticks = match &self.clock.ticks {
             Some(ticks) => Sourced::new(ticks.value.periods(), ticks.origin),

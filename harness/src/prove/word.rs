@@ -1,0 +1,278 @@
+//! Sixty-four states of the product at a time: one environment state beside a word of logic states.
+//!
+//! In one environment state every logic state meets the same branches, so what a sample does to them is a question
+//! about sets of logic states, and a set of 64 neighbours is a word. What may not happen is a mask; where a sample
+//! leads is a few shifts, because neighbours in the table mostly lead to neighbours (a count goes up by one). Only
+//! where they do not, as in a window of samples, is each bit looked up by itself.
+
+use debounce_core::Position;
+
+use super::environment::{Branch, Environment};
+use super::product::{Node, Product};
+use super::tabulate::LawTable;
+
+/// Words whose bits scatter to more places than this are stepped bit by bit.
+const MOST_MOVES: usize = 16;
+
+/// The bits of a word that one sample moves together.
+#[derive(Clone, Copy)]
+struct Move {
+    mask: u64,
+    /// The word they go to.
+    word: u32,
+    /// How far they are turned, to the left.
+    turn: u32,
+}
+
+/// What is known of 64 neighbouring logic states, for either sample where there are two.
+struct Word {
+    /// States with the output closed.
+    closed: u64,
+    /// States from which the sample makes an edge.
+    edges: [u64; 2],
+    /// States that the sample (first index) leads to where samples of a position (second) change nothing more.
+    settles: [[u64; 2]; 2],
+    /// The range of moves; none where the word is stepped bit by bit.
+    moves: [(u32, u32); 2],
+}
+
+/// A logic as words of states.
+pub(super) struct WordLaw<'a> {
+    table: &'a LawTable,
+    words: Vec<Word>,
+    moves: Vec<Move>,
+}
+
+impl<'a> WordLaw<'a> {
+    pub(super) fn of(table: &'a LawTable) -> Self {
+        let mut law = Self { table, words: Vec::with_capacity(table.len().div_ceil(64)), moves: Vec::new() };
+        for from in (0..table.len()).step_by(64) {
+            let word = law.word(from);
+            law.words.push(word);
+        }
+        law
+    }
+
+    /// Words for each environment state.
+    pub(super) fn len(&self) -> usize {
+        self.words.len()
+    }
+
+    fn word(&mut self, from: usize) -> Word {
+        let table = self.table;
+        let mut word = Word { closed: 0, edges: [0; 2], settles: [[0; 2]; 2], moves: [(0, 0); 2] };
+        let states = || (from..table.len().min(from + 64)).map(move |state| (state, 1_u64 << (state - from)));
+        for (state, bit) in states() {
+            if table.output(state).is_closed() {
+                word.closed |= bit;
+            }
+            for sample in 0..2 {
+                let entry = table.entry(state, sample);
+                if entry.edges() != 0 {
+                    word.edges[sample] |= bit;
+                }
+                for position in Position::BOTH {
+                    if table.is_settled(entry.next(), position) {
+                        word.settles[sample][position as usize] |= bit;
+                    }
+                }
+            }
+        }
+        for sample in 0..2 {
+            let first = self.moves.len();
+            for (state, bit) in states() {
+                let next = table.entry(state, sample).next();
+                // A table has at most 2^26 states.
+                let (to, turn) = ((next / 64) as u32, (next.wrapping_sub(state) % 64) as u32);
+                let known = self.moves[first..].iter_mut().find(|m| (m.word, m.turn) == (to, turn));
+                match known {
+                    Some(known) => known.mask |= bit,
+                    None => self.moves.push(Move { mask: bit, word: to, turn }),
+                }
+                if self.moves.len() - first > MOST_MOVES {
+                    self.moves.truncate(first);
+                    break;
+                }
+            }
+            word.moves[sample] = (first as u32, self.moves.len() as u32);
+        }
+        word
+    }
+
+    /// Calls `each` with the words, and in them the bits, that a sample leads to from `bits` of `word`.
+    #[inline]
+    fn image(&self, word: usize, sample: usize, bits: u64, mut each: impl FnMut(usize, u64)) {
+        let (first, last) = self.words[word].moves[sample];
+        if first == last {
+            let (mut at, mut found) = (0, 0);
+            for bit in ones(bits) {
+                let next = self.table.entry(word * 64 + bit, sample).next();
+                if next / 64 != at && found != 0 {
+                    each(at, found);
+                    found = 0;
+                }
+                at = next / 64;
+                found |= 1 << (next % 64);
+            }
+            if found != 0 {
+                each(at, found);
+            }
+            return;
+        }
+        for moved in &self.moves[first as usize..last as usize] {
+            let found = (bits & moved.mask).rotate_left(moved.turn);
+            if found != 0 {
+                each(moved.word as usize, found);
+            }
+        }
+    }
+}
+
+/// The numbers of the bits that are set.
+#[inline]
+pub(super) fn ones(mut bits: u64) -> impl Iterator<Item = usize> {
+    core::iter::from_fn(move || {
+        (bits != 0).then(|| {
+            let bit = bits.trailing_zeros() as usize;
+            bits &= bits - 1;
+            bit
+        })
+    })
+}
+
+/// Where a word of the product lies: counted through the environment states, and whether its states are late.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+pub(super) struct Place {
+    pub(super) word: usize,
+    pub(super) late: bool,
+}
+
+/// What a branch does to the states of a word.
+pub(super) struct Split {
+    /// Those that are on time after it, and those that are late.
+    pub(super) on_time: u64,
+    pub(super) late: u64,
+    /// Those for which it breaks a promise.
+    pub(super) broken: u64,
+}
+
+/// A product as words.
+pub(super) struct Words<'a> {
+    pub(super) environment: &'a Environment,
+    pub(super) law: WordLaw<'a>,
+}
+
+impl<'a> Words<'a> {
+    pub(super) fn of(product: &Product<'a>) -> Self {
+        Self { environment: product.environment, law: WordLaw::of(product.logic) }
+    }
+
+    /// How many words hold every state that is not late, and as many every state that is.
+    pub(super) fn len(&self) -> usize {
+        self.environment.len() * self.law.len()
+    }
+
+    pub(super) fn place(&self, node: Node) -> (Place, u64) {
+        let word = node.environment() * self.law.len() + node.logic() / 64;
+        (Place { word, late: node.late() }, 1 << (node.logic() % 64))
+    }
+
+    /// The nodes of some bits of a word.
+    pub(super) fn nodes(&self, place: Place, bits: u64) -> impl Iterator<Item = Node> + use<> {
+        let (environment, from) = (place.word / self.law.len(), place.word % self.law.len() * 64);
+        ones(bits).map(move |bit| Node::new(environment, from + bit, place.late))
+    }
+
+    /// The environment state of a word.
+    #[inline]
+    pub(super) fn environment_of(&self, place: Place) -> usize {
+        place.word / self.law.len()
+    }
+
+    /// The bits of a word whose output is not the wanted one: an odd number of changes is unreported.
+    #[inline]
+    pub(super) fn differing(&self, place: Place) -> u64 {
+        self.differing_at(place.word / self.law.len(), place.word % self.law.len())
+    }
+
+    #[inline]
+    fn differing_at(&self, environment: usize, word: usize) -> u64 {
+        let closed = self.law.words[word].closed;
+        if self.environment.state(environment).wanted.is_closed() { !closed } else { closed }
+    }
+
+    /// The bits of a word from which a sample makes an edge.
+    #[inline]
+    pub(super) fn edges(&self, place: Place, sample: usize) -> u64 {
+        self.law.words[place.word % self.law.len()].edges[sample]
+    }
+
+    /// What `branch` does to `bits`; says the same as [`Product::step`] of each of them.
+    #[inline]
+    pub(super) fn split(&self, place: Place, bits: u64, branch: Branch) -> Split {
+        let word = place.word % self.law.len();
+        let differing = self.differing_at(place.word / self.law.len(), word);
+        self.split_at(word, place.late, bits, differing, branch)
+    }
+
+    #[inline]
+    fn split_at(&self, word: usize, late: bool, bits: u64, differing: u64, branch: Branch) -> Split {
+        let sample = branch.sample_index();
+        let known = &self.law.words[word];
+        let (edges, changes) = (known.edges[sample], branch.changes() != 0);
+        // Unreported: 0 or 1 (differing), and 2 more when late.
+        let (on_time, answered, mut broken) = match (late, changes) {
+            (false, false) => (bits, differing ^ !edges, bits & !differing & edges),
+            (false, true) => (bits & (edges | !differing), !differing & edges, 0),
+            (true, false) => (bits & !differing & edges, 0, 0),
+            (true, true) => (0, 0, bits & differing & !edges),
+        };
+        let owing = bits & !answered;
+        if owing & (known.settles[sample][0] | known.settles[sample][1]) != 0 {
+            // The contact may now stay where it is, undisturbed, for ever: a settled logic will never report.
+            let contact = self.environment.state(branch.target()).contact;
+            broken |= owing & known.settles[sample][contact as usize];
+        }
+        Split { on_time, late: bits & !on_time, broken }
+    }
+
+    /// Takes every branch from `bits` and calls `each` with all they lead to; false as soon as a promise breaks.
+    #[inline]
+    pub(super) fn expand(&self, place: Place, bits: u64, each: impl FnMut(Place, u64)) -> bool {
+        self.expand_where(place, bits, |_| true, each)
+    }
+
+    /// As [`expand`](Self::expand), but takes only the branches that are `wanted`.
+    #[inline]
+    pub(super) fn expand_where(
+        &self,
+        place: Place,
+        bits: u64,
+        wanted: impl Fn(Branch) -> bool,
+        mut each: impl FnMut(Place, u64),
+    ) -> bool {
+        let words = self.law.len();
+        let (environment, word) = (place.word / words, place.word % words);
+        let differing = self.differing_at(environment, word);
+        for &branch in self.environment.branches(environment) {
+            if !wanted(branch) {
+                continue;
+            }
+            let split = self.split_at(word, place.late, bits, differing, branch);
+            if split.broken != 0 {
+                return false;
+            }
+            let row = branch.target() * words;
+            let sample = branch.sample_index();
+            self.law.image(word, sample, split.on_time, |to, bits| {
+                each(Place { word: row + to, late: false }, bits);
+            });
+            if split.late != 0 {
+                self.law.image(word, sample, split.late, |to, bits| {
+                    each(Place { word: row + to, late: true }, bits);
+                });
+            }
+        }
+        true
+    }
+}
