@@ -5,7 +5,7 @@ use debounce_core::{
     StateMachineParameters,
 };
 use harness::prove::{
-    LawTable, Limits, Recovery, immunity, prove_within, recovery_from_any_state,
+    Environment, LawTable, Limits, ProveError, Recovery, immunity, prove_within, recovery_from_any_state,
     recovery_from_short_operations, shortest_operations, widest_lone_disturbance,
 };
 
@@ -156,4 +156,19 @@ fn recovery_of_a_logic_that_goes_deaf_is_never() {
     };
     let from = witness.loop_from.expect("a loop");
     assert!(witness.ticks[from..].iter().all(|tick| tick.output != tick.contact), "{witness:?}");
+}
+
+/// A contact that rests for seconds, sampled fast and with disturbances seconds apart: its automaton alone would
+/// take gigabytes, so it is refused before it is built.
+#[test]
+fn environment_of_a_contact_that_rests_for_seconds_is_refused_unbuilt() {
+    let resting = Envelope::clean(15_000, 3_600).bounce(1, 87).glitch(43, 5).quiet(13_000);
+    let mut little = limits();
+    little.memory_bytes = 1 << 20;
+    let Err(ProveError::EnvironmentTooLarge { limit: 524_288 }) = Environment::within(&resting, &little)
+    else {
+        panic!("242 million states do not fit");
+    };
+    let quick = Envelope::clean(150, 36).bounce(1, 9).glitch(4, 1).quiet(130);
+    assert!(Environment::within(&quick, &little).is_ok());
 }

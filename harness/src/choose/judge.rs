@@ -112,7 +112,8 @@ impl<'a> Judge<'a> {
     }
 
     fn explored(&self, logic: &Logic) -> Result<Judgement, ProveError> {
-        let environment = match self.environment.get_or_init(|| Environment::of(&self.envelope)) {
+        let within = || Environment::within(&self.envelope, &self.question.limits);
+        let environment = match self.environment.get_or_init(within) {
             Ok(environment) => environment,
             Err(ProveError::DwellUnseen { .. }) => {
                 let (clause, evidence) = (Clause::DwellUnseen, Evidence::ClosedForm);

@@ -203,7 +203,7 @@ fn solve(envelope: &Envelope, limits: &Limits, memory: Memory) -> Result<LimitAn
 }
 
 fn by_beliefs(envelope: &Envelope, limits: &Limits, memory: Memory) -> Result<LimitAnswer, ProveError> {
-    let environment = match Environment::of(envelope) {
+    let environment = match Environment::within(envelope, limits) {
         Err(ProveError::EnvironmentTooLarge { .. }) => {
             return Ok(LimitAnswer::Unknown { beliefs: 0, bytes: 0 });
         }

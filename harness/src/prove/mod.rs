@@ -382,7 +382,7 @@ pub fn each_reachable_state<L: Law>(
 where
     L::State: Hash,
 {
-    let environment = Environment::of(envelope)?;
+    let environment = Environment::within(envelope, limits)?;
     let (logic, states) = LawTable::with_states(law)?;
     let product = Product { environment: &environment, logic: &logic };
     let words = Words::of(&product);
@@ -403,6 +403,17 @@ where
         }
     }
     Ok(count)
+}
+
+impl Environment {
+    /// As [`of`](Self::of), unless the automaton would be too large for the limits.
+    ///
+    /// # Errors
+    /// As [`of`](Self::of), and [`ProveError::EnvironmentTooLarge`].
+    pub fn within(envelope: &Envelope, limits: &Limits) -> Result<Self, ProveError> {
+        refuse_hopeless(envelope, limits)?;
+        Self::of(envelope)
+    }
 }
 
 /// Refuses an envelope whose automaton alone would not fit, before its states are enumerated.

@@ -34,7 +34,7 @@ pub fn recovery_from_short_operations(
 ) -> Result<Recovery, ProveError> {
     let mut short = envelope.delivered();
     short.dwell = PerPosition { open: 1, closed: 1 };
-    let environment = Environment::of(&short)?;
+    let environment = Environment::within(&short, limits)?;
     let product = Product { environment: &environment, logic };
     let mut graph = Graph::new(limits);
     for node in product.starts() {
@@ -54,7 +54,7 @@ pub fn recovery_from_any_state(
     envelope: &Envelope,
     limits: &Limits,
 ) -> Result<Recovery, ProveError> {
-    let environment = Environment::of(envelope)?;
+    let environment = Environment::within(envelope, limits)?;
     let product = Product { environment: &environment, logic };
     let mut graph = Graph::new(limits);
     for node in product.starts() {
