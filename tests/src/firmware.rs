@@ -33,6 +33,7 @@ pub fn check(name: &str, module: &str, target: Option<&str>, target_folder: &Pat
     cargo.args(["check", "--quiet", "--offline", "--color", "never"]).current_dir(folder.path());
     cargo.env("CARGO_TARGET_DIR", target_folder).env_remove("RUSTFLAGS");
     if let Some(target) = target {
+        have(target);
         cargo.args(["--target", target]);
     }
     let output = cargo.output().expect("cargo runs");
@@ -40,4 +41,18 @@ pub fn check(name: &str, module: &str, target: Option<&str>, target_folder: &Pat
         return Ok(());
     }
     Err(String::from_utf8_lossy(&output.stderr).into_owned())
+}
+
+/// Makes sure that the toolchain holds the core library for `target`.
+///
+/// # Panics
+/// When it does not and rustup cannot add it; the message is the line to run.
+pub fn have(target: &str) {
+    let output = Command::new("rustc").args(["--print", "target-libdir", "--target", target]).output();
+    let folder = output.map(|output| String::from_utf8_lossy(&output.stdout).trim().to_owned());
+    if folder.is_ok_and(|folder| !folder.is_empty() && Path::new(&folder).is_dir()) {
+        return;
+    }
+    let added = Command::new("rustup").args(["target", "add", target]).status();
+    assert!(added.is_ok_and(|status| status.success()), "this test needs: rustup target add {target}");
 }

@@ -131,6 +131,7 @@ fn emitted_tables_are_formatted_compile_for_host_and_target_and_do_what_the_mach
         let output = Command::new("rustfmt").args(["--check", "--edition", "2024"]).arg(path).output();
         succeeded(&output.expect("rustfmt runs"));
     }
+    integration_tests::firmware::have("thumbv6m-none-eabi");
     succeeded(&made.cargo(&["build", "--lib", "--target", "thumbv6m-none-eabi"]));
     succeeded(&made.cargo(&["build", "--bin", "emitted"]));
     let samples = samples(20_000);
