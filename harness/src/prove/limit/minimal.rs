@@ -1,34 +1,16 @@
 //! Merges states that no samples tell apart.
 
 use debounce_core::Position;
-use rustc_hash::FxHashMap;
 
 use super::subsets::Subsets;
+use crate::machine::partition::coarsest;
 
 /// The least table with the same behaviour from both rests.
-///
-/// Partition refinement after Moore (Gedanken-experiments on sequential machines, 1956; cited from memory):
-/// states are split by output, then again and again by the classes their samples lead to, until no class splits.
 pub(super) fn minimal(table: &Subsets) -> Subsets {
     let states = table.outputs.len();
-    let mut class: Vec<u32> = table.outputs.iter().map(|&output| output as u32).collect();
-    let mut classes = 0;
-    let mut numbers: FxHashMap<[u32; 3], u32> = FxHashMap::default();
-    loop {
-        numbers.clear();
-        let refined: Vec<u32> = (0..states)
-            .map(|state| {
-                let [open, closed] = table.next[state].map(|next| class[next as usize]);
-                let fresh = numbers.len() as u32;
-                *numbers.entry([class[state], open, closed]).or_insert(fresh)
-            })
-            .collect();
-        class = refined;
-        if numbers.len() == classes {
-            break;
-        }
-        classes = numbers.len();
-    }
+    let outputs: Vec<u32> = table.outputs.iter().map(|&output| output as u32).collect();
+    let class = coarsest(&outputs, &table.next);
+    let classes = class.iter().max().map_or(0, |&last| last as usize + 1);
     let mut next = vec![[0; 2]; classes];
     let mut outputs = vec![Position::Open; classes];
     for state in 0..states {
