@@ -53,6 +53,7 @@ use super::environment::Environment;
 use super::tabulate::LawTable;
 use super::witness::Witness;
 use super::{Limits, Outcome, ProveError, prove_within, word};
+use crate::report::words;
 use minimal::minimal;
 use subsets::{Memory, Subsets, subsets};
 
@@ -140,14 +141,15 @@ impl fmt::Display for NoLogic {
             }
             Self::AlwaysDisturbed { quiet, glitch } => write!(
                 f,
-                "no logic exists: quiet of {quiet} samples between disturbances of {glitch} lets either position \
-                 look like the other for ever"
+                "no logic exists: quiet of {} between disturbances of {glitch} lets either position look like the other \
+                 for ever",
+                words::count(*quiet as usize, "sample")
             ),
             Self::AlwaysInDoubt { witness } => write!(
                 f,
-                "no logic exists: a waveform of {} samples leaves a change in doubt for ever, or until later ones \
+                "no logic exists: a waveform of {} leaves a change in doubt for ever, or until later ones \
                  are in doubt too",
-                witness.ticks.len()
+                words::count(witness.ticks.len(), "sample")
             ),
         }
     }

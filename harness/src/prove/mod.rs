@@ -34,6 +34,7 @@
 //! # Ok::<(), harness::prove::ProveError>(())
 //! ```
 
+mod beyond;
 mod contract;
 mod environment;
 mod explore;
@@ -56,6 +57,7 @@ use core::hash::Hash;
 
 use debounce_core::{Bounds, Clause, Envelope, Latency, Law, PerChange, Position};
 
+pub use beyond::{Beyond, Effort, NotSearched, Searched};
 pub use contract::Contract;
 pub use environment::{Branch, Environment, EnvironmentState, Fired};
 pub use frontier::shortest_operations;

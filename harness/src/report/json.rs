@@ -8,7 +8,7 @@ use crate::characterise::Spread;
 use crate::choose::{Candidate, Evidence, Judgement, Ranking};
 use crate::conformance::Conformance;
 use crate::envelope::PhysicalEnvelope;
-use crate::prove::{Proof, Recovery, Witness};
+use crate::prove::{Beyond, Proof, Recovery, Witness};
 use crate::quantity::TickPeriod;
 use crate::requirement::Resolved;
 use crate::study::{Guarantees, Observed, Study};
@@ -211,16 +211,45 @@ pub fn candidate(ranking: &Ranking, one: &Candidate) -> Value {
 /// The full exploration of the recommended candidate.
 #[must_use]
 pub fn guarantees(found: &Guarantees) -> Value {
+    let beyond = beyond(&found.beyond);
     json!({
         "envelope": envelope(&found.envelope),
         "exploration": proof(&found.proof),
         "law_states": found.law_states,
-        "lone_disturbance": per_position(&found.lone_disturbance),
-        "immunity": found.immunity.as_ref().map(per_position),
-        "shortest_operations": found.shortest_operations.iter().map(per_position).collect::<Value>(),
-        "after_short_operations": found.after_short_operations.as_ref().map(recovery),
-        "from_any_state": found.from_any_state.as_ref().map(recovery),
+        "lone_disturbance": beyond["lone_disturbance"],
+        "immunity": beyond["immunity"],
+        "shortest_operations": beyond["shortest_operations"],
+        "after_short_operations": beyond["after_short_operations"],
+        "from_any_state": beyond["from_any_state"],
+        "not_searched": beyond["not_searched"],
     })
+}
+
+/// What was found beyond the bounds; what was not searched is `null`, with the reason under `not_searched`.
+#[must_use]
+pub fn beyond(found: &Beyond) -> Value {
+    let mut reasons = serde_json::Map::new();
+    let mut value = json!({ "lone_disturbance": per_position(&found.lone_disturbance) });
+    let immunity = found.immunity.as_ref().map(per_position);
+    let shortest = found.shortest_operations.as_ref();
+    let shortest = shortest.map(|pairs| pairs.iter().map(per_position).collect::<Value>());
+    let searches = [
+        ("immunity", immunity),
+        ("shortest_operations", shortest),
+        ("after_short_operations", found.after_short_operations.as_ref().map(recovery)),
+        ("from_any_state", found.from_any_state.as_ref().map(recovery)),
+    ];
+    for (name, search) in searches {
+        match search {
+            Ok(found) => value[name] = found,
+            Err(reason) => {
+                value[name] = Value::Null;
+                reasons.insert(name.to_owned(), json!(reason.to_string()));
+            }
+        }
+    }
+    value["not_searched"] = reasons.into();
+    value
 }
 
 fn recovery(recovery: &Recovery) -> Value {
