@@ -4,7 +4,7 @@ use std::io;
 
 use debounce_core::PerPosition;
 
-use super::lines::Lines;
+use super::lines::{Lines, grouped};
 use crate::prove::{Beyond, NotSearched, Recovery, Searched};
 use crate::report::timing::TimingDiagram;
 use crate::report::words;
@@ -14,6 +14,16 @@ const SHOWN: usize = 6;
 
 /// Immunity, shortest operations and recovery of a logic that is faithful.
 pub(super) fn beyond(lines: &mut Lines<'_>, found: &Beyond) -> io::Result<()> {
+    if let Err(NotSearched::Large { states }) = &found.immunity {
+        lines.item("Alone", &lone(&found.lone_disturbance))?;
+        return lines.item(
+            "Not searched",
+            &format!(
+                "immunity, shortest operations and recovery, because that repeats the proof with its {} states many times; --thorough does it all the same",
+                grouped(*states)
+            ),
+        );
+    }
     match &found.immunity {
         Ok(immunity) => lines.item("Immunity", &format!("bears disturbances up to {}", widths(immunity)))?,
         Err(reason) => lines.item("Immunity", &reason.to_string())?,
@@ -28,22 +38,15 @@ pub(super) fn beyond(lines: &mut Lines<'_>, found: &Beyond) -> io::Result<()> {
     if !matches!(found.from_any_state, Err(NotSearched::TurnsOver)) {
         lines.more(&recovery(&found.from_any_state, "from any state of the law, as after an upset"))?;
     }
-    if [found.immunity.is_ok(), found.after_short_operations.is_ok()] == [false; 2] && is_large(&found.immunity)
-    {
-        lines.more("--thorough searches all the same")?;
-    }
     circles(lines, found)
-}
-
-fn is_large<T>(searched: &Searched<T>) -> bool {
-    matches!(searched, Err(NotSearched::Large { .. }))
 }
 
 /// Of a refuted logic: the disturbances it would still bear, and what it never reports from rest.
 pub(super) fn still_bears(lines: &mut Lines<'_>, found: &Beyond) -> io::Result<()> {
     match &found.immunity {
         Ok(PerPosition { open: None, closed: None }) => {
-            lines.item("Immunity", "none: it is refuted without disturbances at open or at closed as well")?;
+            lines
+                .item("Immunity", "none: it is refuted without disturbances at open or at closed as well")?;
         }
         Ok(immunity) => {
             lines.item("Immunity", &format!("would hold with disturbances up to {}", widths(immunity)))?
@@ -58,7 +61,11 @@ fn ticks(width: Option<u32>) -> String {
 }
 
 fn widths(found: &PerPosition<Option<u32>>) -> String {
-    format!("{} while open, or up to {} while closed, all else as it is", ticks(found.open), ticks(found.closed))
+    format!(
+        "{} while open, or up to {} while closed, all else as it is",
+        ticks(found.open),
+        ticks(found.closed)
+    )
 }
 
 fn lone(found: &PerPosition<Option<u32>>) -> String {

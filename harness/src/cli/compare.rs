@@ -94,7 +94,8 @@ impl Answer for Compared {
             lines.item(label, &format!("{}: {states}, {least} when minimised", logic.name))?;
         }
         let Some(apart) = &self.apart else {
-            return lines.item("Equivalent", &strong("both report the same at every sample, whatever the samples"));
+            return lines
+                .item("Equivalent", &strong("both report the same at every sample, whatever the samples"));
         };
         lines.item(
             "Different",

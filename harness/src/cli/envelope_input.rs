@@ -78,8 +78,15 @@ fn only(ticks: &[TickPeriod]) -> Result<TickPeriod, Problem> {
 pub(super) fn in_ticks(e: &Envelope) -> String {
     format!(
         "in ticks: dwell {} open, {} closed; bounce {} at make, {} at break; disturbance {} open, {} closed; quiet {}; calm {}; lost {}",
-        e.dwell.open, e.dwell.closed, e.bounce.make, e.bounce.break_, e.glitch.open, e.glitch.closed, e.quiet,
-        e.calm, e.lost
+        e.dwell.open,
+        e.dwell.closed,
+        e.bounce.make,
+        e.bounce.break_,
+        e.glitch.open,
+        e.glitch.closed,
+        e.quiet,
+        e.calm,
+        e.lost
     )
 }
 

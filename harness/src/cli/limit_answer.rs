@@ -167,16 +167,13 @@ impl LimitFound {
     }
 
     fn slowest(&self, lines: &mut Lines<'_>, reached: &Reached) -> io::Result<()> {
-        let Some(Proved::Faithful { slowest, .. }) = reached.proof.as_ref().map(|proof| &proof.outcome) else {
+        let Some(Proved::Faithful { slowest, .. }) = reached.proof.as_ref().map(|proof| &proof.outcome)
+        else {
             return Ok(());
         };
         for change in [Change::Make, Change::Break] {
             if let Some(witness) = slowest.of(change) {
-                lines.plain(&format!(
-                    "\nslowest {}:\n{}",
-                    words::change(change),
-                    TimingDiagram(witness)
-                ))?;
+                lines.plain(&format!("\nslowest {}:\n{}", words::change(change), TimingDiagram(witness)))?;
             }
         }
         Ok(())

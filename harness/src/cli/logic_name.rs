@@ -86,21 +86,34 @@ impl NamedLogic {
     }
 
     pub(super) fn of_law(parameters: &LawParameters) -> Result<Self, Failure> {
-        let table = law(parameters)?
-            .table()
-            .map_err(|error| Problem::told(format!("{parameters}: {error}")))?;
+        let table =
+            law(parameters)?.table().map_err(|error| Problem::told(format!("{parameters}: {error}")))?;
         let machine = MachineTable::of_table(&table);
         Ok(Self { name: parameters.to_string(), table, machine })
     }
 }
 
-/// The law itself.
-pub(super) fn law(parameters: &LawParameters) -> Result<Logic, Problem> {
+/// A logic that is only stepped, however many states it has.
+pub(super) enum Runnable {
+    Law(Logic),
+    Table(MachineTable),
+}
+
+impl Runnable {
+    /// Reads a table, or makes a law of its parameters.
+    pub(super) fn read(name: &LogicName, reading: OutputOf) -> Result<Self, Failure> {
+        match name {
+            LogicName::Law(parameters) => Ok(Self::Law(law(parameters)?)),
+            LogicName::Table(path) => Ok(Self::Table(machine(path, reading)?)),
+        }
+    }
+}
+
+fn law(parameters: &LawParameters) -> Result<Logic, Problem> {
     Logic::try_new(parameters).map_err(|error| Problem::told(format!("{parameters}: {error}")))
 }
 
-/// The machine in a file.
-pub(super) fn machine(path: &Path, reading: OutputOf) -> Result<MachineTable, Failure> {
+fn machine(path: &Path, reading: OutputOf) -> Result<MachineTable, Failure> {
     let bytes = fs::read(path).map_err(|error| faults::unreadable("table", path, &error))?;
     read_table(&path.display().to_string(), &bytes, reading.into())
         .map_err(|error| Failure::from_found(faults::table(&error)))

@@ -5,9 +5,7 @@ use std::path::{Path, PathBuf};
 use super::OutputFolder;
 use crate::emit::module_name;
 use crate::emit::table::table_law;
-use crate::machine::{
-    MachineTable, Reading, dot, table_text, terminal_diagram, write_csv, write_kiss2,
-};
+use crate::machine::{MachineTable, Reading, dot, table_text, terminal_diagram, write_csv, write_kiss2};
 use crate::problem::Problem;
 use crate::report::state_diagram::state_diagram;
 

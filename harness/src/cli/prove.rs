@@ -13,7 +13,7 @@ use super::prove_answer::Proved;
 use super::{Answer, Failure, OutputFolder, Session};
 use crate::choose::known_limit;
 use crate::problem::Problem;
-use crate::prove::{Beyond, Contract, Effort, Limits, prove_contract};
+use crate::prove::{Beyond, Contract, Effort, Limits, closed_form_limit, prove_contract};
 use crate::quantity::TickPeriod;
 use crate::report::witness::write_witness;
 
@@ -98,7 +98,10 @@ impl ProveArguments {
         let beyond = Beyond::of(&logic.table, &proof, effort, &limits);
         let again = self.again(&name, &envelope, tick);
         let tick = tick.map(TickPeriod::period);
-        let limit = if contract == Contract::Follow { known_limit(&envelope) } else { None };
+        let limit = match contract {
+            Contract::Follow => known_limit(&envelope),
+            Contract::Alternate => closed_form_limit(&envelope, contract),
+        };
         let mut written = Vec::new();
         if let Some(file) = machine_file {
             written.extend(file.write(&logic.machine)?);

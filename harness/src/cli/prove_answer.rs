@@ -55,12 +55,18 @@ impl Answer for Proved {
                                 f64::from(found.worst) / f64::from(limit)
                             )
                         }
-                        (None, Contract::Follow) => "; limit unknown, harness limit searches longer".to_owned(),
-                        (None, Contract::Alternate) => String::new(),
+                        (None, Contract::Follow) => {
+                            "; limit unknown, harness limit searches longer".to_owned()
+                        }
+                        (None, Contract::Alternate) => "; limit unknown".to_owned(),
                     };
                     lines.item(
                         if change == Change::Make { "Make" } else { "Break" },
-                        &format!("at most {}, at least {}{limit}", latency(found.worst, self.tick), found.best),
+                        &format!(
+                            "at most {}, at least {}{limit}",
+                            latency(found.worst, self.tick),
+                            found.best
+                        ),
                     )?;
                 }
                 self.size(&mut lines)?;

@@ -60,7 +60,7 @@ pub struct Beyond {
 
 impl Beyond {
     /// The most states of envelope and law together for which a quick search is made.
-    pub const QUICK: u64 = 30_000;
+    pub const QUICK: u64 = 100_000;
 
     /// Searches for everything that can be said of a logic of which `proof` is the proof or the refutation.
     #[must_use]

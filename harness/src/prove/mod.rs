@@ -62,7 +62,7 @@ pub use contract::Contract;
 pub use environment::{Branch, Environment, EnvironmentState, Fired};
 pub use frontier::shortest_operations;
 pub use immunity::{immunity, widest_lone_disturbance};
-pub use limit::{LimitAnswer, NoLogic, Solution, limit, promptest_logic, solve_limit};
+pub use limit::{LimitAnswer, NoLogic, Solution, closed_form_limit, limit, promptest_logic, solve_limit};
 pub use recovery::{Recovery, recovery_from_any_state, recovery_from_short_operations};
 pub use tabulate::{Entry, LawTable};
 pub use witness::{Witness, WitnessTick};

@@ -71,9 +71,5 @@ pub fn write_apart(
     let [one, other] = machines.map(|machine| outputs(machine, apart));
     let (samples, one, other) = (lane(&apart.samples)?, lane(&one)?, lane(&other)?);
     let mut out = out;
-    write_vcd(
-        &mut out,
-        &[("apart.samples", &samples), ("apart.one", &one), ("apart.other", &other)],
-        again,
-    )
+    write_vcd(&mut out, &[("apart.samples", &samples), ("apart.one", &one), ("apart.other", &other)], again)
 }

@@ -25,11 +25,7 @@ pub fn write_witness(out: &mut dyn Write, witness: &Witness, period: Period, aga
     )
 }
 
-fn lane(
-    witness: &Witness,
-    period: Period,
-    of: fn(&WitnessTick) -> Position,
-) -> Result<Trace, TraceError> {
+fn lane(witness: &Witness, period: Period, of: fn(&WitnessTick) -> Position) -> Result<Trace, TraceError> {
     let row: Vec<Position> = witness.ticks.iter().map(of).collect();
     lane_of(witness.start, &row, period)
 }
