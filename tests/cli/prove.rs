@@ -57,8 +57,7 @@ fn prove_of_a_large_product_says_what_was_not_searched_and_how_to_ask() {
     let law = "state-machine confirm=4 patience=4 lockout=15";
     let line = ["prove", law, "--envelope", "dwell=160 bounce=16 glitch=3 quiet=80"];
     let quick = bench.run(&line).ends(0);
-    for part in
-        ["Not searched immunity, shortest operations and recovery", "--thorough does it all the same"]
+    for part in ["Not searched immunity, shortest operations and recovery", "--thorough does it all the same"]
     {
         assert!(quick.flowing().contains(part), "\"{part}\" is not in {}", quick.stdout);
     }

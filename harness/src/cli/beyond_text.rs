@@ -33,7 +33,10 @@ pub(super) fn beyond(lines: &mut Lines<'_>, found: &Beyond) -> io::Result<()> {
         Ok(pairs) => lines.item("Shortest", &served(pairs))?,
         Err(reason) => lines.item("Shortest", &reason.to_string())?,
     }
-    lines.item("Recovery", &recovery(&found.after_short_operations, "after an operation that was too short"))?;
+    lines.item(
+        "Recovery",
+        &recovery(&found.after_short_operations, "after an operation that was too short"),
+    )?;
     // A logic that turns over is said once to have no such thing.
     if !matches!(found.from_any_state, Err(NotSearched::TurnsOver)) {
         lines.more(&recovery(&found.from_any_state, "from any state of the law, as after an upset"))?;

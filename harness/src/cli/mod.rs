@@ -6,6 +6,7 @@
 mod beyond_text;
 mod characterise;
 mod choose;
+mod clock_text;
 mod compare;
 mod emit;
 mod envelope_input;

@@ -6,6 +6,7 @@ use serde_json::{Value, json};
 use super::words;
 use crate::characterise::Spread;
 use crate::choose::{Candidate, Evidence, Judgement, Ranking};
+use crate::clock_range::{Asleep, ClockRange, Curve, Span};
 use crate::conformance::Conformance;
 use crate::envelope::PhysicalEnvelope;
 use crate::prove::{Beyond, Proof, Recovery, Witness};
@@ -205,6 +206,62 @@ pub fn candidate(ranking: &Ranking, one: &Candidate) -> Value {
                 "false_places": m.false_edges.places.len(),
             }))
             .collect::<Value>(),
+    })
+}
+
+/// The sample clock: every rounding step, every curve, and the clock to take.
+#[must_use]
+pub fn clock_range(range: &ClockRange) -> Value {
+    let span = |span: &Span| json!({ "from_ns": span.from_ns, "until_ns": span.until_ns });
+    let spans = |all: &[Span]| all.iter().map(span).collect::<Value>();
+    let curve = |curve: &Curve| {
+        json!({
+            "law": curve.family,
+            "works": spans(&curve.works),
+            "in_time": spans(&curve.holds),
+            "pieces": curve
+                .pieces
+                .iter()
+                .map(|piece| json!({
+                    "from_ns": piece.span.from_ns,
+                    "until_ns": piece.span.until_ns,
+                    "law": piece.law.to_string(),
+                    "worst_samples": per_change(&piece.worst),
+                    "below_from_ns": per_change(&piece.below_from_ns),
+                    "below_until_ns": per_change(&piece.below_until_ns),
+                    "in_time_until_ns": piece.in_time_until_ns,
+                }))
+                .collect::<Value>(),
+        })
+    };
+    json!({
+        "span": span(&range.span),
+        "steps": range
+            .steps
+            .iter()
+            .map(|step| json!({ "at_ns": step.at_ns, "figure": step.figure.name(), "samples": step.samples }))
+            .collect::<Value>(),
+        "curves": range.curves.iter().map(curve).collect::<Value>(),
+        "recommended": range.recommended.map(|best| json!({
+            "slowest_ns": best.slowest_ns,
+            "period_ns": best.period_ns,
+            "law": best.law.to_string(),
+            "worst_samples": per_change(&best.worst),
+            "below_ns": per_change(&best.below_ns),
+            "same_law": span(&best.same_law),
+        })),
+    })
+}
+
+/// What is saved where the tick stops while the law is settled.
+#[must_use]
+pub fn asleep(found: &Asleep) -> Value {
+    json!({
+        "ticks_after": per_change(&found.ticks_after),
+        "ticks_after_disturbance": per_position(&found.ticks_after_disturbance),
+        "ticking_per_second": found.ticking_per_second,
+        "stopping_per_second": found.stopping_per_second,
+        "share_asleep": found.share,
     })
 }
 
