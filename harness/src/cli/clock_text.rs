@@ -23,6 +23,9 @@ impl ClockView {
             let text = match (curve.works.is_empty(), curve.holds.is_empty()) {
                 (true, _) => "works at no tick period".to_owned(),
                 (false, true) => format!("works {}, but nowhere in time", spans(&curve.works)),
+                (false, false) if curve.works == curve.holds => {
+                    format!("works, and is in time, {}", spans(&curve.works))
+                }
                 (false, false) => format!("works {}; in time {}", spans(&curve.works), spans(&curve.holds)),
             };
             let text = format!("{}: {text}", curve.family);
@@ -35,9 +38,9 @@ impl ClockView {
             self.range.steps.len()
         ))?;
         if let Some(best) = &self.range.recommended {
-            lines.item("Tick", &strong(&format!("{} with {}", time(best.period_ns), best.law)))?;
+            lines.item("Free tick", &strong(&format!("{} with {}", time(best.period_ns), best.law)))?;
             lines.more(&format!(
-                "in time, a make in less than {} and a break in less than {}; the slowest at all is {}; the same law holds from {} to {}",
+                "were the timer free: a make in less than {} and a break in less than {}; the slowest at all is {}; the same law holds from {} to {}",
                 words::at_most(best.below_ns.make),
                 words::at_most(best.below_ns.break_),
                 words::at_least(best.slowest_ns),

@@ -80,6 +80,7 @@ impl fmt::Display for ClockPlot<'_> {
             .zip(MARKS)
             .map(|(curve, mark)| format!("{mark} {}", curve.family))
             .collect();
-        writeln!(f, "{:>10}  worst delay against tick period: {}", "", legend.join(", "))
+        writeln!(f, "{:>10}  worst delay against tick period", "")?;
+        writeln!(f, "{:>10}  {}", "", legend.join(", "))
     }
 }
