@@ -250,3 +250,62 @@ fn table_with_very_many_bad_lines_lists_the_first_and_says_so() {
     assert_eq!(run.stderr.matches("error: lamp.kiss2:").count(), 21, "{}", run.stderr);
     assert!(run.stderr.contains("more bad lines follow"), "{}", run.stderr);
 }
+
+/// Incomplete, not deterministic, not reachable, without reset, of the wrong width, with something left open.
+#[test]
+fn table_that_is_no_machine_is_refused_whatever_is_wrong() {
+    let edited = |from: &str, to: &str| LAMP.replace(from, to);
+    for (text, place, message, help) in [
+        (
+            edited("1 on on 1\n", ""),
+            "lamp.kiss2:6:3",
+            "state \"on\" has no line for sample 1 (closed)",
+            "say where",
+        ),
+        (
+            edited("1 on on 1\n", "1 on on 1\n1 on off 1\n"),
+            "lamp.kiss2:8:3",
+            "state \"on\" with sample 1 (closed) was already given in line 7, with another next state",
+            "keep one of the two",
+        ),
+        (
+            edited(".e", "- far on 1\n.e"),
+            "lamp.kiss2:8:3",
+            "state \"far\" is never reached from the reset state \"off\"",
+            "remove its lines",
+        ),
+        (edited(".r off\n", ""), "lamp.kiss2", "the table names no reset state", ".r off"),
+        (edited(".i 1", ".i 2"), "lamp.kiss2:1:4", ".i says \"2\" bits", ""),
+        (
+            edited("1 off on 0", "1 off - 0"),
+            "lamp.kiss2:5:7",
+            "the next state of \"off\" is left open",
+            "name the state",
+        ),
+    ] {
+        let helps = if help.is_empty() { vec![] } else { vec![help] };
+        refuses_table("lamp.kiss2", text, &[(place, message, &helps)]);
+    }
+}
+
+#[test]
+fn envelope_that_contradicts_itself_is_refused() {
+    let bench = Bench::new();
+    for (envelope, message, help) in [
+        ("dwell=0", "an envelope needs a dwell of at least 1 tick", "write"),
+        ("dwell=9 glitch=1 quiet=0", "a quiet of 0 ticks lets one disturbance run into the next", "quiet=1"),
+        ("dwell=9 bounse=3", "\"bounse\" is no part of an envelope", "write bounce="),
+    ] {
+        for command in [&["prove", "integrator 3"][..], &["limit"]] {
+            let line = [command, &["--envelope", envelope]].concat();
+            bench.refuses_usage(&line, ("", message, &[help]));
+        }
+    }
+}
+
+#[test]
+fn prove_that_would_not_fit_says_unfinished_and_ends_with_2() {
+    let told: Told<'_> = ("", "unfinished: the envelope has more than", &["use a longer tick period"]);
+    let envelope = "dwell=100000000 bounce=5 glitch=1 quiet=100000";
+    Bench::new().refuses(&["prove", "integrator 5", "--envelope", envelope], &[told]);
+}
