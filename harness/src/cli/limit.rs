@@ -63,10 +63,10 @@ impl LimitArguments {
         let answer = solve(&envelope, &limits).map_err(Problem::told)?;
         let known = match answer {
             LimitAnswer::Unsolvable(reason) => Known::NoLogic(reason),
-            LimitAnswer::Solved(solution) => Known::Limit(solved(&envelope, solution)?),
-            LimitAnswer::ClosedForm(latency) => Known::Limit(by_formula(&envelope, latency, 0)?),
+            LimitAnswer::Solved(solution) => Known::Limit(Box::new(solved(&envelope, solution)?)),
+            LimitAnswer::ClosedForm(latency) => Known::Limit(Box::new(by_formula(&envelope, latency, 0)?)),
             LimitAnswer::Unknown { beliefs, bytes } => match envelope.limit() {
-                Some(latency) => Known::Limit(by_formula(&envelope, latency, beliefs)?),
+                Some(latency) => Known::Limit(Box::new(by_formula(&envelope, latency, beliefs)?)),
                 None => return Err(unknown(beliefs, bytes).into()),
             },
         };

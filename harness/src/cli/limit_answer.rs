@@ -27,7 +27,7 @@ pub(super) enum Known {
     /// There is no faithful logic.
     NoLogic(NoLogic),
     /// The limit, and a logic that reaches it.
-    Limit(Reached),
+    Limit(Box<Reached>),
 }
 
 /// A limit with a logic that has exactly that latency.

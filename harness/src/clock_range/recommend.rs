@@ -63,8 +63,7 @@ fn two_digits_down_from(ns: u64) -> impl Iterator<Item = u64> {
     })
 }
 
-/// The longest stretch around `period_ns`, found by doubling the distance and halving it again; a hole narrower than
-/// the last halving is not looked for, so both ends are then walked in once more step by rounding step.
+/// The longest stretch around `period_ns` in which the law holds without a gap, from rounding step to rounding step.
 fn same_law(
     question: &ClockQuestion,
     law: LawParameters,
@@ -85,15 +84,15 @@ fn same_law(
     let mut starts: Vec<u64> = core::iter::once(from_ns).chain(steps.iter().map(|step| step.at_ns)).collect();
     starts.dedup();
     let here = starts.partition_point(|&start| start <= period_ns) - 1;
-    for &start in starts[..=here].iter().rev() {
-        let end = starts.iter().find(|&&next| next > start).map_or(until_ns, |next| next - 1).min(period_ns);
-        if !holds(end) {
+    let end_of = |index: usize| starts.get(index + 1).map_or(until_ns, |next| next - 1);
+    for index in (0..=here).rev() {
+        if !holds(end_of(index).min(period_ns)) {
             break;
         }
-        span.from_ns = start;
+        span.from_ns = starts[index];
     }
     for (index, &start) in starts.iter().enumerate().skip(here) {
-        let end = starts.get(index + 1).map_or(until_ns, |next| next - 1);
+        let end = end_of(index);
         if !holds(start.max(period_ns)) {
             break;
         }

@@ -56,8 +56,11 @@ const MILLION: u128 = 1_000_000;
 /// The most steps that are looked at.
 const MOST: u64 = 10_000;
 
+/// Four times of an envelope, in nanoseconds.
+type Times = [(Figure, u64); 4];
+
 /// The times that may touch samples, rounded up, and those that must be seen, rounded down.
-fn times(question: &ClockQuestion) -> ([(Figure, u64); 4], [(Figure, u64); 4]) {
+fn times(question: &ClockQuestion) -> (Times, Times) {
     let physical = &question.physical;
     let longest = SHORTER_DWELL * question.widest_ns();
     let dwell = |ns: u64| if longest > 0 { ns.min(longest) } else { ns };
