@@ -5,6 +5,7 @@ pub mod characterise;
 pub mod check;
 pub mod choose;
 pub mod cli;
+pub mod clock_range;
 pub mod conformance;
 pub mod demo;
 pub mod emit;

@@ -5,6 +5,8 @@ mod bad_recording;
 mod bad_requirement;
 mod bench;
 mod choose_emit;
+mod compare;
+mod limit;
 mod prove;
 mod replay;
 mod study;

@@ -9,8 +9,8 @@ use clap::{CommandFactory, Parser, Subcommand};
 
 use super::session::{print_problems, to_stdout};
 use super::{
-    Answer, CharacteriseArguments, ChooseArguments, EmitArguments, Failure, GlobalOptions, ProveArguments,
-    ReplayArguments, Session, StudyArguments,
+    Answer, CharacteriseArguments, ChooseArguments, CompareArguments, EmitArguments, Failure, GlobalOptions,
+    LimitArguments, ProveArguments, ReplayArguments, Session, StudyArguments,
 };
 use crate::problem::Problem;
 
@@ -36,6 +36,8 @@ enum Command {
     Characterise(CharacteriseArguments),
     Choose(ChooseArguments),
     Prove(ProveArguments),
+    Limit(LimitArguments),
+    Compare(CompareArguments),
     Replay(ReplayArguments),
     Emit(EmitArguments),
 }
@@ -47,6 +49,8 @@ impl Command {
             Self::Characterise(_) => "characterise",
             Self::Choose(_) => "choose",
             Self::Prove(_) => "prove",
+            Self::Limit(_) => "limit",
+            Self::Compare(_) => "compare",
             Self::Replay(_) => "replay",
             Self::Emit(_) => "emit",
         }
@@ -58,6 +62,8 @@ impl Command {
             Self::Characterise(arguments) => arguments.run(session),
             Self::Choose(arguments) => arguments.run(session),
             Self::Prove(arguments) => arguments.run(session),
+            Self::Limit(arguments) => arguments.run(session),
+            Self::Compare(arguments) => arguments.run(session),
             Self::Replay(arguments) => arguments.run(session),
             Self::Emit(arguments) => arguments.run(session),
         }

@@ -169,9 +169,10 @@ const SHOWN: usize = 5;
 
 /// What is proved beyond the bounds, in one line.
 fn beyond(found: &Guarantees, tick: TickPeriod) -> Option<String> {
-    let immunity = found.immunity?;
-    let pair = found.shortest_operations.first()?;
-    let recovery = match found.after_short_operations.as_ref()? {
+    let beyond = &found.beyond;
+    let immunity = beyond.immunity.as_ref().ok()?;
+    let pair = beyond.shortest_operations.as_ref().ok()?.first()?;
+    let recovery = match beyond.after_short_operations.as_ref().ok()? {
         Recovery::Within(samples) => format!("recovers from shorter ones within {samples} ticks"),
         Recovery::Never(_) => "may stay wrong after shorter ones".to_owned(),
     };

@@ -1,5 +1,7 @@
 //! What a person sees of a result.
 
+pub mod apart;
+pub mod clock_plot;
 pub mod json;
 pub mod state_diagram;
 pub mod timing;
