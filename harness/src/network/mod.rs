@@ -1,0 +1,1 @@
+//! The network between the contact and the pin.
