@@ -41,6 +41,7 @@ fn help_examples_of_every_command_parse() {
     examples_parse::<ChooseArguments>("choose", ChooseArguments::EXAMPLES);
     examples_parse::<ProveArguments>("prove", ProveArguments::EXAMPLES);
     examples_parse::<ReplayArguments>("replay", ReplayArguments::EXAMPLES);
+    examples_parse::<NetworkArguments>("network", NetworkArguments::EXAMPLES);
     examples_parse::<EmitArguments>("emit", EmitArguments::EXAMPLES);
 }
 
@@ -54,6 +55,7 @@ fn help_of_every_command_is_consistent() {
     check::<ChooseArguments>("choose");
     check::<ProveArguments>("prove");
     check::<ReplayArguments>("replay");
+    check::<NetworkArguments>("network");
     check::<EmitArguments>("emit");
 }
 

@@ -252,7 +252,7 @@ mod tests {
             unit.time_to(position, unit.steady(!position), level).expect("reached")
         };
         let (open, closed) = (Position::Open, Position::Closed);
-        assert!(time(&with(true), open, 3.0) < 0.8 * time(&plain, open, 3.0));
+        assert!(time(&with(true), open, 3.0) < 0.95 * time(&plain, open, 3.0));
         assert!((time(&with(true), closed, 1.0) / time(&plain, closed, 1.0) - 1.0).abs() < 1e-3);
         assert!(time(&with(false), closed, 1.0) < 0.5 * time(&plain, closed, 1.0));
         assert!((time(&with(false), open, 3.0) / time(&plain, open, 3.0) - 1.0).abs() < 1e-3);
