@@ -69,7 +69,7 @@ fn cases() -> Vec<Case> {
     let case = |name, network| Case { name, network };
     vec![
         case("capacitor on the contact", base()),
-        case("no capacitor but the pin's", Network { capacitor: ohms(0.0), ..base() }),
+        case("no capacitor but the pin's", Network { capacitor: ohms(0.0), contact: 100.0, ..base() }),
         case("filter for an encoder", filter),
         case("the same at 4.5 V, Schmitt gate", five),
         case("Schmitt gate of six", Network { input: class("schmitt-hc-hex"), ..filter }),
@@ -105,17 +105,15 @@ fn cases() -> Vec<Case> {
     ]
 }
 
-/// Seconds until each edge by the harness: make, break.
-fn times(network: &Network, unit: &Unit) -> [f64; 2] {
-    [Position::Closed, Position::Open].map(|position| {
-        let level = network.levels_to_read(unit, position).typical;
-        unit.time_to(position, unit.steady(!position), level).expect("reached")
-    })
+/// Seconds until the pin reads a position, by the harness.
+fn time(network: &Network, unit: &Unit, position: Position) -> f64 {
+    let level = network.levels_to_read(unit, position).typical;
+    unit.time_to(position, unit.steady(!position), level).expect("reached")
 }
 
-/// The circuit on the board, with supply and ground where they are, and the contact made at `hold` and broken at twice
-/// that.
-fn deck(network: &Network, unit: &Unit, hold: f64, folder: &str) -> String {
+/// The circuit on the board, with supply and ground where they are, at rest in the other position until `start`, when
+/// the contact goes to `position`; simulated until `end` in steps of `step`.
+fn deck(network: &Network, unit: &Unit, position: Position, [start, end, step]: [f64; 3]) -> String {
     let Unit { supply, .. } = *unit;
     let is_low = network.closed == Level::Low;
     let (contact_side, pull_side) = if is_low { ("0", "vcc") } else { ("vcc", "0") };
@@ -126,16 +124,10 @@ fn deck(network: &Network, unit: &Unit, hold: f64, folder: &str) -> String {
         deck.push_str(&line);
         deck.push('\n');
     };
-    // The contact's control goes from 0 to 1 within a ten-thousandth of the edge, centred on the instant.
-    let ramp = hold * 1e-7;
-    let (make, release) = (hold, 2.0 * hold);
-    part(format!(
-        "vctl ctl 0 pwl(0 0 {:e} 0 {:e} 1 {:e} 1 {:e} 0)",
-        make - ramp,
-        make + ramp,
-        release - ramp,
-        release + ramp
-    ));
+    // The contact's control crosses the middle at the start, within a hundredth of a step.
+    let (before, after) = if position == Position::Closed { (0, 1) } else { (1, 0) };
+    let (from, until) = (start - step / 200.0, start + step / 200.0);
+    part(format!("vctl ctl 0 pwl(0 {before} {from:e} {before} {until:e} {after} {end:e} {after})"));
     part("vsense k s 0".to_owned());
     part(format!("scontact s {contact_side} ctl 0 contact"));
     part(format!(".model contact sw(vt=0.5 vh=0 ron={:e} roff=1e13)", unit.contact));
@@ -167,16 +159,14 @@ fn deck(network: &Network, unit: &Unit, hold: f64, folder: &str) -> String {
     part("rout out 0 1e6".to_owned());
     // 25.69 mV of thermal voltage, as the harness has it, is 24.97 degrees.
     part(".options reltol=1e-5 abstol=1e-14 vntol=1e-7 temp=24.97 tnom=24.97".to_owned());
-    let step = times(network, unit).into_iter().fold(f64::INFINITY, f64::min) / 400.0;
-    part(format!(".tran {step:e} {:e} 0 {step:e}", 3.0 * hold));
+    part(format!(".tran {step:e} {end:e} 0 {step:e}"));
     let middle = supply / 2.0;
-    let (first, second) = if is_low { ("fall", "rise") } else { ("rise", "fall") };
+    let edge = if is_low == (position == Position::Closed) { "fall" } else { "rise" };
     part(".control".to_owned());
     part("run".to_owned());
-    part(format!("meas tran tmake when v(out)={middle:e} {first}=1"));
-    part(format!("meas tran tbreak when v(out)={middle:e} {second}=1"));
-    part(format!("meas tran steady find i(vsense) at={:e}", 1.99 * hold));
-    part(format!("echo found $&tmake $&tbreak $&steady > {folder}/found.txt"));
+    part(format!("meas tran seen when v(out)={middle:e} {edge}=1"));
+    part(format!("meas tran rest find i(vsense) at={:e}", start / 2.0));
+    part("echo found $&seen $&rest".to_owned());
     part("quit".to_owned());
     part(".endc".to_owned());
     part(".end".to_owned());
@@ -186,20 +176,23 @@ fn deck(network: &Network, unit: &Unit, hold: f64, folder: &str) -> String {
 const MISSING: &str =
     "ngspice is missing: this check compares with it; get it with `apt-get install ngspice`";
 
-/// What ngspice says: time of the make, time of the break, contact current at rest.
-fn simulate(network: &Network, unit: &Unit, hold: f64) -> [f64; 3] {
+/// What ngspice says: time until the pin reads `position`, and the contact's current at rest before that.
+fn simulate(network: &Network, unit: &Unit, position: Position) -> [f64; 2] {
+    let expected = time(network, unit, position);
+    let step = expected / 500.0;
+    let start = 10.0 * step;
     let folder = tempfile::tempdir().expect("a folder");
     let path = folder.path().join("network.cir");
-    fs::write(&path, deck(network, unit, hold, &folder.path().display().to_string())).expect("a file");
+    fs::write(&path, deck(network, unit, position, [start, start + 1.5 * expected, step])).expect("a file");
     let output =
         Command::new("ngspice").arg("-b").arg(&path).output().unwrap_or_else(|_| panic!("{MISSING}"));
     let said =
         String::from_utf8_lossy(&output.stdout).into_owned() + &String::from_utf8_lossy(&output.stderr);
-    let found = fs::read_to_string(folder.path().join("found.txt"))
-        .unwrap_or_else(|error| panic!("ngspice measured nothing ({error}):\n{said}"));
+    let found = said.lines().find_map(|line| line.strip_prefix("found "));
+    let found = found.unwrap_or_else(|| panic!("ngspice measured nothing:\n{said}"));
     let numbers: Vec<f64> = found.split_whitespace().filter_map(|word| word.parse().ok()).collect();
-    let [make, release, steady] = numbers[..] else { panic!("not three numbers: {found}\n{said}") };
-    [make - hold, release - 2.0 * hold, steady.abs()]
+    let [seen, rest] = numbers[..] else { panic!("not two numbers: {found}\n{said}") };
+    [seen - start, rest.abs()]
 }
 
 #[track_caller]
@@ -219,14 +212,14 @@ fn network_times_agree_with_a_circuit_simulator() {
     assert!(cases.len() >= 20);
     for Case { name, network } in &cases {
         let unit = network.typical();
-        let [make, release] = times(network, &unit);
-        // Long enough that the network is at rest before the next change.
-        let hold = 30.0 * make.max(release);
-        let [spice_make, spice_release, spice_steady] = simulate(network, &unit, hold);
-        within(0.01, name, "make", make, spice_make);
-        within(0.01, name, "break", release, spice_release);
-        let steady = unit.steady(Position::Closed).contact / unit.contact;
-        within(0.01, name, "current at rest", steady, spice_steady);
+        for position in [Position::Closed, Position::Open] {
+            let [seen, rest] = simulate(network, &unit, position);
+            within(0.01, name, &format!("to {position:?}"), time(network, &unit, position), seen);
+            if position == Position::Open {
+                let steady = unit.steady(Position::Closed).contact / unit.contact;
+                within(0.01, name, "current at rest", steady, rest);
+            }
+        }
     }
 }
 
@@ -245,12 +238,11 @@ fn network_extremes_agree_with_a_circuit_simulator() {
     };
     let name = "tolerances";
     for network in [plain, Network { diode: diode(SILICON, true), ..plain }] {
-        let time = |unit: &Unit, at: usize| times(&network, unit)[at];
-        for at in [0, 1] {
-            for extreme in [network.greatest(|unit| time(unit, at)), network.least(|unit| time(unit, at))] {
-                let hold = 30.0 * times(&network, &extreme.unit).into_iter().fold(0.0, f64::max);
-                let found = simulate(&network, &extreme.unit, hold);
-                within(0.01, name, ["make", "break"][at], extreme.value, found[at]);
+        for position in [Position::Closed, Position::Open] {
+            let time = |unit: &Unit| time(&network, unit, position);
+            for extreme in [network.greatest(time), network.least(time)] {
+                let [seen, _] = simulate(&network, &extreme.unit, position);
+                within(0.01, name, &format!("to {position:?}"), extreme.value, seen);
             }
         }
     }

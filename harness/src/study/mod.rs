@@ -141,6 +141,11 @@ impl Study {
             configuration = configuration
                 .provenance(format!("recording {}, channel {}", one.name, one.recording.channel));
         }
+        if let Some(front) = &self.resolved.network {
+            for sentence in front.sentences() {
+                configuration = configuration.provenance(format!("network in front of the pin: {sentence}"));
+            }
+        }
         Some(configuration)
     }
 }
