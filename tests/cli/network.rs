@@ -141,7 +141,7 @@ fn network_with_impossible_values_is_refused_at_each() {
     refuses(
         "[network]\npull = \"0 ohm\"\ncapacitor = \"2 F\"\ndiode = \"silicon\"\nsupply = \"230 V\"\n",
         &[
-            ("contact.toml:2:8", "a resistor of 0 mohm cannot do this", &["write at least \"10 ohm\""]),
+            ("contact.toml:2:8", "a resistor of 0 ohm cannot do this", &["write at least \"10 ohm\""]),
             ("contact.toml:3:13", "a capacitor of 2 F is none for an input", &["at most \"100 mF\""]),
             ("contact.toml:4:9", "the diode has nothing to bridge", &["write series"]),
             ("contact.toml:5:10", "a supply of 230 V is none for an input", &["mains"]),

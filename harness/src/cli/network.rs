@@ -26,7 +26,7 @@ use crate::requirement::{Level, NetworkOptions, NetworkTable, Origin, ResolvedNe
     after_help = NetworkArguments::EXAMPLES
 )]
 pub struct NetworkArguments {
-    /// Requirement file with a [network] section; the options stand over it
+    /// Requirement file, contact.toml; the options below stand over its network
     #[arg(long, short = 'r', value_name = "FILE")]
     pub requirement: Option<PathBuf>,
     /// Level of the line while the contact is closed: low with the contact to ground, high with it to the supply

@@ -1,7 +1,7 @@
 //! The network between a contact and a pin: resistors, capacitor, diode, cable and input, with their tolerances.
 //!
 //! [`Network::analysis`] works out time to threshold at make and break, currents, and which pulses get through;
-//! [`Network::waveforms`] gives the points to draw; [`at_pin`] turns an envelope of the contact into the one that the
+//! [`Network::waveforms`] gives the points to draw; [`at_pin()`] turns an envelope of the contact into the one that the
 //! pin shows, always toward the safe side; [`Network::through`] filters a recording. Without a diode everything is exact
 //! (two exponentials); with one it is stepped, with the error of every step bounded.
 

@@ -106,6 +106,10 @@ electrical! {
 
 /// Every digit, in the largest unit of which there is at least one.
 fn shown(finest: u64, units: &[Unit]) -> String {
+    // Nothing is nothing of the plain unit, which has the shortest name.
+    if finest == 0 {
+        return format!("0 {}", units.iter().map(|unit| unit.0).min_by_key(|name| name.len()).unwrap_or(""));
+    }
     let Some(&(name, size)) = units.iter().find(|(_, size)| finest >= *size).or(units.last()) else {
         return finest.to_string();
     };
@@ -127,7 +131,7 @@ mod tests {
         assert_eq!(ohm("10 kohm"), Ok((10_000_000, "10 kohm".to_owned())));
         assert_eq!(ohm("4.7kΩ"), Ok((4_700_000, "4.7 kohm".to_owned())));
         assert_eq!(ohm("100 mohm"), Ok((100, "100 mohm".to_owned())));
-        assert_eq!(ohm("0 ohm"), Ok((0, "0 mohm".to_owned())));
+        assert_eq!(ohm("0 ohm"), Ok((0, "0 ohm".to_owned())));
         let farad = |text: &str| text.parse::<Capacitance>().map(|one| (one.finest(), one.to_string()));
         assert_eq!(farad("100 nF"), Ok((100_000_000, "100 nF".to_owned())));
         assert_eq!(farad("0.01 µF"), Ok((10_000_000, "10 nF".to_owned())));

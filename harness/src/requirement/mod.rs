@@ -56,6 +56,7 @@ mod check;
 mod front;
 mod network;
 mod network_options;
+mod network_resolve;
 mod options;
 mod pair;
 mod read;
