@@ -179,7 +179,7 @@ impl NetworkTable {
 
     fn supply(&self, filling: &mut Filling<'_>, class: Option<&'static InputClass>) -> Spread {
         let Some(sourced) = &self.supply else {
-            let usual = class.map_or(Spread::fixed(3.3), |class| class.supply);
+            let usual = class.map_or(Spread::new(1.62, 3.3, 5.5), |class| class.supply);
             // A class with a narrow supply means all of it; the others are run from a regulator.
             let spread = if usual.max / usual.min < 1.5 {
                 usual
@@ -222,7 +222,8 @@ impl NetworkTable {
             let VoltageRange { low, high } = own.value;
             if self.rising.is_some() && (low.volts() <= 0.0 || high.volts() >= supply.min) {
                 let message = format!("thresholds of {} lie outside what the line can show", own.value);
-                let help = format!("write voltages above 0 V and below {} V", rounded(supply.min));
+                let help =
+                    format!("write voltages above 0 V and below {} V", (supply.min * 100.0).floor() / 100.0);
                 filling.refuse(&own.origin, message, &help);
             }
             filling.row(key, own.value.to_string(), own.origin);
