@@ -30,7 +30,7 @@ impl Linear {
         let sum = near + far + unit.pull;
         let cross = near * far / sum;
         // What leads from each end to a fixed voltage.
-        let contact_ground = unit.to_ground(position);
+        let contact_ground = unit.ground_conductance(position);
         let contact_supply = near * unit.pull / sum;
         let pin_supply = far * unit.pull / sum + unit.load;
         let (x, y) = (contact_supply + contact_ground, pin_supply);

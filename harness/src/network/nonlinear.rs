@@ -72,7 +72,7 @@ pub(super) struct Flow<'a> {
 
 impl<'a> Flow<'a> {
     pub(super) fn new(unit: &'a Unit, position: Position) -> Self {
-        Self { unit, ground: unit.to_ground(position) }
+        Self { unit, ground: unit.ground_conductance(position) }
     }
 
     /// How fast both voltages move, in volts a second.
@@ -193,7 +193,7 @@ pub(super) fn time_to(unit: &Unit, position: Position, from: State, level: f64) 
 
 /// Where nothing moves any more: the current into the pin falls as the pin rises, so halving finds it.
 pub(super) fn steady(unit: &Unit, position: Position) -> State {
-    let (near, ground) = (1.0 / unit.discharge, unit.to_ground(position));
+    let (near, ground) = (1.0 / unit.discharge, unit.ground_conductance(position));
     let path = near * ground / (near + ground);
     let gains =
         |pin: f64| branch(unit, path, 0.0, pin).0 - unit.leakage + unit.load * (unit.supply - pin) > 0.0;

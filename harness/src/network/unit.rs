@@ -70,7 +70,7 @@ pub(super) const LEAST_SIEMENS: f64 = 1e-12;
 
 impl Unit {
     /// Conductance from the contact's end of the line to ground.
-    pub(super) fn to_ground(&self, position: Position) -> f64 {
+    pub(super) fn ground_conductance(&self, position: Position) -> f64 {
         match position {
             Position::Open => self.dirt,
             Position::Closed => self.dirt + 1.0 / self.contact,
