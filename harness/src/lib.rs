@@ -16,6 +16,7 @@ mod level;
 pub mod logic;
 pub mod machine;
 pub mod nearest;
+pub mod network;
 pub mod problem;
 pub mod prove;
 pub mod quantity;

@@ -7,6 +7,7 @@ mod bench;
 mod choose_emit;
 mod compare;
 mod limit;
+mod network;
 mod prove;
 mod replay;
 mod study;

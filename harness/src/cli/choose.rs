@@ -17,7 +17,7 @@ use crate::clock_range::{Activity, ClockQuestion, asleep, clock_range, slowest_b
 use crate::problem::Problem;
 use crate::report::clock_plot::ClockPlot;
 use crate::report::{json as report, words};
-use crate::requirement::Origin;
+use crate::requirement::{Origin, Resolved};
 use crate::study::Study;
 
 /// Ranks laws, parameters and tick periods for a requirement.
@@ -117,8 +117,10 @@ impl Answer for Chosen {
         let mut lines = Lines::new(out);
         lines
             .item("Envelope", &format!("the contact {}", words::envelope(&self.study.physical).join("; ")))?;
+        network(&mut lines, &self.study.resolved)?;
         for row in self.study.resolved.rows() {
-            if !matches!(row.origin, Origin::Given { .. } | Origin::Option(_)) {
+            // What the network does has just been said.
+            if !matches!(row.origin, Origin::Given { .. } | Origin::Option(_) | Origin::Network) {
                 lines.item("Assumed", &format!("{} = {} ({})", row.key, row.text, row.origin))?;
             }
         }
@@ -171,6 +173,16 @@ impl Answer for Chosen {
             },
         })
     }
+}
+
+/// What stands in front of the pin, and what it does.
+pub(super) fn network(lines: &mut Lines<'_>, resolved: &Resolved) -> io::Result<()> {
+    let Some(front) = &resolved.network else { return Ok(()) };
+    let sentences = front.sentences();
+    for (index, sentence) in sentences.iter().enumerate() {
+        if index == 0 { lines.item("Network", sentence)? } else { lines.more(sentence)? }
+    }
+    Ok(())
 }
 
 /// The first candidates as a table.

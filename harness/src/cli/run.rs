@@ -10,7 +10,7 @@ use clap::{CommandFactory, Parser, Subcommand};
 use super::session::{print_problems, to_stdout};
 use super::{
     Answer, CharacteriseArguments, ChooseArguments, CompareArguments, EmitArguments, Failure, GlobalOptions,
-    LimitArguments, ProveArguments, ReplayArguments, Session, StudyArguments,
+    LimitArguments, NetworkArguments, ProveArguments, ReplayArguments, Session, StudyArguments,
 };
 use crate::problem::Problem;
 
@@ -39,6 +39,7 @@ enum Command {
     Limit(LimitArguments),
     Compare(CompareArguments),
     Replay(ReplayArguments),
+    Network(NetworkArguments),
     Emit(EmitArguments),
 }
 
@@ -52,6 +53,7 @@ impl Command {
             Self::Limit(_) => "limit",
             Self::Compare(_) => "compare",
             Self::Replay(_) => "replay",
+            Self::Network(_) => "network",
             Self::Emit(_) => "emit",
         }
     }
@@ -65,6 +67,7 @@ impl Command {
             Self::Limit(arguments) => arguments.run(session),
             Self::Compare(arguments) => arguments.run(session),
             Self::Replay(arguments) => arguments.run(session),
+            Self::Network(arguments) => arguments.run(session),
             Self::Emit(arguments) => arguments.run(session),
         }
     }

@@ -43,6 +43,7 @@ fn help_examples_of_every_command_parse() {
     examples_parse::<LimitArguments>("limit", LimitArguments::EXAMPLES);
     examples_parse::<CompareArguments>("compare", CompareArguments::EXAMPLES);
     examples_parse::<ReplayArguments>("replay", ReplayArguments::EXAMPLES);
+    examples_parse::<NetworkArguments>("network", NetworkArguments::EXAMPLES);
     examples_parse::<EmitArguments>("emit", EmitArguments::EXAMPLES);
 }
 
@@ -58,6 +59,7 @@ fn help_of_every_command_is_consistent() {
     check::<LimitArguments>("limit");
     check::<CompareArguments>("compare");
     check::<ReplayArguments>("replay");
+    check::<NetworkArguments>("network");
     check::<EmitArguments>("emit");
 }
 

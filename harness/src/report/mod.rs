@@ -3,6 +3,8 @@
 pub mod apart;
 pub mod clock_plot;
 pub mod json;
+pub mod network;
+pub mod si;
 pub mod state_diagram;
 pub mod timing;
 pub mod witness;
