@@ -157,15 +157,22 @@ impl Contact {
         dice: &mut Dice,
     ) {
         let lasts = self.chatter_ns(chatter, actuation, done);
-        let mut now = touches.last().map_or(0, |touch| touch.at_ns);
-        let until = now.saturating_add(dice.draw(lasts));
-        while now < until {
+        let closed = touches.last().map_or(0, |touch| touch.at_ns);
+        let until = closed.saturating_add(dice.draw(lasts));
+        // The surfaces strike well before they slide or lift.
+        let mut now = closed;
+        loop {
+            now = now.saturating_add(dice.draw(chatter.step_ns).max(1));
+            if now >= until {
+                break;
+            }
             let apart = dice.draw(chatter.apart_permille).min(999);
             // Below 1000, so it fits.
             touches.push(Touch { at_ns: now, apart_permille: apart as u16 });
-            now = now.saturating_add(dice.draw(chatter.step_ns).max(1)).min(until);
         }
-        touches.push(Touch { at_ns: now, apart_permille: 0 });
+        if until > closed {
+            touches.push(Touch { at_ns: until, apart_permille: 0 });
+        }
     }
 
     fn chatter_ns(&self, chatter: &Chatter, actuation: Actuation, done: u64) -> Between {
