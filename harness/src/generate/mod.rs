@@ -7,6 +7,7 @@ mod arithmetic;
 pub mod contact;
 mod dice;
 pub mod disturbance;
+pub mod file;
 mod kinds;
 mod line;
 pub mod panel;

@@ -45,11 +45,11 @@
 mod check;
 mod options;
 mod pair;
-mod read;
+pub(crate) mod read;
 mod resolve;
-mod section;
+pub(crate) mod section;
 mod source;
-mod words;
+pub(crate) mod words;
 
 #[cfg(test)]
 mod tests;
