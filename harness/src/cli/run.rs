@@ -9,8 +9,8 @@ use clap::{CommandFactory, Parser, Subcommand};
 
 use super::session::{print_problems, to_stdout};
 use super::{
-    Answer, CharacteriseArguments, ChooseArguments, EmitArguments, Failure, GlobalOptions, ProveArguments,
-    ReplayArguments, Session, StudyArguments,
+    Answer, CharacteriseArguments, ChooseArguments, EmitArguments, Failure, GenerateArguments, GlobalOptions,
+    ProveArguments, ReplayArguments, Session, StudyArguments,
 };
 use crate::problem::Problem;
 
@@ -37,6 +37,7 @@ enum Command {
     Choose(ChooseArguments),
     Prove(ProveArguments),
     Replay(ReplayArguments),
+    Generate(GenerateArguments),
     Emit(EmitArguments),
 }
 
@@ -48,6 +49,7 @@ impl Command {
             Self::Choose(_) => "choose",
             Self::Prove(_) => "prove",
             Self::Replay(_) => "replay",
+            Self::Generate(_) => "generate",
             Self::Emit(_) => "emit",
         }
     }
@@ -59,6 +61,7 @@ impl Command {
             Self::Choose(arguments) => arguments.run(session),
             Self::Prove(arguments) => arguments.run(session),
             Self::Replay(arguments) => arguments.run(session),
+            Self::Generate(arguments) => arguments.run(session),
             Self::Emit(arguments) => arguments.run(session),
         }
     }

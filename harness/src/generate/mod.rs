@@ -17,6 +17,8 @@ pub mod preset;
 pub mod routine;
 pub mod scenario;
 pub mod stage;
+pub mod truth_file;
+mod write;
 
 pub use contact::{Bounce, ContactModel, SecondBurst, flight_times};
 pub use dice::{Between, Dice};
@@ -28,3 +30,5 @@ pub use preset::{Measured, Preset, Source, Standing};
 pub use routine::{Habit, Routine};
 pub use scenario::{Generated, Noise, Scenario};
 pub use stage::InputStage;
+pub use truth_file::{TruthRow, changes_of, parse_truth, read_truth, write_truth};
+pub use write::{write_levels_csv, write_volts_csv};
