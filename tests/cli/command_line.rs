@@ -5,6 +5,7 @@ mod bad_recording;
 mod bad_requirement;
 mod bench;
 mod choose_emit;
+mod generate;
 mod prove;
 mod replay;
 mod study;
