@@ -47,7 +47,7 @@ pub(super) fn decayed(value: i64, elapsed: u64, constant: u64) -> i64 {
         }
     }
     // A magnitude of 63 bits times a factor of at most one, shifted back, fits again.
-    let left = (u128::from(value.unsigned_abs()) * (factor >> whole) >> 62) as i64;
+    let left = ((u128::from(value.unsigned_abs()) * (factor >> whole)) >> 62) as i64;
     if value < 0 { -left } else { left }
 }
 
@@ -75,7 +75,7 @@ pub(super) fn time_to_fall(constant: u64, from: u64, to: u64) -> u64 {
         return u64::MAX;
     }
     // Below 64 * 2^62; the shift keeps the products within 128 bits.
-    let ratio = ((log2(from) - log2(to)) >> 22) * (LN_2 >> 22) >> 40;
+    let ratio = (((log2(from) - log2(to)) >> 22) * (LN_2 >> 22)) >> 40;
     let product = (ratio >> 8).saturating_mul(u128::from(constant));
     u64::try_from(product.div_ceil(1 << 32)).unwrap_or(u64::MAX)
 }
@@ -94,7 +94,8 @@ pub(super) const SINE: [i64; STEPS_A_TURN] = {
         halvings += 1;
     }
     let sine = (ONE * ONE - cosine * cosine).isqrt();
-    let (cosine, mut last, mut now) = (cosine as i128, 0_i128, sine as i128);
+    // Both are at most 2^62.
+    let (cosine, mut last, mut now) = (cosine.cast_signed(), 0_i128, sine.cast_signed());
     let mut table = [0; STEPS_A_TURN];
     let mut step = 1;
     while step < STEPS_A_TURN {

@@ -61,7 +61,7 @@ const SCENARIO: FileSort = FileSort {
 };
 
 /// The most operations of one scenario: more would not fit into memory.
-pub const MOST_OPERATIONS: u64 = 10_000_000;
+pub const MOST_OPERATIONS: u64 = 2_000_000;
 
 /// Reads a scenario file; `seed` stands over the one in the file.
 ///

@@ -146,7 +146,7 @@ impl Pickup {
                 let height = |step: u64| {
                     let sine = SINE[((first + step) % STEPS_A_TURN as u64) as usize];
                     // Below the amplitude in size.
-                    (i128::from(peak_uv) * i128::from(sine) >> 30) as i64
+                    ((i128::from(peak_uv) * i128::from(sine)) >> 30) as i64
                 };
                 (0..steps).map(|step| (at(step), height(step))).chain([(at(steps), 0)]).collect()
             }

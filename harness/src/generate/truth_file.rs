@@ -218,10 +218,12 @@ mod tests {
         let vcd = bytes(|mut out| write_vcd(&mut out, &named, "invented"));
         let levels = bytes(|out| write_levels_csv(out, &made.lines));
         let volts = bytes(|out| write_volts_csv(out, &made.lines));
-        let mut options = ReadOptions::default();
-        options.resolution_ns = Some(1);
-        options.channel = Some("knob.b".to_owned());
-        options.polarity = Polarity::closed_is(Level::High);
+        let mut options = ReadOptions {
+            resolution_ns: Some(1),
+            channel: Some("knob.b".to_owned()),
+            polarity: Polarity::closed_is(Level::High),
+            ..ReadOptions::default()
+        };
         let expected = &made.lines[2].trace;
         assert!(read_bytes("a.vcd", &vcd, &options).unwrap().trace == *expected);
         assert!(read_bytes("a.csv", &levels, &options).unwrap().trace == *expected);

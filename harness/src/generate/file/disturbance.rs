@@ -36,12 +36,15 @@ fn pickup(reader: &mut Reader, section: &mut Section<'_>, kind: &str) -> Option<
         "discharge" => Pickup::Discharge { peak_uv: peak(reader, section)? },
         "mains" => {
             let cycle = reader.quantity::<TickPeriod>(section, "frequency");
-            let cycles = count(reader, section, "cycles", Between(2, 10));
-            Pickup::Mains {
-                cycle_ns: cycle.map_or(20_000_000, |cycle| cycle.value.nearest_ns()).clamp(64, 1_000_000_000),
-                cycles,
-                peak_uv: peak(reader, section)?,
+            let cycle_ns = cycle.as_ref().map_or(20_000_000, |cycle| cycle.value.nearest_ns());
+            if let Some(place) = cycle.and_then(|cycle| cycle.origin.span())
+                && !(1_000_000..=1_000_000_000).contains(&cycle_ns)
+            {
+                let help = "write frequency = \"50 Hz\", or any from 1 Hz to 1 kHz";
+                reader.problem(place, "this is no frequency of a supply", help);
             }
+            let cycles = count(reader, section, "cycles", Between(2, 10));
+            Pickup::Mains { cycle_ns, cycles, peak_uv: peak(reader, section)? }
         }
         _ => {
             let width_ns = between(reader, section, "width").unwrap_or(Between(1_000_000, 10_000_000));
@@ -110,6 +113,9 @@ fn count(reader: &mut Reader, section: &mut Section<'_>, key: &'static str, defa
     }
 }
 
+/// Disturbances that come more often than this would fill the memory before they fill a recording.
+const SHORTEST_PERIOD_NS: u64 = 1_000_000;
+
 fn timing(reader: &mut Reader, section: &mut Section<'_>, kind: &str) -> Option<Timing> {
     let span = section.span();
     let every = between(reader, section, "every");
@@ -119,6 +125,14 @@ fn timing(reader: &mut Reader, section: &mut Section<'_>, kind: &str) -> Option<
     if every.is_some() && (share.is_some() || after_ns.is_some()) {
         let help = "write every for a clock of its own, or share for a share of the dwells, not both";
         reader.problem(span, "this disturbance comes at two different times", help);
+        return None;
+    }
+    if let Some(Between(least, _)) = every
+        && least < SHORTEST_PERIOD_NS
+    {
+        let place = section.get("every").map_or(span, |value| value.span());
+        let message = "a disturbance more often than once a millisecond never lets the line rest";
+        reader.problem(place, message, "write every = \"1 ms\" or longer");
         return None;
     }
     match (every, share) {

@@ -91,7 +91,7 @@ fn scenario_problems_are_all_told_with_their_place_and_what_to_write() {
             "panel.toml:3:10: \"tactil\" is not a preset; write \"tactile\"",
             "panel.toml:6:11: no contact is called \"b\"; name one of the contacts of this file, or leave contact out to mean all",
             "panel.toml:7:9: \"tap\" is not a habit; write \"taps\"",
-            "panel.toml:8:9: \"60\" is not a number for count; write a whole number from 1 to 10000000, without quotation marks",
+            "panel.toml:8:9: \"60\" is not a number for count; write a whole number from 1 to 2000000, without quotation marks",
         ],
     );
     refused(
@@ -101,6 +101,13 @@ fn scenario_problems_are_all_told_with_their_place_and_what_to_write() {
             "panel.toml:8:1: this disturbance has no peak; write peak = \"4 V\": what reaches the line",
             "panel.toml:8:1: nothing says when this disturbance comes; write every = [\"1 s\", \"3 s\"], or share = \"25 %\" of the dwells",
             "panel.toml:9:1: unknown key \"paek\" in [[disturbance]]; write peak",
+        ],
+    );
+    refused(
+        "[[contact]]\nname = \"a\"\npreset = \"reed\"\n[[operation]]\ncount = 3\n[[disturbance]]\nkind = \"mains\"\nfrequency = \"0.1 Hz\"\npeak = \"3 V\"\nevery = \"0 ms\"\n",
+        &[
+            "panel.toml:8:13: this is no frequency of a supply; write frequency = \"50 Hz\", or any from 1 Hz to 1 kHz",
+            "panel.toml:10:9: a disturbance more often than once a millisecond never lets the line rest; write every = \"1 ms\" or longer",
         ],
     );
     refused(
