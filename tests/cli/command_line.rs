@@ -8,6 +8,7 @@ mod choose_emit;
 mod compare;
 mod limit;
 mod network;
+mod generate;
 mod prove;
 mod replay;
 mod study;

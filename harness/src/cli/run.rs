@@ -9,8 +9,9 @@ use clap::{CommandFactory, Parser, Subcommand};
 
 use super::session::{print_problems, to_stdout};
 use super::{
-    Answer, CharacteriseArguments, ChooseArguments, CompareArguments, EmitArguments, Failure, GlobalOptions,
-    LimitArguments, NetworkArguments, ProveArguments, ReplayArguments, Session, StudyArguments,
+    Answer, CharacteriseArguments, ChooseArguments, CompareArguments, EmitArguments, Failure,
+    GenerateArguments, GlobalOptions, LimitArguments, NetworkArguments, ProveArguments, ReplayArguments,
+    Session, StudyArguments,
 };
 use crate::problem::Problem;
 
@@ -40,6 +41,7 @@ enum Command {
     Compare(CompareArguments),
     Replay(ReplayArguments),
     Network(NetworkArguments),
+    Generate(GenerateArguments),
     Emit(EmitArguments),
 }
 
@@ -54,6 +56,7 @@ impl Command {
             Self::Compare(_) => "compare",
             Self::Replay(_) => "replay",
             Self::Network(_) => "network",
+            Self::Generate(_) => "generate",
             Self::Emit(_) => "emit",
         }
     }
@@ -68,6 +71,7 @@ impl Command {
             Self::Compare(arguments) => arguments.run(session),
             Self::Replay(arguments) => arguments.run(session),
             Self::Network(arguments) => arguments.run(session),
+            Self::Generate(arguments) => arguments.run(session),
             Self::Emit(arguments) => arguments.run(session),
         }
     }
