@@ -66,14 +66,15 @@ pub(super) fn update(session: &mut Session) {
     }
 }
 
-/// Makes sure of targets, emulators and the C compiler.
+/// Makes sure of targets, emulators and the C compilers.
 fn ready(session: &mut Session) -> bool {
     let mut ready = true;
     for machine in ALL {
         ready &= session.expect(install::target(machine.target));
         ready &= session.expect(machine.installed());
+        ready &= session.expect(install::program(&machine.tool("gcc"), machine.tools_package));
     }
-    ready & session.expect(install::program("arm-none-eabi-gcc", "gcc-arm-none-eabi"))
+    ready
 }
 
 /// A cargo command for a workspace below the root.
