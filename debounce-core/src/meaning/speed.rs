@@ -26,6 +26,7 @@ use crate::machine::Machine;
 ///
 /// # State
 /// 4 bytes; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in `step`. A gate of 0 or over 32767 ticks panics in [`new`](Self::new), in a constant at compile time.

@@ -51,6 +51,7 @@ impl Burst {
 ///
 /// # State
 /// 8 bytes; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in `step`. A rest of 0 panics in [`new`](Self::new), in a constant at compile time.

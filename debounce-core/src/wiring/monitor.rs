@@ -70,6 +70,7 @@ pub enum Outside {
 ///
 /// # State
 /// At most 44 bytes; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in `step`. [`new`](Self::new) panics on an envelope that is refused, in a constant at compile time.

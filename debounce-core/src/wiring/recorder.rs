@@ -75,6 +75,7 @@ pub struct RecordedRun {
 ///
 /// # State
 /// `2 N` bytes, two words and 8 bytes; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never. `N` below 2 does not compile.

@@ -2,10 +2,10 @@
 
 use debounce_core::{
     Bank, Bursts, Change, Changeover, ContactPair, Delivery, Detents, Envelope, Gesture, GestureTicks,
-    Hysteresis, Integrator, KeyDiodes, Ladder, LadderParts, LadderReading, Machine, Mailbox, Matrix,
-    MatrixReport, Monitor, PairKind, PairPositions, Phases, Position, PulseCounter, PulseLimits, Quadrature,
-    QuadratureEvent, Recorder, RecorderMode, Resolution, RestPhases, Speed, Starting, StartingBank, Throws,
-    Wear,
+    Heartbeat, Hysteresis, Integrator, KeyDiodes, Ladder, LadderParts, LadderReading, Machine, Mailbox,
+    Matrix, MatrixReport, Monitor, PairKind, PairPositions, Phases, Position, PulseCounter, PulseLimits,
+    Quadrature, QuadratureEvent, Recorder, RecorderMode, Resolution, RestPhases, Speed, Starting,
+    StartingBank, Tally, Throws, Wear,
 };
 use rig::Counter;
 
@@ -138,6 +138,18 @@ machines! {
         |said| said.is_some();
     monitor: Position, <Monitor as Machine>::State = MONITOR.power_up(),
         |state, sample| MONITOR.step(state, sample), |said| said.is_some();
+    heartbeat_and_tally: Position, (u32, <Heartbeat as Machine>::State, Tally) =
+        (0, Heartbeat::POWER_UP, Tally::NEW),
+        |state, sample| {
+            // The count of ticks goes on while the line is open.
+            state.0 = state.0.wrapping_add(u32::from(!sample.is_closed()));
+            let fault = Heartbeat::new(1).step(&mut state.1, state.0);
+            if let Some(fault) = fault {
+                state.2.count_tick_fault(fault);
+            }
+            fault
+        },
+        |said| said.is_some();
     recorder_of_64_runs: Position, Recorder<64> = Recorder::new(RecorderMode::Ring),
         |state, sample| state.sample(sample), |said| { let () = said; false };
     mailbox_post_and_take: Position, () = (),
