@@ -202,7 +202,7 @@ four columns without diodes, in banks of 2 bits; an encoder is turned a quarter 
 of 100 ticks; the mailbox gets an event at every closed sample and is emptied at every tick, critical sections included.
 
 The plain C beside them is a yardstick of the same published methods, compiled by GCC with `-O2` into
-the same image. Flash is that of the step as a function of its own.
+the same image. Flash is that of the step as a function of its own, without what it calls in turn.
 
 ";
 
