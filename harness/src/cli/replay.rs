@@ -8,6 +8,7 @@ use serde_json::{Value, json};
 
 use super::input::Input;
 use super::lines::Lines;
+use super::recorded::failures;
 use super::recordings::RequirementInput;
 use super::{Answer, Failure, Outcome, Session};
 use crate::characterise::Burst;
@@ -15,10 +16,11 @@ use crate::law_text::LawParameters;
 use crate::logic::Logic;
 use crate::problem::Problem;
 use crate::prove::{Witness, WitnessTick};
+use crate::quantity::Share;
 use crate::quantity::TickPeriod;
-use crate::replay::{ClockMeasurement, Draws, PreparedClock};
+use crate::replay::{ClockMeasurement, Draws, Failures, PreparedClock};
 use crate::report::timing::TimingDiagram;
-use crate::report::words;
+use crate::report::{characterised, words};
 use crate::sample::SampleClock;
 use crate::study::{Observed, measured};
 use crate::with_law;
@@ -78,10 +80,12 @@ impl ReplayArguments {
                 let prepared = PreparedClock::new(&one.recording.trace, &one.truth, &clock, draws)
                     .map_err(|error| Problem::told(format!("{}: {error}", one.name)))?;
                 let measured = with_law!(&logic, law => prepared.measure(law));
-                runs.push(Run { recording, tick, clock, measured });
+                let failures = Failures::of(&measured.nominal, &one.truth);
+                runs.push(Run { recording, tick, clock, measured, failures });
             }
         }
-        Ok(Box::new(Replayed { logic, law: self.law, observed: input.observed, runs }))
+        let confidence = resolved.confidence.value;
+        Ok(Box::new(Replayed { logic, law: self.law, observed: input.observed, runs, confidence }))
     }
 }
 
@@ -91,6 +95,7 @@ struct Run {
     tick: TickPeriod,
     clock: TickClock,
     measured: ClockMeasurement,
+    failures: Failures,
 }
 
 struct Replayed {
@@ -98,6 +103,7 @@ struct Replayed {
     law: LawParameters,
     observed: Vec<Observed>,
     runs: Vec<Run>,
+    confidence: Share,
 }
 
 impl Answer for Replayed {
@@ -128,6 +134,7 @@ impl Answer for Replayed {
                 "recording": self.observed[run.recording].name,
                 "tick": run.tick.to_string(),
                 "measured": run.measured,
+                "failures": characterised::failures(&run.failures, self.confidence),
             })
         };
         json!({ "law": self.law.to_string(), "runs": self.runs.iter().map(run).collect::<Value>() })
@@ -185,6 +192,9 @@ impl Replayed {
                 words::count(missed, "operation"),
                 words::count(places, "place")
             ))?;
+        }
+        if let Some(text) = failures(&run.failures, self.confidence) {
+            lines.item("Rate", &text)?;
         }
         if let Some(drawn) = &run.measured.drawn {
             lines.more(&format!(
