@@ -11,6 +11,7 @@ mod figures;
 mod gap;
 mod histogram;
 pub mod independence;
+mod lengths;
 mod operations;
 mod quantile;
 mod resting;

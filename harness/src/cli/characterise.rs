@@ -40,12 +40,10 @@ impl CharacteriseArguments {
     /// Shown below the options.
     pub const EXAMPLES: &'static str = "\
 Examples:
-  One recording with a single channel:
-    harness characterise gate.vcd
+  One recording with a single channel, every operation listed:
+    harness characterise gate.vcd --operations
   An oscilloscope export in volts:
     harness characterise gate.csv --threshold-low \"0.8 V\" --threshold-high \"2.0 V\"
-  Every operation with its bounce, edges and dwell:
-    harness characterise gate.vcd --operations
   Several recordings, for a program:
     harness characterise day1.vcd day2.vcd --channel top.gate --confidence \"99 %\" --json";
 }
