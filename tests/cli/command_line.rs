@@ -4,6 +4,7 @@ mod bad_output;
 mod bad_recording;
 mod bad_requirement;
 mod bench;
+mod characterise;
 mod choose_emit;
 mod prove;
 mod replay;

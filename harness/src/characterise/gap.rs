@@ -86,24 +86,24 @@ pub(super) fn find(edges: &[u64], start_ns: u64, end_ns: u64) -> Gap {
         };
         FLOORS_NS.iter().find_map(likeliest).map(|stretch| unclear(edges, stretch))
     };
-    if let Some(gap) =
-        clear_one().or_else(unclear_one).or_else(|| clear(&lengths, FLOOR_NS, edges, is_possible))
-    {
-        return gap;
-    }
     let shortest = lengths.bins().next().map(|bin| bin.least.max(FLOOR_NS));
-    match (emptiest(&lengths, FLOOR_NS).first(), shortest) {
-        // Nothing but rest: take a gap well below the shortest.
-        (_, Some(shortest)) if shortest / LEAST_RATIO >= FLOOR_NS && shortest >= SHORTEST_OPERATION_NS => {
-            Gap { ns: middle(FLOOR_NS, shortest), origin: GapOrigin::NoBursts { shortest_run_ns: shortest } }
-        }
-        (Some(&stretch), _) => unclear(edges, stretch),
-        (None, shortest) => {
+    let nothing_but_rest = || {
+        let shortest_run_ns = shortest.filter(|&ns| ns >= SHORTEST_OPERATION_NS)?;
+        // A gap well below the shortest.
+        let ns = middle(FLOOR_NS, shortest_run_ns);
+        Some(Gap { ns, origin: GapOrigin::NoBursts { shortest_run_ns } })
+    };
+    let any = || emptiest(&lengths, FLOOR_NS).first().map(|&stretch| unclear(edges, stretch));
+    clear_one()
+        .or_else(nothing_but_rest)
+        .or_else(unclear_one)
+        .or_else(|| clear(&lengths, FLOOR_NS, edges, is_possible))
+        .or_else(any)
+        .unwrap_or_else(|| {
             let shortest_run_ns = shortest.unwrap_or(end_ns - start_ns);
             let ns = middle(FLOOR_NS.min(shortest_run_ns), shortest_run_ns).max(1);
             Gap { ns, origin: GapOrigin::NoBursts { shortest_run_ns } }
-        }
-    }
+        })
 }
 
 /// The widest stretch that is clear enough and whose bursts are `plausible`.

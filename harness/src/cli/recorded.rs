@@ -70,8 +70,14 @@ pub(super) fn claims(lines: &mut Lines<'_>, claims: &Claims) -> io::Result<()> {
         "Claim",
         &format!("with {confidence} confidence, were they independent: {}", parts.join(", and ")),
     )?;
-    let designs: Vec<String> =
-        both.into_iter().map(|change| design(change, claims.design.of(change))).collect();
+    let of = |change| claims.design.of(change);
+    if let [Some(margin), Some(_)] = both.map(|change| of(change).margin) {
+        let [make, break_] = both.map(|change| words::at_most(of(change).ns));
+        let text =
+            format!("{make} after a make, {break_} after a break: those claims with a margin of {margin}");
+        return lines.item("Design", &text);
+    }
+    let designs: Vec<String> = both.into_iter().map(|change| design(change, of(change))).collect();
     lines.item("Design", &designs.join("; "))
 }
 
@@ -100,8 +106,7 @@ pub(super) fn failures(found: &Failures, confidence: Share) -> Option<String> {
     let share = tolerance::Share::try_new(confidence.fraction()).ok()?;
     let (missed, doubled) = found.rates_at_most(share).ok()?;
     Some(format!(
-        "{} missed and {} doubled of {} changes; with {confidence} confidence, were they independent, at most {} of \
-         all are missed and {} doubled",
+        "{} missed, {} doubled of {} changes; with {confidence} confidence at most {} of all missed, {} doubled",
         found.missed,
         found.doubled,
         found.changes,
