@@ -9,10 +9,11 @@ use serde_json::{Value, json};
 use super::input::Input;
 use super::lines::{Lines, strong};
 use super::preference::PreferenceOption;
+use super::recorded::claims;
 use super::recordings::RequirementInput;
 use super::study::failure;
 use super::{Answer, Failure, Outcome, Session};
-use crate::report::{json as report, words};
+use crate::report::{characterised, json as report, words};
 use crate::requirement::Origin;
 use crate::study::Study;
 
@@ -55,6 +56,7 @@ impl ChooseArguments {
         let input = Input::with_or_without_recordings(&self.input, session)?;
         let study =
             Study::of(input.observed, &input.requirement, self.preference.into(), |_| {}).map_err(failure)?;
+        study.cautions().iter().for_each(|caution| session.warn(&caution.to_string()));
         Ok(Box::new(Chosen { study, list: self.list }))
     }
 }
@@ -75,6 +77,9 @@ impl Answer for Chosen {
         let mut lines = Lines::new(out);
         lines
             .item("Envelope", &format!("the contact {}", words::envelope(&self.study.physical).join("; ")))?;
+        if !self.study.observed.is_empty() {
+            claims(&mut lines, &self.study.claims)?;
+        }
         for row in self.study.resolved.rows() {
             if !matches!(row.origin, Origin::Given { .. } | Origin::Option(_)) {
                 lines.item("Assumed", &format!("{} = {} ({})", row.key, row.text, row.origin))?;
@@ -105,6 +110,7 @@ impl Answer for Chosen {
         json!({
             "requirement": report::requirement(&self.study.resolved),
             "envelope": report::physical(&self.study.physical),
+            "claims": characterised::claims(&self.study.claims),
             "choice": report::ranking(&self.study.ranking),
         })
     }
