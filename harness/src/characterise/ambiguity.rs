@@ -141,10 +141,10 @@ pub(super) fn inside_change(edges: &[u64], gap_ns: u64) -> Option<Ambiguity> {
     {
         return Some(doubt(there, Doubt::OneOrSeveralOperations));
     }
-    if let Some(longest) = (0..runs).step_by(2).max_by_key(|&i| run(edges, i)) {
-        if near(longest) {
-            return Some(doubt(longest, Doubt::SecondBurstOrDisturbance));
-        }
+    if let Some(longest) = (0..runs).step_by(2).max_by_key(|&i| run(edges, i))
+        && near(longest)
+    {
+        return Some(doubt(longest, Doubt::SecondBurstOrDisturbance));
     }
     if let Some(longest) = (1..runs).step_by(2).max_by_key(|&i| run(edges, i))
         && near(longest)

@@ -74,14 +74,14 @@ mod tests {
         let runs: Vec<(Position, i64, i64)> = found
             .runs
             .iter()
-            .map(|run| (run.position, run.from_ns / MS as i64, run.until_ns / MS as i64))
+            .map(|run| (run.position, run.from_ns / 1_000_000, run.until_ns / 1_000_000))
             .collect();
         assert_eq!(runs, [(Closed, -2, 0), (Open, 0, 1), (Closed, 1, 2), (Open, 2, 5)]);
         // The recording ends before a window that is too wide.
         let wide = aligned(&trace, &segmentation, 0, u64::MAX, u64::MAX).unwrap();
         assert_eq!(wide.runs.len(), 7);
-        assert_eq!(wide.runs[0].from_ns, -100 * MS as i64);
-        assert_eq!(wide.runs[6].until_ns, 300 * MS as i64);
+        assert_eq!(wide.runs[0].from_ns, -100_000_000);
+        assert_eq!(wide.runs[6].until_ns, 300_000_000);
         assert_eq!(aligned(&trace, &segmentation, 2, 0, 0), None);
     }
 }

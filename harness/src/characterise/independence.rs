@@ -153,11 +153,11 @@ impl TrendTest {
         let n = values.len() as f64;
         let mut sorted = values.to_vec();
         let falling = inversions(&mut sorted, &mut vec![0; values.len()]);
-        let pairs = |n: u64| (u128::from(n) * u128::from(n.saturating_sub(1)) / 2) as i128;
+        let pairs = |n: u64| (u128::from(n) * u128::from(n.saturating_sub(1)) / 2).cast_signed();
         let groups = || sorted.chunk_by(|a, b| a == b).map(|group| group.len() as u64);
         let alike: i128 = groups().map(pairs).sum();
         let all = pairs(values.len() as u64);
-        let s = all - alike - 2 * falling as i128;
+        let s = all - alike - 2 * falling.cast_signed();
         let spread = |t: f64| t * (t - 1.0) * (2.0 * t + 5.0);
         let variance = (spread(n) - groups().map(|t| spread(t as f64)).sum::<f64>()) / 18.0;
         if variance <= 0.0 {
