@@ -10,6 +10,7 @@ use serde_json::{Value, json};
 use super::input::Input;
 use super::lines::Lines;
 use super::logic_name::{LogicName, OutputOf, Runnable};
+use super::recorded::failures;
 use super::recordings::RequirementInput;
 use super::{Answer, Failure, Outcome, Session};
 use crate::characterise::Burst;
@@ -17,10 +18,11 @@ use crate::generate::{changes_of, read_truth};
 use crate::nearest::nearest_scoped;
 use crate::problem::Problem;
 use crate::prove::{Witness, WitnessTick};
+use crate::quantity::Share;
 use crate::quantity::TickPeriod;
-use crate::replay::{ClockMeasurement, Draws, PreparedClock};
+use crate::replay::{ClockMeasurement, Draws, Failures, PreparedClock};
 use crate::report::timing::TimingDiagram;
-use crate::report::words;
+use crate::report::{characterised, words};
 use crate::sample::SampleClock;
 use crate::study::{Observed, measured};
 use crate::truth::check_truth;
@@ -93,10 +95,12 @@ impl ReplayArguments {
                     Runnable::Law(logic) => with_law!(logic, law => prepared.measure(law)),
                     Runnable::Table(machine) => prepared.measure(machine),
                 };
-                runs.push(Run { recording, tick, clock, measured });
+                let failures = Failures::of(&measured.nominal, &one.truth);
+                runs.push(Run { recording, tick, clock, measured, failures });
             }
         }
-        Ok(Box::new(Replayed { logic, law: self.law.clone(), observed: input.observed, runs }))
+        let confidence = resolved.confidence.value;
+        Ok(Box::new(Replayed { logic, law: self.law.clone(), observed: input.observed, runs, confidence }))
     }
 }
 
@@ -130,6 +134,7 @@ struct Run {
     tick: TickPeriod,
     clock: TickClock,
     measured: ClockMeasurement,
+    failures: Failures,
 }
 
 struct Replayed {
@@ -137,6 +142,7 @@ struct Replayed {
     law: LogicName,
     observed: Vec<Observed>,
     runs: Vec<Run>,
+    confidence: Share,
 }
 
 impl Answer for Replayed {
@@ -167,6 +173,7 @@ impl Answer for Replayed {
                 "recording": self.observed[run.recording].name,
                 "tick": run.tick.to_string(),
                 "measured": run.measured,
+                "failures": characterised::failures(&run.failures, self.confidence),
             })
         };
         json!({ "law": self.law.to_string(), "runs": self.runs.iter().map(run).collect::<Value>() })
@@ -224,6 +231,9 @@ impl Replayed {
                 words::count(missed, "operation"),
                 words::count(places, "place")
             ))?;
+        }
+        if let Some(text) = failures(&run.failures, self.confidence) {
+            lines.item("Rate", &text)?;
         }
         if let Some(drawn) = &run.measured.drawn {
             lines.more(&format!(

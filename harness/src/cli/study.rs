@@ -58,6 +58,9 @@ impl StudyArguments {
         let study = Study::of(input.observed, &input.requirement, self.preference.into(), |_| bar.inc(1))
             .map_err(failure)?;
         bar.finish_and_clear();
+        for caution in study.cautions() {
+            session.warn(&caution.to_string());
+        }
         let written = match folder {
             Some(folder) => write(&study, folder)?,
             None => Vec::new(),
