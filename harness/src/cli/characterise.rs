@@ -1,6 +1,7 @@
 //! `harness characterise`: what the recordings show of the contact.
 
 use std::io::{self, Write};
+use std::path::PathBuf;
 
 use clap::Args;
 use debounce_core::{Change, Position};
@@ -10,9 +11,10 @@ use super::input::Input;
 use super::lines::Lines;
 use super::recorded::{claims, recorded};
 use super::recordings::RequirementInput;
+use super::report::{ReportOption, written};
 use super::{Answer, Failure, Outcome, Session};
 use crate::characterise::GapOrigin;
-use crate::report::{json as report, words};
+use crate::report::{html, json as report, words};
 use crate::requirement::Resolved;
 use crate::study::{Claim, Observed, measured};
 
@@ -28,6 +30,9 @@ pub struct CharacteriseArguments {
     /// Recordings and requirement.
     #[command(flatten)]
     pub input: RequirementInput,
+    /// The report.
+    #[command(flatten)]
+    pub report: ReportOption,
 }
 
 impl CharacteriseArguments {
@@ -46,8 +51,15 @@ impl CharacteriseArguments {
     /// Runs the command.
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let input = Input::with_recordings(&self.input, session)?;
+        let report = self.report.prepare()?;
         let resolved = input.requirement.fill_in(&measured(&input.observed))?;
-        Ok(Box::new(Characterised { observed: input.observed, resolved }))
+        let mut files_written = Vec::new();
+        if let Some(report) = report {
+            let origin = html::Origin { command: session.line().to_owned(), files: input.files()?, seeds: Vec::new() };
+            let found = html::Characterised { observed: &input.observed, resolved: &resolved };
+            files_written.push(report.write(&html::characterised(&found, &origin))?);
+        }
+        Ok(Box::new(Characterised { observed: input.observed, resolved, written: files_written }))
     }
 }
 
@@ -55,6 +67,7 @@ impl CharacteriseArguments {
 struct Characterised {
     observed: Vec<Observed>,
     resolved: Resolved,
+    written: Vec<PathBuf>,
 }
 
 impl Answer for Characterised {
@@ -67,7 +80,8 @@ impl Answer for Characterised {
         for one in &self.observed {
             figures(&mut lines, one)?;
         }
-        claims(&mut lines, &self.observed, &self.resolved)
+        claims(&mut lines, &self.observed, &self.resolved)?;
+        written(&mut lines, &self.written)
     }
 
     fn to_json(&self) -> Value {

@@ -1,6 +1,7 @@
 //! `harness choose`: ranks the candidates for a requirement.
 
 use std::io::{self, Write};
+use std::path::PathBuf;
 
 use clap::Args;
 use comfy_table::Table;
@@ -10,9 +11,10 @@ use super::input::Input;
 use super::lines::{Lines, strong};
 use super::preference::PreferenceOption;
 use super::recordings::RequirementInput;
+use super::report::{ReportOption, written};
 use super::study::failure;
 use super::{Answer, Failure, Outcome, Session};
-use crate::report::{json as report, words};
+use crate::report::{html, json as report, words};
 use crate::requirement::Origin;
 use crate::study::Study;
 
@@ -35,6 +37,9 @@ pub struct ChooseArguments {
     /// So many candidates are listed
     #[arg(long, value_name = "COUNT", default_value_t = 12)]
     pub list: usize,
+    /// The report.
+    #[command(flatten)]
+    pub report: ReportOption,
 }
 
 impl ChooseArguments {
@@ -53,9 +58,16 @@ impl ChooseArguments {
     /// Runs the command.
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let input = Input::with_or_without_recordings(&self.input, session)?;
+        let report = self.report.prepare()?;
+        let files = if report.is_some() { input.files()? } else { Vec::new() };
         let study =
             Study::of(input.observed, &input.requirement, self.preference.into(), |_| {}).map_err(failure)?;
-        Ok(Box::new(Chosen { study, list: self.list }))
+        let mut files_written = Vec::new();
+        if let Some(report) = report {
+            let origin = html::Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
+            files_written.push(report.write(&html::study(&study, false, &origin))?);
+        }
+        Ok(Box::new(Chosen { study, list: self.list, written: files_written }))
     }
 }
 
@@ -63,6 +75,7 @@ impl ChooseArguments {
 struct Chosen {
     study: Study,
     list: usize,
+    written: Vec<PathBuf>,
 }
 
 impl Answer for Chosen {
@@ -98,7 +111,8 @@ impl Answer for Chosen {
         }
         lines.plain("\n")?;
         lines.plain(&candidate_table(&self.study, self.list))?;
-        lines.plain("\n* no other candidate that holds beats it in delay, ticks a second and RAM together\n")
+        lines.plain("\n* no other candidate that holds beats it in delay, ticks a second and RAM together\n")?;
+        written(&mut lines, &self.written)
     }
 
     fn to_json(&self) -> Value {

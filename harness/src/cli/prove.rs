@@ -9,9 +9,11 @@ use debounce_core::{Change, Envelope, PerChange, Period, TickClock};
 use serde_json::{Value, json};
 
 use super::envelope_text::EnvelopeText;
-use super::input::Input;
+use super::input::{Input, source_file};
 use super::lines::{Lines, grouped, strong};
 use super::recordings::RequirementInput;
+use super::report::ReportOption;
+use super::shell::shell_word;
 use super::{Answer, Failure, Outcome, OutputFolder, Session, faults};
 use crate::choose::known_limit;
 use crate::emit::module_name;
@@ -24,6 +26,7 @@ use crate::machine::{
 use crate::problem::Problem;
 use crate::prove::{self, Contract, LawTable, Limits, Proof, prove_contract};
 use crate::quantity::TickPeriod;
+use crate::report::html::{self, Origin, SourceFile};
 use crate::report::state_diagram::state_diagram;
 use crate::report::timing::TimingDiagram;
 use crate::report::witness::write_witness;
@@ -64,6 +67,9 @@ pub struct ProveArguments {
     /// Where the machine behind the law is written, minimised; the ending says how: kiss2, csv, txt, dot, svg, rs
     #[arg(long, value_name = "FILE")]
     pub machine: Option<PathBuf>,
+    /// The report.
+    #[command(flatten)]
+    pub report: ReportOption,
 }
 
 /// What an output of a table belongs to.
@@ -120,7 +126,8 @@ impl ProveArguments {
     /// Runs the command.
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let logic = self.logic()?;
-        let (envelope, tick) = self.envelope(session)?;
+        let EnvelopeGiven { envelope, tick, caution, files } = self.envelope(session)?;
+        let report = self.report.prepare()?;
         let file = self.witness.as_deref().map(OutputFolder::of_file).transpose()?;
         let contract = self.contract.into();
         let limits = Limits::default();
@@ -141,6 +148,20 @@ impl ProveArguments {
             let mut files = folder.stage();
             files.add(&name, |out| write_witness(out, witness, period, &again))?;
             written.extend(files.commit()?);
+        }
+        if let Some(report) = report {
+            let origin = Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
+            let machine = &logic.machine;
+            let proved = html::Proved {
+                name: &logic.name,
+                machine,
+                envelope: &envelope,
+                proof: &proof,
+                limit,
+                tick,
+                caution,
+            };
+            written.push(report.write(&html::proof(&proved, &origin))?);
         }
         Ok(Box::new(Proved { logic, envelope, tick, proof, limit, written, again }))
     }
@@ -167,9 +188,12 @@ impl ProveArguments {
     }
 
     /// The envelope in samples, and the tick period where there is one.
-    fn envelope(&self, session: &Session) -> Result<(Envelope, Option<TickPeriod>), Failure> {
+    fn envelope(&self, session: &Session) -> Result<EnvelopeGiven, Failure> {
+        let table = self.table.iter().map(|path| source_file(path, "next-state table"));
+        let mut files = if self.report.is_wanted() { table.collect::<Result<_, _>>()? } else { Vec::new() };
         if let Some(EnvelopeText(envelope)) = self.envelope {
-            return Ok((envelope, self.tick_beside_envelope()?));
+            let tick = self.tick_beside_envelope()?;
+            return Ok(EnvelopeGiven { envelope, tick, caution: None, files });
         }
         if self.input.is_empty() {
             return Err(Problem::new("no envelope is given")
@@ -183,7 +207,10 @@ impl ProveArguments {
         let resolved = input.requirement.resolve(&measured(&input.observed))?;
         let tick = only(&resolved.ticks.value)?;
         let envelope = resolved.physical().in_ticks(&resolved.clock(tick)).map_err(Problem::told)?;
-        Ok((envelope, Some(tick)))
+        if self.report.is_wanted() {
+            files.extend(input.files()?);
+        }
+        Ok(EnvelopeGiven { envelope, tick: Some(tick), caution: resolved.caution(), files })
     }
 
     /// An envelope in ticks leaves nothing open but how long a tick is.
@@ -267,12 +294,12 @@ fn only(ticks: &[TickPeriod]) -> Result<TickPeriod, Problem> {
         .help(format!("a proof is for one tick period; choose one, such as --tick \"{example}\"")))
 }
 
-/// A word as a shell takes it: in single quotes where it holds anything but letters, digits and `._-/`.
-fn shell_word(text: &str) -> String {
-    if !text.is_empty() && text.chars().all(|letter| letter.is_alphanumeric() || "._-/".contains(letter)) {
-        return text.to_owned();
-    }
-    format!("'{}'", text.replace('\'', r"'\''"))
+/// An envelope with what came with it.
+struct EnvelopeGiven {
+    envelope: Envelope,
+    tick: Option<TickPeriod>,
+    caution: Option<&'static str>,
+    files: Vec<SourceFile>,
 }
 
 /// A logic with what it is called.

@@ -32,7 +32,7 @@ pub fn state_diagram(machine: &MachineTable, id: &str) -> Option<String> {
     if machine.len() > LARGEST_STATE_DIAGRAM {
         return None;
     }
-    let mut graph = VisualGraph::new(Orientation::LeftToRight);
+    let mut graph = VisualGraph::new(Orientation::TopToBottom);
     let look = StyleAttr::new(Color::fast("black"), 1, None, 0, LETTER_SIZE);
     let handles: Vec<_> = (0..machine.len())
         .map(|state| {
@@ -43,7 +43,7 @@ pub fn state_diagram(machine: &MachineTable, id: &str) -> Option<String> {
             graph.add_node(Element::create_with_properties(
                 shape,
                 look.clone(),
-                Orientation::LeftToRight,
+                Orientation::TopToBottom,
                 size,
                 class,
             ))
