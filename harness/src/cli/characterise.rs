@@ -55,7 +55,8 @@ impl CharacteriseArguments {
         let resolved = input.requirement.fill_in(&measured(&input.observed))?;
         let mut files_written = Vec::new();
         if let Some(report) = report {
-            let origin = html::Origin { command: session.line().to_owned(), files: input.files()?, seeds: Vec::new() };
+            let origin =
+                html::Origin { command: session.line().to_owned(), files: input.files()?, seeds: Vec::new() };
             let found = html::Characterised { observed: &input.observed, resolved: &resolved };
             files_written.push(report.write(&html::characterised(&found, &origin))?);
         }

@@ -111,7 +111,9 @@ impl Answer for Chosen {
         }
         lines.plain("\n")?;
         lines.plain(&candidate_table(&self.study, self.list))?;
-        lines.plain("\n* no other candidate that holds beats it in delay, ticks a second and RAM together\n")?;
+        lines.plain(
+            "\n* no other candidate that holds beats it in delay, ticks a second and RAM together\n",
+        )?;
         written(&mut lines, &self.written)
     }
 

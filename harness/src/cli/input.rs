@@ -96,8 +96,13 @@ impl Input {
 /// A file that was read, named by its contents.
 pub(super) fn source_file(path: &Path, role: &'static str) -> Result<SourceFile, Problem> {
     SourceFile::of_path(path, role).map_err(|error| {
-        let message = format!("a report names each file by its contents, and this one cannot be read again: {}", plain_reason(&error));
-        Problem::new(message).in_file(path).help("keep the recording as an ordinary file, or leave out --report")
+        let message = format!(
+            "a report names each file by its contents, and this one cannot be read again: {}",
+            plain_reason(&error)
+        );
+        Problem::new(message)
+            .in_file(path)
+            .help("keep the recording as an ordinary file, or leave out --report")
     })
 }
 

@@ -84,9 +84,11 @@ fn fact(what: &str, value: &str, class: &str) -> Markup {
 }
 
 fn from_the_limit(best: &Candidate) -> String {
-    let at_tick = best.times_limit.map_or("its distance from the limit at this tick is not known".to_owned(), |times| {
-        format!("its worst latency is {times:.2} times what any logic needs at this tick")
-    });
+    let at_tick = best
+        .times_limit
+        .map_or("its distance from the limit at this tick is not known".to_owned(), |times| {
+            format!("its worst latency is {times:.2} times what any logic needs at this tick")
+        });
     let at_any = best.times_physical_limit.map(|times| format!(", {times:.2} times what no tick could beat"));
     at_tick + &at_any.unwrap_or_default()
 }
@@ -94,7 +96,9 @@ fn from_the_limit(best: &Candidate) -> String {
 /// What is proved outside the promise.
 fn beyond(found: &Guarantees, tick: TickPeriod) -> Vec<String> {
     let mut lines = Vec::new();
-    let known = |samples: Option<u32>| samples.map_or("any number of samples".to_owned(), |samples| words::count(samples as usize, "sample"));
+    let known = |samples: Option<u32>| {
+        samples.map_or("any number of samples".to_owned(), |samples| words::count(samples as usize, "sample"))
+    };
     if let Some(immunity) = found.immunity {
         lines.push(format!(
             "at {tick} it bears disturbances that touch up to {} while open and {} while closed",
@@ -109,10 +113,14 @@ fn beyond(found: &Guarantees, tick: TickPeriod) -> Vec<String> {
         ));
     }
     if let Some(Recovery::Within(samples)) = &found.after_short_operations {
-        lines.push(format!("after operations that are too short the output is right again within {samples} samples"));
+        lines.push(format!(
+            "after operations that are too short the output is right again within {samples} samples"
+        ));
     }
     if let Some(Recovery::Within(samples)) = &found.from_any_state {
-        lines.push(format!("from any state whatever, as after an upset, it is right within {samples} samples"));
+        lines.push(format!(
+            "from any state whatever, as after an upset, it is right within {samples} samples"
+        ));
     }
     lines
 }
@@ -169,7 +177,9 @@ fn confidence(study: &Study) -> Vec<String> {
     });
     let lines: Vec<String> = claims.collect();
     if lines.is_empty() {
-        return vec!["nothing was recorded: whether a contact stays inside the envelope is not known".to_owned()];
+        return vec![
+            "nothing was recorded: whether a contact stays inside the envelope is not known".to_owned(),
+        ];
     }
     lines
 }

@@ -23,7 +23,8 @@ const MOST_ROWS: usize = 120;
 /// Columns in which the share of closed lines is counted.
 const COLUMNS: usize = 320;
 
-const PLANE: Plane = Plane { width: 480.0, height: 420.0, left: 46.0, right: 468.0, top: 76.0, bottom: 376.0 };
+const PLANE: Plane =
+    Plane { width: 480.0, height: 420.0, left: 46.0, right: 468.0, top: 76.0, bottom: 376.0 };
 /// The share of closed lines is drawn above, the rows below.
 const SHARE: (f64, f64) = (176.0, PLANE.top);
 const ROWS: (f64, f64) = (196.0, PLANE.bottom);
@@ -96,7 +97,8 @@ fn figure(observed: &[Observed], change: Change, limits: &[Limit]) -> Option<Fig
     let longest = all().map(|(_, operation)| operation.bounce_ns()).max()?;
     let reach = limits.iter().map(|limit| limit.at_ns).chain([longest]).max().unwrap_or(longest).max(1_000);
     let (from, until) = (-(reach as f64) * 0.08, reach as f64 * 1.12);
-    let aligned: Vec<Aligned> = all().map(|(one, operation)| Aligned::of(one, operation, until as u64)).collect();
+    let aligned: Vec<Aligned> =
+        all().map(|(one, operation)| Aligned::of(one, operation, until as u64)).collect();
     let x = Scale::linear((from, until), PLANE.across());
     let axis = Axis::of_time("time after the first edge", x, 6);
     let share = Scale::linear((0.0, 1.0), SHARE);
@@ -130,7 +132,10 @@ fn figure(observed: &[Observed], change: Change, limits: &[Limit]) -> Option<Fig
             "{} aligned at their first edge. The longest bounce lasts {}.{}",
             words::count(count, word),
             words::about(longest),
-            limits.iter().map(|limit| format!(" {}: {}.", limit.name, words::at_most(limit.at_ns))).collect::<String>()
+            limits
+                .iter()
+                .map(|limit| format!(" {}: {}.", limit.name, words::at_most(limit.at_ns)))
+                .collect::<String>()
         ),
         view_box: PLANE.view_box(),
         drawing,
@@ -171,7 +176,11 @@ fn share_curve(aligned: &[Aligned], x: &Scale, share: &Scale) -> String {
             continue;
         }
         let y = px(share.at(closed as f64 / aligned.len() as f64));
-        let letter = if before.is_none() { format!("M{} {y}", px(x.at(at))) } else { format!("H{}V{y}", px(x.at(at))) };
+        let letter = if before.is_none() {
+            format!("M{} {y}", px(x.at(at)))
+        } else {
+            format!("H{}V{y}", px(x.at(at)))
+        };
         path.push_str(&letter);
         before = Some(closed);
     }

@@ -36,7 +36,12 @@ pub fn characterised(found: &Characterised<'_>, origin: &Origin) -> String {
     sections.extend(bounce::section(found.observed, |change| limits(found, change)));
     let confidence = found.resolved.confidence.value.to_string();
     let claim = |change| claim(found, change);
-    sections.extend(distribution::section(found.observed, claim, |change| limits(found, change), &confidence));
+    sections.extend(distribution::section(
+        found.observed,
+        claim,
+        |change| limits(found, change),
+        &confidence,
+    ));
     sections.push(figures(found.observed));
     sections.push(requirement::section(found.resolved));
     sections.push(origin::section(origin, &[]));
@@ -58,7 +63,10 @@ fn claim(found: &Characterised<'_>, change: Change) -> Option<Claim> {
 
 fn limits(found: &Characterised<'_>, change: Change) -> Vec<Limit> {
     let claimed = claim(found, change);
-    claimed.map(|claim| Limit { name: "claimed", at_ns: claim.longest_ns, class: "claimed" }).into_iter().collect()
+    claimed
+        .map(|claim| Limit { name: "claimed", at_ns: claim.longest_ns, class: "claimed" })
+        .into_iter()
+        .collect()
 }
 
 fn answer(found: &Characterised<'_>) -> Markup {
@@ -113,7 +121,10 @@ fn rows(one: &Observed) -> Vec<Vec<Cell>> {
         add(format!("{word}s recorded whole"), Some(of.count.to_string()));
         add(format!("of these in doubt ({word})"), Some(of.ambiguous.to_string()));
         add(format!("median bounce at a {word}"), of.bounce_ns.map(|spread| words::about(spread.median)));
-        add(format!("95 % of bounces at a {word} within"), of.bounce_ns.map(|spread| words::about(spread.p95)));
+        add(
+            format!("95 % of bounces at a {word} within"),
+            of.bounce_ns.map(|spread| words::about(spread.p95)),
+        );
         add(format!("longest bounce at a {word}"), of.bounce_ns.map(|spread| words::about(spread.max)));
         add(format!("most edges of a {word}"), of.edges.map(|spread| spread.max.to_string()));
     }

@@ -17,14 +17,14 @@ pub(super) fn section(study: &Study) -> Section {
     shown.extend(all.iter().skip(MOST).filter(|one| one.pareto).take(MOST));
     let rows: Vec<Vec<Cell>> = shown.iter().map(|one| row(study, one)).collect();
     let head =
-        ["law", "tick", "ticks a second", "RAM, bytes", "make below", "break below", "x limit", "known by", "what is asked"];
+        ["law", "tick", "a second", "bytes", "make <", "break <", "x limit", "known by", "what is asked"];
     let body = html! {
         p {
-            "RAM is that of one input, with the parameters in flash. A star marks candidates that no other one that \
+            "Bytes are RAM for one input, with the parameters in flash. What is known was found by the closed form, or by exploring so many states. A star marks candidates that no other one that \
              holds beats in delay, ticks a second and RAM together. " (words::count(all.len(), "candidate"))
             " were judged; these are the first " (shown.len().min(MOST)) ", and the starred ones after them."
         }
-        (table("Candidates, best first", &head, &rows))
+        div class="laws" { (table("Candidates, best first", &head, &rows)) }
     };
     Section { id: "cost", heading: "Candidates and cost".to_owned(), body }
 }
@@ -37,7 +37,7 @@ fn row(study: &Study, one: &Candidate) -> Vec<Cell> {
     let known = match &one.judgement {
         Judgement::Faithful { evidence, .. } | Judgement::Refuted { evidence, .. } => match evidence {
             Evidence::ClosedForm => "closed form".to_owned(),
-            Evidence::Explored { states } => format!("{states} states explored"),
+            Evidence::Explored { states } => format!("{states} states"),
         },
         Judgement::Unproven(_) => "not known".to_owned(),
     };

@@ -10,7 +10,8 @@ use crate::report::plot::{Axis, Plane, Scale, linear_ticks, px};
 use crate::report::words;
 use crate::study::{Claim, Observed};
 
-const PLANE: Plane = Plane { width: 480.0, height: 430.0, left: 46.0, right: 468.0, top: 86.0, bottom: 386.0 };
+const PLANE: Plane =
+    Plane { width: 480.0, height: 430.0, left: 46.0, right: 468.0, top: 86.0, bottom: 386.0 };
 /// The histogram is drawn above, the distribution below.
 const HISTOGRAM: (f64, f64) = (206.0, PLANE.top);
 const DISTRIBUTION: (f64, f64) = (PLANE.bottom, 250.0);
@@ -93,7 +94,10 @@ fn figure(observed: &[Observed], change: Change, limits: &[Limit]) -> Option<Fig
             words::about(p50),
             words::about(p95),
             words::about(longest),
-            limits.iter().map(|limit| format!(" {}: {}.", limit.name, words::at_most(limit.at_ns))).collect::<String>()
+            limits
+                .iter()
+                .map(|limit| format!(" {}: {}.", limit.name, words::at_most(limit.at_ns)))
+                .collect::<String>()
         ),
         view_box: PLANE.view_box(),
         drawing,

@@ -60,6 +60,12 @@ struct Measure {
     text: String,
 }
 
+impl Measure {
+    fn y(&self) -> f64 {
+        128.0 + 28.0 * self.row
+    }
+}
+
 /// One change and the position after it, with the clauses about them as dimensions; not to scale.
 fn picture(physical: &PhysicalEnvelope, change: Change) -> Figure {
     let position = change.to();
@@ -94,7 +100,12 @@ fn picture(physical: &PhysicalEnvelope, change: Change) -> Figure {
     }
     if disturbed {
         add(strikes[0].0, strikes[0].1, 2.0, format!("disturbed: at most {}", words::at_most(glitch)));
-        add(strikes[0].1, strikes[1].0, 3.0, format!("quiet: at least {}", words::at_least(physical.quiet_ns)));
+        add(
+            strikes[0].1,
+            strikes[1].0,
+            3.0,
+            format!("quiet: at least {}", words::at_least(physical.quiet_ns)),
+        );
     }
     let title = format!("After a {}", words::change(change));
     Figure {
@@ -117,19 +128,22 @@ fn picture(physical: &PhysicalEnvelope, change: Change) -> Figure {
                 }
             }
             path class="wave contact" d=(wave(&edges)) {}
+            // All lines before all letters, so that no line runs through any.
             @for measure in &measures { (dimension(measure)) }
+            @for measure in &measures {
+                text class="measured" x=(px(measure.from + 5.0)) y=(px(measure.y() + 17.0)) { (measure.text) }
+            }
         },
         caption: html! { "Not to scale." },
         data: None,
     }
 }
 
-/// A dimension line with its text to the right of its beginning.
+/// A dimension line with the two guides that lead to it.
 fn dimension(measure: &Measure) -> Markup {
-    let y = 128.0 + 28.0 * measure.row;
+    let y = measure.y();
     html! {
         path class="guide" d={ "M" (px(measure.from)) " 106V" (px(y + 6.0)) "M" (px(measure.until)) " 106V" (px(y + 6.0)) } {}
         path class="measure" d={ "M" (px(measure.from)) " " (px(y)) "H" (px(measure.until)) } {}
-        text class="measured" x=(px(measure.from + 5.0)) y=(px(y + 17.0)) { (measure.text) }
     }
 }

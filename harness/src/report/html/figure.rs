@@ -38,20 +38,21 @@ impl Figure {
         let (title, description) = (format!("{}-title", self.id), format!("{}-description", self.id));
         html! {
             figure id=(self.id) class=(class) {
-                h3 { (self.title) }
+                h3 id=(title) { (self.title) }
                 div class="picture" {
                     svg xmlns="http://www.w3.org/2000/svg" class="plot" viewBox=(self.view_box) role="img"
                         aria-labelledby={ (title) " " (description) } {
-                        title id=(title) { (self.title) }
+                        title { (self.title) }
                         desc id=(description) { (self.description) }
                         (self.drawing)
                     }
                 }
-                @let caption = self.caption.clone();
-                figcaption {
-                    (caption)
-                    @if let Some(data) = &self.data {
-                        details { summary { "The numbers" } (data) }
+                @if self.data.is_some() || !self.caption.0.is_empty() {
+                    figcaption {
+                        (self.caption)
+                        @if let Some(data) = &self.data {
+                            details { summary { "The numbers" } (data) }
+                        }
                     }
                 }
             }

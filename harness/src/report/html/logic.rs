@@ -5,7 +5,7 @@ use maud::{Markup, PreEscaped, html};
 
 use super::{Cell, Section, table};
 use crate::machine::MachineTable;
-use crate::report::state_diagram::state_diagram;
+use crate::report::state_diagram::state_diagram_downward;
 use crate::report::words;
 
 /// States whose rows are shown; a table of more is better read from a file.
@@ -20,11 +20,12 @@ pub(super) fn section(name: &str, machine: &MachineTable) -> Section {
             (words::count(counts.state_bits as usize, "bit")) "; states that behave alike are one. A double outline \
              is rest; an arrow is one sample, open or closed, with the edge it reports."
         }
-        @match state_diagram(machine, "logic") {
-            Some(diagram) => figure class="figure wide" id="state-diagram" {
+        div class="pair logic" {
+        @match state_diagram_downward(machine, "logic") {
+            Some(diagram) => figure class="figure" id="state-diagram" {
                 h3 { "State diagram" }
                 div class="picture scroll" tabindex="0" role="region" aria-label="State diagram" { (PreEscaped(diagram)) }
-                figcaption { "The next-state table below says the same." }
+                figcaption { "The next-state table says the same." }
             },
             None => p class="note" {
                 "A diagram of " (counts.states) " states cannot be read. "
@@ -33,6 +34,7 @@ pub(super) fn section(name: &str, machine: &MachineTable) -> Section {
         }
         @if machine.len() <= MOST_STATES {
             details open[machine.len() <= 24] { summary { "Next-state table" } (states(machine)) }
+        }
         }
     };
     Section { id: "logic", heading: "The logic".to_owned(), body }
@@ -44,24 +46,24 @@ fn states(machine: &MachineTable) -> Markup {
             let leads = |sample| {
                 let next = machine.name(machine.next(state, sample));
                 match machine.edge(state, sample) {
-                    Some(edge) => format!("{next}, reports {}", words::change(edge)),
+                    Some(edge) => format!("{next}, {}", words::change(edge)),
                     None => next,
                 }
             };
             let rests = Position::BOTH.iter().any(|&position| machine.resting(position) == state);
+            let remark = match (rests, machine.reset() == state) {
+                (_, true) => " (rest, reset)",
+                (true, false) => " (rest)",
+                (false, false) => "",
+            };
             vec![
-                Cell::text(machine.name(state)),
+                Cell::text(machine.name(state) + remark),
                 Cell::text(words::position(machine.output_of(state))),
                 Cell::text(leads(Position::Open)),
                 Cell::text(leads(Position::Closed)),
-                Cell::text(match (rests, machine.reset() == state) {
-                    (_, true) => "rest, reset",
-                    (true, false) => "rest",
-                    (false, false) => "",
-                }),
             ]
         })
         .collect();
-    let head = ["state", "output", "after an open sample", "after a closed sample", "remark"];
-    table("Next state by sample", &head, &rows)
+    let head = ["state", "output", "open sample", "closed sample"];
+    table("Next state by sample, with the edge it reports", &head, &rows)
 }

@@ -28,6 +28,11 @@ mod tick;
 mod timing;
 mod witness;
 
+#[cfg(test)]
+mod contrast;
+#[cfg(test)]
+mod tests;
+
 pub use characterised::{Characterised, characterised};
 pub use figure::Figure;
 pub use origin::{Origin, SourceFile};

@@ -100,7 +100,10 @@ fn line(proved: &Proved<'_>, change: Change, worst: u32) -> Option<String> {
     });
     let limit = proved.limit.map(|limit| {
         let limit = limit.at(change);
-        format!("no logic can promise less than {limit} samples ({:.2} times)", f64::from(worst) / f64::from(limit))
+        format!(
+            "no logic can promise less than {limit} samples ({:.2} times)",
+            f64::from(worst) / f64::from(limit)
+        )
     });
     let parts: Vec<String> = time.into_iter().chain(limit).collect();
     (!parts.is_empty()).then(|| parts.join("; "))

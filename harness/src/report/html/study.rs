@@ -5,8 +5,8 @@ use debounce_core::{Change, PerChange};
 use super::bounce::Limit;
 use super::timing::{self, LogicRun, Moment, Shown};
 use super::{
-    Origin, Page, Section, answer, bounce, conformance, cost, distribution, envelope, latency, logic, origin, plane,
-    requirement, tick, witness,
+    Origin, Page, Section, answer, bounce, conformance, cost, distribution, envelope, latency, logic, origin,
+    plane, requirement, tick, witness,
 };
 use crate::choose::Candidate;
 use crate::machine::MachineTable;
@@ -17,18 +17,32 @@ use crate::study::{Claim, Guarantees, Observed, Study};
 pub fn study(study: &Study, invented: bool, origin: &Origin) -> String {
     let title = &study.resolved.name.value;
     let best = study.ranking.recommended();
-    let machine = best.and_then(|best| Some(MachineTable::of_table(&best.logic.table().ok()?).minimised().machine));
+    let machine =
+        best.and_then(|best| Some(MachineTable::of_table(&best.logic.table().ok()?).minimised().machine));
     let mut sections = vec![envelope_section(study, best)];
-    sections.extend(timing::section(&shown(study, best, machine.as_ref()), "Recorded, and what the logic makes of it"));
+    sections.extend(timing::section(
+        &shown(study, best, machine.as_ref()),
+        "Recorded, and what the logic makes of it",
+    ));
     sections.extend(conformance::section(study));
     sections.extend(bounce::section(&study.observed, |change| limits(study, change)));
     let confidence = study.resolved.confidence.value.to_string();
     let claim = |change| claim(study, change);
-    sections.extend(distribution::section(&study.observed, claim, |change| limits(study, change), &confidence));
+    sections.extend(distribution::section(
+        &study.observed,
+        claim,
+        |change| limits(study, change),
+        &confidence,
+    ));
     sections.extend(latency::section(study));
     sections.extend(plane::section(study));
     sections.extend(tick::section(study));
-    sections.extend(machine.as_ref().zip(best).map(|(machine, best)| logic::section(&best.parameters.to_string(), machine)));
+    sections.extend(
+        machine
+            .as_ref()
+            .zip(best)
+            .map(|(machine, best)| logic::section(&best.parameters.to_string(), machine)),
+    );
     sections.extend(study.guarantees.as_ref().map(|found| worst(found)));
     sections.push(cost::section(study));
     sections.push(requirement::section(&study.resolved));
@@ -74,7 +88,11 @@ fn claim(study: &Study, change: Change) -> Option<Claim> {
 
 /// What is claimed of the bounce, and what the envelope allows.
 fn limits(study: &Study, change: Change) -> Vec<Limit> {
-    let claimed = claim(study, change).map(|claim| Limit { name: "claimed", at_ns: claim.longest_ns, class: "claimed" });
+    let claimed = claim(study, change).map(|claim| Limit {
+        name: "claimed",
+        at_ns: claim.longest_ns,
+        class: "claimed",
+    });
     let allowed = Limit { name: "envelope", at_ns: study.physical.bounce_ns.at(change), class: "asked" };
     claimed.into_iter().chain([allowed]).collect()
 }

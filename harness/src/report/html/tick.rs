@@ -10,7 +10,8 @@ use crate::report::plot::{Axis, Plane, Scale, kept_apart, px};
 use crate::report::words;
 use crate::study::Study;
 
-const PLANE: Plane = Plane { width: 940.0, height: 400.0, left: 56.0, right: 780.0, top: 34.0, bottom: 350.0 };
+const PLANE: Plane =
+    Plane { width: 940.0, height: 400.0, left: 56.0, right: 780.0, top: 34.0, bottom: 350.0 };
 
 /// One clock.
 struct Row<'a> {
@@ -147,7 +148,8 @@ fn rows(study: &Study) -> Vec<Row<'_>> {
 }
 
 fn sentence(row: &Row<'_>) -> String {
-    let limit = row.limit_ns().map_or("limit unknown".to_owned(), |ns| format!("limit {}", words::at_most(ns)));
+    let limit =
+        row.limit_ns().map_or("limit unknown".to_owned(), |ns| format!("limit {}", words::at_most(ns)));
     match row.best_ns() {
         Some(ns) => format!("At {}: best {}, {limit}. ", row.tick, words::at_most(ns)),
         None => format!("At {}: none holds, {limit}. ", row.tick),

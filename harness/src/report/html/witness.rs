@@ -13,11 +13,16 @@ const ROW: usize = 44;
 /// The width of a tick.
 const TICK: f64 = 20.0;
 /// Room for the names of the lanes.
-const NAMES: f64 = 60.0;
+const NAMES: f64 = 76.0;
+/// How much of the rest before the first tick is shown.
+const LEAD: f64 = 12.0;
 /// The height of a row.
 const HEIGHT: f64 = 176.0;
 /// Ticks in a row in which nothing changes, of which no more than this are drawn.
 const STEADY: usize = 10;
+
+/// Ticks of a diagram that needs half the page.
+const NARROW: usize = 20;
 
 /// One column of a diagram.
 #[derive(Clone, Copy, PartialEq, Debug)]
@@ -35,7 +40,11 @@ pub(super) fn of_proof(proof: &Proof) -> Section {
             let figures = [Change::Make, Change::Break].into_iter().filter_map(|change| {
                 let witness = slowest.of(change).as_ref()?;
                 let samples = bounds.latency.at(change).worst as usize;
-                let title = format!("The slowest {}: reported after {}", words::change(change), words::count(samples, "sample"));
+                let title = format!(
+                    "The slowest {}: reported after {}",
+                    words::change(change),
+                    words::count(samples, "sample")
+                );
                 Some(witness_figure(&format!("slowest-{}", words::change(change)), &title, witness))
             });
             let figures: Vec<Figure> = figures.collect();
@@ -45,11 +54,13 @@ pub(super) fn of_proof(proof: &Proof) -> Section {
                      improved for it. A sample that reads other than the contact stands in a bounce (b) or in a \
                      disturbance (d)."
                 }
-                @for figure in &figures { (figure.wide()) }
+                div class="pair" { @for figure in &figures { (placed(figure)) } }
             };
             ("The worst that can happen", intro)
         }
-        Outcome::Refuted { clause, witness } => ("Counter-example", refuted(*clause, witness, "counter-example")),
+        Outcome::Refuted { clause, witness } => {
+            ("Counter-example", refuted(*clause, witness, "counter-example"))
+        }
     };
     Section { id: "waveforms", heading: heading.to_owned(), body }
 }
@@ -62,7 +73,7 @@ pub(super) fn refuted(clause: Clause, witness: &Witness, id: &str) -> Markup {
             "A sample that reads other than the contact stands in a bounce (b) or in a disturbance (d). No shorter \
              waveform inside the envelope breaks the promise."
         }
-        (witness_figure(id, &title, witness).wide())
+        (self::witness(id, &title, witness))
     }
 }
 
@@ -70,26 +81,32 @@ pub(super) fn refuted(clause: Clause, witness: &Witness, id: &str) -> Markup {
 pub(super) fn recovery(recovery: &Recovery, id: &str, title: &str) -> Option<Markup> {
     match recovery {
         Recovery::Within(_) => None,
-        Recovery::Never(shown) => Some(witness_figure(id, title, shown).wide()),
+        Recovery::Never(shown) => Some(witness(id, title, shown)),
     }
 }
 
 /// A waveform as a figure.
 #[must_use]
 pub fn witness(id: &str, title: &str, witness: &Witness) -> Markup {
-    witness_figure(id, title, witness).wide()
+    html! { div class="pair" { (placed(&witness_figure(id, title, witness))) } }
 }
 
-pub(super) fn witness_figure(id: &str, title: &str, witness: &Witness) -> Figure {
+/// A short waveform takes half the page, a long one all of it.
+fn placed(figure: &Figure) -> Markup {
+    if figure.view_box.starts_with("0 0 480 ") { figure.markup() } else { figure.wide() }
+}
+
+fn witness_figure(id: &str, title: &str, witness: &Witness) -> Figure {
     let columns = columns(witness);
     let rows: Vec<&[Column]> = columns.chunks(ROW).collect();
-    let width = NAMES + TICK * columns.len().min(ROW) as f64 + 6.0;
+    let room = if columns.len() <= NARROW { 480.0 } else { 940.0_f64 };
+    let width = room.max(NAMES + TICK * columns.len().min(ROW) as f64 + 6.0);
     let height = HEIGHT * rows.len() as f64;
     Figure {
         id: id.to_owned(),
         title: title.to_owned(),
         description: description(witness),
-        view_box: format!("0 0 {} {}", px(width.max(480.0)), px(height)),
+        view_box: format!("0 0 {} {}", px(width), px(height)),
         drawing: html! {
             @for (index, row) in rows.iter().enumerate() { (drawn(witness, row, HEIGHT * index as f64)) }
         },
@@ -193,7 +210,7 @@ fn lane(
         let Column::Tick(index) = *column else { continue };
         let before = if index == 0 { witness.start } else { of(&witness.ticks[index - 1]) };
         if path.is_empty() {
-            path = format!("M{} {}", px(left), level(before));
+            path = format!("M{} {}", px(left - LEAD), level(before));
         }
         path.push_str(&format!("H{}V{}", px(left), level(of(&witness.ticks[index]))));
     }

@@ -43,7 +43,8 @@ impl Axis {
     pub fn of_log_time(what: &str, scale: Scale, most: usize) -> Self {
         let (from, until) = scale.values();
         let unit = TimeUnit::of(until);
-        let ticks = log_ticks(from, until, most).into_iter().map(|value| (value, unit.value(value))).collect();
+        let ticks =
+            log_ticks(from, until, most).into_iter().map(|value| (value, unit.value(value))).collect();
         Self { scale, ticks, title: format!("{what}, {}", unit.name()) }
     }
 
@@ -53,7 +54,11 @@ impl Axis {
         let (from, until) = scale.values();
         let (values, _) = linear_ticks(from, until, most);
         let whole = values.into_iter().filter(|value| value.fract() == 0.0);
-        Self { scale, ticks: whole.map(|value| (value, format!("{value:.0}"))).collect(), title: what.to_owned() }
+        Self {
+            scale,
+            ticks: whole.map(|value| (value, format!("{value:.0}"))).collect(),
+            title: what.to_owned(),
+        }
     }
 
     /// An axis of shares of a whole, in percent.

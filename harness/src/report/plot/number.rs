@@ -40,10 +40,7 @@ mod tests {
     #[test]
     fn coordinate_is_shown_to_a_tenth() {
         let shown = |at: f64| px(at).to_string();
-        assert_eq!(
-            [0.0, -0.04, 12.0, 12.34, -7.96, 99.99].map(shown),
-            ["0", "0", "12", "12.3", "-8", "100"]
-        );
+        assert_eq!([0.0, -0.04, 12.0, 12.34, -7.96, 99.99].map(shown), ["0", "0", "12", "12.3", "-8", "100"]);
         assert_eq!([f64::NAN, f64::INFINITY].map(shown), ["0", "0"]);
     }
 }

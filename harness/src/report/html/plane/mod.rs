@@ -10,7 +10,8 @@ use crate::report::plot::{Axis, Plane, Scale, px};
 use crate::report::words;
 use crate::study::Study;
 
-const PLANE: Plane = Plane { width: 940.0, height: 500.0, left: 56.0, right: 926.0, top: 34.0, bottom: 450.0 };
+const PLANE: Plane =
+    Plane { width: 940.0, height: 500.0, left: 56.0, right: 926.0, top: 34.0, bottom: 450.0 };
 
 /// Rows of the table of numbers.
 const MOST_ROWS: usize = 40;
@@ -35,7 +36,7 @@ pub(super) fn section(study: &Study) -> Option<Section> {
     };
     let above = points.all.iter().filter(|point| point.below_ns > highest).count();
     let figure = Figure {
-        id: "plane".to_owned(),
+        id: "plane-picture".to_owned(),
         title: "Worst delay against the widest disturbance borne".to_owned(),
         description: description(study, &points, needed_ns, allowed_ns),
         view_box: PLANE.view_box(),
@@ -71,7 +72,8 @@ fn curves(points: &Points, x: &Scale, y: &Scale) -> Markup {
     let line = |places: &[(u64, u64)]| {
         let (_, highest) = y.values();
         let inside = places.iter().filter(|(_, below)| *below as f64 <= highest);
-        let text = inside.map(|&(bears, below)| format!("{} {}", px(x.within(bears as f64)), px(y.at(below as f64))));
+        let text = inside
+            .map(|&(bears, below)| format!("{} {}", px(x.within(bears as f64)), px(y.at(below as f64))));
         text.collect::<Vec<_>>().join("L")
     };
     let at_tick = line(&points.limit_at_tick);
@@ -95,17 +97,17 @@ fn stair(front: &[(u64, u64)], x: &Scale, y: &Scale) -> String {
 
 fn dot(point: &Point, x: &Scale, y: &Scale) -> Markup {
     let (cx, cy) = (x.at(point.bears_ns as f64), y.at(point.below_ns as f64));
-    let class = match (point.recommended, point.holds, point.at_first_tick) {
-        (true, _, _) => "mark first",
-        (_, true, true) => "mark holds",
-        (_, true, false) => "mark holds elsewhere",
-        (_, false, _) => "mark fails",
+    let radius = if point.holds && !point.at_first_tick { "2.4" } else { "4" };
+    let class = match (point.recommended, point.holds) {
+        (true, _) => "mark first",
+        (_, true) => "mark holds",
+        (_, false) => "mark fails",
     };
     html! {
         @if point.recommended {
             path class=(class) d={ "M" (px(cx)) " " (px(cy - 9.0)) "l9 9l-9 9l-9 -9z" } {}
         } @else {
-            circle class=(class) cx=(px(cx)) cy=(px(cy)) r=(if point.on_front { "5" } else { "3.2" }) {}
+            circle class=(class) cx=(px(cx)) cy=(px(cy)) r=(radius) {}
         }
     }
 }
@@ -114,9 +116,9 @@ fn caption(points: &Points, above: usize) -> Markup {
     html! {
         ul class="key" {
             li { span class="sign first" {} "the recommended candidate" }
-            li { span class="sign holds" {} "holds, at the recommended tick (pale: at another)" }
+            li { span class="sign holds" {} "holds, at the recommended tick (small: at another)" }
             li { span class="sign fails" {} "does not hold" }
-            li { span class="sign front" {} "large marks: none bears more and is no later" }
+            li { span class="sign front" {} "joins those that none beats in both" }
             li { span class="sign any" {} "what no logic can beat, at any tick" }
             @if points.limit_at_tick.len() > 1 { li { span class="sign here" {} "what no logic can beat at the recommended tick" } }
         }
@@ -124,7 +126,7 @@ fn caption(points: &Points, above: usize) -> Markup {
             "Disturbances of the same width in both positions; the later of make and break. A candidate may also hold \
              what is asked from above the shaded corner: against narrower disturbances it is quicker. "
             @if points.left_out > 0 {
-                (words::count(points.left_out, "candidate")) " without a closed form have no place here. "
+                (words::count(points.left_out, "candidate")) " at other ticks have no closed form, and no place here. "
             }
             @if above > 0 { (words::count(above, "mark")) " lie above the top edge." }
         }

@@ -3,9 +3,10 @@
 use debounce_core::{Bounds, PerPosition, TickClock, Verdict};
 use rustc_hash::FxHashMap;
 
-use crate::choose::{Candidate, known_limit, physical_limit};
+use crate::choose::{known_limit, physical_limit};
 use crate::envelope::PhysicalEnvelope;
 use crate::logic::Logic;
+use crate::prove::{Limits, ProveError, prove_within};
 use crate::study::Study;
 
 /// Candidates that stand in the same place.
@@ -58,9 +59,15 @@ impl Points {
         let mut places: FxHashMap<(u64, u64), usize> = FxHashMap::default();
         let first_clock = study.ranking.candidates.first().map(|candidate| candidate.clock);
         for (rank, candidate) in study.ranking.candidates.iter().enumerate() {
-            let Some((bears_ns, below_ns)) = ladders[candidate.clock].place(&candidate.logic) else {
-                points.left_out += usize::from(without_closed_form(candidate, study));
-                continue;
+            // Exploring takes time, so it is kept for the tick that matters most.
+            let explored = Some(candidate.clock) == first_clock;
+            let (bears_ns, below_ns) = match ladders[candidate.clock].place(&candidate.logic, explored) {
+                Place::At(bears_ns, below_ns) => (bears_ns, below_ns),
+                Place::Unknown => {
+                    points.left_out += 1;
+                    continue;
+                }
+                Place::Nowhere => continue,
             };
             let index = *places.entry((bears_ns, below_ns)).or_insert_with(|| {
                 let name = format!("{}, {}", candidate.parameters, study.tick(candidate));
@@ -116,10 +123,14 @@ impl Points {
     }
 }
 
-/// Whether the reason for having no place is that nothing is known in closed form.
-fn without_closed_form(candidate: &Candidate, study: &Study) -> bool {
-    let envelope = study.ranking.view(candidate).envelope;
-    envelope.is_ok_and(|envelope| matches!(candidate.logic.verdict(&envelope), Verdict::Unknown))
+/// What is known of a candidate's place.
+enum Place {
+    /// What it bears, and how late it is while it does.
+    At(u64, u64),
+    /// It does not hold even without disturbances.
+    Nowhere,
+    /// It has no closed form that says.
+    Unknown,
 }
 
 /// An envelope with disturbances of another width, the same in both positions.
@@ -146,12 +157,24 @@ impl Ladder {
     }
 
     /// What a logic bears at most, and how late it is while it does.
-    fn place(&self, logic: &Logic) -> Option<(u64, u64)> {
-        let held = self.rungs.iter().map_while(|&(width_ns, envelope)| match logic.verdict(&envelope) {
-            Verdict::Holds(bounds) => Some((width_ns, self.latest(bounds))),
-            _ => None,
-        });
-        held.last()
+    ///
+    /// Where the closed form gives up before it refuses, more may be borne than it knows, so there is no place.
+    fn place(&self, logic: &Logic, explored: bool) -> Place {
+        let mut held = None;
+        for &(width_ns, envelope) in &self.rungs {
+            let bounds = match logic.verdict(&envelope) {
+                Verdict::Holds(bounds) => Some(bounds),
+                Verdict::Fails(_) => None,
+                Verdict::Unknown if explored => match explore(logic, &envelope) {
+                    Ok(bounds) => bounds,
+                    Err(_) => return Place::Unknown,
+                },
+                Verdict::Unknown => return Place::Unknown,
+            };
+            let Some(bounds) = bounds else { break };
+            held = Some((width_ns, self.latest(bounds)));
+        }
+        held.map_or(Place::Nowhere, |(bears_ns, below_ns)| Place::At(bears_ns, below_ns))
     }
 
     fn latest(&self, Bounds { latency, .. }: Bounds) -> u64 {
@@ -162,7 +185,7 @@ impl Ladder {
     fn limit(&self, widest_ns: u64) -> Vec<(u64, u64)> {
         const MOST_STEPS: usize = 60;
         let mut stair: Vec<(u64, u64)> = Vec::new();
-        for &(width_ns, envelope) in self.rungs.iter().take_while(|rung| rung.0 <= widest_ns).take(MOST_STEPS) {
+        for &(width_ns, envelope) in self.rungs.iter().take(MOST_STEPS) {
             let Some(limit) = known_limit(&envelope) else { break };
             let below_ns = self.clock.delay_ns(limit.make.max(limit.break_)).1;
             // From just above the rung before, as many samples may be touched.
@@ -170,9 +193,18 @@ impl Ladder {
                 stair.push((before, below_ns));
             }
             stair.push((width_ns, below_ns));
+            if width_ns > widest_ns {
+                break;
+            }
         }
         stair
     }
+}
+
+/// The bounds of a logic by exploration; `None` where it does not hold.
+fn explore(logic: &Logic, envelope: &debounce_core::Envelope) -> Result<Option<Bounds>, ProveError> {
+    let few = Limits { memory_bytes: 1 << 18, threads: 1 };
+    Ok(prove_within(&logic.table()?, envelope, &few)?.bounds())
 }
 
 /// The widest disturbance that touches at most so many samples; no more than `most_ns`.

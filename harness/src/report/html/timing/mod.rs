@@ -77,12 +77,12 @@ fn figure(shown: &Shown<'_>, waves: &Waves<'_>, moment: &Moment, index: usize, n
     let drawing = draw::drawing(shown, waves, moment, width);
     html! {
         figure class={ "figure timing" @if wide { " wide" } } id=(id) {
-            h3 { (moment.title) }
+            h3 id=(title) { (moment.title) }
             div class="picture" data-waves={ "waves-" (index) } data-view=(moment.data()) data-label=(moment.title) {
                 svg xmlns="http://www.w3.org/2000/svg" class="plot" role="img"
                     viewBox={ "0 0 " (width) " " (draw::height(shown)) }
                     aria-labelledby={ (title) " " (description) } {
-                    title id=(title) { (moment.title) }
+                    title { (moment.title) }
                     desc id=(description) { (moment.description) }
                     g class="drawn" { (drawing) }
                 }

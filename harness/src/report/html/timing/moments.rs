@@ -36,11 +36,7 @@ impl Moment {
 }
 
 /// A change of the contact with room before and after it: to the end of its bounce or to its report.
-pub(in crate::report::html) fn around(
-    one: &Observed,
-    at_ns: u64,
-    until_ns: u64,
-) -> (u64, u64) {
+pub(in crate::report::html) fn around(one: &Observed, at_ns: u64, until_ns: u64) -> (u64, u64) {
     let trace = &one.recording.trace;
     let length = until_ns.saturating_sub(at_ns).max(trace.resolution_ns().max(1) * 20);
     let from = at_ns.saturating_sub(length / 4).max(trace.start_ns());
@@ -81,61 +77,73 @@ pub(in crate::report::html) fn remarkable(one: &Observed, moments: &mut Vec<Mome
     let segmentation = &one.segmentation;
     for change in [Change::Make, Change::Break] {
         let of_kind = segmentation.operations.iter().filter(|operation| operation.change == change);
-        let longest = of_kind.max_by_key(|operation| (operation.bounce_ns(), u64::MAX - operation.burst.first_ns));
+        let longest =
+            of_kind.max_by_key(|operation| (operation.bounce_ns(), u64::MAX - operation.burst.first_ns));
         if let Some(operation) = longest {
             let burst = operation.burst;
-            push(moments, Moment {
-                title: format!("Longest bounce after a {}, at {}", title_word(change), words::instant(burst.first_ns)),
-                description: format!(
-                    "{} edges in {}.",
-                    burst.edges,
-                    words::about(burst.width_ns())
-                ),
-                window: around(one, burst.first_ns, burst.last_ns.max(burst.first_ns + reach_ns)),
-                zero_ns: burst.first_ns,
-                run: 0,
-            });
+            push(
+                moments,
+                Moment {
+                    title: format!(
+                        "Longest bounce after a {}, at {}",
+                        title_word(change),
+                        words::instant(burst.first_ns)
+                    ),
+                    description: format!("{} edges in {}.", burst.edges, words::about(burst.width_ns())),
+                    window: around(one, burst.first_ns, burst.last_ns.max(burst.first_ns + reach_ns)),
+                    zero_ns: burst.first_ns,
+                    run: 0,
+                },
+            );
         }
     }
     for position in Position::BOTH {
         let there = segmentation.disturbances.iter().filter(|disturbance| disturbance.position == position);
-        let widest = there.max_by_key(|disturbance| (disturbance.burst.width_ns(), u64::MAX - disturbance.burst.first_ns));
+        let widest = there
+            .max_by_key(|disturbance| (disturbance.burst.width_ns(), u64::MAX - disturbance.burst.first_ns));
         if let Some(disturbance) = widest {
             let burst = disturbance.burst;
-            push(moments, Moment {
-                title: format!(
-                    "Widest disturbance while {}, at {}",
-                    words::position(position),
-                    words::instant(burst.first_ns)
-                ),
-                description: format!(
-                    "The line is disturbed for {}; the contact stays {}.",
-                    words::about(burst.width_ns()),
-                    words::position(position)
-                ),
-                window: around(one, burst.first_ns, burst.last_ns.max(burst.first_ns + reach_ns)),
-                zero_ns: burst.first_ns,
-                run: 0,
-            });
+            push(
+                moments,
+                Moment {
+                    title: format!(
+                        "Widest disturbance while {}, at {}",
+                        words::position(position),
+                        words::instant(burst.first_ns)
+                    ),
+                    description: format!(
+                        "The line is disturbed for {}; the contact stays {}.",
+                        words::about(burst.width_ns()),
+                        words::position(position)
+                    ),
+                    window: around(one, burst.first_ns, burst.last_ns.max(burst.first_ns + reach_ns)),
+                    zero_ns: burst.first_ns,
+                    run: 0,
+                },
+            );
         }
     }
     for pair in shortest_stays(one) {
         let (from, until) = (pair[0].burst.first_ns, pair[1].burst.first_ns);
         let position = words::position(pair[0].change.to());
-        push(moments, Moment {
-            title: format!("Shortest time {position}, at {}", words::instant(from)),
-            description: format!("The contact stays {position} for {}.", words::about(until - from)),
-            window: around(one, from, until + reach_ns / 2),
-            zero_ns: from,
-            run: 0,
-        });
+        push(
+            moments,
+            Moment {
+                title: format!("Shortest time {position}, at {}", words::instant(from)),
+                description: format!("The contact stays {position} for {}.", words::about(until - from)),
+                window: around(one, from, until + reach_ns / 2),
+                zero_ns: from,
+                run: 0,
+            },
+        );
     }
 }
 
 /// For each position the two operations that lie nearest to each other around it.
 fn shortest_stays(one: &Observed) -> impl Iterator<Item = &[Operation]> {
     Position::BOTH.into_iter().rev().filter_map(|position| {
-        let pairs = one.segmentation.operations.windows(2).filter(move |pair| pair[0].change.to() == position);
+        let pairs =
+            one.segmentation.operations.windows(2).filter(move |pair| pair[0].change.to() == position);
         pairs.min_by_key(|pair| pair[1].burst.first_ns - pair[0].burst.first_ns)
     })
 }
@@ -150,18 +158,21 @@ pub(in crate::report::html) fn outside(
     const MOST: usize = 6;
     for violation in conformance.violations.iter().take(MOST) {
         let (found, allowed) = (violation.found_ns, violation.allowed_ns);
-        push(moments, Moment {
-            title: format!("Outside the envelope, at {}", words::instant(violation.at_ns)),
-            description: format!(
-                "The {}: {} found, {} allowed.",
-                violation.clause.text(),
-                words::about(found),
-                words::about(allowed)
-            ),
-            window: around(one, violation.at_ns, violation.at_ns + found.max(allowed).max(reach_ns)),
-            zero_ns: violation.at_ns,
-            run: 0,
-        });
+        push(
+            moments,
+            Moment {
+                title: format!("Outside the envelope, at {}", words::instant(violation.at_ns)),
+                description: format!(
+                    "The {}: {} found, {} allowed.",
+                    violation.clause.text(),
+                    words::about(found),
+                    words::about(allowed)
+                ),
+                window: around(one, violation.at_ns, violation.at_ns + found.max(allowed).max(reach_ns)),
+                zero_ns: violation.at_ns,
+                run: 0,
+            },
+        );
     }
 }
 

@@ -53,7 +53,8 @@ impl<'a> Waves<'a> {
         let bursts = |kind: u8, first: u64, last: u64| {
             (first <= self.until_ns).then(|| json!([first - start, last.min(self.until_ns) - start, kind]))
         };
-        let operations = one.segmentation.operations.iter().filter_map(|o| bursts(0, o.burst.first_ns, o.burst.last_ns));
+        let operations =
+            one.segmentation.operations.iter().filter_map(|o| bursts(0, o.burst.first_ns, o.burst.last_ns));
         let disturbances =
             one.segmentation.disturbances.iter().filter_map(|d| bursts(1, d.burst.first_ns, d.burst.last_ns));
         let truth: Vec<Value> = one
