@@ -250,6 +250,8 @@
     }
     this.drawn.innerHTML = out;
     var span = this.until - this.from;
+    this.picture.dataset.from = this.from;
+    this.picture.dataset.span = span;
     this.output.textContent = shown(span) + " from " + ((this.from + this.data.start) / 1e9).toFixed(6) + " s";
   };
 
