@@ -7,6 +7,7 @@ mod bench;
 mod choose_emit;
 mod prove;
 mod replay;
+mod report;
 mod study;
 
 use std::fs::File;

@@ -21,7 +21,7 @@ use crate::study::{Study, StudyError};
 #[command(
     long_about = "Characterises the recordings, chooses tick period, law and parameters for the requirement, \
                   proves the choice for every waveform inside the stated envelope, checks that the recordings \
-                  lie inside it, and writes the results and a Rust configuration. Without any argument it does \
+                  lie inside it, and writes report, results and a Rust configuration. Without any argument it does \
                   so for the built-in demo recording, which is invented.",
     after_help = StudyArguments::EXAMPLES
 )]

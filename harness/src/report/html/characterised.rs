@@ -44,7 +44,7 @@ pub fn characterised(found: &Characterised<'_>, origin: &Origin) -> String {
     ));
     sections.push(figures(found.observed));
     sections.push(requirement::section(found.resolved));
-    sections.push(origin::section(origin, &[]));
+    sections.push(origin::section(origin, found.observed, &[]));
     let page = Page {
         title: found.resolved.name.value.clone(),
         kind: "What the recordings show".to_owned(),

@@ -11,6 +11,9 @@ use crate::report::words;
 /// States whose rows are shown; a table of more is better read from a file.
 const MOST_STATES: usize = 200;
 
+/// States of a machine whose table stands beside its diagram.
+const BESIDE: usize = 12;
+
 /// The machine behind a logic, minimised.
 pub(super) fn section(name: &str, machine: &MachineTable) -> Section {
     let counts = machine.counts();
@@ -20,11 +23,11 @@ pub(super) fn section(name: &str, machine: &MachineTable) -> Section {
             (words::count(counts.state_bits as usize, "bit")) "; states that behave alike are one. A double outline \
              is rest; an arrow is one sample, open or closed, with the edge it reports."
         }
-        div class="pair logic" {
+        div class=[(machine.len() <= BESIDE).then_some("pair logic")] {
         @match state_diagram_downward(machine, "logic") {
             Some(diagram) => figure class="figure" id="state-diagram" {
                 h3 { "State diagram" }
-                div class="picture scroll" tabindex="0" role="region" aria-label="State diagram" { (PreEscaped(diagram)) }
+                div class="picture scroll tall" tabindex="0" role="region" aria-label="State diagram" { (PreEscaped(diagram)) }
                 figcaption { "The next-state table says the same." }
             },
             None => p class="note" {

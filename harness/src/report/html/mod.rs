@@ -22,6 +22,7 @@ mod page;
 mod plane;
 mod proof;
 mod requirement;
+mod simpler;
 mod study;
 mod table;
 mod tick;

@@ -8,6 +8,7 @@ use maud::html;
 use sha2::{Digest, Sha256};
 
 use super::{Cell, Section, table};
+use crate::study::Observed;
 
 /// Where a report comes from.
 #[derive(Clone, PartialEq, Eq, Debug, Default)]
@@ -68,7 +69,11 @@ fn hexadecimal(bytes: &[u8]) -> String {
 }
 
 /// Versions, seeds, files and the command.
-pub(super) fn section(origin: &Origin, method: &[String]) -> Section {
+pub(super) fn section(origin: &Origin, observed: &[Observed], method: &[String]) -> Section {
+    let notes: Vec<String> = observed
+        .iter()
+        .flat_map(|one| one.recording.notes.iter().map(move |note| format!("{}: {note}", one.name)))
+        .collect();
     let rows: Vec<Vec<Cell>> = origin
         .files
         .iter()
@@ -93,6 +98,10 @@ pub(super) fn section(origin: &Origin, method: &[String]) -> Section {
         }
         @if !rows.is_empty() {
             div class="hashes" { (table("Files that were read", &["file", "read as", "bytes", "SHA-256"], &rows)) }
+        }
+        @if !notes.is_empty() {
+            h3 { "What the reader of the recordings decided on its own" }
+            ul { @for note in &notes { li { (note) } } }
         }
         @if !method.is_empty() {
             h3 { "How each figure is obtained" }

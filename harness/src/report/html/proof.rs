@@ -39,7 +39,7 @@ pub fn proof(proved: &Proved<'_>, origin: &Origin) -> String {
         witness::of_proof(proved.proof),
         super::Section { id: "envelope", heading: "Envelope".to_owned(), body: envelope_body },
         logic::section(proved.name, &proved.machine.minimised().machine),
-        origin::section(origin, &method()),
+        origin::section(origin, &[], &method()),
     ];
     let page = Page {
         title: proved.name.to_owned(),

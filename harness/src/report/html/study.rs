@@ -6,7 +6,7 @@ use super::bounce::Limit;
 use super::timing::{self, LogicRun, Moment, Shown};
 use super::{
     Origin, Page, Section, answer, bounce, conformance, cost, distribution, envelope, latency, logic, origin,
-    plane, requirement, tick, witness,
+    plane, requirement, simpler, tick, witness,
 };
 use crate::choose::Candidate;
 use crate::machine::MachineTable;
@@ -44,9 +44,10 @@ pub fn study(study: &Study, invented: bool, origin: &Origin) -> String {
             .map(|(machine, best)| logic::section(&best.parameters.to_string(), machine)),
     );
     sections.extend(study.guarantees.as_ref().map(|found| worst(found)));
+    sections.extend(simpler::section(study));
     sections.push(cost::section(study));
     sections.push(requirement::section(&study.resolved));
-    sections.push(origin::section(origin, &method(study)));
+    sections.push(origin::section(origin, &study.observed, &method(study)));
     let page = Page {
         title: title.clone(),
         kind: "Study of a contact".to_owned(),

@@ -163,6 +163,7 @@ fn report_of_a_study_has_every_section_its_data_allow() {
         "ticks",
         "logic",
         "waveforms",
+        "refused",
         "cost",
         "requirement",
         "origin",

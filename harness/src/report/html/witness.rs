@@ -51,15 +51,18 @@ pub(super) fn of_proof(proof: &Proof) -> Section {
             let intro = html! {
                 p {
                     "Of all waveforms inside the envelope these make the logic slowest, so the bounds cannot be \
-                     improved for it. A sample that reads other than the contact stands in a bounce (b) or in a \
-                     disturbance (d)."
+                     improved for it. " (LETTERS)
                 }
                 div class="pair" { @for figure in &figures { (placed(figure)) } }
             };
             ("The worst that can happen", intro)
         }
         Outcome::Refuted { clause, witness } => {
-            ("Counter-example", refuted(*clause, witness, "counter-example"))
+            let body = html! {
+                p { (LETTERS) " No shorter waveform inside the envelope breaks the promise." }
+                (refuted(*clause, witness, "counter-example"))
+            };
+            ("Counter-example", body)
         }
     };
     Section { id: "waveforms", heading: heading.to_owned(), body }
@@ -67,15 +70,12 @@ pub(super) fn of_proof(proof: &Proof) -> Section {
 
 /// A broken promise with the waveform that breaks it.
 pub(super) fn refuted(clause: Clause, witness: &Witness, id: &str) -> Markup {
-    let title = format!("Shortest waveform in which {}", words::clause(clause));
-    html! {
-        p {
-            "A sample that reads other than the contact stands in a bounce (b) or in a disturbance (d). No shorter \
-             waveform inside the envelope breaks the promise."
-        }
-        (self::witness(id, &title, witness))
-    }
+    self::witness(id, &format!("A shortest waveform in which {}", words::clause(clause)), witness)
 }
+
+/// How to read such a diagram.
+pub(super) const LETTERS: &str =
+    "A sample that reads other than the contact stands in a bounce (b) or in a disturbance (d).";
 
 /// What happens after operations that are too short, where that is no happy end.
 pub(super) fn recovery(recovery: &Recovery, id: &str, title: &str) -> Option<Markup> {

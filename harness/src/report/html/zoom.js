@@ -236,9 +236,9 @@
     return out;
   };
 
-  Diagram.prototype.draw = function () {
+  Diagram.prototype.draw = function (width) {
     var lanes = this.data.lanes;
-    this.width = Math.max(240, Math.round(this.picture.clientWidth || 940));
+    this.width = width || Math.max(240, Math.round(this.picture.clientWidth || 940));
     this.svg.setAttribute("viewBox", "0 0 " + this.width + " " + (lanes.axis + 46));
     var out = this.axis() + this.bursts(lanes.contact) + this.name("contact", lanes.contact[0]) +
       this.wave(this.data.edges, this.data.closed, lanes.contact, "contact");
@@ -343,5 +343,10 @@
   };
 
   document.documentElement.classList.add("scripted");
-  document.querySelectorAll("[data-view]").forEach(function (picture) { new Diagram(picture); });
+  var all = Array.from(document.querySelectorAll("[data-view]")).map(function (picture) { return new Diagram(picture); });
+  // On paper the columns are narrower than on most screens; letters keep their size.
+  window.addEventListener("beforeprint", function () {
+    all.forEach(function (diagram) { diagram.draw(diagram.picture.closest(".wide") ? 720 : 380); });
+  });
+  window.addEventListener("afterprint", function () { all.forEach(function (diagram) { diagram.draw(); }); });
 })();

@@ -36,10 +36,11 @@
       var inset = box.height * (svg ? 0.18 : 0.22);
       var clip = clipOf(text.parent);
       return {
-        text: text, top: box.top + inset, bottom: box.bottom - inset,
+        text: text,
+        top: Math.max(box.top + inset, clip ? clip.top : -1e6), bottom: Math.min(box.bottom - inset, clip ? clip.bottom : 1e6),
         left: Math.max(box.left + 0.5, clip ? clip.left : -1e6), right: Math.min(box.right - 0.5, clip ? clip.right : 1e6)
       };
-    }).filter(function (one) { return one.left < one.right; });
+    }).filter(function (one) { return one.left < one.right && one.top < one.bottom; });
     all.sort(function (a, b) { return a.top - b.top; });
     for (var i = 0; i < all.length; i++) {
       for (var j = i + 1; j < all.length && all[j].top < all[i].bottom; j++) {

@@ -7,13 +7,13 @@ mod axis;
 mod draw;
 mod moments;
 mod run;
+mod tables;
 mod waves;
 
 use debounce_core::Change;
 use maud::{Markup, PreEscaped, html};
 
-use super::{Cell, Section, table};
-use crate::report::words;
+use super::Section;
 use crate::study::Observed;
 
 pub(super) use moments::{Moment, outside, remarkable, slowest};
@@ -62,7 +62,11 @@ pub(super) fn section(shown: &[Shown<'_>], heading: &str) -> Option<Section> {
                 }
                 script type="application/json" id={ "waves-" (index) } { (PreEscaped(waves.json())) }
                 @if let Some(note) = waves.note() { p class="note" { (note) } }
-                details { summary { "All operations of " (shown.one.name) } (operations(shown)) }
+                details {
+                    summary { "All operations and disturbances of " (shown.one.name) }
+                    (tables::operations(shown))
+                    (tables::disturbances(shown))
+                }
             }
         }
     };
@@ -91,43 +95,6 @@ fn figure(shown: &Shown<'_>, waves: &Waves<'_>, moment: &Moment, index: usize, n
         }
     }
 }
-
-/// Every operation with its bounce and, where there is a logic, its latency.
-fn operations(shown: &Shown<'_>) -> Markup {
-    let run = shown.runs.first();
-    let mut head = vec!["at", "change", "bounce", "edges"];
-    if run.is_some() {
-        head.push("reported after");
-    }
-    let rows: Vec<Vec<Cell>> = shown
-        .one
-        .segmentation
-        .operations
-        .iter()
-        .take(MOST_ROWS)
-        .map(|operation| {
-            let mut row = vec![
-                Cell::number(words::instant(operation.burst.first_ns)),
-                Cell::text(words::change(operation.change)),
-                Cell::number(words::about(operation.bounce_ns())),
-                Cell::number(operation.burst.edges.to_string()),
-            ];
-            if let Some(run) = run {
-                let delay = run.delay_of(shown.one, operation.burst.first_ns);
-                row.push(Cell::number(delay.map_or("-".to_owned(), words::at_most)));
-            }
-            row
-        })
-        .collect();
-    let all = shown.one.segmentation.operations.len();
-    html! {
-        @if all > MOST_ROWS { p class="note" { "The first " (MOST_ROWS) " of " (all) "; " code { "--json" } " lists them all." } }
-        (table("Operations", &head, &rows))
-    }
-}
-
-/// Rows of the table of operations.
-const MOST_ROWS: usize = 400;
 
 /// "make" or "break", as the first word of a title.
 fn title_word(change: Change) -> &'static str {
