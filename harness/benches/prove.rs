@@ -53,20 +53,21 @@ fn growth(criterion: &mut Criterion) {
     group.finish();
 }
 
-/// A window of 16 samples scatters over its table, and few pairs of it and the envelope ever occur.
+/// A window of 16 samples scatters over its table: few pairs of it and the envelope ever occur, and they are kept in
+/// pages. With a longer bounce they are more.
 fn sparse(criterion: &mut Criterion) {
     let mut group = criterion.benchmark_group("sparse");
     group.sample_size(10).measurement_time(Duration::from_secs(8));
-    let envelope = Envelope::clean(60, 60).bounce(3, 3).glitch(1, 1).quiet(12);
     let law = LawTable::of(&MajorityRegister::<u16>::new(9, 16)).expect("a law");
-    for (set, memory_bytes) in [("dense", 1 << 30), ("paged", 7 << 20)] {
-        let mut limits = limits(1);
-        limits.memory_bytes = memory_bytes;
-        let states = prove_within(&law, &envelope, &limits).expect("fits").states;
+    for bounce in [3, 12] {
+        let envelope = Envelope::clean(60, 60).bounce(bounce, bounce).glitch(1, 1).quiet(12);
+        let states = prove_within(&law, &envelope, &limits(1)).expect("fits").states;
         group.throughput(Throughput::Elements(states));
-        group.bench_function(format!("9 of 16, {states} states, {set}"), |bencher| {
-            bencher.iter(|| prove_within(&law, black_box(&envelope), &limits).expect("fits"));
-        });
+        for (cores, threads) in [("one core", 1), ("two cores", 2)] {
+            group.bench_function(format!("9 of 16, {states} states, {cores}"), |bencher| {
+                bencher.iter(|| prove_within(&law, black_box(&envelope), &limits(threads)).expect("fits"));
+            });
+        }
     }
     group.finish();
 }

@@ -72,3 +72,50 @@ fn emit_of_a_law_that_cannot_be_is_refused() {
     let law = ["emit", "--law", "shift-register 70", "--tick", "1 ms"];
     Bench::new().refuses(&[&law[..], &FIGURES].concat(), &[told]);
 }
+
+/// Bounce of 5 ms and disturbances of 300 us in time: by hand, two samples confirm, and the bounce touches
+/// ceil(5.004 ms / 1.96 ms) = 3 samples at a tick of 2 ms, so a make takes 3 + 1 + 1 + 1 samples.
+#[test]
+fn choose_shows_where_each_law_works_over_all_tick_periods() {
+    let line = [
+        "choose",
+        "--bounce",
+        "5 ms",
+        "--disturbance",
+        "300 us",
+        "--quiet-time",
+        "5 ms",
+        "--latency",
+        "20 ms",
+    ];
+    let bench = Bench::new();
+    let run = bench.run(&[&line[..], &["--plot", "--list", "1"]].concat()).ends(0);
+    for part in [
+        "Clock state-machine: works, and is in time, from 200 us to 2.44 ms",
+        "and over 734 rounding steps",
+        "Free tick 2.4 ms with state-machine",
+        "slowest tick in time by the tolerance of the clock: 0 % 2.49 ms,",
+        "Power 500 wake-ups a second",
+        "asleep for at least 99.95 % of the time",
+        "o state-machine, + integrator, x shift-register",
+    ] {
+        assert!(run.flowing().contains(part), "\"{part}\" is not in {}", run.stdout);
+    }
+    let plot = run.stdout.lines().skip_while(|line| !line.contains("20 ms |---"));
+    assert!(plot.clone().count() > 10 && plot.clone().all(|line| line.len() <= 80), "{}", run.stdout);
+
+    let result = bench.run(&[&line[..], &["--json"]].concat()).ends(0).json()["result"].clone();
+    let curve = &result["clock"]["curves"][0];
+    let pieces = curve["pieces"].as_array().expect("a list");
+    let at_2_ms = |piece: &&serde_json::Value| {
+        piece["from_ns"].as_u64() <= Some(2_000_000) && piece["until_ns"].as_u64() >= Some(2_000_000)
+    };
+    let piece = pieces.iter().find(at_2_ms).expect("a piece");
+    assert_eq!(piece["worst_samples"]["make"], 6);
+    assert_eq!(
+        piece["worst_samples"]["make"],
+        result["choice"]["recommended"]["bounds_samples"]["make"]["worst"]
+    );
+    assert_eq!(result["sleep"]["operations_per_hour"], 60);
+    assert_eq!(result["slowest_by_tolerance"].as_array().map(Vec::len), Some(5));
+}

@@ -2,6 +2,8 @@
 
 use std::io::BufReader;
 
+use integration_tests::toggle::TOGGLE;
+
 use crate::bench::{Bench, Told};
 
 const ENVELOPE: &str = "dwell=20 bounce=5/3 glitch=1/1 quiet=10";
@@ -22,6 +24,66 @@ fn prove_of_a_true_claim_ends_with_0_and_gives_exact_bounds() {
         assert!(run.stdout.contains(part), "\"{part}\" is not in {}", run.stdout);
     }
     assert!(!run.stdout.contains("again: "), "{}", run.stdout);
+}
+
+/// Immunity, shortest operations and recovery of an integrator: by hand, five samples in a row or in all make it
+/// turn over, so four of a disturbance never do.
+#[test]
+fn prove_shows_what_holds_beyond_the_bounds() {
+    let bench = Bench::new();
+    let run = bench.run(&["prove", "integrator 5", "--envelope", ENVELOPE]).ends(0);
+    for part in [
+        "Immunity bears disturbances up to 4 samples while open, or up to 4 samples while closed, all else as it is",
+        "a lone one from rest is never reported up to 4 while open and up to 4 while closed",
+        "Shortest operations always served, in samples: 12 closed with 10 open",
+        "Recovery right for good within 12 samples after an operation that was too short",
+        "right for good within 7 samples from any state of the law",
+    ] {
+        assert!(run.flowing().contains(part), "\"{part}\" is not in {}", run.stdout);
+    }
+    let beyond = bench.run(&["prove", "integrator 5", "--envelope", ENVELOPE, "--json"]).ends(0).json();
+    let beyond = &beyond["result"]["beyond"];
+    assert_eq!(beyond["lone_disturbance"], serde_json::json!({ "open": 4, "closed": 4 }));
+    assert_eq!(beyond["immunity"], serde_json::json!({ "open": 4, "closed": 4 }));
+    assert_eq!(beyond["shortest_operations"], serde_json::json!([{ "open": 10, "closed": 12 }]));
+    assert_eq!(beyond["after_short_operations"]["within_samples"], 12);
+    assert_eq!(beyond["not_searched"], serde_json::json!({}));
+}
+
+/// A proof too large to be repeated says so, and how to ask.
+#[test]
+fn prove_of_a_large_product_says_what_was_not_searched_and_how_to_ask() {
+    let bench = Bench::new();
+    let law = "state-machine confirm=4 patience=4 lockout=15";
+    let line = ["prove", law, "--envelope", "dwell=160 bounce=16 glitch=3 quiet=80"];
+    let quick = bench.run(&line).ends(0);
+    for part in ["Not searched immunity, shortest operations and recovery", "--thorough does it all the same"]
+    {
+        assert!(quick.flowing().contains(part), "\"{part}\" is not in {}", quick.stdout);
+    }
+    let thorough = bench.run(&[&line[..], &["--thorough"]].concat()).ends(0);
+    assert!(
+        thorough.flowing().contains("Immunity bears disturbances up to 3 samples"),
+        "{}",
+        thorough.stdout
+    );
+    assert!(!thorough.flowing().contains("Not searched"), "{}", thorough.stdout);
+}
+
+/// A lamp that turns over has no position to come back to, and the best lamp needs what the best make needs.
+#[test]
+fn prove_of_a_lamp_shows_its_limit_and_says_nothing_of_recovery() {
+    let bench = Bench::with("lamp.kiss2", TOGGLE);
+    let line = ["prove", "--table", "lamp.kiss2", "--contract", "alternate", "--envelope", "dwell=5"];
+    let run = bench.run(&line).ends(0);
+    for part in [
+        "the output turns over once for every make",
+        "Make at most 1 sample, at least 1; no logic can promise less than 1 (1.00 x)",
+        "Recovery says nothing of an output that turns over",
+    ] {
+        assert!(run.flowing().contains(part), "\"{part}\" is not in {}", run.stdout);
+    }
+    assert!(!run.stdout.contains("--thorough"), "{}", run.stdout);
 }
 
 /// The row of a timing diagram, one character a tick.
@@ -187,4 +249,63 @@ fn table_with_very_many_bad_lines_lists_the_first_and_says_so() {
     let run = bench.run(&["prove", "--table", "lamp.kiss2", "--envelope", "dwell=5"]).ends(2);
     assert_eq!(run.stderr.matches("error: lamp.kiss2:").count(), 21, "{}", run.stderr);
     assert!(run.stderr.contains("more bad lines follow"), "{}", run.stderr);
+}
+
+/// Incomplete, not deterministic, not reachable, without reset, of the wrong width, with something left open.
+#[test]
+fn table_that_is_no_machine_is_refused_whatever_is_wrong() {
+    let edited = |from: &str, to: &str| LAMP.replace(from, to);
+    for (text, place, message, help) in [
+        (
+            edited("1 on on 1\n", ""),
+            "lamp.kiss2:6:3",
+            "state \"on\" has no line for sample 1 (closed)",
+            "say where",
+        ),
+        (
+            edited("1 on on 1\n", "1 on on 1\n1 on off 1\n"),
+            "lamp.kiss2:8:3",
+            "state \"on\" with sample 1 (closed) was already given in line 7, with another next state",
+            "keep one of the two",
+        ),
+        (
+            edited(".e", "- far on 1\n.e"),
+            "lamp.kiss2:8:3",
+            "state \"far\" is never reached from the reset state \"off\"",
+            "remove its lines",
+        ),
+        (edited(".r off\n", ""), "lamp.kiss2", "the table names no reset state", ".r off"),
+        (edited(".i 1", ".i 2"), "lamp.kiss2:1:4", ".i says \"2\" bits", ""),
+        (
+            edited("1 off on 0", "1 off - 0"),
+            "lamp.kiss2:5:7",
+            "the next state of \"off\" is left open",
+            "name the state",
+        ),
+    ] {
+        let helps = if help.is_empty() { vec![] } else { vec![help] };
+        refuses_table("lamp.kiss2", text, &[(place, message, &helps)]);
+    }
+}
+
+#[test]
+fn envelope_that_contradicts_itself_is_refused() {
+    let bench = Bench::new();
+    for (envelope, message, help) in [
+        ("dwell=0", "an envelope needs a dwell of at least 1 tick", "write"),
+        ("dwell=9 glitch=1 quiet=0", "a quiet of 0 ticks lets one disturbance run into the next", "quiet=1"),
+        ("dwell=9 bounse=3", "\"bounse\" is no part of an envelope", "write bounce="),
+    ] {
+        for command in [&["prove", "integrator 3"][..], &["limit"]] {
+            let line = [command, &["--envelope", envelope]].concat();
+            bench.refuses_usage(&line, ("", message, &[help]));
+        }
+    }
+}
+
+#[test]
+fn prove_that_would_not_fit_says_unfinished_and_ends_with_2() {
+    let told: Told<'_> = ("", "unfinished: the envelope has more than", &["use a longer tick period"]);
+    let envelope = "dwell=100000000 bounce=5 glitch=1 quiet=100000";
+    Bench::new().refuses(&["prove", "integrator 5", "--envelope", envelope], &[told]);
 }

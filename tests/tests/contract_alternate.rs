@@ -9,7 +9,8 @@ use debounce_core::{
 use harness::machine::{MachineTable, Reading, read_kiss2};
 use harness::prove::observe::{Observed, Observer, Start, World, observe};
 use harness::prove::{
-    Contract, Environment, LawTable, Limits, Outcome, Proof, prove, prove_contract, prove_within,
+    Contract, Environment, LawTable, Limits, Outcome, Proof, closed_form_limit, prove, prove_contract,
+    prove_within,
 };
 use integration_tests::predicate::each_legal_word;
 use integration_tests::toggle::{Lamp, TOGGLE};
@@ -286,4 +287,21 @@ fn lamp_that_turns_over_at_the_break_is_refused_since_a_held_contact_never_settl
     let error =
         read_kiss2("lamp.kiss2", at_break.as_bytes(), Reading::Moore).expect_err("it settles nowhere closed");
     assert!(error.to_string().contains("closed samples never settle the machine"), "{error}");
+}
+
+/// A lamp behind the machine that reaches the limit of a make turns over within it, either way; and the written
+/// argument says that no lamp is sooner.
+#[test]
+fn lamp_behind_the_best_machine_has_the_limit_of_a_make_at_both_turns() {
+    let mut seen = 0;
+    for envelope in envelopes() {
+        let Some(limit) = closed_form_limit(&envelope, Contract::Alternate) else { continue };
+        let law = StateMachine::<u8>::for_envelope(&envelope).expect("in the range of the closed form");
+        let bounds = alternate(&Lamp(law), &envelope).bounds().expect("faithful");
+        let worst = PerChange { make: bounds.latency.make.worst, break_: bounds.latency.break_.worst };
+        assert_eq!(worst, limit, "{envelope:?}");
+        assert_eq!(limit.make, limit.break_);
+        seen += 1;
+    }
+    assert_eq!(seen, 41, "pinned");
 }

@@ -21,8 +21,14 @@ fn kiss2(lines: &str, expected: &[&str]) {
 
 #[test]
 fn table_that_is_incomplete_names_state_and_sample() {
-    kiss2("0 a a 0\n1 a b 0\n1 b b 1\n", &["t.kiss2:6:3: state \"b\" has no line for sample 0 (open)"]);
-    kiss2("0 a a 0\n", &["t.kiss2:4:3: state \"a\" has no line for sample 1 (closed)"]);
+    kiss2(
+        "0 a a 0\n1 a b 0\n1 b b 1\n",
+        &["t.kiss2:6:3: state \"b\" has no line for sample 0 (open); say where it goes then"],
+    );
+    kiss2(
+        "0 a a 0\n",
+        &["t.kiss2:4:3: state \"a\" has no line for sample 1 (closed); say where it goes then"],
+    );
 }
 
 #[test]
@@ -191,8 +197,8 @@ fn csv_that_is_no_table_is_refused() {
     csv(
         "state,sample,next,output\na,0,a,0\nb,1,b,1\n",
         &[
-            "t.csv:2:1: state \"a\" has no line for sample 1 (closed)",
-            "t.csv:3:1: state \"b\" has no line for sample 0 (open)",
+            "t.csv:2:1: state \"a\" has no line for sample 1 (closed); say where it goes then",
+            "t.csv:3:1: state \"b\" has no line for sample 0 (open); say where it goes then",
         ],
     );
 }

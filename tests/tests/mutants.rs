@@ -1,8 +1,9 @@
 //! Mutants: local copies of the built-in laws in which one use of one parameter is off by one.
 //!
-//! Every one must be told apart from the law by a shortest sequence of samples, and the proof of what the law
-//! guarantees must fail for it in some envelope. (There are parameters for which a mutant guarantees just as much,
-//! such as an integrator to 6 in steps of 2 and 3 that returns in steps of 3; comparing finds them all the same.) The copy without a mutation must do the same as the law.
+//! Every one must be refuted: in some envelope the law keeps what its documents claim, which is that every operation is
+//! reported once and in order and no later than the proven bound, and the mutant does not, as the waveform of its
+//! refutation shows when it is followed once more through both. The copy without a mutation must do the same as the law.
+//! Mutants that do the same as the law are none; comparing finds them, and they are not counted.
 
 use std::fmt::Debug;
 use std::hash::Hash;
@@ -11,8 +12,9 @@ use debounce_core::{
     Bounds, Change, Envelope, Integrator, Law, Machine, MajorityRegister, Position, ShiftRegister,
     StateMachine, StateMachineParameters,
 };
+use harness::check::{Replay, replay};
 use harness::machine::{MachineTable, compare};
-use harness::prove::prove;
+use harness::prove::{Outcome, Witness, WitnessTick, prove};
 
 /// Nothing changed, or the use of that number off by one.
 #[derive(Clone, Copy, Debug)]
@@ -161,35 +163,99 @@ impl StateMachineCopy {
     }
 }
 
-/// Envelopes in which the bounds of a law are asked for.
+/// Envelopes in which claims are made, small ones first.
 fn envelopes() -> Vec<Envelope> {
-    // Short dwells show a lock-out that is too long, close disturbances a count that is cleared too late.
-    let dwells = [2, 3, 4, 6, 30];
-    let glitches = (0..=3).flat_map(|open| (0..=3).map(move |closed| (open, closed)));
     let mut envelopes = Vec::new();
-    for dwell in dwells {
-        for bounce in [0, 1, 3] {
-            for (open, closed) in glitches.clone() {
-                for quiet in [1, 2, 3, 4, 5, 6, 9] {
-                    let envelope = Envelope::clean(dwell, dwell).bounce(bounce, bounce);
-                    envelopes.push(envelope.glitch(open, closed).quiet(quiet));
+    // Short dwells show a lock-out that is too long, close disturbances a count that is cleared too late.
+    for dwell in [2, 3, 4, 5, 6, 7, 8, 9, 12, 30] {
+        for (make, break_) in [(0, 0), (1, 1), (2, 2), (3, 3), (0, 3), (3, 0), (7, 0)] {
+            for glitch in (0..=3).flat_map(|open| (0..=3).map(move |closed| (open, closed))) {
+                let quiets: &[u32] = if glitch == (0, 0) { &[1] } else { &[1, 2, 3, 4, 5, 6, 9] };
+                for &quiet in quiets {
+                    let envelope = Envelope::clean(dwell, dwell).bounce(make, break_);
+                    envelopes.push(envelope.glitch(glitch.0, glitch.1).quiet(quiet));
                 }
             }
+        }
+    }
+    // A settled sample between the rest of a bounce and a disturbance shows what a count has kept.
+    for (make, break_) in [(0, 4), (4, 0)] {
+        for (open, closed) in [(0, 2), (2, 0)] {
+            let envelope = Envelope::clean(30, 30).bounce(make, break_).glitch(open, closed);
+            envelopes.push(envelope.quiet(9).calm(1));
         }
     }
     envelopes
 }
 
-fn bounds<L: Law>(law: &L) -> Vec<Option<Bounds>>
-where
-    L::State: Hash,
-{
-    envelopes().iter().map(|envelope| prove(law, envelope).expect("a sound law").bounds()).collect()
+/// What the documents claim of a law in an envelope, and a mutant does not keep.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+enum Broken {
+    /// Every operation is reported once and in order.
+    Faithful,
+    /// No report comes later than the proven bound.
+    Latency,
 }
 
-/// Checks the copy without a mutation, then every mutant; returns how many there were.
+/// How many mutants broke which claim first.
+#[derive(Clone, Copy, PartialEq, Eq, Debug, Default)]
+struct Tally {
+    faithful: u32,
+    latency: u32,
+}
+
+/// The claim about `law` that `mutant` breaks, each shown by a waveform that is followed once more
+/// through both: the law keeps its promise in it, the mutant does not.
+fn broken<L: Law, C: Law>(law: &L, mutant: &C, (envelope, claimed): &(Envelope, Bounds)) -> Option<Broken>
+where
+    L::State: Hash,
+    C::State: Hash,
+{
+    let of_mutant = prove(mutant, envelope).expect("a sound law");
+    let kept = |witness: &Witness| {
+        let kept = follow(law, witness);
+        assert_eq!(kept.fault(), None, "{envelope:?}: {witness:?}");
+        for change in [Change::Make, Change::Break] {
+            let worst = claimed.latency.at(change).worst;
+            assert!(kept.slowest().at(change).is_none_or(|seen| seen <= worst), "{envelope:?}: {witness:?}");
+        }
+    };
+    match &of_mutant.outcome {
+        Outcome::Refuted { witness, .. } => {
+            kept(witness);
+            assert!(follow(mutant, witness).fault().is_some(), "{envelope:?}: {witness:?}");
+            Some(Broken::Faithful)
+        }
+        Outcome::Faithful { bounds, slowest } => {
+            let later = |&change: &Change| bounds.latency.at(change).worst > claimed.latency.at(change).worst;
+            if let Some(change) = [Change::Make, Change::Break].into_iter().find(later) {
+                let witness = slowest.of(change).clone().expect("the worst latency has a waveform");
+                kept(&witness);
+                let seen = follow(mutant, &witness).slowest().at(change);
+                assert_eq!(seen, Some(bounds.latency.at(change).worst), "{envelope:?}: {witness:?}");
+                return Some(Broken::Latency);
+            }
+            None
+        }
+    }
+}
+
+/// The law along a witness.
+fn follow<L: Law>(law: &L, witness: &Witness) -> Replay {
+    let row = |of: fn(&WitnessTick) -> Position| {
+        let signs = |tick: &WitnessTick| if of(tick).is_closed() { '1' } else { '0' };
+        let mut row: String = witness.ticks.iter().map(signs).collect();
+        if let Some(from) = witness.loop_from {
+            row = format!("{}({})", &row[..from], &row[from..]);
+        }
+        row
+    };
+    replay(law, witness.start, &row(|tick| tick.contact), &row(|tick| tick.sample))
+}
+
+/// Checks the copy without a mutation, then that every mutant breaks a claim; counts how many break which first.
 #[track_caller]
-fn caught<L: Law, C: Law + Debug>(law: &L, uses: usize, copy: impl Fn(Mutation) -> C) -> usize
+fn caught<L: Law, C: Law + Debug>(tally: &mut Tally, law: &L, uses: usize, copy: impl Fn(Mutation) -> C)
 where
     L::State: Hash,
     C::State: Hash,
@@ -197,62 +263,59 @@ where
     let machine = MachineTable::of(law).expect("a sound law");
     let of_copy = |mutation| MachineTable::of(&copy(mutation)).expect("a sound law");
     assert_eq!(compare(&machine, &of_copy(NONE)), None, "{:?}", copy(NONE));
-    let proved = bounds(law);
-    assert_eq!(bounds(&copy(NONE)), proved);
-    assert!(proved.iter().any(Option::is_some) && proved.iter().any(Option::is_none));
+    let bounds = |envelope: &Envelope| prove(law, envelope).expect("a sound law").bounds();
+    let claims: Vec<(Envelope, Bounds)> =
+        envelopes().into_iter().filter_map(|envelope| Some((envelope, bounds(&envelope)?))).collect();
     for mutation in Mutation::all(uses) {
         let mutant = copy(mutation);
-        let apart = compare(&machine, &of_copy(mutation)).unwrap_or_else(|| panic!("{mutant:?} survives"));
+        let apart =
+            compare(&machine, &of_copy(mutation)).unwrap_or_else(|| panic!("{mutant:?} is equivalent"));
         let (mut good, mut bad) = (law.rest(apart.start), mutant.rest(apart.start));
         for (at, &sample) in apart.samples.iter().enumerate() {
             let edges = [law.step(&mut good, sample), mutant.step(&mut bad, sample)];
             let is_last = at + 1 == apart.samples.len();
             assert_eq!(edges[0] != edges[1], is_last, "{mutant:?}: {apart:?}");
         }
-        // What was proved of the law in some envelope is refuted for the mutant: an edge too many or too few, or
-        // another best or worst latency.
-        let refuted =
-            proved.iter().zip(bounds(&mutant)).filter(|(law, mutant)| law.is_some() && **law != *mutant);
-        assert!(refuted.count() > 0, "the proofs do not notice {mutant:?}");
+        let first = claims.iter().find_map(|claim| broken(law, &mutant, claim));
+        match first.unwrap_or_else(|| panic!("{mutant:?} keeps every claim")) {
+            Broken::Faithful => tally.faithful += 1,
+            Broken::Latency => tally.latency += 1,
+        }
     }
-    2 * uses
 }
 
 #[test]
 fn mutants_of_the_integrator_are_all_caught() {
-    for (full_scale, up, down) in [(3_u8, 1_u8, 1_u8), (7, 3, 2), (4, 1, 1)] {
+    let mut tally = Tally::default();
+    for (full_scale, up, down) in [(3_u8, 1_u8, 1_u8), (7, 3, 2), (6, 2, 3), (4, 1, 1)] {
         let law = Integrator::<u8>::with_steps(full_scale, up, down);
         let [full_scale, up, down] = [full_scale, up, down].map(i32::from);
         let copy = |mutation| IntegratorCopy { full_scale, up, down, mutation };
-        assert_eq!(caught(&law, IntegratorCopy::USES, copy), 10);
+        caught(&mut tally, &law, IntegratorCopy::USES, copy);
     }
-}
-
-#[test]
-fn mutants_that_guarantee_as_much_are_still_told_apart() {
-    let machine = MachineTable::of(&Integrator::<u8>::with_steps(6, 2, 3)).expect("a sound law");
-    for mutation in Mutation::all(IntegratorCopy::USES) {
-        let copy = IntegratorCopy { full_scale: 6, up: 2, down: 3, mutation };
-        assert!(compare(&machine, &MachineTable::of(&copy).expect("a sound law")).is_some(), "{copy:?}");
-    }
+    assert_eq!(tally, Tally { faithful: 38, latency: 2 });
 }
 
 #[test]
 fn mutants_of_the_shift_register_are_all_caught() {
+    let mut tally = Tally::default();
     for window in [2_u8, 3, 4] {
         let copy = |mutation| ShiftRegisterCopy { window: i32::from(window), mutation };
-        assert_eq!(caught(&ShiftRegister::new(window), ShiftRegisterCopy::USES, copy), 2);
+        caught(&mut tally, &ShiftRegister::new(window), ShiftRegisterCopy::USES, copy);
     }
+    assert_eq!(tally, Tally { faithful: 6, latency: 0 });
 }
 
 #[test]
 fn mutants_of_the_majority_register_are_all_caught() {
+    let mut tally = Tally::default();
     for (majority, window) in [(2_u8, 3_u8), (3, 4), (4, 5)] {
         let law = MajorityRegister::<u8>::new(majority, window);
         let [majority, window] = [majority, window].map(i32::from);
         let copy = |mutation| MajorityCopy { majority, window, mutation };
-        assert_eq!(caught(&law, MajorityCopy::USES, copy), 4);
+        caught(&mut tally, &law, MajorityCopy::USES, copy);
     }
+    assert_eq!(tally, Tally { faithful: 12, latency: 0 });
 }
 
 /// The oldest sample leaves the window at the next one, before anything is counted: no input can show how many are
@@ -272,6 +335,7 @@ fn majority_register_that_turns_over_one_sample_more_or_less_does_the_same() {
 
 #[test]
 fn mutants_of_the_state_machine_are_all_caught() {
+    let mut tally = Tally::default();
     for (confirm, patience, lockout) in [([2_u8, 2_u8], [2_u8, 2_u8], [1_u8, 1_u8]), ([3, 2], [2, 3], [2, 3])]
     {
         let [make, break_] = [1, 0];
@@ -281,6 +345,7 @@ fn mutants_of_the_state_machine_are_all_caught() {
         let law = StateMachine::<u8>::new(parameters);
         let [confirm, patience, lockout] = [confirm, patience, lockout].map(|pair| pair.map(i32::from));
         let copy = |mutation| StateMachineCopy { confirm, patience, lockout, mutation };
-        assert_eq!(caught(&law, StateMachineCopy::USES, copy), 12);
+        caught(&mut tally, &law, StateMachineCopy::USES, copy);
     }
+    assert_eq!(tally, Tally { faithful: 22, latency: 2 });
 }

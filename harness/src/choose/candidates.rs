@@ -6,7 +6,7 @@ use crate::law_text::LawParameters;
 
 /// All candidates for an envelope. `allowed` is the longest latency, in samples, that could still be accepted:
 /// a law that needs more samples than that for a clean change is not tried.
-pub(super) fn laws(envelope: &Envelope, allowed: u32) -> Vec<LawParameters> {
+pub(crate) fn laws(envelope: &Envelope, allowed: u32) -> Vec<LawParameters> {
     let allowed = allowed.min(u32::from(u16::MAX)) as u16;
     let mut laws = Vec::new();
     shift_registers(allowed, &mut laws);

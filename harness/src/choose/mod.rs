@@ -21,6 +21,7 @@ use crate::sample::ExactPeriod;
 use crate::trace::Trace;
 use crate::truth::TruthChange;
 
+pub(crate) use candidates::laws as laws_to_try;
 pub use rank::{Preference, Reason};
 
 /// What is to be chosen for.

@@ -7,6 +7,7 @@ use clap::Args;
 use comfy_table::Table;
 use serde_json::{Value, json};
 
+use super::clock_text::ClockView;
 use super::input::Input;
 use super::lines::{Lines, strong};
 use super::preference::PreferenceOption;
@@ -14,8 +15,11 @@ use super::recordings::RequirementInput;
 use super::report::{ReportOption, written};
 use super::study::failure;
 use super::{Answer, Failure, Outcome, Session};
+use crate::clock_range::{Activity, ClockQuestion, asleep, clock_range, slowest_by_tolerance};
+use crate::problem::Problem;
+use crate::report::clock_plot::ClockPlot;
 use crate::report::{html, json as report, words};
-use crate::requirement::Origin;
+use crate::requirement::{Origin, Resolved};
 use crate::study::Study;
 
 /// Ranks laws, parameters and tick periods for a requirement.
@@ -37,6 +41,15 @@ pub struct ChooseArguments {
     /// So many candidates are listed
     #[arg(long, value_name = "COUNT", default_value_t = 12)]
     pub list: usize,
+    /// Plot worst delay against tick period
+    #[arg(long)]
+    pub plot: bool,
+    /// Operations in an hour, for how long the firmware can sleep
+    #[arg(long, value_name = "COUNT", default_value_t = 60)]
+    pub operations_per_hour: u32,
+    /// Disturbances in an hour, for the same
+    #[arg(long, value_name = "COUNT", default_value_t = 0)]
+    pub disturbances_per_hour: u32,
     /// The report.
     #[command(flatten)]
     pub report: ReportOption,
@@ -62,12 +75,17 @@ impl ChooseArguments {
         let files = if report.is_some() { input.files()? } else { Vec::new() };
         let study =
             Study::of(input.observed, &input.requirement, self.preference.into(), |_| {}).map_err(failure)?;
-        let mut files_written = Vec::new();
+        let activity = Activity {
+            operations_per_hour: self.operations_per_hour,
+            disturbances_per_hour: self.disturbances_per_hour,
+        };
+        let clock = clock_view(&study, activity)?;
+        let mut written = Vec::new();
         if let Some(report) = report {
             let origin = html::Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
-            files_written.push(report.write(&html::study(&study, false, &origin))?);
+            written.push(report.write(&html::study(&study, false, &origin))?);
         }
-        Ok(Box::new(Chosen { study, list: self.list, written: files_written }))
+        Ok(Box::new(Chosen { study, list: self.list, clock, plot: self.plot, written }))
     }
 }
 
@@ -75,7 +93,31 @@ impl ChooseArguments {
 struct Chosen {
     study: Study,
     list: usize,
+    clock: ClockView,
+    plot: bool,
     written: Vec<PathBuf>,
+}
+
+/// Tolerances of the clock that are looked at: exact, a crystal of 100 ppm, oscillators on the chip (common practice).
+const TOLERANCES_PPM: [u32; 5] = [0, 100, 10_000, 20_000, 100_000];
+
+/// The sample clock, and how long the first candidate sleeps.
+fn clock_view(study: &Study, activity: Activity) -> Result<ClockView, Problem> {
+    let question = ClockQuestion::of(&study.resolved);
+    let asleep = match study.ranking.recommended() {
+        Some(first) => {
+            let view = study.ranking.view(first);
+            let table = first.logic.table().map_err(Problem::told)?;
+            view.envelope.ok().and_then(|envelope| asleep(&table, &envelope, &view.clock, activity))
+        }
+        None => None,
+    };
+    Ok(ClockView {
+        range: clock_range(&question),
+        by_tolerance: slowest_by_tolerance(&question, &TOLERANCES_PPM),
+        activity,
+        asleep,
+    })
 }
 
 impl Answer for Chosen {
@@ -88,8 +130,10 @@ impl Answer for Chosen {
         let mut lines = Lines::new(out);
         lines
             .item("Envelope", &format!("the contact {}", words::envelope(&self.study.physical).join("; ")))?;
+        network(&mut lines, &self.study.resolved)?;
         for row in self.study.resolved.rows() {
-            if !matches!(row.origin, Origin::Given { .. } | Origin::Option(_)) {
+            // What the network does has just been said.
+            if !matches!(row.origin, Origin::Given { .. } | Origin::Option(_) | Origin::Network) {
                 lines.item("Assumed", &format!("{} = {} ({})", row.key, row.text, row.origin))?;
             }
         }
@@ -112,8 +156,14 @@ impl Answer for Chosen {
         lines.plain("\n")?;
         lines.plain(&candidate_table(&self.study, self.list))?;
         lines.plain(
-            "\n* no other candidate that holds beats it in delay, ticks a second and RAM together\n",
+            "\n* no other candidate that holds beats it in delay, ticks a second and RAM together\n\n",
         )?;
+        self.clock.write(&mut lines)?;
+        if self.plot {
+            let latency = &self.study.resolved.required.latency;
+            let allowed_ns = latency.make.value.ns().min(latency.break_.value.ns());
+            lines.plain(&format!("\n{}", ClockPlot { range: &self.clock.range, allowed_ns }))?;
+        }
         written(&mut lines, &self.written)
     }
 
@@ -122,8 +172,30 @@ impl Answer for Chosen {
             "requirement": report::requirement(&self.study.resolved),
             "envelope": report::physical(&self.study.physical),
             "choice": report::ranking(&self.study.ranking),
+            "clock": report::clock_range(&self.clock.range),
+            "slowest_by_tolerance": self
+                .clock
+                .by_tolerance
+                .iter()
+                .map(|(ppm, slowest_ns)| json!({ "ppm": ppm, "slowest_ns": slowest_ns }))
+                .collect::<Value>(),
+            "sleep": {
+                "operations_per_hour": self.clock.activity.operations_per_hour,
+                "disturbances_per_hour": self.clock.activity.disturbances_per_hour,
+                "of_first": self.clock.asleep.as_ref().map(report::asleep),
+            },
         })
     }
+}
+
+/// What stands in front of the pin, and what it does.
+pub(super) fn network(lines: &mut Lines<'_>, resolved: &Resolved) -> io::Result<()> {
+    let Some(front) = &resolved.network else { return Ok(()) };
+    let sentences = front.sentences();
+    for (index, sentence) in sentences.iter().enumerate() {
+        if index == 0 { lines.item("Network", sentence)? } else { lines.more(sentence)? }
+    }
+    Ok(())
 }
 
 /// The first candidates as a table.

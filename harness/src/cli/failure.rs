@@ -49,6 +49,11 @@ impl Failure {
         Problems::from_found(problems).map_or_else(|| Problem::new("something is wrong").into(), Self::from)
     }
 
+    /// Both, the problems of `self` first.
+    pub(super) fn and(self, other: Self) -> Self {
+        Self::from_found(self.problems.iter().chain(other.problems.iter()).cloned().collect())
+    }
+
     /// What was wrong.
     #[must_use]
     pub fn problems(&self) -> &Problems {

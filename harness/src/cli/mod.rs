@@ -3,17 +3,27 @@
 //! Exit codes: 0 holds, 1 does not hold, 2 bad input, bad usage or an output that cannot be written. A reader
 //! of standard output that goes away ends the run quietly, with the exit code that the answer has.
 
+mod beyond_text;
 mod characterise;
 mod choose;
+mod clock_text;
+mod compare;
 mod emit;
+mod envelope_input;
 mod envelope_text;
 mod failure;
 mod faults;
 mod files;
 mod input;
+mod limit;
+mod limit_answer;
 mod lines;
+mod logic_name;
+mod machine_file;
+mod network;
 mod preference;
 mod prove;
+mod prove_answer;
 mod reading;
 mod recorded;
 mod recordings;
@@ -30,12 +40,17 @@ mod tests;
 
 pub use characterise::CharacteriseArguments;
 pub use choose::ChooseArguments;
+pub use compare::CompareArguments;
 pub use emit::EmitArguments;
+pub use envelope_input::EnvelopeInput;
 pub use envelope_text::{EnvelopeText, EnvelopeTextError};
 pub use failure::{Failure, Outcome};
 pub use files::{OutputFolder, StagedFiles};
+pub use limit::LimitArguments;
+pub use logic_name::{LogicName, OutputOf};
+pub use network::NetworkArguments;
 pub use preference::{Merit, PreferenceOption};
-pub use prove::{OutputOf, Promise, ProveArguments};
+pub use prove::{Promise, ProveArguments};
 pub use reading::{FieldDelimiter, FractionMark, ReadingOptions, UnitOfTimes, UnknownValue};
 pub use recordings::RequirementInput;
 pub use replay::ReplayArguments;

@@ -8,11 +8,10 @@ use serde_json::{Value, json};
 
 use super::input::Input;
 use super::lines::Lines;
+use super::logic_name::{LogicName, OutputOf, Runnable};
 use super::recordings::RequirementInput;
 use super::{Answer, Failure, Outcome, Session};
 use crate::characterise::Burst;
-use crate::law_text::LawParameters;
-use crate::logic::Logic;
 use crate::problem::Problem;
 use crate::prove::{Witness, WitnessTick};
 use crate::quantity::TickPeriod;
@@ -32,9 +31,13 @@ use crate::with_law;
     after_help = ReplayArguments::EXAMPLES
 )]
 pub struct ReplayArguments {
-    /// The law with its parameters in ticks; two numbers around a stroke are for make and break
+    /// The law with its parameters in ticks, two numbers around a stroke being for make and break; or the file of a
+    /// next-state table (.kiss2 or .csv)
     #[arg(value_name = "LAW")]
-    pub law: LawParameters,
+    pub law: LogicName,
+    /// Whether an output of the table belongs to a state or to a transition
+    #[arg(long, value_enum, default_value_t)]
+    pub reading: OutputOf,
     /// Recordings and requirement.
     #[command(flatten)]
     pub input: RequirementInput,
@@ -63,8 +66,7 @@ impl ReplayArguments {
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let input = Input::with_recordings(&self.input, session)?;
         let resolved = input.requirement.fill_in(&measured(&input.observed))?;
-        let logic =
-            Logic::try_new(&self.law).map_err(|error| Problem::told(format!("{}: {error}", self.law)))?;
+        let logic = Runnable::read(&self.law, self.reading)?;
         let shortest = &resolved.required.shortest;
         let draws = Draws {
             count: self.draws,
@@ -77,11 +79,14 @@ impl ReplayArguments {
                 let clock = resolved.clock(tick);
                 let prepared = PreparedClock::new(&one.recording.trace, &one.truth, &clock, draws)
                     .map_err(|error| Problem::told(format!("{}: {error}", one.name)))?;
-                let measured = with_law!(&logic, law => prepared.measure(law));
+                let measured = match &logic {
+                    Runnable::Law(logic) => with_law!(logic, law => prepared.measure(law)),
+                    Runnable::Table(machine) => prepared.measure(machine),
+                };
                 runs.push(Run { recording, tick, clock, measured });
             }
         }
-        Ok(Box::new(Replayed { logic, law: self.law, observed: input.observed, runs }))
+        Ok(Box::new(Replayed { logic, law: self.law.clone(), observed: input.observed, runs }))
     }
 }
 
@@ -94,8 +99,8 @@ struct Run {
 }
 
 struct Replayed {
-    logic: Logic,
-    law: LawParameters,
+    logic: Runnable,
+    law: LogicName,
     observed: Vec<Observed>,
     runs: Vec<Run>,
 }
@@ -200,7 +205,11 @@ impl Replayed {
         let Some(latency) = &run.measured.nominal.make.latency else { return Ok(()) };
         let one = &self.observed[run.recording];
         let sampler = SampleClock::new(run.clock).phase_units(latency.slowest.phase.from);
-        let shown = with_law!(&self.logic, law => around(law, &sampler, one, latency.slowest.at_ns));
+        let at_ns = latency.slowest.at_ns;
+        let shown = match &self.logic {
+            Runnable::Law(logic) => with_law!(logic, law => around(law, &sampler, one, at_ns)),
+            Runnable::Table(machine) => around(machine, &sampler, one, at_ns),
+        };
         lines.plain(&format!(
             "\nslowest make, at {}, one column a tick:\n{}",
             words::instant(latency.slowest.at_ns),

@@ -10,8 +10,8 @@ use clap::{CommandFactory, Parser, Subcommand};
 use super::session::{print_problems, to_stdout};
 use super::shell::shell_line;
 use super::{
-    Answer, CharacteriseArguments, ChooseArguments, EmitArguments, Failure, GlobalOptions, ProveArguments,
-    ReplayArguments, Session, StudyArguments,
+    Answer, CharacteriseArguments, ChooseArguments, CompareArguments, EmitArguments, Failure, GlobalOptions,
+    LimitArguments, NetworkArguments, ProveArguments, ReplayArguments, Session, StudyArguments,
 };
 use crate::problem::Problem;
 
@@ -37,7 +37,10 @@ enum Command {
     Characterise(CharacteriseArguments),
     Choose(ChooseArguments),
     Prove(ProveArguments),
+    Limit(LimitArguments),
+    Compare(CompareArguments),
     Replay(ReplayArguments),
+    Network(NetworkArguments),
     Emit(EmitArguments),
 }
 
@@ -48,7 +51,10 @@ impl Command {
             Self::Characterise(_) => "characterise",
             Self::Choose(_) => "choose",
             Self::Prove(_) => "prove",
+            Self::Limit(_) => "limit",
+            Self::Compare(_) => "compare",
             Self::Replay(_) => "replay",
+            Self::Network(_) => "network",
             Self::Emit(_) => "emit",
         }
     }
@@ -59,7 +65,10 @@ impl Command {
             Self::Characterise(arguments) => arguments.run(session),
             Self::Choose(arguments) => arguments.run(session),
             Self::Prove(arguments) => arguments.run(session),
+            Self::Limit(arguments) => arguments.run(session),
+            Self::Compare(arguments) => arguments.run(session),
             Self::Replay(arguments) => arguments.run(session),
+            Self::Network(arguments) => arguments.run(session),
             Self::Emit(arguments) => arguments.run(session),
         }
     }

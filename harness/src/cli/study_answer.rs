@@ -7,6 +7,7 @@ use std::path::PathBuf;
 use debounce_core::PerChange;
 use serde_json::{Value, json};
 
+use super::choose::network;
 use super::lines::{Lines, grouped, strong};
 use super::recorded::{claims, recorded};
 use super::{Answer, Outcome};
@@ -38,6 +39,7 @@ impl Answer for StudyAnswer {
         }
         claims(&mut lines, &study.observed, &study.resolved)?;
         lines.item("Envelope", &format!("the contact {}", words::envelope(&study.physical).join("; ")))?;
+        network(&mut lines, &study.resolved)?;
         match (study.ranking.recommended(), &study.guarantees) {
             (Some(best), Some(found)) => self.recommended(&mut lines, best, found)?,
             _ => nothing_holds(&mut lines, study)?,
@@ -117,7 +119,11 @@ impl StudyAnswer {
     fn conformance(&self, lines: &mut Lines<'_>) -> io::Result<()> {
         for (one, conforms) in self.study.observed.iter().zip(&self.study.conformance) {
             if conforms.conforms() {
-                lines.item("Conforms", &format!("{} lies inside the envelope of the proof", one.name))?;
+                let inside = match self.study.resolved.network {
+                    None => "lies inside the envelope of the proof",
+                    Some(_) => "lies inside the envelope of the contact that the network was worked out for",
+                };
+                lines.item("Conforms", &format!("{} {inside}", one.name))?;
                 continue;
             }
             let number = conforms.violations.len();
@@ -172,9 +178,10 @@ const SHOWN: usize = 5;
 
 /// What is proved beyond the bounds, in one line.
 fn beyond(found: &Guarantees, tick: TickPeriod) -> Option<String> {
-    let immunity = found.immunity?;
-    let pair = found.shortest_operations.first()?;
-    let recovery = match found.after_short_operations.as_ref()? {
+    let beyond = &found.beyond;
+    let immunity = beyond.immunity.as_ref().ok()?;
+    let pair = beyond.shortest_operations.as_ref().ok()?.first()?;
+    let recovery = match beyond.after_short_operations.as_ref().ok()? {
         Recovery::Within(samples) => format!("recovers from shorter ones within {samples} ticks"),
         Recovery::Never(_) => "may stay wrong after shorter ones".to_owned(),
     };

@@ -40,7 +40,10 @@ fn help_examples_of_every_command_parse() {
     examples_parse::<CharacteriseArguments>("characterise", CharacteriseArguments::EXAMPLES);
     examples_parse::<ChooseArguments>("choose", ChooseArguments::EXAMPLES);
     examples_parse::<ProveArguments>("prove", ProveArguments::EXAMPLES);
+    examples_parse::<LimitArguments>("limit", LimitArguments::EXAMPLES);
+    examples_parse::<CompareArguments>("compare", CompareArguments::EXAMPLES);
     examples_parse::<ReplayArguments>("replay", ReplayArguments::EXAMPLES);
+    examples_parse::<NetworkArguments>("network", NetworkArguments::EXAMPLES);
     examples_parse::<EmitArguments>("emit", EmitArguments::EXAMPLES);
 }
 
@@ -53,7 +56,10 @@ fn help_of_every_command_is_consistent() {
     check::<CharacteriseArguments>("characterise");
     check::<ChooseArguments>("choose");
     check::<ProveArguments>("prove");
+    check::<LimitArguments>("limit");
+    check::<CompareArguments>("compare");
     check::<ReplayArguments>("replay");
+    check::<NetworkArguments>("network");
     check::<EmitArguments>("emit");
 }
 

@@ -123,7 +123,7 @@ fn states(lines: &[Line], faults: &mut Faults) -> Vec<State> {
     for state in &states {
         for sample in Position::BOTH {
             if state.cells[sample as usize].is_none() && !state.led_astray[sample as usize] {
-                faults.at(
+                faults.at_with_help(
                     state.place,
                     format!(
                         "state {} has no line for sample {} ({})",
@@ -131,6 +131,7 @@ fn states(lines: &[Line], faults: &mut Faults) -> Vec<State> {
                         sample as u8,
                         word(sample)
                     ),
+                    "say where it goes then",
                 );
             }
         }

@@ -44,6 +44,11 @@ impl Branch {
         (self.0 >> Self::SHIFT) as usize
     }
 
+    /// The same with another target.
+    fn moved(self, target: u32) -> Self {
+        Self(self.0 & ((1 << Self::SHIFT) - 1) | target << Self::SHIFT)
+    }
+
     /// What the logic is given.
     #[inline]
     pub fn sample(self) -> Position {
@@ -123,6 +128,8 @@ pub struct Environment {
     branches: Vec<Branch>,
     first: Vec<u32>,
     starts: [u32; 2],
+    /// All states with the contact open come before this one.
+    first_closed: usize,
     dwell: PerPosition<u32>,
 }
 
@@ -143,7 +150,7 @@ impl Environment {
         let rules = Rules::of(envelope, contract)?;
         let mut enumeration = Enumeration::default();
         let starts = Position::BOTH.map(|contact| enumeration.number(rules.settled(contact)));
-        let mut branches = Vec::new();
+        let mut branches: Vec<Branch> = Vec::new();
         let mut first = vec![0];
         let mut next = 0;
         let mut fan = Vec::new();
@@ -163,7 +170,34 @@ impl Environment {
                 return Err(ProveError::environment_too_large());
             }
         }
-        Ok(Self { states: enumeration.states, branches, first, starts, dwell: rules.envelope.dwell })
+        Ok(Self::by_contact(enumeration.states, &branches, &first, starts, rules.envelope.dwell))
+    }
+
+    /// The automaton with its states sorted by where the contact is, and else in the order of their discovery.
+    fn by_contact(
+        found: Vec<EnvironmentState>,
+        fans: &[Branch],
+        fan: &[u32],
+        starts: [u32; 2],
+        dwell: PerPosition<u32>,
+    ) -> Self {
+        let (mut order, closed): (Vec<usize>, Vec<usize>) =
+            (0..found.len()).partition(|&state| found[state].contact == Position::Open);
+        let first_closed = order.len();
+        order.extend(closed);
+        let mut numbers = vec![0; found.len()];
+        order.iter().zip(0..).for_each(|(&old, new)| numbers[old] = new);
+        let (mut branches, mut first) = (Vec::with_capacity(fans.len()), Vec::with_capacity(fan.len()));
+        first.push(0);
+        for &old in &order {
+            let fan = &fans[fan[old] as usize..fan[old + 1] as usize];
+            branches.extend(fan.iter().map(|branch| branch.moved(numbers[branch.target()])));
+            // No more branches than before, and those were counted.
+            first.push(branches.len() as u32);
+        }
+        let starts = starts.map(|old| numbers[old as usize]);
+        let states = order.into_iter().map(|old| found[old]).collect();
+        Self { states, branches, first, starts, first_closed, dwell }
     }
 
     /// Whether `envelope` is one at all, without enumerating it.
@@ -190,6 +224,11 @@ impl Environment {
     #[must_use]
     pub fn start(&self, contact: Position) -> usize {
         self.starts[contact as usize] as usize
+    }
+
+    /// The first index with the contact closed; all with it open come before.
+    pub(super) fn first_closed(&self) -> usize {
+        self.first_closed
     }
 
     /// The state of an index.

@@ -2,14 +2,13 @@
 //!
 //! The order does not matter for what is reached, so it is chosen for speed: sweeps through the environment states in
 //! the order of their discovery, in which most branches lead onward. A word of states that waits its turn gathers all
-//! that comes in meanwhile and goes on with it at once. A violation ends the exploration; what takes the fewest
-//! samples to it is then found by [layers](super::layers).
+//! that comes in meanwhile and goes on with it at once. Two threads take one position of the contact each. A violation
+//! ends the exploration; what takes the fewest samples to it is then found by [layers](super::layers).
 
-use core::sync::atomic::{AtomicBool, AtomicUsize, Ordering::Relaxed};
-use std::sync::Mutex;
+use core::sync::atomic::{AtomicBool, Ordering::Relaxed};
 
 use super::product::Product;
-use super::reached::{Dense, Pages, Reached};
+use super::reached::{Half, Pages, Reached};
 use super::word::{Place, Words, ones};
 use super::{Limits, ProveError};
 
@@ -24,6 +23,12 @@ pub(super) struct Explored {
 
 /// Sets of fewer words than this are not worth sharing out.
 const SHARED_WORDS: usize = 1 << 14;
+
+/// Whether an exploration may take two threads.
+pub(super) fn is_shared(words: &Words<'_>, limits: &Limits) -> bool {
+    let threads = if limits.threads == 0 { rayon::current_num_threads() } else { limits.threads };
+    threads > 1 && words.len() >= SHARED_WORDS
+}
 
 /// Explores everything that can be reached from both starts; `None` as soon as a promise is broken.
 pub(super) fn explore(
@@ -40,29 +45,167 @@ fn explore_into(
     limits: &Limits,
     mut reached: Reached,
 ) -> Result<Option<Explored>, ProveError> {
-    let mut counts = Counts::default();
     for node in product.starts() {
         let (place, bit) = words.place(node);
         reached.add(place, bit);
     }
-    let threads = match limits.threads {
-        0 => rayon::current_num_threads(),
-        some => some,
-    };
-    loop {
-        let holds = if threads > 1 && words.len() >= SHARED_WORDS {
-            sweep_shared(words, &mut reached, threads, &mut counts)
-        } else {
-            sweep(words, &mut reached, &mut counts)
-        };
-        if !holds || !turn_pages(words, &mut reached, &mut counts)? {
-            return Ok(None);
-        }
-        if reached.dense.as_ref().is_none_or(Dense::is_clean) {
-            break;
+    let mut counts = Counts::default();
+    let holds = AtomicBool::new(true);
+    if is_shared(words, limits) && !settle_both(words, &mut reached, &mut counts, &holds) {
+        return Ok(None);
+    }
+    while !reached.is_clean() {
+        for half in 0..2 {
+            let allowance = reached.allowance();
+            let [open, closed] = &mut reached.halves;
+            let (half, other) = if half == 0 { (open, closed) } else { (closed, open) };
+            match settle(words, half, other, &mut counts, allowance, &holds) {
+                Pause::Clean => {}
+                Pause::Full => reached.check()?,
+                Pause::Broken => return Ok(None),
+            }
         }
     }
     Ok(Some(Explored { reached, states: counts.states, transitions: counts.transitions }))
+}
+
+/// Explores on two threads, one for each half, in turns: what leads to the other half waits for its next turn. False
+/// as soon as a promise is broken; otherwise all is clean, or the pages are full.
+fn settle_both(words: &Words<'_>, reached: &mut Reached, counts: &mut Counts, holds: &AtomicBool) -> bool {
+    let mut crossing = [Pages::default(), Pages::default()];
+    loop {
+        let allowance = reached.allowance() / 2;
+        let [open, closed] = &mut reached.halves;
+        let [to_closed, to_open] = &mut crossing;
+        let mut counted = [Counts::default(); 2];
+        let [in_open, in_closed] = &mut counted;
+        let pauses = rayon::join(
+            || settle(words, open, to_closed, in_open, allowance, holds),
+            || settle(words, closed, to_open, in_closed, allowance, holds),
+        );
+        for half in counted {
+            counts.states += half.states;
+            counts.transitions += half.transitions;
+        }
+        for (half, crossing) in [(&mut *closed, to_closed), (open, to_open)] {
+            while let Some(page) = crossing.take() {
+                page.into_iter()
+                    .filter(|&(_, bits)| bits != 0)
+                    .for_each(|(place, bits)| half.add(place, bits));
+            }
+        }
+        let pauses = [pauses.0, pauses.1];
+        if pauses.contains(&Pause::Broken) {
+            return false;
+        }
+        if pauses.contains(&Pause::Full) || reached.is_clean() {
+            return true;
+        }
+    }
+}
+
+/// Why a half is not gone on with.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Pause {
+    /// Nothing in it waits to be gone on from.
+    Clean,
+    /// The pages have outgrown their allowance.
+    Full,
+    /// A promise is broken, here or in the other half.
+    Broken,
+}
+
+/// Where states of the other half are put.
+trait Elsewhere {
+    fn put(&mut self, place: Place, bits: u64);
+    /// Bytes of its pages.
+    fn bytes(&self) -> u64;
+}
+
+impl Elsewhere for Half {
+    #[inline]
+    fn put(&mut self, place: Place, bits: u64) {
+        self.add(place, bits);
+    }
+
+    fn bytes(&self) -> u64 {
+        self.pages.bytes()
+    }
+}
+
+impl Elsewhere for Pages {
+    #[inline]
+    fn put(&mut self, place: Place, bits: u64) {
+        self.add(place, bits);
+    }
+
+    fn bytes(&self) -> u64 {
+        Self::bytes(self)
+    }
+}
+
+/// Goes on from everything in `half` until it is clean, unless its pages and the other's outgrow `allowance`.
+fn settle(
+    words: &Words<'_>,
+    half: &mut Half,
+    other: &mut impl Elsewhere,
+    counts: &mut Counts,
+    allowance: u64,
+    holds: &AtomicBool,
+) -> Pause {
+    while !half.is_clean() {
+        for group in 0..half.groups() {
+            loop {
+                let dirty = half.take_dirty(group);
+                if dirty == 0 {
+                    break;
+                }
+                for at in ones(dirty) {
+                    let (place, fresh) = half.take(group, at);
+                    if !go_on(words, half, other, counts, place, fresh) {
+                        holds.store(false, Relaxed);
+                    }
+                }
+                if !holds.load(Relaxed) {
+                    return Pause::Broken;
+                }
+            }
+        }
+        while let Some(page) = half.pages.take() {
+            for (place, fresh) in page.into_iter().filter(|&(_, fresh)| fresh != 0) {
+                if !go_on(words, half, other, counts, place, fresh) {
+                    holds.store(false, Relaxed);
+                }
+            }
+            if !holds.load(Relaxed) {
+                return Pause::Broken;
+            }
+            if half.bytes() + other.bytes() > allowance {
+                return Pause::Full;
+            }
+        }
+    }
+    Pause::Clean
+}
+
+/// Adds all that the fresh states of a word lead to; false when a promise is broken.
+#[inline]
+fn go_on(
+    words: &Words<'_>,
+    half: &mut Half,
+    other: &mut impl Elsewhere,
+    counts: &mut Counts,
+    place: Place,
+    fresh: u64,
+) -> bool {
+    counts.add(words, place, fresh);
+    words.expand(
+        place,
+        fresh,
+        |place, bits| {
+            if half.holds(place) { half.add(place, bits) } else { other.put(place, bits) }
+        },
+    )
 }
 
 /// How much was gone on from: each state once, when it is fresh.
@@ -79,94 +222,6 @@ impl Counts {
         self.states += states;
         self.transitions += states * words.environment.branches(words.environment_of(place)).len() as u64;
     }
-}
-
-/// Goes on from every dirty word of the dense set, in order; false as soon as a promise is broken.
-fn sweep(words: &Words<'_>, reached: &mut Reached, counts: &mut Counts) -> bool {
-    let Some(groups) = reached.dense.as_ref().map(Dense::groups) else { return true };
-    for group in 0..groups {
-        loop {
-            let dirty = reached.dense.as_ref().map_or(0, |dense| dense.take_dirty(group));
-            if dirty == 0 {
-                break;
-            }
-            for at in ones(dirty) {
-                let place = Place { word: group * 64 + at, late: false };
-                let fresh = reached.dense.as_ref().map_or(0, |dense| dense.take(place.word));
-                counts.add(words, place, fresh);
-                if !words.expand(place, fresh, |place, bits| reached.add(place, bits)) {
-                    return false;
-                }
-            }
-        }
-    }
-    true
-}
-
-/// As [`sweep`], by several threads, each of which takes the next few groups when it is done with its last.
-fn sweep_shared(words: &Words<'_>, reached: &mut Reached, threads: usize, counts: &mut Counts) -> bool {
-    const GROUPS: usize = 16;
-    let Reached { dense: Some(dense), pages, .. } = reached else { return true };
-    let dense: &Dense = dense;
-    let pages: Mutex<&mut Pages> = Mutex::new(pages);
-    let (next, holds) = (AtomicUsize::new(0), AtomicBool::new(true));
-    let all = Mutex::new(counts);
-    let work = || {
-        let mut counts = Counts::default();
-        while holds.load(Relaxed) {
-            let from = next.fetch_add(GROUPS, Relaxed);
-            if from >= dense.groups() {
-                break;
-            }
-            for group in from..dense.groups().min(from + GROUPS) {
-                loop {
-                    let dirty = dense.take_dirty_shared(group);
-                    if dirty == 0 {
-                        break;
-                    }
-                    for at in ones(dirty) {
-                        let place = Place { word: group * 64 + at, late: false };
-                        let fresh = dense.take_shared(place.word);
-                        counts.add(words, place, fresh);
-                        let found = words.expand(place, fresh, |place, bits| {
-                            if place.late {
-                                pages.lock().expect("no thread panics").add(place, bits);
-                            } else {
-                                dense.add_shared(place.word, bits);
-                            }
-                        });
-                        if !found {
-                            holds.store(false, Relaxed);
-                            return;
-                        }
-                    }
-                }
-            }
-        }
-        let mut all = all.lock().expect("no thread panics");
-        all.states += counts.states;
-        all.transitions += counts.transitions;
-    };
-    rayon::scope(|scope| {
-        for _ in 0..threads {
-            scope.spawn(|_| work());
-        }
-    });
-    holds.into_inner()
-}
-
-/// Goes on from every page; false as soon as a promise is broken.
-fn turn_pages(words: &Words<'_>, reached: &mut Reached, counts: &mut Counts) -> Result<bool, ProveError> {
-    while let Some(page) = reached.pages.take() {
-        for (place, fresh) in page.into_iter().filter(|&(_, fresh)| fresh != 0) {
-            counts.add(words, place, fresh);
-            if !words.expand(place, fresh, |place, bits| reached.add(place, bits)) {
-                return Ok(false);
-            }
-        }
-        reached.check()?;
-    }
-    Ok(true)
 }
 
 #[cfg(test)]
@@ -205,8 +260,9 @@ mod tests {
             })
         };
         let dense = explored(1, Reached::new(&words, &limits(1)));
-        assert_eq!(explored(1, Reached::of_few(&limits(1))), dense);
+        assert_eq!(explored(1, Reached::of_few(&words, &limits(1))), dense);
         assert_eq!(explored(2, Reached::new(&words, &limits(1))), dense);
+        assert_eq!(explored(2, Reached::of_few(&words, &limits(1))), dense);
         dense.map(|found| found.0)
     }
 
@@ -228,6 +284,33 @@ mod tests {
         let words = Environment::of(&large).expect("sound").len() * 4;
         assert!(words >= SHARED_WORDS, "{words} words would not be shared out");
         assert_eq!(alike(&machine, &large), Some(258_524));
+    }
+
+    #[test]
+    fn explore_in_just_enough_memory_is_finished_by_one_thread_or_two() {
+        // Most of what can happen happens with the contact closed, so even shares do not fit.
+        let envelope = Envelope::clean(90, 1280).bounce(20, 20).glitch(3, 3).quiet(32);
+        let environment = Environment::of(&envelope).expect("sound");
+        let law = StateMachine::<u8>::for_envelope(&envelope).expect("quiet is long enough");
+        let logic = LawTable::of(&law).expect("a law");
+        let product = Product { environment: &environment, logic: &logic };
+        let words = Words::of(&product);
+        assert!(words.len() >= SHARED_WORDS);
+        let explored = |threads, memory_bytes| {
+            let limits = Limits { memory_bytes, threads };
+            explore_into(&product, &words, &limits, Reached::of_few(&words, &limits))
+        };
+        let free = explored(1, u64::MAX).expect("fits").expect("faithful");
+        let [open, closed] = [0, 1].map(|half| free.reached.halves[half].pages.bytes());
+        assert!(open < closed / 2, "{open} and {closed} bytes are even shares");
+        for threads in [1, 2] {
+            let found = explored(threads, open + closed).expect("fits").expect("faithful");
+            assert_eq!((found.states, found.transitions), (free.states, free.transitions));
+            let Err(ProveError::TooLarge { states, .. }) = explored(threads, closed / 2) else {
+                panic!("an exploration in a fraction of what it needs")
+            };
+            assert!(states > 0 && states < free.states);
+        }
     }
 
     #[test]

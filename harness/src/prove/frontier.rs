@@ -3,23 +3,33 @@
 use debounce_core::{Envelope, PerPosition};
 
 use super::tabulate::LawTable;
-use super::{Limits, ProveError, prove_within};
+use super::{Contract, Limits, ProveError, prove_contract};
 
 /// The pairs of shortest dwells, in samples, for which the logic is faithful and neither of which can be
 /// shortened alone, within the dwells of `envelope`; sorted by the closed dwell. Empty where the logic is not
 /// faithful in `envelope` itself.
 ///
 /// # Errors
-/// As [`prove_within`].
+/// As [`prove_within`](super::prove_within).
 pub fn shortest_operations(
     logic: &LawTable,
     envelope: &Envelope,
     limits: &Limits,
 ) -> Result<Vec<PerPosition<u32>>, ProveError> {
+    shortest_operations_under(logic, envelope, Contract::Follow, limits)
+}
+
+/// As [`shortest_operations`], against either contract.
+pub(super) fn shortest_operations_under(
+    logic: &LawTable,
+    envelope: &Envelope,
+    contract: Contract,
+    limits: &Limits,
+) -> Result<Vec<PerPosition<u32>>, ProveError> {
     let mut delivered = envelope.delivered();
     let mut served = |closed: u32, open: u32| {
         delivered.dwell = PerPosition { open, closed };
-        Ok(prove_within(logic, &delivered, limits)?.bounds().is_some())
+        Ok(prove_contract(logic, &delivered, contract, limits)?.bounds().is_some())
     };
     let most = envelope.delivered().dwell;
     if most.open == 0 || most.closed == 0 || !served(most.closed, most.open)? {

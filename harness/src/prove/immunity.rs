@@ -4,7 +4,7 @@ use debounce_core::{Envelope, PerPosition, Position};
 use rustc_hash::FxHashSet;
 
 use super::tabulate::LawTable;
-use super::{Limits, ProveError, prove_within};
+use super::{Contract, Limits, ProveError, prove_contract};
 
 /// For each position the widest disturbance, in samples, for which the logic is still faithful, everything else
 /// in `envelope` as it is.
@@ -13,10 +13,20 @@ use super::{Limits, ProveError, prove_within};
 /// whole of the shortest operation hides it, so there always is a widest.
 ///
 /// # Errors
-/// As [`prove_within`].
+/// As [`prove_within`](super::prove_within).
 pub fn immunity(
     logic: &LawTable,
     envelope: &Envelope,
+    limits: &Limits,
+) -> Result<PerPosition<Option<u32>>, ProveError> {
+    immunity_under(logic, envelope, Contract::Follow, limits)
+}
+
+/// As [`immunity`], against either contract.
+pub(super) fn immunity_under(
+    logic: &LawTable,
+    envelope: &Envelope,
+    contract: Contract,
     limits: &Limits,
 ) -> Result<PerPosition<Option<u32>>, ProveError> {
     let widest = |position| {
@@ -25,7 +35,8 @@ pub fn immunity(
                 Position::Open => (width, envelope.glitch.closed),
                 Position::Closed => (envelope.glitch.open, width),
             };
-            Ok(prove_within(logic, &envelope.glitch(glitch.0, glitch.1), limits)?.bounds().is_some())
+            let wider = envelope.glitch(glitch.0, glitch.1);
+            Ok(prove_contract(logic, &wider, contract, limits)?.bounds().is_some())
         })
     };
     Ok(PerPosition { open: widest(Position::Open)?, closed: widest(Position::Closed)? })

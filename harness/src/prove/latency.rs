@@ -9,8 +9,9 @@ use debounce_core::{Bounds, Change, Latency, PerChange};
 use rustc_hash::FxHashMap;
 
 use super::environment::Branch;
+use super::explore::is_shared;
 use super::product::{Node, Product, Step};
-use super::reached::Reached;
+use super::reached::{Half, Reached};
 use super::word::Words;
 use super::{Limits, ProveError};
 
@@ -271,6 +272,12 @@ impl Seen {
             Some(Latency { best: so_far.best.min(found.shortest), worst: so_far.worst.max(found.longest) });
     }
 
+    fn each(self) -> impl Iterator<Item = (Change, Latency)> {
+        let Self(PerChange { make, break_ }) = self;
+        let of = |change, latency: Option<Latency>| latency.map(|latency| (change, latency));
+        of(Change::Make, make).into_iter().chain(of(Change::Break, break_))
+    }
+
     fn bounds(self) -> Bounds {
         Bounds {
             latency: PerChange {
@@ -286,13 +293,28 @@ impl Seen {
 ///
 /// Until then the environment itself counts the samples since the change, and at most that one is pending; so
 /// every report tells its own latency, and since the count only rises there is no circle.
-pub(super) fn by_age(words: &Words<'_>, reached: &Reached) -> Option<Bounds> {
+pub(super) fn by_age(words: &Words<'_>, reached: &Reached, limits: &Limits) -> Option<Bounds> {
     if reached.has_late() {
         return None;
     }
+    let [open, closed] = &reached.halves;
+    let (open, closed) = if is_shared(words, limits) {
+        rayon::join(|| seen_in(words, open), || seen_in(words, closed))
+    } else {
+        (seen_in(words, open), seen_in(words, closed))
+    };
+    let mut seen = open?;
+    for (change, latency) in closed?.each() {
+        seen.add(change, Remaining { longest: latency.worst, shortest: latency.best });
+    }
+    Some(seen.bounds())
+}
+
+/// The latencies of the reports that the states of a half make.
+fn seen_in(words: &Words<'_>, half: &Half) -> Option<Seen> {
     let environment = words.environment;
     let mut seen = Seen::default();
-    for (place, bits) in reached.words() {
+    for (place, bits) in half.words() {
         let at = words.environment_of(place);
         let differing = words.differing(place);
         let pending = bits & differing;
@@ -317,5 +339,5 @@ pub(super) fn by_age(words: &Words<'_>, reached: &Reached) -> Option<Bounds> {
             }
         }
     }
-    Some(seen.bounds())
+    Some(seen)
 }

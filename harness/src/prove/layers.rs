@@ -36,7 +36,7 @@ impl<'a> Layers<'a> {
         words: &'a Words<'a>,
         limits: &Limits,
     ) -> Result<Self, ProveError> {
-        let mut layers = Self::within(product, words, Reached::of_few(limits));
+        let mut layers = Self::within(product, words, Reached::of_few(words, limits));
         layers.unreported_only = true;
         layers.advance_where(|branch| branch.changes() != 0)?;
         Ok(layers)
@@ -101,17 +101,16 @@ impl<'a> Layers<'a> {
 
     fn take(&mut self) -> Layer {
         let mut layer = Layer::new();
-        if let Some(dense) = &self.reached.dense {
-            for group in 0..dense.groups() {
-                let dirty = dense.take_dirty(group);
-                layer.extend(ones(dirty).map(|at| {
-                    let word = group * 64 + at;
-                    (Place { word, late: false }, dense.take(word))
-                }));
+        for half in &mut self.reached.halves {
+            for group in 0..half.groups() {
+                let dirty = half.take_dirty(group);
+                layer.extend(ones(dirty).map(|at| half.take(group, at)));
             }
         }
-        while let Some(page) = self.reached.pages.take() {
-            layer.extend(page.into_iter().filter(|&(_, fresh)| fresh != 0));
+        for half in &mut self.reached.halves {
+            while let Some(page) = half.pages.take() {
+                layer.extend(page.into_iter().filter(|&(_, fresh)| fresh != 0));
+            }
         }
         if self.unreported_only {
             layer.retain_mut(|(place, bits)| {

@@ -52,7 +52,8 @@ use debounce_core::{Envelope, PerChange, Position};
 use super::environment::Environment;
 use super::tabulate::LawTable;
 use super::witness::Witness;
-use super::{Limits, Outcome, ProveError, prove_within, word};
+use super::{Contract, Limits, Outcome, ProveError, prove_within, word};
+use crate::report::words;
 use minimal::minimal;
 use subsets::{Memory, Subsets, subsets};
 
@@ -140,17 +141,33 @@ impl fmt::Display for NoLogic {
             }
             Self::AlwaysDisturbed { quiet, glitch } => write!(
                 f,
-                "no logic exists: quiet of {quiet} samples between disturbances of {glitch} lets either position \
-                 look like the other for ever"
+                "no logic exists: quiet of {} between disturbances of {glitch} lets either position look like the other \
+                 for ever",
+                words::count(*quiet as usize, "sample")
             ),
             Self::AlwaysInDoubt { witness } => write!(
                 f,
-                "no logic exists: a waveform of {} samples leaves a change in doubt for ever, or until later ones \
+                "no logic exists: a waveform of {} leaves a change in doubt for ever, or until later ones \
                  are in doubt too",
-                witness.ticks.len()
+                words::count(witness.ticks.len(), "sample")
             ),
         }
     }
+}
+
+/// The limit in closed form under a contract.
+///
+/// An output that turns over once per make can do so no sooner than a make can be known: the two waveforms of the
+/// [proof](debounce_core::proofs), one with a make and one without, read the same up to the sample before the limit,
+/// whatever the output is at first. And it need be no later: the state machine of the proof reports each make within
+/// the limit, and the output turns over then. So both of its latencies have the limit of a make.
+#[must_use]
+pub fn closed_form_limit(envelope: &Envelope, contract: Contract) -> Option<PerChange<u32>> {
+    let limit = envelope.limit()?;
+    Some(match contract {
+        Contract::Follow => limit,
+        Contract::Alternate => PerChange { make: limit.make, break_: limit.make },
+    })
 }
 
 /// The least worst latency of any logic in `envelope`: by the closed form where it is proved, else by beliefs.

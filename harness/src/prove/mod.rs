@@ -34,6 +34,7 @@
 //! # Ok::<(), harness::prove::ProveError>(())
 //! ```
 
+mod beyond;
 mod contract;
 mod environment;
 mod explore;
@@ -56,11 +57,12 @@ use core::hash::Hash;
 
 use debounce_core::{Bounds, Clause, Envelope, Latency, Law, PerChange, Position};
 
+pub use beyond::{Beyond, Effort, NotSearched, Searched};
 pub use contract::Contract;
 pub use environment::{Branch, Environment, EnvironmentState, Fired};
 pub use frontier::shortest_operations;
 pub use immunity::{immunity, widest_lone_disturbance};
-pub use limit::{LimitAnswer, NoLogic, Solution, limit, promptest_logic, solve_limit};
+pub use limit::{LimitAnswer, NoLogic, Solution, closed_form_limit, limit, promptest_logic, solve_limit};
 pub use recovery::{Recovery, recovery_from_any_state, recovery_from_short_operations};
 pub use tabulate::{Entry, LawTable};
 pub use witness::{Witness, WitnessTick};

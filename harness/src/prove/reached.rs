@@ -1,9 +1,10 @@
 //! The set of states reached so far, and which of them are fresh: reached, and not yet gone on from.
 //!
-//! Where it fits it is dense, two bits for each pair of environment and logic state. Late states are few if there are
-//! any, so they, and all states where the dense set would not fit, are kept in pages that exist from first touch on.
+//! It lies in two halves, by where the contact is. Only a change of the contact leads from one to the other, so two
+//! threads can fill them without a word that both write to. Where it fits a half is dense, two bits for each pair of
+//! environment and logic state. Late states are few if there are any, so they, and all states where the dense set
+//! would not fit or would stay empty, are kept in pages that exist from first touch on.
 
-use core::sync::atomic::{AtomicU64, Ordering::Relaxed, Ordering::SeqCst};
 use std::collections::VecDeque;
 
 use rustc_hash::FxHashMap;
@@ -11,58 +12,69 @@ use rustc_hash::FxHashMap;
 use super::word::{Place, Words};
 use super::{Limits, ProveError};
 
+/// A law of more words than this is taken to be scattered, as windows of samples are: each state of the envelope meets
+/// only few of its words, and to clear memory for all of them would take longer than the exploration.
+const FILLED_WORDS: usize = 64;
+
 /// A set of product states by words, two for each: the states reached, and the fresh ones among them.
 pub(super) struct Reached {
-    pub(super) dense: Option<Dense>,
-    pub(super) pages: Pages,
+    /// With the contact open, and closed.
+    pub(super) halves: [Half; 2],
     limit: u64,
 }
 
 impl Reached {
     pub(super) fn new(words: &Words<'_>, limits: &Limits) -> Self {
         let bytes = words.len() as u128 * 16;
-        let dense = bytes <= u128::from(limits.memory_bytes);
-        Self {
-            dense: dense.then(|| Dense::new(words.len())),
-            pages: Pages::default(),
-            limit: limits.memory_bytes,
-        }
+        let fits = bytes <= u128::from(limits.memory_bytes);
+        Self::of(words, limits, fits && words.law.len() <= FILLED_WORDS)
     }
 
     /// A set for few states: all of it in pages.
-    pub(super) fn of_few(limits: &Limits) -> Self {
-        Self { dense: None, pages: Pages::default(), limit: limits.memory_bytes }
+    pub(super) fn of_few(words: &Words<'_>, limits: &Limits) -> Self {
+        Self::of(words, limits, false)
     }
 
-    /// Adds states while no other thread does.
+    fn of(words: &Words<'_>, limits: &Limits, dense: bool) -> Self {
+        let split = words.first_closed();
+        let halves = [0..split, split..words.len()].map(|range| Half {
+            first: range.start,
+            end: range.end,
+            dense: dense.then(|| Dense::new(range.len())),
+            pages: Pages::default(),
+        });
+        Self { halves, limit: limits.memory_bytes }
+    }
+
+    /// Adds states to the half that they belong to.
     #[inline]
     pub(super) fn add(&mut self, place: Place, bits: u64) {
-        match &self.dense {
-            Some(dense) if !place.late => dense.add_alone(place.word, bits),
-            _ => self.pages.add(place, bits),
-        }
+        let half = usize::from(place.word >= self.halves[1].first);
+        self.halves[half].add(place, bits);
     }
 
     /// An error when the pages have outgrown the memory allowed.
     pub(super) fn check(&self) -> Result<(), ProveError> {
-        let dense = self.dense.as_ref().map_or(0, |dense| dense.cells.len() as u64 * 8);
-        if self.pages.pages.is_empty() || dense + self.pages.bytes() <= self.limit {
+        if self.allowance() >= self.halves.iter().map(|half| half.pages.bytes()).sum() {
             return Ok(());
         }
         Err(ProveError::TooLarge { states: self.len(), limit: self.limit })
     }
 
+    /// Bytes that all pages together may take: what the dense set leaves, and as much as the first few take anyway.
+    pub(super) fn allowance(&self) -> u64 {
+        self.limit.saturating_sub(self.halves.iter().map(Half::dense_bytes).sum())
+    }
+
+    /// Whether nothing waits to be gone on from.
+    pub(super) fn is_clean(&self) -> bool {
+        self.halves.iter().all(Half::is_clean)
+    }
+
     /// Every word that holds a state: those on time before those late, in their order unless they are paged.
     pub(super) fn words(&self) -> impl Iterator<Item = (Place, u64)> + '_ {
-        let cells = self.dense.as_ref().map_or(&[][..], |dense| &dense.cells);
-        let dense = cells
-            .chunks_exact(2)
-            .enumerate()
-            .map(|(word, cell)| (Place { word, late: false }, cell[0].load(Relaxed)));
-        let paged = self.pages.keys.iter().zip(&self.pages.pages).flat_map(|(&key, page)| {
-            page.reached.iter().enumerate().map(move |(at, &bits)| (Pages::place(key, at), bits))
-        });
-        dense.chain(paged).filter(|&(_, bits)| bits != 0)
+        let dense = self.halves.iter().flat_map(Half::dense_words);
+        dense.chain(self.halves.iter().flat_map(|half| half.pages.words()))
     }
 
     /// Number of states.
@@ -72,93 +84,100 @@ impl Reached {
 
     /// Whether the states on time are in the dense set.
     pub(super) fn is_dense(&self) -> bool {
-        self.dense.is_some()
+        self.halves.iter().all(|half| half.dense.is_some())
     }
 
     /// Whether there is a late state.
     pub(super) fn has_late(&self) -> bool {
-        self.pages.keys.iter().any(|key| key % 2 != 0)
+        self.halves.iter().any(|half| half.pages.keys.iter().any(|key| key % 2 != 0))
+    }
+}
+
+/// The states with the contact in one position.
+pub(super) struct Half {
+    first: usize,
+    end: usize,
+    pub(super) dense: Option<Dense>,
+    pub(super) pages: Pages,
+}
+
+impl Half {
+    /// Whether a word belongs to this half.
+    #[inline]
+    pub(super) fn holds(&self, place: Place) -> bool {
+        (self.first..self.end).contains(&place.word)
+    }
+
+    #[inline]
+    pub(super) fn add(&mut self, place: Place, bits: u64) {
+        match &mut self.dense {
+            Some(dense) if !place.late => dense.add(place.word - self.first, bits),
+            _ => self.pages.add(place, bits),
+        }
+    }
+
+    /// Groups of 64 words in the dense set.
+    pub(super) fn groups(&self) -> usize {
+        self.dense.as_ref().map_or(0, |dense| dense.dirty.len())
+    }
+
+    /// The dirty words of a group, as bits, which then are clean.
+    #[inline]
+    pub(super) fn take_dirty(&mut self, group: usize) -> u64 {
+        self.dense.as_mut().map_or(0, |dense| core::mem::take(&mut dense.dirty[group]))
+    }
+
+    /// A word of a group with its fresh states, which then are no longer.
+    #[inline]
+    pub(super) fn take(&mut self, group: usize, at: usize) -> (Place, u64) {
+        let word = group * 64 + at;
+        let fresh = self.dense.as_mut().map_or(0, |dense| core::mem::take(&mut dense.cells[word][1]));
+        (Place { word: self.first + word, late: false }, fresh)
+    }
+
+    /// Whether nothing waits to be gone on from.
+    pub(super) fn is_clean(&self) -> bool {
+        let dense = self.dense.as_ref().is_none_or(|dense| dense.dirty.iter().all(|&group| group == 0));
+        dense && self.pages.queue.is_empty()
+    }
+
+    /// Every word that holds a state.
+    pub(super) fn words(&self) -> impl Iterator<Item = (Place, u64)> + '_ {
+        self.dense_words().chain(self.pages.words())
+    }
+
+    fn dense_words(&self) -> impl Iterator<Item = (Place, u64)> + '_ {
+        let cells = self.dense.as_ref().map_or(&[][..], |dense| &dense.cells);
+        let place = |at| Place { word: self.first + at, late: false };
+        cells.iter().enumerate().map(move |(at, cell)| (place(at), cell[0])).filter(|&(_, bits)| bits != 0)
+    }
+
+    fn dense_bytes(&self) -> u64 {
+        self.dense.as_ref().map_or(0, |dense| dense.cells.len() as u64 * 16)
     }
 }
 
 /// Two bits for each pair, and a bit for each word that holds fresh ones.
 pub(super) struct Dense {
     /// For each word the states reached, then the fresh ones.
-    cells: Vec<AtomicU64>,
-    dirty: Vec<AtomicU64>,
+    cells: Vec<[u64; 2]>,
+    dirty: Vec<u64>,
 }
 
 impl Dense {
     fn new(words: usize) -> Self {
-        let zeros = |count: usize| (0..count).map(|_| AtomicU64::new(0)).collect();
-        Self { cells: zeros(words * 2), dirty: zeros(words.div_ceil(64)) }
-    }
-
-    /// Groups of 64 words.
-    pub(super) fn groups(&self) -> usize {
-        self.dirty.len()
-    }
-
-    pub(super) fn is_clean(&self) -> bool {
-        self.dirty.iter().all(|group| group.load(Relaxed) == 0)
+        Self { cells: vec![[0; 2]; words], dirty: vec![0; words.div_ceil(64)] }
     }
 
     #[inline]
-    fn add_alone(&self, word: usize, bits: u64) {
-        let [reached, fresh] = &self.cells[word * 2..word * 2 + 2] else { return };
-        let old = reached.load(Relaxed);
-        let new = bits & !old;
+    fn add(&mut self, word: usize, bits: u64) {
+        let cell = &mut self.cells[word];
+        let new = bits & !cell[0];
         if new != 0 {
-            reached.store(old | new, Relaxed);
-            fresh.store(fresh.load(Relaxed) | new, Relaxed);
-            let group = &self.dirty[word / 64];
-            group.store(group.load(Relaxed) | 1 << (word % 64), Relaxed);
+            cell[0] |= new;
+            cell[1] |= new;
+            self.dirty[word / 64] |= 1 << (word % 64);
         }
-    }
-
-    /// Adds states while other threads may too. The fresh bits are there before their word is called dirty, and
-    /// [`take_shared`](Self::take_shared) looks the other way round, so none is overlooked.
-    #[inline]
-    pub(super) fn add_shared(&self, word: usize, bits: u64) {
-        let [reached, fresh] = &self.cells[word * 2..word * 2 + 2] else { return };
-        if bits & !reached.load(Relaxed) == 0 {
-            return;
-        }
-        let new = bits & !reached.fetch_or(bits, Relaxed);
-        if new != 0 {
-            fresh.fetch_or(new, SeqCst);
-            self.dirty[word / 64].fetch_or(1 << (word % 64), SeqCst);
-        }
-    }
-
-    /// The dirty words of a group, which are then clean.
-    #[inline]
-    pub(super) fn take_dirty(&self, group: usize) -> u64 {
-        let dirty = self.dirty[group].load(Relaxed);
-        if dirty != 0 {
-            self.dirty[group].store(0, Relaxed);
-        }
-        dirty
-    }
-
-    /// The fresh states of a word, which then are no longer.
-    #[inline]
-    pub(super) fn take(&self, word: usize) -> u64 {
-        let fresh = self.cells[word * 2 + 1].load(Relaxed);
-        self.cells[word * 2 + 1].store(0, Relaxed);
-        fresh
-    }
-
-    /// As [`take_dirty`](Self::take_dirty), while other threads add.
-    #[inline]
-    pub(super) fn take_dirty_shared(&self, group: usize) -> u64 {
-        if self.dirty[group].load(Relaxed) == 0 { 0 } else { self.dirty[group].swap(0, SeqCst) }
-    }
-
-    /// As [`take`](Self::take), while other threads add.
-    #[inline]
-    pub(super) fn take_shared(&self, word: usize) -> u64 {
-        self.cells[word * 2 + 1].swap(0, SeqCst)
     }
 }
 
@@ -192,8 +211,16 @@ impl Pages {
         Place { word: (key / 2) as usize * PAGE + at, late: !key.is_multiple_of(2) }
     }
 
+    /// Every word that holds a state.
+    fn words(&self) -> impl Iterator<Item = (Place, u64)> + '_ {
+        let words = self.keys.iter().zip(&self.pages).flat_map(|(&key, page)| {
+            page.reached.iter().enumerate().map(move |(at, &bits)| (Self::place(key, at), bits))
+        });
+        words.filter(|&(_, bits)| bits != 0)
+    }
+
     /// What the pages take: themselves, their keys and the map, each in a vector that doubles.
-    fn bytes(&self) -> u64 {
+    pub(super) fn bytes(&self) -> u64 {
         (self.pages.capacity() * (size_of::<Page>() + 8) + self.numbers.capacity() * 18) as u64
     }
 

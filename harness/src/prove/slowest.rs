@@ -19,7 +19,7 @@ pub(super) fn outcome(
     limits: &Limits,
     reached: &Reached,
 ) -> Result<Outcome, ProveError> {
-    if let Some(bounds) = by_age(words, reached) {
+    if let Some(bounds) = by_age(words, reached, limits) {
         return reports_in_time(product, words, limits, bounds);
     }
     match Reports::of(product, words, reached, limits)? {

@@ -38,8 +38,8 @@ pub struct LawTable {
 }
 
 impl LawTable {
-    /// Most states a law may have.
-    pub const MOST_STATES: usize = 1 << 26;
+    /// Most states a law may have. So many take about 1 GB while they are found.
+    pub const MOST_STATES: usize = 1 << 24;
 
     /// Explores `law` and checks its obligations.
     ///
@@ -59,6 +59,13 @@ impl LawTable {
     /// # Errors
     /// As [`of`](Self::of).
     pub fn with_states<L: Law>(law: &L) -> Result<(Self, Vec<L::State>), ProveError>
+    where
+        L::State: Hash,
+    {
+        Self::tabulated(law, Self::MOST_STATES)
+    }
+
+    fn tabulated<L: Law>(law: &L, most_states: usize) -> Result<(Self, Vec<L::State>), ProveError>
     where
         L::State: Hash,
     {
@@ -110,7 +117,7 @@ impl LawTable {
             }
             outputs.push(output);
             settled.push(mask);
-            if states.len() > Self::MOST_STATES {
+            if states.len() > most_states {
                 return Err(ProveError::LawTooLarge { states: states.len() });
             }
             index += 1;
@@ -219,9 +226,88 @@ impl LawTable {
 
 #[cfg(test)]
 mod tests {
-    use debounce_core::{Position, ShiftRegister};
+    use core::cell::Cell;
+
+    use debounce_core::{Change, Law, Machine, Position, ShiftRegister};
 
     use super::{LawTable, ProveError};
+
+    /// A law of three states and a hidden one, with one thing wrong.
+    #[derive(Clone, Copy, PartialEq, Eq, Debug)]
+    enum Wrong {
+        Nothing,
+        RestSaysTheOther,
+        RestMoves,
+        NoEdge,
+        Remembers,
+        CountsForEver,
+    }
+
+    struct Broken {
+        wrong: Wrong,
+        /// What no state holds, so a step must not depend on it.
+        hidden: Cell<u32>,
+    }
+
+    impl Machine for Broken {
+        type Input = Position;
+        type Output = Option<Change>;
+        type State = (Position, u32);
+
+        fn step(&self, (output, count): &mut (Position, u32), sample: Position) -> Option<Change> {
+            self.hidden.set(self.hidden.get() + 1);
+            match self.wrong {
+                Wrong::RestMoves if sample == *output => *count = 1,
+                Wrong::Remembers if sample != *output => *count = self.hidden.get() % 2,
+                Wrong::CountsForEver if sample != *output => *count += 1,
+                _ => {}
+            }
+            if sample == *output || self.wrong == Wrong::CountsForEver {
+                return None;
+            }
+            *output = sample;
+            (self.wrong != Wrong::NoEdge).then(|| sample.reached_by())
+        }
+    }
+
+    impl Law for Broken {
+        fn rest(&self, position: Position) -> (Position, u32) {
+            let says = self.wrong == Wrong::RestSaysTheOther;
+            (if says { position.opposite() } else { position }, 0)
+        }
+
+        fn output(&self, state: &(Position, u32)) -> Position {
+            state.0
+        }
+    }
+
+    #[track_caller]
+    fn tabulated(wrong: Wrong) -> Result<usize, ProveError> {
+        let law = Broken { wrong, hidden: Cell::new(0) };
+        LawTable::tabulated(&law, 100).map(|(_, states)| states.len())
+    }
+
+    #[test]
+    fn law_that_breaks_an_obligation_is_refused() {
+        assert_eq!(tabulated(Wrong::Nothing), Ok(2));
+        assert_eq!(tabulated(Wrong::RestSaysTheOther), Err(ProveError::RestOutput { position: OPEN }));
+        assert_eq!(tabulated(Wrong::RestMoves), Err(ProveError::RestMoves { position: OPEN }));
+        assert_eq!(tabulated(Wrong::NoEdge), Err(ProveError::EdgeOutput { state: 0, sample: CLOSED }));
+    }
+
+    #[test]
+    fn law_whose_step_is_no_function_of_its_arguments_is_refused() {
+        let error = tabulated(Wrong::Remembers).expect_err("it remembers");
+        assert_eq!(error, ProveError::NotAFunction { state: 0, sample: CLOSED });
+        assert!(error.to_string().contains("must depend on nothing but law, state and sample"), "{error}");
+    }
+
+    #[test]
+    fn law_with_more_states_than_allowed_is_unfinished() {
+        let error = tabulated(Wrong::CountsForEver).expect_err("it counts for ever");
+        assert!(matches!(error, ProveError::LawTooLarge { states: 101..=104 }), "{error:?}");
+        assert!(error.to_string().starts_with("unfinished: the law has more than"), "{error}");
+    }
 
     const OPEN: Position = Position::Open;
     const CLOSED: Position = Position::Closed;

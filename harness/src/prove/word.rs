@@ -5,6 +5,8 @@
 //! leads is a few shifts, because neighbours in the table mostly lead to neighbours (a count goes up by one). Only
 //! where they do not, as in a window of samples, is each bit looked up by itself.
 
+use std::sync::OnceLock;
+
 use debounce_core::Position;
 
 use super::environment::{Branch, Environment};
@@ -32,25 +34,19 @@ struct Word {
     edges: [u64; 2],
     /// States that the sample (first index) leads to where samples of a position (second) change nothing more.
     settles: [[u64; 2]; 2],
-    /// The range of moves; none where the word is stepped bit by bit.
-    moves: [(u32, u32); 2],
+    /// For either sample the moves; none where the word is stepped bit by bit.
+    moves: [Box<[Move]>; 2],
 }
 
-/// A logic as words of states.
+/// A logic as words of states, each looked at when it is first met: few words of a large table ever are.
 pub(super) struct WordLaw<'a> {
     table: &'a LawTable,
-    words: Vec<Word>,
-    moves: Vec<Move>,
+    words: Vec<OnceLock<Word>>,
 }
 
 impl<'a> WordLaw<'a> {
     pub(super) fn of(table: &'a LawTable) -> Self {
-        let mut law = Self { table, words: Vec::with_capacity(table.len().div_ceil(64)), moves: Vec::new() };
-        for from in (0..table.len()).step_by(64) {
-            let word = law.word(from);
-            law.words.push(word);
-        }
-        law
+        Self { table, words: (0..table.len().div_ceil(64)).map(|_| OnceLock::new()).collect() }
     }
 
     /// Words for each environment state.
@@ -58,52 +54,16 @@ impl<'a> WordLaw<'a> {
         self.words.len()
     }
 
-    fn word(&mut self, from: usize) -> Word {
-        let table = self.table;
-        let mut word = Word { closed: 0, edges: [0; 2], settles: [[0; 2]; 2], moves: [(0, 0); 2] };
-        let states = || (from..table.len().min(from + 64)).map(move |state| (state, 1_u64 << (state - from)));
-        for (state, bit) in states() {
-            if table.output(state).is_closed() {
-                word.closed |= bit;
-            }
-            for sample in 0..2 {
-                let entry = table.entry(state, sample);
-                if entry.edges() != 0 {
-                    word.edges[sample] |= bit;
-                }
-                for position in Position::BOTH {
-                    if table.is_settled(entry.next(), position) {
-                        word.settles[sample][position as usize] |= bit;
-                    }
-                }
-            }
-        }
-        for sample in 0..2 {
-            let first = self.moves.len();
-            for (state, bit) in states() {
-                let next = table.entry(state, sample).next();
-                // A table has at most 2^26 states.
-                let (to, turn) = ((next / 64) as u32, (next.wrapping_sub(state) % 64) as u32);
-                let known = self.moves[first..].iter_mut().find(|m| (m.word, m.turn) == (to, turn));
-                match known {
-                    Some(known) => known.mask |= bit,
-                    None => self.moves.push(Move { mask: bit, word: to, turn }),
-                }
-                if self.moves.len() - first > MOST_MOVES {
-                    self.moves.truncate(first);
-                    break;
-                }
-            }
-            word.moves[sample] = (first as u32, self.moves.len() as u32);
-        }
-        word
+    #[inline]
+    fn word(&self, word: usize) -> &Word {
+        self.words[word].get_or_init(|| Word::of(self.table, word * 64))
     }
 
     /// Calls `each` with the words, and in them the bits, that a sample leads to from `bits` of `word`.
     #[inline]
     fn image(&self, word: usize, sample: usize, bits: u64, mut each: impl FnMut(usize, u64)) {
-        let (first, last) = self.words[word].moves[sample];
-        if first == last {
+        let moves = &self.word(word).moves[sample];
+        if moves.is_empty() {
             let (mut at, mut found) = (0, 0);
             for bit in ones(bits) {
                 let next = self.table.entry(word * 64 + bit, sample).next();
@@ -119,13 +79,63 @@ impl<'a> WordLaw<'a> {
             }
             return;
         }
-        for moved in &self.moves[first as usize..last as usize] {
+        for moved in moves.iter() {
             let found = (bits & moved.mask).rotate_left(moved.turn);
             if found != 0 {
                 each(moved.word as usize, found);
             }
         }
     }
+}
+
+impl Word {
+    /// What is known of the states from the given on.
+    #[cold]
+    fn of(table: &LawTable, from: usize) -> Self {
+        let mut word =
+            Self { closed: 0, edges: [0; 2], settles: [[0; 2]; 2], moves: [Box::new([]), Box::new([])] };
+        for state in from..table.len().min(from + 64) {
+            let bit = 1_u64 << (state - from);
+            if table.output(state).is_closed() {
+                word.closed |= bit;
+            }
+            for sample in 0..2 {
+                let entry = table.entry(state, sample);
+                if entry.edges() != 0 {
+                    word.edges[sample] |= bit;
+                }
+                for position in Position::BOTH {
+                    if table.is_settled(entry.next(), position) {
+                        word.settles[sample][position as usize] |= bit;
+                    }
+                }
+            }
+        }
+        word.moves = [0, 1].map(|sample| moves(table, from, sample));
+        word
+    }
+}
+
+/// How a sample moves the 64 states from the given on; nothing where they scatter to too many places.
+fn moves(table: &LawTable, from: usize, sample: usize) -> Box<[Move]> {
+    let mut moves = [Move { mask: 0, word: 0, turn: 0 }; MOST_MOVES];
+    let mut found = 0;
+    for state in from..table.len().min(from + 64) {
+        let next = table.entry(state, sample).next();
+        // A table has at most 2^26 states.
+        let (word, turn) = ((next / 64) as u32, (next.wrapping_sub(state) % 64) as u32);
+        let known = moves[..found].iter().position(|known| (known.word, known.turn) == (word, turn));
+        let at = known.unwrap_or(found);
+        if at == MOST_MOVES {
+            return Box::new([]);
+        }
+        if at == found {
+            moves[at] = Move { mask: 0, word, turn };
+            found += 1;
+        }
+        moves[at].mask |= 1 << (state - from);
+    }
+    moves[..found].into()
 }
 
 /// The numbers of the bits that are set.
@@ -172,6 +182,11 @@ impl<'a> Words<'a> {
         self.environment.len() * self.law.len()
     }
 
+    /// The first word with the contact closed; all with it open come before.
+    pub(super) fn first_closed(&self) -> usize {
+        self.environment.first_closed() * self.law.len()
+    }
+
     pub(super) fn place(&self, node: Node) -> (Place, u64) {
         let word = node.environment() * self.law.len() + node.logic() / 64;
         (Place { word, late: node.late() }, 1 << (node.logic() % 64))
@@ -197,14 +212,14 @@ impl<'a> Words<'a> {
 
     #[inline]
     fn differing_at(&self, environment: usize, word: usize) -> u64 {
-        let closed = self.law.words[word].closed;
+        let closed = self.law.word(word).closed;
         if self.environment.state(environment).wanted.is_closed() { !closed } else { closed }
     }
 
     /// The bits of a word from which a sample makes an edge.
     #[inline]
     pub(super) fn edges(&self, place: Place, sample: usize) -> u64 {
-        self.law.words[place.word % self.law.len()].edges[sample]
+        self.law.word(place.word % self.law.len()).edges[sample]
     }
 
     /// What `branch` does to `bits`; says the same as [`Product::step`] of each of them.
@@ -218,7 +233,7 @@ impl<'a> Words<'a> {
     #[inline]
     fn split_at(&self, word: usize, late: bool, bits: u64, differing: u64, branch: Branch) -> Split {
         let sample = branch.sample_index();
-        let known = &self.law.words[word];
+        let known = self.law.word(word);
         let (edges, changes) = (known.edges[sample], branch.changes() != 0);
         // Unreported: 0 or 1 (differing), and 2 more when late.
         let (on_time, answered, mut broken) = match (late, changes) {

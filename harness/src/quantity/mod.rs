@@ -5,6 +5,8 @@
 
 mod count;
 mod decimal;
+mod electrical;
+mod part;
 mod period;
 mod share;
 mod time;
@@ -13,6 +15,8 @@ mod voltage;
 use std::str::FromStr;
 
 pub use count::{Bytes, Ticks};
+pub use electrical::{Capacitance, Current, Resistance, ShortTime};
+pub use part::{Part, Spread, TemperatureCode, VoltageRange};
 pub use period::TickPeriod;
 pub use share::Share;
 pub use time::{Rounding, ShownTime, Time};

@@ -6,9 +6,10 @@ use serde_json::{Value, json};
 use super::words;
 use crate::characterise::Spread;
 use crate::choose::{Candidate, Evidence, Judgement, Ranking};
+use crate::clock_range::{Asleep, ClockRange, Curve, Span};
 use crate::conformance::Conformance;
 use crate::envelope::PhysicalEnvelope;
-use crate::prove::{Proof, Recovery, Witness};
+use crate::prove::{Beyond, Proof, Recovery, Witness};
 use crate::quantity::TickPeriod;
 use crate::requirement::Resolved;
 use crate::study::{Guarantees, Observed, Study};
@@ -208,19 +209,104 @@ pub fn candidate(ranking: &Ranking, one: &Candidate) -> Value {
     })
 }
 
+/// The sample clock: every rounding step, every curve, and the clock to take.
+#[must_use]
+pub fn clock_range(range: &ClockRange) -> Value {
+    let span = |span: &Span| json!({ "from_ns": span.from_ns, "until_ns": span.until_ns });
+    let spans = |all: &[Span]| all.iter().map(span).collect::<Value>();
+    let curve = |curve: &Curve| {
+        json!({
+            "law": curve.family,
+            "works": spans(&curve.works),
+            "in_time": spans(&curve.holds),
+            "pieces": curve
+                .pieces
+                .iter()
+                .map(|piece| json!({
+                    "from_ns": piece.span.from_ns,
+                    "until_ns": piece.span.until_ns,
+                    "law": piece.law.to_string(),
+                    "worst_samples": per_change(&piece.worst),
+                    "below_from_ns": per_change(&piece.below_from_ns),
+                    "below_until_ns": per_change(&piece.below_until_ns),
+                    "in_time_until_ns": piece.in_time_until_ns,
+                }))
+                .collect::<Value>(),
+        })
+    };
+    json!({
+        "span": span(&range.span),
+        "steps": range
+            .steps
+            .iter()
+            .map(|step| json!({ "at_ns": step.at_ns, "figure": step.figure.name(), "samples": step.samples }))
+            .collect::<Value>(),
+        "curves": range.curves.iter().map(curve).collect::<Value>(),
+        "recommended": range.recommended.map(|best| json!({
+            "slowest_ns": best.slowest_ns,
+            "period_ns": best.period_ns,
+            "law": best.law.to_string(),
+            "worst_samples": per_change(&best.worst),
+            "below_ns": per_change(&best.below_ns),
+            "same_law": span(&best.same_law),
+        })),
+    })
+}
+
+/// What is saved where the tick stops while the law is settled.
+#[must_use]
+pub fn asleep(found: &Asleep) -> Value {
+    json!({
+        "ticks_after": per_change(&found.ticks_after),
+        "ticks_after_disturbance": per_position(&found.ticks_after_disturbance),
+        "ticking_per_second": found.ticking_per_second,
+        "stopping_per_second": found.stopping_per_second,
+        "share_asleep": found.share,
+    })
+}
+
 /// The full exploration of the recommended candidate.
 #[must_use]
 pub fn guarantees(found: &Guarantees) -> Value {
+    let beyond = beyond(&found.beyond);
     json!({
         "envelope": envelope(&found.envelope),
         "exploration": proof(&found.proof),
         "law_states": found.law_states,
-        "lone_disturbance": per_position(&found.lone_disturbance),
-        "immunity": found.immunity.as_ref().map(per_position),
-        "shortest_operations": found.shortest_operations.iter().map(per_position).collect::<Value>(),
-        "after_short_operations": found.after_short_operations.as_ref().map(recovery),
-        "from_any_state": found.from_any_state.as_ref().map(recovery),
+        "lone_disturbance": beyond["lone_disturbance"],
+        "immunity": beyond["immunity"],
+        "shortest_operations": beyond["shortest_operations"],
+        "after_short_operations": beyond["after_short_operations"],
+        "from_any_state": beyond["from_any_state"],
+        "not_searched": beyond["not_searched"],
     })
+}
+
+/// What was found beyond the bounds; what was not searched is `null`, with the reason under `not_searched`.
+#[must_use]
+pub fn beyond(found: &Beyond) -> Value {
+    let mut reasons = serde_json::Map::new();
+    let mut value = json!({ "lone_disturbance": per_position(&found.lone_disturbance) });
+    let immunity = found.immunity.as_ref().map(per_position);
+    let shortest = found.shortest_operations.as_ref();
+    let shortest = shortest.map(|pairs| pairs.iter().map(per_position).collect::<Value>());
+    let searches = [
+        ("immunity", immunity),
+        ("shortest_operations", shortest),
+        ("after_short_operations", found.after_short_operations.as_ref().map(recovery)),
+        ("from_any_state", found.from_any_state.as_ref().map(recovery)),
+    ];
+    for (name, search) in searches {
+        match search {
+            Ok(found) => value[name] = found,
+            Err(reason) => {
+                value[name] = Value::Null;
+                reasons.insert(name.to_owned(), json!(reason.to_string()));
+            }
+        }
+    }
+    value["not_searched"] = reasons.into();
+    value
 }
 
 fn recovery(recovery: &Recovery) -> Value {

@@ -1,8 +1,12 @@
 //! What a person sees of a result.
 
+pub mod apart;
+pub mod clock_plot;
 pub mod html;
 pub mod json;
+pub mod network;
 pub mod plot;
+pub mod si;
 pub mod state_diagram;
 pub mod timing;
 pub mod witness;

@@ -7,7 +7,7 @@ use debounce_core::Position;
 use crate::prove::{Witness, WitnessTick};
 
 /// Ticks in one row; with its name in front a row fits 80 columns.
-const ROW: usize = 64;
+pub(super) const ROW: usize = 64;
 
 /// A witness as a timing diagram.
 ///
@@ -44,7 +44,7 @@ impl fmt::Display for TimingDiagram<'_> {
     }
 }
 
-fn level(position: Position) -> char {
+pub(super) fn level(position: Position) -> char {
     match position {
         Position::Open => '_',
         Position::Closed => '#',
@@ -65,7 +65,7 @@ fn lane(ticks: &[WitnessTick], symbol: impl Fn(&WitnessTick) -> char) -> String 
 }
 
 /// The numbers of the first tick and of every tenth, each beginning at its column where it has room.
-fn ruler(first: usize, length: usize) -> String {
+pub(super) fn ruler(first: usize, length: usize) -> String {
     let mut text = first.to_string();
     for tick in (first + 1..first + length).filter(|tick| tick.is_multiple_of(10)) {
         let column = tick - first;

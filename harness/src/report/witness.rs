@@ -5,7 +5,7 @@ use std::io::{self, Write};
 use debounce_core::{Period, Position};
 
 use crate::prove::{Witness, WitnessTick};
-use crate::trace::{Trace, write_vcd};
+use crate::trace::{Trace, TraceError, write_vcd};
 
 /// Writes a witness as VCD, one tick `period` long, the first after one tick of rest; times are rounded to
 /// nanoseconds. `again` is the command that finds it again.
@@ -25,23 +25,25 @@ pub fn write_witness(out: &mut dyn Write, witness: &Witness, period: Period, aga
     )
 }
 
-fn lane(
-    witness: &Witness,
-    period: Period,
-    of: fn(&WitnessTick) -> Position,
-) -> Result<Trace, crate::trace::TraceError> {
+fn lane(witness: &Witness, period: Period, of: fn(&WitnessTick) -> Position) -> Result<Trace, TraceError> {
+    let row: Vec<Position> = witness.ticks.iter().map(of).collect();
+    lane_of(witness.start, &row, period)
+}
+
+/// One position a tick as a trace, after one tick at `start`.
+pub(super) fn lane_of(start: Position, row: &[Position], period: Period) -> Result<Trace, TraceError> {
     let at_ns = |tick: usize| {
         let exact = (tick as u128 + 1) * u128::from(period.numerator_ns()) / u128::from(period.denominator());
         u64::try_from(exact).unwrap_or(u64::MAX)
     };
     let mut edges = Vec::new();
-    let mut before = witness.start;
-    for (index, tick) in witness.ticks.iter().enumerate() {
-        if of(tick) != before {
-            before = of(tick);
+    let mut before = start;
+    for (index, &now) in row.iter().enumerate() {
+        if now != before {
+            before = now;
             edges.push(at_ns(index));
         }
     }
     // The last tick is shown at its full length.
-    Trace::new(witness.start, 0, at_ns(witness.ticks.len()), edges, 1)
+    Trace::new(start, 0, at_ns(row.len()), edges, 1)
 }

@@ -165,6 +165,7 @@ fn from(origin: &Origin) -> String {
         Origin::Given { .. } => "the requirement".to_owned(),
         Origin::Option(name) => format!("the option {name}"),
         Origin::Measured => "the recordings".to_owned(),
+        Origin::Network => "the network".to_owned(),
         Origin::Default(reason) => format!("the default: {reason}"),
     }
 }

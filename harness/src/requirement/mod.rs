@@ -40,9 +40,23 @@
 //! [budget]
 //! ram = "4 bytes"           # for each input
 //! fastest_tick = "2 kHz"
+//!
+//! [network]                 # what stands between the contact and the pin, if anything does
+//! input = "schmitt-pin"
+//! supply = "3.3 V 5 %"
+//! pull = "10 kohm 5 %"
+//! series = "4.7 kohm 5 %"
+//! capacitor = "100 nF 10 % X7R"
 //! ```
+//!
+//! With a `[network]`, recordings and figures are those of the contact, and everything is proved for what the network
+//! makes of them at the pin.
 
 mod check;
+mod front;
+mod network;
+mod network_options;
+mod network_resolve;
 mod options;
 mod pair;
 mod read;
@@ -62,12 +76,15 @@ use debounce_core::{PerChange, PerPosition};
 use crate::problem::SourceText;
 use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time, Voltage};
 
+pub use front::InFront;
+pub use network::{NetworkTable, ResolvedNetwork};
+pub use network_options::NetworkOptions;
 pub use options::RequirementOptions;
 pub use pair::{ForChanges, ForPositions};
 pub use read::{parse, read};
 pub use resolve::{Measured, Resolved, ResolvedRow, allowed_samples};
 pub use source::{Origin, Sourced};
-pub use words::{ContactKind, Level, Role, Word};
+pub use words::{ContactKind, DiodeKind, Level, Quickened, Role, Word};
 
 /// A requirement as far as it has been given.
 #[derive(Clone, PartialEq, Debug, Default)]
@@ -88,6 +105,8 @@ pub struct Requirement {
     pub clock: Clock,
     /// What the firmware can afford.
     pub budget: Budget,
+    /// What stands between the contact and the pin.
+    pub network: Option<NetworkTable>,
     source: Option<Arc<SourceText>>,
 }
 

@@ -105,7 +105,7 @@ pub struct RequirementOptions {
 }
 
 /// The value of an option over that of the file.
-fn over<T: Clone>(target: &mut Option<Sourced<T>>, option: &Option<T>, name: &'static str) {
+pub(super) fn over<T: Clone>(target: &mut Option<Sourced<T>>, option: &Option<T>, name: &'static str) {
     if let Some(value) = option {
         *target = Some(Sourced::new(value.clone(), Origin::Option(name)));
     }

@@ -9,6 +9,7 @@ use debounce_core::{PerChange, PerPosition};
 use toml::de::{DeTable, DeValue};
 
 use super::check::check;
+use super::network;
 use super::section::{Reader, Section};
 use super::{
     Budget, Clock, Contact, Figures, Level, Recording, Requirement, Sourced, Thresholds, TickChoice,
@@ -119,6 +120,9 @@ fn requirement<'t>(reader: &mut Reader, root: &'t DeTable<'t>) -> Requirement {
         let fastest_tick = reader.quantity(&mut section, "fastest_tick");
         requirement.budget = Budget { ram, fastest_tick };
         reader.finish(section);
+    }
+    if let Some(section) = reader.section(&mut root, "network") {
+        requirement.network = Some(network::read(reader, section));
     }
     reader.finish(root);
     requirement

@@ -3,7 +3,7 @@
 use debounce_core::{PerChange, PerPosition, TickClock};
 
 use super::check;
-use super::{ContactKind, Figures, Level, Origin, Requirement, Role, Sourced, TickChoice};
+use super::{ContactKind, Figures, InFront, Level, Origin, Requirement, Role, Sourced, TickChoice};
 use crate::envelope::PhysicalEnvelope;
 use crate::problem::{Problem, Problems};
 use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time};
@@ -52,6 +52,8 @@ pub struct Resolved {
     pub ram: Option<Sourced<Bytes>>,
     /// The fastest tick that the firmware can serve, where it is limited.
     pub fastest_tick: Option<Sourced<TickPeriod>>,
+    /// The network in front of the pin, and what it makes of the contact.
+    pub network: Option<InFront>,
 }
 
 /// One value of a resolved requirement, for tables and for JSON.
@@ -85,7 +87,10 @@ impl Requirement {
         let known = resolved.required.clone().map(Some);
         match Problems::from_found(check::figures(&known, self.source())) {
             Some(problems) => Err(problems),
-            None => Ok(resolved),
+            None => {
+                let network = InFront::of(self, resolved.at_contact())?;
+                Ok(Resolved { network, ..resolved })
+            }
         }
     }
 
@@ -158,6 +163,7 @@ impl Requirement {
             lost: or_default(&self.clock.lost, Ticks(0), "the timer never misses"),
             ram: self.budget.ram,
             fastest_tick: self.budget.fastest_tick,
+            network: None,
         })
     }
 
@@ -277,9 +283,16 @@ impl Resolved {
             .lost(self.lost.value.0)
     }
 
-    /// The waveforms that must be served, in time.
+    /// The waveforms that must be served, in time: those of the pin, which are those of the contact where no network
+    /// stands between them.
     #[must_use]
     pub fn physical(&self) -> PhysicalEnvelope {
+        self.network.as_ref().map_or_else(|| self.at_contact(), |network| network.at_pin.physical)
+    }
+
+    /// The waveforms of the contact, in time.
+    #[must_use]
+    pub fn at_contact(&self) -> PhysicalEnvelope {
         let required = &self.required;
         let ns = |time: Sourced<Time>| time.value.ns();
         PhysicalEnvelope {
@@ -343,6 +356,7 @@ impl Resolved {
         ];
         rows.extend(self.ram.as_ref().map(|ram| row("budget.ram", ram)));
         rows.extend(self.fastest_tick.as_ref().map(|tick| row("budget.fastest_tick", tick)));
+        rows.extend(self.network.iter().flat_map(InFront::rows));
         rows
     }
 }

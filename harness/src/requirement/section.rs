@@ -12,6 +12,7 @@ use toml::de::{DeTable, DeValue};
 use super::words::{Word, either, parse_word};
 use super::{Origin, Sourced};
 use crate::nearest::nearest;
+use crate::network::{ClassName, ClassNameError};
 use crate::problem::{Problem, SourceText};
 use crate::quantity::Quantity;
 
@@ -129,6 +130,36 @@ impl Reader {
             Ok(word) => Some(self.sourced(word, value.span())),
             Err(error) => {
                 self.problem(value.span(), error.message, error.help);
+                None
+            }
+        }
+    }
+
+    /// The name of an input class.
+    pub(super) fn class(
+        &mut self,
+        section: &mut Section<'_>,
+        key: &'static str,
+    ) -> Option<Sourced<ClassName>> {
+        let value = section.take(key)?;
+        let raw = self.raw(value.span()).to_owned();
+        match value.get_ref().as_str().unwrap_or(&raw).parse() {
+            Ok(class) => Some(self.sourced(class, value.span())),
+            Err(ClassNameError { message, help }) => {
+                self.problem(value.span(), message, help);
+                None
+            }
+        }
+    }
+
+    /// The table that is the value of `key`.
+    pub(super) fn inner<'t>(&mut self, section: &mut Section<'t>, key: &'static str) -> Option<Section<'t>> {
+        let value = section.take(key)?;
+        match value.get_ref() {
+            DeValue::Table(table) => Some(Section::new(key, table)),
+            other => {
+                let message = format!("{} is not what {key} is: several values", describe(other));
+                self.problem(value.span(), message, format!("write {key} = {{ .. }} with its values"));
                 None
             }
         }

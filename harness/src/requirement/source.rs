@@ -19,6 +19,8 @@ pub enum Origin {
     Option(&'static str),
     /// It was taken from the recordings.
     Measured,
+    /// It was worked out from the network in front of the pin.
+    Network,
     /// Nobody gave it; the text says where the default comes from.
     Default(&'static str),
 }
@@ -33,13 +35,14 @@ impl Origin {
         }
     }
 
-    /// One word for tables and for JSON: `given`, `option`, `measured` or `default`.
+    /// One word for tables and for JSON: `given`, `option`, `measured`, `network` or `default`.
     #[must_use]
     pub fn word(&self) -> &'static str {
         match self {
             Self::Given { .. } => "given",
             Self::Option(_) => "option",
             Self::Measured => "measured",
+            Self::Network => "network",
             Self::Default(_) => "default",
         }
     }
@@ -51,6 +54,7 @@ impl fmt::Display for Origin {
             Self::Given { line, .. } => write!(f, "line {line} of the requirement"),
             Self::Option(name) => write!(f, "option {name}"),
             Self::Measured => f.write_str("measured on the recordings"),
+            Self::Network => f.write_str("worked out from [network], over all its tolerances"),
             Self::Default(reason) => write!(f, "default: {reason}"),
         }
     }

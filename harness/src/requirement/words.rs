@@ -120,6 +120,26 @@ words! {
     }
 }
 
+words! {
+    /// A diode across the series resistor.
+    DiodeKind, "a kind of diode", {
+        /// A small-signal silicon diode.
+        Silicon = "silicon",
+        /// A small Schottky diode.
+        Schottky = "schottky",
+    }
+}
+
+words! {
+    /// Which edge the diode makes quicker.
+    Quickened, "an edge that a diode can quicken", {
+        /// The one after a make: it carries what leaves the capacitor.
+        Make = "make",
+        /// The one after a break: it carries what fills the capacitor.
+        Break = "break",
+    }
+}
+
 spelled! { Level, "a level of the line", { Low = "low", High = "high", } }
 
 impl Role {

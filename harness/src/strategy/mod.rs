@@ -11,6 +11,7 @@
 //! With the feature `proptest` each is a strategy of that crate.
 
 mod clock_plan;
+mod course;
 mod draw;
 #[cfg(feature = "proptest")]
 mod proptest;

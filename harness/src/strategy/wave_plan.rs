@@ -4,6 +4,7 @@ use debounce_core::{Position, TickClock};
 use rand::{Rng, RngExt};
 
 use super::clock_plan::{ClockPlan, units_per_ns};
+use super::course::{Course, Hold, Taken};
 use super::draw::{Begin, extra, often_most};
 use super::shrink::{Plan, less, shorter};
 use super::wave::{Wave, WaveSample};
@@ -17,18 +18,9 @@ use crate::truth::TruthChange;
 pub(crate) struct WavePlan {
     envelope: PhysicalEnvelope,
     tick: TickClock,
-    start: Position,
-    lead: u64,
-    holds: Vec<Hold>,
-    tail: u64,
+    course: Course<Pulse>,
     disturbances: Vec<Disturbance>,
     clock: ClockPlan,
-}
-
-#[derive(Clone, PartialEq, Eq, Debug)]
-struct Hold {
-    bounce: Vec<Pulse>,
-    extra: u64,
 }
 
 #[derive(Clone, PartialEq, Eq, Debug)]
@@ -108,7 +100,8 @@ impl WavePlan {
         let tail = if rng.random_bool(0.75) { dwell + span } else { rng.random_range(1..=dwell.max(1)) };
         let clock = ClockPlan::draw(tick, holds.len(), rng);
         let lead = extra(rng, period, span);
-        Self { envelope: *e, tick: *tick, start, lead, holds, tail, disturbances, clock }.pinned()
+        let course = Course { start, lead, holds, tail };
+        Self { envelope: *e, tick: *tick, course, disturbances, clock }.pinned()
     }
 
     /// The same trace with every disturbance at its place, so that it stays there when something before it is taken
@@ -122,21 +115,26 @@ impl WavePlan {
 
     /// The changes, and the end of the trace.
     fn changes(&self) -> (Vec<TruthChange>, u64) {
-        let mut at = self.lead + 1;
-        let mut contact = self.start;
+        let mut at = self.course.lead + 1;
+        let mut contact = self.course.start;
         let mut changes = Vec::new();
-        for hold in &self.holds {
+        for hold in &self.course.holds {
             contact = contact.opposite();
             changes.push(TruthChange { change: contact.reached_by(), at_ns: at });
             // At least an instant, or two changes would be none.
             at += (self.envelope.dwell_ns.at(contact) + hold.extra).max(1);
         }
-        let last = changes.last().map_or(self.lead + 1, |change| change.at_ns);
-        (changes, last + self.tail.max(1))
+        let last = changes.last().map_or(self.course.lead + 1, |change| change.at_ns);
+        (changes, last + self.course.tail.max(1))
+    }
+
+    /// When each change happens.
+    fn instants(&self) -> Vec<u64> {
+        self.changes().0.iter().map(|change| change.at_ns).collect()
     }
 
     fn bounces(&self, changes: &[TruthChange]) -> Vec<Strike> {
-        let strikes = changes.iter().zip(&self.holds).map(|(change, hold)| {
+        let strikes = changes.iter().zip(&self.course.holds).map(|(change, hold)| {
             let most = self.envelope.bounce_ns.at(change.change);
             let pulses: Vec<Pulse> = hold.bounce.iter().filter_map(|pulse| pulse.cut(1, most)).collect();
             let last = pulses.last().map_or(0, |pulse| pulse.until);
@@ -180,7 +178,7 @@ impl WavePlan {
     ) -> Option<(u64, u64)> {
         while at < end {
             let passed = changes.partition_point(|change| change.at_ns <= at);
-            let contact = if passed == 0 { self.start } else { changes[passed - 1].change.to() };
+            let contact = if passed == 0 { self.course.start } else { changes[passed - 1].change.to() };
             let widest = self.envelope.glitch_ns.at(contact);
             if widest == 0 {
                 at = changes.get(passed)?.at_ns;
@@ -221,12 +219,12 @@ impl WavePlan {
         let contrary_in = |strike: &Strike, at: u64| {
             strike.pulses.iter().any(|p| (strike.from + p.from..strike.from + p.until).contains(&at))
         };
-        let mut line = self.start;
+        let mut line = self.course.start;
         let mut edges = Vec::new();
         // An instant at the very start is no edge of a trace; nothing strikes there but from the next one on.
         for at in instants.into_iter().filter(|&at| at > 0 && at <= end) {
             let passed = changes.partition_point(|change| change.at_ns <= at);
-            let contact = if passed == 0 { self.start } else { changes[passed - 1].change.to() };
+            let contact = if passed == 0 { self.course.start } else { changes[passed - 1].change.to() };
             let disturbed = disturbances.iter().find(|strike| (strike.from..strike.until).contains(&at));
             let contrary = match disturbed {
                 Some(strike) => contrary_in(strike, at),
@@ -251,7 +249,7 @@ impl WavePlan {
         let ticks = self.clock.ticks(&self.tick, in_units(trace.end_ns()), &events, &changes, spacing);
         let taken = ticks.into_iter().map(|tick| {
             let passed = changes.partition_point(|&change| change <= tick.at);
-            let contact = if passed == 0 { self.start } else { truth[passed - 1].change.to() };
+            let contact = if passed == 0 { self.course.start } else { truth[passed - 1].change.to() };
             // An edge within the nanosecond of the sample is at its begin, so rounding down sees it.
             let at_ns = u64::try_from(tick.at / units).unwrap_or(u64::MAX);
             WaveSample { at_units: tick.at, contact, sample: trace.position_at(at_ns), lost: tick.lost }
@@ -261,16 +259,16 @@ impl WavePlan {
 
     fn weight(&self) -> u64 {
         // Narrow pulses are not simpler: they only make it harder for a sample to meet them.
-        let holds = self.holds.iter().map(|hold| 1 + hold.bounce.len() as u64 + hold.extra);
+        let holds = self.course.holds.iter().map(|hold| 1 + hold.bounce.len() as u64 + hold.extra);
         let disturbances = self.disturbances.iter().map(|d| 1 + d.pulses.len() as u64 + d.begin.weight());
         let sum: u64 = holds.chain(disturbances).sum();
-        (self.lead + self.tail + sum).saturating_add(self.clock.weight())
+        (self.course.lead + self.course.tail + sum).saturating_add(self.clock.weight())
     }
 
     /// From the change at the begin of a hold that is not the last to the next change.
     fn length(&self, at: usize) -> u64 {
-        let contact = if at.is_multiple_of(2) { self.start.opposite() } else { self.start };
-        (self.envelope.dwell_ns.at(contact) + self.holds[at].extra).max(1)
+        let contact = self.course.after(at);
+        (self.envelope.dwell_ns.at(contact) + self.course.holds[at].extra).max(1)
     }
 
     /// Moves what begins after a stretch that is taken out.
@@ -280,50 +278,14 @@ impl WavePlan {
         }
     }
 
-    /// Fewer changes: without the head, without the end, without two neighbours.
-    fn with_fewer_changes(&self) -> Vec<Self> {
-        let changes: Vec<u64> = self.changes().0.iter().map(|change| change.at_ns).collect();
-        let mut found = Vec::new();
-        for (at, &change) in changes.iter().enumerate() {
-            found.push(self.with(|plan| {
-                plan.lead = if at + 1 == changes.len() { 0 } else { self.length(at) };
-                plan.holds.drain(..=at);
-                plan.start = if at.is_multiple_of(2) { self.start.opposite() } else { self.start };
-                plan.take_out(0, change);
-            }));
-        }
-        for at in 0..changes.len() {
-            found.push(self.with(|plan| {
-                plan.holds.truncate(at);
-                plan.tail = if at == 0 { 1 } else { self.length(at - 1) };
-            }));
-        }
-        found.extend((1..changes.len()).map(|last| {
-            self.with(|plan| {
-                plan.holds.drain(last - 1..=last);
-                plan.take_out(changes[last - 1], self.length(last - 1) + self.length(last));
-            })
-        }));
-        found
-    }
-
-    /// Shorter times between changes; what begins later either stays with what follows, or where it was.
-    fn shortened(&self) -> Vec<Self> {
-        let mut found: Vec<Self> =
-            less(self.tail, 1).map(|tail| self.with(|plan| plan.tail = tail)).collect();
-        for lead in less(self.lead, 0) {
-            let shorter = self.with(|plan| plan.lead = lead);
-            found.extend([shorter.with(|plan| plan.take_out(0, self.lead - lead)), shorter]);
-        }
-        let (changes, _) = self.changes();
-        for (at, hold) in self.holds.iter().enumerate() {
-            for extra in less(hold.extra, 0) {
-                let shorter = self.with(|plan| plan.holds[at].extra = extra);
-                let moved = shorter.with(|plan| plan.take_out(changes[at].at_ns, hold.extra - extra));
-                found.extend([moved, shorter]);
+    /// Another course, and what begins after the stretch that it takes out moved with what follows.
+    fn with_course(&self, (course, taken): (Course<Pulse>, Option<Taken>)) -> Self {
+        self.with(|plan| {
+            plan.course = course;
+            if let Some((from, length)) = taken {
+                plan.take_out(from, length);
             }
-        }
-        found
+        })
     }
 
     fn with(&self, change: impl FnOnce(&mut Self)) -> Self {
@@ -344,7 +306,7 @@ impl Plan for WavePlan {
         let mut events: Vec<u64> = truth.iter().map(|change| change.at_ns).collect();
         events.extend(disturbances.iter().flat_map(|strike| [strike.from, strike.until]));
         events.extend(bounces.iter().map(|strike| strike.until));
-        let trace = Trace::new(self.start, 0, end, edges, 0).expect("edges rise and lie inside");
+        let trace = Trace::new(self.course.start, 0, end, edges, 0).expect("edges rise and lie inside");
         let samples = self.sampled(&trace, &truth, &events);
         let first = samples.first().map_or(0, |sample| sample.at_units);
         let units_per_ns = units_per_ns(&self.tick);
@@ -354,7 +316,7 @@ impl Plan for WavePlan {
 
     fn measure(&self) -> (usize, u64, u64) {
         let wave = self.value();
-        let last = wave.truth.last().map_or(self.start, |change| change.change.to());
+        let last = wave.truth.last().map_or(self.course.start, |change| change.change.to());
         // A trace cut off within a disturbance has not saved the edge back.
         let cut_off = wave.trace.position_at(wave.trace.end_ns()) != last;
         let edges =
@@ -363,25 +325,29 @@ impl Plan for WavePlan {
     }
 
     fn simpler(&self) -> Vec<Self> {
-        let mut found = self.with_fewer_changes();
+        let changes = self.instants();
+        let length = |at| self.length(at);
+        let fewer = self.course.with_fewer_changes(&changes, length).into_iter();
+        let mut found: Vec<Self> = fewer.map(|course| self.with_course(course)).collect();
         let fewer = shorter(&self.disturbances).into_iter();
         found.extend(fewer.map(|disturbances| self.with(|plan| plan.disturbances = disturbances)));
-        for (at, hold) in self.holds.iter().enumerate() {
+        for (at, hold) in self.course.holds.iter().enumerate() {
             let calmer = shorter(&hold.bounce).into_iter();
-            found.extend(calmer.map(|bounce| self.with(|plan| plan.holds[at].bounce = bounce)));
+            found.extend(calmer.map(|bounce| self.with(|plan| plan.course.holds[at].bounce = bounce)));
         }
         for (at, disturbance) in self.disturbances.iter().enumerate() {
             let calmer = shorter(&disturbance.pulses).into_iter();
             found.extend(calmer.map(|pulses| self.with(|plan| plan.disturbances[at].pulses = pulses)));
         }
         found.extend(self.clock.simpler().into_iter().map(|clock| self.with(|plan| plan.clock = clock)));
-        found.extend(self.shortened());
+        let quicker = self.course.shortened(&changes, length).into_iter();
+        found.extend(quicker.map(|course| self.with_course(course)));
         for (at, disturbance) in self.disturbances.iter().enumerate() {
             let sooner = disturbance.begin.simpler().into_iter();
             found.extend(sooner.map(|begin| self.with(|plan| plan.disturbances[at].begin = begin)));
         }
         // Last, so that what matters has moved to the front before the end is cut off right behind it.
-        found.extend(less(self.tail, 1).map(|tail| self.with(|plan| plan.tail = tail)));
+        found.extend(less(self.course.tail, 1).map(|tail| self.with(|plan| plan.course.tail = tail)));
         found
     }
 }

@@ -3,6 +3,7 @@
 use debounce_core::{Envelope, Position};
 use rand::{Rng, RngExt};
 
+use super::course::{Course, Hold, Taken};
 use super::draw::{Begin, extra, often_most};
 use super::shrink::{Plan, less, shorter};
 use super::word::{Word, WordTick};
@@ -11,23 +12,10 @@ use super::word::{Word, WordTick};
 #[derive(Clone, PartialEq, Eq, Debug)]
 pub(crate) struct WordPlan {
     envelope: Envelope,
-    start: Position,
-    /// Ticks before the first change.
-    lead: u64,
-    /// One for each change of the contact.
-    holds: Vec<Hold>,
-    /// Ticks after the last change; the word may end before its dwell does.
-    tail: u64,
+    /// In ticks.
+    course: Course<Reads>,
     disturbances: Vec<Disturbance>,
     losses: Vec<Loss>,
-}
-
-/// A change, its bounce, and how long the contact then stays.
-#[derive(Clone, PartialEq, Eq, Debug)]
-struct Hold {
-    bounce: Vec<Reads>,
-    /// Ticks beyond the dwell.
-    extra: u64,
 }
 
 #[derive(Clone, PartialEq, Eq, Debug)]
@@ -107,7 +95,8 @@ impl WordPlan {
             .collect();
         let tail = if rng.random_bool(0.75) { dwell + span } else { rng.random_range(1..=dwell.max(1)) };
         let lead = extra(rng, 4, span);
-        Self { envelope: *e, start, lead, holds, tail, disturbances, losses }.pinned()
+        let course = Course { start, lead, holds, tail };
+        Self { envelope: *e, course, disturbances, losses }.pinned()
     }
 
     /// The same word with everything at its place, so that it stays there when something before it is taken away.
@@ -120,7 +109,7 @@ impl WordPlan {
 
     /// The word, and the disturbances and losses that came about in it, with their places.
     fn built(&self) -> (Word, Vec<Disturbance>, Vec<Loss>) {
-        let mut word = Word { start: self.start, ticks: self.contact_and_bounces() };
+        let mut word = Word { start: self.course.start, ticks: self.contact_and_bounces() };
         let changes: Vec<u64> = word.changes().iter().map(|&at| at as u64).collect();
         let disturbances = self.disturb(&mut word.ticks, &changes);
         let losses = self.lose(&mut word.ticks, &changes);
@@ -131,16 +120,19 @@ impl WordPlan {
         let tick =
             |contact| WordTick { contact, sample: contact, bouncing: false, disturbed: false, lost: false };
         let mut ticks = Vec::new();
-        let mut contact = self.start;
+        let mut contact = self.course.start;
         let mut put = |contact, length: u64| ticks.extend((0..length).map(|_| tick(contact)));
-        put(contact, if self.holds.is_empty() { self.lead + self.tail } else { self.lead });
+        put(
+            contact,
+            if self.course.holds.is_empty() { self.course.lead + self.course.tail } else { self.course.lead },
+        );
         let mut changes = Vec::new();
-        let mut at = self.lead as usize;
-        for (index, hold) in self.holds.iter().enumerate() {
+        let mut at = self.course.lead as usize;
+        for (index, hold) in self.course.holds.iter().enumerate() {
             contact = contact.opposite();
             changes.push((at, contact, &hold.bounce));
             let dwell = u64::from(self.envelope.dwell.at(contact)) + hold.extra;
-            let length = if index + 1 == self.holds.len() { self.tail.max(1) } else { dwell };
+            let length = if index + 1 == self.course.holds.len() { self.course.tail.max(1) } else { dwell };
             put(contact, length);
             at += length as usize;
         }
@@ -220,22 +212,22 @@ impl WordPlan {
     }
 
     fn weight(&self) -> u64 {
-        let holds = self.holds.iter().map(|hold| 1 + hold.bounce.len() as u64 + hold.extra);
+        let holds = self.course.holds.iter().map(|hold| 1 + hold.bounce.len() as u64 + hold.extra);
         let disturbances = self.disturbances.iter().map(|d| 1 + d.window.len() as u64 + d.begin.weight());
         let losses = self.losses.iter().map(|loss| 1 + loss.ticks + loss.begin.weight());
-        self.lead + self.tail + holds.chain(disturbances).chain(losses).sum::<u64>()
+        self.course.lead + self.course.tail + holds.chain(disturbances).chain(losses).sum::<u64>()
     }
 
     /// Ticks of a hold that is not the last.
     fn length(&self, at: usize) -> u64 {
-        let contact = if at.is_multiple_of(2) { self.start.opposite() } else { self.start };
-        u64::from(self.envelope.dwell.at(contact)) + self.holds[at].extra
+        let contact = self.course.after(at);
+        u64::from(self.envelope.dwell.at(contact)) + self.course.holds[at].extra
     }
 
     /// The tick before which each change happens.
     fn changes(&self) -> Vec<u64> {
-        let mut at = self.lead;
-        (0..self.holds.len())
+        let mut at = self.course.lead;
+        (0..self.course.holds.len())
             .map(|index| {
                 let change = at;
                 at += self.length(index);
@@ -254,52 +246,14 @@ impl WordPlan {
         }
     }
 
-    /// Fewer changes: without the head, without the end, without two neighbours.
-    fn with_fewer_changes(&self) -> Vec<Self> {
-        let changes = self.changes();
-        let mut found = Vec::new();
-        for (at, &change) in changes.iter().enumerate() {
-            found.push(self.with(|plan| {
-                plan.lead = if at + 1 == changes.len() { 0 } else { self.length(at) };
-                plan.holds.drain(..=at);
-                plan.start = if at.is_multiple_of(2) { self.start.opposite() } else { self.start };
-                plan.take_out(0, change);
-            }));
-        }
-        for at in 0..changes.len() {
-            found.push(self.with(|plan| {
-                plan.holds.truncate(at);
-                plan.tail = if at == 0 { 1 } else { self.length(at - 1) };
-            }));
-        }
-        found.extend((1..changes.len()).map(|last| {
-            self.with(|plan| {
-                plan.holds.drain(last - 1..=last);
-                plan.take_out(changes[last - 1], self.length(last - 1) + self.length(last));
-            })
-        }));
-        found
-    }
-
-    /// Shorter times between changes; what begins later either stays with what follows, or where it was.
-    fn shortened(&self) -> Vec<Self> {
-        let mut found: Vec<Self> =
-            less(self.tail, 1).map(|tail| self.with(|plan| plan.tail = tail)).collect();
-        for lead in less(self.lead, 0) {
-            let shorter = self.with(|plan| plan.lead = lead);
-            found.extend([shorter.with(|plan| plan.take_out(0, self.lead - lead)), shorter]);
-        }
-        let changes = self.changes();
-        for (at, hold) in self.holds.iter().enumerate() {
-            for extra in less(hold.extra, 0) {
-                let by = hold.extra - extra;
-                let shorter = self.with(|plan| plan.holds[at].extra = extra);
-                let end = changes[at] + self.length(at) - by;
-                found.push(shorter.with(|plan| plan.take_out(changes[at], by)));
-                found.extend([shorter.with(|plan| plan.take_out(end, by)), shorter]);
+    /// Another course, and what begins after the stretch that it takes out moved with what follows.
+    fn with_course(&self, (course, taken): (Course<Reads>, Option<Taken>)) -> Self {
+        self.with(|plan| {
+            plan.course = course;
+            if let Some((from, length)) = taken {
+                plan.take_out(from, length);
             }
-        }
-        found
+        })
     }
 
     fn with(&self, change: impl FnOnce(&mut Self)) -> Self {
@@ -326,19 +280,23 @@ impl Plan for WordPlan {
     }
 
     fn simpler(&self) -> Vec<Self> {
-        let mut found = self.with_fewer_changes();
+        let changes = self.changes();
+        let length = |at| self.length(at);
+        let fewer = self.course.with_fewer_changes(&changes, length).into_iter();
+        let mut found: Vec<Self> = fewer.map(|course| self.with_course(course)).collect();
         let fewer = shorter(&self.disturbances).into_iter();
         found.extend(fewer.map(|disturbances| self.with(|plan| plan.disturbances = disturbances)));
         found.extend(shorter(&self.losses).into_iter().map(|losses| self.with(|plan| plan.losses = losses)));
-        for (at, hold) in self.holds.iter().enumerate() {
+        for (at, hold) in self.course.holds.iter().enumerate() {
             let calmer = simpler_patterns(&hold.bounce).into_iter();
-            found.extend(calmer.map(|bounce| self.with(|plan| plan.holds[at].bounce = bounce)));
+            found.extend(calmer.map(|bounce| self.with(|plan| plan.course.holds[at].bounce = bounce)));
         }
         for (at, disturbance) in self.disturbances.iter().enumerate() {
             let calmer = simpler_patterns(&disturbance.window).into_iter();
             found.extend(calmer.map(|window| self.with(|plan| plan.disturbances[at].window = window)));
         }
-        found.extend(self.shortened());
+        let quicker = self.course.shortened(&changes, length).into_iter();
+        found.extend(quicker.map(|course| self.with_course(course)));
         for (at, disturbance) in self.disturbances.iter().enumerate() {
             let sooner = disturbance.begin.simpler().into_iter();
             found.extend(sooner.map(|begin| self.with(|plan| plan.disturbances[at].begin = begin)));

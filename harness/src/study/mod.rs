@@ -19,6 +19,7 @@ use crate::prove::{Limits, ProveError};
 use crate::quantity::TickPeriod;
 use crate::replay::PrepareError;
 use crate::requirement::{Requirement, Resolved};
+use crate::trace::{Trace, TraceError};
 
 pub use observed::{Claim, Observed, measured, observe};
 pub use proof::Guarantees;
@@ -39,6 +40,9 @@ pub enum StudyError {
     /// A recording cannot be replayed.
     #[error(transparent)]
     Replay(#[from] PrepareError),
+    /// A recording cannot be taken through the network.
+    #[error(transparent)]
+    Network(#[from] TraceError),
     /// The chosen configuration could not be explored.
     #[error("the recommended configuration could not be proved: {0}")]
     Prove(#[from] ProveError),
@@ -88,9 +92,12 @@ impl Study {
     ) -> Result<Self, StudyError> {
         let resolved = requirement.resolve(&measured(&observed)).map_err(StudyError::Requirement)?;
         let physical = resolved.physical();
+        // A recording is one of the contact; with a network the pin shows something else.
+        let contact = resolved.at_contact();
         let conformance =
-            observed.iter().map(|one| conformance::check(&one.recording.trace, &physical)).collect();
-        let question = Question { only, ..question(&resolved, &observed, preference) };
+            observed.iter().map(|one| conformance::check(&one.recording.trace, &contact)).collect();
+        let at_pin = at_pin(&resolved, &observed)?;
+        let question = Question { only, ..question(&resolved, &observed, &at_pin, preference) };
         let ranking = choose(&question, progress)?;
         if ranking.clocks.iter().all(|view| view.envelope.is_err()) {
             let reason = ranking.clocks.iter().find_map(|view| view.envelope.err());
@@ -134,18 +141,38 @@ impl Study {
             configuration = configuration
                 .provenance(format!("recording {}, channel {}", one.name, one.recording.channel));
         }
+        if let Some(front) = &self.resolved.network {
+            for sentence in front.sentences() {
+                configuration = configuration.provenance(format!("network in front of the pin: {sentence}"));
+            }
+        }
         Some(configuration)
     }
 }
 
-fn question<'a>(resolved: &Resolved, observed: &'a [Observed], preference: Preference) -> Question<'a> {
+/// What the pin shows of each recording; nothing where it shows the recording itself.
+fn at_pin(resolved: &Resolved, observed: &[Observed]) -> Result<Vec<Trace>, StudyError> {
+    let Some(front) = &resolved.network else { return Ok(Vec::new()) };
+    let through = |one: &Observed| front.resolved.network.through(&one.recording.trace);
+    Ok(observed.iter().map(through).collect::<Result<_, _>>()?)
+}
+
+fn question<'a>(
+    resolved: &Resolved,
+    observed: &'a [Observed],
+    at_pin: &'a [Trace],
+    preference: Preference,
+) -> Question<'a> {
+    let trace = |(index, one): (usize, &'a Observed)| {
+        (at_pin.get(index).unwrap_or(&one.recording.trace), one.truth.as_slice())
+    };
     let latency = resolved.required.latency;
     Question {
         physical: resolved.physical(),
         latency_ns: PerChange { make: latency.make.value.ns(), break_: latency.break_.value.ns() },
         clocks: resolved.ticks.value.iter().map(|&tick| resolved.clock(tick)).collect(),
         ram_bytes: resolved.ram.map(|ram| ram.value.0),
-        recordings: observed.iter().map(|one| (&one.recording.trace, one.truth.as_slice())).collect(),
+        recordings: observed.iter().enumerate().map(trace).collect(),
         preference,
         only: None,
         // A candidate that needs more than this is shown as unproven; the usual one needs a thousandth.

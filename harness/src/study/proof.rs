@@ -1,12 +1,9 @@
 //! The recommended candidate, explored in full.
 
-use debounce_core::{Envelope, PerPosition, Position, Verdict};
+use debounce_core::{Envelope, PerPosition, Verdict};
 
 use crate::choose::{Candidate, ClockView, Judgement};
-use crate::prove::{
-    LawTable, Limits, Proof, ProveError, Recovery, immunity, prove_within, recovery_from_any_state,
-    recovery_from_short_operations, shortest_operations, widest_lone_disturbance,
-};
+use crate::prove::{Beyond, Effort, Limits, Proof, ProveError, prove_within};
 
 /// What exploration shows of a candidate, beyond its bounds.
 #[derive(Clone, PartialEq, Debug)]
@@ -18,20 +15,9 @@ pub struct Guarantees {
     pub proof: Proof,
     /// States of the law.
     pub law_states: usize,
-    /// The widest lone disturbance from rest that is never reported, in samples.
-    pub lone_disturbance: PerPosition<Option<u32>>,
-    /// The widest disturbance that the proof still bears; `None` where the search would take too long.
-    pub immunity: Option<PerPosition<Option<u32>>>,
-    /// The shortest operations that are always served; empty where the search would take too long.
-    pub shortest_operations: Vec<PerPosition<u32>>,
-    /// After operations that were too short; `None` where the search would take too long.
-    pub after_short_operations: Option<Recovery>,
-    /// From any state; `None` where the search would take too long.
-    pub from_any_state: Option<Recovery>,
+    /// Immunity, the shortest operations, and how it comes back.
+    pub beyond: Beyond,
 }
-
-/// Searches that repeat the proof many times are made only up to this size, so that a study stays quick.
-const REPEATABLE: u64 = 30_000;
 
 impl Guarantees {
     /// Explores a candidate that is known to be faithful.
@@ -52,35 +38,14 @@ impl Guarantees {
                 "closed form and exploration disagree: please report this"
             );
         }
-        let lone = |position| widest_lone_disturbance(&logic, position);
-        let mut guarantees = Self {
-            envelope,
-            law_states: logic.len(),
-            lone_disturbance: PerPosition { open: lone(Position::Open), closed: lone(Position::Closed) },
-            immunity: None,
-            shortest_operations: Vec::new(),
-            after_short_operations: None,
-            from_any_state: None,
-            proof,
-        };
-        if guarantees.proof.states <= REPEATABLE {
-            guarantees.repeat(&logic, &explored, &limits)?;
-        }
-        Ok(guarantees)
+        let beyond = Beyond::of(&logic, &proof, Effort::Quick, &limits);
+        Ok(Self { envelope, law_states: logic.len(), proof, beyond })
     }
 
     /// The envelope that was explored, where it is not the one asked for but one that holds all its waveforms.
     #[must_use]
     pub fn explored_wider(&self) -> Option<Envelope> {
         Some(self.proof.envelope).filter(|explored| *explored != self.envelope)
-    }
-
-    fn repeat(&mut self, logic: &LawTable, envelope: &Envelope, limits: &Limits) -> Result<(), ProveError> {
-        self.immunity = Some(immunity(logic, envelope, limits)?);
-        self.shortest_operations = shortest_operations(logic, envelope, limits)?;
-        self.after_short_operations = Some(recovery_from_short_operations(logic, envelope, limits)?);
-        self.from_any_state = Some(recovery_from_any_state(logic, envelope, limits)?);
-        Ok(())
     }
 }
 

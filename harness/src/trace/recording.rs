@@ -5,6 +5,7 @@ use std::fmt;
 use debounce_core::Position;
 
 use super::{Trace, Unknown};
+use crate::quantity::Time;
 
 /// One channel of a file, as a trace.
 #[derive(Clone, PartialEq, Eq, Debug)]
@@ -67,10 +68,17 @@ pub enum Note {
     },
 }
 
+/// Every digit, so that the place can be found again in the file.
+fn exact(ns: u64) -> String {
+    format!("{:.20}", Time::from_ns(ns))
+}
+
 impl fmt::Display for Note {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match *self {
-            Self::Shifted { by_ns } => write!(f, "times began below zero; all were moved up by {by_ns} ns"),
+            Self::Shifted { by_ns } => {
+                write!(f, "times began below zero; all were moved up by {}", exact(by_ns))
+            }
             Self::RoundedTimes => f.write_str("times finer than 1 ns were rounded down to whole nanoseconds"),
             Self::MergedEdges { edges } => write!(
                 f,
@@ -83,14 +91,14 @@ impl fmt::Display for Note {
                     Unknown::Closed => "taken as closed",
                     Unknown::Refuse => "refused",
                 };
-                write!(f, "{stretches} stretches of unknown values, the first at {first_ns} ns: {made}")
+                write!(f, "{stretches} stretches of unknown values, the first at {}: {made}", exact(first_ns))
             }
             Self::StartAssumed { until_ns, position } => {
                 let position = match position {
                     Position::Open => "open",
                     Position::Closed => "closed",
                 };
-                write!(f, "no known value before {until_ns} ns; taken as {position} from the start")
+                write!(f, "no known value before {}; taken as {position} from the start", exact(until_ns))
             }
             Self::SecondsAssumed => f.write_str("no unit was given for the times; taken as seconds"),
             Self::RunsForgotten { runs } => {

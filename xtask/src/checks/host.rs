@@ -6,5 +6,7 @@ use crate::session::Session;
 pub(super) fn run(session: &mut Session) {
     // The modules that the tests generate are built for it, too.
     session.expect(install::target("thumbv6m-none-eabi"));
+    // The network in front of the pin is compared with a circuit simulator.
+    session.expect(install::program("ngspice", "ngspice"));
     session.cargo_test(&["--workspace"]);
 }

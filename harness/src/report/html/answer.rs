@@ -4,8 +4,7 @@ use debounce_core::{Change, PerChange};
 use maud::{Markup, html};
 
 use crate::choose::Candidate;
-use crate::prove::Recovery;
-use crate::quantity::TickPeriod;
+use crate::prove::{Beyond, Recovery};
 use crate::report::words;
 use crate::study::{Claim, Guarantees, Study};
 
@@ -31,7 +30,7 @@ pub(super) fn of(study: &Study) -> Markup {
                 }
             }
             dt { "Envelope" }
-            dd { "the contact " (words::envelope(&study.physical).join("; ")) }
+            dd { "the contact " (words::envelope(&study.resolved.at_contact()).join("; ")) }
             dt { "Confidence" }
             @for line in confidence(study) { dd { (line) } }
         }
@@ -56,7 +55,7 @@ fn recommended(study: &Study, best: &Candidate) -> Markup {
 
 /// Why this one, what was measured of it, and what is proved beyond the promise.
 fn more(study: &Study, best: &Candidate, found: &Guarantees) -> Markup {
-    let beyond = beyond(found, study.tick(best));
+    let beyond = beyond(&found.beyond);
     html! {
         dl {
             dt { "Why this one" }
@@ -94,32 +93,32 @@ fn from_the_limit(best: &Candidate) -> String {
 }
 
 /// What is proved outside the promise.
-fn beyond(found: &Guarantees, tick: TickPeriod) -> Vec<String> {
+pub(super) fn beyond(found: &Beyond) -> Vec<String> {
     let mut lines = Vec::new();
     let known = |samples: Option<u32>| {
-        samples.map_or("any number of samples".to_owned(), |samples| words::count(samples as usize, "sample"))
+        samples.map_or("none".to_owned(), |samples| words::count(samples as usize, "sample"))
     };
-    if let Some(immunity) = found.immunity {
+    if let Ok(immunity) = &found.immunity {
         lines.push(format!(
-            "at {tick} it bears disturbances that touch up to {} while open and {} while closed",
+            "all else as it is, it bears disturbances of up to {} while open, or up to {} while closed",
             known(immunity.open),
             known(immunity.closed)
         ));
     }
-    if let Some(pair) = found.shortest_operations.first() {
+    if let Some(pair) = found.shortest_operations.as_ref().ok().and_then(|pairs| pairs.first()) {
+        let (closed, open) = (pair.closed, pair.open);
+        lines.push(format!("operations are served down to {closed} samples closed and {open} open"));
+    }
+    if let Ok(Recovery::Within(samples)) = &found.after_short_operations {
         lines.push(format!(
-            "operations are served down to {} samples closed and {} open",
-            pair.closed, pair.open
+            "after operations that are too short the output is right again within {}",
+            words::count(*samples as usize, "sample")
         ));
     }
-    if let Some(Recovery::Within(samples)) = &found.after_short_operations {
+    if let Ok(Recovery::Within(samples)) = &found.from_any_state {
         lines.push(format!(
-            "after operations that are too short the output is right again within {samples} samples"
-        ));
-    }
-    if let Some(Recovery::Within(samples)) = &found.from_any_state {
-        lines.push(format!(
-            "from any state whatever, as after an upset, it is right within {samples} samples"
+            "from any state whatever, as after an upset, it is right within {}",
+            words::count(*samples as usize, "sample")
         ));
     }
     lines

@@ -49,7 +49,7 @@ pub fn characterised(found: &Characterised<'_>, origin: &Origin) -> String {
         title: found.resolved.name.value.clone(),
         kind: "What the recordings show".to_owned(),
         invented: false,
-        caution: found.resolved.caution(),
+        cautions: found.resolved.caution().into_iter().collect(),
         answer: answer(found),
         sections,
     };

@@ -9,11 +9,19 @@ use crate::report::plot::px;
 use crate::report::words;
 
 /// The envelope in time, and what the clock makes of it.
-pub(super) fn section(physical: &PhysicalEnvelope, ticks: Option<(&Envelope, String)>) -> Section {
+pub(super) fn section(
+    physical: &PhysicalEnvelope,
+    network: &[String],
+    ticks: Option<(&Envelope, String)>,
+) -> Section {
     let body = html! {
         p { "Everything that is proved holds for every contact that" }
         ul class="clauses" { @for line in words::envelope(physical) { li { (line) "." } } }
         p { "Nothing is claimed of a contact that does anything else." }
+        @if !network.is_empty() {
+            p { "The network between contact and pin" }
+            ul class="clauses" { @for line in network { li { (line) "." } } }
+        }
         div class="pair" {
             @for change in [Change::Make, Change::Break] { (picture(physical, change).markup()) }
         }

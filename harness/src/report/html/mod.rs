@@ -17,6 +17,7 @@ mod envelope;
 mod figure;
 mod latency;
 mod logic;
+mod network;
 mod origin;
 mod page;
 mod plane;
@@ -36,6 +37,7 @@ mod tests;
 
 pub use characterised::{Characterised, characterised};
 pub use figure::Figure;
+pub use network::{Networked, network};
 pub use origin::{Origin, SourceFile};
 pub use page::{Page, Section};
 pub use proof::{Proved, proof};

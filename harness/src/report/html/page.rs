@@ -30,8 +30,8 @@ pub struct Page {
     pub kind: String,
     /// Whether everything in it is invented.
     pub invented: bool,
-    /// The caution for the role of the contact; it comes before everything else.
-    pub caution: Option<&'static str>,
+    /// The cautions for the role of the contact and its wiring; they come before everything else.
+    pub cautions: Vec<&'static str>,
     /// The answer: what stands first.
     pub answer: Markup,
     /// The rest, in order.
@@ -83,7 +83,7 @@ impl Page {
                     @if self.invented { " " strong class="invented" { "Demonstration: everything here is invented" } }
                 }
                 h1 { (self.title) }
-                @if let Some(caution) = self.caution { (caution::for_role(caution)) }
+                @for caution in &self.cautions { (caution::for_role(caution)) }
                 nav aria-label="Contents" {
                     ul {
                         li { a href="#answer" { "Answer" } }

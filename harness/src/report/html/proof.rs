@@ -3,9 +3,9 @@
 use debounce_core::{Change, Envelope, PerChange, Period, TickClock};
 use maud::{Markup, html};
 
-use super::{Origin, Page, envelope, logic, origin, witness};
+use super::{Origin, Page, answer, envelope, logic, origin, witness};
 use crate::machine::MachineTable;
-use crate::prove::{Contract, Outcome, Proof};
+use crate::prove::{Beyond, Contract, Outcome, Proof};
 use crate::report::words;
 
 /// A finished proof with everything a report says of it.
@@ -21,6 +21,8 @@ pub struct Proved<'a> {
     pub proof: &'a Proof,
     /// What no logic could beat, where it is known, in samples.
     pub limit: Option<PerChange<u32>>,
+    /// What holds beyond the bounds.
+    pub beyond: &'a Beyond,
     /// The tick period, where there is one.
     pub tick: Option<Period>,
     /// The caution for the role of the contact, where there is one.
@@ -45,14 +47,14 @@ pub fn proof(proved: &Proved<'_>, origin: &Origin) -> String {
         title: proved.name.to_owned(),
         kind: "Proof of a logic".to_owned(),
         invented: false,
-        caution: proved.caution,
-        answer: answer(proved),
+        cautions: proved.caution.into_iter().collect(),
+        answer: answered(proved),
         sections,
     };
     page.html()
 }
 
-fn answer(proved: &Proved<'_>) -> Markup {
+fn answered(proved: &Proved<'_>) -> Markup {
     let proof = proved.proof;
     html! {
         @match &proof.outcome {
@@ -80,6 +82,9 @@ fn answer(proved: &Proved<'_>) -> Markup {
                             dd { (line) }
                         }
                     }
+                    @let beyond = answer::beyond(proved.beyond);
+                    @if !beyond.is_empty() { dt { "Beyond" } }
+                    @for line in beyond { dd { (line) } }
                     (size(proof))
                 }
             }

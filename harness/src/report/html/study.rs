@@ -5,12 +5,13 @@ use debounce_core::{Change, PerChange};
 use super::bounce::Limit;
 use super::timing::{self, LogicRun, Moment, Shown};
 use super::{
-    Origin, Page, Section, answer, bounce, conformance, cost, distribution, envelope, latency, logic, origin,
-    plane, requirement, simpler, tick, witness,
+    Origin, Page, Section, answer, bounce, conformance, cost, distribution, envelope, latency, logic,
+    network, origin, plane, requirement, simpler, tick, witness,
 };
 use crate::choose::Candidate;
 use crate::machine::MachineTable;
 use crate::study::{Claim, Guarantees, Observed, Study};
+use crate::trace::Trace;
 
 /// The report of a study.
 #[must_use]
@@ -20,6 +21,8 @@ pub fn study(study: &Study, invented: bool, origin: &Origin) -> String {
     let machine =
         best.and_then(|best| Some(MachineTable::of_table(&best.logic.table().ok()?).minimised().machine));
     let mut sections = vec![envelope_section(study, best)];
+    let front = study.resolved.network.as_ref();
+    sections.extend(front.map(|front| network::section(&front.resolved.network.waveforms())));
     sections.extend(timing::section(
         &shown(study, best, machine.as_ref()),
         "Recorded, and what the logic makes of it",
@@ -52,11 +55,18 @@ pub fn study(study: &Study, invented: bool, origin: &Origin) -> String {
         title: title.clone(),
         kind: "Study of a contact".to_owned(),
         invented,
-        caution: study.resolved.caution(),
+        cautions: study.resolved.caution().into_iter().collect(),
         answer: answer::of(study),
         sections,
     };
     page.html()
+}
+
+/// What the pin shows of a recording: the recording itself where no network stands between them.
+fn at_pin(study: &Study, one: &Observed) -> Trace {
+    let network = study.resolved.network.as_ref();
+    let through = network.and_then(|front| front.resolved.network.through(&one.recording.trace).ok());
+    through.unwrap_or_else(|| one.recording.trace.clone())
 }
 
 fn envelope_section(study: &Study, best: Option<&Candidate>) -> Section {
@@ -64,17 +74,18 @@ fn envelope_section(study: &Study, best: Option<&Candidate>) -> Section {
         let envelope = study.ranking.view(best).envelope.as_ref().ok()?;
         Some((envelope, study.tick(best).to_string()))
     });
-    envelope::section(&study.physical, ticks)
+    let network = study.resolved.network.as_ref().map(|front| front.sentences()).unwrap_or_default();
+    envelope::section(&study.resolved.at_contact(), &network, ticks)
 }
 
 /// The waveforms of the proof, and those that show what is not given.
 fn worst(found: &Guarantees) -> Section {
     let mut section = witness::of_proof(&found.proof);
-    let after = found.after_short_operations.as_ref().and_then(|recovery| {
+    let after = found.beyond.after_short_operations.as_ref().ok().and_then(|recovery| {
         let title = "After operations that are too short the output can stay wrong";
         witness::recovery(recovery, "after-short", title)
     });
-    let upset = found.from_any_state.as_ref().and_then(|recovery| {
+    let upset = found.beyond.from_any_state.as_ref().ok().and_then(|recovery| {
         witness::recovery(recovery, "from-any-state", "From some states the output can stay wrong")
     });
     let before = section.body;
@@ -94,7 +105,8 @@ fn limits(study: &Study, change: Change) -> Vec<Limit> {
         at_ns: claim.longest_ns,
         class: "claimed",
     });
-    let allowed = Limit { name: "envelope", at_ns: study.physical.bounce_ns.at(change), class: "asked" };
+    let allowed =
+        Limit { name: "envelope", at_ns: study.resolved.at_contact().bounce_ns.at(change), class: "asked" };
     claimed.into_iter().chain([allowed]).collect()
 }
 
@@ -112,7 +124,13 @@ fn shown<'a>(study: &'a Study, best: Option<&Candidate>, machine: Option<&Machin
                 None => (Vec::new(), Vec::new()),
             };
             if let (Some((best, machine)), true) = (best.zip(machine), runs.is_empty()) {
-                runs.push(LogicRun::of(machine, &study.ranking.view(best).clock, 0, one));
+                runs.push(LogicRun::of(
+                    machine,
+                    &study.ranking.view(best).clock,
+                    0,
+                    &at_pin(study, one),
+                    &one.truth,
+                ));
             }
             timing::outside(one, &study.conformance[index], &mut moments, reach_ns);
             timing::remarkable(one, &mut moments, reach_ns);
@@ -130,13 +148,14 @@ fn slowest(
     index: usize,
 ) -> (Vec<LogicRun>, Vec<Moment>) {
     let clock = study.ranking.view(best).clock;
+    let pin = at_pin(study, one);
     let (mut runs, mut moments) = (Vec::new(), Vec::new());
     for change in [Change::Make, Change::Break] {
         let latencies = best.measured.get(index).and_then(|measured| measured.at(change).latency.as_ref());
         let Some(latencies) = latencies else { continue };
         let slowest = latencies.slowest;
         // The delay rises toward the end of the span, so the last phase in it is the slowest.
-        let run = LogicRun::of(machine, &clock, slowest.phase.until - 1, one);
+        let run = LogicRun::of(machine, &clock, slowest.phase.until - 1, &pin, &one.truth);
         let delay_ns = run.delay_of(one, slowest.at_ns).unwrap_or(latencies.delay.below_ns);
         moments.push(timing::slowest(one, change, slowest.at_ns, delay_ns, runs.len()));
         runs.push(run);

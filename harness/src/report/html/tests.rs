@@ -12,7 +12,7 @@ use crate::law_text::LawParameters;
 use crate::logic::Logic;
 use crate::machine::MachineTable;
 use crate::problem::SourceText;
-use crate::prove::{Limits, prove_within};
+use crate::prove::{Beyond, Effort, Limits, prove_within};
 use crate::requirement::{Requirement, parse};
 use crate::study::{Observed, Study, measured, observe};
 use crate::trace::{ReadOptions, read_bytes};
@@ -45,9 +45,19 @@ fn proved(law: &str, envelope: Envelope) -> String {
     let table = logic.table().expect("a table");
     let found = prove_within(&table, &envelope, &Limits::default()).expect("a proof");
     let machine = MachineTable::of_table(&table);
+    let beyond = Beyond::of(&table, &found, Effort::Quick, &Limits::default());
     let (name, limit, tick, caution) = (law, None, None, None);
     proof(
-        &Proved { name, machine: &machine, envelope: &envelope, proof: &found, limit, tick, caution },
+        &Proved {
+            name,
+            machine: &machine,
+            envelope: &envelope,
+            proof: &found,
+            limit,
+            beyond: &beyond,
+            tick,
+            caution,
+        },
         &origin(),
     )
 }

@@ -48,6 +48,17 @@ impl Axis {
         Self { scale, ticks, title: format!("{what}, {}", unit.name()) }
     }
 
+    /// An axis of numbers.
+    #[must_use]
+    pub fn of_values(what: &str, scale: Scale, most: usize) -> Self {
+        let (from, until) = scale.values();
+        let (values, step) = linear_ticks(from, until, most);
+        // As many decimals as tell one tick from the next.
+        let decimals = (-(step * 1.000_001).log10().floor()).clamp(0.0, 9.0) as usize;
+        let ticks = values.into_iter().map(|value| (value, format!("{value:.decimals$}"))).collect();
+        Self { scale, ticks, title: what.to_owned() }
+    }
+
     /// An axis of whole numbers.
     #[must_use]
     pub fn of_counts(what: &str, scale: Scale, most: usize) -> Self {

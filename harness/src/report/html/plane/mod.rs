@@ -22,7 +22,7 @@ pub(super) fn section(study: &Study) -> Option<Section> {
     let widest = points.all.iter().map(|point| point.bears_ns).max()?;
     let asked = &study.resolved.required;
     let allowed_ns = asked.latency.make.value.ns().min(asked.latency.break_.value.ns());
-    let needed_ns = asked.disturbance.open.value.ns().max(asked.disturbance.closed.value.ns());
+    let needed_ns = study.physical.glitch_ns.open.max(study.physical.glitch_ns.closed);
     let x = Scale::linear((0.0, widest.max(needed_ns) as f64 * 1.06), PLANE.across());
     let latest = points.all.iter().map(|point| point.below_ns).max().unwrap_or(1);
     // Far above what is asked there is nothing to choose from.

@@ -6,6 +6,8 @@ use crate::machine::MachineTable;
 use crate::replay::judge;
 use crate::sample::{ExactPeriod, SampleClock};
 use crate::study::Observed;
+use crate::trace::Trace;
+use crate::truth::TruthChange;
 
 /// What a logic does with a recording: what it reads, in which state it is, what it says.
 ///
@@ -33,17 +35,17 @@ pub(in crate::report::html) struct LogicRun {
 }
 
 impl LogicRun {
-    /// Follows `machine` along the recording with the first tick `phase` units after its start.
+    /// Follows `machine` along the line of the pin with the first tick `phase` units after its start.
     pub(in crate::report::html) fn of(
         machine: &MachineTable,
         clock: &TickClock,
         phase: u64,
-        one: &Observed,
+        trace: &Trace,
+        truth: &[TruthChange],
     ) -> Self {
-        let trace = &one.recording.trace;
         let clock = SampleClock::new(*clock).phase_units(phase);
         let train = clock.train(trace);
-        let pass = judge(machine, &train, trace.initial(), &one.truth);
+        let pass = judge(machine, &train, trace.initial(), truth);
         let mut run = Self {
             period: clock.period(),
             phase,

@@ -1,0 +1,106 @@
+//! The sample clock in lines of a summary: where each kind of law works, which clock to take, what sleep saves.
+
+use std::io;
+
+use super::lines::{Lines, strong};
+use crate::clock_range::{Activity, Asleep, ClockRange, Span};
+use crate::quantity::Time;
+use crate::report::words;
+
+/// What a choice shows of the sample clock.
+pub(super) struct ClockView {
+    pub(super) range: ClockRange,
+    /// The slowest tick period that holds, for each tolerance in parts per million.
+    pub(super) by_tolerance: Vec<(u32, Option<u64>)>,
+    pub(super) activity: Activity,
+    /// Of the first candidate, at its tick period, where it holds and settles.
+    pub(super) asleep: Option<Asleep>,
+}
+
+impl ClockView {
+    pub(super) fn write(&self, lines: &mut Lines<'_>) -> io::Result<()> {
+        for (index, curve) in self.range.curves.iter().enumerate() {
+            let text = match (curve.works.is_empty(), curve.holds.is_empty()) {
+                (true, _) => "works at no tick period".to_owned(),
+                (false, true) => format!("works {}, but nowhere in time", spans(&curve.works)),
+                (false, false) if curve.works == curve.holds => {
+                    format!("works, and is in time, {}", spans(&curve.works))
+                }
+                (false, false) => format!("works {}; in time {}", spans(&curve.works), spans(&curve.holds)),
+            };
+            let text = format!("{}: {text}", curve.family);
+            if index == 0 { lines.item("Clock", &text)? } else { lines.more(&text)? }
+        }
+        lines.more(&format!(
+            "by closed form, for every tick period from {} to {} and over {} rounding steps; the majority register has no closed form and is judged at the tick periods of the table alone",
+            time(self.range.span.from_ns),
+            time(self.range.span.until_ns),
+            self.range.steps.len()
+        ))?;
+        if let Some(best) = &self.range.recommended {
+            lines.item("Free tick", &strong(&format!("{} with {}", time(best.period_ns), best.law)))?;
+            lines.more(&format!(
+                "were the timer free: a make in less than {} and a break in less than {}; the slowest at all is {}; the same law holds from {} to {}",
+                words::at_most(best.below_ns.make),
+                words::at_most(best.below_ns.break_),
+                words::at_least(best.slowest_ns),
+                words::at_most(best.same_law.from_ns),
+                words::at_least(best.same_law.until_ns)
+            ))?;
+        }
+        let slowest = |&(ppm, period): &(u32, Option<u64>)| {
+            let period = period.map_or("none".to_owned(), words::at_least);
+            format!("{} % {period}", f64::from(ppm) / 10_000.0)
+        };
+        let all: Vec<String> = self.by_tolerance.iter().map(slowest).collect();
+        lines.item(
+            "Oscillator",
+            &format!("slowest tick in time by the tolerance of the clock: {}", all.join(", ")),
+        )?;
+        self.power(lines)
+    }
+
+    fn power(&self, lines: &mut Lines<'_>) -> io::Result<()> {
+        let Some(asleep) = &self.asleep else { return Ok(()) };
+        lines.item(
+            "Power",
+            &format!(
+                "{:.0} wake-ups a second; where the tick stops while the law is settled, with {} operations and {} disturbances an hour, at most {:.2} a second and asleep for at least {:.2} % of the time",
+                asleep.ticking_per_second,
+                self.activity.operations_per_hour,
+                self.activity.disturbances_per_hour,
+                asleep.stopping_per_second,
+                // Rounded down: it must not be overstated.
+                (asleep.share * 10_000.0).floor() / 100.0
+            ),
+        )?;
+        lines.more(&format!(
+            "settled at most {} ticks after a make, {} after a break, {} after a disturbance",
+            asleep.ticks_after.make,
+            asleep.ticks_after.break_,
+            asleep.ticks_after_disturbance.open.max(asleep.ticks_after_disturbance.closed)
+        ))
+    }
+}
+
+fn time(ns: u64) -> String {
+    Time::from_ns(ns).to_string()
+}
+
+/// The stretches, the longest ones if they are many.
+fn spans(spans: &[Span]) -> String {
+    let one =
+        |span: &Span| format!("from {} to {}", words::at_most(span.from_ns), words::at_least(span.until_ns));
+    match spans {
+        [first, .., last] if spans.len() > SHOWN => format!(
+            "in {} stretches from {} to {}",
+            spans.len(),
+            words::at_most(first.from_ns),
+            words::at_least(last.until_ns)
+        ),
+        _ => spans.iter().map(one).collect::<Vec<_>>().join(" and "),
+    }
+}
+
+/// Stretches listed on the screen.
+const SHOWN: usize = 3;

@@ -1,0 +1,188 @@
+//! What is wrong with a network, and what is worth knowing about it.
+
+use debounce_core::{Change, Position};
+
+use super::analysis::Analysis;
+use super::model::Input;
+use super::series::{Series, not_preferred};
+use crate::level::Level;
+use crate::quantity::Spread;
+use crate::report::si::si;
+use crate::report::words;
+use crate::requirement::ResolvedNetwork;
+
+/// Something that must not be: what, and what to do.
+#[derive(Clone, PartialEq, Eq, Debug)]
+pub struct Trouble {
+    /// What is wrong, with its figures.
+    pub what: String,
+    /// What to do instead.
+    pub help: &'static str,
+}
+
+/// Everything that can be said about a network that was worked out.
+#[derive(Clone, PartialEq, Eq, Debug, Default)]
+pub struct Review {
+    /// What must not be.
+    pub troubles: Vec<Trouble>,
+    /// What is worth knowing.
+    pub notes: Vec<String>,
+}
+
+/// A silver tactile contact asks for this much at 5 V (data sheet Omron B3F); one of gold for a tenth.
+const SILVER_AMPERES: f64 = 1e-3;
+
+/// Reviews a network.
+#[must_use]
+pub fn review(resolved: &ResolvedNetwork, analysis: &Analysis) -> Review {
+    let mut review = Review::default();
+    review.levels(resolved, analysis);
+    review.edges(resolved, analysis);
+    review.currents(resolved, analysis);
+    review.parts(resolved);
+    review
+}
+
+impl Review {
+    fn trouble(&mut self, what: String, help: &'static str) {
+        self.troubles.push(Trouble { what, help });
+    }
+
+    fn levels(&mut self, resolved: &ResolvedNetwork, analysis: &Analysis) {
+        for change in [Change::Make, Change::Break] {
+            let position = change.to();
+            let Spread { min, max, .. } = analysis.rest.at(position);
+            if analysis.delay.at(change).max.is_finite() {
+                continue;
+            }
+            let thresholds = resolved.network.input.thresholds(resolved.network.supply.typ);
+            let is_high = (position == Position::Open) == (resolved.network.closed == Level::Low);
+            let needs = if is_high {
+                format!("high surely only from {}", si(thresholds.rising.max, "V"))
+            } else {
+                format!("low surely only up to {}", si(thresholds.falling.min, "V"))
+            };
+            self.trouble(
+                format!(
+                    "while {} the pin rests at {} to {}, and the input reads {needs}: some units never read it",
+                    words::position(position),
+                    si(min, "V"),
+                    si(max, "V")
+                ),
+                "make pull smaller or series and discharge smaller, or reduce the leakage",
+            );
+        }
+    }
+
+    fn edges(&mut self, resolved: &ResolvedNetwork, analysis: &Analysis) {
+        if resolved.network.input.is_schmitt() {
+            return;
+        }
+        let Input::Class(class) = resolved.network.input else {
+            self.notes.push("without hysteresis an input may switch several times on a slow edge; the data sheet says how slow it may be".to_owned());
+            return;
+        };
+        let Some(allowed) = class.slowest_edge else { return };
+        for change in [Change::Make, Change::Break] {
+            let slowest = analysis.slowest_edge.at(change);
+            if slowest.is_finite() && slowest > allowed {
+                self.trouble(
+                    format!(
+                        "the edge after a {} takes up to {}, and the plain input {} bears {}: it may switch several times and draw current",
+                        words::change(change),
+                        si(slowest, "s/V"),
+                        class.name,
+                        si(allowed, "s/V")
+                    ),
+                    "take a Schmitt input, or leave the capacitor out",
+                );
+            }
+        }
+    }
+
+    fn currents(&mut self, resolved: &ResolvedNetwork, analysis: &Analysis) {
+        let steady = analysis.steady;
+        if let Some(least) = resolved.least_current.filter(|least| steady.min < least.base()) {
+            self.trouble(
+                format!(
+                    "the closed contact carries as little as {}, and needs {least} to stay clean",
+                    si(steady.min, "A")
+                ),
+                "make pull smaller, raise the supply, or take a contact for smaller currents",
+            );
+        }
+        if resolved.least_current.is_none() && steady.min < SILVER_AMPERES {
+            self.notes.push(format!(
+                "the closed contact carries as little as {}; a silver contact asks for 1 mA at 5 V, one of gold for 0.1 mA (data sheet Omron B3F); say what yours needs with least_current",
+                si(steady.min, "A")
+            ));
+        }
+        let most = resolved.most_current.map(|most| most.base());
+        if let Some(most) = most.filter(|most| analysis.inrush.max > *most) {
+            self.trouble(
+                format!(
+                    "at a make the contact carries up to {}, and bears {}",
+                    si(analysis.inrush.max, "A"),
+                    si(most, "A")
+                ),
+                "put a resistor between contact and capacitor with discharge or series",
+            );
+        }
+        if let Some(most) = most.filter(|most| analysis.cable_inrush > *most) {
+            self.notes.push(format!(
+                "the cable alone can put {} through the contact for some nanoseconds (50 ohm of wave resistance assumed), more than the {} it bears",
+                si(analysis.cable_inrush, "A"),
+                si(most, "A")
+            ));
+        }
+        if most.is_none() && analysis.inrush.max > 1.0 {
+            self.notes.push(format!(
+                "at a make the contact discharges the capacitor with up to {}, which can weld small contacts; a discharge or series resistor limits it",
+                si(analysis.inrush.max, "A")
+            ));
+        }
+    }
+
+    fn parts(&mut self, resolved: &ResolvedNetwork) {
+        for (name, part) in &resolved.resistors {
+            let ppm = part.tolerance_ppm.map_or(50_000, |(_, plus)| plus);
+            if let Some(near) = not_preferred(part.value.base(), Series::of_tolerance(ppm)) {
+                self.notes.push(format!(
+                    "{name} of {} is no preferred value (IEC 60063); the nearest of E{} is {}",
+                    part.value,
+                    Series::of_tolerance(ppm).values(),
+                    si(near, "ohm")
+                ));
+            }
+        }
+        let Some(part) = &resolved.capacitor else { return };
+        if let Some(near) = not_preferred(part.value.base(), Series::of_tolerance(100_000)) {
+            self.notes.push(format!(
+                "a capacitor of {} is no preferred value (IEC 60063); the nearest of E12 is {}",
+                part.value,
+                si(near, "F")
+            ));
+        }
+        let loses = part.code.as_ref().is_some_and(|code| code.loses_under_voltage());
+        if loses && resolved.bias_loss.is_none() {
+            self.notes.push(
+                "a class 2 capacitor loses capacitance under voltage, which its code does not say; state it with bias_loss from the data sheet (nothing is taken off here)".to_owned(),
+            );
+        }
+        if part.value.finest() > 0 && part.code.is_none() {
+            self.notes.push(
+                "no temperature characteristic is given, so only the tolerance counts; write it after the tolerance, such as \"100 nF 10 % X7R\"".to_owned(),
+            );
+        }
+    }
+}
+
+/// The caution for wiring that may carry more than a board's supply.
+#[must_use]
+pub fn caution(resolved: &ResolvedNetwork) -> Option<&'static str> {
+    (resolved.network.supply.max > 15.0).then_some(
+        "wiring of machines and plants may carry mains or other dangerous voltage, and a fault may bring it to this \
+         line: nothing here insulates, limits energy or protects people; that is work for qualified people under the \
+         code that applies where it is installed",
+    )
+}
