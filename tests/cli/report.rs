@@ -22,7 +22,18 @@ const READ: [&str; 6] = ["gate.csv", "--closed", "high", "--time-unit", "us", "-
 #[test]
 fn report_is_written_by_every_command_that_has_it() {
     let bench = Bench::with("gate.csv", recording());
-    let commands: [(&str, Vec<&str>, i32, &str); 4] = [
+    let network = [
+        "network",
+        "--supply",
+        "3.3 V 5 %",
+        "--pull",
+        "10 kohm 5 %",
+        "--capacitor",
+        "100 nF 10 % X7R",
+        "--report",
+    ];
+    let commands: [(&str, Vec<&str>, i32, &str); 5] = [
+        ("network.html", network.to_vec(), 0, "The pin after a make"),
         ("characterise.html", [&["characterise"][..], &READ].concat(), 0, "What the recordings show"),
         (
             "study.html",

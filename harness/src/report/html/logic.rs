@@ -27,7 +27,7 @@ pub(super) fn section(name: &str, machine: &MachineTable) -> Section {
         @match state_diagram_downward(machine, "logic") {
             Some(diagram) => figure class="figure" id="state-diagram" {
                 h3 { "State diagram" }
-                div class="picture scroll tall" tabindex="0" role="region" aria-label="State diagram" { (PreEscaped(diagram)) }
+                div class={ "picture scroll" @if machine.len() > BESIDE { " tall" } } tabindex="0" role="region" aria-label="State diagram" { (PreEscaped(diagram)) }
                 figcaption { "The next-state table says the same." }
             },
             None => p class="note" {

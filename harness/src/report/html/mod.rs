@@ -27,6 +27,7 @@ mod simpler;
 mod study;
 mod table;
 mod tick;
+mod tick_curves;
 mod timing;
 mod witness;
 

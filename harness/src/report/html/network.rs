@@ -11,7 +11,7 @@ use crate::report::words;
 use crate::requirement::ResolvedNetwork;
 
 const PLANE: Plane =
-    Plane { width: 480.0, height: 320.0, left: 46.0, right: 372.0, top: 30.0, bottom: 270.0 };
+    Plane { width: 480.0, height: 320.0, left: 46.0, right: 350.0, top: 30.0, bottom: 270.0 };
 
 /// A network with everything a report says of it.
 #[derive(Clone, Copy, Debug)]

@@ -3,7 +3,7 @@
 use debounce_core::PerChange;
 use maud::html;
 
-use super::{Cell, Figure, Section, table};
+use super::{Cell, Figure, Section, table, tick_curves};
 use crate::choose::{Candidate, ClockView};
 use crate::quantity::TickPeriod;
 use crate::report::plot::{Axis, Plane, Scale, kept_apart, px};
@@ -12,6 +12,9 @@ use crate::study::Study;
 
 const PLANE: Plane =
     Plane { width: 940.0, height: 400.0, left: 56.0, right: 780.0, top: 34.0, bottom: 350.0 };
+
+/// The classes of the lines, one for each kind of logic.
+const KINDS: [&str; 3] = ["one", "two", "three"];
 
 /// One clock.
 struct Row<'a> {
@@ -37,11 +40,6 @@ impl Row<'_> {
     }
 }
 
-/// One figure of a row.
-type Value = fn(&Row<'_>) -> Option<u64>;
-const BEST: Value = |row| row.best_ns();
-const LIMIT: Value = |row| row.limit_ns();
-
 fn later(pair: PerChange<u64>) -> u64 {
     pair.make.max(pair.break_)
 }
@@ -61,17 +59,17 @@ pub(super) fn section(study: &Study) -> Option<Section> {
     // What is asked is drawn unless it would leave all else in a corner.
     let shown_asked = allowed_ns <= highest.saturating_mul(3);
     let highest = if shown_asked { highest.max(allowed_ns) } else { highest };
+    let lines = tick_curves::lines(study);
+    let last = lines.iter().map(tick_curves::Line::until_ns).fold(last, f64::max);
     let x = Scale::logarithmic((first * 0.85, last * 1.18), PLANE.across());
     let y = Scale::linear((0.0, highest as f64 * 1.06), PLANE.up());
-    let line = |value: Value| {
-        let places = rows.iter().filter_map(|row| Some((x.at(row.ns()), y.at(value(row)? as f64))));
-        places.map(|(x, y)| format!("{} {}", px(x), px(y))).collect::<Vec<_>>()
-    };
-    let (best, limit) = (line(BEST), line(LIMIT));
-    let end = |value: Value| rows.iter().rev().find_map(value);
     let mut names = vec![("no tick beats this", "any", physical_ns)];
-    names.extend(end(BEST).map(|ns| ("best that holds", "best", ns)));
-    names.extend(end(LIMIT).map(|ns| ("limit at the tick", "here", ns)));
+    names.extend(lines.iter().zip(KINDS).filter_map(|(line, class)| {
+        let last_ns = line.last_ns(highest as f64)?;
+        Some((line.family, class, last_ns as u64))
+    }));
+    let limit = rows.iter().rev().find_map(Row::limit_ns);
+    names.extend(limit.map(|ns| ("limit at each tick", "here", ns)));
     if shown_asked {
         names.push(("asked", "asked", allowed_ns));
     }
@@ -85,8 +83,11 @@ pub(super) fn section(study: &Study) -> Option<Section> {
                 path class=(class) d={ "M" (px(PLANE.left)) " " (px(y.at(at as f64))) "H" (px(PLANE.right)) } {}
             }
         }
-        @if !limit.is_empty() { path class="bound here" d={ "M" (limit.join("L")) } {} }
-        @if !best.is_empty() { path class="front" d={ "M" (best.join("L")) } {} }
+        // Nothing is said of the limit between the ticks, so no line joins them.
+        @for (row, ns) in rows.iter().filter_map(|row| Some((row, row.limit_ns()?))) {
+            path class="bound here" d={ "M" (px(x.at(row.ns()) - 14.0)) " " (px(y.at(ns as f64))) "h28" } {}
+        }
+        @for (line, class) in lines.iter().zip(KINDS) { path class={ "kind " (class) } d=(line.path(&x, &y)) {} }
         @for row in &rows {
             @if let Some(ns) = row.best_ns() {
                 @let (cx, cy) = (x.at(row.ns()), y.at(ns as f64));
@@ -108,7 +109,9 @@ pub(super) fn section(study: &Study) -> Option<Section> {
         view_box: PLANE.view_box(),
         drawing,
         caption: html! {
-            "The later of make and break. " span class="sign first" {} "marks the recommended tick. "
+            "The later of make and break. Marks are the best candidates that hold; lines are the best of each kind of \
+             logic in between, as far as their closed forms tell, with a jump wherever the envelope comes to a sample \
+             more or less. " span class="sign first" {} "marks the recommended tick. "
             @if !shown_asked { "Asked: " (words::about(allowed_ns)) ", above the top edge." }
         },
         data: Some(numbers(&rows)),

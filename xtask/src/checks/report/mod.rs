@@ -20,7 +20,7 @@ struct Wanted {
 }
 
 /// One report of each kind, and those that differ most from it.
-const REPORTS: [Wanted; 5] = [
+const REPORTS: [Wanted; 6] = [
     Wanted { name: "study", words: &["study"], code: 0 },
     Wanted {
         name: "characterised",
@@ -46,6 +46,19 @@ const REPORTS: [Wanted; 5] = [
             "30 ms",
             "--tick",
             "1 ms,5 ms",
+        ],
+        code: 0,
+    },
+    Wanted {
+        name: "network",
+        words: &[
+            "network",
+            "--supply",
+            "3.3 V 5 %",
+            "--pull",
+            "10 kohm 5 %",
+            "--capacitor",
+            "100 nF 10 % X7R",
         ],
         code: 0,
     },
