@@ -28,6 +28,7 @@ use crate::machine::{Change, Machine, Position};
 /// # State
 /// [`ChainState`]: the two states side by side, 5 bytes for a majority register in front of a state machine; held
 /// by an assertion beside it.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never.

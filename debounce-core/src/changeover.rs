@@ -84,6 +84,7 @@ pub struct ChangeoverReport {
 ///
 /// # State
 /// 6 bytes or less; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never.

@@ -43,19 +43,10 @@ pub(crate) struct Counting {
 
 impl Counting {
     pub(crate) const fn verdict(&self, envelope: &Envelope) -> Verdict {
-        let e = match sound(envelope) {
-            Ok(e) => e,
-            Err(clause) => return Verdict::Fails(clause),
-        };
-        let make = match self.one_way(&e, Change::Make) {
-            Ok(latency) => latency,
-            Err(verdict) => return verdict,
-        };
-        let break_ = match self.one_way(&e, Change::Break) {
-            Ok(latency) => latency,
-            Err(verdict) => return verdict,
-        };
-        Verdict::Holds(Bounds { latency: PerChange { make, break_ } })
+        match sound(envelope) {
+            Ok(e) => both(self.one_way(&e, Change::Make), self.one_way(&e, Change::Break)),
+            Err(clause) => Verdict::Fails(clause),
+        }
     }
 
     const fn one_way(&self, e: &Envelope, change: Change) -> Result<Latency, Verdict> {
@@ -119,6 +110,14 @@ pub(crate) const fn majority(majority: u32, envelope: &Envelope) -> Verdict {
     }
 }
 
+/// The verdict on a law from what is known of its two changes.
+const fn both(make: Result<Latency, Verdict>, break_: Result<Latency, Verdict>) -> Verdict {
+    match (make, break_) {
+        (Ok(make), Ok(break_)) => Verdict::Holds(Bounds { latency: PerChange { make, break_ } }),
+        (Err(verdict), _) | (Ok(_), Err(verdict)) => verdict,
+    }
+}
+
 /// The envelope in delivered samples, if any logic could serve it.
 const fn sound(envelope: &Envelope) -> Result<Envelope, Clause> {
     let e = envelope.delivered();
@@ -141,19 +140,10 @@ pub(crate) struct UpDown {
 
 impl UpDown {
     pub(crate) const fn verdict(&self, envelope: &Envelope) -> Verdict {
-        let e = match sound(envelope) {
-            Ok(e) => e,
-            Err(clause) => return Verdict::Fails(clause),
-        };
-        let make = match self.one_way(&e, Change::Make) {
-            Ok(latency) => latency,
-            Err(verdict) => return verdict,
-        };
-        let break_ = match self.one_way(&e, Change::Break) {
-            Ok(latency) => latency,
-            Err(verdict) => return verdict,
-        };
-        Verdict::Holds(Bounds { latency: PerChange { make, break_ } })
+        match sound(envelope) {
+            Ok(e) => both(self.one_way(&e, Change::Make), self.one_way(&e, Change::Break)),
+            Err(clause) => Verdict::Fails(clause),
+        }
     }
 
     const fn one_way(&self, e: &Envelope, change: Change) -> Result<Latency, Verdict> {

@@ -29,6 +29,30 @@ pub enum Parameter {
     LockoutMake,
     /// Ticks ignored after a break.
     LockoutBreak,
+    /// Contrary samples that report an edge of a bank.
+    Confirm,
+    /// Agreeing samples in a row that clear the count of a bank.
+    Patience,
+    /// The time over which steps are counted.
+    Gate,
+    /// Samples alike after which a line is at rest.
+    Rest,
+    /// The shortest stay open.
+    DwellOpen,
+    /// The shortest stay closed.
+    DwellClosed,
+    /// The longest bounce after a make.
+    BounceMake,
+    /// The longest bounce after a break.
+    BounceBreak,
+    /// The widest disturbance while open.
+    GlitchOpen,
+    /// The widest disturbance while closed.
+    GlitchClosed,
+    /// The quiet between disturbances.
+    Quiet,
+    /// The calm after a bounce.
+    Calm,
 }
 
 impl Parameter {
@@ -45,6 +69,18 @@ impl Parameter {
             Self::PatienceBreak => "patience of a break",
             Self::LockoutMake => "lock-out after a make",
             Self::LockoutBreak => "lock-out after a break",
+            Self::Confirm => "confirm count",
+            Self::Patience => "patience",
+            Self::Gate => "gate",
+            Self::Rest => "rest",
+            Self::DwellOpen => "dwell while open",
+            Self::DwellClosed => "dwell while closed",
+            Self::BounceMake => "bounce after a make",
+            Self::BounceBreak => "bounce after a break",
+            Self::GlitchOpen => "disturbance while open",
+            Self::GlitchClosed => "disturbance while closed",
+            Self::Quiet => "quiet",
+            Self::Calm => "calm",
         }
     }
 
@@ -60,7 +96,20 @@ impl Parameter {
             Self::ConfirmBreak => "a break cannot be confirmed by 0 samples; use at least 1",
             Self::PatienceMake => "the patience of a make cannot be 0 samples; use at least 1",
             Self::PatienceBreak => "the patience of a break cannot be 0 samples; use at least 1",
+            Self::Confirm => "an edge cannot be confirmed by 0 samples; use at least 1",
+            Self::Patience => "a count cannot be cleared by 0 agreeing samples; use at least 1",
+            Self::Gate => "a gate of 0 ticks counts no steps; use at least 1",
+            Self::Rest => "a line is not at rest after 0 samples; use at least 1",
+            Self::DwellOpen => {
+                "no sample of a dwell while open is certain to be delivered; use more than are lost"
+            }
+            Self::DwellClosed => {
+                "no sample of a dwell while closed is certain to be delivered; use more than are lost"
+            }
             Self::LockoutMake | Self::LockoutBreak => "a lock-out of 0 ticks is allowed",
+            Self::BounceMake | Self::BounceBreak => "a bounce of 0 samples is allowed",
+            Self::GlitchOpen | Self::GlitchClosed => "a disturbance of 0 samples is allowed",
+            Self::Quiet | Self::Calm => "a quiet or calm of 0 samples is allowed",
         }
     }
 }
@@ -120,11 +169,11 @@ pub enum ParameterError {
         /// The widest disturbance, which a calm other than 0 must exceed.
         glitch: u32,
     },
-    /// The count is too narrow for a parameter that the envelope asks for.
+    /// The count is too narrow for a parameter, as it is given or as an envelope asks for it.
     CountTooNarrow {
         /// The parameter.
         parameter: Parameter,
-        /// What the envelope asks for, in ticks.
+        /// What is asked for, in ticks.
         ticks: u32,
         /// The most that the count holds.
         most: u16,
@@ -149,7 +198,7 @@ impl ParameterError {
             Self::QuietTooShort { .. } => "quiet must be longer than the widest disturbance",
             Self::CalmTooShort { .. } => "calm must be 0 or longer than the widest disturbance",
             Self::CountTooNarrow { .. } => {
-                "the envelope asks for more ticks than this count holds; use a wider count"
+                "more ticks are asked for than this count holds; use a wider count"
             }
         }
     }
@@ -243,5 +292,6 @@ mod tests {
             ParameterError::CountTooNarrow { parameter: Parameter::LockoutMake, ticks: 256, most: 255 },
             "a lock-out after a make of 256 ticks does not fit the count; the most it holds is 255",
         );
+        says(ParameterError::Zero(Parameter::Gate), "a gate of 0 ticks counts no steps; use at least 1");
     }
 }

@@ -34,6 +34,7 @@ use crate::machine::{Change, Machine, Position};
 ///
 /// # State
 /// [`IntegratorState`]: 2 bytes for `u8`, 4 for `u16`, held by assertions beside it.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in a step. Of the constructors, [`new`](Self::new) and [`with_steps`](Self::with_steps) do, which are meant

@@ -73,6 +73,21 @@
 //! | field to workbench        | [`Recorder`]                                                                 |
 //! | health in the field       | [`Monitor`], [`Heartbeat`], [`Tally`], [`Wear`]                              |
 //!
+//! # What may go wrong
+//! Nothing here invents an operation. Each type says the details under *Bounds*; a test goes with each line.
+//!
+//! | what                                   | what comes of it                                                             |
+//! |----------------------------------------|------------------------------------------------------------------------------|
+//! | a pin or port that answers with an error | the error is returned and no sample taken: a lost tick                     |
+//! | an interrupt that comes too late: ticks are lost | everything is later by as many; what lies in lost ticks altogether was never there. [`Heartbeat`] notices it, [`Envelope::lost`] puts it into the claim |
+//! | counts beyond the converter or the wiring | `OutOfRange`, which is no sample ([`Hysteresis`], [`Ladder`])              |
+//! | both phases of an encoder at once      | [`QuadratureEvent::Lost`], and the count stays ([`Quadrature`], [`Detents`]) |
+//! | a stuck key in a matrix                | the other keys go on; those that it makes ambiguous are held back as `doubtful` ([`Matrix`]) |
+//! | a short between two rows of a matrix   | twin keys in the same columns of both rows ([`Matrix`])                      |
+//! | both throws of a changeover made, or none for too long | a [`ChangeoverFault`], and the position stays                |
+//! | a full mailbox                         | the events that were lost are counted, in their place of the order           |
+//! | contacts in any position at power-up   | an initial position, told apart from an operation: [`Starting`], [`StartingBank`], and every `POWER_UP` |
+//!
 //! # Parameters
 //! The `new` of a law is for constants: a bad one does not compile, and the compiler says why. `try_new` is for values
 //! known at run time and links no panic.
@@ -105,6 +120,8 @@ mod envelope;
 mod error;
 mod integrator;
 mod law;
+#[cfg(test)]
+mod lost_ticks;
 mod machine;
 mod majority_register;
 mod meaning;

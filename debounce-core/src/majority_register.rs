@@ -56,6 +56,7 @@ pub trait WindowWord: sealed::Sealed + Copy + Eq + Hash + Debug + Send + Sync + 
 ///
 /// # State
 /// [`MajorityRegisterState`]: 2, 4 or 8 bytes for windows in `u8`, `u16` and `u32`, held by assertions beside it.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in a step. Of the constructors, [`new`](Self::new) does, which is meant for constants: there a bad value

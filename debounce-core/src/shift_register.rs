@@ -30,6 +30,7 @@ use crate::machine::{Change, Machine, Position};
 ///
 /// # State
 /// [`ShiftRegisterState`]: 2 bytes, held by an assertion beside it.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in a step. Of the constructors, [`new`](Self::new) does, which is meant for constants: there a bad value

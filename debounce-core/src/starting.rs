@@ -47,6 +47,7 @@ pub enum Started {
 ///
 /// # State
 /// Twice that of the law, and at most one tag beside it.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never.

@@ -75,6 +75,7 @@ impl<C: Count> StateMachineParameters<C> {
 ///
 /// # State
 /// [`StateMachineState`]: 3 bytes for `u8`, 6 for `u16`, held by assertions beside it.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in a step. Of the constructors, [`new`](Self::new) does, which is meant for constants: there a bad value

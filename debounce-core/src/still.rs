@@ -35,9 +35,9 @@ mod tests {
 
     use super::*;
     use crate::{
-        Bank, Bursts, Changeover, ContactPair, Detents, EdgeRule, Gesture, GestureTicks, PairKind,
-        PairPositions, PatientBank, Phases, Position, PulseCounter, PulseLimits, Quadrature, Resolution,
-        RestPhases, Throws,
+        Bank, Bursts, Changeover, ContactPair, Detents, EdgeRule, Envelope, Gesture, GestureTicks, KeyDiodes,
+        LanesStarted, Matrix, MatrixReport, Monitor, PairKind, PairPositions, PatientBank, Phases, Position,
+        PulseCounter, PulseLimits, Quadrature, Resolution, RestPhases, StartingBank, Throws,
     };
     use std::vec::Vec;
 
@@ -88,6 +88,19 @@ mod tests {
             EdgeRule::new(1).lockout(2),
         );
         sleeps_without_loss(patient, patient.all_open(), &ports, 8, crate::Changes::NONE);
+        let starting = StartingBank::<_, 1>::new(bank);
+        let nothing = LanesStarted { initial: 0, changes: crate::Changes::NONE };
+        sleeps_without_loss(starting, starting.power_up(), &ports, 8, nothing);
+        let pad = Matrix::<u8, 2, 1>::new(KeyDiodes::None);
+        let scans: Vec<[u8; 2]> = ports.iter().map(|&row| [row, 0b11]).collect();
+        let nothing = MatrixReport { rows: [nothing; 2], doubtful: [0; 2] };
+        for scan in &scans {
+            // Ghosts are told at every scan, so a pad with some in it has something to report.
+            assert_eq!(pad.step(&mut pad.power_up(), *scan).doubtful[0] != 0, scan[0] == 0b11);
+        }
+        sleeps_without_loss(pad, pad.power_up(), &scans[..3], 8, nothing);
+        let monitor = Monitor::new(&Envelope::clean(3, 3).bounce(1, 1));
+        sleeps_without_loss(monitor, monitor.power_up(), &Position::BOTH, 14, None);
         let report = crate::ChangeoverReport::default();
         sleeps_without_loss(Changeover::new(1, 0), Changeover::POWER_UP, &Throws::ALL, 8, report);
         let times = GestureTicks { gap: 2, hold: 3, repeat: 0, most_taps: 2 };

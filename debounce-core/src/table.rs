@@ -24,6 +24,7 @@ use crate::machine::{Change, Machine, Position};
 /// # State
 /// 1 byte, whatever the table; checked by a `const` assertion on `size_of` below the type. The table takes 2 bytes
 /// of flash a state and has at most 256 states.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never. A table that is no law does not compile.

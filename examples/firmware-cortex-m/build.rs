@@ -1,10 +1,11 @@
-//! Gives the linker the memory of the part.
+//! Gives the linker the memory of the part, here and in `async-panel`.
 
 use std::path::Path;
 use std::{env, fs};
 
 fn main() {
-    println!("cargo:rerun-if-changed=build.rs");
+    // And on nothing else but this program, which cargo watches by itself.
+    println!("cargo:rerun-if-env-changed=TARGET");
     let ram = match env::var("TARGET").as_deref() {
         // The nRF51822 of the emulated microbit.
         Ok("thumbv6m-none-eabi") => "16K",

@@ -96,6 +96,7 @@ impl core::error::Error for HysteresisError {}
 ///
 /// # State
 /// 1 byte; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in `step`. [`new`](Self::new) panics on thresholds that are refused, in a constant at compile time.

@@ -79,6 +79,7 @@ impl LadderReading {
 ///
 /// # State
 /// None: 0 bytes. The windows take `4 N + 4` bytes of flash; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in `step`. [`new`](Self::new) panics on parts that are refused, in a constant at compile time.

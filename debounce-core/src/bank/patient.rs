@@ -1,6 +1,7 @@
 //! A whole port with confirm, patience and lock-out, each edge its own: [`PatientBank`].
 
 use super::{Changes, Word, any_plane};
+use crate::error::{Parameter, ParameterError};
 use crate::machine::Machine;
 
 /// What a lane of a [`PatientBank`] does about one edge. All counts are in ticks.
@@ -23,10 +24,18 @@ impl EdgeRule {
         Self { confirm, patience: 1, lockout: 0 }
     }
 
-    /// A whole rule from values known at run time, `None` where confirm or patience is 0; links no panic.
-    #[must_use]
-    pub const fn try_new(confirm: u16, patience: u16, lockout: u16) -> Option<Self> {
-        if confirm == 0 || patience == 0 { None } else { Some(Self { confirm, patience, lockout }) }
+    /// A whole rule from values known at run time; links no panic.
+    ///
+    /// # Errors
+    /// [`ParameterError::Zero`] where confirm or patience is 0.
+    pub const fn try_new(confirm: u16, patience: u16, lockout: u16) -> Result<Self, ParameterError> {
+        if confirm == 0 {
+            Err(ParameterError::Zero(Parameter::Confirm))
+        } else if patience == 0 {
+            Err(ParameterError::Zero(Parameter::Patience))
+        } else {
+            Ok(Self { confirm, patience, lockout })
+        }
     }
 
     /// Sets how many agreeing samples in a row clear a count that has begun.
@@ -82,9 +91,8 @@ impl EdgeRule {
 ///
 /// # State
 /// `1 + C + P + L` words, so that many bits an input; checked by `const` assertions below the type. With
-/// `P = 0` patience is 1, with `L = 0` there is no lock-out, and neither costs anything. A tick of 32 inputs with
-/// `C = 2`, `P = 1`, `L = 3` and one constant rule for both edges is 34 instructions on thumbv7m, inlined, load and
-/// store of the state included (rustc 1.95, `opt-level = 3`, counted in the assembly).
+/// `P = 0` patience is 1, with `L = 0` there is no lock-out, and neither costs anything. The instructions of a tick of
+/// 32 inputs stand in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in `step`. [`new`](Self::new) panics on a rule that the widths cannot hold, in a constant at compile time;
@@ -152,27 +160,42 @@ impl<W: Word, const C: usize, const P: usize, const L: usize> PatientBank<W, C, 
     #[must_use]
     pub const fn new(inverted: W, make: EdgeRule, break_: EdgeRule) -> Self {
         match Self::try_new(inverted, make, break_) {
-            Some(bank) => bank,
-            None => panic!(
+            Ok(bank) => bank,
+            Err(_) => panic!(
                 "a rule does not fit: confirm may be up to 2^C, patience up to 2^P, lock-out up to 2^L - 1 ticks"
             ),
         }
     }
 
-    /// As [`new`](Self::new), or `None` where a rule does not fit the widths: for values known at run time.
-    #[must_use]
-    pub const fn try_new(inverted: W, make: EdgeRule, break_: EdgeRule) -> Option<Self> {
+    /// As [`new`](Self::new), for values known at run time; links no panic.
+    ///
+    /// # Errors
+    /// [`ParameterError::CountTooNarrow`] where a rule does not fit the widths: the first number that does not.
+    pub const fn try_new(inverted: W, make: EdgeRule, break_: EdgeRule) -> Result<Self, ParameterError> {
         const {
             assert!(
                 C <= 15 && P <= 15 && L <= 15,
                 "a count has up to 15 bits: write C, P and L of 15 or less"
             )
         };
-        if fits::<C, P, L>(make) && fits::<C, P, L>(break_) {
-            Some(Self { inverted, make, break_ })
-        } else {
-            None
+        let most = EdgeRule { confirm: 1 << C, patience: 1 << P, lockout: (1 << L) - 1 };
+        let checks = [
+            (Parameter::ConfirmMake, make.confirm, most.confirm),
+            (Parameter::PatienceMake, make.patience, most.patience),
+            (Parameter::LockoutMake, make.lockout, most.lockout),
+            (Parameter::ConfirmBreak, break_.confirm, most.confirm),
+            (Parameter::PatienceBreak, break_.patience, most.patience),
+            (Parameter::LockoutBreak, break_.lockout, most.lockout),
+        ];
+        let mut left: &[_] = &checks;
+        while let [(parameter, ticks, most), rest @ ..] = left {
+            if *ticks > *most {
+                let (parameter, ticks, most) = (*parameter, *ticks as u32, *most);
+                return Err(ParameterError::CountTooNarrow { parameter, ticks, most });
+            }
+            left = rest;
         }
+        Ok(Self { inverted, make, break_ })
     }
 
     /// The state in which every contact is settled open.
@@ -242,10 +265,6 @@ impl<W: Word, const C: usize, const P: usize, const L: usize> Machine for Patien
         state.settled ^= confirmed;
         Changes::to(confirmed, was ^ confirmed)
     }
-}
-
-const fn fits<const C: usize, const P: usize, const L: usize>(rule: EdgeRule) -> bool {
-    rule.confirm as u32 <= 1 << C && rule.patience as u32 <= 1 << P && (rule.lockout as u32) < 1 << L
 }
 
 #[inline]

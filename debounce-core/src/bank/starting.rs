@@ -26,6 +26,7 @@ use crate::machine::Machine;
 /// # State
 /// That of the inner bank and `K + 1` words; checked by a `const` assertion below the type. Once nothing waits,
 /// [`StartingBankState::into_inner`] gives the inner state back, and the rest may go.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never. `K` outside 1 to 16 does not compile.

@@ -4,6 +4,7 @@ extern crate std;
 
 use super::*;
 use crate::envelope::Envelope;
+use crate::error::{Parameter, ParameterError};
 use crate::law::Law;
 use crate::machine::{Change, Position};
 use proptest::prelude::*;
@@ -130,16 +131,17 @@ fn patient_lane_every_state_and_sample_equals_scalar() {
 
 #[test]
 fn edge_rule_without_confirm_or_patience_is_refused() {
-    assert_eq!(EdgeRule::try_new(3, 2, 1), Some(EdgeRule::new(3).patience(2).lockout(1)));
-    assert_eq!(EdgeRule::try_new(1, 1, 0), Some(EdgeRule::new(1)));
-    assert_eq!((EdgeRule::try_new(0, 1, 0), EdgeRule::try_new(1, 0, 0)), (None, None));
+    assert_eq!(EdgeRule::try_new(3, 2, 1), Ok(EdgeRule::new(3).patience(2).lockout(1)));
+    assert_eq!(EdgeRule::try_new(1, 1, 0), Ok(EdgeRule::new(1)));
+    assert_eq!(EdgeRule::try_new(0, 1, 0), Err(ParameterError::Zero(Parameter::Confirm)));
+    assert_eq!(EdgeRule::try_new(1, 0, 0), Err(ParameterError::Zero(Parameter::Patience)));
 }
 
 #[test]
 fn patient_bank_rule_beyond_widths_is_refused() {
     let fits = EdgeRule::new(4).patience(2).lockout(7);
-    let try_make = |rule| PatientBank::<u8, 2, 1, 3>::try_new(0, rule, EdgeRule::new(1)).is_some();
-    let try_break = |rule| PatientBank::<u8, 2, 1, 3>::try_new(0, EdgeRule::new(1), rule).is_some();
+    let try_make = |rule| PatientBank::<u8, 2, 1, 3>::try_new(0, rule, EdgeRule::new(1)).is_ok();
+    let try_break = |rule| PatientBank::<u8, 2, 1, 3>::try_new(0, EdgeRule::new(1), rule).is_ok();
     for (rule, expected) in [
         (fits, true),
         (EdgeRule::new(5), false),
@@ -148,6 +150,9 @@ fn patient_bank_rule_beyond_widths_is_refused() {
     ] {
         assert_eq!((try_make(rule), try_break(rule)), (expected, expected), "{rule:?}");
     }
+    let refused = PatientBank::<u8, 2, 1, 3>::try_new(0, EdgeRule::new(1), EdgeRule::new(4).lockout(8));
+    let parameter = Parameter::LockoutBreak;
+    assert_eq!(refused, Err(ParameterError::CountTooNarrow { parameter, ticks: 8, most: 7 }));
 }
 
 /// Worst latencies of one lane over every waveform of an envelope with calm 0 and long dwells, by exploring the

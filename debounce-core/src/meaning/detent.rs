@@ -56,6 +56,7 @@ impl RestPhases {
 ///
 /// # State
 /// 2 bytes; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never.

@@ -110,6 +110,7 @@ pub enum GestureEvent {
 ///
 /// # State
 /// 4 bytes; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in `step`. [`new`](Self::new) panics on times that are refused, in a constant at compile time.

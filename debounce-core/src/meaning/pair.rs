@@ -77,6 +77,7 @@ pub struct PairReport {
 ///
 /// # State
 /// 4 bytes; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never.

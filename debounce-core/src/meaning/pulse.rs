@@ -97,6 +97,7 @@ pub enum PulseEvent {
 /// # State
 /// 6 bytes; checked by a `const` assertion below the type. It measures time, so it comes to rest only 65535 ticks after
 /// a pulse; where the tick is stopped before, periods are told too short by the time it stood still.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in `step`. [`new`](Self::new) panics on limits that are refused, in a constant at compile time.

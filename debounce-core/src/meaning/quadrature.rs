@@ -121,6 +121,7 @@ pub enum Resolution {
 ///
 /// # State
 /// 1 byte; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never.

@@ -1,6 +1,7 @@
 //! How fast an encoder turns: [`Speed`].
 
 use super::quadrature::QuadratureEvent;
+use crate::error::{Parameter, ParameterError};
 use crate::machine::Machine;
 
 /// Adds up steps over a gate of fixed length: one result at the end of each gate.
@@ -25,6 +26,7 @@ use crate::machine::Machine;
 ///
 /// # State
 /// 4 bytes; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in `step`. A gate of 0 or over 32767 ticks panics in [`new`](Self::new), in a constant at compile time.
@@ -69,16 +71,27 @@ impl Speed {
     #[must_use]
     pub const fn new(gate_ticks: u16) -> Self {
         match Self::try_new(gate_ticks) {
-            Some(speed) => speed,
-            None => panic!("a gate has 1 to 32767 ticks"),
+            Ok(speed) => speed,
+            Err(_) => panic!("a gate has 1 to 32767 ticks"),
         }
     }
 
-    /// [`new`](Self::new) for values known at run time, `None` where the gate is refused; links no panic.
-    #[must_use]
-    pub const fn try_new(gate_ticks: u16) -> Option<Self> {
+    /// [`new`](Self::new) for values known at run time; links no panic.
+    ///
+    /// # Errors
+    /// Where the gate is 0 or over 32767 ticks.
+    pub const fn try_new(gate_ticks: u16) -> Result<Self, ParameterError> {
         // One step a tick at most, so a gate no longer than this cannot overflow the sum.
-        if gate_ticks >= 1 && gate_ticks <= i16::MAX as u16 { Some(Self { gate: gate_ticks }) } else { None }
+        const MOST: u16 = i16::MAX as u16;
+        match gate_ticks {
+            0 => Err(ParameterError::Zero(Parameter::Gate)),
+            1..=MOST => Ok(Self { gate: gate_ticks }),
+            _ => Err(ParameterError::CountTooNarrow {
+                parameter: Parameter::Gate,
+                ticks: gate_ticks as u32,
+                most: MOST,
+            }),
+        }
     }
 
     /// Steps per second, toward zero, from the steps of one gate and the rate of the tick.
@@ -114,6 +127,10 @@ impl Machine for Speed {
 
 #[cfg(test)]
 mod tests {
+    extern crate std;
+
+    use std::string::ToString;
+
     use super::*;
     use crate::meaning::Turn;
 
@@ -149,6 +166,10 @@ mod tests {
         let last = (0..32_767).map(|_| speed.step(&mut state, step)).last();
         assert_eq!(last, Some(Some(-32_767)));
         assert_eq!(speed.per_second(-32_767, u32::MAX), -i64::from(u32::MAX));
-        assert!(Speed::try_new(0).is_none() && Speed::try_new(32_768).is_none());
+        let refused = |gate| Speed::try_new(gate).map_err(|error| error.to_string());
+        assert_eq!(refused(0), Err("a gate of 0 ticks counts no steps; use at least 1".to_string()));
+        let long = "a gate of 32768 ticks does not fit the count; the most it holds is 32767";
+        assert_eq!(refused(32_768), Err(long.to_string()));
+        assert!(Speed::try_new(32_767).is_ok());
     }
 }

@@ -1,6 +1,7 @@
 //! Which positions of the contact the samples so far allow, each with the most favourable account of it.
 
 use crate::envelope::{Envelope, PerChange, PerPosition};
+use crate::error::{Parameter, ParameterError};
 use crate::machine::Position;
 
 /// An envelope in delivered samples, in the width that the monitor counts in.
@@ -74,30 +75,41 @@ impl Belief {
 }
 
 impl Limits {
-    pub(super) const fn of(envelope: &Envelope) -> Option<Self> {
+    /// The limits of an envelope, or the number in it that cannot be counted.
+    pub(super) const fn of(envelope: &Envelope) -> Result<Self, ParameterError> {
         let e = envelope.delivered();
-        if e.dwell.open == 0 || e.dwell.closed == 0 {
-            return None;
+        if e.dwell.open == 0 {
+            return Err(ParameterError::Zero(Parameter::DwellOpen));
         }
-        let dwell = PerPosition { open: narrow(e.dwell.open), closed: narrow(e.dwell.closed) };
-        let bounce = PerChange { make: narrow(e.bounce.make), break_: narrow(e.bounce.break_) };
-        let glitch = PerPosition { open: narrow(e.glitch.open), closed: narrow(e.glitch.closed) };
-        match (dwell, bounce, glitch, narrow(e.quiet), narrow(e.calm)) {
-            (
-                PerPosition { open: Some(dwell_open), closed: Some(dwell_closed) },
-                PerChange { make: Some(make), break_: Some(break_) },
-                PerPosition { open: Some(glitch_open), closed: Some(glitch_closed) },
-                Some(quiet),
-                Some(calm),
-            ) => Some(Self {
-                dwell: PerPosition { open: dwell_open, closed: dwell_closed },
-                bounce: PerChange { make, break_ },
-                glitch: PerPosition { open: glitch_open, closed: glitch_closed },
-                quiet,
-                calm,
-            }),
-            _ => None,
+        if e.dwell.closed == 0 {
+            return Err(ParameterError::Zero(Parameter::DwellClosed));
         }
+        let numbers = [
+            (Parameter::DwellOpen, e.dwell.open),
+            (Parameter::DwellClosed, e.dwell.closed),
+            (Parameter::BounceMake, e.bounce.make),
+            (Parameter::BounceBreak, e.bounce.break_),
+            (Parameter::GlitchOpen, e.glitch.open),
+            (Parameter::GlitchClosed, e.glitch.closed),
+            (Parameter::Quiet, e.quiet),
+            (Parameter::Calm, e.calm),
+        ];
+        let mut left: &[_] = &numbers;
+        while let [(parameter, ticks), rest @ ..] = left {
+            if *ticks > u16::MAX as u32 {
+                let (parameter, ticks) = (*parameter, *ticks);
+                return Err(ParameterError::CountTooNarrow { parameter, ticks, most: u16::MAX });
+            }
+            left = rest;
+        }
+        // Nothing is cut off: all of them were looked at just now.
+        Ok(Self {
+            dwell: PerPosition { open: e.dwell.open as u16, closed: e.dwell.closed as u16 },
+            bounce: PerChange { make: e.bounce.make as u16, break_: e.bounce.break_ as u16 },
+            glitch: PerPosition { open: e.glitch.open as u16, closed: e.glitch.closed as u16 },
+            quiet: e.quiet as u16,
+            calm: e.calm as u16,
+        })
     }
 
     /// The samples alike after which a line is at rest: one more than a contact that has changed can hide, under its
@@ -195,11 +207,6 @@ impl Limits {
             },
         })
     }
-}
-
-const fn narrow(ticks: u32) -> Option<u16> {
-    // The comparison makes the cast keep its value.
-    if ticks <= u16::MAX as u32 { Some(ticks as u16) } else { None }
 }
 
 const fn max(a: u16, b: u16) -> u16 {

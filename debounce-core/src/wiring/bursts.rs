@@ -1,5 +1,6 @@
 //! Stretches in which a line was not at rest: [`Bursts`].
 
+use crate::error::{Parameter, ParameterError};
 use crate::machine::{Change, Machine, Position};
 
 /// A stretch of a line that was not at rest, from its first change to its last.
@@ -50,6 +51,7 @@ impl Burst {
 ///
 /// # State
 /// 8 bytes; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in `step`. A rest of 0 panics in [`new`](Self::new), in a constant at compile time.
@@ -104,15 +106,21 @@ impl Bursts {
     #[must_use]
     pub const fn new(rest_ticks: u16) -> Self {
         match Self::try_new(rest_ticks) {
-            Some(bursts) => bursts,
-            None => panic!("a line is at rest after at least 1 sample"),
+            Ok(bursts) => bursts,
+            Err(_) => panic!("a line is at rest after at least 1 sample"),
         }
     }
 
-    /// [`new`](Self::new) for values known at run time, `None` for 0; links no panic.
-    #[must_use]
-    pub const fn try_new(rest_ticks: u16) -> Option<Self> {
-        if rest_ticks == 0 { None } else { Some(Self { rest: rest_ticks }) }
+    /// [`new`](Self::new) for values known at run time; links no panic.
+    ///
+    /// # Errors
+    /// [`ParameterError::Zero`] where it is 0.
+    pub const fn try_new(rest_ticks: u16) -> Result<Self, ParameterError> {
+        if rest_ticks == 0 {
+            Err(ParameterError::Zero(Parameter::Rest))
+        } else {
+            Ok(Self { rest: rest_ticks })
+        }
     }
 }
 
@@ -196,6 +204,7 @@ mod tests {
         let expected =
             Burst { from: Position::Open, to: Position::Closed, ticks: u16::MAX, changes: u16::MAX };
         assert_eq!(last, Some(expected));
-        assert!(Bursts::try_new(0).is_none() && state.at_rest());
+        assert_eq!(Bursts::try_new(0), Err(ParameterError::Zero(Parameter::Rest)));
+        assert!(state.at_rest());
     }
 }

@@ -34,6 +34,7 @@ pub enum TickFault {
 ///
 /// # State
 /// 8 bytes; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never.

@@ -38,6 +38,7 @@ pub enum Delivery<T> {
 ///
 /// # State
 /// `N` events with 2 bytes each, and up to five words; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never. `N == 0` does not compile.

@@ -2,6 +2,7 @@
 
 use super::belief::{Belief, Limits};
 use crate::envelope::{Envelope, PerPosition};
+use crate::error::ParameterError;
 use crate::machine::{Change, Machine, Position};
 
 /// Something that no waveform of the envelope explains.
@@ -69,6 +70,7 @@ pub enum Outside {
 ///
 /// # State
 /// At most 44 bytes; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never in `step`. [`new`](Self::new) panics on an envelope that is refused, in a constant at compile time.
@@ -143,25 +145,23 @@ impl Monitor {
     /// A monitor for `envelope`, without a limit for a stuck contact.
     ///
     /// # Panics
-    /// Where [`try_new`](Self::try_new) gives `None`; in a constant that is an error at compile time.
+    /// When [`try_new`](Self::try_new) refuses; in a constant that is an error at compile time.
     #[must_use]
     pub const fn new(envelope: &Envelope) -> Self {
         match Self::try_new(envelope) {
-            Some(monitor) => monitor,
-            None => panic!("a monitor takes dwells of 1 to 65535 ticks and everything else up to 65535"),
+            Ok(monitor) => monitor,
+            Err(_) => panic!("a monitor takes dwells of 1 to 65535 ticks and everything else up to 65535"),
         }
     }
 
     /// [`new`](Self::new) for values known at run time; links no panic.
     ///
-    /// `None` where a dwell comes out at 0 samples, or any number is above 65 535.
-    #[must_use]
-    pub const fn try_new(envelope: &Envelope) -> Option<Self> {
+    /// # Errors
+    /// Where no sample of a dwell is certain to be delivered, or any number is above 65 535: which one.
+    pub const fn try_new(envelope: &Envelope) -> Result<Self, ParameterError> {
         match Limits::of(envelope) {
-            Some(limits) => {
-                Some(Self { limits, stuck_after: PerPosition { open: u32::MAX, closed: u32::MAX } })
-            }
-            None => None,
+            Ok(limits) => Ok(Self { limits, stuck_after: PerPosition { open: u32::MAX, closed: u32::MAX } }),
+            Err(error) => Err(error),
         }
     }
 
@@ -280,6 +280,7 @@ impl Machine for Monitor {
 mod tests {
     extern crate std;
 
+    use std::string::ToString;
     use std::vec::Vec;
 
     use super::*;
@@ -404,7 +405,7 @@ mod tests {
 
     #[test]
     fn monitor_envelope_out_of_range_is_refused() {
-        let accepts = |envelope: Envelope| Monitor::try_new(&envelope).is_some();
+        let accepts = |envelope: Envelope| Monitor::try_new(&envelope).is_ok();
         assert!(accepts(Envelope::clean(65_535, 65_535).bounce(65_535, 65_535).glitch(65_535, 65_535)));
         assert!(!accepts(Envelope::clean(65_536, 1)) && !accepts(Envelope::clean(1, 65_536)));
         assert!(!accepts(Envelope::clean(0, 1)) && !accepts(Envelope::clean(2, 2).lost(2)));
@@ -412,5 +413,11 @@ mod tests {
         assert!(!accepts(Envelope::clean(1, 1).glitch(0, 65_536)));
         assert!(!accepts(Envelope::clean(1, 1).quiet(65_536)));
         assert!(!accepts(Envelope::clean(1, 1).calm(65_536)));
+        let refused = |envelope: Envelope| Monitor::try_new(&envelope).map_err(|error| error.to_string());
+        let zero = "no sample of a dwell while closed is certain to be delivered; use more than are lost";
+        assert_eq!(refused(Envelope::clean(9, 2).lost(2)), Err(zero.to_string()));
+        let wide =
+            "a disturbance while closed of 65536 ticks does not fit the count; the most it holds is 65535";
+        assert_eq!(refused(Envelope::clean(1, 1).glitch(0, 65_536)), Err(wide.to_string()));
     }
 }

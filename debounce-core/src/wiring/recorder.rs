@@ -75,6 +75,7 @@ pub struct RecordedRun {
 ///
 /// # State
 /// `2 N` bytes, two words and 8 bytes; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never. `N` below 2 does not compile.
@@ -151,7 +152,18 @@ impl<const N: usize> Recorder<N> {
             Position::Open => OPEN,
             Position::Closed => CLOSED,
         };
-        self.push(kind, 1);
+        // Nearly every sample only makes the newest run longer, and that run fits one entry.
+        let newest = self.place(self.length.wrapping_sub(1));
+        if !self.stopped
+            && self.length > 0
+            && let Some(entry) = self.entries.get_mut(newest)
+            && entry.kind() == kind
+            && entry.ticks() < MOST_LOW
+        {
+            *entry = Entry(entry.0.saturating_add(1));
+        } else {
+            self.push(kind, 1);
+        }
     }
 
     /// Marks that so many ticks were lost here, for example as an overrun of the handler tells.

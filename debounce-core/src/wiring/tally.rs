@@ -15,6 +15,7 @@ use super::{Outside, TickFault};
 ///
 /// # State
 /// 20 bytes; checked by a `const` assertion below the type. Copy it to memory that outlives a power-down to go on.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never.

@@ -9,10 +9,13 @@ fn main() {
     println!("cargo:rerun-if-changed=c");
     println!("cargo:rustc-check-cfg=cfg(with_c)");
     let target = env::var("TARGET").expect("cargo sets TARGET");
-    let cpu = match target.as_str() {
-        "thumbv6m-none-eabi" => "cortex-m0",
-        "thumbv7m-none-eabi" => "cortex-m3",
-        // Only the Arm compiler is asked for.
+    let (program, part): (_, &[&str]) = match target.as_str() {
+        "thumbv6m-none-eabi" => ("arm-none-eabi-gcc", &["-mthumb", "-mcpu=cortex-m0"]),
+        "thumbv7m-none-eabi" => ("arm-none-eabi-gcc", &["-mthumb", "-mcpu=cortex-m3"]),
+        "riscv32imc-unknown-none-elf" => {
+            ("riscv64-unknown-elf-gcc", &["-march=rv32imc_zicsr", "-mabi=ilp32"])
+        }
+        // Built for the host, to lint it: nothing is measured there.
         _ => return,
     };
     let out = env::var("OUT_DIR").expect("cargo sets OUT_DIR");
@@ -22,11 +25,11 @@ fn main() {
             continue;
         }
         let object = Path::new(&out).join(path.with_extension("o").file_name().expect("a file has a name"));
-        let mut compiler = Command::new("arm-none-eabi-gcc");
-        compiler.args(["-O2", "-mthumb", "-ffreestanding", "-std=c11", "-Wall", "-Wextra", "-Werror"]);
+        let mut compiler = Command::new(program);
+        compiler.args(["-O2", "-ffreestanding", "-std=c11", "-Wall", "-Wextra", "-Werror"]);
         compiler.args(["-ffunction-sections", "-c", "-o"]).arg(&object).arg(&path);
-        let status = compiler.arg(format!("-mcpu={cpu}")).status();
-        assert!(status.is_ok_and(|status| status.success()), "arm-none-eabi-gcc does not compile {path:?}");
+        let status = compiler.args(part).status();
+        assert!(status.is_ok_and(|status| status.success()), "{program} does not compile {path:?}");
         println!("cargo:rustc-link-arg-bins={}", object.display());
     }
     println!("cargo:rustc-cfg=with_c");

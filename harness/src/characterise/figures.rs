@@ -2,12 +2,15 @@
 
 use debounce_core::{Change, PerChange, PerPosition, Position};
 
-use super::operations::{Ambiguity, Disturbance, Doubt, Operation, Segmentation};
+use super::histogram::{Histogram, Step, empirical_distribution};
+use super::independence::Independence;
+use super::operations::Segmentation;
 use super::quantile::Spread;
+use super::tail::Tail;
 use crate::envelope::PhysicalEnvelope;
 
 /// What the operations of one kind have in common.
-#[derive(Clone, PartialEq, Eq, Debug)]
+#[derive(Clone, PartialEq, Debug)]
 pub struct ChangeFigures {
     /// Operations recorded whole.
     pub count: usize,
@@ -17,10 +20,35 @@ pub struct ChangeFigures {
     pub bounce_ns: Option<Spread>,
     /// Number of edges.
     pub edges: Option<Spread>,
+    /// The longest run inside each bounce that has one, in nanoseconds.
+    pub longest_gap_ns: Option<Spread>,
+    /// The shortest run inside each bounce that has one, in nanoseconds.
+    pub shortest_pulse_ns: Option<Spread>,
     /// Every bounce duration as recorded, from the shortest to the longest.
     pub sorted_bounces_ns: Vec<u64>,
+    /// Every bounce duration on the safe side, from the shortest to the longest: doubtful tails included, and the
+    /// recorder's sample period added. Claims stand on these.
+    pub sorted_safe_bounces_ns: Vec<u64>,
     /// The longest bounce if every doubtful disturbance after a change were a second burst of its bounce.
     pub longest_bounce_in_doubt_ns: u64,
+    /// Whether the bounces in their order look independent and alike.
+    pub independence: Independence,
+    /// What the longest bounces indicate about still longer ones; no claim.
+    pub tail: Option<Tail>,
+}
+
+impl ChangeFigures {
+    /// The recorded bounces in bins, none narrower than `resolution_ns`.
+    #[must_use]
+    pub fn histogram(&self, resolution_ns: u64) -> Option<Histogram> {
+        Histogram::of_sorted(&self.sorted_bounces_ns, resolution_ns)
+    }
+
+    /// The empirical distribution of the recorded bounces.
+    #[must_use]
+    pub fn distribution(&self) -> Vec<Step> {
+        empirical_distribution(&self.sorted_bounces_ns)
+    }
 }
 
 /// What the disturbances begun in one position have in common.
@@ -47,9 +75,9 @@ pub struct DwellFigures {
     pub shortest_in_doubt_ns: Option<u64>,
 }
 
-/// The summary of a recording. Times are as recorded; what the recorder could not see is added in
+/// The summary of a recording, or of several. Times are as recorded; what the recorder could not see is added in
 /// [`envelope`](Self::envelope).
-#[derive(Clone, PartialEq, Eq, Debug)]
+#[derive(Clone, PartialEq, Debug)]
 pub struct Figures {
     /// Makes and breaks.
     pub changes: PerChange<ChangeFigures>,
@@ -65,7 +93,10 @@ pub struct Figures {
     pub dwell: PerPosition<DwellFigures>,
     /// Bursts cut off by an end of the recording; they count in no other figure.
     pub fragments: usize,
-    /// The recorder's own sample period: a time read from the recording may be off by that much.
+    /// How long was recorded.
+    pub recorded_ns: u64,
+    /// The recorder's own sample period, the longest where there are several: a time read from the recording may be
+    /// off by that much.
     pub resolution_ns: u64,
 }
 
@@ -146,21 +177,36 @@ impl Figures {
     /// Sums up a segmented recording.
     #[must_use]
     pub fn of(segmentation: &Segmentation) -> Self {
-        let change = |change| change_figures(segmentation, change);
-        let position = |position| disturbance_figures(segmentation, position);
-        let dwell = |position| dwell_figures(segmentation, position);
+        Self::pooled(&[segmentation])
+    }
+
+    /// Sums up several segmented recordings of one contact as if they were one; times between two operations or
+    /// disturbances are only counted within a recording.
+    #[must_use]
+    pub fn pooled(recordings: &[&Segmentation]) -> Self {
+        let change = |change| sums::change(recordings, change);
+        let position = |position| sums::disturbances_in(recordings, position);
+        let dwell = |position| sums::dwell(recordings, position);
         let mut spacing: Vec<u64> =
-            segmentation.disturbances.iter().filter_map(|d| d.since_disturbance_ns).collect();
+            sums::disturbances(recordings).filter_map(|d| d.since_disturbance_ns).collect();
         Self {
             changes: PerChange { make: change(Change::Make), break_: change(Change::Break) },
             disturbances: PerPosition { open: position(Position::Open), closed: position(Position::Closed) },
             spacing_ns: Spread::of(&mut spacing),
-            quiet_ns: quiet(segmentation),
-            calm_ns: calm(segmentation),
+            quiet_ns: recordings.iter().filter_map(|one| sums::quiet(one)).min(),
+            calm_ns: recordings.iter().filter_map(|one| sums::calm(one)).min(),
             dwell: PerPosition { open: dwell(Position::Open), closed: dwell(Position::Closed) },
-            fragments: segmentation.fragments.len(),
-            resolution_ns: segmentation.resolution_ns,
+            fragments: recordings.iter().map(|one| one.fragments.len()).sum(),
+            recorded_ns: recordings.iter().map(|one| one.recorded_ns.1 - one.recorded_ns.0).sum(),
+            resolution_ns: recordings.iter().map(|one| one.resolution_ns).max().unwrap_or(0),
         }
+    }
+
+    /// Disturbances a second, over the time recorded.
+    #[must_use]
+    pub fn disturbances_per_second(&self) -> f64 {
+        let count = self.disturbances.open.count + self.disturbances.closed.count;
+        count as f64 * 1e9 / self.recorded_ns.max(1) as f64
     }
 
     /// The longest bounce that this recording supports: the longest recorded, doubtful tails included, plus
@@ -171,8 +217,7 @@ impl Figures {
             Change::Make => &self.changes.make,
             Change::Break => &self.changes.break_,
         };
-        let longest = figures.bounce_ns?.max.max(figures.longest_bounce_in_doubt_ns);
-        Some(longest.saturating_add(self.resolution_ns))
+        figures.sorted_safe_bounces_ns.last().copied()
     }
 
     /// The widest disturbance begun in a position, parts of bounces that may be one included, plus the
@@ -228,103 +273,7 @@ impl Figures {
     }
 }
 
-fn change_figures(segmentation: &Segmentation, change: Change) -> ChangeFigures {
-    let of_kind = || segmentation.operations.iter().filter(|o| o.change == change);
-    let mut bounces: Vec<u64> = of_kind().map(Operation::bounce_ns).collect();
-    let mut edges: Vec<u64> = of_kind().map(|o| o.burst.edges as u64).collect();
-    let doubtful = |d: &&Disturbance| {
-        matches!(d.ambiguity, Some(Ambiguity { doubt: Doubt::SecondBurstOrDisturbance, .. }))
-            && d.position == change.to()
-    };
-    let longest_bounce_in_doubt_ns = segmentation
-        .disturbances
-        .iter()
-        .filter(doubtful)
-        .filter_map(|d| {
-            let before = segmentation.operations.partition_point(|o| o.burst.first_ns < d.burst.first_ns);
-            Some(d.burst.last_ns - segmentation.operations[before.checked_sub(1)?].burst.first_ns)
-        })
-        .max()
-        .unwrap_or(0);
-    ChangeFigures {
-        count: bounces.len(),
-        ambiguous: of_kind().filter(|o| o.ambiguity.is_some()).count(),
-        bounce_ns: Spread::of(&mut bounces),
-        edges: Spread::of(&mut edges),
-        sorted_bounces_ns: bounces,
-        longest_bounce_in_doubt_ns,
-    }
-}
-
-/// A part of a change's burst that may be a disturbance: where it began, from when to when.
-fn disturbance_in_doubt(operation: &Operation) -> Option<(Position, u64, u64)> {
-    let Ambiguity { doubt, at_ns, run_ns } = operation.ambiguity?;
-    let Operation { burst, change, .. } = operation;
-    match doubt {
-        // Only a run inside the burst; one after it belongs to the disturbance there.
-        Doubt::SecondBurstOrDisturbance if at_ns < burst.last_ns => {
-            Some((change.to(), at_ns + run_ns, burst.last_ns))
-        }
-        Doubt::DisturbanceBeforeChange if at_ns >= burst.first_ns && at_ns < burst.last_ns => {
-            Some((change.to().opposite(), burst.first_ns, at_ns))
-        }
-        _ => None,
-    }
-}
-
-fn disturbance_figures(segmentation: &Segmentation, position: Position) -> DisturbanceFigures {
-    let there = || segmentation.disturbances.iter().filter(|d| d.position == position);
-    let mut widths: Vec<u64> = there().map(|d| d.burst.width_ns()).collect();
-    let in_doubt = segmentation.operations.iter().filter_map(disturbance_in_doubt);
-    DisturbanceFigures {
-        count: widths.len(),
-        ambiguous: there().filter(|d| d.ambiguity.is_some()).count(),
-        width_ns: Spread::of(&mut widths),
-        widest_in_doubt_ns: in_doubt.filter(|d| d.0 == position).map(|d| d.2 - d.1).max().unwrap_or(0),
-    }
-}
-
-/// The shortest rest between two disturbances, doubtful ones included. With a single one there is no such rest;
-/// then the shorter of the stretches from it to the ends of the recording is what was seen.
-fn quiet(segmentation: &Segmentation) -> Option<u64> {
-    let mut all: Vec<(u64, u64)> =
-        segmentation.disturbances.iter().map(|d| (d.burst.first_ns, d.burst.last_ns)).collect();
-    all.extend(segmentation.operations.iter().filter_map(disturbance_in_doubt).map(|d| (d.1, d.2)));
-    all.sort_unstable();
-    match all.as_slice() {
-        [] => None,
-        [(first, last)] => Some((first - segmentation.recorded_ns.0).min(segmentation.recorded_ns.1 - last)),
-        several => several.windows(2).map(|pair| pair[1].0 - pair[0].1).min(),
-    }
-}
-
-fn calm(segmentation: &Segmentation) -> Option<u64> {
-    let inside = segmentation.operations.iter().filter_map(|operation| {
-        let Ambiguity { doubt, at_ns, run_ns } = operation.ambiguity?;
-        (doubt == Doubt::SecondBurstOrDisturbance && at_ns < operation.burst.last_ns).then_some(run_ns)
-    });
-    segmentation.disturbances.iter().filter_map(|d| d.since_bounce_ns).chain(inside).min()
-}
-
-fn dwell_figures(segmentation: &Segmentation, position: Position) -> DwellFigures {
-    let pairs = || segmentation.operations.windows(2).filter(|pair| pair[0].change.to() == position);
-    let operations = segmentation.operations.iter().filter_map(|o| {
-        let found = o.ambiguity?;
-        let inside = found.at_ns >= o.burst.first_ns && found.at_ns < o.burst.last_ns;
-        (found.doubt == Doubt::OneOrSeveralOperations && inside).then_some(found.run_ns)
-    });
-    let disturbances = segmentation.disturbances.iter().filter(|d| d.position == position.opposite());
-    let there_and_back = disturbances.filter_map(|d| {
-        let found = d.ambiguity?;
-        (found.doubt == Doubt::DisturbanceOrOperation).then_some(found.run_ns)
-    });
-    DwellFigures {
-        shortest_ns: pairs().map(|pair| pair[1].burst.first_ns - pair[0].burst.first_ns).min(),
-        shortest_settled_ns: pairs().map(|pair| pair[1].burst.first_ns - pair[0].burst.last_ns).min(),
-        // A burst that may be several operations puts both positions in doubt.
-        shortest_in_doubt_ns: operations.chain(there_and_back).min(),
-    }
-}
+mod sums;
 
 #[cfg(test)]
 mod tests;

@@ -197,6 +197,34 @@ impl Segmentation {
         truth
     }
 
+    /// How long each operation's bounce lasts on the safe side: to its own last edge, or to that of a disturbance after
+    /// it that may be a second burst of the bounce. The recorder's sample period comes on top.
+    #[must_use]
+    pub fn reaches_ns(&self) -> Vec<u64> {
+        let mut reaches: Vec<u64> = self.operations.iter().map(Operation::bounce_ns).collect();
+        let mut next = 0;
+        for disturbance in &self.disturbances {
+            while self.operations.get(next).is_some_and(|o| o.burst.first_ns < disturbance.burst.first_ns) {
+                next += 1;
+            }
+            let doubt = disturbance.ambiguity.map(|ambiguity| ambiguity.doubt);
+            if doubt == Some(Doubt::SecondBurstOrDisturbance)
+                && let Some(before) = next.checked_sub(1)
+            {
+                let until = disturbance.burst.last_ns - self.operations[before].burst.first_ns;
+                reaches[before] = reaches[before].max(until);
+            }
+        }
+        reaches
+    }
+
+    /// How many operations may be several, or several one.
+    #[must_use]
+    pub fn changes_in_doubt(&self) -> usize {
+        let in_doubt = |a: &Ambiguity| a.doubt == Doubt::OneOrSeveralOperations;
+        self.operations.iter().filter(|o| o.ambiguity.as_ref().is_some_and(in_doubt)).count()
+    }
+
     /// How many operations and disturbances are in doubt.
     #[must_use]
     pub fn ambiguous(&self) -> usize {

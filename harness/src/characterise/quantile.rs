@@ -17,7 +17,7 @@ pub fn quantile_type_7(sorted: &[u64], permille: u32) -> Option<u64> {
     Some(((below * (1000 - part) + above * part + 500) / 1000) as u64)
 }
 
-/// The spread of some figure: least, median, 95 % (both by [`quantile_type_7`]) and greatest.
+/// The spread of some figure: least, median, 95 %, 99 % (these three by [`quantile_type_7`]) and greatest.
 #[derive(Clone, Copy, PartialEq, Eq, Debug)]
 pub struct Spread {
     /// The least value.
@@ -26,6 +26,8 @@ pub struct Spread {
     pub median: u64,
     /// The 95 % quantile.
     pub p95: u64,
+    /// The 99 % quantile.
+    pub p99: u64,
     /// The greatest value.
     pub max: u64,
 }
@@ -39,6 +41,7 @@ impl Spread {
             min: *values.first()?,
             median: quantile_type_7(values, 500)?,
             p95: quantile_type_7(values, 950)?,
+            p99: quantile_type_7(values, 990)?,
             max: *values.last()?,
         })
     }
@@ -63,6 +66,6 @@ mod tests {
         assert_eq!(quantile_type_7(&[], 500), None);
         assert_eq!(quantile_type_7(&[7], 950), Some(7));
         assert_eq!(quantile_type_7(&[u64::MAX - 1, u64::MAX], 950), Some(u64::MAX));
-        assert_eq!(Spread::of(&mut [3, 1, 2]), Some(Spread { min: 1, median: 2, p95: 3, max: 3 }));
+        assert_eq!(Spread::of(&mut [3, 1, 2]), Some(Spread { min: 1, median: 2, p95: 3, p99: 3, max: 3 }));
     }
 }

@@ -1,10 +1,11 @@
 //! From a recording to operations and disturbances.
 
-use debounce_core::Position;
+use debounce_core::{Change, PerChange, Position};
 
-use super::ambiguity;
+use super::ambiguity::{self, Usual};
 use super::gap::{self, Gap, GapOrigin};
 use super::operations::{Burst, Disturbance, Extent, Fragment, Operation, RecordingEnd, Segmentation};
+use crate::quantity::Time;
 use crate::trace::Trace;
 
 /// How to segment; the default finds everything from the data.
@@ -35,6 +36,18 @@ pub enum SegmentError {
         /// The gap that was used.
         gap_ns: u64,
     },
+    /// The line changes all the time.
+    #[error(
+        "the line never settles: of its {edges} edges no two are further apart than {}; a contact rests now and \
+         then: check the channel, or state the rest that ends a burst with --gap",
+        Time::from_ns(*.longest_ns)
+    )]
+    NeverSettles {
+        /// The number of edges.
+        edges: usize,
+        /// The longest run, those at the ends of the recording included.
+        longest_ns: u64,
+    },
     /// A gap of 0 would make every edge an operation of its own, bounce included.
     #[error(
         "a gap of 0 ns ends no burst; state how long the line rests between two operations, such as 20 ms"
@@ -64,6 +77,11 @@ pub fn segment(trace: &Trace, options: &SegmentOptions) -> Result<Segmentation, 
     if edges.is_empty() {
         return Err(SegmentError::NoEdges { position: trace.initial() });
     }
+    let longest_ns = longest_run(trace);
+    // Unless somebody states how long this one rests.
+    if longest_ns < options.gap_ns.unwrap_or(LEAST_REST_NS) && options.gap_ns != Some(0) {
+        return Err(SegmentError::NeverSettles { edges: edges.len(), longest_ns });
+    }
     let gap = match options.gap_ns {
         Some(0) => return Err(SegmentError::GapOfZero),
         Some(ns) => Gap { ns, origin: GapOrigin::Given },
@@ -80,8 +98,18 @@ pub fn segment(trace: &Trace, options: &SegmentOptions) -> Result<Segmentation, 
         return Err(SegmentError::NoOperation { edges: edges.len(), gap_ns: gap.ns });
     }
     set_dwells(&mut segmentation);
+    mark_unusual(edges, &mut segmentation);
     mark_neighbours(&mut segmentation);
     Ok(segmentation)
+}
+
+/// A contact that is operated rests at least this long somewhere in a recording (our choice: 20 presses a second would
+/// rest for 25 ms, a quick encoder for 5 ms; a clock or a data line never does).
+const LEAST_REST_NS: u64 = 5_000_000;
+
+/// The longest run of a trace, those at its ends included.
+fn longest_run(trace: &Trace) -> u64 {
+    trace.runs().map(|run| run.until_ns - run.from_ns).max().unwrap_or(0)
 }
 
 /// The segmentation as it grows, burst by burst.
@@ -177,6 +205,29 @@ fn set_dwells(segmentation: &mut Segmentation) {
             None => Extent::AtLeast(known_until.saturating_sub(first)),
         };
     }
+}
+
+/// Marks what is in doubt because it is unlike the other operations of its kind.
+fn mark_unusual(edges: &[u64], segmentation: &mut Segmentation) {
+    let mut usual = PerChange { make: Usual::default(), break_: Usual::default() };
+    for operation in &segmentation.operations {
+        let burst = edges_of(edges, operation);
+        match operation.change {
+            Change::Make => usual.make.add(burst),
+            Change::Break => usual.break_.add(burst),
+        }
+    }
+    let (gap_ns, resolution_ns) = (segmentation.gap.ns, segmentation.resolution_ns);
+    for operation in segmentation.operations.iter_mut().filter(|operation| operation.ambiguity.is_none()) {
+        operation.ambiguity =
+            usual.of(operation.change).judge(edges_of(edges, operation), gap_ns, resolution_ns);
+    }
+}
+
+/// The edges of an operation's burst.
+fn edges_of<'a>(edges: &'a [u64], operation: &Operation) -> &'a [u64] {
+    let first = edges.partition_point(|&edge| edge < operation.burst.first_ns);
+    &edges[first..first + operation.burst.edges]
 }
 
 /// Marks what is in doubt because of a neighbour.

@@ -104,6 +104,19 @@ pub fn operations_needed(rank: u64, coverage: Share, confidence: Share) -> Resul
     Ok(above)
 }
 
+/// The rank of the tightest upper tolerance limit: the smallest of the `n` largest values that may be claimed to cover
+/// `coverage` with `confidence` has this rank, 1 being the largest. `None` where `n` values are too few for any.
+#[must_use]
+pub fn rank(n: u64, coverage: Share, confidence: Share) -> Option<u64> {
+    let allowed = 1.0 - confidence.0;
+    let mut below = 0.0;
+    let ranks = binomial_terms(n, 1.0 - coverage.0, coverage.0).take_while(|term| {
+        below += term;
+        below <= allowed
+    });
+    Some(ranks.count() as u64).filter(|&rank| rank > 0)
+}
+
 /// The upper bound on the rate of failures, with `confidence`, after `failures` in `n` trials.
 ///
 /// # Errors
@@ -141,15 +154,20 @@ fn binomial_cdf(k: u64, n: u64, p: f64, q: f64) -> f64 {
     if q <= 0.0 {
         return 0.0;
     }
+    let terms = usize::try_from(k).unwrap_or(usize::MAX).saturating_add(1);
+    binomial_terms(n, p, q).take(terms).sum::<f64>().min(1.0)
+}
+
+/// The probabilities of 0, 1, 2 ... `n` failures in `n` trials.
+fn binomial_terms(n: u64, p: f64, q: f64) -> impl Iterator<Item = f64> {
     // Counts of operations stay far below 2^53, so the conversions are exact.
-    let mut log_term = n as f64 * q.ln();
     let log_odds = p.ln() - q.ln();
-    let mut sum = log_term.exp();
-    for i in 1..=k {
-        log_term += ((n - i + 1) as f64).ln() - (i as f64).ln() + log_odds;
-        sum += log_term.exp();
-    }
-    sum.min(1.0)
+    let mut log_term = n as f64 * q.ln();
+    (0..=n).map(move |i| {
+        let term = log_term.exp();
+        log_term += ((n - i) as f64).ln() - ((i + 1) as f64).ln() + log_odds;
+        term
+    })
 }
 
 #[cfg(test)]
@@ -220,6 +238,33 @@ mod tests {
             let exact = -(0.05_f64.ln() / n as f64).exp_m1();
             check_close(upper_bound(0, n, share(0.95)).unwrap() / exact, 1.0, 1e-9);
         }
+    }
+
+    /// Computed with SciPy 1.17.1, `scipy.stats.beta.ppf(0.95, k + 1, n - k)`. Many trials with few failures are where
+    /// general inverse incomplete beta functions are known to hang or to lose digits.
+    #[test]
+    fn tolerance_upper_bound_after_very_many_trials_keeps_its_digits() {
+        let found = upper_bound(10, 10_000_000, share(0.95)).unwrap();
+        check_close(found / 1.696_221_333_184_968e-6, 1.0, 1e-9);
+        let found = upper_bound(10, 10_000_000, share(0.999)).unwrap();
+        check_close(found / 2.413_395_409_056_698e-6, 1.0, 1e-9);
+    }
+
+    #[test]
+    fn tolerance_rank_is_the_greatest_that_the_table_allows() {
+        // The rows of the table above, 0.95/0.95 and 0.90/0.95 (MIL-HDBK-17), read the other way round.
+        for (n, m) in
+            [(58, None), (59, Some(1)), (92, Some(1)), (93, Some(2)), (311, Some(10)), (310, Some(9))]
+        {
+            assert_eq!(rank(n, share(0.95), share(0.95)), m, "{n}");
+        }
+        for (n, m) in [(28, None), (29, Some(1)), (154, Some(10)), (153, Some(9))] {
+            assert_eq!(rank(n, share(0.90), share(0.95)), m, "{n}");
+        }
+        assert_eq!(rank(0, share(0.5), share(0.5)), None);
+        let many = rank(500_000, share(0.95), share(0.95)).unwrap();
+        assert!(confidence(500_000, many, share(0.95)).unwrap() >= 0.95);
+        assert!(confidence(500_000, many + 1, share(0.95)).unwrap() < 0.95);
     }
 
     #[test]

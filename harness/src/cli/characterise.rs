@@ -4,19 +4,22 @@ use std::io::{self, Write};
 use std::path::PathBuf;
 
 use clap::Args;
-use debounce_core::{Change, Position};
+use debounce_core::Change;
 use serde_json::{Value, json};
 
+use super::figures;
 use super::input::Input;
 use super::lines::Lines;
+use super::operations_table::operations;
 use super::recorded::{claims, recorded};
 use super::recordings::RequirementInput;
 use super::report::{ReportOption, written};
 use super::{Answer, Failure, Outcome, Session};
 use crate::characterise::GapOrigin;
-use crate::report::{html, json as report, words};
-use crate::requirement::Resolved;
-use crate::study::{Claim, Observed, measured};
+use crate::problem::Problem;
+use crate::report::{characterised, html, json as report, words};
+use crate::requirement::Origin;
+use crate::study::{Caution, Claims, Observed, measured};
 
 /// Bounce, disturbance and tolerance figures of recordings.
 #[derive(Args, Clone, PartialEq, Debug, Default)]
@@ -30,6 +33,9 @@ pub struct CharacteriseArguments {
     /// Recordings and requirement.
     #[command(flatten)]
     pub input: RequirementInput,
+    /// List every operation
+    #[arg(long)]
+    pub operations: bool,
     /// The report.
     #[command(flatten)]
     pub report: ReportOption,
@@ -39,8 +45,8 @@ impl CharacteriseArguments {
     /// Shown below the options.
     pub const EXAMPLES: &'static str = "\
 Examples:
-  One recording with a single channel:
-    harness characterise gate.vcd
+  One recording with a single channel, every operation listed:
+    harness characterise gate.vcd --operations
   An oscilloscope export in volts:
     harness characterise gate.csv --threshold-low \"0.8 V\" --threshold-high \"2.0 V\"
   Several recordings, for a program:
@@ -53,65 +59,90 @@ impl CharacteriseArguments {
         let input = Input::with_recordings(&self.input, session)?;
         let report = self.report.prepare()?;
         let resolved = input.requirement.fill_in(&measured(&input.observed))?;
-        let mut files_written = Vec::new();
-        if let Some(report) = report {
-            let origin =
-                html::Origin { command: session.line().to_owned(), files: input.files()?, seeds: Vec::new() };
-            let found = html::Characterised { observed: &input.observed, resolved: &resolved };
-            files_written.push(report.write(&html::characterised(&found, &origin))?);
+        let claims = Claims::of(&input.observed, &resolved).map_err(Problem::told)?;
+        let cautions = Caution::all(&input.observed, &resolved, &claims);
+        for caution in &cautions {
+            session.warn(&caution.to_string());
         }
-        Ok(Box::new(Characterised { observed: input.observed, resolved, written: files_written }))
+        let is_asked = [resolved.confidence.origin, resolved.coverage.origin]
+            .iter()
+            .any(|origin| !matches!(origin, Origin::Default(_)));
+        let outcome = if is_asked && !claims.are_reached() { Outcome::DoesNotHold } else { Outcome::Holds };
+        let mut written = Vec::new();
+        if let Some(report) = report {
+            let files = input.files()?;
+            let origin = html::Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
+            let (observed, resolved) = (&input.observed, &resolved);
+            let found = html::Characterised { observed, resolved, claims: &claims, warnings: &cautions };
+            written.push(report.write(&html::characterised(&found, &origin))?);
+        }
+        let (observed, listed) = (input.observed, self.operations);
+        Ok(Box::new(Characterised { observed, claims, cautions, outcome, listed, written }))
     }
 }
 
 /// What recordings show.
 struct Characterised {
     observed: Vec<Observed>,
-    resolved: Resolved,
+    claims: Claims,
+    cautions: Vec<Caution>,
+    outcome: Outcome,
+    listed: bool,
     written: Vec<PathBuf>,
 }
 
 impl Answer for Characterised {
     fn outcome(&self) -> Outcome {
-        Outcome::Holds
+        self.outcome
     }
 
     fn write_text(&self, out: &mut dyn Write) -> io::Result<()> {
         let mut lines = Lines::new(out);
+        let several = self.observed.len() > 1;
         for one in &self.observed {
-            figures(&mut lines, one)?;
+            recorded(&mut lines, one)?;
+            gap(&mut lines, one)?;
+            if several {
+                figures::between(&mut lines, &one.figures)?;
+            }
         }
-        claims(&mut lines, &self.observed, &self.resolved)?;
+        if several {
+            let all = words::count(self.observed.len(), "recording");
+            lines
+                .item("Pooled", &format!("{all}, {} in all", words::about(self.claims.pooled.recorded_ns)))?;
+        }
+        figures::between(&mut lines, &self.claims.pooled)?;
+        for change in [Change::Make, Change::Break] {
+            figures::of_kind(&mut lines, &self.claims.pooled, change)?;
+        }
+        claims(&mut lines, &self.claims)?;
+        figures::limits(&mut lines, &self.claims)?;
+        lines.item("Quantiles", characterised::QUANTILES)?;
+        for one in self.observed.iter().filter(|_| self.listed) {
+            operations(&mut lines, one)?;
+        }
         written(&mut lines, &self.written)
     }
 
     fn to_json(&self) -> Value {
-        let claim = |change| {
-            let resolved = &self.resolved;
-            let claim = Claim::of(&self.observed, change, resolved.confidence.value, resolved.coverage.value);
-            claim.ok().flatten().map(|claim| {
-                json!({
-                    "operations": claim.operations,
-                    "longest_bounce_ns": claim.longest_ns,
-                    "covered": claim.covered,
-                    "operations_needed": claim.needed,
-                })
-            })
+        let recording = |one: &Observed| {
+            let mut value = report::observed(one);
+            if self.listed {
+                value["operations"] = characterised::operations(one);
+            }
+            value
         };
         json!({
-            "recordings": self.observed.iter().map(report::observed).collect::<Value>(),
-            "claims": {
-                "confidence": self.resolved.confidence.value.fraction(),
-                "make": claim(Change::Make),
-                "break": claim(Change::Break),
-            },
+            "recordings": self.observed.iter().map(recording).collect::<Value>(),
+            "pooled": characterised::figures(&self.claims.pooled),
+            "claims": characterised::claims(&self.claims),
+            "warnings": self.cautions.iter().map(ToString::to_string).collect::<Vec<_>>(),
         })
     }
 }
 
-/// Everything that one recording shows.
-fn figures(lines: &mut Lines<'_>, one: &Observed) -> io::Result<()> {
-    recorded(lines, one)?;
+/// The gap that ends a burst, and where it comes from.
+fn gap(lines: &mut Lines<'_>, one: &Observed) -> io::Result<()> {
     let gap = &one.segmentation.gap;
     let origin = match gap.origin {
         GapOrigin::Given => "as stated".to_owned(),
@@ -128,36 +159,10 @@ fn figures(lines: &mut Lines<'_>, one: &Observed) -> io::Result<()> {
         _ => "no run is short enough to be bounce".to_owned(),
     };
     lines.item("Gap", &format!("a burst ends after {} of rest, {origin}", words::about(gap.ns)))?;
-    for position in Position::BOTH {
-        let (disturbed, dwell) = (one.figures.disturbances.of(position), one.figures.dwell.of(position));
-        let widths = disturbed.width_ns.map_or(String::new(), |width| {
-            format!(", median {}, widest {}", words::about(width.median), words::about(width.max))
-        });
-        lines.item(
-            if position.is_closed() { "While closed" } else { "While open" },
-            &format!("{}{widths}", words::count(disturbed.count, "disturbance")),
-        )?;
-        if disturbed.widest_in_doubt_ns > 0 {
-            lines.more(&format!(
-                "and perhaps parts of bounces, up to {}",
-                words::about(disturbed.widest_in_doubt_ns)
-            ))?;
-        }
-        if let Some(shortest) = dwell.shortest_ns {
-            let doubt = dwell.shortest_in_doubt_ns.map_or(String::new(), |ns| {
-                format!("; a run of {} may have been an operation", words::about(ns))
-            });
-            lines.more(&format!("shortest {}{doubt}", words::about(shortest)))?;
-        }
+    let fragments = one.segmentation.fragments.len();
+    if fragments > 0 {
+        let cut = words::count(fragments, "burst");
+        lines.more(&format!("{cut} cut off by an end of the recording, which count as nothing"))?;
     }
-    if let Some(quiet) = one.figures.quiet_ns {
-        lines.item("Quiet", &format!("at least {} beside every disturbance", words::at_least(quiet)))?;
-    }
-    lines.item(
-        "Recorder",
-        &format!(
-            "its sample period of {} is added to every figure that is claimed",
-            words::about(one.figures.resolution_ns)
-        ),
-    )
+    Ok(())
 }

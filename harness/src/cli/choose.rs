@@ -11,6 +11,7 @@ use super::clock_text::ClockView;
 use super::input::Input;
 use super::lines::{Lines, strong};
 use super::preference::PreferenceOption;
+use super::recorded::claims;
 use super::recordings::RequirementInput;
 use super::report::{ReportOption, written};
 use super::study::failure;
@@ -18,7 +19,7 @@ use super::{Answer, Failure, Outcome, Session};
 use crate::clock_range::{Activity, ClockQuestion, asleep, clock_range, slowest_by_tolerance};
 use crate::problem::Problem;
 use crate::report::clock_plot::ClockPlot;
-use crate::report::{html, json as report, words};
+use crate::report::{characterised, html, json as report, words};
 use crate::requirement::{Origin, Resolved};
 use crate::study::Study;
 
@@ -75,6 +76,7 @@ impl ChooseArguments {
         let files = if report.is_some() { input.files()? } else { Vec::new() };
         let study =
             Study::of(input.observed, &input.requirement, self.preference.into(), |_| {}).map_err(failure)?;
+        study.cautions().iter().for_each(|caution| session.warn(&caution.to_string()));
         let activity = Activity {
             operations_per_hour: self.operations_per_hour,
             disturbances_per_hour: self.disturbances_per_hour,
@@ -131,6 +133,9 @@ impl Answer for Chosen {
         lines
             .item("Envelope", &format!("the contact {}", words::envelope(&self.study.physical).join("; ")))?;
         network(&mut lines, &self.study.resolved)?;
+        if !self.study.observed.is_empty() {
+            claims(&mut lines, &self.study.claims)?;
+        }
         for row in self.study.resolved.rows() {
             // What the network does has just been said.
             if !matches!(row.origin, Origin::Given { .. } | Origin::Option(_) | Origin::Network) {
@@ -171,6 +176,7 @@ impl Answer for Chosen {
         json!({
             "requirement": report::requirement(&self.study.resolved),
             "envelope": report::physical(&self.study.physical),
+            "claims": characterised::claims(&self.study.claims),
             "choice": report::ranking(&self.study.ranking),
             "clock": report::clock_range(&self.clock.range),
             "slowest_by_tolerance": self

@@ -72,7 +72,10 @@ impl Input {
                     observed_in(path, recording, &segmenting, session).map_err(|problem| vec![problem])
                 });
             match read {
-                Ok(one) => observed.push(one),
+                Ok(one) => {
+                    let closed = wanted.closed.as_ref().map(|closed| closed.value);
+                    observed.push(Observed { closed, ..one });
+                }
                 Err(found) => problems.extend(found),
             }
         }

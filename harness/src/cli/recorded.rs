@@ -5,9 +5,12 @@ use std::io;
 use debounce_core::Change;
 
 use super::lines::Lines;
+use crate::characterise::tolerance;
+use crate::quantity::Share;
+use crate::replay::Failures;
 use crate::report::words;
-use crate::requirement::Resolved;
-use crate::study::{Claim, Observed};
+use crate::requirement::Origin;
+use crate::study::{Claims, DesignBounce, Observed};
 
 /// What one recording holds.
 pub(super) fn recorded(lines: &mut Lines<'_>, one: &Observed) -> io::Result<()> {
@@ -32,39 +35,82 @@ pub(super) fn recorded(lines: &mut Lines<'_>, one: &Observed) -> io::Result<()> 
             lines.more(&format!(
                 "bounce at a {:<6} median {:>8}, 95 % {:>8}, longest {:>8}",
                 words::change(change),
-                words::about(bounce.median),
-                words::about(bounce.p95),
-                words::about(bounce.max)
+                words::seen(bounce.median, figures.resolution_ns),
+                words::seen(bounce.p95, figures.resolution_ns),
+                words::seen(bounce.max, figures.resolution_ns)
             ))?;
         }
     }
     Ok(())
 }
 
-/// What the recorded operations allow to claim of those to come.
-pub(super) fn claims(lines: &mut Lines<'_>, observed: &[Observed], resolved: &Resolved) -> io::Result<()> {
-    let (confidence, coverage) = (resolved.confidence.value, resolved.coverage.value);
-    let mut parts = Vec::new();
-    for change in [Change::Make, Change::Break] {
-        let claim = Claim::of(observed, change, confidence, coverage);
-        let Some(claim) = claim.map_err(io::Error::other)? else { continue };
-        let enough = if claim.operations >= claim.needed {
-            String::new()
-        } else {
-            format!("; {} are needed for {coverage}", claim.needed)
+/// What the recorded operations allow to claim of those to come, and which claim the design stands on.
+pub(super) fn claims(lines: &mut Lines<'_>, claims: &Claims) -> io::Result<()> {
+    let both = [Change::Make, Change::Break];
+    let part = |change| {
+        let claim = claims.bounce.at(change)?;
+        let enough = match claim.more_needed() {
+            0 => String::new(),
+            more => format!("; {more} more are needed for {}", claims.coverage),
         };
-        // Rounded down to a tenth of a percent, which understates what is covered.
-        let covered = (claim.covered * 1000.0).floor() / 10.0;
-        parts.push(format!(
-            "{covered:.1} % of {}s bounce no longer than {} ({} recorded{enough})",
+        Some(format!(
+            "{} of {}s bounce no longer than {} ({} recorded{enough})",
+            words::covered(claim.covered),
             words::change(change),
             words::at_most(claim.longest_ns),
             claim.operations,
-        ));
-    }
+        ))
+    };
+    let parts: Vec<String> = both.into_iter().filter_map(part).collect();
     if parts.is_empty() {
         return Ok(());
     }
-    let text = format!("with {confidence} confidence, were they independent: {}", parts.join(", and "));
-    lines.item("Claim", &text)
+    let confidence = claims.confidence;
+    lines.item(
+        "Claim",
+        &format!("with {confidence} confidence, were they independent: {}", parts.join(", and ")),
+    )?;
+    let of = |change| claims.design.of(change);
+    if let [Some(margin), Some(_)] = both.map(|change| of(change).margin) {
+        let [make, break_] = both.map(|change| words::at_most(of(change).ns));
+        let text =
+            format!("{make} after a make, {break_} after a break: those claims with a margin of {margin}");
+        return lines.item("Design", &text);
+    }
+    let designs: Vec<String> = both.into_iter().map(|change| design(change, of(change))).collect();
+    lines.item("Design", &designs.join("; "))
+}
+
+/// The bounce that is designed for, and the claim that it stands on.
+fn design(change: Change, design: &DesignBounce) -> String {
+    let basis = match (design.origin, design.margin) {
+        (Origin::Measured, Some(margin)) => format!("that claim with a margin of {margin}"),
+        (origin, _) => match design.covered {
+            Some(covered) => format!(
+                "{origin}; {} of {} recorded were longer, so it covers {} of all",
+                design.longer,
+                design.recorded,
+                words::covered(covered)
+            ),
+            None if design.recorded > 0 => {
+                format!("{origin}; every one of {} recorded was longer", design.recorded)
+            }
+            None => format!("{origin}; none was recorded"),
+        },
+    };
+    format!("{} after a {}: {basis}", words::at_most(design.ns), words::change(change))
+}
+
+/// With which confidence how few operations fail, by those that a replay could judge.
+pub(super) fn failures(found: &Failures, confidence: Share) -> Option<String> {
+    let share = tolerance::Share::try_new(confidence.fraction()).ok()?;
+    let (missed, doubled) = found.rates_at_most(share).ok()?;
+    Some(format!(
+        "{} missed, {} doubled of {} changes; with {confidence} confidence at most {} of all missed, {} doubled",
+        found.missed,
+        found.doubled,
+        found.changes,
+        words::rate_at_most(missed),
+        words::rate_at_most(doubled),
+    ))
 }

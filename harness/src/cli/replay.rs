@@ -1,6 +1,7 @@
 //! `harness replay`: one law over recordings.
 
 use std::io::{self, Write};
+use std::path::{Path, PathBuf};
 
 use clap::Args;
 use debounce_core::{Change, Law, TickClock, is_settled};
@@ -9,17 +10,22 @@ use serde_json::{Value, json};
 use super::input::Input;
 use super::lines::Lines;
 use super::logic_name::{LogicName, OutputOf, Runnable};
+use super::recorded::failures;
 use super::recordings::RequirementInput;
 use super::{Answer, Failure, Outcome, Session};
 use crate::characterise::Burst;
+use crate::generate::{changes_of, read_truth};
+use crate::nearest::nearest_scoped;
 use crate::problem::Problem;
 use crate::prove::{Witness, WitnessTick};
+use crate::quantity::Share;
 use crate::quantity::TickPeriod;
-use crate::replay::{ClockMeasurement, Draws, PreparedClock};
+use crate::replay::{ClockMeasurement, Draws, Failures, PreparedClock};
 use crate::report::timing::TimingDiagram;
-use crate::report::words;
+use crate::report::{characterised, words};
 use crate::sample::SampleClock;
 use crate::study::{Observed, measured};
+use crate::truth::check_truth;
 use crate::with_law;
 
 /// Runs one law over recordings and shows what it reports.
@@ -41,6 +47,9 @@ pub struct ReplayArguments {
     /// Recordings and requirement.
     #[command(flatten)]
     pub input: RequirementInput,
+    /// What the contact did, from a file that harness generate wrote; read off the recording without it
+    #[arg(long, value_name = "FILE")]
+    pub truth: Option<PathBuf>,
     /// Passes drawn with tolerance, jitter and lost ticks, on top of the exact ones
     #[arg(long, value_name = "COUNT", default_value_t = 32)]
     pub draws: u32,
@@ -64,7 +73,10 @@ Examples:
 impl ReplayArguments {
     /// Runs the command.
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
-        let input = Input::with_recordings(&self.input, session)?;
+        let mut input = Input::with_recordings(&self.input, session)?;
+        if let Some(path) = &self.truth {
+            stated_truth(path, &mut input.observed)?;
+        }
         let resolved = input.requirement.fill_in(&measured(&input.observed))?;
         let logic = Runnable::read(&self.law, self.reading)?;
         let shortest = &resolved.required.shortest;
@@ -83,11 +95,37 @@ impl ReplayArguments {
                     Runnable::Law(logic) => with_law!(logic, law => prepared.measure(law)),
                     Runnable::Table(machine) => prepared.measure(machine),
                 };
-                runs.push(Run { recording, tick, clock, measured });
+                let failures = Failures::of(&measured.nominal, &one.truth);
+                runs.push(Run { recording, tick, clock, measured, failures });
             }
         }
-        Ok(Box::new(Replayed { logic, law: self.law.clone(), observed: input.observed, runs }))
+        let confidence = resolved.confidence.value;
+        Ok(Box::new(Replayed { logic, law: self.law.clone(), observed: input.observed, runs, confidence }))
     }
+}
+
+/// Puts what a file states in the place of what was read off the recordings.
+fn stated_truth(path: &Path, observed: &mut [Observed]) -> Result<(), Failure> {
+    let rows = read_truth(path)?;
+    for one in observed {
+        let channel = &one.recording.channel;
+        let truth = changes_of(&rows, channel);
+        if truth.is_empty() {
+            let known = nearest_scoped(channel, rows.iter().map(|row| row.channel.as_str()));
+            let problem = Problem::new(format!("nothing is stated of the channel {channel}")).in_file(path);
+            return Err(problem
+                .help(match known {
+                    Some(known) => format!("it states something of {known}; choose that with --channel"),
+                    None => "give the truth that was written with this recording".to_owned(),
+                })
+                .into());
+        }
+        check_truth(&one.recording.trace, &truth).map_err(|error| {
+            Problem::told(error).in_file(path).help("give the truth that was written with this recording")
+        })?;
+        one.truth = truth;
+    }
+    Ok(())
 }
 
 /// One recording at one tick period.
@@ -96,6 +134,7 @@ struct Run {
     tick: TickPeriod,
     clock: TickClock,
     measured: ClockMeasurement,
+    failures: Failures,
 }
 
 struct Replayed {
@@ -103,6 +142,7 @@ struct Replayed {
     law: LogicName,
     observed: Vec<Observed>,
     runs: Vec<Run>,
+    confidence: Share,
 }
 
 impl Answer for Replayed {
@@ -133,6 +173,7 @@ impl Answer for Replayed {
                 "recording": self.observed[run.recording].name,
                 "tick": run.tick.to_string(),
                 "measured": run.measured,
+                "failures": characterised::failures(&run.failures, self.confidence),
             })
         };
         json!({ "law": self.law.to_string(), "runs": self.runs.iter().map(run).collect::<Value>() })
@@ -190,6 +231,9 @@ impl Replayed {
                 words::count(missed, "operation"),
                 words::count(places, "place")
             ))?;
+        }
+        if let Some(text) = failures(&run.failures, self.confidence) {
+            lines.item("Rate", &text)?;
         }
         if let Some(drawn) = &run.measured.drawn {
             lines.more(&format!(

@@ -10,8 +10,9 @@ use clap::{CommandFactory, Parser, Subcommand};
 use super::session::{print_problems, to_stdout};
 use super::shell::shell_line;
 use super::{
-    Answer, CharacteriseArguments, ChooseArguments, CompareArguments, EmitArguments, Failure, GlobalOptions,
-    LimitArguments, NetworkArguments, ProveArguments, ReplayArguments, Session, StudyArguments,
+    Answer, CharacteriseArguments, ChooseArguments, CompareArguments, EmitArguments, Failure,
+    GenerateArguments, GlobalOptions, LimitArguments, NetworkArguments, ProveArguments, ReplayArguments,
+    Session, StudyArguments,
 };
 use crate::problem::Problem;
 
@@ -41,6 +42,7 @@ enum Command {
     Compare(CompareArguments),
     Replay(ReplayArguments),
     Network(NetworkArguments),
+    Generate(GenerateArguments),
     Emit(EmitArguments),
 }
 
@@ -55,6 +57,7 @@ impl Command {
             Self::Compare(_) => "compare",
             Self::Replay(_) => "replay",
             Self::Network(_) => "network",
+            Self::Generate(_) => "generate",
             Self::Emit(_) => "emit",
         }
     }
@@ -69,6 +72,7 @@ impl Command {
             Self::Compare(arguments) => arguments.run(session),
             Self::Replay(arguments) => arguments.run(session),
             Self::Network(arguments) => arguments.run(session),
+            Self::Generate(arguments) => arguments.run(session),
             Self::Emit(arguments) => arguments.run(session),
         }
     }

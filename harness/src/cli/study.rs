@@ -66,6 +66,9 @@ impl StudyArguments {
         let study = Study::of(input.observed, &input.requirement, self.preference.into(), |_| bar.inc(1))
             .map_err(failure)?;
         bar.finish_and_clear();
+        for caution in study.cautions() {
+            session.warn(&caution.to_string());
+        }
         let html = wanted.then(|| {
             let origin = Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
             html::study(&study, input.demo, &origin)

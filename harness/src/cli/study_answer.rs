@@ -9,7 +9,7 @@ use serde_json::{Value, json};
 
 use super::choose::network;
 use super::lines::{Lines, grouped, strong};
-use super::recorded::{claims, recorded};
+use super::recorded::{claims, failures, recorded};
 use super::{Answer, Outcome};
 use crate::choose::{Candidate, Judgement};
 use crate::prove::Recovery;
@@ -37,7 +37,9 @@ impl Answer for StudyAnswer {
         for one in &study.observed {
             recorded(&mut lines, one)?;
         }
-        claims(&mut lines, &study.observed, &study.resolved)?;
+        if !study.observed.is_empty() {
+            claims(&mut lines, &study.claims)?;
+        }
         lines.item("Envelope", &format!("the contact {}", words::envelope(&study.physical).join("; ")))?;
         network(&mut lines, &study.resolved)?;
         match (study.ranking.recommended(), &study.guarantees) {
@@ -108,6 +110,10 @@ impl StudyAnswer {
                     words::at_most(break_.delay.below_ns),
                 ),
             )?;
+        }
+        if let Some(text) = self.study.failures().and_then(|all| failures(&all, self.study.claims.confidence))
+        {
+            lines.more(&text)?;
         }
         let ram = best.state_bytes;
         lines.item(

@@ -23,8 +23,15 @@ impl Dice {
     /// The stream number `stream` of the generator seeded with `seed`.
     #[must_use]
     pub fn new(seed: u64, stream: u64) -> Self {
+        Self::of(seed, 0, stream)
+    }
+
+    /// The stream number `stream` for one of several contacts that share a seed; contact 0 is [`Self::new`].
+    #[must_use]
+    pub fn of(seed: u64, contact: u64, stream: u64) -> Self {
         let mut key = [0; 32];
         key[..8].copy_from_slice(&seed.to_le_bytes());
+        key[8..16].copy_from_slice(&contact.to_le_bytes());
         let mut generator = ChaCha8Rng::from_seed(key);
         generator.set_stream(stream);
         Self(generator)

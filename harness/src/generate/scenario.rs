@@ -152,7 +152,7 @@ impl Making<'_> {
 }
 
 /// What a recorder with this sample period shows: each edge at its next sample, pairs within one sample lost.
-fn record(edges: Vec<u64>, resolution: u64) -> Vec<u64> {
+pub(super) fn record(edges: Vec<u64>, resolution: u64) -> Vec<u64> {
     let mut seen: Vec<u64> = Vec::with_capacity(edges.len());
     for edge in edges {
         let at = edge.next_multiple_of(resolution);

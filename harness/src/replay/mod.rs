@@ -17,6 +17,7 @@
 //! * At the end of the trace, what waits is missed if the law is settled where the line is, else undecided.
 
 mod clock;
+mod failures;
 mod feed;
 mod latency;
 #[cfg(test)]
@@ -30,6 +31,7 @@ mod prepared;
 mod tests;
 
 pub use clock::{ClockError, ClockMeasurement, Drawn, DrawnWorst, Draws, PreparedClock};
+pub use failures::Failures;
 pub use latency::{Delay, Latencies, LatencyShare, SampleLatency, Slowest};
 pub use measurement::{ChangeFigures, FalseEdges, FalsePlace, Measurement, UnreportedChange};
 pub use outcome::{FalseEdge, Outcome, PhaseSpan, Reported, Unreported};

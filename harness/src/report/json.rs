@@ -1,10 +1,9 @@
 //! Results as JSON values. Times are in nanoseconds, latencies in samples; the field names say so.
 
-use debounce_core::{Bounds, Change, Envelope, Latency, PerChange, PerPosition, Position};
+use debounce_core::{Bounds, Envelope, Latency, PerChange, PerPosition, Position};
 use serde_json::{Value, json};
 
-use super::words;
-use crate::characterise::Spread;
+use super::{characterised, words};
 use crate::choose::{Candidate, Evidence, Judgement, Ranking};
 use crate::clock_range::{Asleep, ClockRange, Curve, Span};
 use crate::conformance::Conformance;
@@ -21,10 +20,13 @@ pub fn study(study: &Study) -> Value {
     json!({
         "recordings": conforming.map(|(one, conforms)| recording(one, conforms)).collect::<Value>(),
         "requirement": requirement(&study.resolved),
+        "claims": characterised::claims(&study.claims),
+        "warnings": study.cautions().iter().map(ToString::to_string).collect::<Vec<_>>(),
         "envelope": physical(&study.physical),
         "envelope_in_words": words::envelope(&study.physical),
         "choice": ranking(&study.ranking),
         "proof": study.guarantees.as_ref().map(guarantees),
+        "failures": study.failures().and_then(|found| characterised::failures(&found, study.claims.confidence)),
         "caution": study.resolved.caution(),
     })
 }
@@ -52,50 +54,14 @@ pub fn recording(one: &Observed, conforms: &Conformance) -> Value {
 /// What a recording shows.
 #[must_use]
 pub fn observed(one: &Observed) -> Value {
-    let figures = &one.figures;
-    let change = |which: Change| {
-        let figures = figures.changes.of(which);
-        json!({
-            "count": figures.count,
-            "ambiguous": figures.ambiguous,
-            "bounce_ns": figures.bounce_ns.map(spread),
-            "edges": figures.edges.map(spread),
-            "longest_bounce_in_doubt_ns": figures.longest_bounce_in_doubt_ns,
-        })
-    };
-    let position = |which: Position| {
-        let disturbances = figures.disturbances.of(which);
-        let dwell = figures.dwell.of(which);
-        json!({
-            "disturbances": disturbances.count,
-            "ambiguous": disturbances.ambiguous,
-            "width_ns": disturbances.width_ns.map(spread),
-            "widest_in_doubt_ns": disturbances.widest_in_doubt_ns,
-            "shortest_dwell_ns": dwell.shortest_ns,
-            "shortest_dwell_in_doubt_ns": dwell.shortest_in_doubt_ns,
-        })
-    };
-    json!({
-        "name": one.name,
-        "channel": one.recording.channel,
-        "notes": one.recording.notes.iter().map(ToString::to_string).collect::<Vec<_>>(),
-        "from_ns": one.recording.trace.start_ns(),
-        "until_ns": one.recording.trace.end_ns(),
-        "resolution_ns": figures.resolution_ns,
-        "gap_ns": one.segmentation.gap.ns,
-        "make": change(Change::Make),
-        "break": change(Change::Break),
-        "open": position(Position::Open),
-        "closed": position(Position::Closed),
-        "disturbance_spacing_ns": figures.spacing_ns.map(spread),
-        "quiet_ns": figures.quiet_ns,
-        "calm_ns": figures.calm_ns,
-        "cut_off": figures.fragments,
-    })
-}
-
-fn spread(spread: Spread) -> Value {
-    json!({ "min": spread.min, "median": spread.median, "p95": spread.p95, "max": spread.max })
+    let mut value = characterised::figures(&one.figures);
+    value["name"] = json!(one.name);
+    value["channel"] = json!(one.recording.channel);
+    value["notes"] = one.recording.notes.iter().map(ToString::to_string).collect();
+    value["from_ns"] = json!(one.recording.trace.start_ns());
+    value["until_ns"] = json!(one.recording.trace.end_ns());
+    value["gap_ns"] = json!(one.segmentation.gap.ns);
+    value
 }
 
 /// Every value of a requirement with its origin.

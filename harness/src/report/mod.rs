@@ -1,6 +1,7 @@
 //! What a person sees of a result.
 
 pub mod apart;
+pub mod characterised;
 pub mod clock_plot;
 pub mod html;
 pub mod json;

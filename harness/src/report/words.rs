@@ -24,6 +24,12 @@ pub fn about(ns: u64) -> String {
     Time::from_ns(ns).to_string()
 }
 
+/// A time as it was recorded with a sample period: what is shorter than the period was not told from nothing.
+#[must_use]
+pub fn seen(ns: u64, resolution_ns: u64) -> String {
+    if ns < resolution_ns { format!("<{}", at_most(resolution_ns)) } else { about(ns) }
+}
+
 /// A place in a recording, to the microsecond, so that it can be found there.
 #[must_use]
 pub fn instant(ns: u64) -> String {
@@ -114,6 +120,31 @@ pub fn envelope(physical: &PhysicalEnvelope) -> Vec<String> {
         lines.push("is never disturbed".to_owned());
     }
     lines
+}
+
+/// A small chance, such as that of an odd order by accident; never understated.
+#[must_use]
+pub fn chance(chance: f64) -> String {
+    if chance < 0.001 {
+        "under 0.1 %".to_owned()
+    } else {
+        format!("{:.1} %", (chance * 1000.0).ceil() / 10.0)
+    }
+}
+
+/// A share that is claimed, rounded down to a tenth of a percent, which understates what is covered; to a ten-thousandth
+/// of a percent near 1, where a tenth would tell nothing.
+#[must_use]
+pub fn covered(share: f64) -> String {
+    let digits = if share > 0.999 { 1e6 } else { 1e3 };
+    format!("{} %", (share * digits).floor() * 100.0 / digits)
+}
+
+/// A rate that is bounded, rounded up.
+#[must_use]
+pub fn rate_at_most(rate: f64) -> String {
+    let digits = if rate < 0.001 { 1e6 } else { 1e3 };
+    format!("{} %", (rate * digits).ceil() * 100.0 / digits)
 }
 
 /// A count with its noun: "1 make", "2 makes".

@@ -59,11 +59,11 @@ mod network_options;
 mod network_resolve;
 mod options;
 mod pair;
-mod read;
+pub(crate) mod read;
 mod resolve;
-mod section;
+pub(crate) mod section;
 mod source;
-mod words;
+pub(crate) mod words;
 
 #[cfg(test)]
 mod tests;

@@ -25,25 +25,47 @@ const MOST_BYTES: u64 = 1 << 20;
 /// # Errors
 /// Everything that is wrong with it, each with its place and what to write instead.
 pub fn read(path: &Path) -> Result<Requirement, Problems> {
-    parse(SourceText::new(path, load(path)?))
+    parse(SourceText::new(path, load(path, &REQUIREMENT)?))
 }
 
-fn load(path: &Path) -> Result<String, Problem> {
+/// What the messages say about a file of one sort that cannot be read.
+pub(crate) struct FileSort {
+    /// What it is called: "requirement".
+    pub(crate) what: &'static str,
+    /// What to do where it is not there.
+    pub(crate) missing: &'static str,
+    /// What to do where it is far too large.
+    pub(crate) too_large: &'static str,
+    /// How such a file begins.
+    pub(crate) begins: &'static str,
+    /// The least to write in it.
+    pub(crate) least: &'static str,
+}
+
+const REQUIREMENT: FileSort = FileSort {
+    what: "requirement",
+    missing: "check the path; every value can be given as an option, too",
+    too_large: "recordings are given apart from it, under [[recording]] or as arguments",
+    begins: "a requirement file begins with [contact], recordings are given apart",
+    least: "write at least [required] with latency = \"20 ms\"",
+};
+
+/// The text of a file that is written by hand.
+pub(crate) fn load(path: &Path, sort: &FileSort) -> Result<String, Problem> {
+    let what = sort.what;
     let unreadable = |error: std::io::Error| {
         let help = match error.kind() {
-            std::io::ErrorKind::NotFound => "check the path; every value can be given as an option, too",
-            std::io::ErrorKind::IsADirectory => "give the requirement file in this folder",
-            _ => "make the file readable",
+            std::io::ErrorKind::NotFound => sort.missing.to_owned(),
+            std::io::ErrorKind::IsADirectory => format!("give the {what} file in this folder"),
+            _ => "make the file readable".to_owned(),
         };
-        Problem::new(format!("the requirement cannot be read: {}", plain_reason(&error)))
-            .in_file(path)
-            .help(help)
+        Problem::new(format!("the {what} cannot be read: {}", plain_reason(&error))).in_file(path).help(help)
     };
     let size = fs::metadata(path).map_err(unreadable)?.len();
     if size > MOST_BYTES {
-        return Err(Problem::new(format!("{size} bytes are too many for a requirement file"))
+        return Err(Problem::new(format!("{size} bytes are too many for a {what} file"))
             .in_file(path)
-            .help("recordings are given apart from it, under [[recording]] or as arguments"));
+            .help(sort.too_large));
     }
     let bytes = fs::read(path).map_err(unreadable)?;
     let text = String::from_utf8(bytes).map_err(|error| {
@@ -52,14 +74,12 @@ fn load(path: &Path) -> Result<String, Problem> {
         let line = before.iter().filter(|&&byte| byte == b'\n').count() + 1;
         let start = before.iter().rposition(|&byte| byte == b'\n').map_or(0, |newline| newline + 1);
         let column = String::from_utf8_lossy(&before[start..]).chars().count() + 1;
-        Problem::new("the requirement is not text in UTF-8").at(path, line, column).help(
-            "this looks like another sort of file; a requirement file begins with [contact], recordings are given apart",
-        )
+        Problem::new(format!("the {what} is not text in UTF-8"))
+            .at(path, line, column)
+            .help(format!("this looks like another sort of file; {}", sort.begins))
     })?;
     if text.trim().is_empty() {
-        return Err(Problem::new("the requirement file is empty")
-            .in_file(path)
-            .help("write at least [required] with latency = \"20 ms\""));
+        return Err(Problem::new(format!("the {what} file is empty")).in_file(path).help(sort.least));
     }
     Ok(text)
 }

@@ -17,36 +17,53 @@ use crate::problem::{Problem, SourceText};
 use crate::quantity::Quantity;
 
 /// A value of the file.
-pub(super) type Value<'t> = Spanned<DeValue<'t>>;
+pub(crate) type Value<'t> = Spanned<DeValue<'t>>;
 
 /// The file and what has been found wrong with it so far.
-pub(super) struct Reader {
-    pub(super) source: Arc<SourceText>,
-    pub(super) problems: Vec<Problem>,
+pub(crate) struct Reader {
+    pub(crate) source: Arc<SourceText>,
+    pub(crate) problems: Vec<Problem>,
 }
 
 /// One table of the file, and the keys that have been asked for.
-pub(super) struct Section<'t> {
+pub(crate) struct Section<'t> {
     /// How the table is written in messages: `[required]`.
     title: String,
     table: &'t DeTable<'t>,
     asked: Vec<&'static str>,
+    /// Those of them that may stand several times, with two brackets.
+    repeated: Vec<&'static str>,
 }
 
 impl<'t> Section<'t> {
-    pub(super) fn new(title: impl Into<String>, table: &'t DeTable<'t>) -> Self {
-        Self { title: title.into(), table, asked: Vec::new() }
+    pub(crate) fn new(title: impl Into<String>, table: &'t DeTable<'t>) -> Self {
+        Self { title: title.into(), table, asked: Vec::new(), repeated: Vec::new() }
+    }
+
+    /// Whether `key` stands in the table.
+    pub(crate) fn has(&self, key: &str) -> bool {
+        self.table.contains_key(key)
+    }
+
+    /// The value of `key`, which does not become a known key by that.
+    pub(crate) fn get(&self, key: &str) -> Option<&'t Value<'t>> {
+        self.table.get(key)
+    }
+
+    /// Where to point when something of the table is missing: at its first key, else at nothing.
+    pub(crate) fn span(&self) -> Range<usize> {
+        self.table.keys().map(Spanned::span).min_by_key(|span| span.start).unwrap_or_default()
     }
 
     /// The value of `key`, which becomes a known key.
-    pub(super) fn take(&mut self, key: &'static str) -> Option<&'t Value<'t>> {
+    pub(crate) fn take(&mut self, key: &'static str) -> Option<&'t Value<'t>> {
         self.asked.push(key);
         self.table.get(key)
     }
 }
 
 impl Reader {
-    pub(super) fn origin(&self, span: Range<usize>) -> Origin {
+    pub(crate) fn origin(&self, span: Range<usize>) -> Origin {
         Origin::Given { line: self.source.line_column(span.start).0, from: span.start, until: span.end }
     }
 
@@ -54,7 +71,7 @@ impl Reader {
         Sourced::new(value, self.origin(span))
     }
 
-    pub(super) fn problem(
+    pub(crate) fn problem(
         &mut self,
         span: Range<usize>,
         message: impl Into<String>,
@@ -64,12 +81,12 @@ impl Reader {
     }
 
     /// How the value is written in the file.
-    fn raw(&self, span: Range<usize>) -> &str {
+    pub(crate) fn raw(&self, span: Range<usize>) -> &str {
         self.source.text().get(span).unwrap_or_default()
     }
 
     /// The table behind `key`.
-    pub(super) fn section<'t>(&mut self, parent: &mut Section<'t>, key: &'static str) -> Option<Section<'t>> {
+    pub(crate) fn section<'t>(&mut self, parent: &mut Section<'t>, key: &'static str) -> Option<Section<'t>> {
         let value = parent.take(key)?;
         match value.get_ref() {
             DeValue::Table(table) => Some(Section::new(format!("[{key}]"), table)),
@@ -82,7 +99,8 @@ impl Reader {
     }
 
     /// The tables behind `[[key]]`.
-    pub(super) fn sections<'t>(&mut self, parent: &mut Section<'t>, key: &'static str) -> Vec<Section<'t>> {
+    pub(crate) fn sections<'t>(&mut self, parent: &mut Section<'t>, key: &'static str) -> Vec<Section<'t>> {
+        parent.repeated.push(key);
         let Some(value) = parent.take(key) else { return Vec::new() };
         let tables: Option<Vec<_>> = match value.get_ref() {
             DeValue::Array(items) => items.iter().map(|item| item.get_ref().as_table()).collect(),
@@ -101,7 +119,7 @@ impl Reader {
     }
 
     /// A text that is not empty.
-    pub(super) fn text(
+    pub(crate) fn text(
         &mut self,
         section: &mut Section<'_>,
         key: &'static str,
@@ -119,7 +137,7 @@ impl Reader {
     }
 
     /// One word of a list.
-    pub(super) fn word<W: Word>(
+    pub(crate) fn word<W: Word>(
         &mut self,
         section: &mut Section<'_>,
         key: &'static str,
@@ -166,7 +184,7 @@ impl Reader {
     }
 
     /// A quantity with its unit.
-    pub(super) fn quantity<T: Quantity>(
+    pub(crate) fn quantity<T: Quantity>(
         &mut self,
         section: &mut Section<'_>,
         key: &'static str,
@@ -175,7 +193,7 @@ impl Reader {
         self.quantity_of(value)
     }
 
-    pub(super) fn quantity_of<T: Quantity>(&mut self, value: &Value<'_>) -> Option<Sourced<T>> {
+    pub(crate) fn quantity_of<T: Quantity>(&mut self, value: &Value<'_>) -> Option<Sourced<T>> {
         let span = value.span();
         let text = match value.get_ref() {
             DeValue::String(text) => text.to_string(),
@@ -197,7 +215,7 @@ impl Reader {
     }
 
     /// A quantity for two cases: one for both, or a table of either.
-    pub(super) fn pair<T: Quantity>(
+    pub(crate) fn pair<T: Quantity>(
         &mut self,
         section: &mut Section<'_>,
         key: &'static str,
@@ -219,7 +237,7 @@ impl Reader {
     }
 
     /// Notes every key of the table that nobody asked for.
-    pub(super) fn finish(&mut self, section: Section<'_>) {
+    pub(crate) fn finish(&mut self, section: Section<'_>) {
         for (key, _) in section.table {
             let name = key.get_ref().as_ref();
             if section.asked.contains(&name) {
@@ -227,7 +245,7 @@ impl Reader {
             }
             let place = if section.title.is_empty() { "the file" } else { &section.title };
             let help = match nearest(name, section.asked.iter().copied()) {
-                Some("recording") if section.title.is_empty() => "write [[recording]]".to_owned(),
+                Some(known) if section.repeated.contains(&known) => format!("write [[{known}]]"),
                 // What stands at the top of the file is a section.
                 Some(known) if section.title.is_empty() => format!("write [{known}]"),
                 Some(known) => format!("write {known}"),
@@ -243,7 +261,7 @@ impl Reader {
 }
 
 /// What a value is, for a message that says what it is not.
-fn describe(value: &DeValue<'_>) -> &'static str {
+pub(crate) fn describe(value: &DeValue<'_>) -> &'static str {
     match value {
         DeValue::String(_) => "a text",
         DeValue::Integer(_) | DeValue::Float(_) => "a number",

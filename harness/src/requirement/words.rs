@@ -17,7 +17,7 @@ pub trait Word: Copy + PartialEq + Sized + 'static {
 }
 
 /// The value written as `text`, or what to say about it.
-pub(super) fn parse_word<W: Word>(text: &str) -> Result<W, WordError> {
+pub(crate) fn parse_word<W: Word>(text: &str) -> Result<W, WordError> {
     W::ALL.iter().copied().find(|value| value.word() == text).ok_or_else(|| {
         let words = || W::ALL.iter().map(|value| value.word());
         let listed = words().map(|word| format!("\"{word}\"")).collect::<Vec<_>>();
@@ -30,7 +30,7 @@ pub(super) fn parse_word<W: Word>(text: &str) -> Result<W, WordError> {
 }
 
 /// "a, b or c".
-pub(super) fn either(items: &[String]) -> String {
+pub(crate) fn either(items: &[String]) -> String {
     match items {
         [all @ .., last] if !all.is_empty() => format!("{} or {last}", all.join(", ")),
         _ => items.concat(),

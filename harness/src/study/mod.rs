@@ -4,11 +4,14 @@
 //! requirement, chooses, proves the choice by exploration, and checks that the recordings lie inside the envelope
 //! the proof speaks of.
 
+mod caution;
+mod claims;
 mod observed;
 mod proof;
 
 use debounce_core::PerChange;
 
+use crate::characterise::tolerance::ToleranceError;
 use crate::choose::{Candidate, Evidence, Judgement, Preference, Question, Ranking, choose};
 use crate::conformance::{self, Conformance};
 use crate::emit::{Configuration, Proof as Proved};
@@ -17,11 +20,13 @@ use crate::law_text::LawParameters;
 use crate::problem::Problems;
 use crate::prove::{Limits, ProveError};
 use crate::quantity::TickPeriod;
-use crate::replay::PrepareError;
+use crate::replay::{Failures, PrepareError};
 use crate::requirement::{Requirement, Resolved};
 use crate::trace::{Trace, TraceError};
 
-pub use observed::{Claim, Observed, measured, observe};
+pub use caution::Caution;
+pub use claims::{Claims, DesignBounce};
+pub use observed::{Observed, measured, observe, pooled};
 pub use proof::Guarantees;
 
 /// Why a study could not be finished.
@@ -37,6 +42,9 @@ pub enum StudyError {
         /// Why the first of them does not.
         reason: String,
     },
+    /// The confidence or the coverage is no share.
+    #[error(transparent)]
+    Claim(#[from] ToleranceError),
     /// A recording cannot be replayed.
     #[error(transparent)]
     Replay(#[from] PrepareError),
@@ -55,6 +63,8 @@ pub struct Study {
     pub observed: Vec<Observed>,
     /// The requirement with everything filled in.
     pub resolved: Resolved,
+    /// What the recordings allow to claim, and which claim the envelope stands on.
+    pub claims: Claims,
     /// The waveforms that everything is claimed for.
     pub physical: PhysicalEnvelope,
     /// Whether the recordings lie inside; one for each.
@@ -91,6 +101,7 @@ impl Study {
         progress: impl Fn(usize) + Sync,
     ) -> Result<Self, StudyError> {
         let resolved = requirement.resolve(&measured(&observed)).map_err(StudyError::Requirement)?;
+        let claims = Claims::of(&observed, &resolved)?;
         let physical = resolved.physical();
         // A recording is one of the contact; with a network the pin shows something else.
         let contact = resolved.at_contact();
@@ -108,13 +119,28 @@ impl Study {
             Some(candidate) => Some(Guarantees::of(candidate, ranking.view(candidate))?),
             None => None,
         };
-        Ok(Self { observed, resolved, physical, conformance, ranking, guarantees })
+        Ok(Self { observed, resolved, claims, physical, conformance, ranking, guarantees })
     }
 
     /// Whether there is a recommendation and every recording lies inside the envelope it is proved for.
     #[must_use]
     pub fn holds(&self) -> bool {
         self.guarantees.is_some() && self.conformance.iter().all(Conformance::conforms)
+    }
+
+    /// What a person should know before leaning on the recordings.
+    #[must_use]
+    pub fn cautions(&self) -> Vec<Caution> {
+        Caution::all(&self.observed, &self.resolved, &self.claims)
+    }
+
+    /// How often the recommended candidate failed on all recordings together; `None` when none holds, or there is
+    /// no recording.
+    #[must_use]
+    pub fn failures(&self) -> Option<Failures> {
+        let candidate = self.ranking.recommended()?;
+        let each = self.observed.iter().zip(&candidate.measured);
+        each.map(|(one, measured)| Failures::of(measured, &one.truth)).reduce(Failures::with)
     }
 
     /// The tick period of a candidate.

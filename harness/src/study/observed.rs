@@ -2,9 +2,9 @@
 
 use debounce_core::{Change, PerChange, PerPosition, Position};
 
-use crate::characterise::{Figures, SegmentError, SegmentOptions, Segmentation, segment, tolerance};
-use crate::quantity::{Share, Time};
-use crate::requirement::Measured;
+use crate::characterise::{Figures, SegmentError, SegmentOptions, Segmentation, segment};
+use crate::quantity::Time;
+use crate::requirement::{Level, Measured};
 use crate::trace::Recording;
 use crate::truth::TruthChange;
 
@@ -21,6 +21,8 @@ pub struct Observed {
     pub figures: Figures,
     /// What the contact did, by the segmentation.
     pub truth: Vec<TruthChange>,
+    /// The level at which the contact was declared to be closed, where that was said of this recording.
+    pub closed: Option<Level>,
 }
 
 /// Reads a recording as operations.
@@ -35,7 +37,13 @@ pub fn observe(
     let segmentation = segment(&recording.trace, options)?;
     let figures = Figures::of(&segmentation);
     let truth = segmentation.truth();
-    Ok(Observed { name: name.into(), recording, segmentation, figures, truth })
+    Ok(Observed { name: name.into(), recording, segmentation, figures, truth, closed: None })
+}
+
+/// The figures of all recordings together, as if they were one.
+#[must_use]
+pub fn pooled(observed: &[Observed]) -> Figures {
+    Figures::pooled(&observed.iter().map(|one| &one.segmentation).collect::<Vec<_>>())
 }
 
 /// What all recordings together show, each figure on the safe side.
@@ -61,44 +69,5 @@ pub fn measured(observed: &[Observed]) -> Measured {
         disturbance: PerPosition { open: widest(Position::Open), closed: widest(Position::Closed) },
         quiet: quiet.map(Time::from_ns),
         shortest: PerPosition { open: shortest(Position::Open), closed: shortest(Position::Closed) },
-    }
-}
-
-/// What may be claimed of the longest bounce seen in n operations, were they independent (Wilks).
-#[derive(Clone, Copy, PartialEq, Debug)]
-pub struct Claim {
-    /// Operations recorded whole.
-    pub operations: u64,
-    /// The longest bounce among them.
-    pub longest_ns: u64,
-    /// With the wanted confidence, at least this share of all operations bounces no longer.
-    pub covered: f64,
-    /// Operations that would be needed for the wanted coverage.
-    pub needed: u64,
-}
-
-impl Claim {
-    /// The claim for one kind of change over all recordings; `None` where there is no such operation.
-    ///
-    /// # Errors
-    /// When confidence or coverage is not between 0 and 1.
-    pub fn of(
-        observed: &[Observed],
-        change: Change,
-        confidence: Share,
-        coverage: Share,
-    ) -> Result<Option<Self>, tolerance::ToleranceError> {
-        let bounces = observed.iter().flat_map(|one| &one.figures.changes.of(change).sorted_bounces_ns);
-        let (count, longest) =
-            bounces.fold((0, None), |(count, longest), &ns| (count + 1, longest.max(Some(ns))));
-        let Some(longest_ns) = longest else { return Ok(None) };
-        let confidence = tolerance::Share::try_new(confidence.fraction())?;
-        let coverage = tolerance::Share::try_new(coverage.fraction())?;
-        Ok(Some(Self {
-            operations: count,
-            longest_ns,
-            covered: tolerance::coverage(count, 1, confidence)?,
-            needed: tolerance::operations_needed(1, coverage, confidence)?,
-        }))
     }
 }

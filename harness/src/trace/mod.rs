@@ -15,6 +15,7 @@ mod options;
 #[cfg(test)]
 mod oracle_tests;
 mod polarity;
+mod range;
 mod recorder;
 mod recording;
 #[cfg(test)]

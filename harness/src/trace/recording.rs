@@ -61,6 +61,11 @@ pub enum Note {
     },
     /// The recorder was full: what the line did later is not in the recording.
     RecorderStopped,
+    /// Voltages were marked as beyond the recorder's range; they count as beyond the threshold on their side.
+    Clipped {
+        /// How many readings.
+        readings: u64,
+    },
     /// Lines before the data were left out.
     PreambleSkipped {
         /// How many lines.
@@ -110,6 +115,10 @@ impl fmt::Display for Note {
             Self::RecorderStopped => {
                 f.write_str("the recorder was full and stopped; what the line did later is not here")
             }
+            Self::Clipped { readings } => write!(
+                f,
+                "{readings} readings are beyond the recorder's range; they count as beyond the threshold on their side"
+            ),
             Self::PreambleSkipped { lines } => write!(f, "{lines} lines before the data were skipped"),
         }
     }

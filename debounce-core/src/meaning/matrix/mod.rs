@@ -64,6 +64,7 @@ pub struct MatrixReport<W, const R: usize> {
 ///
 /// # State
 /// `2 K + 2` bits a key; checked by a `const` assertion below the type.
+/// What a tick costs stands in the [table of costs](crate#cost).
 ///
 /// # Panics
 /// Never. `K` outside 1 to 16 does not compile.

@@ -22,30 +22,56 @@ struct feed {
 };
 
 /* The place of the next sample, none at the end; the same instructions as on the Rust side. */
+#ifdef __riscv
+#define NEXT_INSTRUCTIONS(size)    \
+    "csrr %1, minstret\n"          \
+    "lw %0, 4(%2)\n"               \
+    "sw %1, 0(%0)\n"               \
+    "addi %0, %0, 4\n"             \
+    "sw %0, 4(%2)\n"               \
+    "lw %0, 0(%2)\n"               \
+    "addi %0, %0, " size "\n"      \
+    "sw %0, 0(%2)\n"               \
+    "lw %1, 12(%2)\n"              \
+    "sub %1, %1, %0\n"             \
+    "snez %1, %1\n"                \
+    "neg %1, %1\n"                 \
+    "and %0, %0, %1\n"             \
+    "addi %1, %1, 1\n"             \
+    "or %0, %0, %1\n"
+#define ANY_REGISTER "r"
+#define CHANGED "memory"
+#else
+#define NEXT_INSTRUCTIONS(size)    \
+    ".syntax unified\n"            \
+    "ldr %1, [%2, #8]\n"           \
+    "ldr %1, [%1]\n"               \
+    "ldr %0, [%2, #4]\n"           \
+    "str %1, [%0]\n"               \
+    "adds %0, #4\n"                \
+    "str %0, [%2, #4]\n"           \
+    "ldr %0, [%2]\n"               \
+    "adds %0, #" size "\n"         \
+    "str %0, [%2]\n"               \
+    "ldr %1, [%2, #12]\n"          \
+    "subs %1, %1, %0\n"            \
+    "subs %1, #1\n"                \
+    "sbcs %1, %1\n"                \
+    "bics %0, %1\n"                \
+    "subs %0, %0, %1\n"
+#define ANY_REGISTER "l"
+#define CHANGED "memory", "cc"
+#endif
+
 #define NEXT(name, sample_type, size)                                                      \
     static inline const sample_type *name(struct feed *feed)                               \
     {                                                                                      \
         const sample_type *place;                                                          \
         uint32_t more;                                                                     \
-        __asm__ volatile(".syntax unified\n"                                               \
-                         "ldr %1, [%2, #8]\n"                                              \
-                         "ldr %1, [%1]\n"                                                  \
-                         "ldr %0, [%2, #4]\n"                                              \
-                         "str %1, [%0]\n"                                                  \
-                         "adds %0, #4\n"                                                   \
-                         "str %0, [%2, #4]\n"                                              \
-                         "ldr %0, [%2]\n"                                                  \
-                         "adds %0, #" size "\n"                                            \
-                         "str %0, [%2]\n"                                                  \
-                         "ldr %1, [%2, #12]\n"                                             \
-                         "subs %1, %1, %0\n"                                               \
-                         "subs %1, #1\n"                                                   \
-                         "sbcs %1, %1\n"                                                   \
-                         "bics %0, %1\n"                                                   \
-                         "subs %0, %0, %1\n"                                               \
-                         : "=&l"(place), "=&l"(more)                                       \
-                         : "l"(feed)                                                       \
-                         : "memory", "cc");                                                \
+        __asm__ volatile(NEXT_INSTRUCTIONS(size)                                           \
+                         : "=&" ANY_REGISTER(place), "=&" ANY_REGISTER(more)               \
+                         : ANY_REGISTER(feed)                                              \
+                         : CHANGED);                                                       \
         return place;                                                                      \
     }
 

@@ -1,8 +1,8 @@
 //! Everything that is measured.
 
 use debounce_core::{
-    Bank, BankState, Change, Config, ConstLaw, EdgeRule, Integrator, Law, Machine, MajorityRegister,
-    PatientBank, PatientState, Position, ShiftRegister, StateMachine, StateMachineParameters,
+    Bank, BankState, Chain, Change, Config, ConstLaw, EdgeRule, Integrator, Law, Machine, MajorityRegister,
+    PatientBank, PatientState, Position, ShiftRegister, StateMachine, StateMachineParameters, TableLaw,
 };
 use rig::Counter;
 
@@ -60,8 +60,8 @@ macro_rules! laws {
 
     fn laws(counter: &Counter) {$(
         let start = ConstLaw::<$name::Parameters>::new().rest(Position::Open);
-        measure::<Position, _>(counter, format_args!("{} rust inlined", stringify!($name)), start, $name::inlined);
-        measure::<Position, _>(counter, format_args!("{} rust called", stringify!($name)), start, $name::called);
+        measure::<Position, _>(counter, format_args!("{} rust inlined", stringify!($name)), || start, $name::inlined);
+        measure::<Position, _>(counter, format_args!("{} rust called", stringify!($name)), || start, $name::called);
     )*}};
 }
 
@@ -72,7 +72,15 @@ laws! {
     state_machine: StateMachine = StateMachine::<u8>::new(StateMachineParameters::confirm(16, 16));
     patient_state_machine: StateMachine =
         StateMachine::<u8>::new(StateMachineParameters::confirm(3, 3).patience(3, 3).lockout(4, 4));
+    chain: Chain<MajorityRegister, StateMachine> = Chain::new(
+        MajorityRegister::<u8>::new(2, 3),
+        StateMachine::<u8>::new(StateMachineParameters::confirm(3, 3)),
+    );
+    table: TableLaw<'static> = TableLaw::new(&ROWS, 2, [0, 2]);
 }
+
+/// A logic of three states as a table: two closed samples in a row make, one open sample breaks.
+static ROWS: [[u8; 2]; 3] = [[0, 1], [0, 2], [0, 2]];
 
 /// A bank of 32 inputs: stepped only, its output being in its state; and the lanes that changed looked at.
 macro_rules! banks {
@@ -120,9 +128,9 @@ macro_rules! banks {
 
             pub(super) fn measured(counter: &Counter) {
                 let (name, start) = (stringify!($name), BANK.all_open());
-                measure::<u32, _>(counter, format_args!("{name} rust inlined"), start, inlined);
-                measure::<u32, _>(counter, format_args!("{name} rust looked-at"), start, looked_at);
-                measure::<u32, _>(counter, format_args!("{name} rust called"), start, called);
+                measure::<u32, _>(counter, format_args!("{name} rust inlined"), || start, inlined);
+                measure::<u32, _>(counter, format_args!("{name} rust looked-at"), || start, looked_at);
+                measure::<u32, _>(counter, format_args!("{name} rust called"), || start, called);
             }
         }
     )*
@@ -152,8 +160,8 @@ macro_rules! plain_c {
         )*}
 
         fn plain_c(counter: &Counter) {$(
-            measure::<$sample, _>(counter, format_args!("{} c inlined", stringify!($name)), <$state>::default(), $inlined);
-            measure::<$sample, _>(counter, format_args!("{} c called", stringify!($name)), <$state>::default(), $called);
+            measure::<$sample, _>(counter, format_args!("{} c inlined", stringify!($name)), <$state>::default, $inlined);
+            measure::<$sample, _>(counter, format_args!("{} c called", stringify!($name)), <$state>::default, $called);
         )*}
     };
 }

@@ -7,7 +7,9 @@
 
 mod contenders;
 mod input;
+mod machines;
 mod measure;
+mod section;
 
 use rig::{Counter, say};
 
@@ -19,4 +21,5 @@ fn main() {
     let counter = Counter::new();
     say!("ticks {TICKS}");
     contenders::all(&counter);
+    machines::all(&counter);
 }

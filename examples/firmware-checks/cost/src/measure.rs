@@ -42,6 +42,13 @@ pub(crate) extern "C" fn report_lanes(make: u32, break_: u32) {
     unsafe { asm!("/* {0} {1} */", in(reg) make, in(reg) break_, options(nomem, nostack, preserves_flags)) };
 }
 
+/// The same for anything else that a step says.
+#[inline(never)]
+pub(crate) extern "C" fn look_at(said: *const ()) {
+    // SAFETY: nothing is done; the compiler must believe that it is read.
+    unsafe { asm!("/* {0} */", in(reg) said, options(readonly, nostack, preserves_flags)) };
+}
+
 #[inline(always)]
 pub(crate) fn report(change: Change) {
     cost_report(change as i32);
@@ -116,18 +123,18 @@ static mut SAMPLES: [u32; SAMPLES_OF_A_CHUNK] = [0; SAMPLES_OF_A_CHUNK];
 // One more than samples: the time at the end.
 static mut NOTES: [u32; SAMPLES_OF_A_CHUNK + 1] = [0; SAMPLES_OF_A_CHUNK + 1];
 
-/// Measures `run` from the state `start` and prints the row that begins with `name`.
-pub(crate) fn measure<T: Sample, S: Copy>(
+/// Measures `run` from the state that `start` gives and prints the row that begins with `name`.
+pub(crate) fn measure<T: Sample, S>(
     counter: &Counter,
     name: fmt::Arguments<'_>,
-    start: S,
+    start: impl Fn() -> S,
     run: Loop<S>,
 ) {
     const { assert!(align_of::<T>() <= align_of::<u32>() && size_of::<T>() <= size_of::<u32>()) };
     let mut row = Row { text: [0; 200], length: 0 };
     let _ = write!(row, "{name}: state {} bytes", size_of::<S>());
     for kind in Kind::ALL {
-        let (mut source, mut state) = (Source::new(kind), start);
+        let (mut source, mut state) = (Source::new(kind), start());
         let (mut total, mut worst) = (0, 0);
         for _ in 0..CHUNKS {
             let samples: *mut T = (&raw mut SAMPLES).cast();

@@ -146,7 +146,7 @@ fn banks<W: Word + From<u8>>() {
     keep(&(bank.closed(&state), bank.is_settled(&state, port()), state.counting()));
     port_law(&bank, port);
     let rule = EdgeRule::try_new(any_u16(), any_u16(), any_u16());
-    if let Some(bank) = rule.and_then(|rule| PatientBank::<W, 2, 2, 3>::try_new(port(), rule, rule)) {
+    if let Ok(bank) = rule.and_then(|rule| PatientBank::<W, 2, 2, 3>::try_new(port(), rule, rule)) {
         let state: PatientState<W, 2, 2, 3> = bank.rest(port());
         keep(&(bank.closed(&state), bank.is_settled(&state, port()), state.counting()));
         port_law(&bank, port);

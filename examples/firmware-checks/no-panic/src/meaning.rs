@@ -99,7 +99,7 @@ fn encoder() {
         2 => Some(QuadratureEvent::Lost),
         _ => None,
     };
-    if let Some(speed) = Speed::try_new(any_u16()) {
+    if let Ok(speed) = Speed::try_new(any_u16()) {
         let state: SpeedState = Speed::POWER_UP;
         keep(&speed.per_second(any_u16() as i16, any_u16().into()));
         drive(&speed, state, event);

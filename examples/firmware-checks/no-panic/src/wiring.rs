@@ -186,7 +186,7 @@ fn mailbox() {
 }
 
 fn wear() {
-    if let Some(bursts) = Bursts::try_new(any_u16()) {
+    if let Ok(bursts) = Bursts::try_new(any_u16()) {
         let mut state: BurstsState = Bursts::POWER_UP;
         let mut wear = Wear::NEW;
         let burst: Option<Burst> = bursts.step(&mut state, position());
@@ -201,7 +201,7 @@ fn wear() {
 fn health() {
     let mut tally = Tally::NEW;
     let envelope = Envelope::clean(any(), any()).bounce(any(), any()).glitch(any(), any());
-    if let Some(monitor) = Monitor::try_new(&envelope.quiet(any()).calm(any()).lost(any())) {
+    if let Ok(monitor) = Monitor::try_new(&envelope.quiet(any()).calm(any()).lost(any())) {
         let monitor = monitor.stuck_after(any(), any());
         let mut state: MonitorState = monitor.power_up();
         let outside: Option<Outside> = monitor.step(&mut state, position());

@@ -1,8 +1,9 @@
-//! The samples: random ones, contact-like ones, and the recording.
+//! The samples: random ones, contact-like ones, the recording, and the prover's waveforms.
 
 use debounce_core::Position;
 
 use crate::recording::Recording;
+use crate::witnesses::Row;
 
 /// Marsaglia's xorshift of 32 bits ("Xorshift RNGs", 2003).
 #[derive(Clone)]
@@ -30,6 +31,8 @@ pub(crate) enum Line {
     Contact { dice: Dice, held: Position, left: u32 },
     /// The demo recording.
     Recorded(Recording),
+    /// What the prover found.
+    Proved(Row),
 }
 
 impl Line {
@@ -45,6 +48,7 @@ impl Line {
                 if *left >= 40 && dice.roll() >> 30 == 0 { held.opposite() } else { *held }
             }
             Self::Recorded(recording) => recording.sample(),
+            Self::Proved(row) => row.sample(),
         }
     }
 

@@ -8,6 +8,7 @@ mod digest;
 mod inputs;
 mod machines;
 mod recording;
+mod witnesses;
 
 use core::fmt;
 

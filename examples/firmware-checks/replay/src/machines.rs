@@ -14,17 +14,20 @@ use debounce_core::{
 use crate::digest::Digest;
 use crate::inputs::{Dice, Line};
 use crate::recording::Recording;
+use crate::witnesses::{self, Row};
 
 /// Samples of a law and an input.
-const SAMPLES: u32 = 150_000;
+const SAMPLES: u32 = 100_000;
 /// Samples of any other machine.
-const FEWER: u32 = 100_000;
+const FEWER: u32 = 60_000;
 
 struct Replay<'a> {
     say: &'a mut dyn FnMut(fmt::Arguments<'_>),
     /// What the line does at present.
     kind: &'static str,
     samples: u64,
+    /// Samples of the prover's waveforms, each through the law it was found for.
+    proved: u64,
 }
 
 impl Replay<'_> {
@@ -52,6 +55,11 @@ impl Replay<'_> {
             let starting = Starting::new(&law);
             self.run("the same, started", &starting, starting.power_up(), FEWER, || line.sample());
         }
+        let (samples, digest) = witnesses::replayed(name, &law);
+        if samples > 0 {
+            self.proved += samples;
+            (self.say)(format_args!("{name}, as proved over {samples} samples: {digest:016x}"));
+        }
     }
 
     fn line<M: Machine<Input = Position, State: Hash, Output: Hash>>(
@@ -67,12 +75,13 @@ impl Replay<'_> {
     }
 }
 
-fn lines() -> [(Line, &'static str); 4] {
+fn lines() -> [(Line, &'static str); 5] {
     [
         (Line::Random(Dice::new()), "random"),
         (Line::Contact { dice: Dice::new(), held: Position::Open, left: 0 }, "contact"),
         (Line::Recorded(Recording::sampled(1_000)), "recorded, every ms"),
         (Line::Recorded(Recording::sampled(50)), "recorded, every 50 us"),
+        (Line::Proved(Row::new()), "waveforms of the prover"),
     ]
 }
 
@@ -80,8 +89,9 @@ fn lines() -> [(Line, &'static str); 4] {
 static ROWS: [[u8; 2]; 3] = [[0, 1], [0, 2], [0, 2]];
 
 pub(crate) fn all(say: &mut dyn FnMut(fmt::Arguments<'_>)) -> u64 {
-    let mut replay = Replay { say, kind: "", samples: 0 };
+    let mut replay = Replay { say, kind: "", samples: 0, proved: 0 };
     laws(&mut replay);
+    assert_eq!(replay.proved, witnesses::samples(), "a waveform names a law that is not replayed");
     banks(&mut replay);
     meaning(&mut replay);
     replay.samples

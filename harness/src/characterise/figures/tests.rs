@@ -25,9 +25,9 @@ fn figures_of_plain_operations_are_exact() {
     let found = figures(&PLAIN, 0);
     assert_eq!((found.changes.make.count, found.changes.break_.count), (3, 3));
     assert_eq!(found.changes.make.sorted_bounces_ns, [0, 100 * US, 300 * US]);
-    let spread = Spread { min: 0, median: 100 * US, p95: 280 * US, max: 300 * US };
+    let spread = Spread { min: 0, median: 100 * US, p95: 280 * US, p99: 296 * US, max: 300 * US };
     assert_eq!(found.changes.make.bounce_ns, Some(spread));
-    assert_eq!(found.changes.break_.edges, Some(Spread { min: 1, median: 1, p95: 3, max: 3 }));
+    assert_eq!(found.changes.break_.edges, Some(Spread { min: 1, median: 1, p95: 3, p99: 3, max: 3 }));
     assert_eq!(found.disturbances.open.width_ns.map(|w| w.max), Some(40 * US));
     assert_eq!(found.disturbances.closed.width_ns.map(|w| w.max), Some(70 * US));
     assert_eq!(found.quiet_ns, Some(900_000 * US - 400_040 * US));

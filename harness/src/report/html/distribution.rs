@@ -5,10 +5,10 @@ use maud::{Markup, html};
 
 use super::bounce::{Limit, marked};
 use super::{Cell, Figure, Section, table};
-use crate::characterise::quantile_type_7;
+use crate::characterise::{Claim, quantile_type_7};
 use crate::report::plot::{Axis, Plane, Scale, linear_ticks, px};
 use crate::report::words;
-use crate::study::{Claim, Observed};
+use crate::study::Observed;
 
 const PLANE: Plane =
     Plane { width: 480.0, height: 430.0, left: 46.0, right: 468.0, top: 86.0, bottom: 386.0 };

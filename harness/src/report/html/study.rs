@@ -10,7 +10,7 @@ use super::{
 };
 use crate::choose::Candidate;
 use crate::machine::MachineTable;
-use crate::study::{Claim, Guarantees, Observed, Study};
+use crate::study::{Guarantees, Observed, Study};
 use crate::trace::Trace;
 
 /// The report of a study.
@@ -30,7 +30,7 @@ pub fn study(study: &Study, invented: bool, origin: &Origin) -> String {
     sections.extend(conformance::section(study));
     sections.extend(bounce::section(&study.observed, |change| limits(study, change)));
     let confidence = study.resolved.confidence.value.to_string();
-    let claim = |change| claim(study, change);
+    let claim = |change| study.claims.bounce.at(change);
     sections.extend(distribution::section(
         &study.observed,
         claim,
@@ -93,14 +93,9 @@ fn worst(found: &Guarantees) -> Section {
     section
 }
 
-fn claim(study: &Study, change: Change) -> Option<Claim> {
-    let (confidence, coverage) = (study.resolved.confidence.value, study.resolved.coverage.value);
-    Claim::of(&study.observed, change, confidence, coverage).ok().flatten()
-}
-
 /// What is claimed of the bounce, and what the envelope allows.
 fn limits(study: &Study, change: Change) -> Vec<Limit> {
-    let claimed = claim(study, change).map(|claim| Limit {
+    let claimed = study.claims.bounce.at(change).map(|claim| Limit {
         name: "claimed",
         at_ns: claim.longest_ns,
         class: "claimed",

@@ -10,7 +10,8 @@ use super::line::{Lines, is_skipped, split};
 use super::number::{self, PER_NS, Yoctoseconds};
 use crate::raw_input::quoted;
 use crate::trace::builder::{Reading, TraceBuilder};
-use crate::trace::error::{Faults, Lack, Place};
+use crate::trace::error::{Faults, Place};
+use crate::trace::range::{VoltRange, propose};
 use crate::trace::{Note, ReadOptions, Recording, Thresholds, TimeUnit};
 
 /// A column that is followed.
@@ -23,10 +24,9 @@ struct Lane {
     is_volts: bool,
     builder: TraceBuilder,
     before: Option<Reading>,
-    /// Where the first number stands that is no level, and the least and the greatest number of the column.
+    /// Where the first number stands that is no level, and the range of the column.
     first_number: Option<Place>,
-    least: f64,
-    greatest: f64,
+    range: VoltRange,
 }
 
 /// The state of reading rows.
@@ -69,8 +69,7 @@ impl<'a> Rows<'a> {
                 builder: TraceBuilder::new(options.unknown),
                 before: None,
                 first_number: None,
-                least: f64::INFINITY,
-                greatest: f64::NEG_INFINITY,
+                range: VoltRange::default(),
             }
         };
         Self {
@@ -225,24 +224,21 @@ impl<'a> Rows<'a> {
             if lane.lacks_thresholds(self.options.thresholds, faults) {
                 continue;
             }
-            let (least, greatest) = (lane.least, lane.greatest);
-            match (lane.builder.finish(end_ns, resolution_ns), self.options.thresholds) {
-                (Some((trace, mut notes)), _) => {
-                    notes.extend([shift, assumed, preamble, rounded].into_iter().flatten());
+            // What is wrong with each cell stands in the list already.
+            if let Some(pair) = self.options.thresholds
+                && (!faults.is_empty() || lane.range.misses(&lane.name, pair, faults))
+            {
+                continue;
+            }
+            let clipped = Some(lane.range.clipped()).filter(|&readings| readings > 0);
+            let clipped = clipped.map(|readings| Note::Clipped { readings });
+            match lane.builder.finish(end_ns, resolution_ns) {
+                Some((trace, mut notes)) => {
+                    notes.extend([shift, assumed, preamble, rounded, clipped].into_iter().flatten());
                     recordings.push(Recording { channel: lane.name, trace, notes });
                 }
-                // What is wrong with each cell stands in the list already.
-                (None, _) if !faults.is_empty() => {}
-                (None, Some(pair)) => {
-                    faults.whole_file(format!(
-                        "channel {} never leaves the band between {} V and {} V: it holds {least} V to {greatest} V",
-                        lane.name,
-                        pair.falling_v(),
-                        pair.rising_v()
-                    ));
-                    propose(least, greatest, faults);
-                }
-                (None, None) => faults.whole_file(format!("channel {} never has a known value", lane.name)),
+                None if !faults.is_empty() => {}
+                None => faults.whole_file(format!("channel {} never has a known value", lane.name)),
             }
         }
         recordings
@@ -263,7 +259,9 @@ impl Lane {
                 format!("{} {}; a voltage is a number such as 3.3", quoted(cell), error.reason("a voltage"))
             })?;
             let volts = self.unit.volts(value);
-            self.see(volts);
+            self.range
+                .see(volts)
+                .map_err(|why| format!("{} {why}; a voltage is a number such as 3.3", quoted(cell)))?;
             return Ok(thresholds.level(volts).map_or(Reading::Between, known));
         }
         let cell = cell::parse(cell, layout.mark).map_err(|error| {
@@ -278,22 +276,18 @@ impl Lane {
             Cell::Level(level) => (known(level), f64::from(u8::from(level == crate::trace::Level::High))),
             Cell::Number(number) => (Reading::Between, number),
         };
-        self.see(self.unit.volts(number));
+        // Without thresholds the range only serves the message that asks for them.
+        let _ = self.range.see(self.unit.volts(number));
         if self.is_volts || matches!(cell, Cell::Number(_)) {
             self.first_number.get_or_insert(place);
         }
         Ok(reading)
     }
 
-    fn see(&mut self, volts: f64) {
-        self.least = self.least.min(volts);
-        self.greatest = self.greatest.max(volts);
-    }
-
     /// Says so when the column holds voltages and there is nothing to turn them into levels.
     fn lacks_thresholds(&self, thresholds: Option<Thresholds>, faults: &mut Faults) -> bool {
         let Some(place) = self.first_number.filter(|_| thresholds.is_none()) else { return false };
-        let (name, least, greatest) = (&self.name, self.least, self.greatest);
+        let (name, least, greatest) = (&self.name, self.range.least, self.range.greatest);
         faults.at(
             place,
             format!(
@@ -302,27 +296,5 @@ impl Lane {
         );
         propose(least, greatest, faults);
         true
-    }
-}
-
-/// Thresholds at 30 % and 70 % of the range seen, as CMOS inputs have them of their supply (common practice).
-fn propose(least: f64, greatest: f64, faults: &mut Faults) {
-    let at = |part: f64| {
-        let volts = least + part * (greatest - least);
-        // Three digits of the range are as much as a proposal is worth.
-        let digits = 2 - (greatest - least).log10().floor().clamp(-9.0, 9.0) as i32;
-        let factor = 10_f64.powi(digits);
-        (volts * factor).round() / factor
-    };
-    match Thresholds::try_new(at(0.3), at(0.7)) {
-        Ok(pair) => {
-            faults.help(format!(
-                "give a falling and a rising threshold, such as {} V and {} V (30 % and 70 % of that range)",
-                pair.falling_v(),
-                pair.rising_v()
-            ));
-            faults.lack(Lack::Thresholds { proposed: Some(pair) });
-        }
-        Err(_) => faults.help("the voltage never changes: is this the right channel?"),
     }
 }

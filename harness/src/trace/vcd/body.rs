@@ -8,6 +8,7 @@ use super::tokens::Tokens;
 use crate::raw_input::quoted;
 use crate::trace::builder::{Reading, TraceBuilder};
 use crate::trace::error::{Faults, Place};
+use crate::trace::range::VoltRange;
 use crate::trace::{Level, Note, ReadOptions, Recording};
 
 /// No (further) target.
@@ -19,6 +20,7 @@ struct Target {
     name: String,
     part: Part,
     builder: TraceBuilder,
+    range: VoltRange,
     /// The next target with the same code.
     next: u32,
 }
@@ -50,7 +52,13 @@ impl<'a> Body<'a> {
         let mut targets = Vec::with_capacity(selected.len());
         for (number, Selected { name, code, part }) in (0..).zip(selected) {
             let next = std::mem::replace(&mut first[code as usize], number);
-            targets.push(Target { name, part, builder: TraceBuilder::new(options.unknown), next });
+            targets.push(Target {
+                name,
+                part,
+                builder: TraceBuilder::new(options.unknown),
+                range: VoltRange::default(),
+                next,
+            });
         }
         Self {
             header,
@@ -240,6 +248,10 @@ impl<'a> Body<'a> {
                 faults.at(place, format!("{} is not a number of volts", quoted(value)));
                 continue;
             };
+            if let Err(why) = target.range.see(volts) {
+                faults.at(place, format!("{} {why}", quoted(value)));
+                continue;
+            }
             let reading = match thresholds.level(volts) {
                 Some(level) => Reading::Known(self.options.polarity.position(level)),
                 None => Reading::Between,
@@ -254,24 +266,22 @@ impl<'a> Body<'a> {
         let mut recordings = Vec::with_capacity(self.targets.len());
         let resolution_ns = self.options.resolution_ns.unwrap_or(self.scale.multiply);
         for target in self.targets {
+            if let Part::Volts(pair) = target.part
+                && (!faults.is_empty() || target.range.misses(&target.name, pair, faults))
+            {
+                continue;
+            }
             match target.builder.finish(self.now_ns, resolution_ns) {
                 Some((trace, mut notes)) => {
                     if self.was_rounded {
                         notes.push(Note::RoundedTimes);
                     }
+                    if target.range.clipped() > 0 {
+                        notes.push(Note::Clipped { readings: target.range.clipped() });
+                    }
                     recordings.push(Recording { channel: target.name, trace, notes });
                 }
-                None => match target.part {
-                    Part::Bit(_) => {
-                        faults.whole_file(format!("channel {} never has a known value", target.name))
-                    }
-                    Part::Volts(pair) => faults.whole_file(format!(
-                        "channel {} never leaves the band between {} V and {} V",
-                        target.name,
-                        pair.falling_v(),
-                        pair.rising_v()
-                    )),
-                },
+                None => faults.whole_file(format!("channel {} never has a known value", target.name)),
             }
         }
         recordings

@@ -64,7 +64,12 @@ pub(super) fn update(session: &mut Session) {
 
 /// The tools, and a row for everything that was measured.
 fn measured() -> Result<(Vec<String>, Vec<Row>), String> {
-    let tools = vec![version("rustc")?, version("arm-none-eabi-gcc")?, ALL[0].version()?];
+    let tools = vec![
+        version("rustc")?,
+        version(&ALL[0].tool("gcc"))?,
+        version(&ALL[2].tool("gcc"))?,
+        ALL[0].version()?,
+    ];
     let mut rows = Vec::new();
     for machine in ALL {
         let printed = machine.run(&image(machine, "cost"), Time::Counted)?;
@@ -83,10 +88,7 @@ fn measured() -> Result<(Vec<String>, Vec<Row>), String> {
 
 /// The bytes of every function whose name begins with `cost_`.
 fn sizes(machine: &Machine) -> Result<Vec<(String, u32)>, String> {
-    if !machine.is_arm {
-        return Ok(Vec::new());
-    }
-    let symbols = output_of(Command::new("arm-none-eabi-nm").arg("-S").arg(image(machine, "cost")))?;
+    let symbols = output_of(Command::new(machine.tool("nm")).arg("-S").arg(image(machine, "cost")))?;
     let sized = symbols.lines().filter_map(|line| {
         let mut words = line.split_whitespace().skip(1);
         let (size, _, name) = (words.next()?, words.next()?, words.next()?);

@@ -14,8 +14,9 @@ pub(super) struct Machine {
     /// Debian and Ubuntu have had the program in these packages.
     packages: &'static [&'static str],
     options: &'static [&'static str],
-    /// Whether the C compiler and its tools know it.
-    pub(super) is_arm: bool,
+    /// What the names of the C compiler and its tools begin with, and the package that brings them.
+    pub(super) tools: &'static str,
+    pub(super) tools_package: &'static str,
 }
 
 /// Every machine; the first is the one that is linted for.
@@ -26,7 +27,8 @@ pub(super) const ALL: &[Machine] = &[
         program: "qemu-system-arm",
         packages: &["qemu-system-arm"],
         options: &["-machine", "lm3s6965evb"],
-        is_arm: true,
+        tools: "arm-none-eabi",
+        tools_package: "gcc-arm-none-eabi",
     },
     Machine {
         name: "cortex-m0",
@@ -34,7 +36,8 @@ pub(super) const ALL: &[Machine] = &[
         program: "qemu-system-arm",
         packages: &["qemu-system-arm"],
         options: &["-machine", "microbit"],
-        is_arm: true,
+        tools: "arm-none-eabi",
+        tools_package: "gcc-arm-none-eabi",
     },
     Machine {
         name: "riscv32imc",
@@ -42,7 +45,8 @@ pub(super) const ALL: &[Machine] = &[
         program: "qemu-system-riscv32",
         packages: &["qemu-system-misc", "qemu-system-riscv"],
         options: &["-machine", "virt", "-bios", "none"],
-        is_arm: false,
+        tools: "riscv64-unknown-elf",
+        tools_package: "gcc-riscv64-unknown-elf",
     },
 ];
 
@@ -70,6 +74,11 @@ impl Machine {
             }
         }
         last
+    }
+
+    /// One of the tools for its code, such as `gcc` or `nm`.
+    pub(super) fn tool(&self, name: &str) -> String {
+        format!("{}-{name}", self.tools)
     }
 
     /// Runs an image to its end and gives back what it printed.

@@ -21,22 +21,34 @@ struct Example {
     /// Below the root.
     folder: &'static str,
     image: &'static str,
+    /// What it must print, in that folder.
+    expected: &'static str,
     /// The machines that run it, by name.
     runs_on: &'static [&'static str],
     /// What it is built for besides.
     builds_for: &'static [&'static str],
 }
 
-const EXAMPLES: [Example; 2] = [
+const EXAMPLES: [Example; 3] = [
     Example {
         folder: "examples/firmware-cortex-m",
         image: "control-panel",
+        expected: "expected.txt",
         runs_on: &["cortex-m3", "cortex-m0"],
+        builds_for: &[],
+    },
+    Example {
+        folder: "examples/firmware-cortex-m",
+        image: "sleeping-port",
+        expected: "expected-sleeping-port.txt",
+        // The timer that moves its contacts is one of this part.
+        runs_on: &["cortex-m3"],
         builds_for: &[],
     },
     Example {
         folder: "examples/async-panel",
         image: "async-panel",
+        expected: "expected.txt",
         runs_on: &["cortex-m3"],
         builds_for: &["thumbv7em-none-eabihf"],
     },
@@ -66,14 +78,15 @@ pub(super) fn update(session: &mut Session) {
     }
 }
 
-/// Makes sure of targets, emulators and the C compiler.
+/// Makes sure of targets, emulators and the C compilers.
 fn ready(session: &mut Session) -> bool {
     let mut ready = true;
     for machine in ALL {
         ready &= session.expect(install::target(machine.target));
         ready &= session.expect(machine.installed());
+        ready &= session.expect(install::program(&machine.tool("gcc"), machine.tools_package));
     }
-    ready & session.expect(install::program("arm-none-eabi-gcc", "gcc-arm-none-eabi"))
+    ready
 }
 
 /// A cargo command for a workspace below the root.
@@ -170,9 +183,11 @@ impl Example {
             }
         }
         let folder = Session::root().join(self.folder);
-        let expected = match std::fs::read_to_string(folder.join("expected.txt")) {
+        let expected = match std::fs::read_to_string(folder.join(self.expected)) {
             Ok(expected) => expected,
-            Err(error) => return session.fail(format!("cannot read {}/expected.txt: {error}", self.folder)),
+            Err(error) => {
+                return session.fail(format!("cannot read {}/{}: {error}", self.folder, self.expected));
+            }
         };
         for machine in ALL.iter().filter(|machine| self.runs_on.contains(&machine.name)) {
             if !self.build(session, machine.target) {
@@ -181,8 +196,8 @@ impl Example {
             let image = folder.join("target").join(machine.target).join("release").join(self.image);
             match machine.run(&image, Time::Steady) {
                 Ok(found) => match first_difference(&expected, &found) {
-                    Some(found) => session.fail(format!("{} on {}: {found}", self.folder, machine.name)),
-                    None => say(&format!("{} on {}: as expected", self.folder, machine.name)),
+                    Some(found) => session.fail(format!("{} on {}: {found}", self.image, machine.name)),
+                    None => say(&format!("{} on {}: as expected", self.image, machine.name)),
                 },
                 Err(message) => session.fail(message),
             }
@@ -191,7 +206,8 @@ impl Example {
 
     fn build(&self, session: &mut Session, target: &str) -> bool {
         let manifest = manifest(self.folder);
-        let words = words("build", &manifest, &["--release", "--locked", "--target", target]);
+        let words =
+            words("build", &manifest, &["--release", "--locked", "--target", target, "--bin", self.image]);
         session.expect(crate::session::run(&mut cargo(&words)))
     }
 }

@@ -19,7 +19,7 @@ pub(super) fn check(session: &mut Session) {
         )),
         Err(message) => session.fail(message),
     }
-    for machine in ALL.iter().filter(|machine| machine.is_arm) {
+    for machine in ALL {
         let (uses, twin) = (traces(machine, "uses"), traces(machine, "twin"));
         match uses {
             Ok(found) if found.is_empty() => {
@@ -41,7 +41,7 @@ pub(super) fn check(session: &mut Session) {
 /// Everything in an image that speaks of a panic.
 fn traces(machine: &Machine, name: &str) -> Result<Vec<String>, String> {
     let path = image(machine, name);
-    let symbols = output_of(Command::new("arm-none-eabi-nm").arg("-C").arg(&path))?;
+    let symbols = output_of(Command::new(machine.tool("nm")).arg("-C").arg(&path))?;
     let bytes = std::fs::read(&path).map_err(|error| format!("cannot read {}: {error}", path.display()))?;
     let mut found = suspicious(&symbols);
     if bytes.windows(TEXT.len()).any(|window| window == TEXT.as_bytes()) {

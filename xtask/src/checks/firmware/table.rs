@@ -195,9 +195,14 @@ so compare inlined with inlined. *Looked at* has the lanes that changed handed t
 random for 8, and then the other position. Averages are over 8000 ticks.
 
 Full scale, window and confirm are 16 samples, the majority 5 of 8; the patient ones have confirm 3, patience 3 and a
-lock-out of 4. All are constants ([`ConstLaw`](crate::ConstLaw)). A bank has 32 inputs, so a 32nd of its state is an
-input's. The plain C beside them is a yardstick of the same published methods, compiled by `arm-none-eabi-gcc -O2` into
-the same image. Flash is that of the step as a function of its own.
+lock-out of 4; the chain is a majority of 2 of 3 before a confirm of 3, the table has three states. All are constants
+([`ConstLaw`](crate::ConstLaw)). A bank has 32 inputs, so a 32nd of its state is an input's. *Starting* has an
+integrator in it, *starting bank* a bank of 2 bits: both soon have nothing left to start. The matrix has four rows and
+four columns without diodes, in banks of 2 bits; an encoder is turned a quarter cycle at each change; the speed has a gate
+of 100 ticks; the mailbox gets an event at every closed sample and is emptied at every tick, critical sections included.
+
+The plain C beside them is a yardstick of the same published methods, compiled by GCC with `-O2` into
+the same image. Flash is that of the step as a function of its own, without what it calls in turn.
 
 ";
 

@@ -1,0 +1,197 @@
+//! The figures of recordings, one or several, as lines of a summary.
+
+use std::io;
+
+use debounce_core::{Change, Position};
+
+use super::lines::Lines;
+use crate::characterise::{ChangeFigures, Figures, Histogram, Independence, Spread, tail::Tail};
+use crate::report::words;
+use crate::study::Claims;
+
+/// What lies between the operations: disturbances, dwell, quiet; and what the recorder could not see.
+pub(super) fn between(lines: &mut Lines<'_>, figures: &Figures) -> io::Result<()> {
+    let seen = |ns| words::seen(ns, figures.resolution_ns);
+    for position in Position::BOTH {
+        let (disturbed, dwell) = (figures.disturbances.of(position), figures.dwell.of(position));
+        let widths = disturbed.width_ns.map_or(String::new(), |width| {
+            format!(", median {}, widest {}", seen(width.median), seen(width.max))
+        });
+        lines.item(
+            if position.is_closed() { "While closed" } else { "While open" },
+            &format!("{}{widths}", words::count(disturbed.count, "disturbance")),
+        )?;
+        if disturbed.widest_in_doubt_ns > 0 {
+            lines.more(&format!(
+                "and perhaps parts of bounces, up to {}",
+                seen(disturbed.widest_in_doubt_ns)
+            ))?;
+        }
+        if let Some(shortest) = dwell.shortest_ns {
+            let doubt = dwell.shortest_in_doubt_ns.map_or(String::new(), |ns| {
+                format!("; a run of {} may have been an operation", words::about(ns))
+            });
+            lines.more(&format!("shortest {}{doubt}", words::about(shortest)))?;
+        }
+    }
+    if let Some(quiet) = figures.quiet_ns {
+        let rate = Some(figures.disturbances_per_second()).filter(|&rate| rate > 0.0);
+        lines.item(
+            "Quiet",
+            &format!(
+                "at least {} beside every disturbance{}{}",
+                words::at_least(quiet),
+                rate.map_or(String::new(), |rate| format!("; {} of them a second", significant(rate))),
+                figures.spacing_ns.map_or(String::new(), |spacing| format!(
+                    ", from {} to {} apart, median {}",
+                    words::about(spacing.min),
+                    words::about(spacing.max),
+                    words::about(spacing.median)
+                ))
+            ),
+        )?;
+    }
+    lines.item(
+        "Recorder",
+        &format!(
+            "its sample period of {} is added to every figure that is claimed, and nothing shorter is seen",
+            words::about(figures.resolution_ns)
+        ),
+    )
+}
+
+fn significant(rate: f64) -> String {
+    // Two digits, and none behind the point from 10 on.
+    let digits = (1.0 - rate.log10().floor()).clamp(0.0, 9.0) as usize;
+    format!("{rate:.digits$}")
+}
+
+/// What the operations of one kind have in common.
+pub(super) fn of_kind(lines: &mut Lines<'_>, figures: &Figures, change: Change) -> io::Result<()> {
+    let found = figures.changes.of(change);
+    let Some(bounce) = found.bounce_ns else { return Ok(()) };
+    let period = figures.resolution_ns;
+    let label = if change == Change::Make { "Makes" } else { "Breaks" };
+    lines.item(
+        label,
+        &format!(
+            "{}, {} in doubt; bounce {}, longest on the safe side {}",
+            found.count,
+            found.ambiguous,
+            quantiles(bounce, period),
+            words::at_most(found.sorted_safe_bounces_ns.last().copied().unwrap_or(0)),
+        ),
+    )?;
+    if let Some(Spread { min, median, p95, max, .. }) = found.edges {
+        lines.more(&format!("edges {min} to {max}, median {median}, 95 % {p95}"))?;
+    }
+    for (name, spread) in
+        [("longest quiet gap inside", found.longest_gap_ns), ("shortest pulse", found.shortest_pulse_ns)]
+    {
+        if let Some(spread) = spread {
+            lines.more(&format!("{name}: {}", quantiles(spread, period)))?;
+        }
+    }
+    if found.count >= FEWEST {
+        if let Some(histogram) = found.histogram(period) {
+            bars(lines, &histogram)?;
+        }
+        order(lines, &found.independence)?;
+    }
+    indication(lines, found)
+}
+
+/// Fewer operations than this make no picture.
+const FEWEST: usize = 8;
+
+fn quantiles(spread: Spread, resolution_ns: u64) -> String {
+    let [min, median, p95, p99, max] = [spread.min, spread.median, spread.p95, spread.p99, spread.max]
+        .map(|ns| words::seen(ns, resolution_ns));
+    format!("{min} to {max}, median {median}, 95 % {p95}, 99 % {p99}")
+}
+
+/// Columns of the longest bar.
+const BAR: u64 = 40;
+
+fn bars(lines: &mut Lines<'_>, histogram: &Histogram) -> io::Result<()> {
+    let most = histogram.counts.iter().copied().max().unwrap_or(0).max(1);
+    for (from_ns, count) in histogram.bins() {
+        // A bin that is not empty shows at least one mark.
+        let marks = (count * BAR).div_ceil(most);
+        let line = format!("{:>21} {count:>8}  {}", words::about(from_ns), "#".repeat(marks as usize));
+        lines.plain(&format!("{}\n", line.trim_end()))?;
+    }
+    lines.more(&format!(
+        "each line counts bounces from its time on, in bins of {}",
+        words::about(histogram.bin_ns)
+    ))
+}
+
+/// Whether the order of the operations is that of independent ones.
+fn order(lines: &mut Lines<'_>, found: &Independence) -> io::Result<()> {
+    let runs = found.runs.map(|test| {
+        format!(
+            "{} runs about the median where {:.1} are to be expected (Wald-Wolfowitz: chance {})",
+            test.runs,
+            test.expected,
+            words::chance(test.p_value)
+        )
+    });
+    let trend = found.trend.map(|test| {
+        format!("a trend of {:+.2} (Mann-Kendall: chance {})", test.tau, words::chance(test.p_value))
+    });
+    let tests: Vec<String> = runs.into_iter().chain(trend).collect();
+    if tests.is_empty() {
+        return lines.more("too much alike to test whether they are independent");
+    }
+    let verdict =
+        if found.is_doubtful() { "not what independent ones show" } else { "as independent ones may be" };
+    lines.more(&format!("in their order {}: {verdict}", tests.join(" and ")))
+}
+
+/// What the longest ones indicate.
+fn indication(lines: &mut Lines<'_>, found: &ChangeFigures) -> io::Result<()> {
+    let Some(tail) = &found.tail else { return Ok(()) };
+    lines.more(&format!(
+        "an indication and no claim: by the {} longest (peaks over {}, generalised Pareto, shape {:+.2}), one in 1000 \
+         exceeds {}",
+        tail.excesses,
+        words::about(tail.threshold_ns),
+        tail.pareto.shape,
+        words::at_most(whole(tail)),
+    ))
+}
+
+/// One in 1000 exceeds this, rounded up to a nanosecond.
+fn whole(tail: &Tail) -> u64 {
+    tail.exceeded_once_in(1e3).ceil() as u64
+}
+
+/// The limits that reach the wanted coverage, where there are enough operations for them.
+pub(super) fn limits(lines: &mut Lines<'_>, claims: &Claims) -> io::Result<()> {
+    for change in [Change::Make, Change::Break] {
+        let Some(claim) = claims.bounce.at(change) else { continue };
+        let text = match claim.limit {
+            Some(limit) => format!(
+                "{} of {}s bounce no longer than {}, rank {} of {}, with {} confidence (asked {})",
+                claims.coverage,
+                words::change(change),
+                words::at_most(limit.ns),
+                limit.rank,
+                claim.operations,
+                words::covered(limit.confidence),
+                claims.confidence,
+            ),
+            None => format!(
+                "none for {} of {}s: {} recorded, {} needed, {} more",
+                claims.coverage,
+                words::change(change),
+                claim.operations,
+                claim.needed,
+                claim.more_needed(),
+            ),
+        };
+        lines.item("Limit", &text)?;
+    }
+    Ok(())
+}
