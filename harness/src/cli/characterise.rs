@@ -37,9 +37,11 @@ Examples:
   One recording with a single channel:
     harness characterise gate.vcd
   An oscilloscope export in volts:
-    harness characterise gate.csv --threshold-low \"0.8 V\" --threshold-high \"2.0 V\"
+    harness characterise gate.csv --threshold-low \"0.8 V\" \\
+      --threshold-high \"2.0 V\"
   Several recordings, for a program:
-    harness characterise day1.vcd day2.vcd --channel top.gate --confidence \"99 %\" --json";
+    harness characterise day1.vcd day2.vcd --channel top.gate \\
+      --confidence \"99 %\" --json";
 }
 
 impl CharacteriseArguments {

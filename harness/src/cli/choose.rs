@@ -3,14 +3,14 @@
 use std::io::{self, Write};
 
 use clap::Args;
-use comfy_table::Table;
+use comfy_table::{ContentArrangement, Table};
 use serde_json::{Value, json};
 
 use super::input::Input;
-use super::lines::{Lines, strong};
+use super::lines::{Lines, columns, strong};
 use super::preference::PreferenceOption;
 use super::recordings::RequirementInput;
-use super::study::failure;
+use super::study::{failure, judging};
 use super::{Answer, Failure, Outcome, Session};
 use crate::report::{json as report, words};
 use crate::requirement::Origin;
@@ -42,7 +42,8 @@ impl ChooseArguments {
     pub const EXAMPLES: &'static str = "\
 Examples:
   From figures alone, without a recording:
-    harness choose --bounce \"5 ms\" --disturbance \"300 us\" --quiet-time \"5 ms\" --latency \"20 ms\"
+    harness choose --bounce \"5 ms\" --disturbance \"300 us\" --quiet-time \"5 ms\" \\
+      --latency \"20 ms\"
   From a requirement file, with a slower clock than it says:
     harness choose --requirement contact.toml --tick \"5 ms,10 ms\"
   For a recording, on firmware that can serve 1000 ticks a second at most:
@@ -53,8 +54,10 @@ impl ChooseArguments {
     /// Runs the command.
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let input = Input::with_or_without_recordings(&self.input, session)?;
-        let study =
-            Study::of(input.observed, &input.requirement, self.preference.into(), |_| {}).map_err(failure)?;
+        let bar = judging(session, &input.requirement);
+        let study = Study::of(input.observed, &input.requirement, self.preference.into(), |_| bar.inc(1))
+            .map_err(failure)?;
+        bar.finish_and_clear();
         Ok(Box::new(Chosen { study, list: self.list }))
     }
 }
@@ -114,6 +117,8 @@ impl Answer for Chosen {
 fn candidate_table(study: &Study, list: usize) -> String {
     let mut table = Table::new();
     table.load_style(comfy_table::presets::NOTHING);
+    table.set_content_arrangement(ContentArrangement::Dynamic);
+    table.set_width(u16::try_from(columns()).unwrap_or(u16::MAX));
     table.set_header(["", "law", "tick", "make <", "break <", "x limit", "median", "bytes", "says no"]);
     for one in study.ranking.candidates.iter().take(list) {
         let (make, break_) = one.worst_below_ns.map_or(("-".into(), "-".into()), |worst| {

@@ -109,11 +109,14 @@ impl ProveArguments {
     pub const EXAMPLES: &'static str = "\
 Examples:
   In ticks:
-    harness prove \"integrator 5\" --envelope \"dwell=20 bounce=5/3 glitch=1/1 quiet=10\"
+    harness prove \"integrator 5\" \\
+      --envelope \"dwell=20 bounce=5/3 glitch=1/1 quiet=10\"
   In time, at one tick period:
-    harness prove \"state-machine confirm=3/2 lockout=4/0\" --requirement contact.toml --tick \"1 ms\"
+    harness prove \"state-machine confirm=3/2 lockout=4/0\" \\
+      --requirement contact.toml --tick \"1 ms\"
   Logic of one's own, as a next-state table, with the counter-example as a file:
-    harness prove --table own.kiss2 --envelope \"dwell=20 bounce=5 glitch=1 quiet=10\" --witness broken.vcd";
+    harness prove --table own.kiss2 \\
+      --envelope \"dwell=20 bounce=5 glitch=1 quiet=10\" --witness broken.vcd";
 }
 
 impl ProveArguments {
@@ -124,7 +127,9 @@ impl ProveArguments {
         let file = self.witness.as_deref().map(OutputFolder::of_file).transpose()?;
         let contract = self.contract.into();
         let limits = Limits::default();
+        let bar = session.waiting("exploring");
         let proof = prove_contract(&logic.table, &envelope, contract, &limits).map_err(Problem::told)?;
+        bar.finish_and_clear();
         let again = self.again(&envelope, tick);
         let tick = tick.map(TickPeriod::period);
         let limit = if contract == Contract::Follow { known_limit(&envelope) } else { None };
@@ -363,7 +368,8 @@ impl Answer for Proved {
                 lines.item("Refuted", &strong(words::clause(*clause)))?;
                 self.size(&mut lines)?;
                 lines.plain(&format!("\na shortest waveform that shows it:\n{}", TimingDiagram(witness)))?;
-                lines.plain(&format!("\nagain: {}\n", self.again))
+                lines.plain("\n")?;
+                lines.command(&format!("again: {}", self.again))
             }
         }?;
         for path in &self.written {

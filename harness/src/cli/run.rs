@@ -9,8 +9,8 @@ use clap::{CommandFactory, Parser, Subcommand};
 
 use super::session::{print_problems, to_stdout};
 use super::{
-    Answer, CharacteriseArguments, ChooseArguments, EmitArguments, Failure, GlobalOptions, ProveArguments,
-    ReplayArguments, Session, StudyArguments,
+    Answer, CharacteriseArguments, ChooseArguments, CompletionsArguments, EmitArguments, Failure, GlobalOptions,
+    ManualArguments, ProveArguments, RecheckArguments, ReplayArguments, SchemaArguments, Session, StudyArguments,
 };
 use crate::problem::Problem;
 
@@ -20,7 +20,8 @@ use crate::problem::Problem;
     name = "harness",
     version,
     after_help = "Exit codes: 0 holds, 1 does not hold, 2 bad input or usage.",
-    disable_help_subcommand = true
+    disable_help_subcommand = true,
+    max_term_width = 80
 )]
 pub(super) struct CommandLine {
     #[command(flatten)]
@@ -38,6 +39,10 @@ enum Command {
     Prove(ProveArguments),
     Replay(ReplayArguments),
     Emit(EmitArguments),
+    Recheck(RecheckArguments),
+    Schema(SchemaArguments),
+    Completions(CompletionsArguments),
+    Manual(ManualArguments),
 }
 
 impl Command {
@@ -49,6 +54,10 @@ impl Command {
             Self::Prove(_) => "prove",
             Self::Replay(_) => "replay",
             Self::Emit(_) => "emit",
+            Self::Recheck(_) => "recheck",
+            Self::Schema(_) => "schema",
+            Self::Completions(_) => "completions",
+            Self::Manual(_) => "manual",
         }
     }
 
@@ -60,6 +69,10 @@ impl Command {
             Self::Prove(arguments) => arguments.run(session),
             Self::Replay(arguments) => arguments.run(session),
             Self::Emit(arguments) => arguments.run(session),
+            Self::Recheck(arguments) => arguments.run(session),
+            Self::Schema(arguments) => arguments.run(session),
+            Self::Completions(arguments) => arguments.run(session),
+            Self::Manual(arguments) => arguments.run(session),
         }
     }
 }
@@ -113,10 +126,15 @@ fn usage(error: &clap::Error, wants_json: bool) -> ExitCode {
 
 /// What to do first, for someone who typed nothing but the name.
 fn first_steps() -> Result<(), Failure> {
-    let help = CommandLine::command().render_help();
     to_stdout(|out| {
         writeln!(out, "Start with the built-in demo:  harness study")?;
-        writeln!(out, "Then with your own recording:  harness study gate.vcd --latency \"20 ms\"\n")?;
-        write!(out, "{}", help.ansi())
+        writeln!(out, "Then with your own recording:  harness study gate.vcd --latency \"20 ms\"")?;
+        writeln!(out, "Once it is shipped, in CI:     harness recheck contact.toml\n")?;
+        writeln!(out, "harness --help lists the commands; harness COMMAND --help shows three examples")
     })
+}
+
+/// The whole command line, for what is made from it.
+pub(super) fn command_line() -> clap::Command {
+    CommandLine::command()
 }

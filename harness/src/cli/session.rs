@@ -1,6 +1,7 @@
 //! What every command shares: where output, warnings and progress go.
 
 use std::io::{self, BufWriter, IsTerminal, Write};
+use std::thread;
 use std::time::Duration;
 
 use anstream::AutoStream;
@@ -13,6 +14,20 @@ use crate::problem::{Problem, Problems};
 
 /// The version of the JSON output; it goes up when a field changes its meaning or goes away.
 pub const SCHEMA: u32 = 1;
+
+/// How long a person waits without asking whether anything happens.
+const PATIENCE: Duration = Duration::from_secs(1);
+
+/// Steps with their rate and the time left, in ASCII.
+const BAR: &str = "{msg} [{wide_bar}] {percent} %, {per_sec}, {eta} left";
+
+/// Time that passes, in ASCII.
+const SPINNER: &str = "{spinner} {msg}, {elapsed} so far";
+
+fn style(template: &str) -> ProgressStyle {
+    let style = ProgressStyle::with_template(template).unwrap_or_else(|_| ProgressStyle::default_bar());
+    style.progress_chars("#>-").tick_chars("|/-\\ ")
+}
 
 /// Options of every command.
 #[derive(Args, Clone, Copy, PartialEq, Eq, Debug, Default)]
@@ -62,16 +77,36 @@ impl Session {
         }
     }
 
-    /// A progress bar on standard error for `steps` steps; it draws nothing where no person would see it.
+    /// A progress bar on standard error for `steps` steps; it draws nothing where no person would see it, and
+    /// nothing for the first second.
     #[must_use]
     pub fn progress(&self, what: &'static str, steps: u64) -> ProgressBar {
-        let seen = !self.options.quiet && io::stderr().is_terminal();
-        let target = if seen { ProgressDrawTarget::stderr_with_hz(8) } else { ProgressDrawTarget::hidden() };
-        let style = ProgressStyle::with_template("{msg} {wide_bar} {percent} %  {eta} left")
-            .unwrap_or_else(|_| ProgressStyle::default_bar());
-        let bar = ProgressBar::with_draw_target(Some(steps), target).with_style(style).with_message(what);
-        if seen {
-            bar.enable_steady_tick(Duration::from_millis(250));
+        let bar = ProgressBar::with_draw_target(Some(steps), ProgressDrawTarget::hidden())
+            .with_style(style(BAR))
+            .with_message(what);
+        self.show_later(bar)
+    }
+
+    /// As [`progress`](Self::progress), for work whose end nobody can tell: it shows that time passes.
+    #[must_use]
+    pub fn waiting(&self, what: &'static str) -> ProgressBar {
+        let bar = ProgressBar::with_draw_target(None, ProgressDrawTarget::hidden())
+            .with_style(style(SPINNER))
+            .with_message(what);
+        self.show_later(bar)
+    }
+
+    /// Draws the bar where a person sees it, once the work has taken so long that they may wonder.
+    fn show_later(&self, bar: ProgressBar) -> ProgressBar {
+        if !self.options.quiet && io::stderr().is_terminal() {
+            let later = bar.downgrade();
+            thread::spawn(move || {
+                thread::sleep(PATIENCE);
+                if let Some(bar) = later.upgrade().filter(|bar| !bar.is_finished()) {
+                    bar.set_draw_target(ProgressDrawTarget::stderr_with_hz(8));
+                    bar.enable_steady_tick(Duration::from_millis(250));
+                }
+            });
         }
         bar
     }

@@ -14,6 +14,7 @@
 //! [[recording]]
 //! path = "gate.vcd"         # relative to this file
 //! channel = "top.gate"
+//! sha256 = "9f86d081884c7d659a2feaa0c55ad015a3bf4f1b2b0b822cd15d6c15b0f00a08"
 //!
 //! [[recording]]
 //! path = "gate.csv"
@@ -40,9 +41,15 @@
 //! [budget]
 //! ram = "4 bytes"           # for each input
 //! fastest_tick = "2 kHz"
+//!
+//! [firmware]                # what was shipped, for `harness recheck` and `harness emit`
+//! module = "src/gate_input.rs"
+//! law = "state-machine confirm=2 patience=2 lockout=2/1"   # without it the best candidate
+//! tick = "1 ms"             # without it the best of those above
 //! ```
 
 mod check;
+mod firmware;
 mod options;
 mod pair;
 mod read;
@@ -54,7 +61,7 @@ mod words;
 #[cfg(test)]
 mod tests;
 
-use std::path::PathBuf;
+use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
 use debounce_core::{PerChange, PerPosition};
@@ -62,6 +69,7 @@ use debounce_core::{PerChange, PerPosition};
 use crate::problem::SourceText;
 use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time, Voltage};
 
+pub use firmware::Firmware;
 pub use options::RequirementOptions;
 pub use pair::{ForChanges, ForPositions};
 pub use read::{parse, read};
@@ -88,6 +96,8 @@ pub struct Requirement {
     pub clock: Clock,
     /// What the firmware can afford.
     pub budget: Budget,
+    /// What was shipped.
+    pub firmware: Option<Firmware>,
     source: Option<Arc<SourceText>>,
 }
 
@@ -115,6 +125,8 @@ pub struct Recording {
     pub thresholds: Option<Sourced<Thresholds>>,
     /// The level of the line while the contact is closed, where this recording differs from the contact.
     pub closed: Option<Sourced<Level>>,
+    /// The SHA-256 of the file (FIPS 180-4), in hexadecimal, that nobody may change unnoticed.
+    pub sha256: Option<Sourced<String>>,
 }
 
 /// The two thresholds that turn volts into a level.
@@ -180,4 +192,17 @@ impl Requirement {
     pub fn source(&self) -> Option<&Arc<SourceText>> {
         self.source.as_ref()
     }
+
+    /// A path as the requirement file writes it: without the folder of that file, so that it does not depend on
+    /// where the command runs.
+    #[must_use]
+    pub fn as_written<'a>(&self, path: &'a Path) -> &'a Path {
+        let folder = self.source().map(folder_of).unwrap_or_default();
+        if folder.as_os_str().is_empty() { path } else { path.strip_prefix(folder).unwrap_or(path) }
+    }
+}
+
+/// The folder that relative paths of a requirement file begin at.
+fn folder_of(source: &Arc<SourceText>) -> PathBuf {
+    source.path().parent().map(Path::to_path_buf).unwrap_or_default()
 }
