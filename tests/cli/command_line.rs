@@ -5,8 +5,13 @@ mod bad_recording;
 mod bad_requirement;
 mod bench;
 mod choose_emit;
+mod columns;
+mod help;
+mod manual;
 mod prove;
+mod recheck;
 mod replay;
+mod schema;
 mod study;
 
 use std::fs::File;
