@@ -65,7 +65,11 @@ fn text_of_every_command_is_ascii_and_fits_80_columns() {
         let unknown = run(&bench, arguments, None);
         fits(arguments, &unknown.stdout, 80);
         fits(arguments, &unknown.stderr, 80);
-        assert!(unknown.stdout.lines().count() <= 60, "{arguments:?}: more than a screen\n{}", unknown.stdout);
+        assert!(
+            unknown.stdout.lines().count() <= 60,
+            "{arguments:?}: more than a screen\n{}",
+            unknown.stdout
+        );
         let wide = run(&bench, arguments, Some("120"));
         fits(arguments, &wide.stdout, 120);
     }

@@ -22,14 +22,17 @@ quiet = \"20 ms\"
 tick = [\"2 ms\", \"5 ms\"]
 [firmware]
 module = \"src/gate.rs\"
+law = \"state-machine confirm=2 patience=2 lockout=2/1\"
+tick = \"5 ms\"
 ";
 
-const OWN: &str = ".i 1\n.o 1\n0 off off 0\n1 off on 0\n0 on off 1\n1 on on 1\n";
+const OWN: &str = ".i 1\n.o 1\n.r off\n0 off off 0\n1 off on 0\n0 on off 1\n1 on on 1\n";
 
 /// A folder with everything that the examples name.
 fn bench() -> Bench {
     let recording = String::from_utf8(demo::RECORDING.to_vec()).expect("text");
-    let recording = recording.replace("module harness", "module top").replace("vent_button $end", "gate $end");
+    let recording =
+        recording.replace("module harness", "module top").replace("vent_button $end", "gate $end");
     let mut volts = String::from("time_us,gate_V\n");
     for press in 0..40 {
         for (at, level) in [(0, 0.1), (100_000, 3.2), (100_300, 0.2), (100_700, 3.1), (250_000, 0.1)] {

@@ -10,7 +10,7 @@ use crate::help::commands;
 /// What groff says about a page, every warning on; and the page as text.
 fn set(page: &[u8]) -> (String, String) {
     let mut groff = Command::new("groff");
-    groff.args(["-man", "-Tascii", "-ww", "-P-c"]);
+    groff.args(["-man", "-Tascii", "-ww", "-P-cbou"]);
     groff.stdin(Stdio::piped()).stdout(Stdio::piped()).stderr(Stdio::piped());
     let mut child = groff.spawn().expect("this test needs groff: apt-get install groff");
     child.stdin.take().expect("a pipe").write_all(page).expect("groff reads");
@@ -51,7 +51,8 @@ fn manual_page_of_one_command_holds_its_examples() {
 #[test]
 fn completions_for_bash_are_read_by_bash_and_complete_a_command() {
     let script = Bench::new().run(&["completions", "bash"]).ends(0).stdout;
-    let ask = "COMP_WORDS=(harness rec); COMP_CWORD=1; _harness harness rec harness; echo \"${COMPREPLY[*]}\"";
+    let ask =
+        "COMP_WORDS=(harness rec); COMP_CWORD=1; _harness harness rec harness; echo \"${COMPREPLY[*]}\"";
     let output = Command::new("bash").args(["--norc", "-c", &format!("{script}\n{ask}")]).output();
     let output = output.expect("bash runs");
     assert_eq!(String::from_utf8_lossy(&output.stdout).trim(), "recheck", "{output:?}");

@@ -11,6 +11,8 @@ use crate::bench::{Bench, Run};
 
 const EXAMPLE: &str = concat!(env!("CARGO_MANIFEST_DIR"), "/../examples/hatch-firmware");
 const FILES: [&str; 3] = ["contact.toml", "recordings/hatch_button.vcd", "src/hatch_button.rs"];
+/// The law that was shipped.
+const LAW: &str = "state-machine confirm=2 patience=2 lockout=2";
 const RESOLUTION: [&str; 2] = ["--resolution", "1 us"];
 
 fn example(file: &str) -> String {
@@ -97,9 +99,11 @@ fn recheck_lines_of_the_example_are_those_that_hold() {
     let lines: Vec<&str> =
         workflow.lines().map(str::trim).filter(|line| line.starts_with("harness ")).collect();
     assert_eq!(lines.len(), 1, "{workflow}");
-    let words: Vec<&str> = lines[0].split('"').enumerate().flat_map(|(index, part)| {
-        if index % 2 == 1 { vec![part] } else { part.split_whitespace().collect() }
-    }).collect();
+    let words: Vec<&str> = lines[0]
+        .split('"')
+        .enumerate()
+        .flat_map(|(index, part)| if index % 2 == 1 { vec![part] } else { part.split_whitespace().collect() })
+        .collect();
     bench.run(&words[1..]).ends(0);
     assert!(example("README.md").contains("harness recheck contact.toml --resolution \"1 us\""));
     for file in ["recheck.xml", "recheck.md"] {
@@ -128,13 +132,21 @@ fn recheck_of_a_shorter_bounce_says_where_the_recording_leaves_it() {
     let bench = changed("contact.toml", "bounce = \"5 ms\"", "bounce = \"1 ms\"");
     let run = recheck(&bench, &[]).ends(1);
     let text = run.flowing();
-    assert!(text.contains("Broken recordings/hatch_button.vcd lies inside the envelope at "), "{}", run.stdout);
-    assert!(text.contains(" found, 1 ms allowed, "), "{}", run.stdout);
+    assert!(
+        text.contains("Broken recordings/hatch_button.vcd lies inside the envelope at "),
+        "{}",
+        run.stdout
+    );
+    assert!(text.contains(" found, 300 us allowed, "), "{}", run.stdout);
 }
 
 #[test]
 fn recheck_of_an_edited_module_gives_the_line() {
-    let bench = changed("src/hatch_button.rs", "pub const LATENCY_MAKE_NS: u64 = 15", "pub const LATENCY_MAKE_NS: u64 = 25");
+    let bench = changed(
+        "src/hatch_button.rs",
+        "pub const LATENCY_MAKE_NS: u64 = 15",
+        "pub const LATENCY_MAKE_NS: u64 = 25",
+    );
     breaks(
         &bench,
         "src/hatch_button.rs is what the requirement gives",
@@ -152,8 +164,7 @@ fn recheck_of_a_smaller_budget_says_by_how_many_bytes() {
 
 #[test]
 fn recheck_of_a_tick_that_may_not_be_chosen_says_so() {
-    let firmware = "module = \"src/hatch_button.rs\"";
-    let bench = changed("contact.toml", firmware, &format!("{firmware}\ntick = \"500 us\""));
+    let bench = changed("contact.toml", "tick = \"2 ms\"", "tick = \"500 us\"");
     let text = recheck(&bench, &[]).ends(1).flowing();
     assert!(text.contains("a tick of 500 us is 1000 ticks a second too many"), "{text}");
     assert!(text.contains("a tick of 500 us is not among them"), "{text}");
@@ -161,26 +172,41 @@ fn recheck_of_a_tick_that_may_not_be_chosen_says_so() {
 
 #[test]
 fn recheck_of_a_law_that_does_not_follow_the_contact_refutes_it() {
-    let firmware = "module = \"src/hatch_button.rs\"";
-    let law = format!("{firmware}\nlaw = \"shift-register 1\"\ntick = \"1 ms\"");
-    let text = recheck(&changed("contact.toml", firmware, &law), &[]).ends(1).flowing();
-    assert!(text.contains("Broken shift-register 1 at a tick of 1 ms reports every operation"), "{text}");
+    let bench = changed("contact.toml", LAW, "shift-register 1");
+    let text = recheck(&bench, &[]).ends(1).flowing();
+    assert!(text.contains("Broken shift-register 1 at a tick of 2 ms reports every operation"), "{text}");
+    assert!(text.contains("Open a make is reported within 15 ms"), "{text}");
+}
+
+/// `contact.toml:line:column` of a text in it.
+fn place(bench: &Bench, text: &str) -> String {
+    let contact = fs::read_to_string(bench.path().join("contact.toml")).expect("a file");
+    let (before, _) = contact.split_once(text).unwrap_or_else(|| panic!("{text} is not in {contact}"));
+    let column = before.rsplit('\n').next().unwrap_or_default().chars().count() + 1;
+    format!("contact.toml:{}:{column}", before.matches('\n').count() + 1)
 }
 
 #[test]
 fn recheck_of_bad_input_tells_every_file_and_ends_with_2() {
     let bench = changed("contact.toml", "make = \"15 ms\"", "make = \"15\"");
     let helps = ["write \"15 ms\""];
-    let told = [("contact.toml:18:20", "\"15\" has no unit", &helps[..]), ("gone.toml", "cannot be read", &[])];
+    let told =
+        [(&*place(&bench, "\"15\""), "\"15\" has no unit", &helps[..]), ("gone.toml", "cannot be read", &[])];
     bench.refuses(&["recheck", "contact.toml", "gone.toml"], &told);
-    let bench = changed("contact.toml", "src/hatch_button.rs\"", "src/gone.rs\"");
+
+    let bench = changed("contact.toml", "src/hatch_button.rs\"\n", "src/gone.rs\"\n");
     let help = ["harness emit --requirement contact.toml --output src/gone.rs"];
-    bench.refuses(&["recheck", "contact.toml"], &[("src/gone.rs", "the generated module cannot be read", &help)]);
-    let bench = changed("contact.toml", "module = \"src/hatch_button.rs\"", "law = \"integrater 5\"");
-    let told = [
-        ("contact.toml:31:7", "is not a law", &["write \"integrator 5\""][..]),
-        ("contact.toml:32:1", "the firmware has no module", &["write module = "]),
-    ];
+    bench.refuses(
+        &["recheck", "contact.toml"],
+        &[("src/gone.rs", "the generated module cannot be read", &help)],
+    );
+
+    let bench = changed("contact.toml", LAW, "integrater 5");
+    let told = [(&*place(&bench, "\"integrater 5\""), "is not a law", &["write \"integrator 5\""][..])];
+    bench.refuses(&["recheck", "contact.toml"], &told);
+
+    let bench = changed("contact.toml", "module = \"src/hatch_button.rs\"\n", "");
+    let told = [(&*place(&bench, &format!("\"{LAW}\"")), "has no module", &["write module = "][..])];
     bench.refuses(&["recheck", "contact.toml"], &told);
 }
 

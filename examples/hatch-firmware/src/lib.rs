@@ -19,7 +19,7 @@ pub struct Hatch {
 impl Hatch {
     /// A hatch that is shut; the button may be held when the program starts.
     #[must_use]
-    pub const fn new() -> Self {
+    pub fn new() -> Self {
         Self { button: hatch_button::starting(), is_open: false }
     }
 

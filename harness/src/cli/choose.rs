@@ -4,6 +4,7 @@ use std::io::{self, Write};
 
 use clap::Args;
 use comfy_table::{ContentArrangement, Table};
+use debounce_core::Clause;
 use serde_json::{Value, json};
 
 use super::input::Input;
@@ -12,6 +13,7 @@ use super::preference::PreferenceOption;
 use super::recordings::RequirementInput;
 use super::study::{failure, judging};
 use super::{Answer, Failure, Outcome, Session};
+use crate::choose::Shortfall;
 use crate::report::{json as report, words};
 use crate::requirement::Origin;
 use crate::study::Study;
@@ -96,12 +98,18 @@ impl Answer for Chosen {
                 }
                 lines.more(&reason.to_string())?;
             }
-            None => lines
-                .item("None holds", &format!("{} candidates, nearest first", ranking.candidates.len()))?,
+            None => {
+                lines
+                    .item("None holds", &format!("{} candidates, nearest first", ranking.candidates.len()))?;
+                for shortfall in ranking.candidates.iter().take(1).flat_map(|nearest| &nearest.shortfalls) {
+                    lines.more(&format!("the first: {}", words::shortfall(shortfall)))?;
+                }
+            }
         }
         lines.plain("\n")?;
         lines.plain(&candidate_table(&self.study, self.list))?;
-        lines.plain("\n* no other candidate that holds beats it in delay, ticks a second and RAM together\n")
+        lines.plain("\n")?;
+        lines.item("*", "no other candidate that holds beats it in delay, ticks a second and RAM together")
     }
 
     fn to_json(&self) -> Value {
@@ -119,7 +127,7 @@ fn candidate_table(study: &Study, list: usize) -> String {
     table.load_style(comfy_table::presets::NOTHING);
     table.set_content_arrangement(ContentArrangement::Dynamic);
     table.set_width(u16::try_from(columns()).unwrap_or(u16::MAX));
-    table.set_header(["", "law", "tick", "make <", "break <", "x limit", "median", "bytes", "says no"]);
+    table.set_header(["", "law", "tick", "make <", "break <", "x limit", "median", "bytes", "lacks"]);
     for one in study.ranking.candidates.iter().take(list) {
         let (make, break_) = one.worst_below_ns.map_or(("-".into(), "-".into()), |worst| {
             (words::at_most(worst.make), words::at_most(worst.break_))
@@ -139,8 +147,22 @@ fn candidate_table(study: &Study, list: usize) -> String {
             },
             median.map_or("-".into(), words::about),
             one.state_bytes.to_string(),
-            one.shortfalls.first().map(words::shortfall).unwrap_or_default(),
+            one.shortfalls.first().map(lacks).unwrap_or_default(),
         ]);
     }
     table.trim_fmt() + "\n"
+}
+
+/// What is asked and not given, so short that it fits a column.
+fn lacks(shortfall: &Shortfall) -> String {
+    match shortfall {
+        Shortfall::Unfaithful(Clause::Missed) => "misses".to_owned(),
+        Shortfall::Unfaithful(_) => "false edge".to_owned(),
+        Shortfall::Unproven => "a proof".to_owned(),
+        Shortfall::TooSlow { change, below_ns, allowed_ns } => {
+            format!("{} {}", words::at_most(below_ns - allowed_ns), words::change(*change))
+        }
+        Shortfall::TooBig { bytes, allowed } => format!("{} bytes", bytes - allowed),
+        Shortfall::FailsOnRecording { recording } => format!("recording {}", recording + 1),
+    }
 }

@@ -48,10 +48,8 @@ impl Input {
                 .map_err(|problem| vec![problem])
                 .and_then(|options| read_path(path, &options).map_err(|error| faults::recording(&error)))
                 .and_then(|recording| {
-                    {
-                        let name = requirement.as_written(path);
-                        observed_in(name, path, recording, &segmenting, session).map_err(|problem| vec![problem])
-                    }
+                    let name = requirement.as_written(path);
+                    observed_in(name, path, recording, &segmenting, session).map_err(|problem| vec![problem])
                 });
             match read {
                 Ok(one) => observed.push(one),

@@ -50,7 +50,8 @@ Examples:
             }
             return Ok(Box::new(Manual { page: None, written: files.commit()? }));
         }
-        let wanted = self.command.as_ref().map_or("harness.1".to_owned(), |command| format!("harness-{command}.1"));
+        let wanted =
+            self.command.as_ref().map_or("harness.1".to_owned(), |command| format!("harness-{command}.1"));
         let known: Vec<String> = pages.iter().map(|page| page.name.clone()).collect();
         let Some(page) = pages.into_iter().find(|page| page.name == wanted) else {
             return Err(unknown(self.command.as_deref().unwrap_or_default(), &known).into());

@@ -3,6 +3,7 @@
 //! Exit codes: 0 holds, 1 does not hold, 2 bad input, bad usage or an output that cannot be written. A reader
 //! of standard output that goes away ends the run quietly, with the exit code that the answer has.
 
+mod ascii;
 mod characterise;
 mod choose;
 mod completions;

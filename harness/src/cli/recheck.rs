@@ -141,7 +141,8 @@ fn module(requirement: &Requirement) -> Result<Option<ShippedModule>, Problem> {
     let path = &firmware.module.value;
     let text = fs::read_to_string(path).map_err(|error| {
         let problem = faults::unreadable("generated module", path, &error);
-        let from = requirement.source().map_or("contact.toml".into(), |source| source.path().display().to_string());
+        let from =
+            requirement.source().map_or("contact.toml".into(), |source| source.path().display().to_string());
         problem.help(format!("`harness emit --requirement {from} --output {}` writes it", path.display()))
     })?;
     Ok(Some(ShippedModule { path: requirement.as_written(path).to_path_buf(), text }))
@@ -244,8 +245,7 @@ fn answer_json(answer: &Recheck) -> Value {
             "remarks": claim.remarks(),
         })
     });
-    let recordings =
-        answer.recordings.iter().map(|file| json!({ "path": file.name, "sha256": file.sha256 }));
+    let recordings = answer.recordings.iter().map(|file| json!({ "path": file.name, "sha256": file.sha256 }));
     json!({
         "requirement": answer.requirement,
         "contact": answer.contact,

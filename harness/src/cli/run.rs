@@ -7,10 +7,11 @@ use std::process::ExitCode;
 use clap::error::ErrorKind;
 use clap::{CommandFactory, Parser, Subcommand};
 
-use super::session::{print_problems, to_stdout};
+use super::session::{print_problems, to_stderr, to_stdout};
 use super::{
-    Answer, CharacteriseArguments, ChooseArguments, CompletionsArguments, EmitArguments, Failure, GlobalOptions,
-    ManualArguments, ProveArguments, RecheckArguments, ReplayArguments, SchemaArguments, Session, StudyArguments,
+    Answer, CharacteriseArguments, ChooseArguments, CompletionsArguments, EmitArguments, Failure,
+    GlobalOptions, ManualArguments, ProveArguments, RecheckArguments, ReplayArguments, SchemaArguments,
+    Session, StudyArguments,
 };
 use crate::problem::Problem;
 
@@ -101,7 +102,7 @@ fn end(printed: Result<(), Failure>, code: u8) -> ExitCode {
         Ok(()) => ExitCode::from(code),
         Err(failure) => {
             // Standard error is all that is left; if that is closed too, the exit code stays.
-            drop(write!(anstream::stderr(), "{}", failure.rendered()));
+            drop(to_stderr(&failure.rendered()));
             failure.into()
         }
     }
@@ -113,7 +114,7 @@ fn usage(error: &clap::Error, wants_json: bool) -> ExitCode {
     if matches!(error.kind(), ErrorKind::DisplayHelp | ErrorKind::DisplayVersion) {
         return end(to_stdout(|out| write!(out, "{}", rendered.ansi())), 0);
     }
-    drop(write!(anstream::stderr(), "{}", rendered.ansi()));
+    drop(to_stderr(&rendered.ansi().to_string()));
     if !wants_json {
         return ExitCode::from(Failure::CODE);
     }

@@ -9,6 +9,7 @@ use clap::Args;
 use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
 use serde_json::{Value, json};
 
+use super::ascii::{AsciiOnly, is_ascii_terminal};
 use super::{Failure, Outcome};
 use crate::problem::{Problem, Problems};
 
@@ -73,7 +74,7 @@ impl Session {
     pub fn warn(&self, message: &str) {
         if !self.options.quiet {
             // Losing a warning because nobody reads standard error is no reason to lose the answer.
-            drop(writeln!(anstream::stderr(), "warning: {message}"));
+            drop(to_stderr(&format!("warning: {message}\n")));
         }
     }
 
@@ -131,7 +132,7 @@ impl Session {
     /// Where standard output cannot be written.
     pub fn print_failure(&self, failure: &Failure) -> Result<(), Failure> {
         // Nothing is left to tell it to if standard error is closed too; the exit code stays.
-        drop(write!(anstream::stderr(), "{}", failure.rendered()));
+        drop(to_stderr(&failure.rendered()));
         if !self.options.json {
             return Ok(());
         }
@@ -172,11 +173,21 @@ fn problem_json(problem: &Problem) -> Value {
     })
 }
 
+/// Writes to standard error, colours only on a terminal.
+pub(super) fn to_stderr(text: &str) -> io::Result<()> {
+    if is_ascii_terminal(&io::stderr()) {
+        return AsciiOnly(anstream::stderr()).write_all(text.as_bytes());
+    }
+    anstream::stderr().write_all(text.as_bytes())
+}
+
 /// Writes to standard output, colours only on a terminal; a closed pipe ends quietly.
 pub(super) fn to_stdout(write: impl FnOnce(&mut dyn Write) -> io::Result<()>) -> Result<(), Failure> {
     let stdout = io::stdout();
     let mut out = BufWriter::new(AutoStream::auto(stdout.lock()));
-    let result = write(&mut out).and_then(|()| out.flush());
+    let is_plain = is_ascii_terminal(&stdout);
+    let written = if is_plain { write(&mut AsciiOnly(&mut out)) } else { write(&mut out) };
+    let result = written.and_then(|()| out.flush());
     // What could not be written is not tried again when the buffer goes.
     drop(out.into_parts());
     match result {
@@ -188,6 +199,14 @@ pub(super) fn to_stdout(write: impl FnOnce(&mut dyn Write) -> io::Result<()>) ->
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn progress_is_ascii_with_rate_and_time_left() {
+        for template in [BAR, SPINNER] {
+            assert!(ProgressStyle::with_template(template).is_ok() && template.is_ascii(), "{template}");
+        }
+        assert!(BAR.contains("{per_sec}") && BAR.contains("{eta} left"));
+    }
 
     #[test]
     fn document_of_a_failure_holds_its_place_and_help() {

@@ -150,8 +150,7 @@ pub(super) fn replayed(study: &Study, candidate: &Candidate) -> Vec<Claim> {
 /// What it costs, as far as that is limited.
 pub(super) fn budget(requirement: &Requirement, study: &Study, candidate: &Candidate) -> Vec<Claim> {
     let mut claims = Vec::new();
-    let mut claim =
-        |claimed: String, standing| claims.push(Claim::new(Subject::Budget, claimed, standing));
+    let mut claim = |claimed: String, standing| claims.push(Claim::new(Subject::Budget, claimed, standing));
     if let Some(allowed) = requirement.budget.ram.map(|ram| ram.value.0) {
         let bytes = candidate.state_bytes;
         let standing = if bytes <= allowed {

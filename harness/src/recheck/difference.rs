@@ -62,7 +62,8 @@ mod tests {
     #[test]
     fn differences_of_a_cut_or_longer_file_give_both_lengths() {
         let cut = differences("a\n", "a\nb\n");
-        let end = "line 2 is the end of the file, the requirement gives `b`; 1 lines where the requirement gives 2";
+        let end =
+            "line 2 is the end of the file, the requirement gives `b`; 1 lines where the requirement gives 2";
         assert_eq!(cut, [end]);
         assert_eq!(differences("a\nz\nb\n", "a\nb\n").len(), 1);
     }

@@ -26,7 +26,13 @@ pub fn failure<'p>(problems: impl Iterator<Item = &'p Problem>) -> Result<String
     for problem in problems {
         let mut status = TestCaseStatus::non_success(NonSuccessKind::Error);
         status.set_type("bad input").set_message(problem.message());
-        status.set_description([problem.message()].into_iter().chain(problem.helps().iter().map(String::as_str)).collect::<Vec<_>>().join("\n"));
+        status.set_description(
+            [problem.message()]
+                .into_iter()
+                .chain(problem.helps().iter().map(String::as_str))
+                .collect::<Vec<_>>()
+                .join("\n"),
+        );
         let place = match (problem.path(), problem.line_column()) {
             (Some(path), Some((line, column))) => format!("{}:{line}:{column} can be used", path.display()),
             (Some(path), None) => format!("{} can be used", path.display()),

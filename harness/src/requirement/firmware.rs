@@ -74,3 +74,45 @@ fn law(reader: &mut Reader, section: &mut Section<'_>) -> Option<Sourced<LawPara
         }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::super::parse;
+    use crate::problem::SourceText;
+
+    const SHIPPED: &str = "[clock]\ntick = [\"1 ms\", \"2 ms\"]\n[firmware]\nmodule = \"src/gate.rs\"\n";
+
+    fn parsed(text: &str) -> super::Requirement {
+        parse(SourceText::new("gate/contact.toml", text)).unwrap_or_else(|problems| panic!("{problems}"))
+    }
+
+    #[test]
+    fn firmware_module_lies_beside_the_requirement() {
+        let requirement = parsed(SHIPPED);
+        let module = requirement.firmware.as_ref().expect("firmware").module.value.clone();
+        assert_eq!(module, std::path::Path::new("gate/src/gate.rs"));
+        assert_eq!(requirement.as_written(&module), std::path::Path::new("src/gate.rs"));
+    }
+
+    #[test]
+    fn as_shipped_narrows_clock_and_law_to_what_is_stated() {
+        let (all, law) = parsed(SHIPPED).as_shipped();
+        assert_eq!((all.tick_periods().value.len(), law), (2, None));
+        let stated = format!("{SHIPPED}law = \"integrator 5\"\ntick = \"2 ms\"\n");
+        let (narrowed, law) = parsed(&stated).as_shipped();
+        let ticks: Vec<String> = narrowed.tick_periods().value.iter().map(ToString::to_string).collect();
+        assert_eq!((ticks, law), (vec!["2 ms".to_owned()], Some("integrator 5".parse().expect("a law"))));
+    }
+
+    #[test]
+    fn tick_is_allowed_by_a_list_or_a_range_that_holds_it() {
+        let allows = |text: &str, tick: &str| {
+            let clock = parsed(&format!("[clock]\ntick = {text}\n")).clock;
+            clock.ticks.expect("ticks").value.allows(tick.parse().expect("a tick"))
+        };
+        assert!(allows("[\"1 ms\", \"2 ms\"]", "2 ms") && !allows("[\"1 ms\", \"2 ms\"]", "1500 us"));
+        let range = "{ from = \"1 ms\", to = \"2 ms\" }";
+        assert!(allows(range, "1 ms") && allows(range, "1500 us") && allows(range, "2 ms"));
+        assert!(!allows(range, "999 us") && !allows(range, "2001 us"));
+    }
+}

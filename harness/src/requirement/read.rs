@@ -9,11 +9,11 @@ use debounce_core::{PerChange, PerPosition};
 use toml::de::{DeTable, DeValue};
 
 use super::check::check;
-use super::{firmware, folder_of};
 use super::section::{Reader, Section};
 use super::{
     Budget, Clock, Contact, Figures, Level, Recording, Requirement, Sourced, Thresholds, TickChoice,
 };
+use super::{firmware, folder_of};
 use crate::problem::{Problem, Problems, SourceText, plain_reason};
 use crate::quantity::{Quantity, TickPeriod, Time, Voltage};
 
