@@ -1,7 +1,6 @@
 //! From what was typed to an exit code.
 
 use std::ffi::OsString;
-use std::io::Write;
 use std::process::ExitCode;
 
 use clap::error::ErrorKind;

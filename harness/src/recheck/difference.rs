@@ -3,8 +3,12 @@
 /// Lines that are shown.
 const SHOWN: usize = 3;
 
-/// Every stretch where `shipped` parts from `made`, the first few shown; line endings do not count.
+/// Every line where `shipped` parts from `made`, the first few shown; line endings do not count, nor does the layout of
+/// the code, which the firmware's own `rustfmt` may change.
 pub(super) fn differences(shipped: &str, made: &str) -> Vec<String> {
+    if tokens(shipped) == tokens(made) {
+        return Vec::new();
+    }
     let (shipped, made): (Vec<&str>, Vec<&str>) = (shipped.lines().collect(), made.lines().collect());
     let same_before = shipped.iter().zip(&made).take_while(|(one, other)| one == other).count();
     if same_before == shipped.len() && same_before == made.len() {
@@ -38,6 +42,34 @@ pub(super) fn differences(shipped: &str, made: &str) -> Vec<String> {
     told
 }
 
+/// The code without its layout. Comments stay as they are, line by line, so that none can swallow code unnoticed.
+fn tokens(text: &str) -> String {
+    let mut tokens = String::new();
+    let is_word = |letter: char| letter.is_alphanumeric() || letter == '_';
+    // What stands between the last letter and the next: nothing, white space, or a comma somewhere in it.
+    let mut gap = None;
+    for line in text.lines().map(str::trim) {
+        if line.starts_with("//") {
+            tokens.extend(["\n", line, "\n"]);
+            gap = None;
+            continue;
+        }
+        gap = gap.or(Some(' '));
+        for letter in line.chars() {
+            match letter {
+                ',' => gap = Some(','),
+                space if space.is_whitespace() => gap = gap.or(Some(' ')),
+                other => {
+                    let between = gap.take().filter(|_| is_word(other) && tokens.ends_with(is_word));
+                    tokens.extend(between);
+                    tokens.push(other);
+                }
+            }
+        }
+    }
+    tokens
+}
+
 fn quoted(line: &str) -> String {
     format!("`{}`", line.trim())
 }
@@ -49,6 +81,26 @@ mod tests {
     #[test]
     fn differences_of_the_same_lines_are_none_whatever_ends_them() {
         assert_eq!(differences("a\nb\n", "a\r\nb"), [""; 0]);
+    }
+
+    #[test]
+    fn differences_of_layout_are_none_and_those_of_meaning_are_some() {
+        let made =
+            "const A: T = T::new(2, 2)\n    .quiet(4)\n    .calm(0);\n// a comment\nconst B: u8 = 1;\n";
+        let other =
+            "const A: T = T::new(\n    2,\n    2,\n).quiet(4).calm(0);\n\n// a comment\nconst B: u8 = 1;";
+        assert_eq!(differences(other, made), [""; 0]);
+        for (from, to) in [
+            ("2, 2", "22"),
+            ("2, 2", "2 2"),
+            ("const B", "constB"),
+            ("a comment\n", "a comment "),
+            ("// a comment\n", ""),
+            ("quiet(4)", "quiet(5)"),
+        ] {
+            let changed = made.replacen(from, to, 1);
+            assert_ne!(differences(&changed, made), [""; 0], "{from} to {to}");
+        }
     }
 
     #[test]
