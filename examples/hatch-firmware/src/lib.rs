@@ -20,7 +20,10 @@ impl Hatch {
     /// A hatch that is shut; the button may be held when the program starts.
     #[must_use]
     pub fn new() -> Self {
-        Self { button: hatch_button::starting(), is_open: false }
+        Self {
+            button: hatch_button::starting(),
+            is_open: false,
+        }
     }
 
     /// To be called from the timer interrupt, with the level of the line; true while the hatch should be open.
