@@ -3,7 +3,7 @@
 use std::io::{self, Write};
 
 use clap::Args;
-use comfy_table::{ContentArrangement, Table};
+use comfy_table::{ColumnConstraint, ContentArrangement, Table, Width};
 use debounce_core::Clause;
 use serde_json::{Value, json};
 
@@ -35,7 +35,7 @@ pub struct ChooseArguments {
     #[command(flatten)]
     pub preference: PreferenceOption,
     /// So many candidates are listed
-    #[arg(long, value_name = "COUNT", default_value_t = 12)]
+    #[arg(long, value_name = "COUNT", default_value_t = 6)]
     pub list: usize,
 }
 
@@ -149,6 +149,10 @@ fn candidate_table(study: &Study, list: usize) -> String {
             one.state_bytes.to_string(),
             one.shortfalls.first().map(lacks).unwrap_or_default(),
         ]);
+    }
+    if let Some(law) = table.column_mut(1) {
+        // Room for two parameters of a law side by side.
+        law.set_constraint(ColumnConstraint::LowerBoundary(Width::Fixed(23)));
     }
     table.trim_fmt() + "\n"
 }
