@@ -10,9 +10,9 @@ const ANSWERS: [&[&str]; 14] = [
     &[],
     &["--help"],
     &["study"],
-    &["study", "vent.vcd", "--closed", "high", "--latency", "5 ms"],
+    &["study", "vent.vcd", "--closed", "high", "--latency", "5 ms", "--tick", "5 ms"],
     &["characterise", "vent.vcd", "--closed", "high"],
-    &["choose", "vent.vcd", "--closed", "high", "--tick", "2 ms,5 ms"],
+    &["choose", "vent.vcd", "--closed", "high", "--tick", "5 ms"],
     &["choose", "--bounce", "5 ms", "--latency", "6 ms", "--tick", "1 ms"],
     &["prove", "integrator 5", "--envelope", "dwell=20 bounce=5/3 glitch=1/1 quiet=10", "--tick", "1 ms"],
     &["prove", "shift-register 2", "--envelope", "dwell=20 bounce=5/3 glitch=1/1 quiet=10", "--tick", "1 ms"],
@@ -32,6 +32,8 @@ role = \"guarding\"
 [required]
 bounce = \"1 ms\"
 latency = \"9 ms\"
+[clock]
+tick = \"5 ms\"
 ";
 
 fn bench() -> Bench {
@@ -70,7 +72,11 @@ fn text_of_every_command_is_ascii_and_fits_80_columns() {
             "{arguments:?}: more than a screen\n{}",
             unknown.stdout
         );
-        let wide = run(&bench, arguments, Some("120"));
+    }
+    for arguments in [ANSWERS[4], ANSWERS[7]] {
+        let (narrow, wide) = (run(&bench, arguments, Some("60")), run(&bench, arguments, Some("120")));
+        let widest = |run: &Run| run.stdout.lines().map(str::len).max();
+        assert!(widest(&narrow) < widest(&wide), "{}", wide.stdout);
         fits(arguments, &wide.stdout, 120);
     }
 }

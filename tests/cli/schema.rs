@@ -119,9 +119,9 @@ fn json_of_every_command_keeps_its_schema() {
         let document = bench.run(&[&arguments[..], &["--json"]].concat()).ends(code).json();
         let command = document["command"].as_str().expect("a command").to_owned();
         let schema = bundled(&command).unwrap_or_else(|| panic!("no schema for {command}"));
-        assert_eq!(faults(&validator(&schema), &document), [""; 0], "{arguments:?}");
-        let undescribed = faults(&validator(&strict(schema)), &document);
-        assert_eq!(undescribed, [""; 0], "describe these in harness/schema/{command}.json: {arguments:?}");
+        // What keeps the stricter one keeps the published one as well.
+        let told = faults(&validator(&strict(schema)), &document);
+        assert_eq!(told, [""; 0], "describe it in harness/schema/{command}.json: {arguments:?}");
         met.push(command);
     }
     assert!(names().all(|name| met.iter().any(|command| command == name)), "{met:?}");

@@ -127,14 +127,19 @@ fn candidate_table(study: &Study, list: usize) -> String {
     table.load_style(comfy_table::presets::NOTHING);
     table.set_content_arrangement(ContentArrangement::Dynamic);
     table.set_width(u16::try_from(columns()).unwrap_or(u16::MAX));
-    table.set_header(["", "law", "tick", "make <", "break <", "x limit", "median", "bytes", "lacks"]);
-    for one in study.ranking.candidates.iter().take(list) {
+    let listed = || study.ranking.candidates.iter().take(list);
+    // Where all that are listed hold, there is nothing to lack, and more room for the rest.
+    let has_lack = listed().any(|one| !one.holds());
+    let mut header = vec!["", "law", "tick", "make <", "break <", "x limit", "median", "bytes"];
+    header.extend(has_lack.then_some("lacks"));
+    table.set_header(header);
+    for one in listed() {
         let (make, break_) = one.worst_below_ns.map_or(("-".into(), "-".into()), |worst| {
             (words::at_most(worst.make), words::at_most(worst.break_))
         });
         let median =
             one.measured.iter().filter_map(|m| m.make.latency.as_ref()).map(|l| l.delay.median_ns).max();
-        table.add_row([
+        let mut row = vec![
             if one.pareto { "*".to_owned() } else { String::new() },
             one.parameters.to_string(),
             study.tick(one).to_string(),
@@ -147,12 +152,13 @@ fn candidate_table(study: &Study, list: usize) -> String {
             },
             median.map_or("-".into(), words::about),
             one.state_bytes.to_string(),
-            one.shortfalls.first().map(lacks).unwrap_or_default(),
-        ]);
+        ];
+        row.extend(has_lack.then(|| one.shortfalls.first().map(lacks).unwrap_or_default()));
+        table.add_row(row);
     }
     if let Some(law) = table.column_mut(1) {
         // Room for two parameters of a law side by side.
-        law.set_constraint(ColumnConstraint::LowerBoundary(Width::Fixed(23)));
+        law.set_constraint(ColumnConstraint::LowerBoundary(Width::Fixed(22)));
     }
     table.trim_fmt() + "\n"
 }
