@@ -48,9 +48,11 @@ Examples:
   One recording with a single channel, every operation listed:
     harness characterise gate.vcd --operations
   An oscilloscope export in volts:
-    harness characterise gate.csv --threshold-low \"0.8 V\" --threshold-high \"2.0 V\"
+    harness characterise gate.csv --threshold-low \"0.8 V\" \\
+      --threshold-high \"2.0 V\"
   Several recordings, for a program:
-    harness characterise day1.vcd day2.vcd --channel top.gate --confidence \"99 %\" --json";
+    harness characterise day1.vcd day2.vcd --channel top.gate \\
+      --confidence \"99 %\" --json";
 }
 
 impl CharacteriseArguments {
