@@ -23,7 +23,7 @@ fn words(line: &str) -> Vec<String> {
 fn examples_parse<A: Args + FromArgMatches>(command: &'static str, examples: &str) {
     assert!(examples.lines().all(|line| line.len() <= 80), "wider than 80 columns: {examples}");
     // A stroke at the end of a line joins it with the next, as a shell has it.
-    let joined = examples.replace("\\\n     ", "");
+    let joined = examples.replace(" \\\n     ", "");
     let lines: Vec<&str> =
         joined.lines().map(str::trim).filter(|line| line.starts_with("harness ")).collect();
     assert_eq!(lines.len(), 3, "three examples for {command}");

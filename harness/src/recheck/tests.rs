@@ -36,7 +36,7 @@ fn markdown_means_only_what_it_should() {
 
 #[test]
 fn junit_counts_each_standing_and_leaves_out_control_codes() {
-    let broken = answer(Standing::Broken(vec!["off by 1\u{1b}".to_owned(), "and more".to_owned()]));
+    let broken = answer(Standing::Broken(vec!["off by 1\u{1b}[1m".to_owned(), "and more".to_owned()]));
     let text = junit::answers(&[broken, answer(Standing::Open("later".to_owned()))]).unwrap();
     assert!(
         text.contains("<testsuites name=\"harness recheck\" tests=\"4\" failures=\"1\" errors=\"0\">"),
