@@ -26,6 +26,10 @@ law = \"state-machine confirm=2 patience=2 lockout=2/1\"
 tick = \"5 ms\"
 ";
 
+/// A panel for `generate`.
+const PANEL: &str = "[scenario]\nseed = 3\n[[contact]]\nname = \"gate\"\npreset = \"tactile\"\n\
+    [[operation]]\nhabit = \"presses\"\ncount = 5\n";
+
 const OWN: &str = ".i 1\n.o 1\n.r off\n0 off off 0\n1 off on 0\n0 on off 1\n1 on on 1\n";
 
 /// A folder with everything that the examples name.
@@ -47,6 +51,7 @@ fn bench() -> Bench {
         .iter()
         .fold(bench, |bench, name| bench.and(name, &recording))
         .and("gate.csv", volts)
+        .and("panel.toml", PANEL)
         .and("own.kiss2", OWN);
     for folder in ["", "gate/", "door/"] {
         let requirement = format!("{folder}contact.toml");

@@ -36,6 +36,9 @@ pub struct CharacteriseArguments {
     /// List every operation
     #[arg(long)]
     pub operations: bool,
+    /// Draw how the bounces of each kind are distributed
+    #[arg(long)]
+    pub histogram: bool,
     /// The report.
     #[command(flatten)]
     pub report: ReportOption,
@@ -78,8 +81,8 @@ impl CharacteriseArguments {
             let found = html::Characterised { observed, resolved, claims: &claims, warnings: &cautions };
             written.push(report.write(&html::characterised(&found, &origin))?);
         }
-        let (observed, listed) = (input.observed, self.operations);
-        Ok(Box::new(Characterised { observed, claims, cautions, outcome, listed, written }))
+        let (observed, listed, histogram) = (input.observed, self.operations, self.histogram);
+        Ok(Box::new(Characterised { observed, claims, cautions, outcome, listed, histogram, written }))
     }
 }
 
@@ -90,6 +93,7 @@ struct Characterised {
     cautions: Vec<Caution>,
     outcome: Outcome,
     listed: bool,
+    histogram: bool,
     written: Vec<PathBuf>,
 }
 
@@ -115,7 +119,7 @@ impl Answer for Characterised {
         }
         figures::between(&mut lines, &self.claims.pooled)?;
         for change in [Change::Make, Change::Break] {
-            figures::of_kind(&mut lines, &self.claims.pooled, change)?;
+            figures::of_kind(&mut lines, &self.claims.pooled, change, self.histogram)?;
         }
         claims(&mut lines, &self.claims)?;
         figures::limits(&mut lines, &self.claims)?;

@@ -66,8 +66,13 @@ fn significant(rate: f64) -> String {
     format!("{rate:.digits$}")
 }
 
-/// What the operations of one kind have in common.
-pub(super) fn of_kind(lines: &mut Lines<'_>, figures: &Figures, change: Change) -> io::Result<()> {
+/// What the operations of one kind have in common; `drawn` with the histogram of their bounces.
+pub(super) fn of_kind(
+    lines: &mut Lines<'_>,
+    figures: &Figures,
+    change: Change,
+    drawn: bool,
+) -> io::Result<()> {
     let found = figures.changes.of(change);
     let Some(bounce) = found.bounce_ns else { return Ok(()) };
     let period = figures.resolution_ns;
@@ -93,7 +98,7 @@ pub(super) fn of_kind(lines: &mut Lines<'_>, figures: &Figures, change: Change) 
         }
     }
     if found.count >= FEWEST {
-        if let Some(histogram) = found.histogram(period) {
+        if let Some(histogram) = found.histogram(period).filter(|_| drawn) {
             bars(lines, &histogram)?;
         }
         order(lines, &found.independence)?;

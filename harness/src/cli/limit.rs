@@ -44,10 +44,11 @@ impl LimitArguments {
 Examples:
   In ticks:
     harness limit --envelope \"dwell=20 bounce=5/3 glitch=1/1 quiet=10\"
-  In time, at one tick period, and the best logic as a table to be proved or replayed:
+  In time, at one tick period, and the best logic as a table to be proved:
     harness limit --requirement contact.toml --tick \"1 ms\" --machine best.kiss2
   Where no formula is known, as Rust for the firmware:
-    harness limit --envelope \"dwell=30 bounce=3/2 glitch=1/3 quiet=2\" --machine best.rs";
+    harness limit --envelope \"dwell=30 bounce=3/2 glitch=1/3 quiet=2\" \\
+      --machine best.rs";
 }
 
 impl LimitArguments {

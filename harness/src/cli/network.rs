@@ -50,9 +50,11 @@ impl NetworkArguments {
     pub const EXAMPLES: &'static str = "\
 Examples:
   A push-button on a microcontroller pin:
-    harness network --supply \"3.3 V 5 %\" --pull \"10 kohm 5 %\" --series \"1 kohm 5 %\" --capacitor \"100 nF 10 % X7R\"
+    harness network --supply \"3.3 V 5 %\" --pull \"10 kohm 5 %\" \\
+      --series \"1 kohm 5 %\" --capacitor \"100 nF 10 % X7R\"
   The same with a Schmitt gate and a diode that quickens the edge after a break:
-    harness network --input schmitt-hc --supply \"5 V\" --series \"10 kohm\" --capacitor \"100 nF\" --diode silicon
+    harness network --input schmitt-hc --supply \"5 V\" --series \"10 kohm\" \\
+      --capacitor \"100 nF\" --diode silicon
   The [network] of a requirement file, with another capacitor:
     harness network --requirement contact.toml --capacitor \"22 nF 5 % C0G\"";
 }
