@@ -11,6 +11,7 @@ pub mod demo;
 pub mod emit;
 pub mod envelope;
 pub mod generate;
+pub mod guide;
 pub mod law_text;
 mod level;
 pub mod logic;
