@@ -12,6 +12,7 @@ mod limit;
 mod network;
 mod prove;
 mod replay;
+mod report;
 mod study;
 
 use std::fs::File;

@@ -29,12 +29,16 @@ fn study_writes_its_results_and_a_module_that_compiles() {
     let bench = Bench::new();
     let run = bench.run(&["study", "--output", "results"]).ends(0);
     assert!(
-        run.stdout.contains("Written      results/study.json, results/vent_push_button.rs"),
+        run.stdout
+            .contains("Written      results/report.html, results/study.json, results/vent_push_button.rs"),
         "{}",
         run.stdout
     );
     let names: Vec<String> = bench.listing().into_keys().collect();
-    assert_eq!(names, ["results", "results/study.json", "results/vent_push_button.rs"]);
+    assert_eq!(
+        names,
+        ["results", "results/report.html", "results/study.json", "results/vent_push_button.rs"]
+    );
     let read = |name: &str| std::fs::read_to_string(bench.path().join(name)).expect("a file");
     let results: serde_json::Value = serde_json::from_str(&read("results/study.json")).expect("JSON");
     assert!(results.is_object(), "{results}");
@@ -91,5 +95,5 @@ fn study_that_does_not_hold_ends_with_1_and_writes_no_module() {
     let run = bench.run(&line).ends(1);
     assert!(run.stdout.contains("Recommended  nothing: none of "), "{}", run.stdout);
     let names: Vec<String> = bench.listing().into_keys().collect();
-    assert_eq!(names, ["results", "results/study.json", "vent.vcd"]);
+    assert_eq!(names, ["results", "results/report.html", "results/study.json", "vent.vcd"]);
 }

@@ -1,6 +1,7 @@
 //! `harness characterise`: what the recordings show of the contact.
 
 use std::io::{self, Write};
+use std::path::PathBuf;
 
 use clap::Args;
 use debounce_core::Change;
@@ -12,10 +13,11 @@ use super::lines::Lines;
 use super::operations_table::operations;
 use super::recorded::{claims, recorded};
 use super::recordings::RequirementInput;
+use super::report::{ReportOption, written};
 use super::{Answer, Failure, Outcome, Session};
 use crate::characterise::GapOrigin;
 use crate::problem::Problem;
-use crate::report::{characterised, json as report, words};
+use crate::report::{characterised, html, json as report, words};
 use crate::requirement::Origin;
 use crate::study::{Caution, Claims, Observed, measured};
 
@@ -34,6 +36,9 @@ pub struct CharacteriseArguments {
     /// List every operation
     #[arg(long)]
     pub operations: bool,
+    /// The report.
+    #[command(flatten)]
+    pub report: ReportOption,
 }
 
 impl CharacteriseArguments {
@@ -52,6 +57,7 @@ impl CharacteriseArguments {
     /// Runs the command.
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let input = Input::with_recordings(&self.input, session)?;
+        let report = self.report.prepare()?;
         let resolved = input.requirement.fill_in(&measured(&input.observed))?;
         let claims = Claims::of(&input.observed, &resolved).map_err(Problem::told)?;
         let cautions = Caution::all(&input.observed, &resolved, &claims);
@@ -62,8 +68,16 @@ impl CharacteriseArguments {
             .iter()
             .any(|origin| !matches!(origin, Origin::Default(_)));
         let outcome = if is_asked && !claims.are_reached() { Outcome::DoesNotHold } else { Outcome::Holds };
+        let mut files_written = Vec::new();
+        if let Some(report) = report {
+            let origin =
+                html::Origin { command: session.line().to_owned(), files: input.files()?, seeds: Vec::new() };
+            let found =
+                html::Characterised { observed: &input.observed, resolved: &resolved, claims: &claims };
+            files_written.push(report.write(&html::characterised(&found, &origin))?);
+        }
         let (observed, listed) = (input.observed, self.operations);
-        Ok(Box::new(Characterised { observed, claims, cautions, outcome, listed }))
+        Ok(Box::new(Characterised { observed, claims, cautions, outcome, listed, written: files_written }))
     }
 }
 
@@ -74,6 +88,7 @@ struct Characterised {
     cautions: Vec<Caution>,
     outcome: Outcome,
     listed: bool,
+    written: Vec<PathBuf>,
 }
 
 impl Answer for Characterised {
@@ -106,7 +121,7 @@ impl Answer for Characterised {
         for one in self.observed.iter().filter(|_| self.listed) {
             operations(&mut lines, one)?;
         }
-        Ok(())
+        written(&mut lines, &self.written)
     }
 
     fn to_json(&self) -> Value {

@@ -1,6 +1,7 @@
 //! `harness choose`: ranks the candidates for a requirement.
 
 use std::io::{self, Write};
+use std::path::PathBuf;
 
 use clap::Args;
 use comfy_table::Table;
@@ -12,12 +13,13 @@ use super::lines::{Lines, strong};
 use super::preference::PreferenceOption;
 use super::recorded::claims;
 use super::recordings::RequirementInput;
+use super::report::{ReportOption, written};
 use super::study::failure;
 use super::{Answer, Failure, Outcome, Session};
 use crate::clock_range::{Activity, ClockQuestion, asleep, clock_range, slowest_by_tolerance};
 use crate::problem::Problem;
 use crate::report::clock_plot::ClockPlot;
-use crate::report::{characterised, json as report, words};
+use crate::report::{characterised, html, json as report, words};
 use crate::requirement::{Origin, Resolved};
 use crate::study::Study;
 
@@ -49,6 +51,9 @@ pub struct ChooseArguments {
     /// Disturbances in an hour, for the same
     #[arg(long, value_name = "COUNT", default_value_t = 0)]
     pub disturbances_per_hour: u32,
+    /// The report.
+    #[command(flatten)]
+    pub report: ReportOption,
 }
 
 impl ChooseArguments {
@@ -67,6 +72,8 @@ impl ChooseArguments {
     /// Runs the command.
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let input = Input::with_or_without_recordings(&self.input, session)?;
+        let report = self.report.prepare()?;
+        let files = if report.is_some() { input.files()? } else { Vec::new() };
         let study =
             Study::of(input.observed, &input.requirement, self.preference.into(), |_| {}).map_err(failure)?;
         study.cautions().iter().for_each(|caution| session.warn(&caution.to_string()));
@@ -75,7 +82,12 @@ impl ChooseArguments {
             disturbances_per_hour: self.disturbances_per_hour,
         };
         let clock = clock_view(&study, activity)?;
-        Ok(Box::new(Chosen { study, list: self.list, clock, plot: self.plot }))
+        let mut written = Vec::new();
+        if let Some(report) = report {
+            let origin = html::Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
+            written.push(report.write(&html::study(&study, false, &origin))?);
+        }
+        Ok(Box::new(Chosen { study, list: self.list, clock, plot: self.plot, written }))
     }
 }
 
@@ -85,6 +97,7 @@ struct Chosen {
     list: usize,
     clock: ClockView,
     plot: bool,
+    written: Vec<PathBuf>,
 }
 
 /// Tolerances of the clock that are looked at: exact, a crystal of 100 ppm, oscillators on the chip (common practice).
@@ -156,7 +169,7 @@ impl Answer for Chosen {
             let allowed_ns = latency.make.value.ns().min(latency.break_.value.ns());
             lines.plain(&format!("\n{}", ClockPlot { range: &self.clock.range, allowed_ns }))?;
         }
-        Ok(())
+        written(&mut lines, &self.written)
     }
 
     fn to_json(&self) -> Value {

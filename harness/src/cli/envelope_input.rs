@@ -9,6 +9,7 @@ use super::recordings::RequirementInput;
 use super::{Failure, Session};
 use crate::problem::Problem;
 use crate::quantity::TickPeriod;
+use crate::report::html::SourceFile;
 use crate::report::words;
 use crate::requirement::RequirementOptions;
 use crate::study::measured;
@@ -27,8 +28,15 @@ pub struct EnvelopeInput {
 impl EnvelopeInput {
     /// The envelope in samples, and the tick period where there is one.
     pub(super) fn resolve(&self, session: &Session) -> Result<(Envelope, Option<TickPeriod>), Failure> {
+        let EnvelopeGiven { envelope, tick, .. } = self.given(session, false)?;
+        Ok((envelope, tick))
+    }
+
+    /// The same with everything a report says of where it comes from; the files only where they are wanted.
+    pub(super) fn given(&self, session: &Session, with_files: bool) -> Result<EnvelopeGiven, Failure> {
         if let Some(EnvelopeText(envelope)) = self.envelope {
-            return Ok((envelope, self.tick_beside_envelope()?));
+            let tick = self.tick_beside_envelope()?;
+            return Ok(EnvelopeGiven { envelope, tick, caution: None, files: Vec::new() });
         }
         if self.input.is_empty() {
             return Err(Problem::new("no envelope is given")
@@ -42,7 +50,8 @@ impl EnvelopeInput {
         let resolved = input.requirement.resolve(&measured(&input.observed))?;
         let tick = only(&resolved.ticks.value)?;
         let envelope = resolved.physical().in_ticks(&resolved.clock(tick)).map_err(Problem::told)?;
-        Ok((envelope, Some(tick)))
+        let files = if with_files { input.files()? } else { Vec::new() };
+        Ok(EnvelopeGiven { envelope, tick: Some(tick), caution: resolved.caution(), files })
     }
 
     /// An envelope in ticks leaves nothing open but how long a tick is.
@@ -61,6 +70,14 @@ impl EnvelopeInput {
         }
         if ticks.is_empty() { Ok(None) } else { Ok(Some(only(ticks)?)) }
     }
+}
+
+/// An envelope with what came with it.
+pub(super) struct EnvelopeGiven {
+    pub(super) envelope: Envelope,
+    pub(super) tick: Option<TickPeriod>,
+    pub(super) caution: Option<&'static str>,
+    pub(super) files: Vec<SourceFile>,
 }
 
 /// The one tick period that an answer is for.

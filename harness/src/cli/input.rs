@@ -4,8 +4,9 @@ use std::path::Path;
 
 use crate::characterise::SegmentOptions;
 use crate::demo;
-use crate::problem::{Problem, Problems, SourceText};
+use crate::problem::{Problem, Problems, SourceText, plain_reason};
 use crate::quantity::Time;
+use crate::report::html::SourceFile;
 use crate::requirement::{Level, Recording as Wanted, Requirement, parse};
 use crate::study::{Observed, observe};
 use crate::trace::{Polarity, ReadOptions, Recording, Thresholds, read_bytes, read_path};
@@ -37,6 +38,26 @@ impl Input {
         session: &Session,
     ) -> Result<Self, Failure> {
         Self::of(input.load()?, input, session)
+    }
+
+    /// The files that were read, with what tells them from any other.
+    ///
+    /// They are read a second time for it, so this is for those who want a report.
+    pub(super) fn files(&self) -> Result<Vec<SourceFile>, Failure> {
+        if self.demo {
+            return Ok(vec![
+                SourceFile::of_bytes(demo::REQUIREMENT_NAME, "requirement", demo::REQUIREMENT.as_bytes()),
+                SourceFile::of_bytes(demo::RECORDING_NAME, "recording", demo::RECORDING),
+            ]);
+        }
+        let mut files = Vec::new();
+        if let Some(source) = self.requirement.source() {
+            files.push(source_file(source.path(), "requirement")?);
+        }
+        for recording in &self.requirement.recordings {
+            files.push(source_file(&recording.path.value, "recording")?);
+        }
+        Ok(files)
     }
 
     fn of(requirement: Requirement, input: &RequirementInput, session: &Session) -> Result<Self, Failure> {
@@ -73,6 +94,19 @@ impl Input {
         let one = observed_in(Path::new(demo::RECORDING_NAME), recording, &segmenting, session)?;
         Ok(Self { requirement, observed: vec![one], demo: true })
     }
+}
+
+/// A file that was read, named by its contents.
+pub(super) fn source_file(path: &Path, role: &'static str) -> Result<SourceFile, Problem> {
+    SourceFile::of_path(path, role).map_err(|error| {
+        let message = format!(
+            "a report names each file by its contents, and this one cannot be read again: {}",
+            plain_reason(&error)
+        );
+        Problem::new(message)
+            .in_file(path)
+            .help("keep the recording as an ordinary file, or leave out --report")
+    })
 }
 
 fn read_options(

@@ -32,8 +32,10 @@ mod reading;
 mod recorded;
 mod recordings;
 mod replay;
+mod report;
 mod run;
 mod session;
+mod shell;
 mod study;
 mod study_answer;
 
@@ -57,6 +59,7 @@ pub use prove::{Promise, ProveArguments};
 pub use reading::{FieldDelimiter, FractionMark, ReadingOptions, UnitOfTimes, UnknownValue};
 pub use recordings::RequirementInput;
 pub use replay::ReplayArguments;
+pub use report::ReportOption;
 pub use run::run;
 pub use session::{Answer, GlobalOptions, SCHEMA, Session};
 pub use study::StudyArguments;

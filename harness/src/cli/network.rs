@@ -7,13 +7,15 @@ use clap::Args;
 use debounce_core::{Change, PerChange, Position};
 use serde_json::{Value, json};
 
+use super::input::source_file;
 use super::lines::Lines;
+use super::report::{ReportOption, written};
 use super::{Answer, Failure, Outcome, Session};
 use crate::network::{Analysis, Delay, Review, Waveform, caution, review};
 use crate::problem::Problem;
 use crate::quantity::Spread;
 use crate::report::si::si;
-use crate::report::{network as report, words};
+use crate::report::{html, network as report, words};
 use crate::requirement::{Level, NetworkOptions, NetworkTable, Origin, ResolvedNetwork, Role, read};
 
 /// Works out the network of resistors, capacitor and input in front of a pin.
@@ -38,6 +40,9 @@ pub struct NetworkArguments {
     /// The network.
     #[command(flatten)]
     pub network: NetworkOptions,
+    /// The report.
+    #[command(flatten)]
+    pub report: ReportOption,
 }
 
 impl NetworkArguments {
@@ -54,7 +59,8 @@ Examples:
 
 impl NetworkArguments {
     /// Runs the command.
-    pub(super) fn run(&self, _: &Session) -> Result<Box<dyn Answer>, Failure> {
+    pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
+        let report = self.report.prepare()?;
         let requirement = self.requirement.as_ref().map(|path| read(path)).transpose()?;
         let mut table = NetworkTable::default();
         let (mut closed, mut role) = (self.closed, self.role.unwrap_or(Role::Control));
@@ -81,7 +87,22 @@ impl NetworkArguments {
         let analysis = resolved.network.analysis();
         let review = review(&resolved, &analysis);
         let waveforms = resolved.network.waveforms();
-        Ok(Box::new(NetworkAnswer { resolved, analysis, review, waveforms, role }))
+        let mut written = Vec::new();
+        if let Some(report) = report {
+            let files = self.requirement.iter().map(|path| source_file(path, "requirement"));
+            let files = files.collect::<Result<_, _>>()?;
+            let origin = html::Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
+            let cautions: Vec<_> = [role.caution(), caution(&resolved)].into_iter().flatten().collect();
+            let found = html::Networked {
+                resolved: &resolved,
+                analysis: &analysis,
+                review: &review,
+                waveforms: &waveforms,
+                cautions: &cautions,
+            };
+            written.push(report.write(&html::network(&found, &origin))?);
+        }
+        Ok(Box::new(NetworkAnswer { resolved, analysis, review, waveforms, role, written }))
     }
 }
 
@@ -92,6 +113,7 @@ struct NetworkAnswer {
     review: Review,
     waveforms: PerChange<Waveform>,
     role: Role,
+    written: Vec<PathBuf>,
 }
 
 impl Answer for NetworkAnswer {
@@ -125,11 +147,12 @@ impl Answer for NetworkAnswer {
         lines.item("Method", match self.resolved.network.diode {
             None => "exact (one exponential for each of two capacitances); least and greatest by moving each part to its ends",
             Some(_) => "implicit steps through Shockley's diode equation, each in error by less than a millionth of the supply; least and greatest by moving each part to its ends",
-        })
+        })?;
+        written(&mut lines, &self.written)
     }
 
     fn to_json(&self) -> Value {
-        let Self { resolved, analysis, review, waveforms, role } = self;
+        let Self { resolved, analysis, review, waveforms, role, .. } = self;
         let mut value = report::network(resolved, analysis, review, waveforms);
         value["cautions"] =
             json!([caution(resolved), role.caution()].into_iter().flatten().collect::<Vec<_>>());

@@ -5,16 +5,20 @@ use std::path::PathBuf;
 use clap::{Args, ValueEnum};
 use debounce_core::{Envelope, Period};
 
-use super::envelope_input::EnvelopeInput;
+use super::envelope_input::{EnvelopeGiven, EnvelopeInput};
 use super::envelope_text::EnvelopeText;
+use super::input::source_file;
 use super::logic_name::{LogicName, NamedLogic, OutputOf};
 use super::machine_file::MachineFile;
 use super::prove_answer::Proved;
+use super::report::ReportOption;
+use super::shell::shell_word;
 use super::{Answer, Failure, OutputFolder, Session};
 use crate::choose::known_limit;
 use crate::problem::Problem;
 use crate::prove::{Beyond, Contract, Effort, Limits, closed_form_limit, prove_contract};
 use crate::quantity::TickPeriod;
+use crate::report::html::{self, Origin};
 use crate::report::witness::write_witness;
 
 /// Proves or refutes one law in an envelope.
@@ -50,6 +54,9 @@ pub struct ProveArguments {
     /// Search for immunity, shortest operations and recovery however large the proof is
     #[arg(long)]
     pub thorough: bool,
+    /// The report.
+    #[command(flatten)]
+    pub report: ReportOption,
 }
 
 /// A promise.
@@ -88,7 +95,12 @@ impl ProveArguments {
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let name = self.logic()?;
         let logic = NamedLogic::read(&name, self.reading)?;
-        let (envelope, tick) = self.envelope.resolve(session)?;
+        let given = self.envelope.given(session, self.report.is_wanted())?;
+        let EnvelopeGiven { envelope, tick, caution, mut files } = given;
+        if let (LogicName::Table(path), true) = (&name, self.report.is_wanted()) {
+            files.push(source_file(path, "next-state table")?);
+        }
+        let report = self.report.prepare()?;
         let witness_file = self.witness.as_deref().map(OutputFolder::of_file).transpose()?;
         let machine_file = self.machine.as_deref().map(MachineFile::prepare).transpose()?;
         let contract = self.contract.into();
@@ -111,6 +123,20 @@ impl ProveArguments {
             let mut files = folder.stage();
             files.add(&name, |out| write_witness(out, witness, period, &again))?;
             written.extend(files.commit()?);
+        }
+        if let Some(report) = report {
+            let origin = Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
+            let proved = html::Proved {
+                name: &logic.name,
+                machine: &logic.machine,
+                envelope: &envelope,
+                proof: &proof,
+                limit,
+                beyond: &beyond,
+                tick,
+                caution,
+            };
+            written.push(report.write(&html::proof(&proved, &origin))?);
         }
         Ok(Box::new(Proved { logic, envelope, tick, proof, beyond, limit, written, again }))
     }
@@ -144,12 +170,4 @@ impl ProveArguments {
         }
         text
     }
-}
-
-/// A word as a shell takes it: in single quotes where it holds anything but letters, digits and `._-/`.
-fn shell_word(text: &str) -> String {
-    if !text.is_empty() && text.chars().all(|letter| letter.is_alphanumeric() || "._-/".contains(letter)) {
-        return text.to_owned();
-    }
-    format!("'{}'", text.replace('\'', r"'\''"))
 }

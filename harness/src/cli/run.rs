@@ -8,6 +8,7 @@ use clap::error::ErrorKind;
 use clap::{CommandFactory, Parser, Subcommand};
 
 use super::session::{print_problems, to_stdout};
+use super::shell::shell_line;
 use super::{
     Answer, CharacteriseArguments, ChooseArguments, CompareArguments, EmitArguments, Failure,
     GenerateArguments, GlobalOptions, LimitArguments, NetworkArguments, ProveArguments, ReplayArguments,
@@ -87,7 +88,8 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
     let Some(command) = line.command else {
         return end(first_steps(), 0);
     };
-    let session = Session::new(command.name(), line.global);
+    let typed = shell_line(arguments.iter().map(|word| word.to_string_lossy().into_owned()));
+    let session = Session::new(command.name(), line.global, typed);
     let (printed, code) = match command.run(&session) {
         Ok(answer) => (session.print(answer.as_ref()), answer.outcome().code()),
         Err(failure) => (session.print_failure(&failure), Failure::CODE),

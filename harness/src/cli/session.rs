@@ -41,17 +41,24 @@ pub trait Answer {
 }
 
 /// One run of the command.
-#[derive(Clone, Copy, Debug)]
+#[derive(Clone, Debug)]
 pub struct Session {
     options: GlobalOptions,
     command: &'static str,
+    line: String,
 }
 
 impl Session {
-    /// A run of `command`.
+    /// A run of `command`, typed as `line`.
     #[must_use]
-    pub const fn new(command: &'static str, options: GlobalOptions) -> Self {
-        Self { options, command }
+    pub const fn new(command: &'static str, options: GlobalOptions, line: String) -> Self {
+        Self { options, command, line }
+    }
+
+    /// The command line, as a shell takes it again.
+    #[must_use]
+    pub fn line(&self) -> &str {
+        &self.line
     }
 
     /// Tells a person something on standard error, unless they asked for quiet. It ends with what to try.

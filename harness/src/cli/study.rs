@@ -7,10 +7,12 @@ use clap::Args;
 use super::input::Input;
 use super::preference::PreferenceOption;
 use super::recordings::RequirementInput;
+use super::report::ReportOption;
 use super::study_answer::StudyAnswer;
 use super::{Answer, Failure, OutputFolder, Session};
 use crate::emit::{module_name, rust_module};
 use crate::problem::Problem;
+use crate::report::html::{self, Origin};
 use crate::report::json;
 use crate::study::{Study, StudyError};
 
@@ -19,7 +21,7 @@ use crate::study::{Study, StudyError};
 #[command(
     long_about = "Characterises the recordings, chooses tick period, law and parameters for the requirement, \
                   proves the choice for every waveform inside the stated envelope, checks that the recordings \
-                  lie inside it, and writes the results and a Rust configuration. Without any argument it does \
+                  lie inside it, and writes report, results and a Rust configuration. Without any argument it does \
                   so for the built-in demo recording, which is invented.",
     after_help = StudyArguments::EXAMPLES
 )]
@@ -33,6 +35,9 @@ pub struct StudyArguments {
     /// Folder for the results; made if it is not there
     #[arg(long, short, value_name = "FOLDER")]
     pub output: Option<PathBuf>,
+    /// The report.
+    #[command(flatten)]
+    pub report: ReportOption,
 }
 
 impl StudyArguments {
@@ -53,6 +58,9 @@ impl StudyArguments {
         let input = Input::or_demo(&self.input, session)?;
         // A folder that cannot be written must not cost a long wait first.
         let folder = self.output.as_ref().map(OutputFolder::prepare).transpose()?;
+        let report = self.report.prepare()?;
+        let wanted = folder.is_some() || report.is_some();
+        let files = if wanted { input.files()? } else { Vec::new() };
         let ticks = input.requirement.clock.ticks.as_ref().map_or(0, |ticks| ticks.value.periods().len());
         let bar = session.progress("judging candidates", ticks as u64);
         let study = Study::of(input.observed, &input.requirement, self.preference.into(), |_| bar.inc(1))
@@ -61,10 +69,18 @@ impl StudyArguments {
         for caution in study.cautions() {
             session.warn(&caution.to_string());
         }
-        let written = match folder {
-            Some(folder) => write(&study, folder)?,
+        let html = wanted.then(|| {
+            let origin = Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
+            html::study(&study, input.demo, &origin)
+        });
+        let html = html.unwrap_or_default();
+        let mut written = match folder {
+            Some(folder) => write(&study, &html, folder)?,
             None => Vec::new(),
         };
+        if let Some(report) = report {
+            written.push(report.write(&html)?);
+        }
         Ok(Box::new(StudyAnswer { study, demo: input.demo, written }))
     }
 }
@@ -80,9 +96,10 @@ pub(super) fn failure(error: StudyError) -> Failure {
     }
 }
 
-/// The results as JSON, and the module where something holds.
-fn write(study: &Study, folder: OutputFolder) -> Result<Vec<PathBuf>, Failure> {
+/// The report, the results as JSON, and the module where something holds.
+fn write(study: &Study, html: &str, folder: OutputFolder) -> Result<Vec<PathBuf>, Failure> {
     let mut files = folder.stage();
+    files.add("report.html", |out| out.write_all(html.as_bytes()))?;
     files.add("study.json", |out| {
         serde_json::to_writer_pretty(&mut *out, &json::study(study))?;
         out.write_all(b"\n")

@@ -163,7 +163,10 @@ impl StudyAnswer {
         if self.written.is_empty() {
             let again =
                 if self.demo { "harness study --output results" } else { "the same with --output FOLDER" };
-            lines.item("Next", &format!("{again} writes the Rust module and the results as JSON"))?;
+            lines.item(
+                "Next",
+                &format!("{again} writes the report, the Rust module and the results as JSON"),
+            )?;
         } else {
             let files: Vec<String> = self.written.iter().map(|path| path.display().to_string()).collect();
             lines.item("Written", &files.join(", "))?;

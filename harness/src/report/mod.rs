@@ -3,8 +3,10 @@
 pub mod apart;
 pub mod characterised;
 pub mod clock_plot;
+pub mod html;
 pub mod json;
 pub mod network;
+pub mod plot;
 pub mod si;
 pub mod state_diagram;
 pub mod timing;

@@ -29,10 +29,20 @@ const LETTER_SIZE: usize = 14;
 /// `id` must be unique in the document; the arrow heads are named by it. Letters, digits and dashes only.
 #[must_use]
 pub fn state_diagram(machine: &MachineTable, id: &str) -> Option<String> {
+    drawn(machine, id, Orientation::LeftToRight)
+}
+
+/// The same from top to bottom, which is narrower.
+#[must_use]
+pub fn state_diagram_downward(machine: &MachineTable, id: &str) -> Option<String> {
+    drawn(machine, id, Orientation::TopToBottom)
+}
+
+fn drawn(machine: &MachineTable, id: &str, orientation: Orientation) -> Option<String> {
     if machine.len() > LARGEST_STATE_DIAGRAM {
         return None;
     }
-    let mut graph = VisualGraph::new(Orientation::LeftToRight);
+    let mut graph = VisualGraph::new(orientation);
     let look = StyleAttr::new(Color::fast("black"), 1, None, 0, LETTER_SIZE);
     let handles: Vec<_> = (0..machine.len())
         .map(|state| {
@@ -40,13 +50,7 @@ pub fn state_diagram(machine: &MachineTable, id: &str) -> Option<String> {
             let width = (name.chars().count().max("closed".len()) as f64 + 4.0) * 9.0;
             let shape = ShapeKind::new_circle(&format!("{name}\n{}", position(machine.output_of(state))));
             let (size, class) = (Point::new(width, 60.0), state_class(machine, state));
-            graph.add_node(Element::create_with_properties(
-                shape,
-                look.clone(),
-                Orientation::LeftToRight,
-                size,
-                class,
-            ))
+            graph.add_node(Element::create_with_properties(shape, look.clone(), orientation, size, class))
         })
         .collect();
     for arrow in arrows(machine) {
@@ -131,12 +135,11 @@ impl Canvas<'_> {
         let id = self.id;
         format!(
             "<svg xmlns=\"http://www.w3.org/2000/svg\" class=\"state-diagram\" role=\"img\" \
-             width=\"{width:.0}\" height=\"{height:.0}\" viewBox=\"{x:.1} {y:.1} {width:.1} {height:.1}\" \
-             font-size=\"{LETTER_SIZE}\">\n\
+             width=\"{width:.0}\" height=\"{height:.0}\" viewBox=\"{x:.1} {y:.1} {width:.1} {height:.1}\">\n\
              <title>state diagram: {} states, {} arrows</title>\n\
-             <defs><marker id=\"{id}-head\" markerWidth=\"9\" markerHeight=\"8\" refX=\"9\" refY=\"4\" \
+             <defs><marker id=\"{id}-head\" markerUnits=\"userSpaceOnUse\" markerWidth=\"9\" markerHeight=\"8\" refX=\"9\" refY=\"4\" \
              orient=\"auto-start-reverse\"><path class=\"head\" d=\"M 0 0 L 9 4 L 0 8 z\" \
-             fill=\"currentColor\"/></marker></defs>\n{}</svg>\n",
+             fill=\"currentColor\"/></marker></defs>\n<g font-size=\"{LETTER_SIZE}\">\n{}</g>\n</svg>\n",
             counts.states, counts.arrows, self.body
         )
     }

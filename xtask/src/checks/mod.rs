@@ -7,6 +7,7 @@ mod firmware;
 mod format;
 mod host;
 mod lints;
+mod report;
 mod targets;
 mod top_level;
 
@@ -31,6 +32,11 @@ pub(crate) const ALL: &[Check] = &[
         run: docs::run,
     },
     Check { name: "check-host", about: "all tests and doctests pass on this machine", run: host::run },
+    Check {
+        name: "check-report",
+        about: "the report is valid HTML and works in a browser",
+        run: report::run,
+    },
     Check {
         name: "check-features",
         about: "debounce-core holds with every set of features",

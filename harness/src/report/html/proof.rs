@@ -1,0 +1,133 @@
+//! The report of a single proof.
+
+use debounce_core::{Change, Envelope, PerChange, Period, TickClock};
+use maud::{Markup, html};
+
+use super::{Origin, Page, answer, envelope, logic, origin, witness};
+use crate::machine::MachineTable;
+use crate::prove::{Beyond, Contract, Outcome, Proof};
+use crate::report::words;
+
+/// A finished proof with everything a report says of it.
+#[derive(Clone, Copy, Debug)]
+pub struct Proved<'a> {
+    /// What the logic is called.
+    pub name: &'a str,
+    /// The machine behind it.
+    pub machine: &'a MachineTable,
+    /// The envelope in samples.
+    pub envelope: &'a Envelope,
+    /// The proof.
+    pub proof: &'a Proof,
+    /// What no logic could beat, where it is known, in samples.
+    pub limit: Option<PerChange<u32>>,
+    /// What holds beyond the bounds.
+    pub beyond: &'a Beyond,
+    /// The tick period, where there is one.
+    pub tick: Option<Period>,
+    /// The caution for the role of the contact, where there is one.
+    pub caution: Option<&'static str>,
+}
+
+/// The report of a proof.
+#[must_use]
+pub fn proof(proved: &Proved<'_>, origin: &Origin) -> String {
+    let envelope_body = html! {
+        p { "For every row of samples in which" }
+        (envelope::sample_table(proved.envelope))
+        p { "Nothing is claimed of a contact that does anything else." }
+    };
+    let sections = vec![
+        witness::of_proof(proved.proof),
+        super::Section { id: "envelope", heading: "Envelope".to_owned(), body: envelope_body },
+        logic::section(proved.name, &proved.machine.minimised().machine),
+        origin::section(origin, &[], &method()),
+    ];
+    let page = Page {
+        title: proved.name.to_owned(),
+        kind: "Proof of a logic".to_owned(),
+        invented: false,
+        cautions: proved.caution.into_iter().collect(),
+        answer: answered(proved),
+        sections,
+    };
+    page.html()
+}
+
+fn answered(proved: &Proved<'_>) -> Markup {
+    let proof = proved.proof;
+    html! {
+        @match &proof.outcome {
+            Outcome::Faithful { bounds, .. } => {
+                p class="choice holds" {
+                    strong { "Proved: " }
+                    @match proof.contract {
+                        Contract::Follow => "every operation is reported once and in order",
+                        Contract::Alternate => "the output turns over once for every make",
+                    }
+                }
+                div class="figures" {
+                    @for change in [Change::Make, Change::Break] {
+                        @let latency = bounds.latency.at(change);
+                        p class={ "fact " (words::change(change)) } {
+                            b { (words::count(latency.worst as usize, "sample")) } " "
+                            span { "at most for a " (words::change(change)) ", at least " (latency.best) }
+                        }
+                    }
+                }
+                dl {
+                    @for change in [Change::Make, Change::Break] {
+                        @if let Some(line) = line(proved, change, bounds.latency.at(change).worst) {
+                            dt { "Latency at " (words::change(change)) }
+                            dd { (line) }
+                        }
+                    }
+                    @let beyond = answer::beyond(proved.beyond);
+                    @if !beyond.is_empty() { dt { "Beyond" } }
+                    @for line in beyond { dd { (line) } }
+                    (size(proof))
+                }
+            }
+            Outcome::Refuted { clause, .. } => {
+                p class="choice fails" { strong { "Refuted: " } (words::clause(*clause)) }
+                p { "The " a href="#waveforms" { "counter-example" } " is a shortest one." }
+                dl { (size(proof)) }
+            }
+        }
+    }
+}
+
+/// The latency in time, and against the limit.
+fn line(proved: &Proved<'_>, change: Change, worst: u32) -> Option<String> {
+    let time = proved.tick.map(|period| {
+        let below = TickClock::new(period).delay_ns(worst).1;
+        format!("less than {} at the nominal tick", words::at_most(below))
+    });
+    let limit = proved.limit.map(|limit| {
+        let limit = limit.at(change);
+        format!(
+            "no logic can promise less than {limit} samples ({:.2} times)",
+            f64::from(worst) / f64::from(limit)
+        )
+    });
+    let parts: Vec<String> = time.into_iter().chain(limit).collect();
+    (!parts.is_empty()).then(|| parts.join("; "))
+}
+
+fn size(proof: &Proof) -> Markup {
+    html! {
+        dt { "Explored" }
+        dd {
+            (proof.states) " states of contact, disturbances and logic together, " (proof.transitions) " transitions; \
+             the envelope alone has " (proof.environment_states) ", the logic " (proof.law_states)
+        }
+    }
+}
+
+fn method() -> Vec<String> {
+    vec![
+        "Envelope and logic are explored together, every reachable state; a search that is not finished proves nothing."
+            .to_owned(),
+        "The latency counts the first sample that can see the new position as 1.".to_owned(),
+    ]
+}

@@ -1,0 +1,232 @@
+//! What must be true of every report, whatever is in it.
+
+use std::collections::BTreeSet;
+
+use debounce_core::Envelope;
+
+use super::{Characterised, Origin, Proved, characterised, proof, study};
+use crate::characterise::SegmentOptions;
+use crate::choose::Preference;
+use crate::demo;
+use crate::law_text::LawParameters;
+use crate::logic::Logic;
+use crate::machine::MachineTable;
+use crate::problem::SourceText;
+use crate::prove::{Beyond, Effort, Limits, prove_within};
+use crate::requirement::{Requirement, parse};
+use crate::study::{Claims, Observed, Study, measured, observe};
+use crate::trace::{ReadOptions, read_bytes};
+
+fn recorded() -> Observed {
+    let options = ReadOptions { resolution_ns: Some(demo::RESOLUTION_NS), ..ReadOptions::default() };
+    let recording = read_bytes(demo::RECORDING_NAME, demo::RECORDING, &options).expect("the demo");
+    observe(demo::RECORDING_NAME, recording, &SegmentOptions::default()).expect("operations")
+}
+
+fn requirement(changed: (&str, &str)) -> Requirement {
+    let text = demo::REQUIREMENT.replace(changed.0, changed.1);
+    parse(SourceText::new("contact.toml", text)).expect("a requirement")
+}
+
+/// A study with few candidates, so that it is quick.
+fn studied(changed: (&str, &str), observed: Vec<Observed>) -> Study {
+    let laws = [
+        "state-machine confirm=2 patience=2 lockout=2/1",
+        "integrator 3",
+        "shift-register 5",
+        "majority-register 3 of 4",
+    ];
+    let laws: Vec<LawParameters> = laws.iter().map(|law| law.parse().expect("a law")).collect();
+    Study::among(observed, &requirement(changed), Preference::default(), Some(laws), |_| {}).expect("a study")
+}
+
+fn proved(law: &str, envelope: Envelope) -> String {
+    let logic = Logic::try_new(&law.parse().expect("a law")).expect("parameters");
+    let table = logic.table().expect("a table");
+    let found = prove_within(&table, &envelope, &Limits::default()).expect("a proof");
+    let machine = MachineTable::of_table(&table);
+    let beyond = Beyond::of(&table, &found, Effort::Quick, &Limits::default());
+    let (name, limit, tick, caution) = (law, None, None, None);
+    proof(
+        &Proved {
+            name,
+            machine: &machine,
+            envelope: &envelope,
+            proof: &found,
+            limit,
+            beyond: &beyond,
+            tick,
+            caution,
+        },
+        &origin(),
+    )
+}
+
+fn origin() -> Origin {
+    Origin { command: "harness study --output 'a & b'".to_owned(), ..Origin::default() }
+}
+
+const SAME: (&str, &str) = ("control", "control");
+
+/// One report of each kind, and those that differ most.
+fn reports() -> Vec<(&'static str, String)> {
+    let observed = recorded();
+    let resolved = requirement(SAME).fill_in(&measured(std::slice::from_ref(&observed))).expect("values");
+    let one = std::slice::from_ref(&observed);
+    let claims = Claims::of(one, &resolved).expect("shares");
+    let found = Characterised { observed: one, resolved: &resolved, claims: &claims };
+    vec![
+        ("study", study(&studied(SAME, vec![observed.clone()]), true, &origin())),
+        ("choice", study(&studied(SAME, Vec::new()), false, &origin())),
+        (
+            "nothing holds",
+            study(
+                &studied(("latency = \"50 ms\"", "latency = \"3 ms\""), vec![observed.clone()]),
+                true,
+                &origin(),
+            ),
+        ),
+        ("characterised", characterised(&found, &origin())),
+        ("proved", proved("integrator 5", Envelope::clean(20, 20).bounce(5, 3).glitch(1, 1).quiet(10))),
+        ("refuted", proved("shift-register 2", Envelope::clean(40, 40).bounce(5, 5))),
+    ]
+}
+
+/// Every value of an attribute.
+fn values<'a>(html: &'a str, attribute: &str) -> Vec<&'a str> {
+    let opening = format!(" {attribute}=\"");
+    html.split(opening.as_str()).skip(1).filter_map(|rest| rest.split('"').next()).collect()
+}
+
+#[test]
+fn reports_need_nothing_else_and_are_small() {
+    for (name, html) in reports() {
+        assert!(html.len() < 1_000_000, "{name}: {} bytes", html.len());
+        let rest = html.replace("http://www.w3.org/2000/svg", "");
+        for other in ["http:", "https:", "@import", "url(", "src=", "<link", "<img", "<iframe"] {
+            let found = rest.matches(other).count();
+            let allowed = if other == "url(" { rest.matches("url(#").count() } else { 0 };
+            assert_eq!(found, allowed, "{name}: {other}");
+        }
+        assert!(html.contains("default-src 'none'"), "{name}: a browser must refuse to fetch");
+    }
+}
+
+#[test]
+fn reports_name_every_part_once_and_link_to_parts_that_are_there() {
+    for (name, html) in reports() {
+        let ids = values(&html, "id");
+        let known: BTreeSet<&str> = ids.iter().copied().collect();
+        assert_eq!(known.len(), ids.len(), "{name}: an id is used twice in {ids:?}");
+        let links =
+            values(&html, "href").into_iter().map(|link| link.strip_prefix('#').expect("a link inside"));
+        let labels = values(&html, "aria-labelledby").into_iter().flat_map(str::split_whitespace);
+        for target in links.chain(labels) {
+            assert!(known.contains(target), "{name}: nothing has the id {target}");
+        }
+    }
+}
+
+#[test]
+fn reports_have_a_language_one_title_and_headings_in_order() {
+    for (name, html) in reports() {
+        assert!(html.starts_with("<!DOCTYPE html><html lang=\"en\">"), "{name}");
+        assert_eq!(html.matches("<h1>").count(), 1, "{name}");
+        assert!(html.contains("class=\"skip\" href=\"#answer\""), "{name}: a way past the contents");
+        let answer = html.find("id=\"answer\"").expect("an answer");
+        let other = html.find("<section id=\"").map_or(usize::MAX, |first| first);
+        assert!(answer <= other + "<section ".len(), "{name}: the answer stands first");
+        let mut level = 1;
+        for (at, _) in html.match_indices("<h") {
+            let digit = html.as_bytes()[at + 2];
+            if digit.is_ascii_digit() {
+                let next = digit - b'0';
+                assert!(next <= level + 1, "{name}: a heading of level {next} after one of {level}");
+                level = next;
+            }
+        }
+    }
+}
+
+#[test]
+fn pictures_have_words_for_those_who_do_not_see_them() {
+    for (name, html) in reports() {
+        for picture in html.split("<svg ").skip(1) {
+            let tag = picture.split('>').next().unwrap_or_default();
+            let inside = picture.split("</svg>").next().unwrap_or_default();
+            let told = tag.contains("role=\"img\"") && inside.contains("<title>");
+            assert!(told || tag.contains("aria-hidden=\"true\""), "{name}: {tag}");
+        }
+    }
+}
+
+#[test]
+fn report_of_a_study_has_every_section_its_data_allow() {
+    let html = study(&studied(SAME, vec![recorded()]), true, &origin());
+    let sections = [
+        "answer",
+        "envelope",
+        "recorded",
+        "conformance",
+        "overlay",
+        "bounce",
+        "latency",
+        "plane",
+        "ticks",
+        "logic",
+        "waveforms",
+        "refused",
+        "cost",
+        "requirement",
+        "origin",
+    ];
+    let found: Vec<&str> =
+        html.split("<section id=\"").skip(1).filter_map(|rest| rest.split('"').next()).collect();
+    assert_eq!(found, sections);
+    // Without a recording there is nothing to show of one.
+    let html = study(&studied(SAME, Vec::new()), false, &origin());
+    for gone in ["recorded", "conformance", "overlay", "bounce", "latency"] {
+        assert!(!html.contains(&format!("<section id=\"{gone}\"")), "{gone}");
+    }
+    assert!(html.contains("whether a contact stays inside the envelope is not known"));
+}
+
+#[test]
+fn report_of_a_guarding_or_metering_contact_begins_with_its_caution() {
+    for (role, words) in [
+        ("guarding", "debouncing makes no input safe"),
+        ("metering", "debouncing makes no input fit for trade"),
+    ] {
+        let html = study(&studied(("control", role), Vec::new()), false, &origin());
+        let caution = html.find(words).expect(role);
+        assert!(caution < html.find("<nav").expect("contents"), "{role}");
+    }
+    let html = study(&studied(SAME, Vec::new()), false, &origin());
+    assert!(
+        html.contains("Nothing here has been assessed for such use."),
+        "the general caution is in every report"
+    );
+}
+
+#[test]
+fn report_escapes_what_it_is_given() {
+    let html =
+        study(&studied(("vent push-button", "<script>alert(1)</script> & co"), Vec::new()), false, &origin());
+    assert!(html.contains("&lt;script&gt;alert(1)&lt;/script&gt; &amp; co"));
+    assert!(!html.contains("<script>alert"));
+    assert!(html.contains("'a &amp; b'"));
+}
+
+#[test]
+fn report_of_the_same_study_has_the_same_bytes() {
+    let found = studied(SAME, vec![recorded()]);
+    let again = studied(SAME, vec![recorded()]);
+    assert_eq!(study(&found, true, &origin()), study(&again, true, &origin()));
+}
+
+#[test]
+fn report_of_a_refuted_law_shows_its_counter_example_tick_by_tick() {
+    let html = proved("shift-register 2", Envelope::clean(40, 40).bounce(5, 5));
+    assert!(html.contains("Refuted: ") && html.contains("id=\"counter-example\""));
+    assert!(html.contains("tick     1"), "the same in text, for a reader of text");
+}
