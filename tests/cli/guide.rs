@@ -256,30 +256,35 @@ fn guide_pages_are_all_included_and_linked() {
     let contents = fs::read_to_string(root().join("harness/guide/README.md")).expect("the contents");
     for path in guide() {
         let name = path.file_name().expect("a file").display().to_string();
-        assert!(module.contains(&format!("include_str!(\"../guide/{name}\")")), "{name} is not in guide.rs");
+        assert!(module.contains(&format!("\"../guide/{name}\"")), "{name} is not in guide.rs");
         assert!(
-            name == "README.md" || contents.contains(&format!("({name})")),
+            name == "README.md" || contents.contains(&format!("]: {name}")),
             "{name} is not in the contents"
         );
     }
 }
 
-/// Links of a page to files, written for readers of the repository, lead somewhere.
+/// What the links of a page lead to in the repository is there, and in the documentation a page of its own.
 #[test]
 fn guide_links_lead_to_files_that_are_there() {
+    let module = fs::read_to_string(root().join("harness/src/guide.rs")).expect("the module of the guide");
+    let mut count = 0;
     for page in guide() {
         let text = fs::read_to_string(&page).expect("a page");
-        for target in text.split("](").skip(1).filter_map(|rest| rest.split(')').next()) {
-            let target = target.split('#').next().unwrap_or_default();
-            if !target.starts_with("https://") {
-                assert!(
-                    page.parent().expect("a folder").join(target).exists(),
-                    "{}: {target}",
-                    page.display()
-                );
-            }
+        let place = page.display();
+        let definitions: BTreeMap<&str, &str> =
+            text.lines().filter_map(|line| line.strip_prefix('[')?.split_once("]: ")).collect();
+        for (name, file) in &definitions {
+            assert!(page.with_file_name(file).exists(), "{place}: {file}");
+            assert!(module.contains(&format!("[{name}]: crate::guide::{name}\n")), "{place}: {name}");
+            assert!(text.contains(&format!("][{name}]")), "{place}: nothing leads to {name}");
+            count += 1;
+        }
+        for name in text.split("][").skip(1).filter_map(|rest| rest.split(']').next()) {
+            assert!(definitions.contains_key(name), "{place}: where does {name} lead?");
         }
     }
+    assert!(count > guide().len(), "only {count} links were found");
 }
 
 /// The options that the text names between the blocks are there.
