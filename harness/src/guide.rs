@@ -21,6 +21,16 @@ macro_rules! links {
 [case_limit_switch]: crate::guide::case_limit_switch
 [case_encoder]: crate::guide::case_encoder
 [case_remote]: crate::guide::case_remote
+[ContactPair]: debounce_core::ContactPair
+[Detents]: debounce_core::Detents
+[Monitor]: debounce_core::Monitor
+[Polarity]: debounce_core::Polarity
+[PulseCounter]: debounce_core::PulseCounter
+[Quadrature]: debounce_core::Quadrature
+[Recorder]: debounce_core::Recorder
+[Settling]: debounce_core::Settling
+[Starting]: debounce_core::Starting
+[Wear]: debounce_core::Wear
 
 "
     };
