@@ -361,7 +361,7 @@ fn csv_sample_numbers_are_times_with_the_sample_period() {
     assert!(!recording.notes.contains(&Note::SecondsAssumed));
     let huge = ReadOptions { sample_period_ns: Some(u64::MAX), ..with_thresholds(None) };
     let error = read(text, &huge).expect_err("beyond 64 bits");
-    assert!(error.to_string().contains("f.csv:5:1: \"2\" is not a time: it is too large"), "{error}");
+    assert!(error.to_string().contains("f.csv:6:1: \"3\" is not a time: it is too large"), "{error}");
 }
 
 #[test]
