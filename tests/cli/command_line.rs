@@ -6,13 +6,18 @@ mod bad_requirement;
 mod bench;
 mod characterise;
 mod choose_emit;
+mod columns;
 mod compare;
 mod generate;
+mod help;
 mod limit;
+mod manual;
 mod network;
 mod prove;
+mod recheck;
 mod replay;
 mod report;
+mod schema;
 mod study;
 
 use std::fs::File;

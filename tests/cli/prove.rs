@@ -159,7 +159,9 @@ fn words(line: &str) -> Vec<String> {
 #[track_caller]
 fn says_it_again(bench: &Bench, arguments: &[&str]) {
     let run = bench.run(arguments).ends(1);
-    let line = run.stdout.lines().find_map(|line| line.strip_prefix("again: harness ")).expect("a line");
+    // A stroke at the end of a line joins it with the next, as a shell has it.
+    let joined = run.stdout.replace(" \\\n   ", "");
+    let line = joined.lines().find_map(|line| line.strip_prefix("again: harness ")).expect("a line");
     let words = words(line);
     let words: Vec<&str> = words.iter().map(String::as_str).collect();
     assert_eq!(bench.run(&words), run, "{line}");

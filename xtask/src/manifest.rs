@@ -5,6 +5,12 @@ pub(crate) fn string<'a>(text: &'a str, table: &str, key: &str) -> Option<&'a st
     entries(text, table).find(|(name, _)| *name == key)?.1.strip_prefix('"')?.split('"').next()
 }
 
+/// The words of `key = ["one", "two"]`, on one line, in the table `[table]`; none where there is no such key.
+pub(crate) fn list<'a>(text: &'a str, table: &str, key: &str) -> Vec<&'a str> {
+    let value = entries(text, table).find(|(name, _)| *name == key).map_or("", |(_, value)| value);
+    value.split('"').skip(1).step_by(2).collect()
+}
+
 /// The features of a package, without `default`, in the order of the manifest.
 pub(crate) fn features(text: &str) -> Vec<&str> {
     entries(text, "features").map(|(name, _)| name).filter(|name| *name != "default").collect()
@@ -54,6 +60,13 @@ serde = "1"
     #[test]
     fn features_of_a_manifest_without_any_is_empty() {
         assert!(features("[package]\nname = \"thing\"\n").is_empty());
+    }
+
+    #[test]
+    fn list_holds_the_words_of_one_line() {
+        assert_eq!(list(MANIFEST, "features", "defmt"), ["dep:defmt"]);
+        assert_eq!(list(MANIFEST, "features", "std"), [""; 0]);
+        assert_eq!(list("[package]\nkeywords = [\"a\", \"b\"]\n", "package", "keywords"), ["a", "b"]);
     }
 
     #[test]

@@ -48,9 +48,11 @@ Examples:
   One recording with a single channel, every operation listed:
     harness characterise gate.vcd --operations
   An oscilloscope export in volts:
-    harness characterise gate.csv --threshold-low \"0.8 V\" --threshold-high \"2.0 V\"
+    harness characterise gate.csv --threshold-low \"0.8 V\" \\
+      --threshold-high \"2.0 V\"
   Several recordings, for a program:
-    harness characterise day1.vcd day2.vcd --channel top.gate --confidence \"99 %\" --json";
+    harness characterise day1.vcd day2.vcd --channel top.gate \\
+      --confidence \"99 %\" --json";
 }
 
 impl CharacteriseArguments {
@@ -68,16 +70,16 @@ impl CharacteriseArguments {
             .iter()
             .any(|origin| !matches!(origin, Origin::Default(_)));
         let outcome = if is_asked && !claims.are_reached() { Outcome::DoesNotHold } else { Outcome::Holds };
-        let mut files_written = Vec::new();
+        let mut written = Vec::new();
         if let Some(report) = report {
-            let origin =
-                html::Origin { command: session.line().to_owned(), files: input.files()?, seeds: Vec::new() };
-            let found =
-                html::Characterised { observed: &input.observed, resolved: &resolved, claims: &claims };
-            files_written.push(report.write(&html::characterised(&found, &origin))?);
+            let files = input.files()?;
+            let origin = html::Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
+            let (observed, resolved) = (&input.observed, &resolved);
+            let found = html::Characterised { observed, resolved, claims: &claims, warnings: &cautions };
+            written.push(report.write(&html::characterised(&found, &origin))?);
         }
         let (observed, listed) = (input.observed, self.operations);
-        Ok(Box::new(Characterised { observed, claims, cautions, outcome, listed, written: files_written }))
+        Ok(Box::new(Characterised { observed, claims, cautions, outcome, listed, written }))
     }
 }
 

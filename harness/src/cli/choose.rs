@@ -4,18 +4,20 @@ use std::io::{self, Write};
 use std::path::PathBuf;
 
 use clap::Args;
-use comfy_table::Table;
+use comfy_table::{ColumnConstraint, ContentArrangement, Table, Width};
+use debounce_core::Clause;
 use serde_json::{Value, json};
 
 use super::clock_text::ClockView;
 use super::input::Input;
-use super::lines::{Lines, strong};
+use super::lines::{Lines, columns, strong};
 use super::preference::PreferenceOption;
 use super::recorded::claims;
 use super::recordings::RequirementInput;
 use super::report::{ReportOption, written};
-use super::study::failure;
+use super::study::{failure, judging};
 use super::{Answer, Failure, Outcome, Session};
+use crate::choose::Shortfall;
 use crate::clock_range::{Activity, ClockQuestion, asleep, clock_range, slowest_by_tolerance};
 use crate::problem::Problem;
 use crate::report::clock_plot::ClockPlot;
@@ -40,7 +42,7 @@ pub struct ChooseArguments {
     #[command(flatten)]
     pub preference: PreferenceOption,
     /// So many candidates are listed
-    #[arg(long, value_name = "COUNT", default_value_t = 12)]
+    #[arg(long, value_name = "COUNT", default_value_t = 6)]
     pub list: usize,
     /// Plot worst delay against tick period
     #[arg(long)]
@@ -61,7 +63,8 @@ impl ChooseArguments {
     pub const EXAMPLES: &'static str = "\
 Examples:
   From figures alone, without a recording:
-    harness choose --bounce \"5 ms\" --disturbance \"300 us\" --quiet-time \"5 ms\" --latency \"20 ms\"
+    harness choose --bounce \"5 ms\" --disturbance \"300 us\" --quiet-time \"5 ms\" \\
+      --latency \"20 ms\"
   From a requirement file, with a slower clock than it says:
     harness choose --requirement contact.toml --tick \"5 ms,10 ms\"
   For a recording, on firmware that can serve 1000 ticks a second at most:
@@ -74,8 +77,10 @@ impl ChooseArguments {
         let input = Input::with_or_without_recordings(&self.input, session)?;
         let report = self.report.prepare()?;
         let files = if report.is_some() { input.files()? } else { Vec::new() };
-        let study =
-            Study::of(input.observed, &input.requirement, self.preference.into(), |_| {}).map_err(failure)?;
+        let bar = judging(session, &input.requirement);
+        let study = Study::of(input.observed, &input.requirement, self.preference.into(), |_| bar.inc(1))
+            .map_err(failure)?;
+        bar.finish_and_clear();
         study.cautions().iter().for_each(|caution| session.warn(&caution.to_string()));
         let activity = Activity {
             operations_per_hour: self.operations_per_hour,
@@ -155,14 +160,20 @@ impl Answer for Chosen {
                 }
                 lines.more(&reason.to_string())?;
             }
-            None => lines
-                .item("None holds", &format!("{} candidates, nearest first", ranking.candidates.len()))?,
+            None => {
+                lines
+                    .item("None holds", &format!("{} candidates, nearest first", ranking.candidates.len()))?;
+                for shortfall in ranking.candidates.iter().take(1).flat_map(|nearest| &nearest.shortfalls) {
+                    lines.more(&format!("the first: {}", words::shortfall(shortfall)))?;
+                }
+            }
         }
         lines.plain("\n")?;
         lines.plain(&candidate_table(&self.study, self.list))?;
-        lines.plain(
-            "\n* no other candidate that holds beats it in delay, ticks a second and RAM together\n\n",
-        )?;
+        lines.plain("\n")?;
+        lines
+            .item("*", "no other candidate that holds beats it in delay, ticks a second and RAM together")?;
+        lines.plain("\n")?;
         self.clock.write(&mut lines)?;
         if self.plot {
             let latency = &self.study.resolved.required.latency;
@@ -208,14 +219,21 @@ pub(super) fn network(lines: &mut Lines<'_>, resolved: &Resolved) -> io::Result<
 fn candidate_table(study: &Study, list: usize) -> String {
     let mut table = Table::new();
     table.load_style(comfy_table::presets::NOTHING);
-    table.set_header(["", "law", "tick", "make <", "break <", "x limit", "median", "bytes", "says no"]);
-    for one in study.ranking.candidates.iter().take(list) {
+    table.set_content_arrangement(ContentArrangement::Dynamic);
+    table.set_width(u16::try_from(columns()).unwrap_or(u16::MAX));
+    let listed = || study.ranking.candidates.iter().take(list);
+    // Where all that are listed hold, there is nothing to lack, and more room for the rest.
+    let has_lack = listed().any(|one| !one.holds());
+    let mut header = vec!["", "law", "tick", "make <", "break <", "x limit", "median", "bytes"];
+    header.extend(has_lack.then_some("lacks"));
+    table.set_header(header);
+    for one in listed() {
         let (make, break_) = one.worst_below_ns.map_or(("-".into(), "-".into()), |worst| {
             (words::at_most(worst.make), words::at_most(worst.break_))
         });
         let median =
             one.measured.iter().filter_map(|m| m.make.latency.as_ref()).map(|l| l.delay.median_ns).max();
-        table.add_row([
+        let mut row = vec![
             if one.pareto { "*".to_owned() } else { String::new() },
             one.parameters.to_string(),
             study.tick(one).to_string(),
@@ -228,8 +246,27 @@ fn candidate_table(study: &Study, list: usize) -> String {
             },
             median.map_or("-".into(), words::about),
             one.state_bytes.to_string(),
-            one.shortfalls.first().map(words::shortfall).unwrap_or_default(),
-        ]);
+        ];
+        row.extend(has_lack.then(|| one.shortfalls.first().map(lacks).unwrap_or_default()));
+        table.add_row(row);
+    }
+    if let Some(law) = table.column_mut(1) {
+        // Room for two parameters of a law side by side.
+        law.set_constraint(ColumnConstraint::LowerBoundary(Width::Fixed(22)));
     }
     table.trim_fmt() + "\n"
+}
+
+/// What is asked and not given, so short that it fits a column.
+fn lacks(shortfall: &Shortfall) -> String {
+    match shortfall {
+        Shortfall::Unfaithful(Clause::Missed) => "misses".to_owned(),
+        Shortfall::Unfaithful(_) => "false edge".to_owned(),
+        Shortfall::Unproven => "a proof".to_owned(),
+        Shortfall::TooSlow { change, below_ns, allowed_ns } => {
+            format!("{} {}", words::at_most(below_ns - allowed_ns), words::change(*change))
+        }
+        Shortfall::TooBig { bytes, allowed } => format!("{} bytes", bytes - allowed),
+        Shortfall::FailsOnRecording { recording } => format!("recording {}", recording + 1),
+    }
 }

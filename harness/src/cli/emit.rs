@@ -10,7 +10,7 @@ use super::input::Input;
 use super::lines::Lines;
 use super::preference::PreferenceOption;
 use super::recordings::RequirementInput;
-use super::study::failure;
+use super::study::{failure, judging};
 use super::study_answer::nothing_holds;
 use super::{Answer, Failure, Outcome, OutputFolder, Session};
 use crate::emit::rust_module;
@@ -51,7 +51,8 @@ Examples:
   The best candidate for a requirement file:
     harness emit --requirement contact.toml --output src/gate.rs
   A law of your own choice:
-    harness emit --requirement contact.toml --law \"integrator 5\" --tick \"1 ms\" --output src/gate.rs
+    harness emit --requirement contact.toml --law \"integrator 5\" --tick \"1 ms\" \\
+      --output src/gate.rs
   From figures alone, to standard output:
     harness emit --name \"sluice gate\" --bounce \"5 ms\" --latency \"20 ms\"";
 }
@@ -65,9 +66,16 @@ impl EmitArguments {
             // A law that cannot be is bad input, and not a candidate that fails.
             Logic::try_new(law).map_err(|error| Problem::told(format!("{law}: {error}")))?;
         }
-        let only = self.law.map(|law| vec![law]);
-        let study = Study::among(input.observed, &input.requirement, self.preference.into(), only, |_| {})
+        // What the requirement file says was shipped is made again, unless a law or a tick is typed.
+        let (requirement, shipped) = match (&self.law, self.input.requirement.tick.is_empty()) {
+            (None, true) => input.requirement.as_shipped(),
+            _ => (input.requirement, None),
+        };
+        let only = self.law.or(shipped).map(|law| vec![law]);
+        let bar = judging(session, &requirement);
+        let study = Study::among(input.observed, &requirement, self.preference.into(), only, |_| bar.inc(1))
             .map_err(failure)?;
+        bar.finish_and_clear();
         let Some(configuration) = study.configuration() else {
             return Ok(Box::new(Emitted { study, module: None, written: None }));
         };

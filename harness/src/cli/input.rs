@@ -69,7 +69,8 @@ impl Input {
                 .map_err(|problem| vec![problem])
                 .and_then(|options| read_path(path, &options).map_err(|error| faults::recording(&error)))
                 .and_then(|recording| {
-                    observed_in(path, recording, &segmenting, session).map_err(|problem| vec![problem])
+                    let name = requirement.as_written(path);
+                    observed_in(name, path, recording, &segmenting, session).map_err(|problem| vec![problem])
                 });
             match read {
                 Ok(one) => {
@@ -91,7 +92,8 @@ impl Input {
         let recording = read_bytes(demo::RECORDING_NAME, demo::RECORDING, &options)
             .map_err(|error| Failure::from_found(faults::recording(&error)))?;
         let segmenting = SegmentOptions::default();
-        let one = observed_in(Path::new(demo::RECORDING_NAME), recording, &segmenting, session)?;
+        let name = Path::new(demo::RECORDING_NAME);
+        let one = observed_in(name, name, recording, &segmenting, session)?;
         Ok(Self { requirement, observed: vec![one], demo: true })
     }
 }
@@ -128,13 +130,15 @@ fn read_options(
     })
 }
 
+/// The recording at `path`, called `name` in all answers.
 fn observed_in(
+    name: &Path,
     path: &Path,
     recording: Recording,
     segmenting: &SegmentOptions,
     session: &Session,
 ) -> Result<Observed, Problem> {
-    let name = path.display().to_string();
+    let name = name.display().to_string();
     for note in &recording.notes {
         session.warn(&format!("{name}: {note}"));
     }

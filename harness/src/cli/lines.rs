@@ -9,7 +9,7 @@ use unicode_width::UnicodeWidthStr;
 const INDENT: usize = 13;
 
 /// Columns where the width of the terminal is not known.
-const COLUMNS: usize = 100;
+const COLUMNS: usize = 80;
 
 const TITLE: Style = Style::new().bold().underline();
 const LABEL: Style = Style::new().fg_color(Some(anstyle::Color::Ansi(AnsiColor::Cyan)));
@@ -21,6 +21,13 @@ pub(super) struct Lines<'a> {
     columns: usize,
 }
 
+/// The columns that text may take: what `COLUMNS` says, else those of the terminal, else 80.
+pub(super) fn columns() -> usize {
+    let stated = std::env::var("COLUMNS").ok().and_then(|text| text.parse().ok());
+    let terminal = || terminal_size::terminal_size_of(io::stdout()).map(|(width, _)| usize::from(width.0));
+    stated.or_else(terminal).unwrap_or(COLUMNS).clamp(40, 140)
+}
+
 /// A stretch of text that stands out where there is colour; its meaning must not hang on that.
 pub(super) fn strong(text: &str) -> String {
     // Each word apart, so that a line may break between them.
@@ -30,8 +37,7 @@ pub(super) fn strong(text: &str) -> String {
 
 impl<'a> Lines<'a> {
     pub(super) fn new(out: &'a mut dyn Write) -> Self {
-        let columns = std::env::var("COLUMNS").ok().and_then(|text| text.parse().ok());
-        Self { out, columns: columns.unwrap_or(COLUMNS).clamp(40, 140) }
+        Self { out, columns: columns() }
     }
 
     /// A heading.
@@ -49,6 +55,27 @@ impl<'a> Lines<'a> {
     pub(super) fn more(&mut self, text: &str) -> io::Result<()> {
         write!(self.out, "{:INDENT$}", "")?;
         self.wrapped(text)
+    }
+
+    /// A command line to be typed again, broken only before options and as a shell takes it.
+    pub(super) fn command(&mut self, text: &str) -> io::Result<()> {
+        let mut column = 0;
+        for (index, part) in text.split(" --").enumerate() {
+            let (part, width) = match index {
+                0 => (part.to_owned(), part.len()),
+                _ => (format!("--{part}"), part.len() + 2),
+            };
+            // Two columns are kept for the stroke that joins the lines.
+            if index > 0 && column + 1 + width + 2 > self.columns {
+                self.out.write_all(b" \\\n    ")?;
+                column = 4 + width;
+            } else {
+                self.out.write_all(if index > 0 { b" " } else { b"" })?;
+                column += width + 1;
+            }
+            self.out.write_all(part.as_bytes())?;
+        }
+        self.out.write_all(b"\n")
     }
 
     /// Anything else, as it is.

@@ -83,11 +83,14 @@ impl ProveArguments {
     pub const EXAMPLES: &'static str = "\
 Examples:
   In ticks:
-    harness prove \"integrator 5\" --envelope \"dwell=20 bounce=5/3 glitch=1/1 quiet=10\"
+    harness prove \"integrator 5\" \\
+      --envelope \"dwell=20 bounce=5/3 glitch=1/1 quiet=10\"
   In time, at one tick period:
-    harness prove \"state-machine confirm=3/2 lockout=4/0\" --requirement contact.toml --tick \"1 ms\"
+    harness prove \"state-machine confirm=3/2 lockout=4/0\" \\
+      --requirement contact.toml --tick \"1 ms\"
   Logic of one's own, as a next-state table, with the counter-example as a file:
-    harness prove --table own.kiss2 --envelope \"dwell=20 bounce=5 glitch=1 quiet=10\" --witness broken.vcd";
+    harness prove --table own.kiss2 \\
+      --envelope \"dwell=20 bounce=5 glitch=1 quiet=10\" --witness broken.vcd";
 }
 
 impl ProveArguments {
@@ -105,7 +108,9 @@ impl ProveArguments {
         let machine_file = self.machine.as_deref().map(MachineFile::prepare).transpose()?;
         let contract = self.contract.into();
         let limits = Limits::default();
+        let bar = session.waiting("exploring");
         let proof = prove_contract(&logic.table, &envelope, contract, &limits).map_err(Problem::told)?;
+        bar.finish_and_clear();
         let effort = if self.thorough { Effort::Thorough } else { Effort::Quick };
         let beyond = Beyond::of(&logic.table, &proof, effort, &limits);
         let again = self.again(&name, &envelope, tick);

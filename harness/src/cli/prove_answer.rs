@@ -87,7 +87,8 @@ impl Answer for Proved {
                 self.size(&mut lines)?;
                 still_bears(&mut lines, &self.beyond)?;
                 lines.plain(&format!("\na shortest waveform that shows it:\n{}", TimingDiagram(witness)))?;
-                lines.plain(&format!("\nagain: {}\n", self.again))
+                lines.plain("\n")?;
+                lines.command(&format!("again: {}", self.again))
             }
         }?;
         for path in &self.written {

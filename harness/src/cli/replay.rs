@@ -67,7 +67,8 @@ Examples:
   A slow clock, exactly 30 samples a second:
     harness replay \"shift-register 1\" gate.vcd --tick \"30 Hz\"
   The recordings of a requirement file, for a program:
-    harness replay \"state-machine confirm=3/2 lockout=4/0\" --requirement contact.toml --tick \"1 ms\" --json";
+    harness replay \"state-machine confirm=3/2 lockout=4/0\" \\
+      --requirement contact.toml --tick \"1 ms\" --json";
 }
 
 impl ReplayArguments {

@@ -1,18 +1,17 @@
 //! From what was typed to an exit code.
 
 use std::ffi::OsString;
-use std::io::Write;
 use std::process::ExitCode;
 
 use clap::error::ErrorKind;
 use clap::{CommandFactory, Parser, Subcommand};
 
-use super::session::{print_problems, to_stdout};
+use super::session::{print_problems, to_stderr, to_stdout};
 use super::shell::shell_line;
 use super::{
-    Answer, CharacteriseArguments, ChooseArguments, CompareArguments, EmitArguments, Failure,
-    GenerateArguments, GlobalOptions, LimitArguments, NetworkArguments, ProveArguments, ReplayArguments,
-    Session, StudyArguments,
+    Answer, CharacteriseArguments, ChooseArguments, CompareArguments, CompletionsArguments, EmitArguments,
+    Failure, GenerateArguments, GlobalOptions, LimitArguments, ManualArguments, NetworkArguments,
+    ProveArguments, RecheckArguments, ReplayArguments, SchemaArguments, Session, StudyArguments,
 };
 use crate::problem::Problem;
 
@@ -22,7 +21,8 @@ use crate::problem::Problem;
     name = "harness",
     version,
     after_help = "Exit codes: 0 holds, 1 does not hold, 2 bad input or usage.",
-    disable_help_subcommand = true
+    disable_help_subcommand = true,
+    max_term_width = 80
 )]
 pub(super) struct CommandLine {
     #[command(flatten)]
@@ -44,6 +44,10 @@ enum Command {
     Network(NetworkArguments),
     Generate(GenerateArguments),
     Emit(EmitArguments),
+    Recheck(RecheckArguments),
+    Schema(SchemaArguments),
+    Completions(CompletionsArguments),
+    Manual(ManualArguments),
 }
 
 impl Command {
@@ -59,6 +63,10 @@ impl Command {
             Self::Network(_) => "network",
             Self::Generate(_) => "generate",
             Self::Emit(_) => "emit",
+            Self::Recheck(_) => "recheck",
+            Self::Schema(_) => "schema",
+            Self::Completions(_) => "completions",
+            Self::Manual(_) => "manual",
         }
     }
 
@@ -74,6 +82,10 @@ impl Command {
             Self::Network(arguments) => arguments.run(session),
             Self::Generate(arguments) => arguments.run(session),
             Self::Emit(arguments) => arguments.run(session),
+            Self::Recheck(arguments) => arguments.run(session),
+            Self::Schema(arguments) => arguments.run(session),
+            Self::Completions(arguments) => arguments.run(session),
+            Self::Manual(arguments) => arguments.run(session),
         }
     }
 }
@@ -103,7 +115,7 @@ fn end(printed: Result<(), Failure>, code: u8) -> ExitCode {
         Ok(()) => ExitCode::from(code),
         Err(failure) => {
             // Standard error is all that is left; if that is closed too, the exit code stays.
-            drop(write!(anstream::stderr(), "{}", failure.rendered()));
+            drop(to_stderr(&failure.rendered()));
             failure.into()
         }
     }
@@ -115,7 +127,7 @@ fn usage(error: &clap::Error, wants_json: bool) -> ExitCode {
     if matches!(error.kind(), ErrorKind::DisplayHelp | ErrorKind::DisplayVersion) {
         return end(to_stdout(|out| write!(out, "{}", rendered.ansi())), 0);
     }
-    drop(write!(anstream::stderr(), "{}", rendered.ansi()));
+    drop(to_stderr(&rendered.ansi().to_string()));
     if !wants_json {
         return ExitCode::from(Failure::CODE);
     }
@@ -128,10 +140,15 @@ fn usage(error: &clap::Error, wants_json: bool) -> ExitCode {
 
 /// What to do first, for someone who typed nothing but the name.
 fn first_steps() -> Result<(), Failure> {
-    let help = CommandLine::command().render_help();
     to_stdout(|out| {
         writeln!(out, "Start with the built-in demo:  harness study")?;
-        writeln!(out, "Then with your own recording:  harness study gate.vcd --latency \"20 ms\"\n")?;
-        write!(out, "{}", help.ansi())
+        writeln!(out, "Then with your own recording:  harness study gate.vcd --latency \"20 ms\"")?;
+        writeln!(out, "Once it is shipped, in CI:     harness recheck contact.toml\n")?;
+        writeln!(out, "harness --help lists the commands; harness COMMAND --help shows three examples")
     })
+}
+
+/// The whole command line, for what is made from it.
+pub(super) fn command_line() -> clap::Command {
+    CommandLine::command()
 }

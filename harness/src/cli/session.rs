@@ -1,18 +1,44 @@
 //! What every command shares: where output, warnings and progress go.
 
+use std::fmt;
 use std::io::{self, BufWriter, IsTerminal, Write};
+use std::thread;
 use std::time::Duration;
 
 use anstream::AutoStream;
 use clap::Args;
-use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
+use indicatif::{HumanDuration, ProgressBar, ProgressDrawTarget, ProgressState, ProgressStyle};
 use serde_json::{Value, json};
 
+use super::ascii::{AsciiOnly, is_ascii_terminal};
 use super::{Failure, Outcome};
 use crate::problem::{Problem, Problems};
 
 /// The version of the JSON output; it goes up when a field changes its meaning or goes away.
 pub const SCHEMA: u32 = 1;
+
+/// How long a person waits without asking whether anything happens.
+const PATIENCE: Duration = Duration::from_secs(1);
+
+/// Steps with their rate and the time left, in ASCII.
+const BAR: &str = "{msg} [{wide_bar}] {percent} %, {per_sec}, {left}";
+
+/// Time that passes, in ASCII.
+const SPINNER: &str = "{spinner} {msg}, {elapsed} so far";
+
+fn style(template: &str) -> ProgressStyle {
+    let style = ProgressStyle::with_template(template).unwrap_or_else(|_| ProgressStyle::default_bar());
+    style.progress_chars("#>-").tick_chars("|/-\\ ").with_key("left", time_left)
+}
+
+/// The time left, as far as the steps done tell it.
+fn time_left(state: &ProgressState, out: &mut dyn fmt::Write) {
+    // What cannot be drawn is missed by nobody but the one who looks.
+    let _lost = match state.pos() {
+        0 => out.write_str("time left not known yet"),
+        _ => write!(out, "{} left", HumanDuration(state.eta())),
+    };
+}
 
 /// Options of every command.
 #[derive(Args, Clone, Copy, PartialEq, Eq, Debug, Default)]
@@ -65,20 +91,40 @@ impl Session {
     pub fn warn(&self, message: &str) {
         if !self.options.quiet {
             // Losing a warning because nobody reads standard error is no reason to lose the answer.
-            drop(writeln!(anstream::stderr(), "warning: {message}"));
+            drop(to_stderr(&format!("warning: {message}\n")));
         }
     }
 
-    /// A progress bar on standard error for `steps` steps; it draws nothing where no person would see it.
+    /// A progress bar on standard error for `steps` steps; it draws nothing where no person would see it, and
+    /// nothing for the first second.
     #[must_use]
     pub fn progress(&self, what: &'static str, steps: u64) -> ProgressBar {
-        let seen = !self.options.quiet && io::stderr().is_terminal();
-        let target = if seen { ProgressDrawTarget::stderr_with_hz(8) } else { ProgressDrawTarget::hidden() };
-        let style = ProgressStyle::with_template("{msg} {wide_bar} {percent} %  {eta} left")
-            .unwrap_or_else(|_| ProgressStyle::default_bar());
-        let bar = ProgressBar::with_draw_target(Some(steps), target).with_style(style).with_message(what);
-        if seen {
-            bar.enable_steady_tick(Duration::from_millis(250));
+        let bar = ProgressBar::with_draw_target(Some(steps), ProgressDrawTarget::hidden())
+            .with_style(style(BAR))
+            .with_message(what);
+        self.show_later(bar)
+    }
+
+    /// As [`progress`](Self::progress), for work whose end nobody can tell: it shows that time passes.
+    #[must_use]
+    pub fn waiting(&self, what: &'static str) -> ProgressBar {
+        let bar = ProgressBar::with_draw_target(None, ProgressDrawTarget::hidden())
+            .with_style(style(SPINNER))
+            .with_message(what);
+        self.show_later(bar)
+    }
+
+    /// Draws the bar where a person sees it, once the work has taken so long that they may wonder.
+    fn show_later(&self, bar: ProgressBar) -> ProgressBar {
+        if !self.options.quiet && io::stderr().is_terminal() {
+            let later = bar.downgrade();
+            thread::spawn(move || {
+                thread::sleep(PATIENCE);
+                if let Some(bar) = later.upgrade().filter(|bar| !bar.is_finished()) {
+                    bar.set_draw_target(ProgressDrawTarget::stderr_with_hz(8));
+                    bar.enable_steady_tick(Duration::from_millis(250));
+                }
+            });
         }
         bar
     }
@@ -103,7 +149,7 @@ impl Session {
     /// Where standard output cannot be written.
     pub fn print_failure(&self, failure: &Failure) -> Result<(), Failure> {
         // Nothing is left to tell it to if standard error is closed too; the exit code stays.
-        drop(write!(anstream::stderr(), "{}", failure.rendered()));
+        drop(to_stderr(&failure.rendered()));
         if !self.options.json {
             return Ok(());
         }
@@ -144,11 +190,21 @@ fn problem_json(problem: &Problem) -> Value {
     })
 }
 
+/// Writes to standard error, colours only on a terminal.
+pub(super) fn to_stderr(text: &str) -> io::Result<()> {
+    if is_ascii_terminal(&io::stderr()) {
+        return AsciiOnly(anstream::stderr()).write_all(text.as_bytes());
+    }
+    anstream::stderr().write_all(text.as_bytes())
+}
+
 /// Writes to standard output, colours only on a terminal; a closed pipe ends quietly.
 pub(super) fn to_stdout(write: impl FnOnce(&mut dyn Write) -> io::Result<()>) -> Result<(), Failure> {
     let stdout = io::stdout();
     let mut out = BufWriter::new(AutoStream::auto(stdout.lock()));
-    let result = write(&mut out).and_then(|()| out.flush());
+    let is_plain = is_ascii_terminal(&stdout);
+    let written = if is_plain { write(&mut AsciiOnly(&mut out)) } else { write(&mut out) };
+    let result = written.and_then(|()| out.flush());
     // What could not be written is not tried again when the buffer goes.
     drop(out.into_parts());
     match result {
@@ -160,6 +216,14 @@ pub(super) fn to_stdout(write: impl FnOnce(&mut dyn Write) -> io::Result<()>) ->
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn progress_is_ascii_with_rate_and_time_left() {
+        for template in [BAR, SPINNER] {
+            assert!(ProgressStyle::with_template(template).is_ok() && template.is_ascii(), "{template}");
+        }
+        assert!(BAR.contains("{per_sec}") && BAR.contains("{left}"));
+    }
 
     #[test]
     fn document_of_a_failure_holds_its_place_and_help() {

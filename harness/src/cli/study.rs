@@ -3,6 +3,7 @@
 use std::path::PathBuf;
 
 use clap::Args;
+use indicatif::ProgressBar;
 
 use super::input::Input;
 use super::preference::PreferenceOption;
@@ -14,6 +15,7 @@ use crate::emit::{module_name, rust_module};
 use crate::problem::Problem;
 use crate::report::html::{self, Origin};
 use crate::report::json;
+use crate::requirement::Requirement;
 use crate::study::{Study, StudyError};
 
 /// From recordings and a requirement to a proven, compilable configuration.
@@ -61,8 +63,7 @@ impl StudyArguments {
         let report = self.report.prepare()?;
         let wanted = folder.is_some() || report.is_some();
         let files = if wanted { input.files()? } else { Vec::new() };
-        let ticks = input.requirement.clock.ticks.as_ref().map_or(0, |ticks| ticks.value.periods().len());
-        let bar = session.progress("judging candidates", ticks as u64);
+        let bar = judging(session, &input.requirement);
         let study = Study::of(input.observed, &input.requirement, self.preference.into(), |_| bar.inc(1))
             .map_err(failure)?;
         bar.finish_and_clear();
@@ -83,6 +84,11 @@ impl StudyArguments {
         }
         Ok(Box::new(StudyAnswer { study, demo: input.demo, written }))
     }
+}
+
+/// A bar for the tick periods that are tried one after the other.
+pub(super) fn judging(session: &Session, requirement: &Requirement) -> ProgressBar {
+    session.progress("judging candidates", requirement.tick_periods().value.len() as u64)
 }
 
 pub(super) fn failure(error: StudyError) -> Failure {

@@ -21,8 +21,11 @@ fn words(line: &str) -> Vec<String> {
 
 #[track_caller]
 fn examples_parse<A: Args + FromArgMatches>(command: &'static str, examples: &str) {
+    assert!(examples.lines().all(|line| line.len() <= 80), "wider than 80 columns: {examples}");
+    // A stroke at the end of a line joins it with the next, as a shell has it.
+    let joined = examples.replace(" \\\n     ", "");
     let lines: Vec<&str> =
-        examples.lines().map(str::trim).filter(|line| line.starts_with("harness ")).collect();
+        joined.lines().map(str::trim).filter(|line| line.starts_with("harness ")).collect();
     assert_eq!(lines.len(), 3, "three examples for {command}");
     for line in lines {
         let words = words(line);
@@ -45,6 +48,10 @@ fn help_examples_of_every_command_parse() {
     examples_parse::<ReplayArguments>("replay", ReplayArguments::EXAMPLES);
     examples_parse::<NetworkArguments>("network", NetworkArguments::EXAMPLES);
     examples_parse::<EmitArguments>("emit", EmitArguments::EXAMPLES);
+    examples_parse::<RecheckArguments>("recheck", RecheckArguments::EXAMPLES);
+    examples_parse::<SchemaArguments>("schema", SchemaArguments::EXAMPLES);
+    examples_parse::<CompletionsArguments>("completions", CompletionsArguments::EXAMPLES);
+    examples_parse::<ManualArguments>("manual", ManualArguments::EXAMPLES);
 }
 
 #[test]
@@ -61,6 +68,10 @@ fn help_of_every_command_is_consistent() {
     check::<ReplayArguments>("replay");
     check::<NetworkArguments>("network");
     check::<EmitArguments>("emit");
+    check::<RecheckArguments>("recheck");
+    check::<SchemaArguments>("schema");
+    check::<CompletionsArguments>("completions");
+    check::<ManualArguments>("manual");
 }
 
 #[test]

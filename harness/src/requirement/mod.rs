@@ -14,6 +14,7 @@
 //! [[recording]]
 //! path = "gate.vcd"         # relative to this file
 //! channel = "top.gate"
+//! sha256 = "9f86d081884c7d659a2feaa0c55ad015a3bf4f1b2b0b822cd15d6c15b0f00a08"
 //!
 //! [[recording]]
 //! path = "gate.csv"
@@ -47,12 +48,18 @@
 //! pull = "10 kohm 5 %"
 //! series = "4.7 kohm 5 %"
 //! capacitor = "100 nF 10 % X7R"
+//!
+//! [firmware]                # what was shipped, for `harness recheck` and `harness emit`
+//! module = "src/gate_input.rs"
+//! law = "state-machine confirm=2 patience=2 lockout=2/1"   # without it the best candidate
+//! tick = "1 ms"             # without it the best of those above
 //! ```
 //!
 //! With a `[network]`, recordings and figures are those of the contact, and everything is proved for what the network
 //! makes of them at the pin.
 
 mod check;
+mod firmware;
 mod front;
 mod network;
 mod network_options;
@@ -68,7 +75,7 @@ pub(crate) mod words;
 #[cfg(test)]
 mod tests;
 
-use std::path::PathBuf;
+use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
 use debounce_core::{PerChange, PerPosition};
@@ -76,6 +83,7 @@ use debounce_core::{PerChange, PerPosition};
 use crate::problem::SourceText;
 use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time, Voltage};
 
+pub use firmware::Firmware;
 pub use front::InFront;
 pub use network::{NetworkTable, ResolvedNetwork};
 pub use network_options::NetworkOptions;
@@ -107,6 +115,8 @@ pub struct Requirement {
     pub budget: Budget,
     /// What stands between the contact and the pin.
     pub network: Option<NetworkTable>,
+    /// What was shipped.
+    pub firmware: Option<Firmware>,
     source: Option<Arc<SourceText>>,
 }
 
@@ -134,6 +144,8 @@ pub struct Recording {
     pub thresholds: Option<Sourced<Thresholds>>,
     /// The level of the line while the contact is closed, where this recording differs from the contact.
     pub closed: Option<Sourced<Level>>,
+    /// The SHA-256 of the file (FIPS 180-4), in hexadecimal, that nobody may change unnoticed.
+    pub sha256: Option<Sourced<String>>,
 }
 
 /// The two thresholds that turn volts into a level.
@@ -199,4 +211,17 @@ impl Requirement {
     pub fn source(&self) -> Option<&Arc<SourceText>> {
         self.source.as_ref()
     }
+
+    /// A path as the requirement file writes it: without the folder of that file, so that it does not depend on
+    /// where the command runs.
+    #[must_use]
+    pub fn as_written<'a>(&self, path: &'a Path) -> &'a Path {
+        let folder = self.source().map(folder_of).unwrap_or_default();
+        if folder.as_os_str().is_empty() { path } else { path.strip_prefix(folder).unwrap_or(path) }
+    }
+}
+
+/// The folder that relative paths of a requirement file begin at.
+fn folder_of(source: &Arc<SourceText>) -> PathBuf {
+    source.path().parent().map(Path::to_path_buf).unwrap_or_default()
 }

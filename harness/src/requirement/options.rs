@@ -203,6 +203,7 @@ impl RequirementOptions {
                 channel: None,
                 thresholds: None,
                 closed: None,
+                sha256: None,
             };
             requirement.recordings = paths.iter().map(|path| recording(path)).collect();
         }

@@ -14,6 +14,7 @@ use super::section::{Reader, Section};
 use super::{
     Budget, Clock, Contact, Figures, Level, Recording, Requirement, Sourced, Thresholds, TickChoice,
 };
+use super::{firmware, folder_of};
 use crate::problem::{Problem, Problems, SourceText, plain_reason};
 use crate::quantity::{Quantity, TickPeriod, Time, Voltage};
 
@@ -144,6 +145,9 @@ fn requirement<'t>(reader: &mut Reader, root: &'t DeTable<'t>) -> Requirement {
     if let Some(section) = reader.section(&mut root, "network") {
         requirement.network = Some(network::read(reader, section));
     }
+    if let Some(section) = reader.section(&mut root, "firmware") {
+        requirement.firmware = firmware::read(reader, section);
+    }
     reader.finish(root);
     requirement
 }
@@ -166,15 +170,31 @@ fn recording(reader: &mut Reader, mut section: Section<'_>) -> Option<Recording>
     let channel = reader.text(&mut section, "channel", "top.gate");
     let closed: Option<Sourced<Level>> = reader.word(&mut section, "closed");
     let thresholds = thresholds(reader, &mut section);
+    let sha256 = sha256(reader, &mut section);
     if has_path.is_none() {
         // Point at something of this recording, else at the end of the file.
         let near = channel.as_ref().and_then(|channel| channel.origin.span()).unwrap_or(missing..missing);
         reader.problem(near, "a recording has no path", "write path = \"gate.vcd\" under [[recording]]");
     }
     reader.finish(section);
-    let folder = reader.source.path().parent().map(Path::to_path_buf).unwrap_or_default();
+    let folder = folder_of(&reader.source);
     let path: Sourced<PathBuf> = path?.map(|path| folder.join(path));
-    Some(Recording { path, channel, thresholds, closed })
+    Some(Recording { path, channel, thresholds, closed, sha256 })
+}
+
+fn sha256(reader: &mut Reader, section: &mut Section<'_>) -> Option<Sourced<String>> {
+    const EXAMPLE: &str = "9f86d081884c7d659a2feaa0c55ad015a3bf4f1b2b0b822cd15d6c15b0f00a08";
+    let text = reader.text(section, "sha256", EXAMPLE)?;
+    if text.value.len() == EXAMPLE.len() && text.value.bytes().all(|digit| digit.is_ascii_hexdigit()) {
+        return Some(text.map(|digits| digits.to_lowercase()));
+    }
+    let span = text.origin.span().unwrap_or_default();
+    reader.problem(
+        span,
+        "a SHA-256 has 64 hexadecimal digits",
+        "write what `sha256sum` prints, or leave it out: `harness recheck` prints it, too",
+    );
+    None
 }
 
 fn thresholds(reader: &mut Reader, section: &mut Section<'_>) -> Option<Sourced<Thresholds>> {

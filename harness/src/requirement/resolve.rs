@@ -142,7 +142,7 @@ impl Requirement {
             quiet: figure(given.quiet, measured.quiet.map(down), ms(9), QUIET),
             calm: figure(given.calm, None, Time::ZERO, CALM),
         };
-        let ticks = self.ticks();
+        let ticks = self.tick_periods();
         let jitter = self.jitter(&ticks)?;
         Ok(Resolved {
             name: or_default(&self.contact.name, "contact".to_owned(), OURS),
@@ -197,7 +197,8 @@ impl Requirement {
     }
 
     /// The tick periods to try, shortest first, none faster than the budget allows.
-    fn ticks(&self) -> Sourced<Vec<TickPeriod>> {
+    #[must_use]
+    pub fn tick_periods(&self) -> Sourced<Vec<TickPeriod>> {
         let usual = [200, 500, 1_000, 2_000, 4_000, 5_000, 8_000, 10_000];
         let period = |us: u64| TickPeriod::try_from_ns(us * 1_000);
         let mut ticks = match &self.clock.ticks {

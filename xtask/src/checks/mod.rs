@@ -7,6 +7,7 @@ mod firmware;
 mod format;
 mod host;
 mod lints;
+mod packages;
 mod report;
 mod targets;
 mod top_level;
@@ -30,6 +31,11 @@ pub(crate) const ALL: &[Check] = &[
         name: "check-docs",
         about: "the docs build without a warning and agree with the code",
         run: docs::run,
+    },
+    Check {
+        name: "check-packages",
+        about: "both crates can be packaged and carry what a registry asks for",
+        run: packages::run,
     },
     Check { name: "check-host", about: "all tests and doctests pass on this machine", run: host::run },
     Check {

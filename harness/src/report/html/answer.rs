@@ -6,7 +6,7 @@ use maud::{Markup, html};
 use crate::choose::Candidate;
 use crate::prove::{Beyond, Recovery};
 use crate::report::words;
-use crate::study::{Guarantees, Study};
+use crate::study::{Caution, Guarantees, Study};
 
 /// The whole answer.
 pub(super) fn of(study: &Study) -> Markup {
@@ -35,6 +35,7 @@ pub(super) fn of(study: &Study) -> Markup {
             @for line in confidence(study) { dd { (line) } }
         }
         (fits(study))
+        (warnings(&study.cautions()))
         @if let Some((best, found)) = best { (more(study, best, found)) }
     }
 }
@@ -181,4 +182,14 @@ fn confidence(study: &Study) -> Vec<String> {
         ];
     }
     lines
+}
+
+/// What weakens the recordings, each with what to do.
+pub(super) fn warnings(cautions: &[Caution]) -> Markup {
+    html! {
+        @if !cautions.is_empty() {
+            p { "Before you lean on the recordings:" }
+            ul { @for caution in cautions { li { (caution) "." } } }
+        }
+    }
 }

@@ -5,11 +5,11 @@ use maud::{Markup, html};
 
 use super::bounce::Limit;
 use super::timing::{self, Shown};
-use super::{Cell, Origin, Page, Section, bounce, distribution, origin, requirement, table};
+use super::{Cell, Origin, Page, Section, answer, bounce, distribution, origin, requirement, table};
 use crate::characterise::Claim;
 use crate::report::words;
 use crate::requirement::Resolved;
-use crate::study::{Claims, Observed};
+use crate::study::{Caution, Claims, Observed};
 
 /// What recordings show, with everything a report says of it.
 #[derive(Clone, Copy, Debug)]
@@ -18,8 +18,10 @@ pub struct Characterised<'a> {
     pub observed: &'a [Observed],
     /// The requirement, for its name, confidence and coverage.
     pub resolved: &'a Resolved,
-    /// What they allow to claim.
+    /// What all of them together allow to claim.
     pub claims: &'a Claims,
+    /// What a reader should know before leaning on them.
+    pub warnings: &'a [Caution],
 }
 
 /// The report of what recordings show.
@@ -53,7 +55,7 @@ pub fn characterised(found: &Characterised<'_>, origin: &Origin) -> String {
         kind: "What the recordings show".to_owned(),
         invented: false,
         cautions: found.resolved.caution().into_iter().collect(),
-        answer: answer(found),
+        answer: answered(found),
         sections,
     };
     page.html()
@@ -71,7 +73,7 @@ fn limits(found: &Characterised<'_>, change: Change) -> Vec<Limit> {
         .collect()
 }
 
-fn answer(found: &Characterised<'_>) -> Markup {
+fn answered(found: &Characterised<'_>) -> Markup {
     let confidence = found.resolved.confidence.value;
     html! {
         @for change in [Change::Make, Change::Break] {
@@ -90,6 +92,7 @@ fn answer(found: &Characterised<'_>) -> Markup {
                 }
             }
         }
+        (answer::warnings(found.warnings))
         @for one in found.observed {
             p {
                 strong { (one.name) } ", channel " (one.recording.channel) ": "

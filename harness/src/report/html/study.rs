@@ -8,7 +8,6 @@ use super::{
     Origin, Page, Section, answer, bounce, conformance, cost, distribution, envelope, latency, logic,
     network, origin, plane, requirement, simpler, tick, witness,
 };
-use crate::characterise::Claim;
 use crate::choose::Candidate;
 use crate::machine::MachineTable;
 use crate::study::{Guarantees, Observed, Study};
@@ -31,7 +30,7 @@ pub fn study(study: &Study, invented: bool, origin: &Origin) -> String {
     sections.extend(conformance::section(study));
     sections.extend(bounce::section(&study.observed, |change| limits(study, change)));
     let confidence = study.resolved.confidence.value.to_string();
-    let claim = |change| claim(study, change);
+    let claim = |change| study.claims.bounce.at(change);
     sections.extend(distribution::section(
         &study.observed,
         claim,
@@ -94,13 +93,9 @@ fn worst(found: &Guarantees) -> Section {
     section
 }
 
-fn claim(study: &Study, change: Change) -> Option<Claim> {
-    study.claims.bounce.at(change)
-}
-
 /// What is claimed of the bounce, and what the envelope allows.
 fn limits(study: &Study, change: Change) -> Vec<Limit> {
-    let claimed = claim(study, change).map(|claim| Limit {
+    let claimed = study.claims.bounce.at(change).map(|claim| Limit {
         name: "claimed",
         at_ns: claim.longest_ns,
         class: "claimed",

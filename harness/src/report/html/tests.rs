@@ -14,7 +14,7 @@ use crate::machine::MachineTable;
 use crate::problem::SourceText;
 use crate::prove::{Beyond, Effort, Limits, prove_within};
 use crate::requirement::{Requirement, parse};
-use crate::study::{Claims, Observed, Study, measured, observe};
+use crate::study::{Caution, Claims, Observed, Study, measured, observe};
 use crate::trace::{ReadOptions, read_bytes};
 
 fn recorded() -> Observed {
@@ -72,16 +72,17 @@ const SAME: (&str, &str) = ("control", "control");
 fn reports() -> Vec<(&'static str, String)> {
     let observed = recorded();
     let resolved = requirement(SAME).fill_in(&measured(std::slice::from_ref(&observed))).expect("values");
-    let one = std::slice::from_ref(&observed);
-    let claims = Claims::of(one, &resolved).expect("shares");
-    let found = Characterised { observed: one, resolved: &resolved, claims: &claims };
+    let observed = std::slice::from_ref(&observed);
+    let claims = Claims::of(observed, &resolved).expect("claims");
+    let warnings = Caution::all(observed, &resolved, &claims);
+    let found = Characterised { observed, resolved: &resolved, claims: &claims, warnings: &warnings };
     vec![
-        ("study", study(&studied(SAME, vec![observed.clone()]), true, &origin())),
+        ("study", study(&studied(SAME, observed.to_vec()), true, &origin())),
         ("choice", study(&studied(SAME, Vec::new()), false, &origin())),
         (
             "nothing holds",
             study(
-                &studied(("latency = \"50 ms\"", "latency = \"3 ms\""), vec![observed.clone()]),
+                &studied(("latency = \"50 ms\"", "latency = \"3 ms\""), observed.to_vec()),
                 true,
                 &origin(),
             ),
