@@ -1,4 +1,6 @@
 //! The workbench: records, characterises, chooses, proves and ships the conditioning of a contact.
+//!
+//! The [guide] leads from a contact on the bench to firmware with a proven input. For one's own tests there is [`check`].
 #![forbid(unsafe_code)]
 
 pub mod characterise;
@@ -11,6 +13,7 @@ pub mod demo;
 pub mod emit;
 pub mod envelope;
 pub mod generate;
+pub mod guide;
 pub mod law_text;
 mod level;
 pub mod logic;

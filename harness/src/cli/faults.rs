@@ -42,15 +42,16 @@ pub(super) fn recording(error: &ReadError) -> Vec<Problem> {
     first = error.lacks().into_iter().map(option_for).fold(first, Problem::help);
     problems.insert(0, first);
     if error.has_more() {
-        problems.push(last_of_many(path));
+        problems.push(last_of_many(path, &problems));
     }
     problems
 }
 
-/// Stands behind the list, so it has no place of its own to be sorted by.
-fn last_of_many(path: &str) -> Problem {
+/// Stands behind the list: at the last place in it, so that sorting leaves it there.
+fn last_of_many(path: &str, listed: &[Problem]) -> Problem {
     let message = format!("more bad lines follow; the first {MAX_FAULTS} are listed");
-    Problem::told(message).at(path, usize::MAX, 1)
+    let (line, column) = listed.iter().filter_map(Problem::line_column).max().unwrap_or((1, 1));
+    Problem::told(message).at(path, line, column)
 }
 
 /// How to tell the reader what it lacks.
@@ -70,7 +71,8 @@ fn option_for(lack: &Lack) -> String {
                  \"{low} V\", high = \"{high} V\" }} under [[recording]] in the requirement file"
             )
         }
-        Lack::TimeUnit => "give --time-unit us, or s, ms, ns, ps or fs".to_owned(),
+        Lack::TimeUnit => "give --time-unit us, or s, ms, ns, ps or fs; --sample-period \"10 us\" where a CSV counts samples"
+            .to_owned(),
         Lack::TimeColumn => "give --time-column by name or number".to_owned(),
         _ => "give --delimiter as comma, semicolon, tab or space".to_owned(),
     }
@@ -88,7 +90,7 @@ pub(super) fn table(error: &TableFileError) -> Vec<Problem> {
         })
         .collect();
     if all.len() > MAX_FAULTS {
-        problems.push(last_of_many(error.path()));
+        problems.push(last_of_many(error.path(), &problems));
     }
     problems
 }

@@ -14,6 +14,9 @@ pub struct ReadingOptions {
     /// Unit of the times, where the file does not say or says it wrong
     #[arg(long, value_enum, value_name = "UNIT", help_heading = "Recordings")]
     pub time_unit: Option<UnitOfTimes>,
+    /// CSV: the column of times counts samples, one in so much time
+    #[arg(long, value_name = "TIME", conflicts_with = "time_unit", help_heading = "Recordings")]
+    pub sample_period: Option<Time>,
     /// CSV: the column of times, by name or number; found without it
     #[arg(long, value_name = "COLUMN", help_heading = "Recordings")]
     pub time_column: Option<String>,
@@ -34,6 +37,7 @@ impl ReadingOptions {
     pub fn read_options(&self) -> ReadOptions {
         ReadOptions {
             resolution_ns: self.resolution.map(Time::ns),
+            sample_period_ns: self.sample_period.map(Time::ns),
             time_unit: self.time_unit.map(Into::into),
             time_column: self.time_column.clone(),
             delimiter: self.delimiter.map(Into::into),

@@ -171,6 +171,8 @@ pub struct ReadOptions {
     pub time_column: Option<String>,
     /// The unit of the times, where the file does not say or says it wrong.
     pub time_unit: Option<TimeUnit>,
+    /// CSV: the column of times holds the numbers of samples that lie so far apart.
+    pub sample_period_ns: Option<u64>,
     /// The recorder's sample period, where the file does not show it: a VCD shows only its time scale.
     pub resolution_ns: Option<u64>,
     /// CSV: the delimiter.

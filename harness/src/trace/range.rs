@@ -5,7 +5,7 @@ use super::options::Thresholds;
 
 /// What an instrument writes where it has no reading: 9.9E37 stands for beyond the range, 9.91E37 for not a number
 /// (IEEE 488.2 instruments, SCPI 1999 volume 1, 7.2.1.4 and 7.2.1.5; from memory).
-const BEYOND_RANGE: f64 = 9.9e37;
+pub(super) const BEYOND_RANGE: f64 = 9.9e37;
 const NOT_A_NUMBER: f64 = 9.91e37;
 
 /// The least and the greatest voltage seen.

@@ -51,7 +51,7 @@ impl<'a> Sample<'a> {
     }
 
     fn reads(&self, cell: &[u8]) -> bool {
-        cell::parse(cell, self.mark).is_ok()
+        cell::parse(cell, self.mark).is_ok() || number::beyond_range(cell).is_some()
     }
 
     fn is_row(&self, index: usize) -> bool {

@@ -4,9 +4,11 @@
 //! * Times are exact to the nanosecond and rounded down to it; they must rise from row to row. Times that begin
 //!   below zero are moved up by whole nanoseconds until they do not.
 //! * A unit in the header counts; without one, times with a fraction are seconds, and whole numbers are refused.
+//! * With a sample period the column of times holds the numbers of samples that lie so far apart.
 //! * Evenly spaced rows are samples: each stands for one period, which is the resolution. Otherwise rows are
 //!   changes, the last row is the end, and the resolution is the worth of the last digit of the times.
 //! * A voltage is high at or above the rising threshold, low at or below the falling one, else as before.
+//! * Infinity stands for a voltage beyond the recorder's range: the level is known, the voltage is not.
 //! * Blank lines and lines that begin with `#` are skipped.
 
 mod cell;
@@ -38,9 +40,9 @@ pub(super) fn read<R: Read>(
     faults: &mut Faults,
 ) -> Vec<Recording> {
     let Some(layout) = layout_of(prefix, options, faults) else { return Vec::new() };
-    if layout.time_unit.is_none() && layout.times_are_whole {
+    if layout.time_unit.is_none() && layout.times_are_whole && options.sample_period_ns.is_none() {
         faults.whole_file("has whole numbers as times and does not say in which unit");
-        faults.help("give the unit, or name it in the header, as in \"time (us),level\"");
+        faults.help("give the unit, or name it in the header, as in \"time (us),level\"; or the sample period, where they count samples");
         faults.lack(Lack::TimeUnit);
     }
     let mut chosen = Vec::new();

@@ -1,6 +1,7 @@
 //! Numbers as recorders write them: times exactly, by decimal arithmetic, and voltages.
 
 use crate::trace::DecimalMark;
+use crate::trace::range::BEYOND_RANGE;
 
 /// A time in units of 10⁻²⁴ s: fine enough for every digit that recorders write, and 2⁶⁴ ns still fit.
 pub(super) type Yoctoseconds = i128;
@@ -16,6 +17,18 @@ pub(super) struct Time {
     pub(super) at: Yoctoseconds,
     /// Power of ten of a second of the last digit.
     pub(super) last_place: i32,
+}
+
+impl Time {
+    /// So many times as late.
+    pub(super) fn times(self, factor: u64) -> Result<Self, NoNumber> {
+        let at = self.at.checked_mul(i128::from(factor)).ok_or(NoNumber::TooLarge)?;
+        // As in `finish`: room to subtract and to shift.
+        if at.abs() > 2 * i128::from(u64::MAX) * PER_NS {
+            return Err(NoNumber::TooLarge);
+        }
+        Ok(Self { at, ..self })
+    }
 }
 
 /// Why a cell is no number.
@@ -137,6 +150,15 @@ fn finish(mantissa: i128, place: i32, last_place: i32) -> Result<Time, NoNumber>
     Ok(Time { at, last_place })
 }
 
+/// What some instruments write where the voltage lies beyond their range; its sign says on which side.
+pub(super) fn beyond_range(cell: &[u8]) -> Option<f64> {
+    let (is_negative, word) = split_sign(cell);
+    let is_infinite = word == "\u{221e}".as_bytes()
+        || word.eq_ignore_ascii_case(b"inf")
+        || word.eq_ignore_ascii_case(b"infinity");
+    is_infinite.then_some(if is_negative { -BEYOND_RANGE } else { BEYOND_RANGE })
+}
+
 /// A voltage, correctly rounded.
 pub(super) fn real(cell: &[u8], mark: DecimalMark) -> Result<f64, NoNumber> {
     parts(cell, mark)?;
@@ -156,6 +178,18 @@ pub(super) fn real(cell: &[u8], mark: DecimalMark) -> Result<f64, NoNumber> {
 mod tests {
     use super::*;
     use DecimalMark::{Comma, Point};
+
+    #[test]
+    fn beyond_range_is_a_side_and_no_number() {
+        for (cell, side) in
+            [("inf", 1.0), ("+Infinity", 1.0), ("\u{221e}", 1.0), ("-\u{221e}", -1.0), ("-INF", -1.0)]
+        {
+            assert_eq!(beyond_range(cell.as_bytes()), Some(side * BEYOND_RANGE), "{cell}");
+        }
+        for cell in ["nan", "3.3", "", "-", "information"] {
+            assert_eq!(beyond_range(cell.as_bytes()), None, "{cell}");
+        }
+    }
 
     #[track_caller]
     fn check(cell: &str, unit_power: i32, expected: Result<i128, NoNumber>) {

@@ -76,7 +76,11 @@ impl<'a> Rows<'a> {
             layout,
             options,
             lanes: chosen.iter().map(lane).collect(),
-            unit_power: layout.time_unit.unwrap_or(TimeUnit::Seconds).power_of_ten(),
+            unit_power: match options.sample_period_ns {
+                Some(_) => TimeUnit::Nanoseconds,
+                None => layout.time_unit.unwrap_or(TimeUnit::Seconds),
+            }
+            .power_of_ten(),
             shift: 0,
             before: None,
             before_text: Vec::new(),
@@ -144,7 +148,13 @@ impl<'a> Rows<'a> {
 
     /// Takes the time of a row, or says what is wrong with it.
     fn time(&mut self, cell: &[u8]) -> Result<(), String> {
-        let time = number::time(cell, self.layout.mark, self.unit_power).map_err(|error| {
+        let read = number::time(cell, self.layout.mark, self.unit_power);
+        let spaced = read.and_then(|time| match self.options.sample_period_ns {
+            // The number of a sample was read as nanoseconds.
+            Some(period_ns) => time.times(period_ns),
+            None => Ok(time),
+        });
+        let time = spaced.map_err(|error| {
             format!("{} {}; a time is a number such as 0.001", quoted(cell), error.reason("a time"))
         })?;
         match self.before {
@@ -212,9 +222,11 @@ impl<'a> Rows<'a> {
         // Each of even samples stands for one period, the last one too.
         let tail_ns = if self.is_sampled() { whole_ns(self.least_step).unwrap_or(0) } else { 0 };
         let end_ns = self.now_ns.saturating_add(tail_ns);
-        let resolution_ns = self.options.resolution_ns.unwrap_or_else(|| self.resolution_ns());
+        let stated = self.options.resolution_ns.or(self.options.sample_period_ns);
+        let resolution_ns = stated.unwrap_or_else(|| self.resolution_ns());
         let shift = whole_ns(self.shift).filter(|&by_ns| by_ns > 0).map(|by_ns| Note::Shifted { by_ns });
-        let assumed = self.layout.time_unit.is_none().then_some(Note::SecondsAssumed);
+        let is_assumed = self.layout.time_unit.is_none() && self.options.sample_period_ns.is_none();
+        let assumed = is_assumed.then_some(Note::SecondsAssumed);
         let preamble = Some(self.layout.preamble)
             .filter(|&lines| lines > 0)
             .map(|lines| Note::PreambleSkipped { lines });
@@ -255,14 +267,24 @@ impl Lane {
     ) -> Result<Reading, String> {
         let known = |level| Reading::Known(options.polarity.position(level));
         if let Some(thresholds) = options.thresholds {
-            let value = number::real(cell, layout.mark).map_err(|error| {
-                format!("{} {}; a voltage is a number such as 3.3", quoted(cell), error.reason("a voltage"))
-            })?;
-            let volts = self.unit.volts(value);
+            let volts = match number::beyond_range(cell) {
+                Some(volts) => volts,
+                None => self.unit.volts(number::real(cell, layout.mark).map_err(|error| {
+                    format!(
+                        "{} {}; a voltage is a number such as 3.3",
+                        quoted(cell),
+                        error.reason("a voltage")
+                    )
+                })?),
+            };
             self.range
                 .see(volts)
                 .map_err(|why| format!("{} {why}; a voltage is a number such as 3.3", quoted(cell)))?;
             return Ok(thresholds.level(volts).map_or(Reading::Between, known));
+        }
+        if self.is_volts && number::beyond_range(cell).is_some() {
+            self.first_number.get_or_insert(place);
+            return Ok(Reading::Between);
         }
         let cell = cell::parse(cell, layout.mark).map_err(|error| {
             let (wanted, instead) = match self.is_volts {

@@ -59,7 +59,9 @@ fn csv_without_header_fractions_are_seconds() {
 fn csv_whole_times_without_unit_are_refused_unless_given() {
     let text = "0,1\n5,0\n20,1\n";
     let error = refused(text, &plain(), &[" has whole numbers as times and does not say in which unit"]);
-    assert_eq!(error.help(), Some("give the unit, or name it in the header, as in \"time (us),level\""));
+    let help = "give the unit, or name it in the header, as in \"time (us),level\"; or the sample period, where they \
+                count samples";
+    assert_eq!(error.help(), Some(help));
     let given = ReadOptions { time_unit: Some(TimeUnit::Microseconds), ..plain() };
     check(text, &given, Closed, &[5_000, 20_000], 20_000);
 }
@@ -347,4 +349,27 @@ fn csv_text_without_rows_is_refused() {
     for text in ["hello world\n", "time,level\n", "1\n2\n3\n", "a,b\nc,d\n", "# only,a remark\n"] {
         refused(text, &plain(), &[" holds no row of a time and a level"]);
     }
+}
+
+/// As exported by an instrument that numbers its samples and writes their spacing elsewhere.
+#[test]
+fn csv_sample_numbers_are_times_with_the_sample_period() {
+    let text = "X,CHAN1\nSequence,Volt\n0,3.3\n1,3.3\n2,0.1\n3,0.1\n4,3.3\n";
+    let options = ReadOptions { sample_period_ns: Some(50_000), ..with_thresholds(None) };
+    let recording = check(text, &options, Closed, &[100_000, 200_000], 250_000);
+    assert_eq!(recording.trace.resolution_ns(), 50_000);
+    assert!(!recording.notes.contains(&Note::SecondsAssumed));
+    let huge = ReadOptions { sample_period_ns: Some(u64::MAX), ..with_thresholds(None) };
+    let error = read(text, &huge).expect_err("beyond 64 bits");
+    assert!(error.to_string().contains("f.csv:6:1: \"3\" is not a time: it is too large"), "{error}");
+}
+
+#[test]
+fn csv_infinite_voltage_is_a_level_and_noted() {
+    let text = "Zeit;Kanal A\n(ms);(V)\n\n0,0;\u{221e}\n0,5;3,2\n1,0;-inf\n1,5;0,1\n2,0;3,2\n";
+    let recording = check(text, &with_thresholds(None), Closed, &[1_000_000, 2_000_000], 2_500_000);
+    assert!(recording.notes.contains(&Note::Clipped { readings: 2 }), "{:?}", recording.notes);
+    // Without thresholds they are asked for, rather than each such reading refused.
+    let error = read(text, &plain()).expect_err("volts");
+    assert!(matches!(error.lacks(), Some(Lack::Thresholds { .. })), "{error}");
 }
