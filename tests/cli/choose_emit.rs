@@ -13,7 +13,7 @@ fn choose_from_figures_alone_ranks_what_holds_and_says_what_was_assumed() {
     for part in [
         "bounces for at most 5 ms after a make and 5 ms after a break",
         "First state-machine confirm=2 patience=2 lockout=2 at a tick of 2 ms",
-        "Assumed required.shortest_closed = 70 ms (default: ",
+        "Assumed required.shortest_closed = 70 ms, ",
         "Left out disturbances 5 ms apart come faster than a tick of 5 ms can tell apart",
         "* no other candidate that holds beats it",
     ] {

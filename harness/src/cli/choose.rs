@@ -42,7 +42,7 @@ pub struct ChooseArguments {
     #[command(flatten)]
     pub preference: PreferenceOption,
     /// So many candidates are listed
-    #[arg(long, value_name = "COUNT", default_value_t = 6)]
+    #[arg(long, value_name = "COUNT", default_value_t = 4)]
     pub list: usize,
     /// Plot worst delay against tick period
     #[arg(long)]
@@ -141,12 +141,7 @@ impl Answer for Chosen {
         if !self.study.observed.is_empty() {
             claims(&mut lines, &self.study.claims)?;
         }
-        for row in self.study.resolved.rows() {
-            // What the network does has just been said.
-            if !matches!(row.origin, Origin::Given { .. } | Origin::Option(_) | Origin::Network) {
-                lines.item("Assumed", &format!("{} = {} ({})", row.key, row.text, row.origin))?;
-            }
-        }
+        assumed(&mut lines, &self.study.resolved)?;
         for view in &ranking.clocks {
             if let Err(error) = view.envelope {
                 lines.item("Left out", &error.to_string())?;
@@ -269,4 +264,24 @@ fn lacks(shortfall: &Shortfall) -> String {
         Shortfall::TooBig { bytes, allowed } => format!("{} bytes", bytes - allowed),
         Shortfall::FailsOnRecording { recording } => format!("recording {}", recording + 1),
     }
+}
+
+/// Every value that nobody gave, those from the same origin together.
+fn assumed(lines: &mut Lines<'_>, resolved: &Resolved) -> io::Result<()> {
+    let mut groups: Vec<(Origin, Vec<String>)> = Vec::new();
+    for row in resolved.rows() {
+        // What the network does has just been said.
+        if matches!(row.origin, Origin::Given { .. } | Origin::Option(_) | Origin::Network) {
+            continue;
+        }
+        let value = format!("{} = {}", row.key, row.text);
+        match groups.iter_mut().find(|(origin, _)| *origin == row.origin) {
+            Some((_, values)) => values.push(value),
+            None => groups.push((row.origin, vec![value])),
+        }
+    }
+    for (origin, values) in groups {
+        lines.item("Assumed", &format!("{} ({origin})", values.join(", ")))?;
+    }
+    Ok(())
 }

@@ -46,7 +46,7 @@ pub fn study(study: &Study, invented: bool, origin: &Origin) -> String {
             .zip(best)
             .map(|(machine, best)| logic::section(&best.parameters.to_string(), machine)),
     );
-    sections.extend(study.guarantees.as_ref().map(|found| worst(found)));
+    sections.extend(study.guarantees.as_ref().map(worst));
     sections.extend(simpler::section(study));
     sections.push(cost::section(study));
     sections.push(requirement::section(&study.resolved));

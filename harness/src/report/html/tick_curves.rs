@@ -53,7 +53,7 @@ impl Line {
     /// The worst delay at the end of the longest stretch that is drawn: where its name belongs.
     pub(super) fn last_ns(&self, highest: f64) -> Option<f64> {
         let longest = self.stretches.iter().max_by_key(|stretch| stretch.len())?;
-        longest.iter().filter(|point| point.1 <= highest).next_back().map(|point| point.1)
+        longest.iter().rfind(|point| point.1 <= highest).map(|point| point.1)
     }
 
     /// The path, without what lies above the plane.

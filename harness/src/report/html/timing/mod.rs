@@ -54,7 +54,7 @@ pub(super) fn section(shown: &[Shown<'_>], heading: &str) -> Option<Section> {
         }
         @for (index, shown) in shown.iter().enumerate() {
             @let waves = Waves::of(shown, room);
-            @if shown.moments.len() > 0 {
+            @if !shown.moments.is_empty() {
                 div class="moments" {
                     @for (number, moment) in shown.moments.iter().enumerate() {
                         (figure(shown, &waves, moment, index, number))
