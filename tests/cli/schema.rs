@@ -45,7 +45,8 @@ habit = \"presses\"
 count = 4
 ";
 
-/// An envelope in which even the best logic is left in doubt, and one in which the limit is not known.
+/// Envelopes for which no closed form is proved, in which no logic is faithful, and of which the limit is not known.
+const NO_FORMULA: &str = "dwell=30 bounce=3/2 glitch=1/3 quiet=2";
 const UNSOLVABLE: &str = "dwell=3 bounce=3";
 const UNKNOWN: &str = "dwell=100000000 bounce=50 glitch=30/50 quiet=40";
 
@@ -65,7 +66,7 @@ fn runs() -> Vec<(i32, Vec<&'static str>)> {
         line(0, &[&["prove", "integrator 6"], &ENVELOPE]),
         line(1, &[&["prove", "shift-register 2"], &ENVELOPE, &["--witness", "broken.vcd"]]),
         line(0, &[&["limit"], &ENVELOPE]),
-        line(0, &[&["limit", "--envelope", "dwell=30 bounce=3/2 glitch=1/3 quiet=2", "--machine", "best.kiss2"]]),
+        line(0, &[&["limit", "--envelope", NO_FORMULA, "--machine", "best.kiss2"]]),
         line(1, &[&["limit", "--envelope", UNSOLVABLE]]),
         line(2, &[&["limit", "--envelope", UNKNOWN]]),
         line(0, &[&["compare", "shift-register 4", "state-machine confirm=4"]]),
