@@ -25,6 +25,31 @@ tick = \"5 ms\"
 const ENVELOPE: [&str; 2] = ["--envelope", "dwell=20 bounce=5/3 glitch=1/1 quiet=10"];
 const RECORDING: [&str; 3] = ["vent.vcd", "--closed", "high"];
 
+/// A network with a plain or a Schmitt input, and what makes it one with a diode.
+const FILTER: [&str; 6] =
+    ["--pull", "10 kohm 5 %", "--series", "1 kohm 5 %", "--capacitor", "100 nF 10 % X7R"];
+const DIODE: [&str; 6] = ["--series", "10 kohm", "--capacitor", "100 nF", "--diode", "silicon"];
+
+/// Two contacts for `generate`.
+const PANEL: &str = "\
+[scenario]
+seed = 7
+[[contact]]
+name = \"start\"
+preset = \"tactile\"
+[[contact]]
+name = \"door\"
+preset = \"reed\"
+[[operation]]
+habit = \"presses\"
+count = 4
+";
+
+/// Envelopes for which no closed form is proved, in which no logic is faithful, and of which the limit is not known.
+const NO_FORMULA: &str = "dwell=30 bounce=3/2 glitch=1/3 quiet=2";
+const UNSOLVABLE: &str = "dwell=3 bounce=3";
+const UNKNOWN: &str = "dwell=100000000 bounce=50 glitch=30/50 quiet=40";
+
 /// Runs that together show every field of every command, and how they end.
 fn runs() -> Vec<(i32, Vec<&'static str>)> {
     let line = |code: i32, parts: &[&[&'static str]]| (code, parts.concat());
@@ -34,14 +59,29 @@ fn runs() -> Vec<(i32, Vec<&'static str>)> {
         line(0, &[&["study", "--requirement", "contact.toml", "--output", "results"]]),
         line(2, &[&["study", "gone.vcd"]]),
         line(0, &[&["characterise"], &RECORDING, &["--gap", "9 ms"]]),
+        line(0, &[&["characterise"], &RECORDING, &["--gap", "9 ms", "--operations"]]),
         line(2, &[&["characterise", "--requirement", "broken.toml"]]),
         line(0, &[&["choose", "--bounce", "5 ms", "--tick", "1 ms"]]),
         line(1, &[&["choose"], &RECORDING, &["--latency", "5 ms", "--tick", "2 ms", "--ram", "1 byte"]]),
         line(0, &[&["prove", "integrator 6"], &ENVELOPE]),
         line(1, &[&["prove", "shift-register 2"], &ENVELOPE, &["--witness", "broken.vcd"]]),
+        line(0, &[&["limit"], &ENVELOPE]),
+        line(0, &[&["limit", "--envelope", NO_FORMULA, "--machine", "best.kiss2"]]),
+        line(1, &[&["limit", "--envelope", UNSOLVABLE]]),
+        line(2, &[&["limit", "--envelope", UNKNOWN]]),
+        line(0, &[&["compare", "shift-register 4", "state-machine confirm=4"]]),
+        line(1, &[&["compare", "integrator 3", "shift-register 3", "--witness", "apart.vcd"]]),
         line(0, &[&["replay", "shift-register 4"], &RECORDING, &["--tick", "1 ms"]]),
         line(1, &[&["replay", "shift-register 1"], &RECORDING, &["--tick", "10 ms"]]),
         line(1, &[&["replay", "shift-register 40"], &RECORDING, &["--tick", "20 ms", "--draws", "0"]]),
+        line(0, &[&["generate", "tactile", "--operations", "8", "--output", "button.vcd", "--volts"]]),
+        line(0, &[&["generate", "encoder"]]),
+        line(0, &[&["generate", "panel.toml"]]),
+        line(0, &[&["generate", "--list"]]),
+        line(2, &[&["generate", "tactil"]]),
+        line(0, &[&["network"], &FILTER]),
+        line(1, &[&["network"], &FILTER, &["--input", "lvcmos-3.3"]]),
+        line(0, &[&["network", "--input", "schmitt-hc", "--supply", "5 V"], &DIODE]),
         line(0, &[&["emit", "--bounce", "5 ms", "--tick", "1 ms"]]),
         line(0, &[&["emit", "--bounce", "5 ms", "--tick", "1 ms", "--output", "contact.rs"]]),
         line(1, &[&["emit", "--bounce", "5 ms", "--latency", "3 ms", "--tick", "1 ms"]]),
@@ -60,6 +100,7 @@ fn bench() -> Bench {
     Bench::with("vent.vcd", demo::RECORDING)
         .and("contact.toml", CONTACT)
         .and("late.toml", CONTACT.replace("[required]\n", "[required]\nlatency = \"9 ms\"\n"))
+        .and("panel.toml", PANEL)
         .and("broken.toml", CONTACT.replace("45 ms", "45"))
 }
 
