@@ -191,13 +191,22 @@ fn paths(value: &Value, here: &str, found: &mut Vec<String>) {
 #[test]
 fn schema_refuses_a_value_of_another_kind_anywhere() {
     let bench = bench();
-    for arguments in [
-        &["choose", "--bounce", "5 ms", "--tick", "10 ms", "--latency", "40 ms"][..],
-        &["prove", "integrator 6", ENVELOPE[0], ENVELOPE[1]],
-        &["recheck", "contact.toml"],
-        &["stduy"],
+    let line = |code: i32, parts: &[&[&'static str]]| (code, parts.concat());
+    for (code, arguments) in [
+        line(0, &[&["choose", "--bounce", "5 ms", "--tick", "1 ms", "--latency", "40 ms"]]),
+        line(1, &[&["choose"], &RECORDING, &["--latency", "5 ms", "--tick", "2 ms"]]),
+        line(0, &[&["characterise"], &RECORDING, &["--gap", "9 ms", "--operations"]]),
+        line(0, &[&["prove", "integrator 6"], &ENVELOPE]),
+        line(0, &[&["limit"], &ENVELOPE]),
+        line(1, &[&["limit", "--envelope", UNSOLVABLE]]),
+        line(1, &[&["compare", "integrator 3", "shift-register 3"]]),
+        line(0, &[&["generate", "tactile", "--operations", "8"]]),
+        line(0, &[&["generate", "--list"]]),
+        line(1, &[&["network"], &FILTER, &["--input", "lvcmos-3.3"]]),
+        line(0, &[&["recheck", "contact.toml"]]),
+        line(2, &[&["stduy"]]),
     ] {
-        let document = bench.run(&[arguments, &["--json"]].concat()).json();
+        let document = bench.run(&[&arguments[..], &["--json"]].concat()).ends(code).json();
         let schema = validator(&bundled(document["command"].as_str().expect("a command")).expect("a schema"));
         let mut all = Vec::new();
         paths(&document, "", &mut all);
