@@ -132,10 +132,7 @@ fn figure(observed: &[Observed], change: Change, limits: &[Limit]) -> Option<Fig
             "{} aligned at their first edge. The longest bounce lasts {}.{}",
             words::count(count, word),
             words::about(longest),
-            limits
-                .iter()
-                .map(|limit| format!(" {}: {}.", limit.name, words::at_most(limit.at_ns)))
-                .collect::<String>()
+            told(limits)
         ),
         view_box: PLANE.view_box(),
         drawing,
@@ -144,6 +141,11 @@ fn figure(observed: &[Observed], change: Change, limits: &[Limit]) -> Option<Fig
         },
         data: None,
     })
+}
+
+/// The limits in words, for those who do not see them marked.
+pub(super) fn told(limits: &[Limit]) -> String {
+    limits.iter().map(|limit| format!(" {}: {}.", limit.name, words::at_most(limit.at_ns))).collect()
 }
 
 /// Evenly spaced ones, at most so many.

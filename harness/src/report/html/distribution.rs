@@ -3,7 +3,7 @@
 use debounce_core::Change;
 use maud::{Markup, html};
 
-use super::bounce::{Limit, marked};
+use super::bounce::{Limit, marked, told};
 use super::{Cell, Figure, Section, table};
 use crate::characterise::{Claim, quantile_type_7};
 use crate::report::plot::{Axis, Plane, Scale, linear_ticks, px};
@@ -94,10 +94,7 @@ fn figure(observed: &[Observed], change: Change, limits: &[Limit]) -> Option<Fig
             words::about(p50),
             words::about(p95),
             words::about(longest),
-            limits
-                .iter()
-                .map(|limit| format!(" {}: {}.", limit.name, words::at_most(limit.at_ns)))
-                .collect::<String>()
+            told(limits)
         ),
         view_box: PLANE.view_box(),
         drawing,
