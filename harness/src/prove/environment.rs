@@ -1,5 +1,7 @@
 //! The envelope as an automaton: every way in which the contact, its bounce and the disturbances may go on.
 
+use core::hash::{Hash, Hasher};
+
 use debounce_core::{Envelope, PerPosition, Position};
 use rustc_hash::FxHashMap;
 
@@ -8,7 +10,7 @@ use super::{Contract, ProveError};
 /// What the environment remembers between two ticks.
 ///
 /// The counters run only as far as they matter and stop there, so the automaton is finite.
-#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
 pub struct EnvironmentState {
     /// Where the contact is.
     pub contact: Position,
@@ -24,6 +26,16 @@ pub struct EnvironmentState {
     pub quiet_served: u32,
     /// Settled samples since the bounce ended, up to calm.
     pub calm_served: u32,
+}
+
+/// Three words instead of seven: most of the time that an enumeration takes is spent looking states up.
+impl Hash for EnvironmentState {
+    fn hash<H: Hasher>(&self, hasher: &mut H) {
+        let pair = |high: u32, low: u32| u64::from(high) << 32 | u64::from(low);
+        hasher.write_u64(pair(self.held, self.bounce_left));
+        hasher.write_u64(pair(self.window_left, self.quiet_served));
+        hasher.write_u64(pair(self.calm_served, (self.contact as u32) << 1 | self.wanted as u32));
+    }
 }
 
 /// One way to go on from an environment state, packed: the target and what happened on the way.
@@ -157,8 +169,12 @@ impl Environment {
         while next < enumeration.states.len() {
             let state = enumeration.states[next];
             fan.clear();
-            rules.branches(state, |flags, target| {
-                fan.push(Branch(flags | (enumeration.number(target) << Branch::SHIFT)));
+            rules.branches(state, |flags, target, misread| {
+                let branch = Branch(flags | (enumeration.number(target) << Branch::SHIFT));
+                fan.push(branch);
+                if misread {
+                    fan.push(Branch(branch.0 ^ Branch::SAMPLE));
+                }
             });
             // Two readings of one sample that lead to the same state are one branch; the plainer one stays.
             fan.sort_unstable_by_key(|branch| (branch.essence(), branch.0));
@@ -318,8 +334,9 @@ impl Rules {
         }
     }
 
-    /// Calls `found` with the flags and the target of every way to go on.
-    fn branches(&self, state: EnvironmentState, mut found: impl FnMut(u32, EnvironmentState)) {
+    /// Calls `found` with the flags and the target of every way to go on, and whether the sample may as well be the
+    /// other one.
+    fn branches(&self, state: EnvironmentState, mut found: impl FnMut(u32, EnvironmentState, bool)) {
         self.with_position(state, 0, &mut found);
         if state.held >= self.envelope.dwell.at(state.contact) {
             let contact = state.contact.opposite();
@@ -342,7 +359,7 @@ impl Rules {
         &self,
         state: EnvironmentState,
         flags: u32,
-        found: &mut impl FnMut(u32, EnvironmentState),
+        found: &mut impl FnMut(u32, EnvironmentState, bool),
     ) {
         self.with_bounce(state, flags, found);
         // Without calm nothing depends on when a bounce ends, and a longer one can do all that a shorter can.
@@ -356,7 +373,7 @@ impl Rules {
         &self,
         state: EnvironmentState,
         flags: u32,
-        found: &mut impl FnMut(u32, EnvironmentState),
+        found: &mut impl FnMut(u32, EnvironmentState, bool),
     ) {
         let bouncing = state.bounce_left > 0;
         if state.window_left > 0 {
@@ -380,7 +397,7 @@ impl Rules {
         &self,
         state: EnvironmentState,
         mut flags: u32,
-        found: &mut impl FnMut(u32, EnvironmentState),
+        found: &mut impl FnMut(u32, EnvironmentState, bool),
     ) {
         let covered = flags & Branch::COVERED != 0;
         let bouncing = state.bounce_left > 0;
@@ -399,10 +416,6 @@ impl Rules {
         if !covered && !bouncing {
             next.calm_served = (state.calm_served + 1).min(self.envelope.calm);
         }
-        let contact_sample = flags | u32::from(state.contact.is_closed());
-        found(contact_sample, next);
-        if covered || bouncing {
-            found(contact_sample ^ Branch::SAMPLE, next);
-        }
+        found(flags | u32::from(state.contact.is_closed()), next, covered || bouncing);
     }
 }

@@ -21,13 +21,10 @@ pub(super) struct Explored {
     pub(super) transitions: u64,
 }
 
-/// Sets of fewer words than this are not worth sharing out.
-const SHARED_WORDS: usize = 1 << 14;
-
 /// Whether an exploration may take two threads.
 pub(super) fn is_shared(words: &Words<'_>, limits: &Limits) -> bool {
     let threads = if limits.threads == 0 { rayon::current_num_threads() } else { limits.threads };
-    threads > 1 && words.len() >= SHARED_WORDS
+    threads > 1 && words.are_many()
 }
 
 /// Explores everything that can be reached from both starts; `None` as soon as a promise is broken.
@@ -228,12 +225,12 @@ impl Counts {
 mod tests {
     use debounce_core::{Envelope, Integrator, Law, MajorityRegister, StateMachine};
 
-    use super::{SHARED_WORDS, explore_into};
+    use super::explore_into;
     use crate::prove::environment::Environment;
     use crate::prove::product::Product;
     use crate::prove::reached::Reached;
     use crate::prove::tabulate::LawTable;
-    use crate::prove::word::Words;
+    use crate::prove::word::{MANY_WORDS, Words};
     use crate::prove::{Limits, ProveError, prove_within};
 
     fn limits(threads: usize) -> Limits {
@@ -260,9 +257,9 @@ mod tests {
             })
         };
         let dense = explored(1, Reached::new(&words, &limits(1)));
-        assert_eq!(explored(1, Reached::of_few(&words, &limits(1))), dense);
+        assert_eq!(explored(1, Reached::paged(&words, &limits(1))), dense);
         assert_eq!(explored(2, Reached::new(&words, &limits(1))), dense);
-        assert_eq!(explored(2, Reached::of_few(&words, &limits(1))), dense);
+        assert_eq!(explored(2, Reached::paged(&words, &limits(1))), dense);
         dense.map(|found| found.0)
     }
 
@@ -282,7 +279,7 @@ mod tests {
         let large = Envelope::clean(160, 160).bounce(32, 32).glitch(8, 8).quiet(16);
         let machine = StateMachine::<u16>::for_envelope(&large).expect("quiet is long enough");
         let words = Environment::of(&large).expect("sound").len() * 4;
-        assert!(words >= SHARED_WORDS, "{words} words would not be shared out");
+        assert!(words >= MANY_WORDS, "{words} words would not be shared out");
         assert_eq!(alike(&machine, &large), Some(258_524));
     }
 
@@ -295,10 +292,10 @@ mod tests {
         let logic = LawTable::of(&law).expect("a law");
         let product = Product { environment: &environment, logic: &logic };
         let words = Words::of(&product);
-        assert!(words.len() >= SHARED_WORDS);
+        assert!(words.len() >= MANY_WORDS);
         let explored = |threads, memory_bytes| {
             let limits = Limits { memory_bytes, threads };
-            explore_into(&product, &words, &limits, Reached::of_few(&words, &limits))
+            explore_into(&product, &words, &limits, Reached::paged(&words, &limits))
         };
         let free = explored(1, u64::MAX).expect("fits").expect("faithful");
         let [open, closed] = [0, 1].map(|half| free.reached.halves[half].pages.bytes());

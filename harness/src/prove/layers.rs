@@ -3,7 +3,7 @@
 //! The layers are kept, so a predecessor is found by looking through the layer before; nothing is stored per state.
 //! The search is sequential, so the same question has the same answer on any number of cores.
 
-use super::environment::Branch;
+use super::at_once::Path;
 use super::product::{Node, Product, Step};
 use super::reached::Reached;
 use super::word::{Place, Words, ones};
@@ -17,33 +17,12 @@ pub(super) struct Layers<'a> {
     words: &'a Words<'a>,
     reached: Reached,
     layers: Vec<Layer>,
-    /// Whether only states with an unreported change are kept.
-    unreported_only: bool,
 }
-
-/// The nodes of a way, with the branch taken from each.
-type Path = Vec<(Node, usize)>;
 
 impl<'a> Layers<'a> {
     /// The first layer: both starts.
     pub(super) fn new(product: &Product<'_>, words: &'a Words<'a>, limits: &Limits) -> Self {
-        Self::within(product, words, Reached::new(words, limits))
-    }
-
-    /// The first two layers of the waveforms that begin with a change, and of these all layers up to its report.
-    pub(super) fn changed_at_once(
-        product: &Product<'_>,
-        words: &'a Words<'a>,
-        limits: &Limits,
-    ) -> Result<Self, ProveError> {
-        let mut layers = Self::within(product, words, Reached::of_few(words, limits));
-        layers.unreported_only = true;
-        layers.advance_where(|branch| branch.changes() != 0)?;
-        Ok(layers)
-    }
-
-    fn within(product: &Product<'_>, words: &'a Words<'a>, reached: Reached) -> Self {
-        let mut layers = Self { words, reached, layers: Vec::new(), unreported_only: false };
+        let mut layers = Self { words, reached: Reached::new(words, limits), layers: Vec::new() };
         for node in product.starts() {
             let (place, bit) = words.place(node);
             layers.reached.add(place, bit);
@@ -84,13 +63,9 @@ impl<'a> Layers<'a> {
 
     /// Goes one sample on; false when nothing new is reached. There must be no broken promise on the way.
     fn advance(&mut self) -> Result<bool, ProveError> {
-        self.advance_where(|_| true)
-    }
-
-    fn advance_where(&mut self, wanted: impl Fn(Branch) -> bool) -> Result<bool, ProveError> {
         let last = self.layers.last().expect("there is a first layer");
         for &(place, bits) in last {
-            self.words.expand_where(place, bits, &wanted, |place, bits| self.reached.add(place, bits));
+            self.words.expand(place, bits, |place, bits| self.reached.add(place, bits));
         }
         self.reached.check()?;
         let next = self.take();
@@ -111,12 +86,6 @@ impl<'a> Layers<'a> {
             while let Some(page) = half.pages.take() {
                 layer.extend(page.into_iter().filter(|&(_, fresh)| fresh != 0));
             }
-        }
-        if self.unreported_only {
-            layer.retain_mut(|(place, bits)| {
-                *bits &= self.words.differing(*place);
-                *bits != 0
-            });
         }
         layer
     }

@@ -34,6 +34,7 @@
 //! # Ok::<(), harness::prove::ProveError>(())
 //! ```
 
+mod at_once;
 mod beyond;
 mod contract;
 mod environment;
@@ -79,7 +80,8 @@ use crate::report::words;
 pub struct Limits {
     /// Most bytes for the set of states reached; envelope, law and the layers of a witness come on top.
     pub memory_bytes: u64,
-    /// Threads to share large layers among: 1 is none but the caller's, 0 is as many as there are.
+    /// Threads to explore with: 1 is the caller's alone, 0 is as many as there are. Small explorations take one, large
+    /// ones up to two, one for each position of the contact.
     pub threads: usize,
 }
 

@@ -51,7 +51,12 @@ pub(super) struct Product<'a> {
 impl Product<'_> {
     /// The two starts: everything settled, at open and at closed.
     pub(super) fn starts(&self) -> [Node; 2] {
-        Position::BOTH.map(|p| Node::new(self.environment.start(p), self.logic.rest(p), false))
+        Position::BOTH.map(|position| self.start(position))
+    }
+
+    /// Everything settled at `position`.
+    pub(super) fn start(&self, position: Position) -> Node {
+        Node::new(self.environment.start(position), self.logic.rest(position), false)
     }
 
     /// Where the contract wants the output once everything pending is reported.

@@ -30,8 +30,9 @@ impl Reached {
         Self::of(words, limits, fits && words.law.len() <= FILLED_WORDS)
     }
 
-    /// A set for few states: all of it in pages.
-    pub(super) fn of_few(words: &Words<'_>, limits: &Limits) -> Self {
+    /// A set that is all in pages.
+    #[cfg(test)]
+    pub(super) fn paged(words: &Words<'_>, limits: &Limits) -> Self {
         Self::of(words, limits, false)
     }
 

@@ -3,6 +3,7 @@
 
 use debounce_core::{Bounds, Change, Clause, PerChange};
 
+use super::at_once::slowest_at_once;
 use super::latency::{Circle, Reports, by_age};
 use super::layers::Layers;
 use super::product::{Node, Product, Step};
@@ -61,19 +62,12 @@ fn reports_in_time(
             words.nodes(place, reporting).next().map(|node| (node, at))
         })
     };
-    // No waveform is shorter than the latency it shows, so one that begins with the change is a shortest; nearly
-    // always there is one, and these waveforms are few. Only otherwise all are searched.
-    let worst = bounds.latency.make.worst.max(bounds.latency.break_.worst);
-    let mut paths = if worst > 1 {
-        let mut layers = Layers::changed_at_once(product, words, limits)?;
-        layers.search::<2>(product, worst as usize, slowest)?
-    } else {
-        [None, None]
-    };
-    let shortest = |change: Change| bounds.latency.at(change).worst as usize;
-    for (path, change) in paths.iter_mut().zip(CHANGES) {
-        *path = path.take().filter(|path| path.len() == shortest(change));
-    }
+    // A hash set takes about 18 bytes a node.
+    let most = usize::try_from(limits.memory_bytes / 18).unwrap_or(usize::MAX);
+    let mut paths = CHANGES.map(|change| {
+        let worst = bounds.latency.at(change).worst;
+        (worst > 1).then(|| slowest_at_once(product, change, worst, most)).flatten()
+    });
     if paths.iter().any(Option::is_none) {
         let all = Layers::new(product, words, limits).search::<2>(product, usize::MAX, slowest)?;
         for (path, other) in paths.iter_mut().zip(all) {

@@ -16,6 +16,9 @@ use super::tabulate::LawTable;
 /// Words whose bits scatter to more places than this are stepped bit by bit.
 const MOST_MOVES: usize = 16;
 
+/// Fewer words than this are not worth a second thread.
+pub(super) const MANY_WORDS: usize = 1 << 14;
+
 /// The bits of a word that one sample moves together.
 #[derive(Clone, Copy)]
 struct Move {
@@ -182,6 +185,11 @@ impl<'a> Words<'a> {
         self.environment.len() * self.law.len()
     }
 
+    /// Whether they are so many that it pays to share them out among threads.
+    pub(super) fn are_many(&self) -> bool {
+        self.len() >= MANY_WORDS
+    }
+
     /// The first word with the contact closed; all with it open come before.
     pub(super) fn first_closed(&self) -> usize {
         self.environment.first_closed() * self.law.len()
@@ -253,26 +261,11 @@ impl<'a> Words<'a> {
 
     /// Takes every branch from `bits` and calls `each` with all they lead to; false as soon as a promise breaks.
     #[inline]
-    pub(super) fn expand(&self, place: Place, bits: u64, each: impl FnMut(Place, u64)) -> bool {
-        self.expand_where(place, bits, |_| true, each)
-    }
-
-    /// As [`expand`](Self::expand), but takes only the branches that are `wanted`.
-    #[inline]
-    pub(super) fn expand_where(
-        &self,
-        place: Place,
-        bits: u64,
-        wanted: impl Fn(Branch) -> bool,
-        mut each: impl FnMut(Place, u64),
-    ) -> bool {
+    pub(super) fn expand(&self, place: Place, bits: u64, mut each: impl FnMut(Place, u64)) -> bool {
         let words = self.law.len();
         let (environment, word) = (place.word / words, place.word % words);
         let differing = self.differing_at(environment, word);
         for &branch in self.environment.branches(environment) {
-            if !wanted(branch) {
-                continue;
-            }
             let split = self.split_at(word, place.late, bits, differing, branch);
             if split.broken != 0 {
                 return false;
