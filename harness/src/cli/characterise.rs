@@ -160,6 +160,7 @@ impl Answer for Characterised {
             "recordings": self.observed.iter().map(recording).collect::<Value>(),
             "pooled": characterised::figures(&self.claims.pooled),
             "claims": characterised::claims(&self.claims),
+            "written": self.written.iter().map(|path| path.display().to_string()).collect::<Value>(),
             "warnings": self.cautions.iter().map(ToString::to_string).collect::<Vec<_>>(),
         })
     }

@@ -191,6 +191,7 @@ impl Answer for Chosen {
                 .iter()
                 .map(|(ppm, slowest_ns)| json!({ "ppm": ppm, "slowest_ns": slowest_ns }))
                 .collect::<Value>(),
+            "written": self.written.iter().map(|path| path.display().to_string()).collect::<Value>(),
             "sleep": {
                 "operations_per_hour": self.clock.activity.operations_per_hour,
                 "disturbances_per_hour": self.clock.activity.disturbances_per_hour,

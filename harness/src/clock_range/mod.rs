@@ -6,9 +6,11 @@
 //! known as a whole, and not at some points only: it is a list of [`Piece`]s, to the nanosecond of tick period.
 //!
 //! What a law does in an envelope is answered by its closed form; candidates are those of [`choose`](crate::choose).
-//! The majority register has no closed form that says that it holds, so it has no curve here.
+//! The majority register has no closed form that says that it holds, so it is explored, once in each envelope in samples
+//! that differs for it.
 
 mod curve;
+mod majority;
 mod power;
 mod recommend;
 mod steps;
@@ -134,13 +136,22 @@ fn delays(clock: &TickClock, worst: PerChange<u32>) -> PerChange<u64> {
 /// Looks at every tick period.
 #[must_use]
 pub fn clock_range(question: &ClockQuestion) -> ClockRange {
+    looked_at(question, &majority::Explored::default())
+}
+
+fn looked_at(question: &ClockQuestion, explored: &majority::Explored) -> ClockRange {
     let until_ns = question.until_ns();
     let from_ns = question.from_ns.max(steps::fewest(question)).min(until_ns.max(1));
     let span = Span { from_ns, until_ns: until_ns.max(from_ns) };
     let steps = steps::steps(question, span);
     let mut starts: Vec<u64> = core::iter::once(from_ns).chain(steps.iter().map(|step| step.at_ns)).collect();
     starts.dedup();
-    let judged: Vec<curve::Judged> = starts.par_iter().map(|&at_ns| curve::judged(question, at_ns)).collect();
+    let mut judged: Vec<curve::Judged> =
+        starts.par_iter().map(|&at_ns| curve::judged(question, at_ns)).collect();
+    let envelopes: Vec<_> = starts.iter().map(|&at_ns| question.envelope_at(at_ns)).collect();
+    for (judged, best) in judged.iter_mut().zip(explored.best(&envelopes)) {
+        judged[curve::EXPLORED] = best;
+    }
     let curves = curve::curves(question, &starts, span.until_ns, &judged);
     let recommended = recommend::recommend(question, &curves);
     ClockRange { clock: question.clock, span, steps, curves, recommended }
@@ -150,8 +161,9 @@ pub fn clock_range(question: &ClockQuestion) -> ClockRange {
 /// none holds at any.
 #[must_use]
 pub fn slowest_by_tolerance(question: &ClockQuestion, ppm: &[u32]) -> Vec<(u32, Option<u64>)> {
+    let explored = majority::Explored::default();
     let slowest = |&ppm: &u32| {
-        let range = clock_range(&question.tolerance_ppm(ppm)?);
+        let range = looked_at(&question.tolerance_ppm(ppm)?, &explored);
         range.curves.iter().filter_map(|curve| Some(curve.holds.last()?.until_ns)).max()
     };
     ppm.iter().map(|ppm| (*ppm, slowest(ppm))).collect()

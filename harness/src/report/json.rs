@@ -184,6 +184,7 @@ pub fn clock_range(range: &ClockRange) -> Value {
     let curve = |curve: &Curve| {
         json!({
             "law": curve.family,
+            "evidence": if curve.is_explored { "explored" } else { "closed-form" },
             "works": spans(&curve.works),
             "in_time": spans(&curve.holds),
             "pieces": curve
