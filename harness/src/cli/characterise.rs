@@ -7,11 +7,11 @@ use clap::Args;
 use debounce_core::Change;
 use serde_json::{Value, json};
 
+use super::choose::network;
 use super::figures;
 use super::input::Input;
 use super::lines::Lines;
 use super::operations_table::operations;
-use super::choose::network;
 use super::recorded::{claims, recorded};
 use super::recordings::RequirementInput;
 use super::report::{ReportOption, written};
@@ -85,7 +85,16 @@ impl CharacteriseArguments {
         }
         let (observed, listed, histogram) = (input.observed, self.operations, self.histogram);
         let network = resolved.network;
-        Ok(Box::new(Characterised { observed, network, claims, cautions, outcome, listed, histogram, written }))
+        Ok(Box::new(Characterised {
+            observed,
+            network,
+            claims,
+            cautions,
+            outcome,
+            listed,
+            histogram,
+            written,
+        }))
     }
 }
 

@@ -129,7 +129,9 @@ impl StudyAnswer {
             if conforms.conforms() {
                 let inside = match one.taken_at.map(|taken_at| taken_at.value) {
                     None | Some(TakenAt::Pin) => "lies inside the envelope of the proof",
-                    Some(TakenAt::Contact) => "lies inside the envelope of the contact that the network was worked out for",
+                    Some(TakenAt::Contact) => {
+                        "lies inside the envelope of the contact that the network was worked out for"
+                    }
                 };
                 lines.item("Conforms", &format!("{} {inside}", one.name))?;
                 continue;

@@ -11,7 +11,7 @@ use debounce_core::{Change, Envelope, PerChange, Position, Verdict};
 use rayon::prelude::*;
 use rustc_hash::FxHashMap;
 
-use crate::choose::laws_to_try;
+use crate::choose::{Tables, laws_to_try};
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
 use crate::prove::{Contract, Environment, Limits, Outcome, prove_in};
@@ -30,7 +30,10 @@ const LIMITS: Limits = Limits { memory_bytes: 1 << 20, threads: 1 };
 
 /// What has been explored already.
 #[derive(Default)]
-pub(super) struct Explored(Mutex<FxHashMap<Envelope, Best>>);
+pub(super) struct Explored {
+    best: Mutex<FxHashMap<Envelope, Best>>,
+    tables: Tables,
+}
 
 impl Explored {
     /// The best register in each envelope.
@@ -42,16 +45,19 @@ impl Explored {
             let known = self.known();
             new.extend(asked.iter().flatten().filter(|envelope| !known.contains_key(envelope)));
         }
-        new.sort_unstable_by_key(|e| (e.bounce.make, e.bounce.break_, e.glitch.open, e.glitch.closed, e.quiet));
+        new.sort_unstable_by_key(|e| {
+            (e.bounce.make, e.bounce.break_, e.glitch.open, e.glitch.closed, e.quiet)
+        });
         new.dedup();
-        let found: Vec<(Envelope, Best)> = new.into_par_iter().map(|e| (e, best(&e))).collect();
+        let found: Vec<(Envelope, Best)> =
+            new.into_par_iter().map(|envelope| (envelope, best(&envelope, &self.tables))).collect();
         let mut known = self.known();
         known.extend(found);
         asked.iter().map(|envelope| known.get(envelope.as_ref()?).copied().flatten()).collect()
     }
 
     fn known(&self) -> std::sync::MutexGuard<'_, FxHashMap<Envelope, Best>> {
-        self.0.lock().expect("no thread panics")
+        self.best.lock().expect("no thread panics")
     }
 }
 
@@ -75,7 +81,7 @@ fn merit(worst: PerChange<u32>) -> (u32, u32) {
     (worst.make.max(worst.break_), worst.make.min(worst.break_))
 }
 
-fn best(envelope: &Envelope) -> Best {
+fn best(envelope: &Envelope, tables: &Tables) -> Best {
     let allowed = envelope.dwell.open.max(envelope.dwell.closed);
     let mut tried: Vec<(PerChange<u32>, LawParameters, Logic)> = laws_to_try(envelope, allowed)
         .into_iter()
@@ -99,7 +105,7 @@ fn best(envelope: &Envelope) -> Best {
         }
         let environment = environment.get_or_init(|| Environment::within(envelope, &LIMITS).ok());
         let Some(environment) = environment else { return None };
-        let Some(worst) = explored(&logic, environment, envelope) else { continue };
+        let Some(worst) = explored(&logic, tables, environment, envelope) else { continue };
         if best.is_none_or(|(_, known)| merit(worst) < merit(known)) {
             best = Some((law, worst));
         }
@@ -111,12 +117,18 @@ fn best(envelope: &Envelope) -> Best {
 pub(super) fn worst_of(logic: &Logic, envelope: &Envelope) -> Option<PerChange<u32>> {
     let envelope = shortened(envelope);
     let environment = Environment::within(&envelope, &LIMITS).ok()?;
-    explored(logic, &environment, &envelope)
+    explored(logic, &Tables::default(), &environment, &envelope)
 }
 
-fn explored(logic: &Logic, environment: &Environment, envelope: &Envelope) -> Option<PerChange<u32>> {
-    let table = logic.table().ok()?;
-    let proof = prove_in(&table, environment, envelope, Contract::Follow, &LIMITS).ok()?;
+fn explored(
+    logic: &Logic,
+    tables: &Tables,
+    environment: &Environment,
+    envelope: &Envelope,
+) -> Option<PerChange<u32>> {
+    let table = tables.of(logic);
+    let table = table.get()?.as_ref().ok()?;
+    let proof = prove_in(table, environment, envelope, Contract::Follow, &LIMITS).ok()?;
     match proof.outcome {
         Outcome::Faithful { bounds, .. } => {
             Some(PerChange { make: bounds.latency.make.worst, break_: bounds.latency.break_.worst })
@@ -137,10 +149,11 @@ fn least(envelope: &Envelope, majority: u32) -> PerChange<u32> {
 }
 
 /// Whether some waveform of a simple shape makes a register report a change back that never was: perhaps a disturbance,
-/// a rest, the change, the new position for some samples of the bounce and the old one for the others, perhaps a
-/// disturbance.
+/// a rest, the change, the new position for as many samples of the bounce as a report needs and the old one for the
+/// others, perhaps a disturbance.
 fn refuted(logic: &Logic, law: LawParameters, envelope: &Envelope) -> bool {
-    let LawParameters::MajorityRegister { window, .. } = law else { return false };
+    let LawParameters::MajorityRegister { majority, window } = law else { return false };
+    let majority = u32::from(majority);
     [Change::Make, Change::Break].into_iter().any(|change| {
         let (to, from) = (change.to(), !change.to());
         let (bounce, before) = (envelope.bounce.at(change), envelope.glitch.at(from));
@@ -148,7 +161,10 @@ fn refuted(logic: &Logic, law: LawParameters, envelope: &Envelope) -> bool {
         let with = if before > 0 { vec![0, before] } else { vec![0] };
         with.into_iter().any(|before| {
             (0..=if before > 0 { u32::from(window) } else { 0 }).any(|rest| {
-                (0..=bounce).any(|early| {
+                [majority.saturating_sub(before), majority].into_iter().any(|early| {
+                    if early > bounce {
+                        return false;
+                    }
                     let again = before == 0 || rest + bounce >= envelope.quiet;
                     let back = bounce - early + if again { after } else { 0 };
                     // A word must not outlast the position that it is in.

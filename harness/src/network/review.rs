@@ -156,7 +156,8 @@ impl Review {
         if analysis.energy < LEAST_JOULES {
             return;
         }
-        let told = format!("for about {}, {} in all", si(analysis.inrush_lasts, "s"), si(analysis.energy, "J"));
+        let told =
+            format!("for about {}, {} in all", si(analysis.inrush_lasts, "s"), si(analysis.energy, "J"));
         if let Some(most) = most.filter(|most| analysis.inrush.max > *most) {
             self.trouble(
                 format!(

@@ -3,8 +3,8 @@
 use debounce_core::{Change, PerChange, PerPosition, Position};
 
 use crate::characterise::{Figures, SegmentError, SegmentOptions, Segmentation, segment};
-use crate::quantity::Time;
 use crate::network::Network;
+use crate::quantity::Time;
 use crate::requirement::{Level, Measured, Sourced, TakenAt};
 use crate::trace::{Recording, Trace, TraceError};
 use crate::truth::TruthChange;

@@ -99,8 +99,7 @@ fn limits(study: &Study, change: Change) -> Vec<Limit> {
         at_ns: claim.longest_ns,
         class: "claimed",
     });
-    let allowed =
-        Limit { name: "envelope", at_ns: study.claims.design.of(change).ns, class: "asked" };
+    let allowed = Limit { name: "envelope", at_ns: study.claims.design.of(change).ns, class: "asked" };
     claimed.into_iter().chain([allowed]).collect()
 }
 
