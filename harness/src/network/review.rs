@@ -157,7 +157,7 @@ impl Review {
             return;
         }
         let told =
-            format!("for about {}, {} in all", si(analysis.inrush_lasts, "s"), si(analysis.energy, "J"));
+            format!("for about {}, {} of energy", si(analysis.inrush_lasts, "s"), si(analysis.energy, "J"));
         if let Some(most) = most.filter(|most| analysis.inrush.max > *most) {
             self.trouble(
                 format!(
