@@ -52,8 +52,7 @@ pub struct Curve {
     pub family: &'static str,
     /// The pieces, by tick period. Where there is none, no law of this kind is known to work.
     pub pieces: Vec<Piece>,
-    /// Whether that is known by exploring, with so much memory as [`choose`](crate::choose) allows a candidate; else by
-    /// closed form.
+    /// Whether that is known by exploring, within a memory that the shortest tick periods outgrow; else by closed form.
     pub is_explored: bool,
     /// Where some law of this kind is faithful.
     pub works: Vec<Span>,

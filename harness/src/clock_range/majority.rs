@@ -14,7 +14,7 @@ use rustc_hash::FxHashMap;
 use crate::choose::{Tables, laws_to_try};
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
-use crate::prove::{Contract, Environment, Limits, Outcome, prove_in};
+use crate::prove::{Contract, Environment, Limits, Outcome, ProveError, prove_in};
 
 /// A law with its worst latency in samples.
 pub(super) type Best = Option<(LawParameters, PerChange<u32>)>;
@@ -25,8 +25,11 @@ pub(super) const FAMILY: &str = "majority-register";
 /// The widest window that is tried.
 const WIDEST: u32 = 16;
 
-/// As much as [`choose`](crate::choose) allows a candidate.
-const LIMITS: Limits = Limits { memory_bytes: 1 << 20, threads: 1 };
+/// Less than [`choose`](crate::choose) allows a candidate, since there are hundreds of envelopes and each is shorter.
+const LIMITS: Limits = Limits { memory_bytes: 1 << 17, threads: 1 };
+
+/// After so many registers that did not fit into an envelope the others, which are larger, are not tried.
+const MOST_UNFINISHED: u32 = 2;
 
 /// What has been explored already.
 #[derive(Default)]
@@ -67,7 +70,7 @@ fn shortened(envelope: &Envelope) -> Envelope {
     let bounce = short.bounce.make.max(short.bounce.break_);
     let glitch = short.glitch.open.max(short.glitch.closed);
     // One operation with its bounce, a disturbance at each end, and windows between them that hold neither.
-    let (dwell, quiet) = (bounce + 2 * glitch + 4 * WIDEST, bounce + glitch + 2 * WIDEST);
+    let (dwell, quiet) = (bounce + 2 * glitch + 3 * WIDEST, bounce + glitch + 2 * WIDEST);
     short.dwell.open = short.dwell.open.min(dwell);
     short.dwell.closed = short.dwell.closed.min(dwell);
     // Where nothing disturbs, quiet and calm mean nothing.
@@ -95,7 +98,7 @@ fn best(envelope: &Envelope, tables: &Tables) -> Best {
     // Stable, so that of equals the narrower window comes first.
     tried.sort_by_key(|(least, ..)| merit(*least));
     let environment = std::cell::OnceCell::new();
-    let mut best: Best = None;
+    let (mut best, mut unfinished): (Best, u32) = (None, 0);
     for (least, law, logic) in tried {
         if best.is_some_and(|(_, worst)| merit(worst) <= merit(least)) {
             break;
@@ -105,9 +108,15 @@ fn best(envelope: &Envelope, tables: &Tables) -> Best {
         }
         let environment = environment.get_or_init(|| Environment::within(envelope, &LIMITS).ok());
         let Some(environment) = environment else { return None };
-        let Some(worst) = explored(&logic, tables, environment, envelope) else { continue };
-        if best.is_none_or(|(_, known)| merit(worst) < merit(known)) {
-            best = Some((law, worst));
+        match explored(&logic, tables, environment, envelope) {
+            Ok(Some(worst)) if best.is_none_or(|(_, known)| merit(worst) < merit(known)) => {
+                best = Some((law, worst));
+            }
+            Ok(_) => {}
+            Err(_) => unfinished += 1,
+        }
+        if unfinished == MOST_UNFINISHED {
+            break;
         }
     }
     best
@@ -117,24 +126,25 @@ fn best(envelope: &Envelope, tables: &Tables) -> Best {
 pub(super) fn worst_of(logic: &Logic, envelope: &Envelope) -> Option<PerChange<u32>> {
     let envelope = shortened(envelope);
     let environment = Environment::within(&envelope, &LIMITS).ok()?;
-    explored(logic, &Tables::default(), &environment, &envelope)
+    explored(logic, &Tables::default(), &environment, &envelope).ok()?
 }
 
+/// The worst latency of a register that holds; `None` of one that does not.
 fn explored(
     logic: &Logic,
     tables: &Tables,
     environment: &Environment,
     envelope: &Envelope,
-) -> Option<PerChange<u32>> {
+) -> Result<Option<PerChange<u32>>, ProveError> {
     let table = tables.of(logic);
-    let table = table.get()?.as_ref().ok()?;
-    let proof = prove_in(table, environment, envelope, Contract::Follow, &LIMITS).ok()?;
-    match proof.outcome {
+    let table = table.get().expect("made when it was looked up").as_ref().map_err(Clone::clone)?;
+    let proof = prove_in(table, environment, envelope, Contract::Follow, &LIMITS)?;
+    Ok(match proof.outcome {
         Outcome::Faithful { bounds, .. } => {
             Some(PerChange { make: bounds.latency.make.worst, break_: bounds.latency.break_.worst })
         }
         Outcome::Refuted { .. } => None,
-    }
+    })
 }
 
 /// No register of that majority has a shorter worst latency: the old position is read while the bounce lasts, then
