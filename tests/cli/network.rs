@@ -130,6 +130,8 @@ fn network_without_a_capacitor_is_not_blamed_for_its_strays() {
     };
     says(&["--capacitor", "100 nF"], 0, "which wears small contacts and can weld them");
     says(&["--capacitor", "100 nF", "--most-current", "1 A"], 1, "of energy), and bears 1.00 A");
+    let plant = ["--input", "industrial-1", "--cable", "2 nF", "--most-current", "100 mA"];
+    says(&plant, 0, "the cable alone can put 576 mA through the contact");
     says(&["--most-current", "100 uA"], 1, "the closed contact carries up to");
 }
 

@@ -156,6 +156,17 @@ impl Review {
         if analysis.energy < LEAST_JOULES {
             return;
         }
+        if let Some(most) = most.filter(|most| analysis.cable_inrush > *most) {
+            self.notes.push(format!(
+                "the cable alone can put {} through the contact for some nanoseconds (50 ohm of wave resistance assumed), more than the {} it bears",
+                si(analysis.cable_inrush, "A"),
+                si(most, "A")
+            ));
+        }
+        // Without a capacitor only strays discharge, and most of them are the cable.
+        if resolved.network.capacitor.max == 0.0 {
+            return;
+        }
         let told =
             format!("for about {}, {} of energy", si(analysis.inrush_lasts, "s"), si(analysis.energy, "J"));
         if let Some(most) = most.filter(|most| analysis.inrush.max > *most) {
@@ -167,13 +178,6 @@ impl Review {
                 ),
                 "put a resistor between contact and capacitor with discharge or series",
             );
-        }
-        if let Some(most) = most.filter(|most| analysis.cable_inrush > *most) {
-            self.notes.push(format!(
-                "the cable alone can put {} through the contact for some nanoseconds (50 ohm of wave resistance assumed), more than the {} it bears",
-                si(analysis.cable_inrush, "A"),
-                si(most, "A")
-            ));
         }
         if most.is_none() && analysis.inrush.max > NOTED_AMPERES {
             self.notes.push(format!(
