@@ -164,7 +164,7 @@ impl Review {
             ));
         }
         // Without a capacitor only strays discharge, and most of them are the cable.
-        if resolved.network.capacitor.max == 0.0 {
+        if resolved.network.capacitor.max <= 0.0 {
             return;
         }
         let told =
