@@ -19,6 +19,7 @@ mod replay;
 mod report;
 mod schema;
 mod study;
+mod taken_at;
 
 use std::fs::File;
 use std::process::Output;

@@ -109,6 +109,49 @@ fn network_that_cannot_work_ends_with_1_and_says_why() {
     );
 }
 
+/// A cable at a pin holds some nanojoules: no peak of theirs is held against a contact, and none is told that the wires'
+/// wave resistance forbids (50 ohm: at most 70 mA at 3.5 V, and what the pull resistor adds).
+#[test]
+fn network_without_a_capacitor_is_not_blamed_for_its_strays() {
+    let line = ["network", "--cable", "1 nF", "--most-current", "10 mA", "--least-current", "100 uA"];
+    let run = Bench::new().run(&line).ends(0);
+    assert!(!run.stdout.contains("Wrong") && !run.flowing().contains("cable alone"), "{}", run.stdout);
+    assert!(run.flowing().contains("a lone pulse of no width while open"), "{}", run.stdout);
+    for tiny in [" ps", " fs", " ps/V", " nV", " uV", " pJ"] {
+        assert!(!run.stdout.contains(tiny), "{tiny} in {}", run.stdout);
+    }
+    let json = Bench::new().run(&[&line[..], &["--json"]].concat()).ends(0).json();
+    let most = json["result"]["contact_current_amperes"]["inrush"]["max"].as_f64().expect("a number");
+    assert!(most < 0.0705, "{most}");
+    // 100 nF hold a hundred times as much.
+    let says = |arguments: &[&str], code: i32, part: &str| {
+        let run = Bench::new().run(&[&["network"], arguments].concat()).ends(code);
+        assert!(run.flowing().contains(part), "\"{part}\" is not in {}", run.stdout);
+    };
+    says(&["--capacitor", "100 nF"], 0, "which wears small contacts and can weld them");
+    says(&["--capacitor", "100 nF", "--most-current", "1 A"], 1, "of energy), and bears 1.00 A");
+    let plant = ["--input", "industrial-1", "--cable", "2 nF", "--most-current", "100 mA"];
+    says(&plant, 0, "the cable alone can put 576 mA through the contact");
+    says(&["--most-current", "100 uA"], 1, "the closed contact carries up to");
+}
+
+#[test]
+fn network_report_is_named_in_json() {
+    let bench = Bench::new();
+    let line = ["network", "--pull", "10 kohm", "--report", "network.html", "--json"];
+    assert_eq!(bench.run(&line).ends(0).json()["result"]["written"], serde_json::json!(["network.html"]));
+    assert!(bench.path().join("network.html").is_file());
+}
+
+#[test]
+fn network_of_a_controller_says_what_its_filter_is_not_part_of() {
+    let run = Bench::new().run(&["network", "--input", "industrial-3", "--cable", "2 nF"]).ends(0);
+    assert!(run.flowing().contains("a controller filters its inputs as well"), "{}", run.stdout);
+    // A resistor as loose as one inside a chip is not compared with those in shops.
+    let run = Bench::new().run(&["network", "--pull", "45 kohm 40 %"]).ends(0);
+    assert!(!run.stdout.contains("preferred"), "{}", run.stdout);
+}
+
 /// 2.3 ns, 0.31 ns, 9.6 as, 100 MHz and 1 MHz: 20.1 days (blog.mbedded.ninja, "Metastability and synchronisation").
 #[test]
 fn network_synchroniser_fails_as_rarely_as_the_worked_example() {
@@ -175,6 +218,13 @@ fn network_options_that_contradict_one_another_are_refused() {
     let mixed = ["--input", "ttl", "--rising", "1 V"];
     refuses(&mixed, ("", "has thresholds of its own", &["leave out either"]));
     refuses(&["--quickens", "make"], ("", "--quickens: there is no diode", &["diode = \"silicon\""]));
+    refuses(
+        &["--cable-leakage", "1 ohm"],
+        ("", "a leakage of 1 ohm is a closed contact", &["at least \"1 kohm\""]),
+    );
+    refuses(&["--pin-leakage", "10 A"], ("", "no pin leaks 10 A", &["at most \"100 mA\""]));
+    let rubber = ["--contact-resistance", "1 Mohm"];
+    refuses(&rubber, ("", "a contact of 1 Mohm is not closed", &["conductive rubber"]));
     refuses(&["--tau", "1 ns"], ("", "a synchroniser has five figures", &["edge_rate"]));
     refuses(
         &["--input", "ttl", "--supply", "3.3 V"],

@@ -27,12 +27,13 @@ pub(super) struct Judge<'a> {
 
 /// The tables of laws already met: a law is the same at every tick period.
 #[derive(Default)]
-pub(super) struct Tables(Mutex<FxHashMap<Logic, Arc<TableOnce>>>);
+pub(crate) struct Tables(Mutex<FxHashMap<Logic, Arc<TableOnce>>>);
 
-type TableOnce = OnceLock<Result<LawTable, ProveError>>;
+pub(crate) type TableOnce = OnceLock<Result<LawTable, ProveError>>;
 
 impl Tables {
-    fn of(&self, logic: &Logic) -> Arc<TableOnce> {
+    /// The table of a law, made if it is new.
+    pub(crate) fn of(&self, logic: &Logic) -> Arc<TableOnce> {
         // The table itself is made outside the lock, so that others need not wait for it.
         let once = Arc::clone(self.0.lock().expect("no thread panics").entry(*logic).or_default());
         once.get_or_init(|| logic.table());

@@ -22,6 +22,7 @@ use crate::trace::Trace;
 use crate::truth::TruthChange;
 
 pub(crate) use candidates::laws as laws_to_try;
+pub(crate) use judge::Tables;
 pub use rank::{Preference, Reason};
 
 /// What is to be chosen for.
@@ -203,7 +204,7 @@ impl Ranking {
 /// When a recording and its truth do not fit together.
 pub fn choose(question: &Question<'_>, progress: impl Fn(usize) + Sync) -> Result<Ranking, PrepareError> {
     let clocks: Vec<ClockView> = question.clocks.par_iter().map(|&clock| view(question, clock)).collect();
-    let tables = judge::Tables::default();
+    let tables = Tables::default();
     let mut candidates = Vec::new();
     for (index, view) in clocks.iter().enumerate() {
         let Ok(envelope) = view.envelope else { continue };

@@ -7,6 +7,7 @@ use clap::Args;
 use debounce_core::Change;
 use serde_json::{Value, json};
 
+use super::choose::network;
 use super::figures;
 use super::input::Input;
 use super::lines::Lines;
@@ -18,7 +19,7 @@ use super::{Answer, Failure, Outcome, Session};
 use crate::characterise::GapOrigin;
 use crate::problem::Problem;
 use crate::report::{characterised, html, json as report, words};
-use crate::requirement::Origin;
+use crate::requirement::{InFront, Origin, Requirement, Resolved};
 use crate::study::{Caution, Claims, Observed, measured};
 
 /// Bounce, disturbance and tolerance figures of recordings.
@@ -64,6 +65,7 @@ impl CharacteriseArguments {
         let input = Input::with_recordings(&self.input, session)?;
         let report = self.report.prepare()?;
         let resolved = input.requirement.fill_in(&measured(&input.observed))?;
+        let resolved = in_front(&input.requirement, resolved, session)?;
         let claims = Claims::of(&input.observed, &resolved).map_err(Problem::told)?;
         let cautions = Caution::all(&input.observed, &resolved, &claims);
         for caution in &cautions {
@@ -82,13 +84,37 @@ impl CharacteriseArguments {
             written.push(report.write(&html::characterised(&found, &origin))?);
         }
         let (observed, listed, histogram) = (input.observed, self.operations, self.histogram);
-        Ok(Box::new(Characterised { observed, claims, cautions, outcome, listed, histogram, written }))
+        let network = resolved.network;
+        Ok(Box::new(Characterised {
+            observed,
+            network,
+            claims,
+            cautions,
+            outcome,
+            listed,
+            histogram,
+            written,
+        }))
     }
+}
+
+/// The same with what the network makes of the contact. That it leaves nothing of the operations is no reason not to
+/// look at a recording; that its parts are impossible is.
+fn in_front(requirement: &Requirement, resolved: Resolved, session: &Session) -> Result<Resolved, Failure> {
+    requirement.resolved_network()?;
+    let network = InFront::of(requirement, resolved.at_contact()).unwrap_or_else(|problems| {
+        for problem in problems.iter() {
+            session.warn(&format!("nothing is promised at the pin: {}", problem.message()));
+        }
+        None
+    });
+    Ok(Resolved { network, ..resolved })
 }
 
 /// What recordings show.
 struct Characterised {
     observed: Vec<Observed>,
+    network: Option<InFront>,
     claims: Claims,
     cautions: Vec<Caution>,
     outcome: Outcome,
@@ -123,6 +149,7 @@ impl Answer for Characterised {
         }
         claims(&mut lines, &self.claims)?;
         figures::limits(&mut lines, &self.claims)?;
+        network(&mut lines, self.network.as_ref())?;
         lines.item("Quantiles", characterised::QUANTILES)?;
         for one in self.observed.iter().filter(|_| self.listed) {
             operations(&mut lines, one)?;
@@ -142,6 +169,7 @@ impl Answer for Characterised {
             "recordings": self.observed.iter().map(recording).collect::<Value>(),
             "pooled": characterised::figures(&self.claims.pooled),
             "claims": characterised::claims(&self.claims),
+            "written": self.written.iter().map(|path| path.display().to_string()).collect::<Value>(),
             "warnings": self.cautions.iter().map(ToString::to_string).collect::<Vec<_>>(),
         })
     }

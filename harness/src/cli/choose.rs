@@ -22,7 +22,7 @@ use crate::clock_range::{Activity, ClockQuestion, asleep, clock_range, slowest_b
 use crate::problem::Problem;
 use crate::report::clock_plot::ClockPlot;
 use crate::report::{characterised, html, json as report, words};
-use crate::requirement::{Origin, Resolved};
+use crate::requirement::{InFront, Origin, Resolved};
 use crate::study::Study;
 
 /// Ranks laws, parameters and tick periods for a requirement.
@@ -137,7 +137,7 @@ impl Answer for Chosen {
         let mut lines = Lines::new(out);
         lines
             .item("Envelope", &format!("the contact {}", words::envelope(&self.study.physical).join("; ")))?;
-        network(&mut lines, &self.study.resolved)?;
+        network(&mut lines, self.study.resolved.network.as_ref())?;
         if !self.study.observed.is_empty() {
             claims(&mut lines, &self.study.claims)?;
         }
@@ -191,6 +191,7 @@ impl Answer for Chosen {
                 .iter()
                 .map(|(ppm, slowest_ns)| json!({ "ppm": ppm, "slowest_ns": slowest_ns }))
                 .collect::<Value>(),
+            "written": self.written.iter().map(|path| path.display().to_string()).collect::<Value>(),
             "sleep": {
                 "operations_per_hour": self.clock.activity.operations_per_hour,
                 "disturbances_per_hour": self.clock.activity.disturbances_per_hour,
@@ -201,8 +202,8 @@ impl Answer for Chosen {
 }
 
 /// What stands in front of the pin, and what it does.
-pub(super) fn network(lines: &mut Lines<'_>, resolved: &Resolved) -> io::Result<()> {
-    let Some(front) = &resolved.network else { return Ok(()) };
+pub(super) fn network(lines: &mut Lines<'_>, front: Option<&InFront>) -> io::Result<()> {
+    let Some(front) = front else { return Ok(()) };
     let sentences = front.sentences();
     for (index, sentence) in sentences.iter().enumerate() {
         if index == 0 { lines.item("Network", sentence)? } else { lines.more(sentence)? }

@@ -32,7 +32,7 @@ impl ClockView {
             if index == 0 { lines.item("Clock", &text)? } else { lines.more(&text)? }
         }
         lines.more(&format!(
-            "by closed form, for every tick period from {} to {} and over {} rounding steps; the majority register has no closed form and is judged at the tick periods of the table alone",
+            "for every tick period from {} to {} and over {} rounding steps, by closed form; the majority register by exploring it, which does not reach the shortest ticks",
             time(self.range.span.from_ns),
             time(self.range.span.until_ns),
             self.range.steps.len()

@@ -7,7 +7,7 @@ use crate::demo;
 use crate::problem::{Problem, Problems, SourceText, plain_reason};
 use crate::quantity::Time;
 use crate::report::html::SourceFile;
-use crate::requirement::{Level, Recording as Wanted, Requirement, parse};
+use crate::requirement::{Level, Origin, Recording as Wanted, Requirement, Sourced, TakenAt, parse};
 use crate::study::{Observed, observe};
 use crate::trace::{Polarity, ReadOptions, Recording, Thresholds, read_bytes, read_path};
 
@@ -75,7 +75,8 @@ impl Input {
             match read {
                 Ok(one) => {
                     let closed = wanted.closed.as_ref().map(|closed| closed.value);
-                    observed.push(Observed { closed, ..one });
+                    let taken_at = taken_at(wanted, &requirement, &one.name, session);
+                    observed.push(Observed { closed, taken_at, ..one });
                 }
                 Err(found) => problems.extend(found),
             }
@@ -96,6 +97,29 @@ impl Input {
         let one = observed_in(name, name, recording, &segmenting, session)?;
         Ok(Self { requirement, observed: vec![one], demo: true })
     }
+}
+
+/// Where a recording was taken, which matters only with a network between contact and pin.
+fn taken_at(
+    wanted: &Wanted,
+    requirement: &Requirement,
+    name: &str,
+    session: &Session,
+) -> Option<Sourced<TakenAt>> {
+    const CONTACT: Sourced<TakenAt> = Sourced::new(
+        TakenAt::Contact,
+        Origin::Default("the cautious case: all that [network] adds is added to what was recorded"),
+    );
+    if requirement.network.is_none() {
+        if wanted.taken_at.is_some_and(|taken_at| taken_at.value == TakenAt::Pin) {
+            session.warn(&format!(
+                "{name}: taken at the pin, and no [network] says what stands in front of it, so its figures are \
+                 taken for those of the contact; write [network] in the requirement file"
+            ));
+        }
+        return None;
+    }
+    Some(wanted.taken_at.unwrap_or(CONTACT))
 }
 
 /// A file that was read, named by its contents.

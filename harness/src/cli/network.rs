@@ -158,6 +158,7 @@ impl Answer for NetworkAnswer {
         let mut value = report::network(resolved, analysis, review, waveforms);
         value["cautions"] =
             json!([caution(resolved), role.caution()].into_iter().flatten().collect::<Vec<_>>());
+        value["written"] = self.written.iter().map(|path| path.display().to_string()).collect();
         value
     }
 }
@@ -211,15 +212,15 @@ impl NetworkAnswer {
         lines.item(
             "Rejects",
             &format!(
-                "a lone pulse up to {} while open, {} while closed",
-                si(lone.open, "s"),
-                si(lone.closed, "s")
+                "a lone pulse {} while open, {} while closed",
+                width(lone.open, f64::INFINITY),
+                width(lone.closed, f64::INFINITY)
             ),
         )?;
         for (burst, limit) in &self.analysis.bursts {
-            let one = |position: Position| si(limit.at(position).widest, "s");
+            let one = |position: Position| width(limit.at(position).widest, burst.period);
             lines.more(&format!(
-                "{}: each up to {} while open, {} while closed",
+                "{}: each {} while open, {} while closed",
                 burst.name,
                 one(Position::Open),
                 one(Position::Closed)
@@ -229,7 +230,7 @@ impl NetworkAnswer {
     }
 
     fn contact(&self, lines: &mut Lines<'_>) -> io::Result<()> {
-        let Analysis { inrush, steady, energy, held_power, cable_inrush, .. } = &self.analysis;
+        let Analysis { inrush, inrush_lasts, steady, energy, held_power, cable_inrush, .. } = &self.analysis;
         let cable = if *cable_inrush > 0.0 {
             format!(" and, for some nanoseconds, up to {} from the cable", si(*cable_inrush, "A"))
         } else {
@@ -238,13 +239,25 @@ impl NetworkAnswer {
         lines.item(
             "Contact",
             &format!(
-                "carries {} just after a make{cable} (up to {} of energy), then {}",
+                "carries {} for {} just after a make{cable} (up to {} of energy), then {}",
                 range(*inrush, "A"),
+                si(*inrush_lasts, "s"),
                 si(*energy, "J"),
                 range(*steady, "A")
             ),
         )?;
         lines.item("Power", &format!("{} from the supply while held closed", range(*held_power, "W")))
+    }
+}
+
+/// The widest pulse of which nothing is seen, in a burst of such a period.
+fn width(seconds: f64, period: f64) -> String {
+    if seconds < 1e-9 {
+        "of no width".to_owned()
+    } else if seconds >= period {
+        "of any width".to_owned()
+    } else {
+        format!("up to {}", si(seconds, "s"))
     }
 }
 

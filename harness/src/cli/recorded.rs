@@ -9,7 +9,7 @@ use crate::characterise::tolerance;
 use crate::quantity::Share;
 use crate::replay::Failures;
 use crate::report::words;
-use crate::requirement::Origin;
+use crate::requirement::{Origin, TakenAt};
 use crate::study::{Claims, DesignBounce, Observed};
 
 /// What one recording holds.
@@ -30,6 +30,9 @@ pub(super) fn recorded(lines: &mut Lines<'_>, one: &Observed) -> io::Result<()> 
             one.segmentation.ambiguous(),
         ),
     )?;
+    if let Some(text) = taken_at(one) {
+        lines.more(&text)?;
+    }
     for change in [Change::Make, Change::Break] {
         if let Some(bounce) = figures.changes.of(change).bounce_ns {
             lines.more(&format!(
@@ -42,6 +45,25 @@ pub(super) fn recorded(lines: &mut Lines<'_>, one: &Observed) -> io::Result<()> 
         }
     }
     Ok(())
+}
+
+/// Where a recording was taken, if a network makes a difference between contact and pin, and what follows from it.
+pub(super) fn taken_at(one: &Observed) -> Option<String> {
+    let taken_at = one.taken_at?;
+    let told = match taken_at.value {
+        TakenAt::Contact => "taken at the contact, so the pin sees it through [network]",
+        TakenAt::Pin => {
+            "taken at the pin, so [network] is in it: it is sampled as it is, and no figure of the contact is read \
+             off it"
+        }
+    };
+    let because = match taken_at.origin {
+        Origin::Default(_) => {
+            format!(" ({}; if it was taken behind the network, write taken_at = \"pin\")", taken_at.origin)
+        }
+        origin => format!(" ({origin})"),
+    };
+    Some(format!("{told}{because}"))
 }
 
 /// What the recorded operations allow to claim of those to come, and which claim the design stands on.

@@ -10,7 +10,7 @@ use serde_json::{Value, json};
 use super::input::Input;
 use super::lines::Lines;
 use super::logic_name::{LogicName, OutputOf, Runnable};
-use super::recorded::failures;
+use super::recorded::{failures, taken_at};
 use super::recordings::RequirementInput;
 use super::{Answer, Failure, Outcome, Session};
 use crate::characterise::Burst;
@@ -23,8 +23,10 @@ use crate::quantity::TickPeriod;
 use crate::replay::{ClockMeasurement, Draws, Failures, PreparedClock};
 use crate::report::timing::TimingDiagram;
 use crate::report::{characterised, words};
+use crate::requirement::Word;
 use crate::sample::SampleClock;
 use crate::study::{Observed, measured};
+use crate::trace::Trace;
 use crate::truth::check_truth;
 use crate::with_law;
 
@@ -79,6 +81,10 @@ impl ReplayArguments {
             stated_truth(path, &mut input.observed)?;
         }
         let resolved = input.requirement.fill_in(&measured(&input.observed))?;
+        let network = input.requirement.resolved_network()?;
+        let at_pin = |one: &Observed| one.at_pin(network.as_ref().map(|found| &found.network));
+        let pins: Vec<Trace> =
+            input.observed.iter().map(at_pin).collect::<Result<_, _>>().map_err(Problem::told)?;
         let logic = Runnable::read(&self.law, self.reading)?;
         let shortest = &resolved.required.shortest;
         let draws = Draws {
@@ -90,7 +96,7 @@ impl ReplayArguments {
         for (recording, one) in input.observed.iter().enumerate() {
             for &tick in &resolved.ticks.value {
                 let clock = resolved.clock(tick);
-                let prepared = PreparedClock::new(&one.recording.trace, &one.truth, &clock, draws)
+                let prepared = PreparedClock::new(&pins[recording], &one.truth, &clock, draws)
                     .map_err(|error| Problem::told(format!("{}: {error}", one.name)))?;
                 let measured = match &logic {
                     Runnable::Law(logic) => with_law!(logic, law => prepared.measure(law)),
@@ -101,7 +107,8 @@ impl ReplayArguments {
             }
         }
         let confidence = resolved.confidence.value;
-        Ok(Box::new(Replayed { logic, law: self.law.clone(), observed: input.observed, runs, confidence }))
+        let (law, observed) = (self.law.clone(), input.observed);
+        Ok(Box::new(Replayed { logic, law, observed, pins, runs, confidence }))
     }
 }
 
@@ -142,6 +149,8 @@ struct Replayed {
     logic: Runnable,
     law: LogicName,
     observed: Vec<Observed>,
+    /// What the logic samples of each.
+    pins: Vec<Trace>,
     runs: Vec<Run>,
     confidence: Share,
 }
@@ -160,6 +169,9 @@ impl Answer for Replayed {
         for run in &self.runs {
             let one = &self.observed[run.recording];
             lines.item("Replayed", &format!("{} at {} over {}", self.law, run.tick, one.name))?;
+            if let Some(text) = at_pin(one) {
+                lines.more(&text)?;
+            }
             self.figures(&mut lines, run)?;
         }
         if let [run] = self.runs.as_slice() {
@@ -172,6 +184,7 @@ impl Answer for Replayed {
         let run = |run: &Run| {
             json!({
                 "recording": self.observed[run.recording].name,
+                "taken_at": self.observed[run.recording].taken_at.map(|taken_at| taken_at.value.word()),
                 "tick": run.tick.to_string(),
                 "measured": run.measured,
                 "failures": characterised::failures(&run.failures, self.confidence),
@@ -248,12 +261,12 @@ impl Replayed {
     /// The slowest make as a timing diagram, where it fits one.
     fn slowest(&self, lines: &mut Lines<'_>, run: &Run) -> io::Result<()> {
         let Some(latency) = &run.measured.nominal.make.latency else { return Ok(()) };
-        let one = &self.observed[run.recording];
+        let (one, pin) = (&self.observed[run.recording], &self.pins[run.recording]);
         let sampler = SampleClock::new(run.clock).phase_units(latency.slowest.phase.from);
         let at_ns = latency.slowest.at_ns;
         let shown = match &self.logic {
-            Runnable::Law(logic) => with_law!(logic, law => around(law, &sampler, one, at_ns)),
-            Runnable::Table(machine) => around(machine, &sampler, one, at_ns),
+            Runnable::Law(logic) => with_law!(logic, law => around(law, &sampler, one, pin, at_ns)),
+            Runnable::Table(machine) => around(machine, &sampler, one, pin, at_ns),
         };
         lines.plain(&format!(
             "\nslowest make, at {}, one column a tick:\n{}",
@@ -270,9 +283,18 @@ const SHOWN: usize = 5;
 const BEFORE: u64 = 4;
 const COLUMNS: u64 = 60;
 
+/// Where the recording was taken, if a network makes a difference, and from where delays are counted.
+fn at_pin(one: &Observed) -> Option<String> {
+    let counted = if one.is_behind_network() {
+        "delays are counted from the first edge at the pin: that of the network comes before it"
+    } else {
+        "its typical unit is sampled, and delays are counted from the contact, so they hold that of the network"
+    };
+    Some(format!("{}; {counted}", taken_at(one)?))
+}
+
 /// What a law makes of the samples around an instant.
-fn around<L: Law>(law: &L, sampler: &SampleClock, one: &Observed, at_ns: u64) -> Witness {
-    let trace = &one.recording.trace;
+fn around<L: Law>(law: &L, sampler: &SampleClock, one: &Observed, trace: &Trace, at_ns: u64) -> Witness {
     let (period, phase) = (sampler.period(), u128::from(sampler.phase()));
     let step = u128::from(period.units());
     let change_tick = (period.to_units(at_ns - trace.start_ns()).saturating_sub(phase)).div_ceil(step) as u64;

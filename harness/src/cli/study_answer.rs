@@ -15,6 +15,7 @@ use crate::choose::{Candidate, Judgement};
 use crate::prove::Recovery;
 use crate::quantity::TickPeriod;
 use crate::report::{json, words};
+use crate::requirement::TakenAt;
 use crate::study::{Guarantees, Study};
 
 /// A finished study and the files it wrote.
@@ -41,7 +42,7 @@ impl Answer for StudyAnswer {
             claims(&mut lines, &study.claims)?;
         }
         lines.item("Envelope", &format!("the contact {}", words::envelope(&study.physical).join("; ")))?;
-        network(&mut lines, &study.resolved)?;
+        network(&mut lines, study.resolved.network.as_ref())?;
         match (study.ranking.recommended(), &study.guarantees) {
             (Some(best), Some(found)) => self.recommended(&mut lines, best, found)?,
             _ => nothing_holds(&mut lines, study)?,
@@ -96,18 +97,19 @@ impl StudyAnswer {
         if let Some(line) = beyond(found, tick) {
             lines.more(&line)?;
         }
-        for measured in &best.measured {
+        for (one, measured) in self.study.observed.iter().zip(&best.measured) {
             let (Some(make), Some(break_)) = (&measured.make.latency, &measured.break_.latency) else {
                 continue;
             };
             lines.item(
                 "Measured",
                 &format!(
-                    "over every phase of the tick, none missed, none false: make median {}, worst {}; break median {}, worst {}",
+                    "over every phase of the tick, none missed, none false: make median {}, worst {}; break median {}, worst {}{}",
                     words::about(make.delay.median_ns),
                     words::at_most(make.delay.below_ns),
                     words::about(break_.delay.median_ns),
                     words::at_most(break_.delay.below_ns),
+                    if one.is_behind_network() { "; counted from the first edge at the pin" } else { "" },
                 ),
             )?;
         }
@@ -125,9 +127,11 @@ impl StudyAnswer {
     fn conformance(&self, lines: &mut Lines<'_>) -> io::Result<()> {
         for (one, conforms) in self.study.observed.iter().zip(&self.study.conformance) {
             if conforms.conforms() {
-                let inside = match self.study.resolved.network {
-                    None => "lies inside the envelope of the proof",
-                    Some(_) => "lies inside the envelope of the contact that the network was worked out for",
+                let inside = match one.taken_at.map(|taken_at| taken_at.value) {
+                    None | Some(TakenAt::Pin) => "lies inside the envelope of the proof",
+                    Some(TakenAt::Contact) => {
+                        "lies inside the envelope of the contact that the network was worked out for"
+                    }
                 };
                 lines.item("Conforms", &format!("{} {inside}", one.name))?;
                 continue;

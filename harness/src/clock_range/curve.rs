@@ -2,7 +2,7 @@
 
 use debounce_core::{PerChange, TickClock, Verdict};
 
-use super::{ClockQuestion, delays, with_period};
+use super::{ClockQuestion, delays, majority, with_period};
 use crate::choose::laws_to_try;
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
@@ -52,6 +52,8 @@ pub struct Curve {
     pub family: &'static str,
     /// The pieces, by tick period. Where there is none, no law of this kind is known to work.
     pub pieces: Vec<Piece>,
+    /// Whether that is known by exploring, within a memory that the shortest tick periods outgrow; else by closed form.
+    pub is_explored: bool,
     /// Where some law of this kind is faithful.
     pub works: Vec<Span>,
     /// Where it is in time as well.
@@ -67,13 +69,16 @@ impl Curve {
     }
 }
 
-/// The kinds of law whose closed form can say that they hold.
-const FAMILIES: [&str; 3] = ["state-machine", "integrator", "shift-register"];
+/// The kinds of law: those whose closed form can say that they hold, and the one that must be explored for it.
+const FAMILIES: [&str; 4] = ["state-machine", "integrator", "shift-register", majority::FAMILY];
+
+/// The place of the one that is explored.
+pub(super) const EXPLORED: usize = 3;
 
 /// The best law of each kind.
-pub(super) type Judged = [Option<(LawParameters, PerChange<u32>)>; FAMILIES.len()];
+pub(super) type Judged = [majority::Best; FAMILIES.len()];
 
-/// The best laws at one tick period.
+/// The best laws at one tick period, of those with a closed form.
 pub(super) fn judged(question: &ClockQuestion, period_ns: u64) -> Judged {
     let mut best: Judged = [None; FAMILIES.len()];
     let Some(envelope) = question.envelope_at(period_ns) else { return best };
@@ -115,7 +120,7 @@ pub(super) fn curves(
         let holds = joined(pieces.iter().filter_map(|piece| {
             Some(Span { from_ns: piece.span.from_ns, until_ns: piece.in_time_until_ns? })
         }));
-        Curve { family: name, pieces, works, holds }
+        Curve { family: name, pieces, is_explored: family == EXPLORED, works, holds }
     };
     FAMILIES.iter().enumerate().map(curve).collect()
 }

@@ -6,9 +6,11 @@
 //! known as a whole, and not at some points only: it is a list of [`Piece`]s, to the nanosecond of tick period.
 //!
 //! What a law does in an envelope is answered by its closed form; candidates are those of [`choose`](crate::choose).
-//! The majority register has no closed form that says that it holds, so it has no curve here.
+//! The majority register has no closed form that says that it holds, so it is explored, once in each envelope in samples
+//! that differs for it.
 
 mod curve;
+mod majority;
 mod power;
 mod recommend;
 mod steps;
@@ -134,25 +136,69 @@ fn delays(clock: &TickClock, worst: PerChange<u32>) -> PerChange<u64> {
 /// Looks at every tick period.
 #[must_use]
 pub fn clock_range(question: &ClockQuestion) -> ClockRange {
-    let until_ns = question.until_ns();
-    let from_ns = question.from_ns.max(steps::fewest(question)).min(until_ns.max(1));
-    let span = Span { from_ns, until_ns: until_ns.max(from_ns) };
-    let steps = steps::steps(question, span);
-    let mut starts: Vec<u64> = core::iter::once(from_ns).chain(steps.iter().map(|step| step.at_ns)).collect();
-    starts.dedup();
-    let judged: Vec<curve::Judged> = starts.par_iter().map(|&at_ns| curve::judged(question, at_ns)).collect();
-    let curves = curve::curves(question, &starts, span.until_ns, &judged);
+    let found = Stretches::of(question);
+    let judged = found.explored(question, &majority::Explored::default(), 0);
+    let curves = curve::curves(question, &found.starts, found.span.until_ns, &judged);
     let recommended = recommend::recommend(question, &curves);
-    ClockRange { clock: question.clock, span, steps, curves, recommended }
+    ClockRange { clock: question.clock, span: found.span, steps: found.steps, curves, recommended }
+}
+
+/// The tick periods between rounding steps, and the best laws with a closed form at each.
+struct Stretches {
+    span: Span,
+    steps: Vec<Step>,
+    starts: Vec<u64>,
+    judged: Vec<curve::Judged>,
+}
+
+impl Stretches {
+    fn of(question: &ClockQuestion) -> Self {
+        let until_ns = question.until_ns();
+        let from_ns = question.from_ns.max(steps::fewest(question)).min(until_ns.max(1));
+        let span = Span { from_ns, until_ns: until_ns.max(from_ns) };
+        let steps = steps::steps(question, span);
+        let mut starts: Vec<u64> =
+            core::iter::once(from_ns).chain(steps.iter().map(|step| step.at_ns)).collect();
+        starts.dedup();
+        let judged = starts.par_iter().map(|&at_ns| curve::judged(question, at_ns)).collect();
+        Self { span, steps, starts, judged }
+    }
+
+    /// The same with the laws that must be explored, where a stretch ends beyond `above_ns`.
+    fn explored(
+        &self,
+        question: &ClockQuestion,
+        explored: &majority::Explored,
+        above_ns: u64,
+    ) -> Vec<curve::Judged> {
+        let ends = self.starts.iter().skip(1).map(|next| next - 1).chain([self.span.until_ns]);
+        let envelope = |(&start, end): (&u64, u64)| {
+            if end > above_ns { question.envelope_at(start) } else { None }
+        };
+        let envelopes: Vec<_> = self.starts.iter().zip(ends).map(envelope).collect();
+        let mut judged = self.judged.clone();
+        for (judged, best) in judged.iter_mut().zip(explored.best(&envelopes)) {
+            judged[curve::EXPLORED] = best;
+        }
+        judged
+    }
 }
 
 /// The slowest tick period at which any law holds, for each tolerance of the clock in parts per million; `None` where
 /// none holds at any.
 #[must_use]
 pub fn slowest_by_tolerance(question: &ClockQuestion, ppm: &[u32]) -> Vec<(u32, Option<u64>)> {
+    let explored = majority::Explored::default();
     let slowest = |&ppm: &u32| {
-        let range = clock_range(&question.tolerance_ppm(ppm)?);
-        range.curves.iter().filter_map(|curve| Some(curve.holds.last()?.until_ns)).max()
+        let question = question.tolerance_ppm(ppm)?;
+        let found = Stretches::of(&question);
+        let slowest = |judged: &[curve::Judged]| {
+            let curves = curve::curves(&question, &found.starts, found.span.until_ns, judged);
+            curves.iter().filter_map(|curve| Some(curve.holds.last()?.until_ns)).max()
+        };
+        // What must be explored counts only where nothing else holds.
+        let closed_form = slowest(&found.judged);
+        slowest(&found.explored(&question, &explored, closed_form.unwrap_or(0)))
     };
     ppm.iter().map(|ppm| (*ppm, slowest(ppm))).collect()
 }

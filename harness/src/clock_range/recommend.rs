@@ -1,9 +1,10 @@
 //! Which tick period to take: the slowest that a person would write down, and how far it may then be off.
 
-use debounce_core::{PerChange, Verdict};
+use debounce_core::{Envelope, PerChange, Verdict};
+use rustc_hash::FxHashMap;
 
 use super::curve::{Curve, Span};
-use super::{ClockQuestion, delays};
+use super::{ClockQuestion, delays, majority};
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
 
@@ -72,11 +73,11 @@ fn same_law(
     until_ns: u64,
 ) -> Span {
     let Ok(logic) = Logic::try_new(&law) else { return Span { from_ns: period_ns, until_ns: period_ns } };
-    let holds = |ns: u64| {
+    let mut known = FxHashMap::default();
+    let mut holds = |ns: u64| {
         let Some(envelope) = question.envelope_at(ns) else { return false };
-        let Verdict::Holds(bounds) = logic.verdict(&envelope) else { return false };
-        let worst = PerChange { make: bounds.latency.make.worst, break_: bounds.latency.break_.worst };
-        question.in_time(worst, ns)
+        let worst = *known.entry(envelope).or_insert_with(|| worst_in(law, &logic, &envelope));
+        worst.is_some_and(|worst| question.in_time(worst, ns))
     };
     let steps = super::steps::steps(question, Span { from_ns, until_ns });
     let mut span = Span { from_ns: period_ns, until_ns: period_ns };
@@ -107,4 +108,15 @@ fn same_law(
         }
     }
     span
+}
+
+/// The worst latency by closed form; of a majority register, by exploring it.
+fn worst_in(law: LawParameters, logic: &Logic, envelope: &Envelope) -> Option<PerChange<u32>> {
+    match logic.verdict(envelope) {
+        Verdict::Holds(bounds) => {
+            Some(PerChange { make: bounds.latency.make.worst, break_: bounds.latency.break_.worst })
+        }
+        Verdict::Unknown if law.name() == majority::FAMILY => majority::worst_of(logic, envelope),
+        _ => None,
+    }
 }

@@ -29,7 +29,7 @@ fn clock_range_agrees_with_every_period_looked_at_alone() {
     for period_ns in (range.span.from_ns..=range.span.until_ns + 50).step_by(7) {
         let clock = question.clock_at(period_ns);
         let envelope = question.physical.in_ticks(&clock);
-        for (curve, seen) in range.curves.iter().zip(&mut seen) {
+        for (curve, seen) in range.curves.iter().filter(|curve| !curve.is_explored).zip(&mut seen) {
             let best = envelope.ok().and_then(|envelope| {
                 laws_to_try(&envelope, envelope.dwell.open.max(envelope.dwell.closed))
                     .into_iter()
@@ -60,6 +60,49 @@ fn clock_range_agrees_with_every_period_looked_at_alone() {
         }
     }
     assert!(seen.iter().all(|&seen| seen > 100), "{seen:?}");
+}
+
+/// The curve of the majority register against exploring every one of them in the whole envelope: no shorter dwells, no
+/// shorter quiet, nothing passed over.
+#[test]
+fn clock_range_of_majority_registers_agrees_with_exploring_them_all() {
+    let disturbed = question();
+    let mut calm = question();
+    calm.physical.glitch_ns = PerPosition { open: 0, closed: 0 };
+    let mut losing = question();
+    losing.clock = losing.clock.lost(1);
+    let limits = Limits { memory_bytes: 1 << 20, threads: 1 };
+    let tables = crate::choose::Tables::default();
+    let (mut holding, mut failing) = (0, 0);
+    for (question, periods) in [
+        (&disturbed, &[1_150, 1_600, 2_300, 5_200][..]),
+        (&calm, &[1_300, 2_600, 20_000]),
+        (&losing, &[2_600]),
+    ] {
+        let range = clock_range(question);
+        let curve = range.curves.iter().find(|curve| curve.is_explored).expect("a curve");
+        assert_eq!(curve.family, "majority-register");
+        for &period_ns in periods {
+            let found = curve.at(period_ns).map(|piece| piece.worst);
+            let Ok(envelope) = question.physical.in_ticks(&question.clock_at(period_ns)) else {
+                assert_eq!(found, None, "{period_ns}");
+                continue;
+            };
+            let registers = laws_to_try(&envelope, envelope.dwell.open.max(envelope.dwell.closed))
+                .into_iter()
+                .filter(|law| law.name() == curve.family);
+            let explored = registers.filter_map(|law| {
+                let table = tables.of(&Logic::try_new(&law).ok()?);
+                let bounds = prove_within(table.get()?.as_ref().ok()?, &envelope, &limits).ok()?.bounds()?;
+                Some(PerChange { make: bounds.latency.make.worst, break_: bounds.latency.break_.worst })
+            });
+            let merit = |worst: &PerChange<u32>| (worst.make.max(worst.break_), worst.make.min(worst.break_));
+            let best = explored.map(|worst| merit(&worst)).min();
+            assert_eq!(found.as_ref().map(merit), best, "{period_ns} {envelope:?}");
+            if best.is_some() { holding += 1 } else { failing += 1 }
+        }
+    }
+    assert!(holding >= 5 && failing >= 1, "{holding} {failing}");
 }
 
 /// At a step the figure comes to one sample fewer than a nanosecond before, by the clock's own rounding.

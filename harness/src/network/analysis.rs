@@ -29,9 +29,12 @@ pub struct Analysis {
     pub slowest_edge: PerChange<f64>,
     /// Current through the contact just after it made, in amperes, without what the cable adds.
     pub inrush: Spread,
+    /// At the greatest inrush the charge of capacitor and pin would be gone in this time, in seconds; with a resistor
+    /// in its way it is the time constant.
+    pub inrush_lasts: f64,
     /// What the empty cable can add for a moment: the supply over its wave resistance.
     pub cable_inrush: f64,
-    /// Energy that the contact takes at a make, in joules.
+    /// Energy that the contact takes at a make, in joules; a resistor in its way takes most of it instead.
     pub energy: f64,
     /// Current through the contact at rest, in amperes.
     pub steady: Spread,
@@ -71,7 +74,10 @@ impl Network {
                 make: self.slowest_edge(Change::Make),
                 break_: self.slowest_edge(Change::Break),
             },
-            inrush: self.spread_of(|unit| unit.inrush(unit.steady(Position::Open))),
+            inrush: self.spread_of(|unit| self.inrush(unit)),
+            inrush_lasts: self
+                .greatest(|unit| unit.capacitance * unit.steady(Position::Open).pin / self.inrush(unit))
+                .value,
             cable_inrush: if self.cable.max > 0.0 { self.supply.max / WAVE_RESISTANCE } else { 0.0 },
             energy: self.greatest(stored).value,
             steady: self.spread_of(steady),
@@ -82,6 +88,18 @@ impl Network {
             delay,
             bursts,
         }
+    }
+
+    /// Just after a make: what the parts allow, or less, where nothing is there to discharge but strays. Those lie along
+    /// wires, which let no more through than the voltage over their wave resistance.
+    fn inrush(&self, unit: &Unit) -> f64 {
+        let open = unit.steady(Position::Open);
+        let by_parts = unit.inrush(open);
+        if self.capacitor.max > 0.0 {
+            return by_parts;
+        }
+        let steady = unit.steady(Position::Closed).contact / unit.contact;
+        by_parts.min(open.pin / WAVE_RESISTANCE + steady)
     }
 
     fn spread_of(&self, of: impl Fn(&Unit) -> f64) -> Spread {

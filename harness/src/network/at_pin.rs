@@ -214,33 +214,12 @@ fn time_to_forget(network: &Network, unit: &Unit, position: Position, width: f64
 
 #[cfg(test)]
 mod tests {
-    use super::super::input_class::InputClass;
-    use super::super::model::Input;
+    use super::super::fixture::button;
     use super::*;
-    use crate::level::Level;
     use crate::quantity::Spread;
 
     const US: u64 = 1_000;
     const MS: u64 = 1_000_000;
-
-    fn network(capacitor: f64) -> Network {
-        let off = |value: f64, share: f64| Spread::new(value * (1.0 - share), value, value * (1.0 + share));
-        Network {
-            closed: Level::Low,
-            input: Input::Class(InputClass::named("schmitt-pin").expect("known")),
-            supply: off(3.3, 0.05),
-            pull: Some(off(10e3, 0.05)),
-            discharge: Spread::fixed(0.0),
-            series: off(1e3, 0.05),
-            capacitor: off(capacitor, 0.1),
-            pin_capacitance: 5e-12,
-            cable: Spread::fixed(0.0),
-            cable_leakage: None,
-            pin_leakage: 1e-6,
-            contact: 0.1,
-            diode: None,
-        }
-    }
 
     fn contact() -> PhysicalEnvelope {
         PhysicalEnvelope {
@@ -254,20 +233,20 @@ mod tests {
 
     #[test]
     fn network_that_rejects_disturbances_leaves_none_at_the_pin() {
-        let found = at_pin(&network(100e-9), &contact()).expect("fits");
+        let found = at_pin(&button(100e-9), &contact()).expect("fits");
         assert_eq!(found.physical.glitch_ns, PerPosition { open: 0, closed: 0 });
         let Disturbed::Rejected { settles_ns } = found.disturbed.open else { panic!("{found:?}") };
         assert!(settles_ns >= found.delay_ns.break_.1);
         // 3 ms of bounce, 100 us of a disturbance while closed are less; then twice the settling and one width.
         assert_eq!(found.physical.bounce_ns.break_, 3 * MS + 2 * settles_ns + 20 * US);
         let calm = PhysicalEnvelope { calm_ns: 5 * MS, ..contact() };
-        let found = at_pin(&network(100e-9), &calm).expect("fits");
+        let found = at_pin(&button(100e-9), &calm).expect("fits");
         assert_eq!(found.physical.bounce_ns.break_, 3 * MS + found.delay_ns.break_.1);
     }
 
     #[test]
     fn network_too_quick_to_reject_widens_and_eats_quiet() {
-        let found = at_pin(&network(1e-9), &contact()).expect("fits");
+        let found = at_pin(&button(1e-9), &contact()).expect("fits");
         let back = found.delay_ns.break_.1;
         assert_eq!(found.disturbed.open, Disturbed::Widened { by_ns: back });
         assert_eq!(found.physical.glitch_ns.open, 20 * US + back);
@@ -278,10 +257,10 @@ mod tests {
 
     #[test]
     fn network_too_slow_for_the_operations_is_refused() {
-        let slow = network(10e-6);
+        let slow = button(10e-6);
         let error = at_pin(&slow, &contact()).expect_err("too slow");
         assert!(matches!(error, AtPinError::NoDwell { .. }), "{error}");
-        let deaf = Network { pull: Some(Spread::fixed(1e7)), ..network(1e-9) };
+        let deaf = Network { pull: Some(Spread::fixed(1e7)), ..button(1e-9) };
         assert_eq!(at_pin(&deaf, &contact()), Err(AtPinError::NeverReads(Position::Open)));
     }
 }

@@ -8,6 +8,8 @@
 mod analysis;
 mod at_pin;
 mod burst;
+#[cfg(test)]
+mod fixture;
 mod input_class;
 mod linear;
 mod metastable;

@@ -55,32 +55,10 @@ mod tests {
     use debounce_core::{PerChange, PerPosition};
 
     use super::super::at_pin;
-    use super::super::input_class::InputClass;
-    use super::super::model::Input;
+    use super::super::fixture::button;
     use super::*;
     use crate::conformance;
     use crate::envelope::PhysicalEnvelope;
-    use crate::level::Level;
-    use crate::quantity::Spread;
-
-    fn network(capacitor: f64) -> Network {
-        let off = |value: f64, share: f64| Spread::new(value * (1.0 - share), value, value * (1.0 + share));
-        Network {
-            closed: Level::Low,
-            input: Input::Class(InputClass::named("schmitt-pin").expect("known")),
-            supply: off(3.3, 0.05),
-            pull: Some(off(10e3, 0.05)),
-            discharge: off(100.0, 0.05),
-            series: off(4.7e3, 0.05),
-            capacitor: off(capacitor, 0.1),
-            pin_capacitance: 5e-12,
-            cable: Spread::fixed(1e-9),
-            cable_leakage: Some(1e6),
-            pin_leakage: 1e-6,
-            contact: 0.1,
-            diode: None,
-        }
-    }
 
     const US: u64 = 1_000;
 
@@ -126,7 +104,7 @@ mod tests {
         let (envelope, trace) = contact();
         assert!(conformance::check(&trace, &envelope).conforms(), "the contact itself");
         for capacitor in [1e-9, 22e-9, 100e-9] {
-            let network = network(capacitor);
+            let network = button(capacitor);
             let promised = at_pin(&network, &envelope).expect("fits").physical;
             for unit in network.corners().iter().step_by(5) {
                 let first: fn(&ReadLevels) -> f64 = |levels| levels.first;
@@ -143,7 +121,7 @@ mod tests {
 
     #[test]
     fn pulse_shorter_than_the_time_to_threshold_does_not_reach_the_pin() {
-        let network = network(100e-9);
+        let network = button(100e-9);
         let time = network.time_to_read(&network.typical(), Position::Closed, |levels| levels.typical);
         let ns = (time * 1e9) as u64;
         let pin = |width: u64| {

@@ -47,6 +47,8 @@ impl Network {
         let long = [slow.value, quick.value, self.time_to_read(&typical, position, |levels| levels.typical)];
         let end = long.into_iter().filter(|time| time.is_finite()).fold(0.0, f64::max) * 1.6;
         let end = if end > 0.0 { end } else { 5.0 * typical.scale() };
+        // Nobody can draw or measure what parts without length do in less.
+        let end = end.max(1e-9);
         let units = [quick.unit, slow.unit, typical];
         let step = end / f64::from(POINTS - 1);
         let mut states = units.map(|unit| unit.steady(!position));

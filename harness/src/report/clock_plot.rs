@@ -10,7 +10,7 @@ const COLUMNS: u64 = 64;
 const ROWS: u64 = 14;
 
 /// A mark for each curve; where two meet, the first is shown.
-const MARKS: [char; 3] = ['o', '+', 'x'];
+const MARKS: [char; 4] = ['o', '+', 'x', 'm'];
 
 /// The curves of a [`ClockRange`]: in each column the longer of the two worst delays at the tick period of its middle.
 ///

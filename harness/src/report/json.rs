@@ -10,7 +10,7 @@ use crate::conformance::Conformance;
 use crate::envelope::PhysicalEnvelope;
 use crate::prove::{Beyond, Proof, Recovery, Witness};
 use crate::quantity::TickPeriod;
-use crate::requirement::Resolved;
+use crate::requirement::{Resolved, Word};
 use crate::study::{Guarantees, Observed, Study};
 
 /// A study.
@@ -57,6 +57,7 @@ pub fn observed(one: &Observed) -> Value {
     let mut value = characterised::figures(&one.figures);
     value["name"] = json!(one.name);
     value["channel"] = json!(one.recording.channel);
+    value["taken_at"] = json!(one.taken_at.map(|taken_at| taken_at.value.word()));
     value["notes"] = one.recording.notes.iter().map(ToString::to_string).collect();
     value["from_ns"] = json!(one.recording.trace.start_ns());
     value["until_ns"] = json!(one.recording.trace.end_ns());
@@ -183,6 +184,7 @@ pub fn clock_range(range: &ClockRange) -> Value {
     let curve = |curve: &Curve| {
         json!({
             "law": curve.family,
+            "evidence": if curve.is_explored { "explored" } else { "closed-form" },
             "works": spans(&curve.works),
             "in_time": spans(&curve.holds),
             "pieces": curve

@@ -28,6 +28,7 @@ pub fn network(
         },
         "contact_current_amperes": { "inrush": spread(&analysis.inrush), "steady": spread(&analysis.steady),
             "cable_at_most": analysis.cable_inrush },
+        "inrush_lasts_seconds": number(analysis.inrush_lasts),
         "energy_at_make_joules": analysis.energy,
         "power_while_held_watts": spread(&analysis.held_power),
         "recovery_seconds": number(analysis.recovery),

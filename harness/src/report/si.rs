@@ -1,11 +1,19 @@
 //! A measured or calculated quantity with three digits and an ASCII prefix.
 
 /// `value` with its unit: 0.00123 and "A" give "1.23 mA". Infinite is "never", which is what it means of a time.
+///
+/// Parts without length and inductance say nothing below a nanosecond, a tenth of a millivolt or a nanojoule, so what is
+/// smaller is not told in digits.
 #[must_use]
 pub fn si(value: f64, unit: &str) -> String {
     const PREFIXES: [&str; 9] = ["f", "p", "n", "u", "m", "", "k", "M", "G"];
     if !value.is_finite() {
         return "never".to_owned();
+    }
+    match unit {
+        "s" | "s/V" | "J" if value != 0.0 && value.abs() < LEAST => return format!("less than 1 n{unit}"),
+        "V" if value.abs() < 1e-4 => return "0 V".to_owned(),
+        _ => {}
     }
     // Rounded to three digits first, so that 999.96 becomes 1.00 k and not 1000.
     let rounded: f64 = format!("{value:.2e}").parse().unwrap_or(value);
@@ -25,6 +33,9 @@ pub fn si(value: f64, unit: &str) -> String {
     format!("{shown:.decimals$} {}{unit}", PREFIXES[(group + 5) as usize])
 }
 
+/// A nanosecond, or a nanojoule.
+const LEAST: f64 = 1e-9;
+
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -38,6 +49,12 @@ mod tests {
             (-0.05, "V", "-50.0 mV"),
             (3.3, "V", "3.30 V"),
             (0.0, "V", "0 V"),
+            (76.5e-9, "V", "0 V"),
+            (-1.02e-3, "V", "-1.02 mV"),
+            (30.5e-12, "s", "less than 1 ns"),
+            (0.0, "s", "0 s"),
+            (1e-9, "s/V", "1.00 ns/V"),
+            (61e-12, "J", "less than 1 nJ"),
             (148.654e-6, "s", "149 us"),
             (1e12, "s", "1000 Gs"),
             (f64::INFINITY, "s", "never"),

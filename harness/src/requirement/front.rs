@@ -17,12 +17,24 @@ pub struct InFront {
     pub contact: PhysicalEnvelope,
 }
 
+impl Requirement {
+    /// The network in front of the pin, every part filled in; `None` where there is none.
+    ///
+    /// # Errors
+    /// Parts that are impossible or contradict one another.
+    pub fn resolved_network(&self) -> Result<Option<ResolvedNetwork>, Problems> {
+        let closed = self.contact.closed.map(|closed| closed.value);
+        self.network.as_ref().map(|table| table.resolve(closed, self.source())).transpose()
+    }
+}
+
 impl InFront {
-    /// The network of a requirement whose contact stays inside `contact`.
-    pub(super) fn of(requirement: &Requirement, contact: PhysicalEnvelope) -> Result<Option<Self>, Problems> {
-        let Some(table) = &requirement.network else { return Ok(None) };
-        let closed = requirement.contact.closed.map(|closed| closed.value);
-        let resolved = table.resolve(closed, requirement.source())?;
+    /// The network of a requirement whose contact stays inside `contact`; `None` where there is none.
+    ///
+    /// # Errors
+    /// Where its parts are impossible, or it leaves nothing of the contact's operations.
+    pub fn of(requirement: &Requirement, contact: PhysicalEnvelope) -> Result<Option<Self>, Problems> {
+        let Some(resolved) = requirement.resolved_network()? else { return Ok(None) };
         let at_pin = at_pin(&resolved.network, &contact).map_err(|error| {
             let problem = Problem::told(error);
             match requirement.source() {

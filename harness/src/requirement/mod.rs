@@ -14,6 +14,7 @@
 //! [[recording]]
 //! path = "gate.vcd"         # relative to this file
 //! channel = "top.gate"
+//! taken_at = "contact"      # with a [network] between contact and pin: contact, pin
 //! sha256 = "9f86d081884c7d659a2feaa0c55ad015a3bf4f1b2b0b822cd15d6c15b0f00a08"
 //!
 //! [[recording]]
@@ -55,8 +56,9 @@
 //! tick = "1 ms"             # without it the best of those above
 //! ```
 //!
-//! With a `[network]`, recordings and figures are those of the contact, and everything is proved for what the network
-//! makes of them at the pin.
+//! With a `[network]`, figures are those of the contact, and everything is proved for what the network makes of them at
+//! the pin. A recording is one of the bare contact unless it says `taken_at = "pin"`: of such a one no figure is taken
+//! for the contact's, and it is sampled and held against the envelope as it is.
 
 mod check;
 mod firmware;
@@ -92,7 +94,7 @@ pub use pair::{ForChanges, ForPositions};
 pub use read::{parse, read};
 pub use resolve::{Measured, Resolved, ResolvedRow, allowed_samples};
 pub use source::{Origin, Sourced};
-pub use words::{ContactKind, DiodeKind, Level, Quickened, Role, Word};
+pub use words::{ContactKind, DiodeKind, Level, Quickened, Role, TakenAt, Word};
 
 /// A requirement as far as it has been given.
 #[derive(Clone, PartialEq, Debug, Default)]
@@ -144,6 +146,8 @@ pub struct Recording {
     pub thresholds: Option<Sourced<Thresholds>>,
     /// The level of the line while the contact is closed, where this recording differs from the contact.
     pub closed: Option<Sourced<Level>>,
+    /// Where it was taken, where a network stands between the contact and the pin.
+    pub taken_at: Option<Sourced<TakenAt>>,
     /// The SHA-256 of the file (FIPS 180-4), in hexadecimal, that nobody may change unnoticed.
     pub sha256: Option<Sourced<String>>,
 }

@@ -16,7 +16,8 @@ use crate::quantity::{
 #[derive(Args, Clone, PartialEq, Debug, Default)]
 #[command(next_help_heading = "Network")]
 pub struct NetworkOptions {
-    /// Class of the input: schmitt-pin, lvcmos-3.3, ttl, industrial-1 and others
+    /// Class of the input: lvcmos-5, lvcmos-3.3, lvcmos-2.5, lvcmos-1.8, lvcmos-1.5, ttl, schmitt-hc, schmitt-hc-hex,
+    /// schmitt-hct, schmitt-pin, industrial-1, industrial-2 or industrial-3
     #[arg(long, value_name = "CLASS")]
     pub input: Option<ClassName>,
     /// Thresholds of a rising edge in place of a class: "1.5 V to 2.2 V"
@@ -112,5 +113,30 @@ impl NetworkOptions {
         over(&mut synchroniser.sample_rate, &self.sample_rate, "--sample-rate");
         over(&mut synchroniser.edge_rate, &self.edge_rate, "--edge-rate");
         table
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use clap::CommandFactory;
+
+    use super::*;
+    use crate::network::INPUT_CLASSES;
+
+    /// A class that no help names is one that nobody finds.
+    #[test]
+    fn input_option_names_every_class() {
+        #[derive(clap::Parser)]
+        struct Command {
+            #[command(flatten)]
+            _network: NetworkOptions,
+        }
+        let command = Command::command();
+        let input = command.get_arguments().find(|argument| argument.get_id() == "input").expect("an option");
+        let help = input.get_help().expect("a help").to_string();
+        let named: Vec<&str> = help.split([' ', ',', ':', '\n']).collect();
+        for class in INPUT_CLASSES {
+            assert!(named.contains(&class.name), "{} is not in {help}", class.name);
+        }
     }
 }

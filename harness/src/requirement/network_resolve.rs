@@ -287,9 +287,14 @@ impl NetworkTable {
 
     fn cable_leakage(&self, filling: &mut Filling<'_>) -> Option<f64> {
         let leakage = self.cable_leakage.as_ref()?;
-        if leakage.value.finest() == 0 {
-            let help = "write the least resistance across the open contact, such as \"1 Mohm\"";
-            filling.refuse(&leakage.origin, "a leakage of 0 ohm is a closed contact".to_owned(), help);
+        if leakage.value.base() < 1e3 {
+            let help =
+                "write the least resistance across the open contact, such as \"1 Mohm\", at least \"1 kohm\"";
+            filling.refuse(
+                &leakage.origin,
+                format!("a leakage of {} is a closed contact", leakage.value),
+                help,
+            );
             return None;
         }
         filling.row("network.cable_leakage", leakage.value.to_string(), leakage.origin);
@@ -307,6 +312,10 @@ impl NetworkTable {
             );
             return usual;
         };
+        if leakage.value.base() > 0.1 {
+            let help = "write the limit of its data sheet, such as \"1 uA\", at most \"100 mA\"";
+            filling.refuse(&leakage.origin, format!("no pin leaks {}", leakage.value), help);
+        }
         filling.row("network.pin_leakage", leakage.value.to_string(), leakage.origin);
         leakage.value.base()
     }
@@ -317,6 +326,11 @@ impl NetworkTable {
             Origin::Default("a clean metal contact (common practice)"),
         );
         let given = self.contact_resistance.unwrap_or(usual);
+        if given.value.base() > 1e5 {
+            let help = "write that of the closed contact, usually \"100 mohm\", of conductive rubber some \"200 ohm\", at most \"100 kohm\"";
+            let message = format!("a contact of {} is not closed", given.value);
+            filling.refuse(&given.origin, message, help);
+        }
         filling.row("network.contact_resistance", given.value.to_string(), given.origin);
         given.value.base()
     }

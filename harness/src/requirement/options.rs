@@ -8,7 +8,7 @@ use debounce_core::{PerChange, PerPosition};
 use super::check::check;
 use super::pair::{ForChanges, ForPositions};
 use super::{
-    ContactKind, Level, Origin, Recording, Requirement, Role, Sourced, Thresholds, TickChoice, read,
+    ContactKind, Level, Origin, Recording, Requirement, Role, Sourced, TakenAt, Thresholds, TickChoice, read,
 };
 use crate::problem::{Problem, Problems};
 use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time, Voltage};
@@ -36,6 +36,9 @@ pub struct RequirementOptions {
     /// Channel of the recordings given as arguments
     #[arg(long, value_name = "NAME", help_heading = "Requirement")]
     pub channel: Option<String>,
+    /// Where the recordings were taken: contact, or pin behind the [network] of the requirement file
+    #[arg(long, value_name = "PLACE", help_heading = "Requirement")]
+    pub taken_at: Option<TakenAt>,
     /// At or below this voltage the line reads low
     #[arg(
         long,
@@ -203,12 +206,14 @@ impl RequirementOptions {
                 channel: None,
                 thresholds: None,
                 closed: None,
+                taken_at: None,
                 sha256: None,
             };
             requirement.recordings = paths.iter().map(|path| recording(path)).collect();
         }
         for recording in &mut requirement.recordings {
             over(&mut recording.channel, &self.channel, "--channel");
+            over(&mut recording.taken_at, &self.taken_at, "--taken-at");
             over(&mut recording.thresholds, &thresholds, "--threshold-low");
         }
     }

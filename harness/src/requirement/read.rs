@@ -169,6 +169,7 @@ fn recording(reader: &mut Reader, mut section: Section<'_>) -> Option<Recording>
     let path = reader.text(&mut section, "path", "gate.vcd");
     let channel = reader.text(&mut section, "channel", "top.gate");
     let closed: Option<Sourced<Level>> = reader.word(&mut section, "closed");
+    let taken_at = reader.word(&mut section, "taken_at");
     let thresholds = thresholds(reader, &mut section);
     let sha256 = sha256(reader, &mut section);
     if has_path.is_none() {
@@ -179,7 +180,7 @@ fn recording(reader: &mut Reader, mut section: Section<'_>) -> Option<Recording>
     reader.finish(section);
     let folder = folder_of(&reader.source);
     let path: Sourced<PathBuf> = path?.map(|path| folder.join(path));
-    Some(Recording { path, channel, thresholds, closed, sha256 })
+    Some(Recording { path, channel, thresholds, closed, taken_at, sha256 })
 }
 
 fn sha256(reader: &mut Reader, section: &mut Section<'_>) -> Option<Sourced<String>> {

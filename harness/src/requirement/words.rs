@@ -121,6 +121,16 @@ words! {
 }
 
 words! {
+    /// Where a recording was taken, of a line with a network between contact and pin.
+    TakenAt, "a place where a recording is taken", {
+        /// At the bare contact, in front of the network.
+        Contact = "contact",
+        /// At the pin, behind the network.
+        Pin = "pin",
+    }
+}
+
+words! {
     /// A diode across the series resistor.
     DiodeKind, "a kind of diode", {
         /// A small-signal silicon diode.

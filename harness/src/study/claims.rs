@@ -48,11 +48,12 @@ impl Claims {
     /// When confidence or coverage is not strictly between 0 and 1.
     pub fn of(observed: &[Observed], resolved: &Resolved) -> Result<Self, ToleranceError> {
         let pooled = pooled(observed);
+        let behind = !observed.is_empty() && observed.iter().all(Observed::is_behind_network);
         let confidence = tolerance::Share::try_new(resolved.confidence.value.fraction())?;
         let coverage = tolerance::Share::try_new(resolved.coverage.value.fraction())?;
         let safe = |change| &pooled.changes.of(change).sorted_safe_bounces_ns;
         let claim = |change| Claim::of_sorted(safe(change), coverage, confidence);
-        let design = |change| DesignBounce::of(safe(change), resolved, change, confidence);
+        let design = |change| DesignBounce::of(safe(change), resolved, change, behind, confidence);
         let bounce = PerChange { make: claim(Change::Make)?, break_: claim(Change::Break)? };
         let design = PerChange { make: design(Change::Make)?, break_: design(Change::Break)? };
         Ok(Self {
@@ -76,17 +77,22 @@ impl DesignBounce {
         safe_bounces_ns: &[u64],
         resolved: &Resolved,
         change: Change,
+        behind: bool,
         confidence: tolerance::Share,
     ) -> Result<Self, ToleranceError> {
         let taken = resolved.required.bounce.at(change);
-        let ns = taken.value.ns();
+        // What was recorded behind the network is to be held against what the network makes of the contact.
+        let (ns, origin) = match &resolved.network {
+            Some(front) if behind => (front.at_pin.physical.bounce_ns.at(change), Origin::Network),
+            _ => (taken.value.ns(), taken.origin),
+        };
         let recorded = safe_bounces_ns.len() as u64;
         let longer = recorded - safe_bounces_ns.partition_point(|&bounce| bounce <= ns) as u64;
         let covered = match longer < recorded {
             true => Some(tolerance::coverage(recorded, longer + 1, confidence)?),
             false => None,
         };
-        let margin = (taken.origin == Origin::Measured).then_some(resolved.margin.value);
-        Ok(Self { ns, origin: taken.origin, margin, recorded, longer, covered })
+        let margin = (origin == Origin::Measured).then_some(resolved.margin.value);
+        Ok(Self { ns, origin, margin, recorded, longer, covered })
     }
 }

@@ -103,10 +103,11 @@ impl Study {
         let resolved = requirement.resolve(&measured(&observed)).map_err(StudyError::Requirement)?;
         let claims = Claims::of(&observed, &resolved)?;
         let physical = resolved.physical();
-        // A recording is one of the contact; with a network the pin shows something else.
+        // With a network the pin shows something else than the contact: each recording is held against its own.
         let contact = resolved.at_contact();
+        let envelope = |one: &Observed| if one.is_behind_network() { physical } else { contact };
         let conformance =
-            observed.iter().map(|one| conformance::check(&one.recording.trace, &contact)).collect();
+            observed.iter().map(|one| conformance::check(&one.recording.trace, &envelope(one))).collect();
         let at_pin = at_pin(&resolved, &observed)?;
         let question = Question { only, ..question(&resolved, &observed, &at_pin, preference) };
         let ranking = choose(&question, progress)?;
@@ -179,8 +180,8 @@ impl Study {
 /// What the pin shows of each recording; nothing where it shows the recording itself.
 fn at_pin(resolved: &Resolved, observed: &[Observed]) -> Result<Vec<Trace>, StudyError> {
     let Some(front) = &resolved.network else { return Ok(Vec::new()) };
-    let through = |one: &Observed| front.resolved.network.through(&one.recording.trace);
-    Ok(observed.iter().map(through).collect::<Result<_, _>>()?)
+    let network = Some(&front.resolved.network);
+    Ok(observed.iter().map(|one| one.at_pin(network)).collect::<Result<_, _>>()?)
 }
 
 fn question<'a>(

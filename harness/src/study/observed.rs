@@ -3,9 +3,10 @@
 use debounce_core::{Change, PerChange, PerPosition, Position};
 
 use crate::characterise::{Figures, SegmentError, SegmentOptions, Segmentation, segment};
+use crate::network::Network;
 use crate::quantity::Time;
-use crate::requirement::{Level, Measured};
-use crate::trace::Recording;
+use crate::requirement::{Level, Measured, Sourced, TakenAt};
+use crate::trace::{Recording, Trace, TraceError};
 use crate::truth::TruthChange;
 
 /// A recording with everything that was read from it.
@@ -23,6 +24,27 @@ pub struct Observed {
     pub truth: Vec<TruthChange>,
     /// The level at which the contact was declared to be closed, where that was said of this recording.
     pub closed: Option<Level>,
+    /// Where it was taken, if a network stands between the contact and the pin; `None` where nothing does.
+    pub taken_at: Option<Sourced<TakenAt>>,
+}
+
+impl Observed {
+    /// Whether it shows the contact through a network.
+    #[must_use]
+    pub fn is_behind_network(&self) -> bool {
+        self.taken_at.is_some_and(|taken_at| taken_at.value == TakenAt::Pin)
+    }
+
+    /// What the pin shows of it: the recording itself, unless it was taken in front of `network`.
+    ///
+    /// # Errors
+    /// None that a trace in order can cause.
+    pub fn at_pin(&self, network: Option<&Network>) -> Result<Trace, TraceError> {
+        match network.filter(|_| !self.is_behind_network()) {
+            Some(network) => network.through(&self.recording.trace),
+            None => Ok(self.recording.trace.clone()),
+        }
+    }
 }
 
 /// Reads a recording as operations.
@@ -37,18 +59,24 @@ pub fn observe(
     let segmentation = segment(&recording.trace, options)?;
     let figures = Figures::of(&segmentation);
     let truth = segmentation.truth();
-    Ok(Observed { name: name.into(), recording, segmentation, figures, truth, closed: None })
+    Ok(Observed { name: name.into(), recording, segmentation, figures, truth, closed: None, taken_at: None })
 }
 
-/// The figures of all recordings together, as if they were one.
+/// The figures of all recordings together, as if they were one: of those that show the contact itself; where there is
+/// none of that sort, of those taken behind its network.
 #[must_use]
 pub fn pooled(observed: &[Observed]) -> Figures {
-    Figures::pooled(&observed.iter().map(|one| &one.segmentation).collect::<Vec<_>>())
+    let behind = observed.iter().all(Observed::is_behind_network);
+    let counted = observed.iter().filter(|one| behind || !one.is_behind_network());
+    Figures::pooled(&counted.map(|one| &one.segmentation).collect::<Vec<_>>())
 }
 
-/// What all recordings together show, each figure on the safe side.
+/// What all recordings of the contact show together, each figure on the safe side.
+///
+/// A network hides pulses and moves edges, so a recording taken behind it says nothing of the contact's own figures.
 #[must_use]
 pub fn measured(observed: &[Observed]) -> Measured {
+    let observed: Vec<&Observed> = observed.iter().filter(|one| !one.is_behind_network()).collect();
     let longest = |change: Change| {
         observed.iter().filter_map(|one| one.figures.longest_bounce_ns(change)).max().map(Time::from_ns)
     };

@@ -150,6 +150,7 @@ fn figures(analysis: &Analysis) -> Markup {
     }
     let Analysis { inrush, steady, energy, held_power, .. } = analysis;
     rows.push(row("contact current just after a make".to_owned(), spread(inrush.min, inrush.max, "A")));
+    rows.push(row("it lasts, at most about".to_owned(), si(analysis.inrush_lasts, "s")));
     rows.push(row("contact current, steady".to_owned(), spread(steady.min, steady.max, "A")));
     rows.push(row("energy at a make, at most".to_owned(), si(*energy, "J")));
     rows.push(row("power while held closed".to_owned(), spread(held_power.min, held_power.max, "W")));

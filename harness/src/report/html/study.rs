@@ -64,9 +64,8 @@ pub fn study(study: &Study, invented: bool, origin: &Origin) -> String {
 
 /// What the pin shows of a recording: the recording itself where no network stands between them.
 fn at_pin(study: &Study, one: &Observed) -> Trace {
-    let network = study.resolved.network.as_ref();
-    let through = network.and_then(|front| front.resolved.network.through(&one.recording.trace).ok());
-    through.unwrap_or_else(|| one.recording.trace.clone())
+    let network = study.resolved.network.as_ref().map(|front| &front.resolved.network);
+    one.at_pin(network).unwrap_or_else(|_| one.recording.trace.clone())
 }
 
 fn envelope_section(study: &Study, best: Option<&Candidate>) -> Section {
@@ -100,8 +99,7 @@ fn limits(study: &Study, change: Change) -> Vec<Limit> {
         at_ns: claim.longest_ns,
         class: "claimed",
     });
-    let allowed =
-        Limit { name: "envelope", at_ns: study.resolved.at_contact().bounce_ns.at(change), class: "asked" };
+    let allowed = Limit { name: "envelope", at_ns: study.claims.design.of(change).ns, class: "asked" };
     claimed.into_iter().chain([allowed]).collect()
 }
 

@@ -14,7 +14,7 @@ const PLANE: Plane =
     Plane { width: 940.0, height: 400.0, left: 56.0, right: 780.0, top: 34.0, bottom: 350.0 };
 
 /// The classes of the lines, one for each kind of logic.
-const KINDS: [&str; 3] = ["one", "two", "three"];
+const KINDS: [&str; 4] = ["one", "two", "three", "four"];
 
 /// One clock.
 struct Row<'a> {
@@ -110,7 +110,7 @@ pub(super) fn section(study: &Study) -> Option<Section> {
         drawing,
         caption: html! {
             "The later of make and break. Marks are the best candidates that hold; lines are the best of each kind of \
-             logic in between, as far as their closed forms tell, with a jump wherever the envelope comes to a sample \
+             logic in between, as far as closed forms tell or exploring does, with a jump wherever the envelope comes to a sample \
              more or less. " span class="sign first" {} "marks the recommended tick. "
             @if !shown_asked { "Asked: " (words::about(allowed_ns)) ", above the top edge." }
         },
