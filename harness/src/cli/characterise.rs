@@ -123,6 +123,7 @@ impl Answer for Characterised {
         }
         claims(&mut lines, &self.claims)?;
         figures::limits(&mut lines, &self.claims)?;
+        figures::extremes(&mut lines, &self.claims)?;
         lines.item("Quantiles", characterised::QUANTILES)?;
         for one in self.observed.iter().filter(|_| self.listed) {
             operations(&mut lines, one)?;

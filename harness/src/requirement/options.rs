@@ -8,7 +8,7 @@ use debounce_core::{PerChange, PerPosition};
 use super::check::check;
 use super::pair::{ForChanges, ForPositions};
 use super::{
-    ContactKind, Level, Origin, Recording, Requirement, Role, Sourced, Thresholds, TickChoice, read,
+    ContactKind, Level, Origin, Reading, Recording, Requirement, Role, Sourced, Thresholds, TickChoice, read,
 };
 use crate::problem::{Problem, Problems};
 use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time, Voltage};
@@ -203,6 +203,7 @@ impl RequirementOptions {
                 channel: None,
                 thresholds: None,
                 closed: None,
+                reading: Reading::default(),
                 sha256: None,
             };
             requirement.recordings = paths.iter().map(|path| recording(path)).collect();
