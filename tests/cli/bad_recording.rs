@@ -193,6 +193,16 @@ fn recording_without_an_operation_is_refused() {
 }
 
 #[test]
+fn recording_with_a_sample_period_of_nothing_is_refused() {
+    let bench = Bench::with("gate.csv", "n,gate\n0,0\n1,1\n2,1\n3,0\n");
+    for option in ["--resolution", "--sample-period"] {
+        let message = format!("{option} of 0 is no time");
+        let told = ("", message.as_str(), &["\"1 us\", or leave it out"][..]);
+        bench.refuses(&["characterise", "gate.csv", option, "0 us"], &[told]);
+    }
+}
+
+#[test]
 fn recording_of_nothing_but_disturbances_is_refused_in_units_that_people_read() {
     let told = (
         "gate.vcd",

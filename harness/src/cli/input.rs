@@ -61,6 +61,7 @@ impl Input {
     }
 
     fn of(requirement: Requirement, input: &RequirementInput, session: &Session) -> Result<Self, Failure> {
+        input.reading.check()?;
         let (mut observed, mut problems) = (Vec::new(), Vec::new());
         for wanted in &requirement.recordings {
             let path = &wanted.path.value;

@@ -2,6 +2,7 @@
 
 use clap::{Args, ValueEnum};
 
+use crate::problem::Problem;
 use crate::quantity::Time;
 use crate::requirement::Reading;
 use crate::trace::{DecimalMark, Delimiter, ReadOptions, TimeUnit, Unknown};
@@ -33,6 +34,20 @@ pub struct ReadingOptions {
 }
 
 impl ReadingOptions {
+    /// Whether the times among them are some.
+    ///
+    /// # Errors
+    /// Where one of them is 0.
+    pub fn check(&self) -> Result<(), Problem> {
+        for (option, time) in [("--resolution", self.resolution), ("--sample-period", self.sample_period)] {
+            if time == Some(Time::ZERO) {
+                let problem = Problem::new(format!("{option} of 0 is no time"));
+                return Err(problem.help(format!("give {option} \"1 us\", or leave it out")));
+            }
+        }
+        Ok(())
+    }
+
     /// These options over what the requirement file says of a recording.
     #[must_use]
     pub fn over(&self, file: &Reading) -> ReadOptions {

@@ -412,7 +412,7 @@ fn recording_read_in_a_way_that_does_not_exist_is_refused_with_line_and_key() {
         parse(source).expect_err("bad").to_string()
     };
     for (key, told) in [
-        ("resolution = 5", "contact.toml:3:14: 5 has no unit"),
+        ("resolution = 5", "contact.toml:3:14: \"5\" has no unit"),
         (
             "resolution = \"0 us\"",
             "contact.toml:3:14: a resolution of 0 is no time; write resolution = \"1 us\"",
