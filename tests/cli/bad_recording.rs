@@ -124,6 +124,49 @@ fn recording_in_volts_without_thresholds_proposes_some_that_work() {
     assert_eq!(by_file.stdout, by_options.stdout);
 }
 
+/// Everything about how a file is read may stand in the requirement file, and an option stands over it.
+#[test]
+fn recording_is_read_as_the_requirement_file_says() {
+    let level = |n: u32| u32::from((200..400).contains(&(n % 500)));
+    let rows: String = (0..1_000).map(|n| format!("{n};{}\n", level(n))).collect();
+    let key =
+        |key: &str| format!("[contact]\nclosed = \"high\"\n[[recording]]\npath = \"gate.csv\"\n{key}\n");
+    let bench = Bench::with("gate.csv", format!("n;gate\n{rows}"))
+        .and("period.toml", key("sample_period = \"200 us\"\nresolution = \"1 ms\"\ngap = \"5 ms\""))
+        .and("unit.toml", key("time_unit = \"ms\"\ndelimiter = \"semicolon\"\ntime_column = \"n\""))
+        .and("wrong.toml", key("delimiter = \"comma\""));
+    let by_option = [
+        "gate.csv",
+        "--closed",
+        "high",
+        "--sample-period",
+        "200 us",
+        "--resolution",
+        "1 ms",
+        "--gap",
+        "5 ms",
+    ];
+    let by_option = bench.run(&[&["characterise"][..], &by_option].concat()).ends(0);
+    assert!(by_option.flowing().contains("200 ms: 2 makes, 2 breaks"), "{}", by_option.stdout);
+    assert!(
+        by_option.flowing().contains("a burst ends after 5 ms of rest, as stated"),
+        "{}",
+        by_option.stdout
+    );
+    let by_file = bench.run(&["characterise", "-r", "period.toml"]).ends(0);
+    assert_eq!(by_file.stdout, by_option.stdout);
+    let run = bench.run(&["characterise", "-r", "unit.toml"]).ends(0);
+    assert!(run.flowing().contains("1 s: 2 makes, 2 breaks"), "{}", run.stdout);
+    let run = bench
+        .run(&["characterise", "-r", "unit.toml", "--sample-period", "10 us", "--gap", "500 us"])
+        .ends(0);
+    assert!(run.flowing().contains("10 ms: 2 makes, 2 breaks"), "{}", run.stdout);
+    let told = ("gate.csv", "holds no row of a time and a level", &["delimiter under [[recording]]"][..]);
+    bench.refuses(&["replay", "integrator 3", "-r", "wrong.toml"], &[told]);
+    let told = ("bad.toml:5:13", "\"hours\" is not a unit of time", &["write \"s\""][..]);
+    bench.and("bad.toml", key("time_unit = \"hours\"")).refuses(&["study", "-r", "bad.toml"], &[told]);
+}
+
 #[test]
 fn recording_with_thresholds_the_wrong_way_round_is_refused() {
     let told = ("", "--threshold-low 2 V is not below --threshold-high 1 V", &["give low below high"][..]);
@@ -147,6 +190,27 @@ fn recording_without_an_operation_is_refused() {
     for command in [&["study"][..], &["characterise"], &["replay", "integrator 5"], &["choose"]] {
         bench.refuses(&[command, &["gate.vcd", "--channel", "gate"]].concat(), &[told]);
     }
+}
+
+#[test]
+fn recording_with_a_sample_period_of_nothing_is_refused() {
+    let bench = Bench::with("gate.csv", "n,gate\n0,0\n1,1\n2,1\n3,0\n");
+    for option in ["--resolution", "--sample-period"] {
+        let message = format!("{option} of 0 is no time");
+        let told = ("", message.as_str(), &["\"1 us\", or leave it out"][..]);
+        bench.refuses(&["characterise", "gate.csv", option, "0 us"], &[told]);
+    }
+}
+
+#[test]
+fn recording_of_nothing_but_disturbances_is_refused_in_units_that_people_read() {
+    let told = (
+        "gate.vcd",
+        "every burst of its 4 edges returns to where it began or is cut off (a burst ends after 14.1 ms of rest)",
+        &["record a whole make or break"][..],
+    );
+    let spikes = "#0\n1!\n#200000\n0!\n#201000\n1!\n#500000\n0!\n#501000\n1!\n#900000\n";
+    Bench::with("gate.vcd", vcd(spikes)).refuses(&["study", "gate.vcd", "--channel", "gate"], &[told]);
 }
 
 #[test]

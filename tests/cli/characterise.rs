@@ -105,6 +105,61 @@ fn characterise_of_too_few_operations_says_how_many_more() {
     assert!(study.stderr.contains("59 are needed"), "{}", study.stderr);
 }
 
+/// Sixty presses, and half-way between two of them a disturbance of 40 us, so many times.
+fn disturbed(disturbances: u64) -> String {
+    let mut text = presses(shuffled(61), 1);
+    for press in 0..disturbances {
+        let at = 300_000 * (press + 1);
+        let next = format!("#{}\n", 100_000 + 300_000 * (press + 1));
+        text = text.replacen(&next, &format!("#{at}\n1!\n#{}\n0!\n{next}", at + 40), 1);
+    }
+    text
+}
+
+/// A rest between two disturbances that nobody recorded is no quiet, however long the recording went on.
+#[test]
+fn study_of_few_disturbances_assumes_and_says_how_many_it_takes() {
+    let quiet = |json: &serde_json::Value| {
+        let rows = json["result"]["claims"]["others"].as_array().expect("figures").clone();
+        rows.into_iter().find(|row| row["figure"] == "required.quiet").expect("a row")
+    };
+    let line = [&["characterise", "gate.vcd", "--json"][..], &HIGH].concat();
+    let one = Bench::with("gate.vcd", disturbed(1));
+    let run = one.run(&line).ends(0);
+    let told = "too few to claim anything of 95 % of all with 95 % confidence, which takes 59 of each: 1 disturbance \
+                while open (1 ms assumed), 0 disturbances while closed (1 ms assumed), 0 rests between two \
+                disturbances (9 ms assumed); state what you know with --disturbance and --quiet-time, or record more";
+    assert!(run.stderr.contains(told), "{}", run.stderr);
+    let row = quiet(&run.json());
+    assert_eq!(
+        (&row["recorded"], &row["needed"], &row["covered"]),
+        (&0.into(), &59.into(), &serde_json::Value::Null)
+    );
+    assert_eq!((&row["taken_ns"], &row["taken_from"]), (&9_000_000.into(), &"default".into()));
+    assert_eq!(run.json()["result"]["pooled"]["quiet_ns"], serde_json::Value::Null);
+    for command in ["study", "choose"] {
+        let run = one.run(&[&[command, "gate.vcd", "--tick", "2 ms"][..], &HIGH].concat());
+        assert!(run.stderr.contains("0 rests between two disturbances (9 ms assumed)"), "{}", run.stderr);
+    }
+    let study = one.run(&[&["study", "gate.vcd", "--tick", "2 ms"][..], &HIGH].concat()).flowing();
+    assert!(study.contains("with at least 9 ms between two disturbances"), "{study}");
+
+    // 59 disturbances have 58 rests between them, 60 have 59; 1 - 0.05^(1/59) is 4.95 % (Wilks, 1941).
+    let run = Bench::with("gate.vcd", disturbed(59)).run(&line).ends(0);
+    assert!(run.stderr.contains("58 rests between two disturbances (9 ms assumed)"), "{}", run.stderr);
+    let run = Bench::with("gate.vcd", disturbed(60)).run(&line).ends(0);
+    assert!(!run.stderr.contains("rests"), "{}", run.stderr);
+    let row = quiet(&run.json());
+    assert_eq!((&row["recorded"], &row["taken_from"]), (&59.into(), &"measured".into()));
+    assert!((row["covered"].as_f64().expect("a share") - 0.950_492).abs() < 5e-7, "{row}");
+    assert!(row["taken_ns"].as_u64() > Some(200_000_000), "{row}");
+
+    // What is stated needs no recording.
+    let stated = ["--disturbance", "200 us", "--quiet-time", "50 ms"];
+    let run = one.run(&[&line[..], &stated].concat()).ends(0);
+    assert!(run.stderr.is_empty(), "{}", run.stderr);
+}
+
 #[test]
 fn characterise_of_an_inverted_line_says_so() {
     let bench = Bench::with("gate.vcd", presses(shuffled(60), 1));
@@ -200,7 +255,7 @@ fn characterise_with_voltages_that_are_none_is_refused_or_told() {
     // Beyond the range of the instrument is beyond the threshold: the job can go on, and it is said.
     let bench = Bench::with("gate.csv", volts("9.9E37"));
     let run = bench.run(&[&line[..], &HIGH].concat()).ends(0);
-    assert!(run.stderr.contains("400 readings are beyond the recorder's range"), "{}", run.stderr);
+    assert!(run.stderr.contains("400 readings beyond the recorder's range"), "{}", run.stderr);
     assert!(run.flowing().contains("2 makes, 2 breaks"), "{}", run.stdout);
 }
 

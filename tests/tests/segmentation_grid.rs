@@ -1,124 +1,40 @@
 //! Segmentation against synthetic truth, over a grid of contacts and disturbances.
 //!
-//! Disturbances know nothing of the contact here: they strike at any time, also in a bounce, right before or right after
-//! one. Of the operations that the segmentation does not call ambiguous at least 99.9 % must be found exactly, to the
-//! sample: kind, first and last edge. `cargo test --test segmentation_grid -- --nocapture` lists every cell.
+//! The contacts are the generator's presets, another part of the kind for each seed. Disturbances know nothing of the
+//! contact: they strike at any time, also in a bounce, right before or right after one. Of the operations that the
+//! segmentation does not call ambiguous at least 99.9 % must be found exactly, to the sample: kind, first and last edge.
+//! `cargo test --test segmentation_grid -- --nocapture` lists every cell.
 
-use debounce_core::{Change, Position};
+use debounce_core::Change;
 use harness::characterise::{SegmentOptions, Segmentation, segment};
+use harness::generate::{
+    Actuation, Between, Disturbances, Disturber, Habit, Panel, PanelContact, Pickup, Preset, Timing,
+};
 use harness::trace::Trace;
-
-use world::{CONTACTS, DISTURBANCES, World};
 
 const US: u64 = 1_000;
 const MS: u64 = 1_000_000;
 
-/// All that this test needs of the generator: bounces and disturbances by name, as edges from an instant on.
-mod world {
-    use debounce_core::{Change, PerChange};
-    use harness::generate::{Between, Bounce, ContactModel, Dice, Disturbances, SecondBurst};
+/// Nothing; lone spikes; chatter of up to 80 us pulses; bursts of 75 pulses at 5 kHz and at 100 kHz (IEC 61000-4-4), each
+/// as wide as an input's filter leaves it; a row of spikes at each half-cycle of 50 Hz mains; a wide dip.
+const DISTURBANCES: [&str; 7] = ["none", "spike", "chatter", "burst 5 kHz", "burst 100 kHz", "mains", "dip"];
 
-    use super::{MS, US};
-
-    /// A tactile dome, a push-button with second bursts, a slow rocker (ranges of the plots by G. Sutherland,
-    /// "switch_bouncing", public domain), a reed (bounce 0.1 ms typical: Coto RI-02 data sheet), a power relay (openings
-    /// within 16 ms of the first closure: measured at blog.bogpeople.com, 2012), a contact that hardly bounces.
-    pub(crate) const CONTACTS: [&str; 6] = ["dome", "push-button", "rocker", "reed", "relay", "clean"];
-
-    /// Nothing; lone spikes; chatter of up to 80 us pulses; bursts of 75 pulses at 5 kHz and at 100 kHz (IEC 61000-4-4);
-    /// a row of spikes at each half-cycle of 50 Hz mains; a wide dip.
-    pub(crate) const DISTURBANCES: [&str; 7] =
-        ["none", "spike", "chatter", "burst 5 kHz", "burst 100 kHz", "mains", "dip"];
-
-    pub(crate) struct World {
-        contact: ContactModel,
-        disturbance: Option<Disturbances>,
-        dice: Dice,
-    }
-
-    impl World {
-        pub(crate) fn new(contact: &str, disturbance: &str, seed: u64) -> Self {
-            let contact = contact_named(contact);
-            Self { contact, disturbance: disturbance_named(disturbance), dice: Dice::new(seed, 1) }
-        }
-
-        /// A number between both ends.
-        pub(crate) fn draw(&mut self, least: u64, greatest: u64) -> u64 {
-            self.dice.draw(Between(least, greatest))
-        }
-
-        /// The edges of one change, the first at `at_ns`.
-        pub(crate) fn bounce(&mut self, change: Change, at_ns: u64) -> Vec<u64> {
-            self.contact.edges(change, at_ns, &mut self.dice)
-        }
-
-        /// The edges of one disturbance, the first at `at_ns`; none where there are no disturbances.
-        pub(crate) fn disturbance(&mut self, at_ns: u64) -> Vec<u64> {
-            self.disturbance.map_or_else(Vec::new, |kind| kind.edges(at_ns, &mut self.dice))
-        }
-    }
-
-    fn bounce(
-        first: (u64, u64),
-        restitution: (u64, u64),
-        touch: (u64, u64),
-        second: Option<SecondBurst>,
-    ) -> Bounce {
-        let us = |(least, greatest): (u64, u64)| Between(least * US, greatest * US);
-        Bounce {
-            first_flight_ns: us(first),
-            restitution_permille: Between(restitution.0, restitution.1),
-            touch_ns: us(touch),
-            shortest_flight_ns: 10 * US,
-            second,
-        }
-    }
-
-    fn contact_named(name: &str) -> ContactModel {
-        let second = Some(SecondBurst {
-            permille: 300,
-            after_ns: Between(200 * US, 500 * US),
-            first_flight_ns: Between(50 * US, 150 * US),
-        });
-        let (make, break_) = match name {
-            "dome" => {
-                (bounce((15, 30), (200, 300), (2, 5), None), bounce((300, 400), (500, 700), (5, 60), None))
-            }
-            "push-button" => (
-                bounce((250, 350), (400, 600), (10, 50), second),
-                bounce((150, 250), (300, 500), (10, 50), second),
-            ),
-            "rocker" => (
-                bounce((2_000, 3_000), (400, 600), (50, 200), None),
-                bounce((1_000, 2_000), (300, 500), (50, 200), None),
-            ),
-            "reed" => (bounce((40, 60), (300, 500), (5, 20), None), bounce((1, 5), (100, 200), (1, 2), None)),
-            "relay" => (
-                bounce((5_000, 6_000), (450, 550), (200, 900), None),
-                bounce((20, 80), (300, 500), (20, 90), None),
-            ),
-            _ => (bounce((1, 5), (100, 200), (1, 2), None), bounce((1, 5), (100, 200), (1, 2), None)),
-        };
-        ContactModel { bounce: PerChange { make, break_ } }
-    }
-
-    fn disturbance_named(name: &str) -> Option<Disturbances> {
-        let kind = |pulses: (u64, u64), pulse_us: (u64, u64), rest_us: (u64, u64)| {
-            Some(Disturbances {
-                pulses: Between(pulses.0, pulses.1),
-                pulse_ns: Between(pulse_us.0 * US, pulse_us.1 * US),
-                rest_ns: Between(rest_us.0 * US, rest_us.1 * US),
-            })
-        };
-        match name {
-            "spike" => kind((1, 1), (1, 20), (1, 1)),
-            "chatter" => kind((1, 6), (5, 80), (20, 90)),
-            "burst 5 kHz" => kind((75, 75), (1, 2), (198, 199)),
-            "burst 100 kHz" => kind((75, 75), (1, 2), (8, 9)),
-            "mains" => kind((2, 12), (20, 400), (9_600, 9_980)),
-            "dip" => kind((1, 1), (100, 3 * MS / US), (1, 1)),
-            _ => None,
-        }
+fn disturbance(name: &str) -> Option<Disturbances> {
+    let kind = |pulses: (u64, u64), pulse_us: (u64, u64), rest_us: (u64, u64)| {
+        Some(Disturbances {
+            pulses: Between(pulses.0, pulses.1),
+            pulse_ns: Between(pulse_us.0 * US, pulse_us.1 * US),
+            rest_ns: Between(rest_us.0 * US, rest_us.1 * US),
+        })
+    };
+    match name {
+        "spike" => kind((1, 1), (1, 20), (1, 1)),
+        "chatter" => kind((1, 6), (5, 80), (20, 90)),
+        "burst 5 kHz" => kind((75, 75), (1, 2), (198, 199)),
+        "burst 100 kHz" => kind((75, 75), (1, 2), (8, 9)),
+        "mains" => kind((2, 12), (20, 400), (9_600, 9_980)),
+        "dip" => kind((1, 1), (100, 3 * MS / US), (1, 1)),
+        _ => None,
     }
 }
 
@@ -131,33 +47,31 @@ struct Made {
 /// The recorder's sample period.
 const PERIOD_NS: u64 = US;
 
-/// One recording: 40 operations, and a disturbance every 3 s on average, at any time.
-fn record(contact: &str, disturbance: &str, seed: u64) -> Made {
-    let mut world = World::new(contact, disturbance, seed);
-    let (mut now, mut truth, mut edges) = (world.draw(100 * MS, 900 * MS), Vec::new(), Vec::new());
-    for _ in 0..40 {
-        for (change, dwell) in [(Change::Make, (60, 400)), (Change::Break, (100, 2_000))] {
-            let burst = world.bounce(change, now);
-            truth.push((change, seen(now), seen(*burst.last().expect("an edge"))));
-            edges.extend(burst.into_iter().map(seen));
-            now += world.draw(dwell.0 * MS, dwell.1 * MS);
-        }
-    }
-    let mut at = world.draw(0, 3_000 * MS);
-    while at < now {
-        edges.extend(world.disturbance(at).into_iter().map(seen));
-        at += world.draw(200 * MS, 5_800 * MS);
-    }
-    // The line is the contact, turned over while disturbed: two edges in one sample leave none.
-    edges.sort_unstable();
-    let line: Vec<u64> =
-        edges.chunk_by(|a, b| a == b).filter(|same| same.len() % 2 == 1).map(|same| same[0]).collect();
-    let end = now.max(line.last().copied().unwrap_or(0)) + 500 * MS;
-    Made { trace: Trace::new(Position::Open, 0, end, line, PERIOD_NS).expect("in order"), truth }
-}
+/// Operations of one contact, of an encoder detents, each of which works both its lines.
+const OPERATIONS: u64 = 40;
 
-fn seen(ns: u64) -> u64 {
-    ns.next_multiple_of(PERIOD_NS)
+/// The lines of one part: 40 operations by hand, and a disturbance every 3 s on average, at any time.
+fn record(preset: &Preset, name: &str, seed: u64) -> Vec<Made> {
+    let timing = Timing::Every { period_ns: Between(200 * MS, 5_800 * MS) };
+    let contact = PanelContact {
+        routines: vec![Habit::find("presses").expect("a habit").routine(OPERATIONS, Actuation::Usual)],
+        detent_ns: preset.detent_ns,
+        disturbers: disturbance(name)
+            .map(|kind| Disturber { pickup: Pickup::Pulses(kind), timing })
+            .into_iter()
+            .collect(),
+        ..PanelContact::new(preset.name, preset.specimen(seed))
+    };
+    let panel = Panel { seed, resolution_ns: PERIOD_NS, contacts: vec![contact] };
+    let lines = panel.generate(false).expect("short").lines;
+    let made = lines.into_iter().map(|line| {
+        let changes = line.truth.iter().zip(&line.bounce_ends_ns);
+        Made {
+            truth: changes.map(|(truth, &end)| (truth.change, truth.at_ns, end)).collect(),
+            trace: line.trace,
+        }
+    });
+    made.collect()
 }
 
 /// What came of the operations of some recordings.
@@ -232,7 +146,10 @@ fn in_doubt(found: &Segmentation, first: u64, last: u64) -> bool {
 }
 
 /// Seeds from here on were not used while the segmentation was written.
-const SEEDS: std::ops::Range<u64> = 7_300_000..7_300_012;
+const SEEDS: std::ops::Range<u64> = 9_150_000..9_150_012;
+
+/// Changes, ambiguous ones, missed and invented ones of these seeds.
+const PINNED: (usize, usize, usize, usize) = (67_200, 1_515, 27, 5);
 
 #[test]
 fn segmentation_over_the_grid_finds_unambiguous_operations_exactly() {
@@ -243,36 +160,42 @@ fn segmentation_over_the_grid_finds_unambiguous_operations_exactly() {
     };
     let mut listing = String::from("contact      disturbance    changes  exact ambiguous  missed invented\n");
     let mut all = Tally::default();
-    for contact in CONTACTS {
+    for preset in Preset::all() {
         for disturbance in DISTURBANCES {
             let cell = seeds
                 .clone()
                 .into_par_iter()
-                .map(|seed| Tally::of(&record(contact, disturbance, seed)))
+                .flat_map_iter(|seed| record(preset, disturbance, seed))
+                .map(|made| Tally::of(&made))
                 .reduce(Tally::default, Tally::and);
-            listing.push_str(&cell.line(contact, disturbance));
+            listing.push_str(&cell.line(preset.name, disturbance));
             listing.push('\n');
             all = all.and(cell);
         }
     }
     listing.push_str(&all.line("all", ""));
     println!("{listing}");
-    assert_eq!(all.operations, CONTACTS.len() * DISTURBANCES.len() * 12 * 80);
     assert_eq!(all.exact + all.ambiguous + all.missed, all.operations);
     let wrong = all.missed + all.invented;
     assert!(wrong * 1_000 <= all.exact + wrong, "{wrong} of {} wrong:\n{listing}", all.exact + wrong);
     // Calling everything ambiguous would be no answer.
     assert!(all.ambiguous * 100 <= all.operations * 5, "too much in doubt:\n{listing}");
+    // Neither gets worse unnoticed.
+    if seeds == SEEDS {
+        assert_eq!((all.operations, all.ambiguous, all.missed, all.invented), PINNED, "{listing}");
+    }
 }
 
-/// Without disturbances nothing is missed, nothing invented, and hardly anything in doubt.
+/// Without disturbances nothing is missed, nothing invented, and hardly anything in doubt: stretches of chattering contact
+/// resistance soon after a bounce look like disturbances, and conductive rubber shows most of them.
 #[test]
 fn segmentation_of_an_undisturbed_line_is_exact() {
-    for contact in CONTACTS {
-        let cell =
-            SEEDS.map(|seed| Tally::of(&record(contact, "none", seed))).fold(Tally::default(), Tally::and);
-        assert_eq!((cell.missed, cell.invented), (0, 0), "{}", cell.line(contact, "none"));
-        assert!(cell.ambiguous * 100 <= cell.operations, "{}", cell.line(contact, "none"));
+    for preset in Preset::all() {
+        let lines = SEEDS.flat_map(|seed| record(preset, "none", seed));
+        let cell = lines.map(|made| Tally::of(&made)).fold(Tally::default(), Tally::and);
+        assert_eq!((cell.missed, cell.invented), (0, 0), "{}", cell.line(preset.name, "none"));
+        let most_percent = if preset.name == "membrane" { 8 } else { 2 };
+        assert!(cell.ambiguous * 100 <= cell.operations * most_percent, "{}", cell.line(preset.name, "none"));
     }
 }
 
@@ -280,8 +203,8 @@ fn segmentation_of_an_undisturbed_line_is_exact() {
 #[test]
 fn segmentation_of_a_cut_recording_keeps_what_is_whole() {
     let mut whole_ones = 0;
-    for contact in CONTACTS {
-        let made = record(contact, "spike", SEEDS.start);
+    for preset in Preset::all() {
+        let made = record(preset, "spike", SEEDS.start).remove(0);
         let full = segment(&made.trace, &SegmentOptions::default()).expect("operations");
         for part in 0..20 {
             let from = made.truth[10].1 + part * 50 * US;
@@ -294,11 +217,12 @@ fn segmentation_of_a_cut_recording_keeps_what_is_whole() {
             let found = segment(&cut, &options).expect("operations");
             for operation in &found.operations {
                 let same = full.operations.iter().find(|o| o.burst.first_ns == operation.burst.first_ns);
-                let same = same.unwrap_or_else(|| panic!("{contact}: {operation:?} is not in the whole"));
-                assert_eq!((same.change, same.burst), (operation.change, operation.burst), "{contact}");
+                let same =
+                    same.unwrap_or_else(|| panic!("{}: {operation:?} is not in the whole", preset.name));
+                assert_eq!((same.change, same.burst), (operation.change, operation.burst), "{}", preset.name);
                 whole_ones += 1;
             }
         }
     }
-    assert!(whole_ones > 120 * 45, "{whole_ones}");
+    assert!(whole_ones > 180 * 45, "{whole_ones}");
 }

@@ -67,6 +67,8 @@ pub struct DisturbanceFigures {
 /// How long the contact stayed in one position.
 #[derive(Clone, Copy, PartialEq, Eq, Debug)]
 pub struct DwellFigures {
+    /// How often it was seen to enter the position and to leave it again.
+    pub count: usize,
     /// Shortest time from the first edge of the change to it to the first edge of the change from it.
     pub shortest_ns: Option<u64>,
     /// Shortest time from the end of the bounce to the first edge of the change from it.
@@ -85,7 +87,10 @@ pub struct Figures {
     pub disturbances: PerPosition<DisturbanceFigures>,
     /// Time between the end of a disturbance and the beginning of the next.
     pub spacing_ns: Option<Spread>,
-    /// The shortest rest beside a disturbance that the recording supports, doubtful ones included.
+    /// How many of those times were recorded whole: one disturbance fewer than there are in a recording.
+    pub rests: usize,
+    /// The shortest rest between two disturbances, doubtful ones included; `None` where no two were recorded, for then
+    /// nothing is known of how near each other they come.
     pub quiet_ns: Option<u64>,
     /// The shortest time between a bounce and a disturbance after it, doubtful ones included.
     pub calm_ns: Option<u64>,
@@ -192,6 +197,7 @@ impl Figures {
         Self {
             changes: PerChange { make: change(Change::Make), break_: change(Change::Break) },
             disturbances: PerPosition { open: position(Position::Open), closed: position(Position::Closed) },
+            rests: spacing.len(),
             spacing_ns: Spread::of(&mut spacing),
             quiet_ns: recordings.iter().filter_map(|one| sums::quiet(one)).min(),
             calm_ns: recordings.iter().filter_map(|one| sums::calm(one)).min(),
@@ -245,7 +251,8 @@ impl Figures {
     /// The envelope that the recording supports, with the stated allowance on the safe side of every figure.
     ///
     /// The recording conforms to it; whether operations to come do is what [`tolerance`](super::tolerance)
-    /// speaks about.
+    /// speaks about, and how much is to be made of extremes that few observations stand behind is decided where a
+    /// [requirement](crate::requirement::Requirement::resolve) is filled in.
     ///
     /// # Errors
     /// When a make, a break, or the time in a position was never recorded whole.

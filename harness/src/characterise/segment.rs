@@ -5,7 +5,7 @@ use debounce_core::{Change, PerChange, Position};
 use super::ambiguity::{self, Usual};
 use super::gap::{self, Gap, GapOrigin};
 use super::operations::{Burst, Disturbance, Extent, Fragment, Operation, RecordingEnd, Segmentation};
-use crate::quantity::Time;
+use crate::quantity::{Time, counted};
 use crate::trace::Trace;
 
 /// How to segment; the default finds everything from the data.
@@ -27,8 +27,10 @@ pub enum SegmentError {
     },
     /// There are edges, but none of the bursts leads from one position to the other.
     #[error(
-        "the recording holds no operation: every burst of its {edges} edges returns to where it began or is cut \
-         off (a burst ends after {gap_ns} ns of rest); record a whole make or break, or state a shorter gap"
+        "the recording holds no operation: every burst of its {} returns to where it began or is cut off (a burst \
+         ends after {} of rest); record a whole make or break, or state a shorter gap",
+        counted(*.edges as u64, "edge"),
+        Time::from_ns(*.gap_ns)
     )]
     NoOperation {
         /// The number of edges.

@@ -150,6 +150,7 @@ impl Answer for Characterised {
         claims(&mut lines, &self.claims)?;
         figures::limits(&mut lines, &self.claims)?;
         network(&mut lines, self.network.as_ref())?;
+        figures::extremes(&mut lines, &self.claims)?;
         lines.item("Quantiles", characterised::QUANTILES)?;
         for one in self.observed.iter().filter(|_| self.listed) {
             operations(&mut lines, one)?;

@@ -20,6 +20,7 @@ use super::{Answer, Failure, Outcome, Session};
 use crate::choose::Shortfall;
 use crate::clock_range::{Activity, ClockQuestion, asleep, clock_range, slowest_by_tolerance};
 use crate::problem::Problem;
+use crate::quantity::counted;
 use crate::report::clock_plot::ClockPlot;
 use crate::report::{characterised, html, json as report, words};
 use crate::requirement::{InFront, Origin, Resolved};
@@ -262,7 +263,7 @@ fn lacks(shortfall: &Shortfall) -> String {
         Shortfall::TooSlow { change, below_ns, allowed_ns } => {
             format!("{} {}", words::at_most(below_ns - allowed_ns), words::change(*change))
         }
-        Shortfall::TooBig { bytes, allowed } => format!("{} bytes", bytes - allowed),
+        Shortfall::TooBig { bytes, allowed } => counted(u64::from(bytes - allowed), "byte"),
         Shortfall::FailsOnRecording { recording } => format!("recording {}", recording + 1),
     }
 }

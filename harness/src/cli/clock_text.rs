@@ -4,7 +4,7 @@ use std::io;
 
 use super::lines::{Lines, strong};
 use crate::clock_range::{Activity, Asleep, ClockRange, Span};
-use crate::quantity::Time;
+use crate::quantity::{Time, counted};
 use crate::report::words;
 
 /// What a choice shows of the sample clock.
@@ -75,8 +75,8 @@ impl ClockView {
             ),
         )?;
         lines.more(&format!(
-            "settled at most {} ticks after a make, {} after a break, {} after a disturbance",
-            asleep.ticks_after.make,
+            "settled at most {} after a make, {} after a break, {} after a disturbance",
+            counted(u64::from(asleep.ticks_after.make), "tick"),
             asleep.ticks_after.break_,
             asleep.ticks_after_disturbance.open.max(asleep.ticks_after_disturbance.closed)
         ))

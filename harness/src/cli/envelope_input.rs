@@ -12,7 +12,7 @@ use crate::quantity::TickPeriod;
 use crate::report::html::SourceFile;
 use crate::report::words;
 use crate::requirement::RequirementOptions;
-use crate::study::measured;
+use crate::study::{Caution, Claims, measured};
 
 /// An envelope in ticks, or a requirement.
 #[derive(Args, Clone, PartialEq, Debug, Default)]
@@ -48,6 +48,11 @@ impl EnvelopeInput {
         }
         let input = Input::with_or_without_recordings(&self.input, session)?;
         let resolved = input.requirement.resolve(&measured(&input.observed))?;
+        if !input.observed.is_empty() {
+            let claims = Claims::of(&input.observed, &resolved).map_err(Problem::told)?;
+            let cautions = Caution::all(&input.observed, &resolved, &claims);
+            cautions.iter().for_each(|caution| session.warn(&caution.to_string()));
+        }
         let tick = only(&resolved.ticks.value)?;
         let envelope = resolved.physical().in_ticks(&resolved.clock(tick)).map_err(Problem::told)?;
         let files = if with_files { input.files()? } else { Vec::new() };

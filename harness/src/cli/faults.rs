@@ -71,10 +71,11 @@ fn option_for(lack: &Lack) -> String {
                  \"{low} V\", high = \"{high} V\" }} under [[recording]] in the requirement file"
             )
         }
-        Lack::TimeUnit => "give --time-unit us, or s, ms, ns, ps or fs; --sample-period \"10 us\" where a CSV counts samples"
+        Lack::TimeUnit => "give --time-unit us, or s, ms, ns, ps or fs; --sample-period \"10 us\" where a CSV counts samples; or \
+             time_unit or sample_period under [[recording]] in the requirement file"
             .to_owned(),
-        Lack::TimeColumn => "give --time-column by name or number".to_owned(),
-        _ => "give --delimiter as comma, semicolon, tab or space".to_owned(),
+        Lack::TimeColumn => "give --time-column, or time_column under [[recording]], by name or number".to_owned(),
+        _ => "give --delimiter, or delimiter under [[recording]], as comma, semicolon, tab or space".to_owned(),
     }
 }
 

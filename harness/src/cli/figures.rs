@@ -34,13 +34,18 @@ pub(super) fn between(lines: &mut Lines<'_>, figures: &Figures) -> io::Result<()
             lines.more(&format!("shortest {}{doubt}", words::about(shortest)))?;
         }
     }
+    let disturbed = figures.disturbances.open.count + figures.disturbances.closed.count;
+    if figures.quiet_ns.is_none() && disturbed > 0 {
+        lines.item("Quiet", "not known: no two disturbances were recorded one after the other")?;
+    }
     if let Some(quiet) = figures.quiet_ns {
         let rate = Some(figures.disturbances_per_second()).filter(|&rate| rate > 0.0);
         lines.item(
             "Quiet",
             &format!(
-                "at least {} beside every disturbance{}{}",
+                "at least {} between two disturbances, by {} recorded{}{}",
                 words::at_least(quiet),
+                words::count(figures.rests, "rest"),
                 rate.map_or(String::new(), |rate| format!("; {} of them a second", significant(rate))),
                 figures.spacing_ns.map_or(String::new(), |spacing| format!(
                     ", from {} to {} apart, median {}",
@@ -170,6 +175,15 @@ fn indication(lines: &mut Lines<'_>, found: &ChangeFigures) -> io::Result<()> {
 /// One in 1000 exceeds this, rounded up to a nanosecond.
 fn whole(tail: &Tail) -> u64 {
     tail.exceeded_once_in(1e3).ceil() as u64
+}
+
+/// What is claimed of everything but the bounces.
+pub(super) fn extremes(lines: &mut Lines<'_>, claims: &Claims) -> io::Result<()> {
+    let mut found = claims.extremes.iter().filter_map(|extreme| extreme.claim(claims.coverage));
+    let Some(first) = found.next() else { return Ok(()) };
+    let confidence = claims.confidence;
+    lines.item("Others", &format!("with {confidence} confidence, were they independent: {first}"))?;
+    found.try_for_each(|claim| lines.more(&claim))
 }
 
 /// The limits that reach the wanted coverage, where there are enough operations for them.

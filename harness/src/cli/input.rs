@@ -61,11 +61,13 @@ impl Input {
     }
 
     fn of(requirement: Requirement, input: &RequirementInput, session: &Session) -> Result<Self, Failure> {
-        let segmenting = SegmentOptions { gap_ns: input.gap.map(Time::ns) };
+        input.reading.check()?;
         let (mut observed, mut problems) = (Vec::new(), Vec::new());
         for wanted in &requirement.recordings {
             let path = &wanted.path.value;
-            let read = read_options(wanted, &requirement, input.reading.read_options())
+            let gap = input.gap.or(wanted.reading.gap.map(|gap| gap.value));
+            let segmenting = SegmentOptions { gap_ns: gap.map(Time::ns) };
+            let read = read_options(wanted, &requirement, input.reading.over(&wanted.reading))
                 .map_err(|problem| vec![problem])
                 .and_then(|options| read_path(path, &options).map_err(|error| faults::recording(&error)))
                 .and_then(|recording| {

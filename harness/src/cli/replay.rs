@@ -18,8 +18,7 @@ use crate::generate::{changes_of, read_truth};
 use crate::nearest::nearest_scoped;
 use crate::problem::Problem;
 use crate::prove::{Witness, WitnessTick};
-use crate::quantity::Share;
-use crate::quantity::TickPeriod;
+use crate::quantity::{Share, TickPeriod, counted};
 use crate::replay::{ClockMeasurement, Draws, Failures, PreparedClock};
 use crate::report::timing::TimingDiagram;
 use crate::report::{characterised, words};
@@ -196,19 +195,20 @@ impl Answer for Replayed {
 
 impl Replayed {
     fn figures(&self, lines: &mut Lines<'_>, run: &Run) -> io::Result<()> {
+        let changes = |number: u32| counted(u64::from(number), "change");
         let exact = &run.measured.nominal;
         for change in [Change::Make, Change::Break] {
             let figures = exact.at(change);
             let text = match &figures.latency {
-                None => format!("{} changes, none reported", figures.changes),
+                None => format!("{}, none reported", changes(figures.changes)),
                 Some(latency) => format!(
-                    "{} changes; delay median {}, 95 % {}, 99 % {}, always less than {}; at most {} samples",
-                    figures.changes,
+                    "{}; delay median {}, 95 % {}, 99 % {}, always less than {}; at most {}",
+                    changes(figures.changes),
                     words::about(latency.delay.median_ns),
                     words::about(latency.delay.p95_ns),
                     words::about(latency.delay.p99_ns),
                     words::at_most(run.measured.worst_delay_ns(change).unwrap_or(latency.delay.below_ns)),
-                    latency.samples.worst,
+                    counted(latency.samples.worst, "sample"),
                 ),
             };
             lines.item(if change == Change::Make { "Makes" } else { "Breaks" }, &text)?;

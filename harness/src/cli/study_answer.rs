@@ -13,7 +13,7 @@ use super::recorded::{claims, failures, recorded};
 use super::{Answer, Outcome};
 use crate::choose::{Candidate, Judgement};
 use crate::prove::Recovery;
-use crate::quantity::TickPeriod;
+use crate::quantity::{TickPeriod, counted};
 use crate::report::{json, words};
 use crate::requirement::TakenAt;
 use crate::study::{Guarantees, Study};
@@ -192,16 +192,19 @@ fn beyond(found: &Guarantees, tick: TickPeriod) -> Option<String> {
     let immunity = beyond.immunity.as_ref().ok()?;
     let pair = beyond.shortest_operations.as_ref().ok()?.first()?;
     let recovery = match beyond.after_short_operations.as_ref().ok()? {
-        Recovery::Within(samples) => format!("recovers from shorter ones within {samples} ticks"),
+        Recovery::Within(samples) => {
+            format!("recovers from shorter ones within {}", counted(u64::from(*samples), "tick"))
+        }
         Recovery::Never(_) => "may stay wrong after shorter ones".to_owned(),
     };
-    let width = |width: Option<u32>| width.map_or("none".to_owned(), |ticks| ticks.to_string());
+    let ticks = |number: u32| counted(u64::from(number), "tick");
+    let width = |width: Option<u32>| width.map_or("none".to_owned(), ticks);
     Some(format!(
-        "at {tick}: bears disturbances up to {} ticks open and {} closed; serves operations down to {} ticks closed, {} open; {recovery}",
+        "at {tick}: bears disturbances up to {} open and {} closed; serves operations down to {} closed, {} open; {recovery}",
         width(immunity.open),
         width(immunity.closed),
-        pair.closed,
-        pair.open,
+        ticks(pair.closed),
+        ticks(pair.open),
     ))
 }
 

@@ -12,7 +12,7 @@ mod tests;
 use debounce_core::{Bounds, Change, Envelope, ParameterError, Position, TickClock, Verdict};
 
 use crate::law_text::LawParameters;
-use crate::quantity::{TickPeriod, Time};
+use crate::quantity::{TickPeriod, Time, counted};
 use crate::requirement::{Figures, Level, Resolved, Role};
 
 pub use identifier::{module_name, type_name};
@@ -60,7 +60,10 @@ pub struct Configuration {
 #[non_exhaustive]
 pub enum NotHeld {
     /// The clock turns a time into more samples than the envelope allows for, or fewer than it counts on.
-    #[error("{what} of {time} is {samples} samples of this clock, but the envelope was proved with {proved}")]
+    #[error(
+        "{what} of {time} is {} of this clock, but the envelope was proved with {proved}",
+        counted(u64::from(*.samples), "sample")
+    )]
     OutsideEnvelope {
         /// Which time.
         what: &'static str,
@@ -87,7 +90,8 @@ pub enum NotHeld {
     },
     /// The proved latency is longer than the required one.
     #[error(
-        "the {edge} latency of up to {samples} samples can take {delay}, longer than the required {required}"
+        "the {edge} latency of up to {} can take {delay}, longer than the required {required}",
+        counted(u64::from(*.samples), "sample")
     )]
     TooLate {
         /// Make or break.

@@ -20,6 +20,12 @@ const BYTES: Manner = Manner { name: "a number of bytes", units: &["bytes", "KiB
 const BYTE_UNITS: &[Unit] =
     &[("byte", 1), ("bytes", 1), ("B", 1), ("kB", 1_000), ("KiB", 1_024), ("MiB", 1 << 20)];
 
+/// A count with its noun: "1 make", "2 makes".
+#[must_use]
+pub fn counted(number: u64, noun: &str) -> String {
+    if number == 1 { format!("1 {noun}") } else { format!("{number} {noun}s") }
+}
+
 fn count(text: &str, manner: &Manner, units: &[Unit], finest: &str) -> Result<u32, QuantityError> {
     let written = split(text, manner)?;
     let size = written.unit_size(units, manner)?;

@@ -7,8 +7,9 @@ use super::words;
 use crate::characterise::{
     ChangeFigures, Claim, Extent, Figures, Histogram, Independence, Operation, Spread, Step, tail::Tail,
 };
+use crate::quantity::Time;
 use crate::replay::Failures;
-use crate::study::{Claims, DesignBounce, Observed};
+use crate::study::{Claims, DesignBounce, Extreme, Observed};
 
 /// The name of the quantiles' convention, as it stands beside them (R. J. Hyndman, Y. Fan, Am. Stat. 50 (1996)).
 pub const QUANTILES: &str = "type 7 (Hyndman and Fan, 1996)";
@@ -30,6 +31,7 @@ pub fn figures(figures: &Figures) -> Value {
             "ambiguous": disturbances.ambiguous,
             "width_ns": disturbances.width_ns.map(spread),
             "widest_in_doubt_ns": disturbances.widest_in_doubt_ns,
+            "dwells": dwell.count,
             "shortest_dwell_ns": dwell.shortest_ns,
             "shortest_dwell_in_doubt_ns": dwell.shortest_in_doubt_ns,
         })
@@ -44,6 +46,7 @@ pub fn figures(figures: &Figures) -> Value {
         "open": position(Position::Open),
         "closed": position(Position::Closed),
         "disturbances_per_second": figures.disturbances_per_second(),
+        "rests": figures.rests,
         "disturbance_spacing_ns": figures.spacing_ns.map(spread),
         "quiet_ns": figures.quiet_ns,
         "calm_ns": figures.calm_ns,
@@ -124,6 +127,19 @@ pub fn claims(claims: &Claims) -> Value {
         "method": "order statistics (Wilks, 1941), operations taken as independent and alike",
         "make": of(Change::Make),
         "break": of(Change::Break),
+        "others": claims.extremes.iter().map(extreme).collect::<Value>(),
+    })
+}
+
+fn extreme(found: &Extreme) -> Value {
+    json!({
+        "figure": found.key(),
+        "recorded": found.count,
+        "needed": found.needed,
+        "seen_ns": found.seen.map(Time::ns),
+        "covered": found.covered,
+        "taken_ns": found.taken.value.ns(),
+        "taken_from": found.taken.origin.word(),
     })
 }
 

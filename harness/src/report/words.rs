@@ -4,7 +4,7 @@ use debounce_core::{Change, Clause, PerPosition, Position};
 
 use crate::choose::Shortfall;
 use crate::envelope::PhysicalEnvelope;
-use crate::quantity::{Rounding, Time};
+use crate::quantity::{Rounding, Time, counted};
 
 /// A time that must not be understated.
 #[must_use]
@@ -81,7 +81,11 @@ pub fn shortfall(shortfall: &Shortfall) -> String {
             about(*allowed_ns)
         ),
         Shortfall::TooBig { bytes, allowed } => {
-            format!("needs {bytes} bytes an input, {} more than the {allowed} allowed", bytes - allowed)
+            format!(
+                "needs {} an input, {} more than the {allowed} allowed",
+                counted(u64::from(*bytes), "byte"),
+                bytes - allowed
+            )
         }
         Shortfall::FailsOnRecording { recording } => format!("fails on recording {}", recording + 1),
     }
@@ -150,5 +154,5 @@ pub fn rate_at_most(rate: f64) -> String {
 /// A count with its noun: "1 make", "2 makes".
 #[must_use]
 pub fn count(number: usize, noun: &str) -> String {
-    if number == 1 { format!("1 {noun}") } else { format!("{number} {noun}s") }
+    counted(number as u64, noun)
 }

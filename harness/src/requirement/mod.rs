@@ -15,11 +15,19 @@
 //! path = "gate.vcd"         # relative to this file
 //! channel = "top.gate"
 //! taken_at = "contact"      # with a [network] between contact and pin: contact, pin
+//! resolution = "1 us"       # the recorder's own sample period, which a VCD does not show
+//! unknown = "hold"          # values that are neither 0 nor 1: hold, open, closed, refuse
+//! gap = "8 ms"              # the rest that ends a burst; found without it
 //! sha256 = "9f86d081884c7d659a2feaa0c55ad015a3bf4f1b2b0b822cd15d6c15b0f00a08"
 //!
 //! [[recording]]
 //! path = "gate.csv"
 //! thresholds = { low = "0.8 V", high = "2.0 V" }
+//! closed = "high"           # where this recording differs from the contact
+//! time_column = "Time"      # by name or number; found without it
+//! time_unit = "ms"          # s, ms, us, ns, ps, fs; or sample_period = "10 us" for numbered samples
+//! delimiter = "semicolon"   # comma, semicolon, tab, space; found without it
+//! decimal_mark = "comma"    # point, comma; found without it
 //!
 //! [required]
 //! latency = { make = "20 ms", break = "30 ms" }   # or one for both: "20 ms"
@@ -69,6 +77,7 @@ mod network_resolve;
 mod options;
 mod pair;
 pub(crate) mod read;
+mod reading;
 mod resolve;
 pub(crate) mod section;
 mod source;
@@ -92,7 +101,8 @@ pub use network_options::NetworkOptions;
 pub use options::RequirementOptions;
 pub use pair::{ForChanges, ForPositions};
 pub use read::{parse, read};
-pub use resolve::{Measured, Resolved, ResolvedRow, allowed_samples};
+pub use reading::Reading;
+pub use resolve::{Measured, Resolved, ResolvedRow, Seen, allowed_samples};
 pub use source::{Origin, Sourced};
 pub use words::{ContactKind, DiodeKind, Level, Quickened, Role, TakenAt, Word};
 
@@ -148,6 +158,8 @@ pub struct Recording {
     pub closed: Option<Sourced<Level>>,
     /// Where it was taken, where a network stands between the contact and the pin.
     pub taken_at: Option<Sourced<TakenAt>>,
+    /// How the file is read, where it does not say it itself.
+    pub reading: Reading,
     /// The SHA-256 of the file (FIPS 180-4), in hexadecimal, that nobody may change unnoticed.
     pub sha256: Option<Sourced<String>>,
 }

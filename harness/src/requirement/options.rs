@@ -8,7 +8,8 @@ use debounce_core::{PerChange, PerPosition};
 use super::check::check;
 use super::pair::{ForChanges, ForPositions};
 use super::{
-    ContactKind, Level, Origin, Recording, Requirement, Role, Sourced, TakenAt, Thresholds, TickChoice, read,
+    ContactKind, Level, Origin, Reading, Recording, Requirement, Role, Sourced, TakenAt, Thresholds,
+    TickChoice, read,
 };
 use crate::problem::{Problem, Problems};
 use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time, Voltage};
@@ -207,6 +208,7 @@ impl RequirementOptions {
                 thresholds: None,
                 closed: None,
                 taken_at: None,
+                reading: Reading::default(),
                 sha256: None,
             };
             requirement.recordings = paths.iter().map(|path| recording(path)).collect();

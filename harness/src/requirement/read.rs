@@ -12,7 +12,7 @@ use super::check::check;
 use super::network;
 use super::section::{Reader, Section};
 use super::{
-    Budget, Clock, Contact, Figures, Level, Recording, Requirement, Sourced, Thresholds, TickChoice,
+    Budget, Clock, Contact, Figures, Level, Reading, Recording, Requirement, Sourced, Thresholds, TickChoice,
 };
 use super::{firmware, folder_of};
 use crate::problem::{Problem, Problems, SourceText, plain_reason};
@@ -171,6 +171,7 @@ fn recording(reader: &mut Reader, mut section: Section<'_>) -> Option<Recording>
     let closed: Option<Sourced<Level>> = reader.word(&mut section, "closed");
     let taken_at = reader.word(&mut section, "taken_at");
     let thresholds = thresholds(reader, &mut section);
+    let reading = Reading::read(reader, &mut section);
     let sha256 = sha256(reader, &mut section);
     if has_path.is_none() {
         // Point at something of this recording, else at the end of the file.
@@ -180,7 +181,7 @@ fn recording(reader: &mut Reader, mut section: Section<'_>) -> Option<Recording>
     reader.finish(section);
     let folder = folder_of(&reader.source);
     let path: Sourced<PathBuf> = path?.map(|path| folder.join(path));
-    Some(Recording { path, channel, thresholds, closed, taken_at, sha256 })
+    Some(Recording { path, channel, thresholds, closed, taken_at, reading, sha256 })
 }
 
 fn sha256(reader: &mut Reader, section: &mut Section<'_>) -> Option<Sourced<String>> {

@@ -4,6 +4,7 @@ use debounce_core::{PerChange, PerPosition, TickClock};
 
 use super::check;
 use super::{ContactKind, Figures, InFront, Level, Origin, Requirement, Role, Sourced, TickChoice};
+use crate::characterise::tolerance;
 use crate::envelope::PhysicalEnvelope;
 use crate::problem::{Problem, Problems};
 use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time};
@@ -14,11 +15,39 @@ pub struct Measured {
     /// Longest bounce after each change.
     pub bounce: PerChange<Option<Time>>,
     /// Widest disturbance begun in each position.
-    pub disturbance: PerPosition<Option<Time>>,
+    pub disturbance: PerPosition<Option<Seen>>,
     /// Shortest time between two disturbances.
-    pub quiet: Option<Time>,
+    pub quiet: Option<Seen>,
     /// Shortest time in each position.
-    pub shortest: PerPosition<Option<Time>>,
+    pub shortest: PerPosition<Option<Seen>>,
+}
+
+/// The extreme of something that recordings show, and how often they show it.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+pub struct Seen {
+    /// The longest or the shortest, on the safe side and with those in doubt.
+    pub time: Time,
+    /// How many were recorded without doubt whether they are one.
+    pub count: u64,
+}
+
+/// What is taken where recordings say nothing or too little.
+struct Usual {
+    time: Time,
+    why: &'static str,
+    /// The same, where too few were recorded to claim anything better.
+    few: &'static str,
+}
+
+/// The usual time of a figure, with the same source for both cases.
+macro_rules! usual {
+    ($ms:literal, $why:literal) => {
+        Usual {
+            time: Time::from_ms($ms),
+            why: $why,
+            few: concat!($why, "; too few were recorded to claim anything better"),
+        }
+    };
 }
 
 /// A requirement in which every value is known, together with where it came from.
@@ -68,10 +97,11 @@ pub struct ResolvedRow {
 }
 
 const HAND: &str = "the longest delay that a person feels as immediate (from memory)";
-const OPERATION: &str = "a quick press of a button by hand (common practice)";
+const OPERATION: Usual = usual!(70, "a quick press of a button by hand (common practice)");
 const BOUNCE: &str = "the bounce that data sheets of small tactile switches allow (5 to 10 ms)";
-const DISTURBANCE: &str = "one burst of fast transients at 100 kHz, 0.75 ms (IEC 61000-4-4), rounded up";
-const QUIET: &str = "a disturbance at each half-cycle of 50 Hz mains (our choice)";
+const DISTURBANCE: Usual =
+    usual!(1, "one burst of fast transients at 100 kHz, 0.75 ms (IEC 61000-4-4), rounded up");
+const QUIET: Usual = usual!(9, "a disturbance at each half-cycle of 50 Hz mains (our choice)");
 const CALM: &str = "disturbances know nothing of the contact (the cautious case)";
 const OURS: &str = "our choice";
 const TOLERANCE: &str = "a calibrated on-chip oscillator (common practice)";
@@ -79,6 +109,9 @@ const TICKS: &str = "usual timer periods (our choice)";
 
 impl Requirement {
     /// Fills in every value that was not given: from `measured` with the margin added, else from a default.
+    ///
+    /// A width, a quiet or a shortest time of which too few were recorded for the coverage and the confidence asked for
+    /// counts only where it is worse than the default: an extreme that nobody waited for is no claim.
     ///
     /// # Errors
     /// Where a value that was filled in contradicts another.
@@ -116,30 +149,44 @@ impl Requirement {
                 None => Sourced::new(default, Origin::Default(why)),
             })
         };
-        let (given, ms, up, down) = (&self.required, Time::from_ms, longer, shorter);
+        let confidence = or_default(&self.confidence, Share::from_percent(95), OURS);
+        let coverage = or_default(&self.coverage, Share::from_percent(95), OURS);
+        let needed = needed(coverage.value, confidence.value);
+        let supported =
+            |given: Option<Sourced<Time>>, seen: Option<(Time, u64)>, usual: &Usual, safer: Safer| {
+                given.unwrap_or_else(|| match seen {
+                    None => Sourced::new(usual.time, Origin::Default(usual.why)),
+                    Some((time, count)) if count >= needed || safer(time, usual.time) == time => {
+                        Sourced::new(time, Origin::Measured)
+                    }
+                    Some(_) => Sourced::new(usual.time, Origin::Default(usual.few)),
+                })
+            };
+        let wide = |given, seen: Option<Seen>| {
+            supported(given, seen.map(|seen| (longer(seen.time), seen.count)), &DISTURBANCE, Time::max)
+        };
+        let short = |given, seen: Option<Seen>, usual: &Usual| {
+            supported(given, seen.map(|seen| (shorter(seen.time), seen.count)), usual, Time::min)
+        };
+        let (given, ms, up) = (&self.required, Time::from_ms, longer);
         let required = Figures {
             latency: PerChange {
                 make: figure(given.latency.make, None, ms(100), HAND),
                 break_: figure(given.latency.break_, None, ms(100), HAND),
             },
             shortest: PerPosition {
-                open: figure(given.shortest.open, measured.shortest.open.map(down), ms(70), OPERATION),
-                closed: figure(given.shortest.closed, measured.shortest.closed.map(down), ms(70), OPERATION),
+                open: short(given.shortest.open, measured.shortest.open, &OPERATION),
+                closed: short(given.shortest.closed, measured.shortest.closed, &OPERATION),
             },
             bounce: PerChange {
                 make: figure(given.bounce.make, measured.bounce.make.map(up), ms(10), BOUNCE),
                 break_: figure(given.bounce.break_, measured.bounce.break_.map(up), ms(10), BOUNCE),
             },
             disturbance: PerPosition {
-                open: figure(given.disturbance.open, measured.disturbance.open.map(up), ms(1), DISTURBANCE),
-                closed: figure(
-                    given.disturbance.closed,
-                    measured.disturbance.closed.map(up),
-                    ms(1),
-                    DISTURBANCE,
-                ),
+                open: wide(given.disturbance.open, measured.disturbance.open),
+                closed: wide(given.disturbance.closed, measured.disturbance.closed),
             },
-            quiet: figure(given.quiet, measured.quiet.map(down), ms(9), QUIET),
+            quiet: short(given.quiet, measured.quiet, &QUIET),
             calm: figure(given.calm, None, Time::ZERO, CALM),
         };
         let ticks = self.tick_periods();
@@ -154,8 +201,8 @@ impl Requirement {
                 "a contact to ground with a pull-up (common practice)",
             ),
             required,
-            confidence: or_default(&self.confidence, Share::from_percent(95), OURS),
-            coverage: or_default(&self.coverage, Share::from_percent(95), OURS),
+            confidence,
+            coverage,
             margin,
             ticks,
             tolerance: or_default(&self.clock.tolerance, Share::from_percent(2), TOLERANCE),
@@ -235,6 +282,17 @@ impl TickChoice {
             }
         }
     }
+}
+
+/// Of two times the one that promises less.
+type Safer = fn(Time, Time) -> Time;
+
+/// How many must be recorded before their extreme may be claimed to cover `coverage` with `confidence`; what is no
+/// share cannot be claimed by any number.
+fn needed(coverage: Share, confidence: Share) -> u64 {
+    let share = |share: Share| tolerance::Share::try_new(share.fraction());
+    let (Ok(coverage), Ok(confidence)) = (share(coverage), share(confidence)) else { return u64::MAX };
+    tolerance::operations_needed(1, coverage, confidence).unwrap_or(u64::MAX)
 }
 
 fn or_default<T: Clone>(given: &Option<Sourced<T>>, default: T, why: &'static str) -> Sourced<T> {

@@ -1,9 +1,10 @@
 //! Requirement files, good and bad, and the options that stand over them.
 
-use debounce_core::{Envelope, PerChange};
+use debounce_core::{Envelope, PerChange, PerPosition};
 
 use super::*;
 use crate::problem::Problems;
+use crate::trace::{DecimalMark, Delimiter, TimeUnit, Unknown};
 
 /// The file in the documentation of this module.
 const FULL: &str = include_str!("mod.rs");
@@ -324,7 +325,7 @@ fn resolved_requirement_says_where_each_value_is_from() {
     let requirement = accepts("[required]\nlatency = \"20 ms\"\nmargin = \"50 %\"");
     let measured = Measured {
         bounce: PerChange { make: Some(Time::from_ms(4)), break_: None },
-        quiet: Some(Time::from_ms(9)),
+        quiet: Some(Seen { time: Time::from_ms(9), count: 59 }),
         ..Measured::default()
     };
     let resolved = requirement.resolve(&measured).unwrap();
@@ -335,6 +336,106 @@ fn resolved_requirement_says_where_each_value_is_from() {
     // What must not be overestimated shrinks: 9 ms / 1.5.
     assert_eq!(resolved.required.quiet.value, Time::from_ms(6));
     assert!(resolved.rows().iter().any(|row| row.key == "required.bounce.make" && row.text == "6 ms"));
+}
+
+/// 59 is the published size of a sample whose extreme covers 95 % with 95 % confidence (S. S. Wilks, 1941), 29 that for
+/// 90 % with 95 %.
+#[test]
+fn resolved_extreme_of_too_few_counts_only_where_it_is_worse() {
+    let seen = |ms, count| Some(Seen { time: Time::from_ms(ms), count });
+    let resolve = |text: &str, count| {
+        let measured = Measured {
+            disturbance: PerPosition {
+                open: seen(4, count),
+                closed: Some(Seen { time: Time::from_us(80), count }),
+            },
+            quiet: seen(11_250, count),
+            shortest: PerPosition { open: seen(500, count), closed: seen(50, count) },
+            ..Measured::default()
+        };
+        let required = accepts(text).resolve(&measured).unwrap().required;
+        let shortest = [required.shortest.open, required.shortest.closed];
+        let wide = [required.disturbance.open, required.disturbance.closed];
+        [shortest[0], shortest[1], wide[0], wide[1], required.quiet]
+            .map(|it| (it.value.ns() / 1_000, it.origin.word()))
+    };
+    let few = [
+        (70_000, "default"),
+        (40_000, "measured"),
+        (5_000, "measured"),
+        (1_000, "default"),
+        (9_000, "default"),
+    ];
+    let enough = [400_000, 40_000, 5_000, 100, 9_000_000].map(|us| (us, "measured"));
+    let plain = "[required]\nmargin = \"25 %\"";
+    for count in [0, 1, 58] {
+        assert_eq!(resolve(plain, count), few, "{count}");
+    }
+    assert_eq!(resolve(plain, 59), enough);
+    let less = "[required]\nmargin = \"25 %\"\ncoverage = \"90 %\"";
+    assert_eq!((resolve(less, 28), resolve(less, 29)), (few, enough));
+    let told = accepts(plain).resolve(&Measured { quiet: seen(500, 3), ..Measured::default() }).unwrap();
+    assert!(
+        told.required.quiet.origin.to_string().ends_with("too few were recorded to claim anything better")
+    );
+    let stated = accepts("[required]\nquiet = \"500 ms\"")
+        .resolve(&Measured { quiet: seen(5, 3), ..Measured::default() });
+    assert_eq!(
+        stated.unwrap().required.quiet.value,
+        Time::from_ms(500),
+        "what is stated stands over everything"
+    );
+}
+
+#[test]
+fn recording_says_how_it_is_read() {
+    let text = "[[recording]]\npath = \"a.csv\"\nresolution = \"2 us\"\ntime_unit = \"ms\"\ntime_column = \"t\"\n\
+                delimiter = \"semicolon\"\ndecimal_mark = \"comma\"\nunknown = \"refuse\"\ngap = \"8 ms\"\n\
+                [[recording]]\npath = \"b.csv\"\nsample_period = \"10 us\"";
+    let recordings = accepts(text).recordings;
+    let options = recordings[0].reading.options();
+    assert_eq!((options.resolution_ns, options.time_unit), (Some(2_000), Some(TimeUnit::Milliseconds)));
+    assert_eq!(
+        (options.delimiter, options.decimal_mark),
+        (Some(Delimiter::Semicolon), Some(DecimalMark::Comma))
+    );
+    assert_eq!((options.unknown, options.time_column.as_deref()), (Unknown::Refuse, Some("t")));
+    assert_eq!(recordings[0].reading.gap.unwrap().value, Time::from_ms(8));
+    assert_eq!(recordings[1].reading.options().sample_period_ns, Some(10_000));
+    assert_eq!(recordings[1].reading.options().unknown, Unknown::Hold);
+}
+
+#[test]
+fn recording_read_in_a_way_that_does_not_exist_is_refused_with_line_and_key() {
+    let refused = |key: &str| {
+        let source = SourceText::new("contact.toml", format!("[[recording]]\npath = \"a.csv\"\n{key}\n"));
+        parse(source).expect_err("bad").to_string()
+    };
+    for (key, told) in [
+        ("resolution = 5", "contact.toml:3:14: \"5\" has no unit"),
+        (
+            "resolution = \"0 us\"",
+            "contact.toml:3:14: a resolution of 0 is no time; write resolution = \"1 us\"",
+        ),
+        ("gap = \"soon\"", "contact.toml:3:7: "),
+        ("time_unit = \"hours\"", "contact.toml:3:13: \"hours\" is not a unit of time; write \"s\", \"ms\""),
+        ("delimiter = \";\"", "contact.toml:3:13: \";\" is not a delimiter; write \"comma\", \"semicolon\""),
+        (
+            "unknown = \"hol\"",
+            "contact.toml:3:11: \"hol\" is not a way to take unknown values; write \"hold\"",
+        ),
+        (
+            "resolutoin = \"1 us\"",
+            "contact.toml:3:1: unknown key \"resolutoin\" in [[recording]]; write resolution",
+        ),
+        (
+            "time_unit = \"s\"\nsample_period = \"1 us\"",
+            "contact.toml:3:13: times that are numbers of samples have no unit",
+        ),
+    ] {
+        let found = refused(key);
+        assert!(found.starts_with(told), "{key}: {found}");
+    }
 }
 
 #[test]

@@ -4,7 +4,7 @@ use std::fmt;
 
 use debounce_core::{Change, Position};
 
-use super::{Claims, Observed};
+use super::{Claims, Extreme, ExtremeOf, Observed};
 use crate::characterise::{GapOrigin, Independence, independence, resting};
 use crate::quantity::{Share, Time};
 use crate::report::words;
@@ -50,6 +50,15 @@ pub enum Caution {
         /// The wanted confidence.
         confidence: Share,
     },
+    /// Too few of something else for what it is taken as.
+    FewSeen {
+        /// What, as far as nobody stated it.
+        extremes: Vec<Extreme>,
+        /// The wanted coverage.
+        coverage: Share,
+        /// The wanted confidence.
+        confidence: Share,
+    },
     /// The bounces drift or depend on one another.
     NotIndependent {
         /// The recording, or all of them.
@@ -86,6 +95,7 @@ impl Caution {
                 found.push(Self::TooFew { change, operations, needed, coverage, confidence });
             }
         }
+        found.extend(Self::few_seen(claims));
         for change in [Change::Make, Change::Break] {
             let mut named: Vec<(String, Independence)> = observed
                 .iter()
@@ -103,6 +113,24 @@ impl Caution {
             }));
         }
         found
+    }
+
+    /// Times in a position apart from disturbances, for they are stated and recorded in different ways. What was not
+    /// recorded at all is no reason for doubt in a recording.
+    fn few_seen(claims: &Claims) -> Vec<Self> {
+        let is_stay = |extreme: &Extreme| matches!(extreme.of, ExtremeOf::Stay(_));
+        let (stays, disturbed): (Vec<Extreme>, Vec<Extreme>) =
+            claims.extremes.iter().partition(|e| is_stay(e));
+        let few = |extremes: Vec<Extreme>| {
+            let is_recorded = extremes.iter().any(|extreme| extreme.count > 0);
+            let unsupported: Vec<Extreme> = extremes.into_iter().filter(Extreme::is_unsupported).collect();
+            (is_recorded && !unsupported.is_empty()).then_some(Self::FewSeen {
+                extremes: unsupported,
+                coverage: claims.coverage,
+                confidence: claims.confidence,
+            })
+        };
+        [few(stays), few(disturbed)].into_iter().flatten().collect()
     }
 
     fn of_one(one: &Observed, resolved: &Resolved) -> Vec<Self> {
@@ -132,6 +160,21 @@ fn other(level: Level) -> &'static str {
         Level::Low => "high",
         Level::High => "low",
     }
+}
+
+/// The options that state these figures.
+fn options(extremes: &[Extreme]) -> String {
+    let mut names: Vec<&str> = extremes
+        .iter()
+        .map(|extreme| match extreme.of {
+            ExtremeOf::Disturbance(_) => "--disturbance",
+            ExtremeOf::Rest => "--quiet-time",
+            ExtremeOf::Stay(Position::Open) => "--shortest-open",
+            ExtremeOf::Stay(Position::Closed) => "--shortest-closed",
+        })
+        .collect();
+    names.dedup();
+    names.join(" and ")
 }
 
 impl fmt::Display for Caution {
@@ -165,6 +208,17 @@ impl fmt::Display for Caution {
                 words::change(*change),
                 needed - operations,
             ),
+            Self::FewSeen { extremes, coverage, confidence } => {
+                let needed = extremes.first().map_or(0, |extreme| extreme.needed);
+                let listed: Vec<String> = extremes.iter().map(ToString::to_string).collect();
+                write!(
+                    f,
+                    "too few to claim anything of {coverage} of all with {confidence} confidence, which takes {needed} \
+                     of each: {}; state what you know with {}, or record more",
+                    listed.join(", "),
+                    options(extremes)
+                )
+            }
             Self::NotIndependent { recording, change, found } => {
                 write!(f, "{recording}: the bounces of the {}s", words::change(*change))?;
                 if let Some(trend) = found.trend.filter(|t| t.p_value < independence::SIGNIFICANT) {

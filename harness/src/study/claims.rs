@@ -2,7 +2,7 @@
 
 use debounce_core::{Change, PerChange};
 
-use super::{Observed, pooled};
+use super::{Extreme, Observed, measured, pooled};
 use crate::characterise::tolerance::{self, ToleranceError};
 use crate::characterise::{Claim, Figures};
 use crate::quantity::Share;
@@ -21,6 +21,8 @@ pub struct Claims {
     pub bounce: PerChange<Option<Claim>>,
     /// What is taken for the bounce in the envelope.
     pub design: PerChange<DesignBounce>,
+    /// What stands behind the other figures: shortest times, widest disturbances, quiet.
+    pub extremes: Vec<Extreme>,
 }
 
 /// The bounce that the choice is made for, and what is claimed of it.
@@ -61,6 +63,7 @@ impl Claims {
             coverage: resolved.coverage.value,
             bounce,
             design,
+            extremes: Extreme::all(&measured(observed), resolved, coverage, confidence)?,
             pooled,
         })
     }

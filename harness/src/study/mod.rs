@@ -6,6 +6,7 @@
 
 mod caution;
 mod claims;
+mod extreme;
 mod observed;
 mod proof;
 
@@ -26,6 +27,7 @@ use crate::trace::{Trace, TraceError};
 
 pub use caution::Caution;
 pub use claims::{Claims, DesignBounce};
+pub use extreme::{Extreme, ExtremeOf};
 pub use observed::{Observed, measured, observe, pooled};
 pub use proof::Guarantees;
 

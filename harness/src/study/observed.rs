@@ -5,7 +5,7 @@ use debounce_core::{Change, PerChange, PerPosition, Position};
 use crate::characterise::{Figures, SegmentError, SegmentOptions, Segmentation, segment};
 use crate::network::Network;
 use crate::quantity::Time;
-use crate::requirement::{Level, Measured, Sourced, TakenAt};
+use crate::requirement::{Level, Measured, Seen, Sourced, TakenAt};
 use crate::trace::{Recording, Trace, TraceError};
 use crate::truth::TruthChange;
 
@@ -71,6 +71,10 @@ pub fn pooled(observed: &[Observed]) -> Figures {
     Figures::pooled(&counted.map(|one| &one.segmentation).collect::<Vec<_>>())
 }
 
+fn seen(ns: u64, count: usize) -> Seen {
+    Seen { time: Time::from_ns(ns), count: count as u64 }
+}
+
 /// What all recordings of the contact show together, each figure on the safe side.
 ///
 /// A network hides pulses and moves edges, so a recording taken behind it says nothing of the contact's own figures.
@@ -83,19 +87,23 @@ pub fn measured(observed: &[Observed]) -> Measured {
     // A recording without a disturbance does not show that there are none.
     let widest = |position: Position| {
         let widths = observed.iter().map(|one| one.figures.widest_glitch_ns(position));
-        widths.max().filter(|&width| width > 0).map(Time::from_ns)
+        let count = observed.iter().map(|one| one.figures.disturbances.of(position).count).sum();
+        widths.max().filter(|&width| width > 0).map(|width| seen(width, count))
     };
     let shortest = |position: Position| {
-        observed.iter().filter_map(|one| one.figures.shortest_dwell_ns(position)).min().map(Time::from_ns)
+        let count = observed.iter().map(|one| one.figures.dwell.of(position).count).sum();
+        let dwells = observed.iter().filter_map(|one| one.figures.shortest_dwell_ns(position));
+        dwells.min().map(|dwell| seen(dwell, count))
     };
     let quiet = observed
         .iter()
         .filter_map(|one| Some(one.figures.quiet_ns?.saturating_sub(one.figures.resolution_ns)))
         .min();
+    let rests = observed.iter().map(|one| one.figures.rests).sum();
     Measured {
         bounce: PerChange { make: longest(Change::Make), break_: longest(Change::Break) },
         disturbance: PerPosition { open: widest(Position::Open), closed: widest(Position::Closed) },
-        quiet: quiet.map(Time::from_ns),
+        quiet: quiet.map(|quiet| seen(quiet, rests)),
         shortest: PerPosition { open: shortest(Position::Open), closed: shortest(Position::Closed) },
     }
 }

@@ -5,7 +5,7 @@ use std::fmt;
 use debounce_core::Position;
 
 use super::{Trace, Unknown};
-use crate::quantity::Time;
+use crate::quantity::{Time, counted};
 
 /// One channel of a file, as a trace.
 #[derive(Clone, PartialEq, Eq, Debug)]
@@ -87,7 +87,8 @@ impl fmt::Display for Note {
             Self::RoundedTimes => f.write_str("times finer than 1 ns were rounded down to whole nanoseconds"),
             Self::MergedEdges { edges } => write!(
                 f,
-                "{edges} edges shared a nanosecond with another and were merged (the last level in it counts)"
+                "merged {} that shared a nanosecond with another (the last level in it counts)",
+                counted(edges, "edge")
             ),
             Self::UnknownValues { stretches, first_ns, policy } => {
                 let made = match policy {
@@ -96,7 +97,8 @@ impl fmt::Display for Note {
                     Unknown::Closed => "taken as closed",
                     Unknown::Refuse => "refused",
                 };
-                write!(f, "{stretches} stretches of unknown values, the first at {}: {made}", exact(first_ns))
+                let places = counted(stretches, "place");
+                write!(f, "unknown values in {places}, the first at {}: {made}", exact(first_ns))
             }
             Self::StartAssumed { until_ns, position } => {
                 let position = match position {
@@ -109,7 +111,8 @@ impl fmt::Display for Note {
             Self::RunsForgotten { runs } => {
                 write!(
                     f,
-                    "{runs} runs before the first were dropped by the recorder, which keeps the last ones"
+                    "the recorder keeps the last runs, and dropped {} before the first",
+                    counted(runs, "run")
                 )
             }
             Self::RecorderStopped => {
@@ -117,9 +120,12 @@ impl fmt::Display for Note {
             }
             Self::Clipped { readings } => write!(
                 f,
-                "{readings} readings are beyond the recorder's range; they count as beyond the threshold on their side"
+                "{} beyond the recorder's range, taken as beyond the threshold on the same side",
+                counted(readings, "reading")
             ),
-            Self::PreambleSkipped { lines } => write!(f, "{lines} lines before the data were skipped"),
+            Self::PreambleSkipped { lines } => {
+                write!(f, "skipped {} before the data", counted(lines, "line"))
+            }
         }
     }
 }

@@ -79,18 +79,14 @@ pub(super) fn disturbances_in(recordings: &[&Segmentation], position: Position) 
     }
 }
 
-/// The shortest rest between two disturbances, doubtful ones included. With a single one there is no such rest;
-/// then the shorter of the stretches from it to the ends of the recording is what was seen.
+/// The shortest rest between two disturbances, doubtful ones included. A single one shows none: the stretches from it
+/// to the ends of the recording say nothing of how near the next one comes.
 pub(super) fn quiet(segmentation: &Segmentation) -> Option<u64> {
     let mut all: Vec<(u64, u64)> =
         segmentation.disturbances.iter().map(|d| (d.burst.first_ns, d.burst.last_ns)).collect();
     all.extend(segmentation.operations.iter().filter_map(disturbance_in_doubt).map(|d| (d.1, d.2)));
     all.sort_unstable();
-    match all.as_slice() {
-        [] => None,
-        [(first, last)] => Some((first - segmentation.recorded_ns.0).min(segmentation.recorded_ns.1 - last)),
-        several => several.windows(2).map(|pair| pair[1].0 - pair[0].1).min(),
-    }
+    all.windows(2).map(|pair| pair[1].0 - pair[0].1).min()
 }
 
 pub(super) fn calm(segmentation: &Segmentation) -> Option<u64> {
@@ -117,6 +113,7 @@ pub(super) fn dwell(recordings: &[&Segmentation], position: Position) -> DwellFi
         (found.doubt == Doubt::DisturbanceOrOperation).then_some(found.run_ns)
     });
     DwellFigures {
+        count: pairs().count(),
         shortest_ns: pairs().map(|pair| pair[1].burst.first_ns - pair[0].burst.first_ns).min(),
         shortest_settled_ns: pairs().map(|pair| pair[1].burst.first_ns - pair[0].burst.last_ns).min(),
         // A burst that may be several operations puts both positions in doubt.

@@ -32,9 +32,19 @@ fn figures_of_plain_operations_are_exact() {
     assert_eq!(found.disturbances.closed.width_ns.map(|w| w.max), Some(70 * US));
     assert_eq!(found.quiet_ns, Some(900_000 * US - 400_040 * US));
     assert_eq!(found.calm_ns, Some(900_000 * US - 800_100 * US));
+    assert_eq!((found.rests, found.dwell.open.count, found.dwell.closed.count), (1, 2, 3));
     assert_eq!(found.dwell.open.shortest_ns, Some(150 * MS));
     assert_eq!(found.dwell.closed.shortest_ns, Some(150 * MS));
     assert_eq!(found.dwell.closed.shortest_settled_ns, Some(150 * MS));
+}
+
+/// However long the recording goes on before and after it, one disturbance says nothing of how near the next comes.
+#[test]
+fn figures_of_a_single_disturbance_show_no_quiet() {
+    let found = figures(&PLAIN[..10], 0);
+    assert_eq!((found.disturbances.open.count, found.disturbances.closed.count), (1, 0));
+    assert_eq!((found.quiet_ns, found.rests, found.spacing_ns), (None, 0, None));
+    assert_eq!(found.envelope(&Allowance::NONE).unwrap().quiet_ns, 0);
 }
 
 #[test]

@@ -139,7 +139,7 @@ fn rows(one: &Observed) -> Vec<Vec<Cell>> {
         add(format!("widest disturbance while {word}"), of.width_ns.map(|spread| words::about(spread.max)));
         add(format!("shortest time {word}"), figures.dwell.of(position).shortest_ns.map(words::about));
     }
-    add("shortest quiet beside a disturbance".to_owned(), figures.quiet_ns.map(words::about));
+    add("shortest quiet between two disturbances".to_owned(), figures.quiet_ns.map(words::about));
     add("shortest calm between bounce and disturbance".to_owned(), figures.calm_ns.map(words::about));
     add("rest that ends a burst".to_owned(), Some(words::about(one.segmentation.gap.ns)));
     add("sample period of the recorder".to_owned(), Some(words::about(figures.resolution_ns)));

@@ -208,7 +208,24 @@ fn header_above(sample: &Sample<'_>, first: usize, time_column: usize) -> (Vec<C
     if last_cells.len() < 2 {
         return Default::default();
     }
-    let units: Option<Vec<_>> = last_cells.iter().map(|cell| unit_cell(cell)).collect();
+    // Columns that the rows do not have hold something about the whole record, such as its start.
+    let row_cells = sample.cells(first);
+    let width = row_cells.iter().rposition(|cell| !cell.is_empty()).map_or(0, |last| last + 1);
+    let (own, beyond) = last_cells.split_at(width.min(last_cells.len()));
+    let holds_values = beyond.iter().any(|cell| number::is_number(cell, sample.mark));
+    if holds_values
+        && let Some(names_line) = above(last).filter(|&line| cells(line).len() == last_cells.len())
+    {
+        let is_name = |cell: &&[u8]| !cell.is_empty() && !number::is_number(cell, sample.mark);
+        if cells(names_line).iter().take(width).all(is_name) {
+            let mut columns: Vec<Column> = names(names_line).into_iter().take(width).collect();
+            for (column, cell) in columns.iter_mut().zip(own) {
+                column.unit = unit_cell(cell).flatten().or(column.unit);
+            }
+            return (columns, vec![names_line, last]);
+        }
+    }
+    let units: Option<Vec<_>> = own.iter().map(|cell| unit_cell(cell)).collect();
     if let Some(units) = units.filter(|units| units.iter().any(Option::is_some)) {
         let names_line = above(last).filter(|&line| cells(line).len() > time_column);
         let mut columns = names_line.map_or_else(Vec::new, names);

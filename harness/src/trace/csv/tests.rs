@@ -47,6 +47,23 @@ fn csv_changes_with_header_are_read() {
     assert_eq!(recording.notes, []);
 }
 
+/// Oscilloscopes put the start and the step of the record into columns that only the header has.
+#[test]
+fn csv_header_with_more_columns_than_the_data_keeps_the_name_of_the_channel() {
+    let rows = "0.0,0\n0.1,0\n0.2,3\n0.3,3\n";
+    for header in
+        ["Time,CH1,Start,Step\ns,V,0.0,0.1\n", "Time,CH1,Start,Step\ns,V,,\n", "Time (s),CH1,Start\n"]
+    {
+        let ms = 100 * MS;
+        let recording = check(&[header, rows].concat(), &with_thresholds(None), Open, &[2 * ms], 4 * ms);
+        assert_eq!((recording.channel.as_str(), recording.notes), ("CH1", vec![]), "{header}");
+    }
+    let numbered = "X,CHAN1,Start,Step\nSequence,Volt,-6e-4,2e-4\n0,3\n1,3\n2,0\n3,0\n";
+    let given = ReadOptions { sample_period_ns: Some(MS), ..with_thresholds(None) };
+    let recording = check(numbered, &given, Closed, &[2 * MS], 4 * MS);
+    assert_eq!((recording.channel.as_str(), recording.notes), ("CHAN1", vec![]));
+}
+
 #[test]
 fn csv_without_header_fractions_are_seconds() {
     let recording = check("0.000,1\n0.005,0\n0.020,1", &plain(), Closed, &[5 * MS, 20 * MS], 20 * MS);
