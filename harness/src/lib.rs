@@ -10,6 +10,7 @@ pub mod cli;
 pub mod clock_range;
 pub mod conformance;
 pub mod demo;
+mod digest;
 pub mod emit;
 pub mod envelope;
 pub mod generate;

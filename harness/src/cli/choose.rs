@@ -89,8 +89,8 @@ impl ChooseArguments {
         let clock = clock_view(&study, activity)?;
         let mut written = Vec::new();
         if let Some(report) = report {
-            let origin = html::Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
-            written.push(report.write(&html::study(&study, false, &origin))?);
+            let html = |origin: &_| html::study(&study, &clock.range, false, origin);
+            written.push(report.write(session, files, html)?);
         }
         Ok(Box::new(Chosen { study, list: self.list, clock, plot: self.plot, written }))
     }

@@ -9,6 +9,7 @@ use serde_json::{Value, json};
 
 use super::lines::{Lines, strong};
 use super::logic_name::{LogicName, NamedLogic, OutputOf};
+use super::report::written;
 use super::{Answer, Failure, Outcome, OutputFolder, Session};
 use crate::machine::{Apart, compare};
 use crate::report::apart::{ApartDiagram, write_apart};
@@ -108,10 +109,7 @@ impl Answer for Compared {
         let [first, second] = apart.edges.map(reports);
         lines.more(&format!("then {} reports {first}, and {} reports {second}", one.name, other.name))?;
         lines.plain(&format!("\n{}", ApartDiagram { apart, machines: [&one.machine, &other.machine] }))?;
-        for path in &self.written {
-            lines.plain(&format!("written: {}\n", path.display()))?;
-        }
-        Ok(())
+        written(&mut lines, &self.written)
     }
 
     fn to_json(&self) -> Value {

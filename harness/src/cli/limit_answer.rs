@@ -8,6 +8,7 @@ use serde_json::{Value, json};
 
 use super::envelope_input::{in_ticks, latency};
 use super::lines::{Lines, grouped, strong};
+use super::report::written;
 use super::{Answer, Outcome};
 use crate::law_text::LawParameters;
 use crate::machine::{MachineTable, Reading, terminal_diagram, write_kiss2};
@@ -83,10 +84,7 @@ impl Answer for LimitFound {
             }
             Known::Limit(reached) => self.limit(&mut lines, reached)?,
         }
-        for path in &self.written {
-            lines.plain(&format!("written: {}\n", path.display()))?;
-        }
-        Ok(())
+        written(&mut lines, &self.written)
     }
 
     fn to_json(&self) -> Value {

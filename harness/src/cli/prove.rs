@@ -18,7 +18,7 @@ use crate::choose::known_limit;
 use crate::problem::Problem;
 use crate::prove::{Beyond, Contract, Effort, Limits, closed_form_limit, prove_contract};
 use crate::quantity::TickPeriod;
-use crate::report::html::{self, Origin};
+use crate::report::html;
 use crate::report::witness::write_witness;
 
 /// Proves or refutes one law in an envelope.
@@ -130,7 +130,6 @@ impl ProveArguments {
             written.extend(files.commit()?);
         }
         if let Some(report) = report {
-            let origin = Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
             let proved = html::Proved {
                 name: &logic.name,
                 machine: &logic.machine,
@@ -141,7 +140,7 @@ impl ProveArguments {
                 tick,
                 caution,
             };
-            written.push(report.write(&html::proof(&proved, &origin))?);
+            written.push(report.write(session, files, |origin| html::proof(&proved, origin))?);
         }
         Ok(Box::new(Proved { logic, envelope, tick, proof, beyond, limit, written, again }))
     }

@@ -10,7 +10,6 @@ use serde_json::{Value, json};
 use super::input::Input;
 use super::lines::Lines;
 use super::logic_name::{LogicName, OutputOf, Runnable};
-use super::recorded::failures;
 use super::recordings::RequirementInput;
 use super::{Answer, Failure, Outcome, Session};
 use crate::characterise::Burst;
@@ -22,7 +21,7 @@ use crate::quantity::Share;
 use crate::quantity::TickPeriod;
 use crate::replay::{ClockMeasurement, Draws, Failures, PreparedClock};
 use crate::report::timing::TimingDiagram;
-use crate::report::{characterised, words};
+use crate::report::{characterised, claim_words, words};
 use crate::sample::SampleClock;
 use crate::study::{Observed, measured};
 use crate::truth::check_truth;
@@ -233,7 +232,7 @@ impl Replayed {
                 words::count(places, "place")
             ))?;
         }
-        if let Some(text) = failures(&run.failures, self.confidence) {
+        if let Some(text) = claim_words::failures(&run.failures, self.confidence) {
             lines.item("Rate", &text)?;
         }
         if let Some(drawn) = &run.measured.drawn {

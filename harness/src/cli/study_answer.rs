@@ -9,12 +9,13 @@ use serde_json::{Value, json};
 
 use super::choose::network;
 use super::lines::{Lines, grouped, strong};
-use super::recorded::{claims, failures, recorded};
+use super::recorded::{claims, recorded};
+use super::report::written;
 use super::{Answer, Outcome};
 use crate::choose::{Candidate, Judgement};
 use crate::prove::Recovery;
 use crate::quantity::TickPeriod;
-use crate::report::{json, words};
+use crate::report::{claim_words, json, words};
 use crate::study::{Guarantees, Study};
 
 /// A finished study and the files it wrote.
@@ -111,7 +112,7 @@ impl StudyAnswer {
                 ),
             )?;
         }
-        if let Some(text) = self.study.failures().and_then(|all| failures(&all, self.study.claims.confidence))
+        if let Some(text) = self.study.failures().and_then(|all| claim_words::failures(&all, self.study.claims.confidence))
         {
             lines.more(&text)?;
         }
@@ -168,8 +169,7 @@ impl StudyAnswer {
                 &format!("{again} writes the report, the Rust module and the results as JSON"),
             )?;
         } else {
-            let files: Vec<String> = self.written.iter().map(|path| path.display().to_string()).collect();
-            lines.item("Written", &files.join(", "))?;
+            written(lines, &self.written)?;
             lines.item("Next", "add the .rs file to the firmware beside debounce-core and tick it; its build checks the choice again")?;
         }
         if self.demo {

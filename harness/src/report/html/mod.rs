@@ -10,6 +10,7 @@ mod answer;
 mod bounce;
 mod caution;
 mod characterised;
+mod claims;
 mod conformance;
 mod cost;
 mod distribution;

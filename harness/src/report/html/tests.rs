@@ -4,9 +4,10 @@ use std::collections::BTreeSet;
 
 use debounce_core::Envelope;
 
-use super::{Characterised, Origin, Proved, characterised, proof, study};
+use super::{Characterised, Origin, Proved, characterised, proof};
 use crate::characterise::SegmentOptions;
 use crate::choose::Preference;
+use crate::clock_range::{ClockQuestion, clock_range};
 use crate::demo;
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
@@ -62,6 +63,10 @@ fn proved(law: &str, envelope: Envelope) -> String {
     )
 }
 
+fn page(study: &Study, invented: bool) -> String {
+    super::study(study, &clock_range(&ClockQuestion::of(&study.resolved)), invented, &origin())
+}
+
 fn origin() -> Origin {
     Origin { command: "harness study --output 'a & b'".to_owned(), ..Origin::default() }
 }
@@ -77,15 +82,11 @@ fn reports() -> Vec<(&'static str, String)> {
     let warnings = Caution::all(observed, &resolved, &claims);
     let found = Characterised { observed, resolved: &resolved, claims: &claims, warnings: &warnings };
     vec![
-        ("study", study(&studied(SAME, observed.to_vec()), true, &origin())),
-        ("choice", study(&studied(SAME, Vec::new()), false, &origin())),
+        ("study", page(&studied(SAME, observed.to_vec()), true)),
+        ("choice", page(&studied(SAME, Vec::new()), false)),
         (
             "nothing holds",
-            study(
-                &studied(("latency = \"50 ms\"", "latency = \"3 ms\""), observed.to_vec()),
-                true,
-                &origin(),
-            ),
+            page(&studied(("latency = \"50 ms\"", "latency = \"3 ms\""), observed.to_vec()), true),
         ),
         ("characterised", characterised(&found, &origin())),
         ("proved", proved("integrator 5", Envelope::clean(20, 20).bounce(5, 3).glitch(1, 1).quiet(10))),
@@ -163,7 +164,7 @@ fn pictures_have_words_for_those_who_do_not_see_them() {
 
 #[test]
 fn report_of_a_study_has_every_section_its_data_allow() {
-    let html = study(&studied(SAME, vec![recorded()]), true, &origin());
+    let html = page(&studied(SAME, vec![recorded()]), true);
     let sections = [
         "answer",
         "envelope",
@@ -171,6 +172,7 @@ fn report_of_a_study_has_every_section_its_data_allow() {
         "conformance",
         "overlay",
         "bounce",
+        "claims",
         "latency",
         "plane",
         "ticks",
@@ -185,8 +187,8 @@ fn report_of_a_study_has_every_section_its_data_allow() {
         html.split("<section id=\"").skip(1).filter_map(|rest| rest.split('"').next()).collect();
     assert_eq!(found, sections);
     // Without a recording there is nothing to show of one.
-    let html = study(&studied(SAME, Vec::new()), false, &origin());
-    for gone in ["recorded", "conformance", "overlay", "bounce", "latency"] {
+    let html = page(&studied(SAME, Vec::new()), false);
+    for gone in ["recorded", "conformance", "overlay", "bounce", "claims", "latency"] {
         assert!(!html.contains(&format!("<section id=\"{gone}\"")), "{gone}");
     }
     assert!(html.contains("whether a contact stays inside the envelope is not known"));
@@ -198,11 +200,11 @@ fn report_of_a_guarding_or_metering_contact_begins_with_its_caution() {
         ("guarding", "debouncing makes no input safe"),
         ("metering", "debouncing makes no input fit for trade"),
     ] {
-        let html = study(&studied(("control", role), Vec::new()), false, &origin());
+        let html = page(&studied(("control", role), Vec::new()), false);
         let caution = html.find(words).expect(role);
         assert!(caution < html.find("<nav").expect("contents"), "{role}");
     }
-    let html = study(&studied(SAME, Vec::new()), false, &origin());
+    let html = page(&studied(SAME, Vec::new()), false);
     assert!(
         html.contains("Nothing here has been assessed for such use."),
         "the general caution is in every report"
@@ -211,8 +213,7 @@ fn report_of_a_guarding_or_metering_contact_begins_with_its_caution() {
 
 #[test]
 fn report_escapes_what_it_is_given() {
-    let html =
-        study(&studied(("vent push-button", "<script>alert(1)</script> & co"), Vec::new()), false, &origin());
+    let html = page(&studied(("vent push-button", "<script>alert(1)</script> & co"), Vec::new()), false);
     assert!(html.contains("&lt;script&gt;alert(1)&lt;/script&gt; &amp; co"));
     assert!(!html.contains("<script>alert"));
     assert!(html.contains("'a &amp; b'"));
@@ -222,7 +223,7 @@ fn report_escapes_what_it_is_given() {
 fn report_of_the_same_study_has_the_same_bytes() {
     let found = studied(SAME, vec![recorded()]);
     let again = studied(SAME, vec![recorded()]);
-    assert_eq!(study(&found, true, &origin()), study(&again, true, &origin()));
+    assert_eq!(page(&found, true), page(&again, true));
 }
 
 #[test]
