@@ -9,6 +9,7 @@ pub mod choose;
 pub mod cli;
 pub mod clock_range;
 pub mod conformance;
+pub mod cost;
 pub mod demo;
 mod digest;
 pub mod emit;

@@ -262,6 +262,9 @@ fn lacks(shortfall: &Shortfall) -> String {
             format!("{} {}", words::at_most(below_ns - allowed_ns), words::change(*change))
         }
         Shortfall::TooBig { bytes, allowed } => format!("{} bytes", bytes - allowed),
+        Shortfall::TooManyInstructions { instructions, allowed } => {
+            instructions.map_or("a count".to_owned(), |count| format!("{} instr.", count - allowed))
+        }
         Shortfall::FailsOnRecording { recording } => format!("recording {}", recording + 1),
     }
 }

@@ -112,7 +112,8 @@ impl StudyAnswer {
                 ),
             )?;
         }
-        if let Some(text) = self.study.failures().and_then(|all| claim_words::failures(&all, self.study.claims.confidence))
+        if let Some(text) =
+            self.study.failures().and_then(|all| claim_words::failures(&all, self.study.claims.confidence))
         {
             lines.more(&text)?;
         }
@@ -161,16 +162,16 @@ impl StudyAnswer {
                 "relax what is asked, record the contact again, or state the figures that the recording exceeds",
             );
         }
-        if self.written.is_empty() {
+        written(lines, &self.written)?;
+        if self.written.iter().any(|path| path.extension().is_some_and(|ending| ending == "rs")) {
+            lines.item("Next", "add the .rs file to the firmware beside debounce-core and tick it; its build checks the choice again")?;
+        } else {
             let again =
                 if self.demo { "harness study --output results" } else { "the same with --output FOLDER" };
             lines.item(
                 "Next",
                 &format!("{again} writes the report, the Rust module and the results as JSON"),
             )?;
-        } else {
-            written(lines, &self.written)?;
-            lines.item("Next", "add the .rs file to the firmware beside debounce-core and tick it; its build checks the choice again")?;
         }
         if self.demo {
             lines.more("with your own recording: harness study gate.vcd --latency \"20 ms\"")?;

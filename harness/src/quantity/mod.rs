@@ -14,7 +14,7 @@ mod voltage;
 
 use std::str::FromStr;
 
-pub use count::{Bytes, Ticks};
+pub use count::{Bytes, Instructions, Ticks};
 pub use electrical::{Capacitance, Current, Resistance, ShortTime};
 pub use part::{Part, Spread, TemperatureCode, VoltageRange};
 pub use period::TickPeriod;

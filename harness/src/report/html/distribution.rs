@@ -17,10 +17,7 @@ const HISTOGRAM: (f64, f64) = (206.0, PLANE.top);
 const DISTRIBUTION: (f64, f64) = (PLANE.bottom, 250.0);
 
 /// The two figures; `None` where nothing was recorded whole.
-pub(super) fn section(
-    observed: &[Observed],
-    limits: impl Fn(Change) -> Vec<Limit>,
-) -> Option<Section> {
+pub(super) fn section(observed: &[Observed], limits: impl Fn(Change) -> Vec<Limit>) -> Option<Section> {
     let figures: Vec<Figure> = [Change::Make, Change::Break]
         .into_iter()
         .filter_map(|change| figure(observed, change, &limits(change)))

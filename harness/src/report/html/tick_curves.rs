@@ -48,6 +48,12 @@ impl Line {
         self.stretches.last().and_then(|stretch| stretch.last()).map_or(0.0, |point| point.0)
     }
 
+    /// The longest worst delay that is not beyond `allowed`.
+    pub(super) fn highest_ns(&self, allowed: f64) -> Option<f64> {
+        let all = self.stretches.iter().flatten().map(|point| point.1);
+        all.filter(|&below| below <= allowed).max_by(f64::total_cmp)
+    }
+
     /// The worst delay at the end of the longest stretch that is drawn: where its name belongs.
     pub(super) fn last_ns(&self, highest: f64) -> Option<f64> {
         let longest = self.stretches.iter().max_by_key(|stretch| stretch.len())?;
