@@ -165,7 +165,11 @@ fn recheck_of_an_instruction_budget_counts_on_the_core_that_is_named() {
     // Elsewhere it takes more, and where no core is named the most counts.
     let run = recheck(&budget("ram = \"4 bytes\"\ninstructions = \"30 instructions\""), &[]).ends(1);
     let text = run.flowing();
-    assert!(text.contains("Broken a tick takes at most 30 instructions an input on any core"), "{}", run.stdout);
+    assert!(
+        text.contains("Broken a tick takes at most 30 instructions an input on any core"),
+        "{}",
+        run.stdout
+    );
     assert!(text.contains("36, as counted for a patient state machine, 6 too many"), "{}", run.stdout);
 }
 
@@ -173,7 +177,11 @@ fn recheck_of_an_instruction_budget_counts_on_the_core_that_is_named() {
 fn requirement_names_the_cores_that_were_looked_at() {
     let bench = changed("contact.toml", "ram = \"4 bytes\"", "core = \"cortex-m7\"\ninstructions = 30");
     let run = recheck(&bench, &[]).ends(2);
-    assert!(run.stderr.contains("\"cortex-m7\" is not a core whose instructions were counted"), "{}", run.stderr);
+    assert!(
+        run.stderr.contains("\"cortex-m7\" is not a core whose instructions were counted"),
+        "{}",
+        run.stderr
+    );
     assert!(run.stderr.contains("40 instructions"), "{}", run.stderr);
 }
 

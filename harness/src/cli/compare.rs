@@ -52,7 +52,7 @@ Examples:
 
 impl CompareArguments {
     /// Runs the command.
-    pub(super) fn run(&self, _: &Session) -> Result<Box<dyn Answer>, Failure> {
+    pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let logics = [&self.one, &self.other];
         let [one, other] = logics.map(|name| NamedLogic::read(name, self.reading));
         let (one, other) = match (one, other) {
@@ -61,7 +61,7 @@ impl CompareArguments {
             (Err(failure), _) | (_, Err(failure)) => return Err(failure),
         };
         let file = self.witness.as_deref().map(OutputFolder::of_file).transpose()?;
-        let apart = compare(&one.machine, &other.machine);
+        let apart = session.during("comparing", || compare(&one.machine, &other.machine));
         let mut written = Vec::new();
         if let (Some((folder, name)), Some(apart)) = (file, &apart) {
             let again = format!("harness compare \"{}\" \"{}\"", self.one, self.other);

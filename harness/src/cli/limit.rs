@@ -61,10 +61,14 @@ impl LimitArguments {
         if envelope.limit().is_some() {
             limits.memory_bytes = BESIDE_FORMULA;
         }
-        let answer = solve(&envelope, &limits).map_err(Problem::told)?;
+        let answer =
+            session.during("searching the limit", || solve(&envelope, &limits)).map_err(Problem::told)?;
         let known = match answer {
             LimitAnswer::Unsolvable(reason) => Known::NoLogic(reason),
-            LimitAnswer::Solved(solution) => Known::Limit(Box::new(solved(&envelope, solution)?)),
+            LimitAnswer::Solved(solution) => {
+                let proved = session.during("exploring", || solved(&envelope, solution));
+                Known::Limit(Box::new(proved?))
+            }
             LimitAnswer::ClosedForm(latency) => Known::Limit(Box::new(by_formula(&envelope, latency, 0)?)),
             LimitAnswer::Unknown { beliefs, bytes } => match envelope.limit() {
                 Some(latency) => Known::Limit(Box::new(by_formula(&envelope, latency, beliefs)?)),

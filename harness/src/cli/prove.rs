@@ -108,11 +108,11 @@ impl ProveArguments {
         let machine_file = self.machine.as_deref().map(MachineFile::prepare).transpose()?;
         let contract = self.contract.into();
         let limits = Limits::default();
-        let bar = session.waiting("exploring");
-        let proof = prove_contract(&logic.table, &envelope, contract, &limits).map_err(Problem::told)?;
-        bar.finish_and_clear();
+        let explored =
+            session.during("exploring", || prove_contract(&logic.table, &envelope, contract, &limits));
+        let proof = explored.map_err(Problem::told)?;
         let effort = if self.thorough { Effort::Thorough } else { Effort::Quick };
-        let beyond = Beyond::of(&logic.table, &proof, effort, &limits);
+        let beyond = session.during("searching beyond", || Beyond::of(&logic.table, &proof, effort, &limits));
         let again = self.again(&name, &envelope, tick);
         let tick = tick.map(TickPeriod::period);
         let limit = match contract {

@@ -86,6 +86,8 @@ impl ReplayArguments {
             shortest_dwell_ns: shortest.open.value.ns().min(shortest.closed.value.ns()),
         };
         let mut runs = Vec::new();
+        let steps = input.observed.len() * resolved.ticks.value.len();
+        let bar = session.progress("replaying", steps as u64);
         for (recording, one) in input.observed.iter().enumerate() {
             for &tick in &resolved.ticks.value {
                 let clock = resolved.clock(tick);
@@ -97,6 +99,7 @@ impl ReplayArguments {
                 };
                 let failures = Failures::of(&measured.nominal, &one.truth);
                 runs.push(Run { recording, tick, clock, measured, failures });
+                bar.inc(1);
             }
         }
         let confidence = resolved.confidence.value;
