@@ -7,13 +7,15 @@ use clap::Args;
 use debounce_core::{Change, Period};
 use serde_json::{Value, json};
 
+use super::input::source_file;
 use super::lines::{Lines, strong};
 use super::logic_name::{LogicName, NamedLogic, OutputOf};
-use super::report::written;
+use super::report::{ReportOption, written};
 use super::{Answer, Failure, Outcome, OutputFolder, Session};
 use crate::machine::{Apart, compare};
+use crate::problem::Problem;
 use crate::report::apart::{ApartDiagram, write_apart};
-use crate::report::words;
+use crate::report::{html, words};
 
 /// Tells whether two logics report the same, whatever the samples.
 #[derive(Args, Clone, PartialEq, Debug)]
@@ -36,6 +38,9 @@ pub struct CompareArguments {
     /// Where the samples that tell them apart are written, as VCD, one tick a millisecond
     #[arg(long, value_name = "FILE")]
     pub witness: Option<PathBuf>,
+    /// The report.
+    #[command(flatten)]
+    pub report: ReportOption,
 }
 
 impl CompareArguments {
@@ -60,6 +65,12 @@ impl CompareArguments {
             (Err(first), Err(second)) => return Err(first.and(second)),
             (Err(failure), _) | (_, Err(failure)) => return Err(failure),
         };
+        let report = self.report.prepare()?;
+        let files = if report.is_some() {
+            logics.iter().filter_map(|name| table_file(name)).collect::<Result<_, _>>()?
+        } else {
+            Vec::new()
+        };
         let file = self.witness.as_deref().map(OutputFolder::of_file).transpose()?;
         let apart = session.during("comparing", || compare(&one.machine, &other.machine));
         let mut written = Vec::new();
@@ -71,7 +82,23 @@ impl CompareArguments {
             })?;
             written.extend(files.commit()?);
         }
+        if let Some(report) = report {
+            let found = html::Compared {
+                names: [&one.name, &other.name],
+                machines: [&one.machine, &other.machine],
+                apart: apart.as_ref(),
+            };
+            written.push(report.write(session, files, |origin| html::compared(&found, origin))?);
+        }
         Ok(Box::new(Compared { logics: [one, other], apart, written }))
+    }
+}
+
+/// The file of a next-state table, where the name is one.
+fn table_file(name: &LogicName) -> Option<Result<html::SourceFile, Problem>> {
+    match name {
+        LogicName::Table(path) => Some(source_file(path, "next-state table")),
+        LogicName::Law(_) => None,
     }
 }
 
@@ -95,8 +122,9 @@ impl Answer for Compared {
             lines.item(label, &format!("{}: {states}, {least} when minimised", logic.name))?;
         }
         let Some(apart) = &self.apart else {
-            return lines
-                .item("Equivalent", &strong("both report the same at every sample, whatever the samples"));
+            lines
+                .item("Equivalent", &strong("both report the same at every sample, whatever the samples"))?;
+            return written(&mut lines, &self.written);
         };
         lines.item(
             "Different",

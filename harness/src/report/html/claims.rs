@@ -25,9 +25,11 @@ pub(super) fn section(claims: &Claims) -> Option<Section> {
         p class="note" {
             "The claim is a tolerance limit free of any assumed distribution (S. S. Wilks, Ann. Math. Stat. 12 (1941) \
              91-96). It holds for operations that are independent of one another and of the kind that was recorded; \
-             operations that depend on one another allow less. An indication is a curve fitted to the longest ones \
-             (J. Pickands, Ann. Stat. 3 (1975) 119-131), drawn out beyond what was seen: it tells where to look, and \
-             nothing is designed for it."
+             operations that depend on one another allow less."
+            @if BOTH.iter().any(|&change| claims.pooled.changes.of(change).tail.is_some()) {
+                " An indication is a curve fitted to the longest ones (J. Pickands, Ann. Stat. 3 (1975) 119-131), drawn \
+                 out beyond what was seen: it tells where to look, and nothing is designed for it."
+            }
         }
     };
     Some(Section { id: "claims", heading: "What may be claimed".to_owned(), body })

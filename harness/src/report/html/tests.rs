@@ -4,16 +4,18 @@ use std::collections::BTreeSet;
 
 use debounce_core::Envelope;
 
-use super::{Characterised, Origin, Proved, characterised, proof};
+use super::{
+    Characterised, Compared, Limited, Origin, Proved, Reaching, characterised, compared, limit, proof,
+};
 use crate::characterise::SegmentOptions;
 use crate::choose::Preference;
 use crate::clock_range::{ClockQuestion, clock_range};
 use crate::demo;
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
-use crate::machine::MachineTable;
+use crate::machine::{MachineTable, compare};
 use crate::problem::SourceText;
-use crate::prove::{Beyond, Effort, Limits, prove_within};
+use crate::prove::{Beyond, Effort, LimitAnswer, Limits, prove_within, solve_limit};
 use crate::requirement::{Requirement, parse};
 use crate::study::{Caution, Claims, Observed, Study, measured, observe};
 use crate::trace::{ReadOptions, read_bytes};
@@ -63,6 +65,34 @@ fn proved(law: &str, envelope: Envelope) -> String {
     )
 }
 
+fn machine(law: &str) -> MachineTable {
+    let logic = Logic::try_new(&law.parse().expect("a law")).expect("parameters");
+    MachineTable::of_table(&logic.table().expect("a table"))
+}
+
+fn told(one: &str, other: &str) -> String {
+    let machines = [&machine(one), &machine(other)];
+    let apart = compare(machines[0], machines[1]);
+    compared(&Compared { names: [one, other], machines, apart: apart.as_ref() }, &origin())
+}
+
+fn limited(envelope: Envelope) -> String {
+    let answer = solve_limit(&envelope, &Limits::default()).expect("within the limits");
+    let page = |found| limit(&Limited { envelope: &envelope, tick: None, caution: None, found }, &origin());
+    match &answer {
+        LimitAnswer::Solved(solution) => page(Ok(Reaching {
+            latency: solution.latency,
+            name: "the logic found",
+            machine: &MachineTable::of_table(&solution.logic),
+            proof: None,
+            evidence: "a search".to_owned(),
+            law: None,
+        })),
+        LimitAnswer::Unsolvable(reason) => page(Err(reason)),
+        _ => panic!("neither a limit nor none"),
+    }
+}
+
 fn page(study: &Study, invented: bool) -> String {
     super::study(study, &clock_range(&ClockQuestion::of(&study.resolved)), invented, &origin())
 }
@@ -89,6 +119,10 @@ fn reports() -> Vec<(&'static str, String)> {
             page(&studied(("latency = \"50 ms\"", "latency = \"3 ms\""), observed.to_vec()), true),
         ),
         ("characterised", characterised(&found, &origin())),
+        ("limit", limited(Envelope::clean(20, 20).bounce(5, 3).glitch(1, 1).quiet(10))),
+        ("no logic", limited(Envelope::clean(20, 20).glitch(3, 3).quiet(2))),
+        ("different", told("integrator 3", "shift-register 3")),
+        ("equivalent", told("shift-register 4", "state-machine confirm=4")),
         ("proved", proved("integrator 5", Envelope::clean(20, 20).bounce(5, 3).glitch(1, 1).quiet(10))),
         ("refuted", proved("shift-register 2", Envelope::clean(40, 40).bounce(5, 5))),
     ]
@@ -224,6 +258,36 @@ fn report_of_the_same_study_has_the_same_bytes() {
     let found = studied(SAME, vec![recorded()]);
     let again = studied(SAME, vec![recorded()]);
     assert_eq!(page(&found, true), page(&again, true));
+}
+
+#[test]
+fn report_of_a_limit_says_it_or_why_there_is_none() {
+    let found = limited(Envelope::clean(20, 20).bounce(5, 3).glitch(1, 1).quiet(10));
+    assert!(found.contains("<b>8 samples</b> <span>for a make") && found.contains("id=\"logic-diagram\""));
+    let none = limited(Envelope::clean(20, 20).glitch(3, 3).quiet(2));
+    assert!(none.contains("No logic whatever: ") && !none.contains("id=\"logic-diagram\""));
+}
+
+#[test]
+fn report_of_a_comparison_shows_the_samples_that_tell_apart_or_none() {
+    let different = told("integrator 3", "shift-register 3");
+    assert!(different.contains("after 5 samples") && different.contains("id=\"apart\""));
+    let same = told("shift-register 4", "state-machine confirm=4");
+    assert!(same.contains("Equivalent: ") && !same.contains("id=\"apart\""));
+}
+
+#[test]
+fn report_of_a_study_shows_claims_and_how_latency_is_distributed() {
+    let html = page(&studied(SAME, vec![recorded()]), true);
+    // 60 recorded cover 95 % with 95.3 % confidence: 1 - 0.95^60 (S. S. Wilks, 1941).
+    for part in [
+        "rank 1 of 60, with 95.3 % confidence",
+        "that claim with a margin of 25 %",
+        "0 missed, 0 doubled of 120",
+    ] {
+        assert!(html.contains(part), "{part}");
+    }
+    assert!(html.contains("class=\"steps make\"") && html.contains("class=\"steps break\""));
 }
 
 #[test]
