@@ -96,7 +96,7 @@ fn choose_shows_where_each_law_works_over_all_tick_periods() {
         "20 ms",
     ];
     let bench = Bench::new();
-    let run = bench.run(&[&line[..], &["--plot", "--list", "1"]].concat()).ends(0);
+    let run = bench.run(&[&line[..], &["--plot", "--details", "--list", "1"]].concat()).ends(0);
     for part in [
         "Clock state-machine: works, and is in time, from 200 us to 2.44 ms",
         "and over 734 rounding steps",

@@ -182,7 +182,7 @@ fn requirement_names_the_cores_that_were_looked_at() {
         "{}",
         run.stderr
     );
-    assert!(run.stderr.contains("40 instructions"), "{}", run.stderr);
+    assert!(run.stderr.contains("write \"30 instructions\""), "{}", run.stderr);
 }
 
 #[test]
