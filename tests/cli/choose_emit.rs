@@ -13,13 +13,20 @@ fn choose_from_figures_alone_ranks_what_holds_and_says_what_was_assumed() {
     for part in [
         "bounces for at most 5 ms after a make and 5 ms after a break",
         "First state-machine confirm=2 patience=2 lockout=2 at a tick of 2 ms",
-        "Assumed required.shortest_closed = 70 ms, ",
+        "shortest_closed = 70 ms, ",
         "Left out disturbances 5 ms apart come faster than a tick of 5 ms can tell apart",
-        "* no other candidate that holds beats it",
+        "* none that holds beats it",
     ] {
         assert!(run.flowing().contains(part), "\"{part}\" is not in {}", run.stdout);
     }
-    assert!(!run.flowing().contains("Assumed required.latency"), "it was given: {}", run.stdout);
+    assert!(!run.flowing().contains("latency.make = "), "it was given: {}", run.stdout);
+    // Why each value was assumed is for those who ask.
+    assert!(!run.flowing().contains("default: "), "{}", run.stdout);
+    let run = Bench::new().run(&[&["choose", "--details"][..], &FIGURES].concat()).ends(0);
+    for part in ["required.shortest_closed = 70 ms, ", "(default: ", "by closed form, for every tick period"]
+    {
+        assert!(run.flowing().contains(part), "\"{part}\" is not in {}", run.stdout);
+    }
     assert!(run.stderr.is_empty(), "{}", run.stderr);
 }
 
@@ -89,7 +96,7 @@ fn choose_shows_where_each_law_works_over_all_tick_periods() {
         "20 ms",
     ];
     let bench = Bench::new();
-    let run = bench.run(&[&line[..], &["--plot", "--list", "1"]].concat()).ends(0);
+    let run = bench.run(&[&line[..], &["--plot", "--details", "--list", "1"]].concat()).ends(0);
     for part in [
         "Clock state-machine: works, and is in time, from 200 us to 2.44 ms",
         "and over 734 rounding steps",

@@ -41,7 +41,7 @@ other    _____
     for part in [
         "after 5 samples from rest open, and never after fewer",
         "then integrator 3 reports a make, and shift-register 3 reports nothing",
-        "written: w.vcd",
+        "Written w.vcd",
     ] {
         assert!(run.flowing().contains(part), "\"{part}\" is not in {}", run.stdout);
     }

@@ -34,7 +34,7 @@ fn limit_logic_written_as_a_table_is_proved_to_reach_it() {
                 let bench = Bench::new();
                 let line = [&["limit", "--envelope", envelope, "--machine", file][..], earliest].concat();
                 let run = bench.run(&line).ends(0);
-                assert!(run.stdout.contains(&format!("written: {file}")), "{}", run.stdout);
+                assert!(run.flowing().contains(&format!("Written {file}")), "{}", run.stdout);
                 let proved = bench.run(&["prove", "--table", file, "--envelope", envelope, "--json"]).ends(0);
                 let result = proved.json()["result"].clone();
                 let bounds = &result["bounds_samples"];

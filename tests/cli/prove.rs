@@ -99,7 +99,7 @@ fn prove_of_a_refuted_claim_ends_with_1_and_its_witness_is_what_was_drawn() {
     let line = ["prove", "shift-register 3", "--envelope", ENVELOPE, "--witness", "w.vcd"];
     let run = bench.run(&line).ends(1);
     assert!(run.stdout.contains("Refuted      an edge is reported that the contact did not make"));
-    assert!(run.stdout.contains("written: w.vcd"), "{}", run.stdout);
+    assert!(run.flowing().contains("Written w.vcd"), "{}", run.stdout);
     assert_eq!(run, bench.run(&line), "the same bytes twice");
 
     // Read by a crate of others: one tick of rest, then a column a tick of 1 ms.

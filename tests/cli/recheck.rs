@@ -154,6 +154,37 @@ fn recheck_of_an_edited_module_gives_the_line() {
     );
 }
 
+/// A patient state machine takes 30 instructions on a Cortex-M3 at worst, by `debounce-core/COST.md`.
+#[test]
+fn recheck_of_an_instruction_budget_counts_on_the_core_that_is_named() {
+    let budget = |text: &str| changed("contact.toml", "ram = \"4 bytes\"", text);
+    let enough = budget("ram = \"4 bytes\"\ninstructions = \"30 instructions\"\ncore = \"cortex-m3\"");
+    let run = recheck(&enough, &[]).ends(0);
+    let claim = "a tick takes at most 30 instructions an input on cortex-m3: 30, as counted for a patient state machine";
+    assert!(run.flowing().contains(claim), "{}", run.stdout);
+    // Elsewhere it takes more, and where no core is named the most counts.
+    let run = recheck(&budget("ram = \"4 bytes\"\ninstructions = \"30 instructions\""), &[]).ends(1);
+    let text = run.flowing();
+    assert!(
+        text.contains("Broken a tick takes at most 30 instructions an input on any core"),
+        "{}",
+        run.stdout
+    );
+    assert!(text.contains("36, as counted for a patient state machine, 6 too many"), "{}", run.stdout);
+}
+
+#[test]
+fn requirement_names_the_cores_that_were_looked_at() {
+    let bench = changed("contact.toml", "ram = \"4 bytes\"", "core = \"cortex-m7\"\ninstructions = 30");
+    let run = recheck(&bench, &[]).ends(2);
+    assert!(
+        run.stderr.contains("\"cortex-m7\" is not a core whose instructions were counted"),
+        "{}",
+        run.stderr
+    );
+    assert!(run.stderr.contains("write \"30 instructions\""), "{}", run.stderr);
+}
+
 #[test]
 fn recheck_of_a_smaller_budget_says_by_how_many_bytes() {
     let run = recheck(&changed("contact.toml", "ram = \"4 bytes\"", "ram = \"1 byte\""), &[]).ends(1);

@@ -32,7 +32,19 @@ fn report_is_written_by_every_command_that_has_it() {
         "100 nF 10 % X7R",
         "--report",
     ];
-    let commands: [(&str, Vec<&str>, i32, &str); 5] = [
+    let commands: [(&str, Vec<&str>, i32, &str); 7] = [
+        (
+            "limit.html",
+            vec!["limit", "--envelope", "dwell=20 bounce=5/3 glitch=1/1 quiet=10", "--report"],
+            0,
+            "No logic whatever can promise less",
+        ),
+        (
+            "compare.html",
+            vec!["compare", "integrator 3", "shift-register 3", "--report"],
+            1,
+            "The fewest samples that tell them apart",
+        ),
         ("network.html", network.to_vec(), 0, "The pin after a make"),
         ("characterise.html", [&["characterise"][..], &READ].concat(), 0, "What the recordings show"),
         (

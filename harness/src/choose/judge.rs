@@ -7,6 +7,7 @@ use debounce_core::{Change, Clause, Envelope, PerChange, Verdict};
 use rustc_hash::FxHashMap;
 
 use super::{Candidate, ClockView, Evidence, Judgement, Question, Shortfall, physical_limit};
+use crate::cost::{InstructionBudget, instructions};
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
 use crate::prove::{Contract, Environment, LawTable, Outcome, ProveError, prove_in};
@@ -150,6 +151,12 @@ impl<'a> Judge<'a> {
         }
         if let Some(allowed) = self.question.ram_bytes.filter(|&allowed| candidate.state_bytes > allowed) {
             found.push(Shortfall::TooBig { bytes: candidate.state_bytes, allowed });
+        }
+        if let Some(InstructionBudget { most: allowed, core }) = self.question.instructions {
+            let instructions = instructions(&candidate.parameters, core);
+            if instructions.is_none_or(|instructions| instructions > allowed) {
+                found.push(Shortfall::TooManyInstructions { instructions, allowed });
+            }
         }
         let fails = candidate.measured.iter().enumerate().filter(|(_, measured)| !measured.is_faithful());
         found.extend(fails.map(|(recording, _)| Shortfall::FailsOnRecording { recording }));

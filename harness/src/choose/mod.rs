@@ -12,6 +12,7 @@ mod rank;
 use debounce_core::{Bounds, Change, Clause, Envelope, PerChange, TickClock};
 use rayon::prelude::*;
 
+use crate::cost::InstructionBudget;
 use crate::envelope::{PhysicalEnvelope, TickError};
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
@@ -36,6 +37,8 @@ pub struct Question<'a> {
     pub clocks: Vec<TickClock>,
     /// Most RAM for each input, in bytes.
     pub ram_bytes: Option<u32>,
+    /// Most instructions of a tick for each input.
+    pub instructions: Option<InstructionBudget>,
     /// Recordings with what the contact did in them.
     pub recordings: Vec<(&'a Trace, &'a [TruthChange])>,
     /// What counts most among those that hold.
@@ -100,6 +103,13 @@ pub enum Shortfall {
         /// Bytes of one state.
         bytes: u32,
         /// Bytes allowed.
+        allowed: u32,
+    },
+    /// The worst tick takes too many instructions, or was not counted for so wide a state.
+    TooManyInstructions {
+        /// Instructions of its kind of law; `None` where they were not counted.
+        instructions: Option<u32>,
+        /// Instructions allowed.
         allowed: u32,
     },
     /// A recording shows a missed operation or a false edge.

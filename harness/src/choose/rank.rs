@@ -104,6 +104,9 @@ fn miss(candidate: &Candidate) -> f64 {
     let one = |shortfall: &Shortfall| match *shortfall {
         Shortfall::TooSlow { below_ns, allowed_ns, .. } => below_ns as f64 / allowed_ns.max(1) as f64 - 1.0,
         Shortfall::TooBig { bytes, allowed } => f64::from(bytes) / f64::from(allowed.max(1)),
+        Shortfall::TooManyInstructions { instructions, allowed } => {
+            instructions.map_or(1e3, |count| f64::from(count) / f64::from(allowed.max(1)))
+        }
         Shortfall::FailsOnRecording { .. } => 1e6,
         Shortfall::Unproven => 1e9,
         Shortfall::Unfaithful(_) => 1e12,

@@ -78,10 +78,9 @@ impl CharacteriseArguments {
         let mut written = Vec::new();
         if let Some(report) = report {
             let files = input.files()?;
-            let origin = html::Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
             let (observed, resolved) = (&input.observed, &resolved);
             let found = html::Characterised { observed, resolved, claims: &claims, warnings: &cautions };
-            written.push(report.write(&html::characterised(&found, &origin))?);
+            written.push(report.write(session, files, |origin| html::characterised(&found, origin))?);
         }
         let (observed, listed, histogram) = (input.observed, self.operations, self.histogram);
         let network = resolved.network;

@@ -45,6 +45,9 @@ pub struct ChooseArguments {
     /// So many candidates are listed
     #[arg(long, value_name = "COUNT", default_value_t = 4)]
     pub list: usize,
+    /// Say why each value was assumed, and all that is known of clock and sleep
+    #[arg(long)]
+    pub details: bool,
     /// Plot worst delay against tick period
     #[arg(long)]
     pub plot: bool,
@@ -90,10 +93,11 @@ impl ChooseArguments {
         let clock = clock_view(&study, activity)?;
         let mut written = Vec::new();
         if let Some(report) = report {
-            let origin = html::Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
-            written.push(report.write(&html::study(&study, false, &origin))?);
+            let html = |origin: &_| html::study(&study, &clock.range, false, origin);
+            written.push(report.write(session, files, html)?);
         }
-        Ok(Box::new(Chosen { study, list: self.list, clock, plot: self.plot, written }))
+        let Self { list, details, plot, .. } = *self;
+        Ok(Box::new(Chosen { study, list, clock, details, plot, written }))
     }
 }
 
@@ -102,6 +106,7 @@ struct Chosen {
     study: Study,
     list: usize,
     clock: ClockView,
+    details: bool,
     plot: bool,
     written: Vec<PathBuf>,
 }
@@ -142,7 +147,7 @@ impl Answer for Chosen {
         if !self.study.observed.is_empty() {
             claims(&mut lines, &self.study.claims)?;
         }
-        assumed(&mut lines, &self.study.resolved)?;
+        assumed(&mut lines, &self.study.resolved, self.details)?;
         for view in &ranking.clocks {
             if let Err(error) = view.envelope {
                 lines.item("Left out", &error.to_string())?;
@@ -167,10 +172,9 @@ impl Answer for Chosen {
         lines.plain("\n")?;
         lines.plain(&candidate_table(&self.study, self.list))?;
         lines.plain("\n")?;
-        lines
-            .item("*", "no other candidate that holds beats it in delay, ticks a second and RAM together")?;
+        lines.item("*", "none that holds beats it in delay, ticks a second and RAM together")?;
         lines.plain("\n")?;
-        self.clock.write(&mut lines)?;
+        self.clock.write(&mut lines, self.details)?;
         if self.plot {
             let latency = &self.study.resolved.required.latency;
             let allowed_ns = latency.make.value.ns().min(latency.break_.value.ns());
@@ -248,8 +252,8 @@ fn candidate_table(study: &Study, list: usize) -> String {
         table.add_row(row);
     }
     if let Some(law) = table.column_mut(1) {
-        // Room for two parameters of a law side by side.
-        law.set_constraint(ColumnConstraint::LowerBoundary(Width::Fixed(22)));
+        // Room for the name of a law and its first parameter, then for two side by side.
+        law.set_constraint(ColumnConstraint::LowerBoundary(Width::Fixed(26)));
     }
     table.trim_fmt() + "\n"
 }
@@ -264,26 +268,41 @@ fn lacks(shortfall: &Shortfall) -> String {
             format!("{} {}", words::at_most(below_ns - allowed_ns), words::change(*change))
         }
         Shortfall::TooBig { bytes, allowed } => counted(u64::from(bytes - allowed), "byte"),
+        Shortfall::TooManyInstructions { instructions, allowed } => {
+            instructions.map_or("a count".to_owned(), |count| format!("{} instr.", count - allowed))
+        }
         Shortfall::FailsOnRecording { recording } => format!("recording {}", recording + 1),
     }
 }
 
-/// Every value that nobody gave, those from the same origin together.
-fn assumed(lines: &mut Lines<'_>, resolved: &Resolved) -> io::Result<()> {
-    let mut groups: Vec<(Origin, Vec<String>)> = Vec::new();
+/// Every value that nobody gave; with `details` why it is what it is, those for the same reason together.
+fn assumed(lines: &mut Lines<'_>, resolved: &Resolved, details: bool) -> io::Result<()> {
+    let mut groups: Vec<(String, Vec<String>)> = Vec::new();
     for row in resolved.rows() {
         // What the network does has just been said.
         if matches!(row.origin, Origin::Given { .. } | Origin::Option(_) | Origin::Network) {
             continue;
         }
-        let value = format!("{} = {}", row.key, row.text);
-        match groups.iter_mut().find(|(origin, _)| *origin == row.origin) {
+        let (reason, key) = match row.origin {
+            Origin::Default(_) if !details => ("by default".to_owned(), short(row.key)),
+            origin => (origin.to_string(), if details { row.key } else { short(row.key) }),
+        };
+        let value = format!("{key} = {}", row.text);
+        match groups.iter_mut().find(|(known, _)| *known == reason) {
             Some((_, values)) => values.push(value),
-            None => groups.push((row.origin, vec![value])),
+            None => groups.push((reason, vec![value])),
         }
     }
-    for (origin, values) in groups {
-        lines.item("Assumed", &format!("{} ({origin})", values.join(", ")))?;
+    for (reason, values) in &groups {
+        lines.item("Assumed", &format!("{} ({reason})", values.join(", ")))?;
+    }
+    if !details && !groups.is_empty() {
+        lines.more("--details says why each of them, and more of clock and sleep")?;
     }
     Ok(())
+}
+
+/// A key without its section, which is told by the name.
+fn short(key: &'static str) -> &'static str {
+    key.split_once('.').map_or(key, |(_, name)| name)
 }

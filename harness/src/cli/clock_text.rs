@@ -18,7 +18,8 @@ pub(super) struct ClockView {
 }
 
 impl ClockView {
-    pub(super) fn write(&self, lines: &mut Lines<'_>) -> io::Result<()> {
+    /// What is needed to decide; with `details` all that is known.
+    pub(super) fn write(&self, lines: &mut Lines<'_>, details: bool) -> io::Result<()> {
         for (index, curve) in self.range.curves.iter().enumerate() {
             let text = match (curve.works.is_empty(), curve.holds.is_empty()) {
                 (true, _) => "works at no tick period".to_owned(),
@@ -31,22 +32,25 @@ impl ClockView {
             let text = format!("{}: {text}", curve.family);
             if index == 0 { lines.item("Clock", &text)? } else { lines.more(&text)? }
         }
-        lines.more(&format!(
-            "for every tick period from {} to {} and over {} rounding steps, by closed form; the majority register by exploring it, which does not reach the shortest ticks",
-            time(self.range.span.from_ns),
-            time(self.range.span.until_ns),
-            self.range.steps.len()
-        ))?;
+        if details {
+            lines.more(&self.how())?;
+        }
         if let Some(best) = &self.range.recommended {
             lines.item("Free tick", &strong(&format!("{} with {}", time(best.period_ns), best.law)))?;
-            lines.more(&format!(
-                "were the timer free: a make in less than {} and a break in less than {}; the slowest at all is {}; the same law holds from {} to {}",
+            let mut text = format!(
+                "were the timer free: a make in less than {}, a break in less than {}",
                 words::at_most(best.below_ns.make),
-                words::at_most(best.below_ns.break_),
-                words::at_least(best.slowest_ns),
-                words::at_most(best.same_law.from_ns),
-                words::at_least(best.same_law.until_ns)
-            ))?;
+                words::at_most(best.below_ns.break_)
+            );
+            if details {
+                text.push_str(&format!(
+                    "; the slowest at all is {}; the same law holds from {} to {}",
+                    words::at_least(best.slowest_ns),
+                    words::at_most(best.same_law.from_ns),
+                    words::at_least(best.same_law.until_ns)
+                ));
+            }
+            lines.more(&text)?;
         }
         let slowest = |&(ppm, period): &(u32, Option<u64>)| {
             let period = period.map_or("none".to_owned(), words::at_least);
@@ -57,15 +61,25 @@ impl ClockView {
             "Oscillator",
             &format!("slowest tick in time by the tolerance of the clock: {}", all.join(", ")),
         )?;
-        self.power(lines)
+        self.power(lines, details)
     }
 
-    fn power(&self, lines: &mut Lines<'_>) -> io::Result<()> {
+    /// How what is said of the kinds of law is known.
+    fn how(&self) -> String {
+        format!(
+            "for every tick period from {} to {} and over {} rounding steps, by closed form; the majority register by exploring it, which does not reach the shortest ticks",
+            time(self.range.span.from_ns),
+            time(self.range.span.until_ns),
+            self.range.steps.len()
+        )
+    }
+
+    fn power(&self, lines: &mut Lines<'_>, details: bool) -> io::Result<()> {
         let Some(asleep) = &self.asleep else { return Ok(()) };
         lines.item(
             "Power",
             &format!(
-                "{:.0} wake-ups a second; where the tick stops while the law is settled, with {} operations and {} disturbances an hour, at most {:.2} a second and asleep for at least {:.2} % of the time",
+                "{:.0} wake-ups a second; where the tick stops while settled, with {} operations and {} disturbances an hour, at most {:.2} a second and asleep for at least {:.2} % of the time",
                 asleep.ticking_per_second,
                 self.activity.operations_per_hour,
                 self.activity.disturbances_per_hour,
@@ -74,6 +88,9 @@ impl ClockView {
                 (asleep.share * 10_000.0).floor() / 100.0
             ),
         )?;
+        if !details {
+            return Ok(());
+        }
         lines.more(&format!(
             "settled at most {} after a make, {} after a break, {} after a disturbance",
             counted(u64::from(asleep.ticks_after.make), "tick"),

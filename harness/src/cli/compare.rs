@@ -7,12 +7,15 @@ use clap::Args;
 use debounce_core::{Change, Period};
 use serde_json::{Value, json};
 
+use super::input::source_file;
 use super::lines::{Lines, strong};
 use super::logic_name::{LogicName, NamedLogic, OutputOf};
+use super::report::{ReportOption, written};
 use super::{Answer, Failure, Outcome, OutputFolder, Session};
 use crate::machine::{Apart, compare};
+use crate::problem::Problem;
 use crate::report::apart::{ApartDiagram, write_apart};
-use crate::report::words;
+use crate::report::{html, words};
 
 /// Tells whether two logics report the same, whatever the samples.
 #[derive(Args, Clone, PartialEq, Debug)]
@@ -35,6 +38,9 @@ pub struct CompareArguments {
     /// Where the samples that tell them apart are written, as VCD, one tick a millisecond
     #[arg(long, value_name = "FILE")]
     pub witness: Option<PathBuf>,
+    /// The report.
+    #[command(flatten)]
+    pub report: ReportOption,
 }
 
 impl CompareArguments {
@@ -51,7 +57,7 @@ Examples:
 
 impl CompareArguments {
     /// Runs the command.
-    pub(super) fn run(&self, _: &Session) -> Result<Box<dyn Answer>, Failure> {
+    pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let logics = [&self.one, &self.other];
         let [one, other] = logics.map(|name| NamedLogic::read(name, self.reading));
         let (one, other) = match (one, other) {
@@ -59,8 +65,14 @@ impl CompareArguments {
             (Err(first), Err(second)) => return Err(first.and(second)),
             (Err(failure), _) | (_, Err(failure)) => return Err(failure),
         };
+        let report = self.report.prepare()?;
+        let files = if report.is_some() {
+            logics.iter().filter_map(|name| table_file(name)).collect::<Result<_, _>>()?
+        } else {
+            Vec::new()
+        };
         let file = self.witness.as_deref().map(OutputFolder::of_file).transpose()?;
-        let apart = compare(&one.machine, &other.machine);
+        let apart = session.during("comparing", || compare(&one.machine, &other.machine));
         let mut written = Vec::new();
         if let (Some((folder, name)), Some(apart)) = (file, &apart) {
             let again = format!("harness compare \"{}\" \"{}\"", self.one, self.other);
@@ -70,7 +82,23 @@ impl CompareArguments {
             })?;
             written.extend(files.commit()?);
         }
+        if let Some(report) = report {
+            let found = html::Compared {
+                names: [&one.name, &other.name],
+                machines: [&one.machine, &other.machine],
+                apart: apart.as_ref(),
+            };
+            written.push(report.write(session, files, |origin| html::compared(&found, origin))?);
+        }
         Ok(Box::new(Compared { logics: [one, other], apart, written }))
+    }
+}
+
+/// The file of a next-state table, where the name is one.
+fn table_file(name: &LogicName) -> Option<Result<html::SourceFile, Problem>> {
+    match name {
+        LogicName::Table(path) => Some(source_file(path, "next-state table")),
+        LogicName::Law(_) => None,
     }
 }
 
@@ -94,8 +122,9 @@ impl Answer for Compared {
             lines.item(label, &format!("{}: {states}, {least} when minimised", logic.name))?;
         }
         let Some(apart) = &self.apart else {
-            return lines
-                .item("Equivalent", &strong("both report the same at every sample, whatever the samples"));
+            lines
+                .item("Equivalent", &strong("both report the same at every sample, whatever the samples"))?;
+            return written(&mut lines, &self.written);
         };
         lines.item(
             "Different",
@@ -108,10 +137,7 @@ impl Answer for Compared {
         let [first, second] = apart.edges.map(reports);
         lines.more(&format!("then {} reports {first}, and {} reports {second}", one.name, other.name))?;
         lines.plain(&format!("\n{}", ApartDiagram { apart, machines: [&one.machine, &other.machine] }))?;
-        for path in &self.written {
-            lines.plain(&format!("written: {}\n", path.display()))?;
-        }
-        Ok(())
+        written(&mut lines, &self.written)
     }
 
     fn to_json(&self) -> Value {

@@ -26,13 +26,8 @@ pub struct EnvelopeInput {
 }
 
 impl EnvelopeInput {
-    /// The envelope in samples, and the tick period where there is one.
-    pub(super) fn resolve(&self, session: &Session) -> Result<(Envelope, Option<TickPeriod>), Failure> {
-        let EnvelopeGiven { envelope, tick, .. } = self.given(session, false)?;
-        Ok((envelope, tick))
-    }
-
-    /// The same with everything a report says of where it comes from; the files only where they are wanted.
+    /// The envelope in samples, the tick period where there is one, and what a report says of where both come from; the
+    /// files only where they are wanted.
     pub(super) fn given(&self, session: &Session, with_files: bool) -> Result<EnvelopeGiven, Failure> {
         if let Some(EnvelopeText(envelope)) = self.envelope {
             let tick = self.tick_beside_envelope()?;

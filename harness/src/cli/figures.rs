@@ -5,8 +5,8 @@ use std::io;
 use debounce_core::{Change, Position};
 
 use super::lines::Lines;
-use crate::characterise::{ChangeFigures, Figures, Histogram, Independence, Spread, tail::Tail};
-use crate::report::words;
+use crate::characterise::{Figures, Histogram, Spread};
+use crate::report::{claim_words, words};
 use crate::study::Claims;
 
 /// What lies between the operations: disturbances, dwell, quiet; and what the recorder could not see.
@@ -106,9 +106,9 @@ pub(super) fn of_kind(
         if let Some(histogram) = found.histogram(period).filter(|_| drawn) {
             bars(lines, &histogram)?;
         }
-        order(lines, &found.independence)?;
+        lines.more(&claim_words::order(&found.independence))?;
     }
-    indication(lines, found)
+    claim_words::indication(found).map_or(Ok(()), |text| lines.more(&text))
 }
 
 /// Fewer operations than this make no picture.
@@ -137,46 +137,6 @@ fn bars(lines: &mut Lines<'_>, histogram: &Histogram) -> io::Result<()> {
     ))
 }
 
-/// Whether the order of the operations is that of independent ones.
-fn order(lines: &mut Lines<'_>, found: &Independence) -> io::Result<()> {
-    let runs = found.runs.map(|test| {
-        format!(
-            "{} runs about the median where {:.1} are to be expected (Wald-Wolfowitz: chance {})",
-            test.runs,
-            test.expected,
-            words::chance(test.p_value)
-        )
-    });
-    let trend = found.trend.map(|test| {
-        format!("a trend of {:+.2} (Mann-Kendall: chance {})", test.tau, words::chance(test.p_value))
-    });
-    let tests: Vec<String> = runs.into_iter().chain(trend).collect();
-    if tests.is_empty() {
-        return lines.more("too much alike to test whether they are independent");
-    }
-    let verdict =
-        if found.is_doubtful() { "not what independent ones show" } else { "as independent ones may be" };
-    lines.more(&format!("in their order {}: {verdict}", tests.join(" and ")))
-}
-
-/// What the longest ones indicate.
-fn indication(lines: &mut Lines<'_>, found: &ChangeFigures) -> io::Result<()> {
-    let Some(tail) = &found.tail else { return Ok(()) };
-    lines.more(&format!(
-        "an indication and no claim: by the {} longest (peaks over {}, generalised Pareto, shape {:+.2}), one in 1000 \
-         exceeds {}",
-        tail.excesses,
-        words::about(tail.threshold_ns),
-        tail.pareto.shape,
-        words::at_most(whole(tail)),
-    ))
-}
-
-/// One in 1000 exceeds this, rounded up to a nanosecond.
-fn whole(tail: &Tail) -> u64 {
-    tail.exceeded_once_in(1e3).ceil() as u64
-}
-
 /// What is claimed of everything but the bounces.
 pub(super) fn extremes(lines: &mut Lines<'_>, claims: &Claims) -> io::Result<()> {
     let mut found = claims.extremes.iter().filter_map(|extreme| extreme.claim(claims.coverage));
@@ -190,27 +150,7 @@ pub(super) fn extremes(lines: &mut Lines<'_>, claims: &Claims) -> io::Result<()>
 pub(super) fn limits(lines: &mut Lines<'_>, claims: &Claims) -> io::Result<()> {
     for change in [Change::Make, Change::Break] {
         let Some(claim) = claims.bounce.at(change) else { continue };
-        let text = match claim.limit {
-            Some(limit) => format!(
-                "{} of {}s bounce no longer than {}, rank {} of {}, with {} confidence (asked {})",
-                claims.coverage,
-                words::change(change),
-                words::at_most(limit.ns),
-                limit.rank,
-                claim.operations,
-                words::covered(limit.confidence),
-                claims.confidence,
-            ),
-            None => format!(
-                "none for {} of {}s: {} recorded, {} needed, {} more",
-                claims.coverage,
-                words::change(change),
-                claim.operations,
-                claim.needed,
-                claim.more_needed(),
-            ),
-        };
-        lines.item("Limit", &text)?;
+        lines.item("Limit", &claim_words::limit(claims, &claim, change))?;
     }
     Ok(())
 }

@@ -105,7 +105,7 @@ impl GenerateArguments {
             let problem = Problem::new("a sample period of 0 is none");
             return Err(problem.help("give --resolution \"1 us\"").into());
         }
-        let made = panel.generate(self.volts).map_err(Problem::told)?;
+        let made = session.during("inventing", || panel.generate(self.volts)).map_err(Problem::told)?;
         let remark = format!("invented: {what}, seed {}", panel.seed);
         let written = match output {
             Some(output) => output.write(&made, &remark, self.volts)?,

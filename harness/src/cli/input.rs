@@ -1,5 +1,6 @@
 //! From a requirement to its recordings, read as operations.
 
+use std::fs::File;
 use std::path::Path;
 
 use crate::characterise::SegmentOptions;
@@ -9,7 +10,7 @@ use crate::quantity::Time;
 use crate::report::html::SourceFile;
 use crate::requirement::{Level, Origin, Recording as Wanted, Requirement, Sourced, TakenAt, parse};
 use crate::study::{Observed, observe};
-use crate::trace::{Polarity, ReadOptions, Recording, Thresholds, read_bytes, read_path};
+use crate::trace::{Polarity, ReadOptions, Recording, Thresholds, read_bytes, read_path_through};
 
 use super::{Failure, RequirementInput, Session, faults};
 
@@ -69,7 +70,7 @@ impl Input {
             let segmenting = SegmentOptions { gap_ns: gap.map(Time::ns) };
             let read = read_options(wanted, &requirement, input.reading.over(&wanted.reading))
                 .map_err(|problem| vec![problem])
-                .and_then(|options| read_path(path, &options).map_err(|error| faults::recording(&error)))
+                .and_then(|options| read_watched(path, &options, session))
                 .and_then(|recording| {
                     let name = requirement.as_written(path);
                     observed_in(name, path, recording, &segmenting, session).map_err(|problem| vec![problem])
@@ -124,6 +125,13 @@ fn taken_at(
     Some(wanted.taken_at.unwrap_or(CONTACT))
 }
 
+/// The recording at `path`; of a long one a person sees how far it has been read.
+fn read_watched(path: &Path, options: &ReadOptions, session: &Session) -> Result<Recording, Vec<Problem>> {
+    let bytes = |file: &File| file.metadata().map_or(0, |found| found.len());
+    let read = read_path_through(path, options, |file| session.reading(bytes(&file)).wrap_read(file));
+    read.map_err(|error| faults::recording(&error))
+}
+
 /// A file that was read, named by its contents.
 pub(super) fn source_file(path: &Path, role: &'static str) -> Result<SourceFile, Problem> {
     SourceFile::of_path(path, role).map_err(|error| {
@@ -168,5 +176,6 @@ fn observed_in(
     for note in &recording.notes {
         session.warn(&format!("{name}: {note}"));
     }
-    observe(name, recording, segmenting).map_err(|error| Problem::told(error).in_file(path))
+    let observed = session.during("finding operations", || observe(name, recording, segmenting));
+    observed.map_err(|error| Problem::told(error).in_file(path))
 }

@@ -5,16 +5,18 @@ use std::path::PathBuf;
 use clap::Args;
 use debounce_core::{Envelope, PerChange, StateMachine};
 
-use super::envelope_input::EnvelopeInput;
+use super::envelope_input::{EnvelopeGiven, EnvelopeInput};
 use super::limit_answer::{Known, LimitFound, Reached};
 use super::logic_name::NamedLogic;
 use super::machine_file::MachineFile;
+use super::report::ReportOption;
 use super::{Answer, Failure, Session};
 use crate::law_text::LawParameters;
 use crate::machine::MachineTable;
 use crate::problem::Problem;
 use crate::prove::{LimitAnswer, Limits, Solution, promptest_logic, prove_within, solve_limit};
 use crate::quantity::TickPeriod;
+use crate::report::html;
 
 /// What no logic can beat in an envelope, with a logic that reaches it.
 #[derive(Args, Clone, PartialEq, Debug, Default)]
@@ -36,6 +38,9 @@ pub struct LimitArguments {
     /// Where the logic that reaches the limit is written; the ending says how: kiss2, csv, txt, dot, svg, rs
     #[arg(long, value_name = "FILE")]
     pub machine: Option<PathBuf>,
+    /// The report.
+    #[command(flatten)]
+    pub report: ReportOption,
 }
 
 impl LimitArguments {
@@ -54,17 +59,23 @@ Examples:
 impl LimitArguments {
     /// Runs the command.
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
-        let (envelope, tick) = self.envelope.resolve(session)?;
+        let given = self.envelope.given(session, self.report.is_wanted())?;
+        let EnvelopeGiven { envelope, tick, caution, files } = given;
+        let report = self.report.prepare()?;
         let file = self.machine.as_deref().map(MachineFile::prepare).transpose()?;
         let solve = if self.earliest { promptest_logic } else { solve_limit };
         let mut limits = Limits::default();
         if envelope.limit().is_some() {
             limits.memory_bytes = BESIDE_FORMULA;
         }
-        let answer = solve(&envelope, &limits).map_err(Problem::told)?;
+        let answer =
+            session.during("searching the limit", || solve(&envelope, &limits)).map_err(Problem::told)?;
         let known = match answer {
             LimitAnswer::Unsolvable(reason) => Known::NoLogic(reason),
-            LimitAnswer::Solved(solution) => Known::Limit(Box::new(solved(&envelope, solution)?)),
+            LimitAnswer::Solved(solution) => {
+                let proved = session.during("exploring", || solved(&envelope, solution));
+                Known::Limit(Box::new(proved?))
+            }
             LimitAnswer::ClosedForm(latency) => Known::Limit(Box::new(by_formula(&envelope, latency, 0)?)),
             LimitAnswer::Unknown { beliefs, bytes } => match envelope.limit() {
                 Some(latency) => Known::Limit(Box::new(by_formula(&envelope, latency, beliefs)?)),
@@ -75,7 +86,12 @@ impl LimitArguments {
         if let (Some(file), Known::Limit(reached)) = (file, &known) {
             written.extend(file.write(&reached.machine)?);
         }
-        Ok(Box::new(LimitFound { envelope, tick: tick.map(TickPeriod::period), known, written }))
+        let tick = tick.map(TickPeriod::period);
+        if let Some(report) = report {
+            let limited = known.limited(&envelope, tick, caution);
+            written.push(report.write(session, files, |origin| html::limit(&limited, origin))?);
+        }
+        Ok(Box::new(LimitFound { envelope, tick, known, written }))
     }
 }
 

@@ -8,10 +8,12 @@ use serde_json::{Value, json};
 
 use super::envelope_input::{in_ticks, latency};
 use super::lines::{Lines, grouped, strong};
+use super::report::written;
 use super::{Answer, Outcome};
 use crate::law_text::LawParameters;
 use crate::machine::{MachineTable, Reading, terminal_diagram, write_kiss2};
 use crate::prove::{NoLogic, Outcome as Proved, Proof};
+use crate::report::html::{Limited, Reaching};
 use crate::report::timing::TimingDiagram;
 use crate::report::{json as report, words};
 
@@ -28,6 +30,29 @@ pub(super) enum Known {
     NoLogic(NoLogic),
     /// The limit, and a logic that reaches it.
     Limit(Box<Reached>),
+}
+
+impl Known {
+    /// The same for a report.
+    pub(super) fn limited<'a>(
+        &'a self,
+        envelope: &'a Envelope,
+        tick: Option<Period>,
+        caution: Option<&'static str>,
+    ) -> Limited<'a> {
+        let found = match self {
+            Self::NoLogic(reason) => Err(reason),
+            Self::Limit(reached) => Ok(Reaching {
+                latency: reached.latency,
+                name: &reached.name,
+                machine: &reached.machine,
+                proof: reached.proof.as_ref(),
+                evidence: reached.evidence(),
+                law: reached.law.filter(|_| reached.by_search).map(|law| law.to_string()),
+            }),
+        };
+        Limited { envelope, tick, caution, found }
+    }
 }
 
 /// A limit with a logic that has exactly that latency.
@@ -83,10 +108,7 @@ impl Answer for LimitFound {
             }
             Known::Limit(reached) => self.limit(&mut lines, reached)?,
         }
-        for path in &self.written {
-            lines.plain(&format!("written: {}\n", path.display()))?;
-        }
-        Ok(())
+        written(&mut lines, &self.written)
     }
 
     fn to_json(&self) -> Value {

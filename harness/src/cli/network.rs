@@ -93,7 +93,6 @@ impl NetworkArguments {
         if let Some(report) = report {
             let files = self.requirement.iter().map(|path| source_file(path, "requirement"));
             let files = files.collect::<Result<_, _>>()?;
-            let origin = html::Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
             let cautions: Vec<_> = [role.caution(), caution(&resolved)].into_iter().flatten().collect();
             let found = html::Networked {
                 resolved: &resolved,
@@ -102,7 +101,7 @@ impl NetworkArguments {
                 waveforms: &waveforms,
                 cautions: &cautions,
             };
-            written.push(report.write(&html::network(&found, &origin))?);
+            written.push(report.write(session, files, |origin| html::network(&found, origin))?);
         }
         Ok(Box::new(NetworkAnswer { resolved, analysis, review, waveforms, role, written }))
     }

@@ -18,7 +18,7 @@ use crate::choose::known_limit;
 use crate::problem::Problem;
 use crate::prove::{Beyond, Contract, Effort, Limits, closed_form_limit, prove_contract};
 use crate::quantity::TickPeriod;
-use crate::report::html::{self, Origin};
+use crate::report::html;
 use crate::report::witness::write_witness;
 
 /// Proves or refutes one law in an envelope.
@@ -108,11 +108,11 @@ impl ProveArguments {
         let machine_file = self.machine.as_deref().map(MachineFile::prepare).transpose()?;
         let contract = self.contract.into();
         let limits = Limits::default();
-        let bar = session.waiting("exploring");
-        let proof = prove_contract(&logic.table, &envelope, contract, &limits).map_err(Problem::told)?;
-        bar.finish_and_clear();
+        let explored =
+            session.during("exploring", || prove_contract(&logic.table, &envelope, contract, &limits));
+        let proof = explored.map_err(Problem::told)?;
         let effort = if self.thorough { Effort::Thorough } else { Effort::Quick };
-        let beyond = Beyond::of(&logic.table, &proof, effort, &limits);
+        let beyond = session.during("searching beyond", || Beyond::of(&logic.table, &proof, effort, &limits));
         let again = self.again(&name, &envelope, tick);
         let tick = tick.map(TickPeriod::period);
         let limit = match contract {
@@ -130,7 +130,6 @@ impl ProveArguments {
             written.extend(files.commit()?);
         }
         if let Some(report) = report {
-            let origin = Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
             let proved = html::Proved {
                 name: &logic.name,
                 machine: &logic.machine,
@@ -141,7 +140,7 @@ impl ProveArguments {
                 tick,
                 caution,
             };
-            written.push(report.write(&html::proof(&proved, &origin))?);
+            written.push(report.write(session, files, |origin| html::proof(&proved, origin))?);
         }
         Ok(Box::new(Proved { logic, envelope, tick, proof, beyond, limit, written, again }))
     }

@@ -10,6 +10,7 @@ use super::beyond_text::{beyond, still_bears};
 use super::envelope_input::{in_ticks, latency};
 use super::lines::{Lines, grouped, strong};
 use super::logic_name::NamedLogic;
+use super::report::written;
 use super::{Answer, Outcome};
 use crate::prove::{self, Beyond, Contract, Proof};
 use crate::report::timing::TimingDiagram;
@@ -91,10 +92,7 @@ impl Answer for Proved {
                 lines.command(&format!("again: {}", self.again))
             }
         }?;
-        for path in &self.written {
-            lines.plain(&format!("written: {}\n", path.display()))?;
-        }
-        Ok(())
+        written(&mut lines, &self.written)
     }
 
     fn to_json(&self) -> Value {

@@ -1,19 +1,20 @@
 //! `harness recheck`: every claim of a requirement file, checked again.
 
 use std::fs::{self, File};
-use std::io::{self, Read, Write};
+use std::io::{self, Write};
 use std::path::{Path, PathBuf};
 
 use clap::Args;
 use serde_json::{Value, json};
-use sha2::{Digest, Sha256};
 
 use super::input::Input;
 use super::lines::{Lines, strong};
 use super::recordings::RequirementInput;
+use super::report::written;
 use super::study::failure;
 use super::{Answer, Failure, Outcome, OutputFolder, ReadingOptions, Session, faults};
 use crate::choose::Preference;
+use crate::digest::Digest;
 use crate::logic::Logic;
 use crate::problem::Problem;
 use crate::quantity::Time;
@@ -151,21 +152,11 @@ fn module(requirement: &Requirement) -> Result<Option<ShippedModule>, Problem> {
 /// What tells the recordings from any other files.
 fn digests(requirement: &Requirement) -> Result<Vec<FileDigest>, Failure> {
     let digest = |path: &Path| -> Result<FileDigest, Problem> {
-        let sha256 = sha256(path).map_err(|error| faults::unreadable("recording", path, &error))?;
+        let found = File::open(path).and_then(Digest::of);
+        let Digest { sha256, .. } = found.map_err(|error| faults::unreadable("recording", path, &error))?;
         Ok(FileDigest { name: requirement.as_written(path).display().to_string(), sha256 })
     };
     requirement.recordings.iter().map(|one| Ok(digest(&one.path.value)?)).collect()
-}
-
-fn sha256(path: &Path) -> io::Result<String> {
-    let (mut file, mut hash, mut part) = (File::open(path)?, Sha256::new(), vec![0; 1 << 16]);
-    loop {
-        match file.read(&mut part)? {
-            0 => break,
-            read => hash.update(&part[..read]),
-        }
-    }
-    Ok(hash.finalize().iter().map(|byte| format!("{byte:02x}")).collect())
 }
 
 fn write((folder, name): (OutputFolder, String), text: &str) -> Result<Vec<PathBuf>, Problem> {
@@ -193,10 +184,7 @@ impl Answer for Rechecked {
             }
             one(&mut lines, answer)?;
         }
-        for path in &self.written {
-            lines.item("Written", &path.display().to_string())?;
-        }
-        Ok(())
+        written(&mut lines, &self.written)
     }
 
     fn to_json(&self) -> Value {

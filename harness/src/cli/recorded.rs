@@ -5,10 +5,7 @@ use std::io;
 use debounce_core::Change;
 
 use super::lines::Lines;
-use crate::characterise::tolerance;
-use crate::quantity::Share;
-use crate::replay::Failures;
-use crate::report::words;
+use crate::report::{claim_words, words};
 use crate::requirement::{Origin, TakenAt};
 use crate::study::{Claims, DesignBounce, Observed};
 
@@ -75,13 +72,7 @@ pub(super) fn claims(lines: &mut Lines<'_>, claims: &Claims) -> io::Result<()> {
             0 => String::new(),
             more => format!("; {more} more are needed for {}", claims.coverage),
         };
-        Some(format!(
-            "{} of {}s bounce no longer than {} ({} recorded{enough})",
-            words::covered(claim.covered),
-            words::change(change),
-            words::at_most(claim.longest_ns),
-            claim.operations,
-        ))
+        Some(format!("{} ({} recorded{enough})", claim_words::claim(&claim, change), claim.operations))
     };
     let parts: Vec<String> = both.into_iter().filter_map(part).collect();
     if parts.is_empty() {
@@ -105,34 +96,6 @@ pub(super) fn claims(lines: &mut Lines<'_>, claims: &Claims) -> io::Result<()> {
 
 /// The bounce that is designed for, and the claim that it stands on.
 fn design(change: Change, design: &DesignBounce) -> String {
-    let basis = match (design.origin, design.margin) {
-        (Origin::Measured, Some(margin)) => format!("that claim with a margin of {margin}"),
-        (origin, _) => match design.covered {
-            Some(covered) => format!(
-                "{origin}; {} of {} recorded were longer, so it covers {} of all",
-                design.longer,
-                design.recorded,
-                words::covered(covered)
-            ),
-            None if design.recorded > 0 => {
-                format!("{origin}; every one of {} recorded was longer", design.recorded)
-            }
-            None => format!("{origin}; none was recorded"),
-        },
-    };
+    let basis = claim_words::design_basis(design);
     format!("{} after a {}: {basis}", words::at_most(design.ns), words::change(change))
-}
-
-/// With which confidence how few operations fail, by those that a replay could judge.
-pub(super) fn failures(found: &Failures, confidence: Share) -> Option<String> {
-    let share = tolerance::Share::try_new(confidence.fraction()).ok()?;
-    let (missed, doubled) = found.rates_at_most(share).ok()?;
-    Some(format!(
-        "{} missed, {} doubled of {} changes; with {confidence} confidence at most {} of all missed, {} doubled",
-        found.missed,
-        found.doubled,
-        found.changes,
-        words::rate_at_most(missed),
-        words::rate_at_most(doubled),
-    ))
 }

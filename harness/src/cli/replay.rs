@@ -10,7 +10,7 @@ use serde_json::{Value, json};
 use super::input::Input;
 use super::lines::Lines;
 use super::logic_name::{LogicName, OutputOf, Runnable};
-use super::recorded::{failures, taken_at};
+use super::recorded::taken_at;
 use super::recordings::RequirementInput;
 use super::{Answer, Failure, Outcome, Session};
 use crate::characterise::Burst;
@@ -21,7 +21,7 @@ use crate::prove::{Witness, WitnessTick};
 use crate::quantity::{Share, TickPeriod, counted};
 use crate::replay::{ClockMeasurement, Draws, Failures, PreparedClock};
 use crate::report::timing::TimingDiagram;
-use crate::report::{characterised, words};
+use crate::report::{characterised, claim_words, words};
 use crate::requirement::Word;
 use crate::sample::SampleClock;
 use crate::study::{Observed, measured};
@@ -92,6 +92,8 @@ impl ReplayArguments {
             shortest_dwell_ns: shortest.open.value.ns().min(shortest.closed.value.ns()),
         };
         let mut runs = Vec::new();
+        let steps = input.observed.len() * resolved.ticks.value.len();
+        let bar = session.progress("replaying", steps as u64);
         for (recording, one) in input.observed.iter().enumerate() {
             for &tick in &resolved.ticks.value {
                 let clock = resolved.clock(tick);
@@ -103,6 +105,7 @@ impl ReplayArguments {
                 };
                 let failures = Failures::of(&measured.nominal, &one.truth);
                 runs.push(Run { recording, tick, clock, measured, failures });
+                bar.inc(1);
             }
         }
         let confidence = resolved.confidence.value;
@@ -246,7 +249,7 @@ impl Replayed {
                 words::count(places, "place")
             ))?;
         }
-        if let Some(text) = failures(&run.failures, self.confidence) {
+        if let Some(text) = claim_words::failures(&run.failures, self.confidence) {
             lines.item("Rate", &text)?;
         }
         if let Some(drawn) = &run.measured.drawn {

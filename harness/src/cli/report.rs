@@ -6,8 +6,9 @@ use std::path::{Path, PathBuf};
 use clap::Args;
 
 use super::lines::Lines;
-use super::{Failure, OutputFolder};
+use super::{Failure, OutputFolder, Session};
 use crate::problem::Problem;
+use crate::report::html::{Origin, SourceFile};
 
 /// The report of a command.
 #[derive(Args, Clone, PartialEq, Eq, Debug, Default)]
@@ -48,12 +49,27 @@ pub(super) struct ReportFile {
 }
 
 impl ReportFile {
-    /// Writes the report, whole or not at all.
-    pub(super) fn write(self, html: &str) -> Result<PathBuf, Failure> {
+    /// Writes the report that `html` makes of a run, whole or not at all.
+    pub(super) fn write(
+        self,
+        session: &Session,
+        files: Vec<SourceFile>,
+        html: impl FnOnce(&Origin) -> String,
+    ) -> Result<PathBuf, Failure> {
+        self.write_html(&html(&origin(session, files)))
+    }
+
+    /// Writes a report, whole or not at all.
+    pub(super) fn write_html(self, html: &str) -> Result<PathBuf, Failure> {
         let mut files = self.folder.stage();
         files.add(&self.name, |out| out.write_all(html.as_bytes()))?;
         Ok(files.commit()?.swap_remove(0))
     }
+}
+
+/// How a run that read `files` obtained what it reports. No command that reports draws anything at random.
+pub(super) fn origin(session: &Session, files: Vec<SourceFile>) -> Origin {
+    Origin { command: session.line().to_owned(), files, seeds: Vec::new() }
 }
 
 /// The files that a command wrote, where it wrote any.

@@ -7,7 +7,10 @@ use std::time::Duration;
 
 use anstream::AutoStream;
 use clap::Args;
-use indicatif::{HumanDuration, ProgressBar, ProgressDrawTarget, ProgressState, ProgressStyle};
+use indicatif::{
+    HumanDuration, MultiProgress, ProgressBar, ProgressDrawTarget, ProgressFinish, ProgressState,
+    ProgressStyle,
+};
 use serde_json::{Value, json};
 
 use super::ascii::{AsciiOnly, is_ascii_terminal};
@@ -22,6 +25,9 @@ const PATIENCE: Duration = Duration::from_secs(1);
 
 /// Steps with their rate and the time left, in ASCII.
 const BAR: &str = "{msg} [{wide_bar}] {percent} %, {per_sec}, {left}";
+
+/// Bytes that are read, in the same way.
+const READING: &str = "{msg} [{wide_bar}] {percent} %, {binary_bytes_per_sec}, {left}";
 
 /// Time that passes, in ASCII.
 const SPINNER: &str = "{spinner} {msg}, {elapsed} so far";
@@ -72,13 +78,16 @@ pub struct Session {
     options: GlobalOptions,
     command: &'static str,
     line: String,
+    /// All that are drawn, each on a line of its own.
+    bars: MultiProgress,
 }
 
 impl Session {
     /// A run of `command`, typed as `line`.
     #[must_use]
-    pub const fn new(command: &'static str, options: GlobalOptions, line: String) -> Self {
-        Self { options, command, line }
+    pub fn new(command: &'static str, options: GlobalOptions, line: String) -> Self {
+        let bars = MultiProgress::with_draw_target(ProgressDrawTarget::stderr_with_hz(8));
+        Self { options, command, line, bars }
     }
 
     /// The command line, as a shell takes it again.
@@ -91,7 +100,7 @@ impl Session {
     pub fn warn(&self, message: &str) {
         if !self.options.quiet {
             // Losing a warning because nobody reads standard error is no reason to lose the answer.
-            drop(to_stderr(&format!("warning: {message}\n")));
+            drop(self.bars.suspend(|| to_stderr(&format!("warning: {message}\n"))));
         }
     }
 
@@ -99,29 +108,46 @@ impl Session {
     /// nothing for the first second.
     #[must_use]
     pub fn progress(&self, what: &'static str, steps: u64) -> ProgressBar {
-        let bar = ProgressBar::with_draw_target(Some(steps), ProgressDrawTarget::hidden())
-            .with_style(style(BAR))
-            .with_message(what);
-        self.show_later(bar)
+        self.bar(what, Some(steps), BAR)
+    }
+
+    /// As [`progress`](Self::progress), for a file of so many bytes.
+    #[must_use]
+    pub fn reading(&self, bytes: u64) -> ProgressBar {
+        self.bar("reading", Some(bytes), READING)
     }
 
     /// As [`progress`](Self::progress), for work whose end nobody can tell: it shows that time passes.
     #[must_use]
     pub fn waiting(&self, what: &'static str) -> ProgressBar {
-        let bar = ProgressBar::with_draw_target(None, ProgressDrawTarget::hidden())
-            .with_style(style(SPINNER))
-            .with_message(what);
+        self.bar(what, None, SPINNER)
+    }
+
+    /// Does some work whose end nobody can tell, [`waiting`](Self::waiting) meanwhile.
+    pub fn during<T>(&self, what: &'static str, work: impl FnOnce() -> T) -> T {
+        let bar = self.waiting(what);
+        let done = work();
+        bar.finish_and_clear();
+        done
+    }
+
+    fn bar(&self, what: &'static str, steps: Option<u64>, template: &str) -> ProgressBar {
+        let bar = ProgressBar::with_draw_target(steps, ProgressDrawTarget::hidden())
+            .with_style(style(template))
+            .with_message(what)
+            // Where the work fails, the refusal takes the place of the bar.
+            .with_finish(ProgressFinish::AndClear);
         self.show_later(bar)
     }
 
     /// Draws the bar where a person sees it, once the work has taken so long that they may wonder.
     fn show_later(&self, bar: ProgressBar) -> ProgressBar {
         if !self.options.quiet && io::stderr().is_terminal() {
-            let later = bar.downgrade();
+            let (later, bars) = (bar.downgrade(), self.bars.clone());
             thread::spawn(move || {
                 thread::sleep(PATIENCE);
                 if let Some(bar) = later.upgrade().filter(|bar| !bar.is_finished()) {
-                    bar.set_draw_target(ProgressDrawTarget::stderr_with_hz(8));
+                    let bar = bars.add(bar);
                     bar.enable_steady_tick(Duration::from_millis(250));
                 }
             });
@@ -219,10 +245,11 @@ mod tests {
 
     #[test]
     fn progress_is_ascii_with_rate_and_time_left() {
-        for template in [BAR, SPINNER] {
+        for template in [BAR, READING, SPINNER] {
             assert!(ProgressStyle::with_template(template).is_ok() && template.is_ascii(), "{template}");
         }
         assert!(BAR.contains("{per_sec}") && BAR.contains("{left}"));
+        assert!(READING.contains("{binary_bytes_per_sec}") && READING.contains("{left}"));
     }
 
     #[test]

@@ -8,12 +8,13 @@ use indicatif::ProgressBar;
 use super::input::Input;
 use super::preference::PreferenceOption;
 use super::recordings::RequirementInput;
-use super::report::ReportOption;
+use super::report::{ReportOption, origin};
 use super::study_answer::StudyAnswer;
 use super::{Answer, Failure, OutputFolder, Session};
+use crate::clock_range::{ClockQuestion, clock_range};
 use crate::emit::{module_name, rust_module};
 use crate::problem::Problem;
-use crate::report::html::{self, Origin};
+use crate::report::html;
 use crate::report::json;
 use crate::requirement::Requirement;
 use crate::study::{Study, StudyError};
@@ -71,8 +72,8 @@ impl StudyArguments {
             session.warn(&caution.to_string());
         }
         let html = wanted.then(|| {
-            let origin = Origin { command: session.line().to_owned(), files, seeds: Vec::new() };
-            html::study(&study, input.demo, &origin)
+            let range = clock_range(&ClockQuestion::of(&study.resolved));
+            html::study(&study, &range, input.demo, &origin(session, files))
         });
         let html = html.unwrap_or_default();
         let mut written = match folder {
@@ -80,7 +81,7 @@ impl StudyArguments {
             None => Vec::new(),
         };
         if let Some(report) = report {
-            written.push(report.write(&html)?);
+            written.push(report.write_html(&html)?);
         }
         Ok(Box::new(StudyAnswer { study, demo: input.demo, written }))
     }

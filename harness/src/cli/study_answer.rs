@@ -9,12 +9,13 @@ use serde_json::{Value, json};
 
 use super::choose::network;
 use super::lines::{Lines, grouped, strong};
-use super::recorded::{claims, failures, recorded};
+use super::recorded::{claims, recorded};
+use super::report::written;
 use super::{Answer, Outcome};
 use crate::choose::{Candidate, Judgement};
 use crate::prove::Recovery;
 use crate::quantity::{TickPeriod, counted};
-use crate::report::{json, words};
+use crate::report::{claim_words, json, words};
 use crate::requirement::TakenAt;
 use crate::study::{Guarantees, Study};
 
@@ -113,7 +114,8 @@ impl StudyAnswer {
                 ),
             )?;
         }
-        if let Some(text) = self.study.failures().and_then(|all| failures(&all, self.study.claims.confidence))
+        if let Some(text) =
+            self.study.failures().and_then(|all| claim_words::failures(&all, self.study.claims.confidence))
         {
             lines.more(&text)?;
         }
@@ -164,17 +166,16 @@ impl StudyAnswer {
                 "relax what is asked, record the contact again, or state the figures that the recording exceeds",
             );
         }
-        if self.written.is_empty() {
+        written(lines, &self.written)?;
+        if self.written.iter().any(|path| path.extension().is_some_and(|ending| ending == "rs")) {
+            lines.item("Next", "add the .rs file to the firmware beside debounce-core and tick it; its build checks the choice again")?;
+        } else {
             let again =
                 if self.demo { "harness study --output results" } else { "the same with --output FOLDER" };
             lines.item(
                 "Next",
                 &format!("{again} writes the report, the Rust module and the results as JSON"),
             )?;
-        } else {
-            let files: Vec<String> = self.written.iter().map(|path| path.display().to_string()).collect();
-            lines.item("Written", &files.join(", "))?;
-            lines.item("Next", "add the .rs file to the firmware beside debounce-core and tick it; its build checks the choice again")?;
         }
         if self.demo {
             lines.more("with your own recording: harness study gate.vcd --latency \"20 ms\"")?;

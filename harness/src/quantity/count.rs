@@ -10,12 +10,18 @@ use super::{Quantity, QuantityError};
 #[derive(Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash, Debug, Default)]
 pub struct Ticks(pub u32);
 
+/// A number of instructions, written "40 instructions".
+#[derive(Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash, Debug, Default)]
+pub struct Instructions(pub u32);
+
 /// A number of bytes, written "64 bytes" or "2 KiB".
 #[derive(Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash, Debug, Default)]
 pub struct Bytes(pub u32);
 
 const TICKS: Manner = Manner { name: "a number of ticks", units: &["ticks"] };
 const TICK_UNITS: &[Unit] = &[("tick", 1), ("ticks", 1)];
+const INSTRUCTIONS: Manner = Manner { name: "a number of instructions", units: &["instructions"] };
+const INSTRUCTION_UNITS: &[Unit] = &[("instruction", 1), ("instructions", 1)];
 const BYTES: Manner = Manner { name: "a number of bytes", units: &["bytes", "KiB"] };
 const BYTE_UNITS: &[Unit] =
     &[("byte", 1), ("bytes", 1), ("B", 1), ("kB", 1_000), ("KiB", 1_024), ("MiB", 1 << 20)];
@@ -54,6 +60,25 @@ impl fmt::Display for Ticks {
     }
 }
 
+impl Quantity for Instructions {
+    const NAME: &'static str = INSTRUCTIONS.name;
+    const EXAMPLE: &'static str = "40 instructions";
+}
+
+impl FromStr for Instructions {
+    type Err = QuantityError;
+
+    fn from_str(text: &str) -> Result<Self, QuantityError> {
+        count(text, &INSTRUCTIONS, INSTRUCTION_UNITS, "1 instruction").map(Self)
+    }
+}
+
+impl fmt::Display for Instructions {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        write!(f, "{} {}", self.0, if self.0 == 1 { "instruction" } else { "instructions" })
+    }
+}
+
 impl Quantity for Bytes {
     const NAME: &'static str = BYTES.name;
     const EXAMPLE: &'static str = "4 bytes";
@@ -85,6 +110,8 @@ mod tests {
         assert_eq!("2 KiB".parse(), Ok(Bytes(2_048)));
         assert_eq!(Ticks(1).to_string(), "1 tick");
         assert_eq!(Bytes(64).to_string(), "64 bytes");
+        assert_eq!("40 instructions".parse(), Ok(Instructions(40)));
+        assert_eq!(Instructions(1).to_string(), "1 instruction");
     }
 
     #[test]

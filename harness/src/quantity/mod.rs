@@ -14,7 +14,7 @@ mod voltage;
 
 use std::str::FromStr;
 
-pub use count::{Bytes, Ticks, counted};
+pub use count::{Bytes, Instructions, Ticks, counted};
 pub use electrical::{Capacitance, Current, Resistance, ShortTime};
 pub use part::{Part, Spread, TemperatureCode, VoltageRange};
 pub use period::TickPeriod;

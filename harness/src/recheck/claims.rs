@@ -4,6 +4,7 @@ use debounce_core::Change;
 
 use super::{Claim, FileDigest, Standing, Subject};
 use crate::choose::{Candidate, Evidence, Judgement};
+use crate::cost;
 use crate::report::words;
 use crate::requirement::Requirement;
 use crate::study::{self, Study};
@@ -158,6 +159,23 @@ pub(super) fn budget(requirement: &Requirement, study: &Study, candidate: &Candi
             Standing::Broken(vec![format!("{bytes} bytes, {} too many", bytes - allowed)])
         };
         claim(format!("an input takes at most {allowed} bytes of RAM"), standing);
+    }
+    if let Some(allowed) = requirement.budget.instructions.map(|most| most.value.0) {
+        let core = requirement.budget.core.map(|core| core.value);
+        let place = core.map_or("any core that was looked at".to_owned(), |core| core.to_string());
+        let standing = match cost::instructions(&candidate.parameters, core) {
+            Some(count) if count <= allowed => Standing::Holds(format!(
+                "{count}, as counted for a {}",
+                cost::counted_as(&candidate.parameters)
+            )),
+            Some(count) => Standing::Broken(vec![format!(
+                "{count}, as counted for a {}, {} too many",
+                cost::counted_as(&candidate.parameters),
+                count - allowed
+            )]),
+            None => Standing::Broken(vec!["not counted for so wide a state".to_owned()]),
+        };
+        claim(format!("a tick takes at most {allowed} instructions an input on {place}"), standing);
     }
     let tick = study.tick(candidate);
     if let Some(fastest) = requirement.budget.fastest_tick.map(|fastest| fastest.value) {

@@ -28,7 +28,7 @@ pub struct ApartDiagram<'a> {
 }
 
 /// The output of a machine after each sample.
-fn outputs(machine: &MachineTable, apart: &Apart) -> Vec<Position> {
+pub(super) fn outputs(machine: &MachineTable, apart: &Apart) -> Vec<Position> {
     let mut state = machine.rest(apart.start);
     let mut one = |&sample: &Position| {
         let _edge = machine.step(&mut state, sample);

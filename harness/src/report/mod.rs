@@ -2,6 +2,7 @@
 
 pub mod apart;
 pub mod characterised;
+pub mod claim_words;
 pub mod clock_plot;
 pub mod html;
 pub mod json;

@@ -87,6 +87,13 @@ pub fn shortfall(shortfall: &Shortfall) -> String {
                 bytes - allowed
             )
         }
+        Shortfall::TooManyInstructions { instructions: Some(count), allowed } => format!(
+            "the worst tick takes {count} instructions, {} more than the {allowed} allowed",
+            count - allowed
+        ),
+        Shortfall::TooManyInstructions { instructions: None, allowed } => format!(
+            "the instructions of a tick were not counted for so wide a state, and {allowed} are allowed"
+        ),
         Shortfall::FailsOnRecording { recording } => format!("fails on recording {}", recording + 1),
     }
 }

@@ -50,6 +50,8 @@
 //! [budget]
 //! ram = "4 bytes"           # for each input
 //! fastest_tick = "2 kHz"
+//! instructions = "40 instructions"   # of the worst tick of an input, as counted for its kind of law
+//! core = "cortex-m3"        # where they are counted; without it the most of all cores counts
 //!
 //! [network]                 # what stands between the contact and the pin, if anything does
 //! input = "schmitt-pin"
@@ -92,7 +94,7 @@ use std::sync::Arc;
 use debounce_core::{PerChange, PerPosition};
 
 use crate::problem::SourceText;
-use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time, Voltage};
+use crate::quantity::{Bytes, Instructions, Share, TickPeriod, Ticks, Time, Voltage};
 
 pub use firmware::Firmware;
 pub use front::InFront;
@@ -104,7 +106,7 @@ pub use read::{parse, read};
 pub use reading::Reading;
 pub use resolve::{Measured, Resolved, ResolvedRow, Seen, allowed_samples};
 pub use source::{Origin, Sourced};
-pub use words::{ContactKind, DiodeKind, Level, Quickened, Role, TakenAt, Word};
+pub use words::{ContactKind, Core, DiodeKind, Level, Quickened, Role, TakenAt, Word};
 
 /// A requirement as far as it has been given.
 #[derive(Clone, PartialEq, Debug, Default)]
@@ -219,6 +221,10 @@ pub struct Budget {
     pub ram: Option<Sourced<Bytes>>,
     /// The fastest tick that the firmware can serve.
     pub fastest_tick: Option<Sourced<TickPeriod>>,
+    /// Instructions of a tick, for each input.
+    pub instructions: Option<Sourced<Instructions>>,
+    /// The core on which they are counted.
+    pub core: Option<Sourced<Core>>,
 }
 
 impl Requirement {

@@ -8,11 +8,11 @@ use debounce_core::{PerChange, PerPosition};
 use super::check::check;
 use super::pair::{ForChanges, ForPositions};
 use super::{
-    ContactKind, Level, Origin, Reading, Recording, Requirement, Role, Sourced, TakenAt, Thresholds,
+    ContactKind, Core, Level, Origin, Reading, Recording, Requirement, Role, Sourced, TakenAt, Thresholds,
     TickChoice, read,
 };
 use crate::problem::{Problem, Problems};
-use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time, Voltage};
+use crate::quantity::{Bytes, Instructions, Share, TickPeriod, Ticks, Time, Voltage};
 
 /// A requirement as options of a command.
 ///
@@ -106,6 +106,12 @@ pub struct RequirementOptions {
     /// Fastest tick that the firmware can serve
     #[arg(long, value_name = "RATE", help_heading = "Requirement")]
     pub fastest_tick: Option<TickPeriod>,
+    /// Instructions of a tick for each input, as counted for its kind of law
+    #[arg(long, value_name = "COUNT", help_heading = "Requirement")]
+    pub instructions: Option<Instructions>,
+    /// Core on which instructions are counted: cortex-m3, cortex-m0 or riscv32imc; all of them without it
+    #[arg(long, value_name = "CORE", help_heading = "Requirement")]
+    pub core: Option<Core>,
 }
 
 /// The value of an option over that of the file.
@@ -176,6 +182,8 @@ impl RequirementOptions {
         over(&mut clock.lost, &self.lost, "--lost");
         over(&mut requirement.budget.ram, &self.ram, "--ram");
         over(&mut requirement.budget.fastest_tick, &self.fastest_tick, "--fastest-tick");
+        over(&mut requirement.budget.instructions, &self.instructions, "--instructions");
+        over(&mut requirement.budget.core, &self.core, "--core");
         problems.extend(check(&requirement));
         match Problems::from_found(problems) {
             Some(problems) => Err(problems),

@@ -139,7 +139,9 @@ fn requirement<'t>(reader: &mut Reader, root: &'t DeTable<'t>) -> Requirement {
     if let Some(mut section) = reader.section(&mut root, "budget") {
         let ram = reader.quantity(&mut section, "ram");
         let fastest_tick = reader.quantity(&mut section, "fastest_tick");
-        requirement.budget = Budget { ram, fastest_tick };
+        let instructions = reader.quantity(&mut section, "instructions");
+        let core = reader.word(&mut section, "core");
+        requirement.budget = Budget { ram, fastest_tick, instructions, core };
         reader.finish(section);
     }
     if let Some(section) = reader.section(&mut root, "network") {

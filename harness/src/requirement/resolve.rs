@@ -3,11 +3,11 @@
 use debounce_core::{PerChange, PerPosition, TickClock};
 
 use super::check;
-use super::{ContactKind, Figures, InFront, Level, Origin, Requirement, Role, Sourced, TickChoice};
+use super::{ContactKind, Core, Figures, InFront, Level, Origin, Requirement, Role, Sourced, TickChoice};
 use crate::characterise::tolerance;
 use crate::envelope::PhysicalEnvelope;
 use crate::problem::{Problem, Problems};
-use crate::quantity::{Bytes, Share, TickPeriod, Ticks, Time};
+use crate::quantity::{Bytes, Instructions, Share, TickPeriod, Ticks, Time};
 
 /// What the recordings show, as far as they show it.
 #[derive(Clone, PartialEq, Eq, Debug, Default)]
@@ -81,6 +81,10 @@ pub struct Resolved {
     pub ram: Option<Sourced<Bytes>>,
     /// The fastest tick that the firmware can serve, where it is limited.
     pub fastest_tick: Option<Sourced<TickPeriod>>,
+    /// Instructions of a tick for each input, where they are limited.
+    pub instructions: Option<Sourced<Instructions>>,
+    /// The core on which they are counted, where one is stated.
+    pub core: Option<Sourced<Core>>,
     /// The network in front of the pin, and what it makes of the contact.
     pub network: Option<InFront>,
 }
@@ -210,6 +214,8 @@ impl Requirement {
             lost: or_default(&self.clock.lost, Ticks(0), "the timer never misses"),
             ram: self.budget.ram,
             fastest_tick: self.budget.fastest_tick,
+            instructions: self.budget.instructions,
+            core: self.budget.core,
             network: None,
         })
     }
@@ -415,6 +421,8 @@ impl Resolved {
         ];
         rows.extend(self.ram.as_ref().map(|ram| row("budget.ram", ram)));
         rows.extend(self.fastest_tick.as_ref().map(|tick| row("budget.fastest_tick", tick)));
+        rows.extend(self.instructions.as_ref().map(|most| row("budget.instructions", most)));
+        rows.extend(self.core.as_ref().map(|core| row("budget.core", core)));
         rows.extend(self.network.iter().flat_map(InFront::rows));
         rows
     }

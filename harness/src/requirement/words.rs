@@ -131,6 +131,18 @@ words! {
 }
 
 words! {
+    /// A core on which the instructions of a tick were counted.
+    Core, "a core whose instructions were counted", {
+        /// Arm Cortex-M3, thumbv7m code.
+        CortexM3 = "cortex-m3",
+        /// Arm Cortex-M0, thumbv6m code.
+        CortexM0 = "cortex-m0",
+        /// A 32-bit RISC-V core with multiplication and short instructions.
+        Riscv32imc = "riscv32imc",
+    }
+}
+
+words! {
     /// A diode across the series resistor.
     DiodeKind, "a kind of diode", {
         /// A small-signal silicon diode.

@@ -15,6 +15,7 @@ use debounce_core::PerChange;
 use crate::characterise::tolerance::ToleranceError;
 use crate::choose::{Candidate, Evidence, Judgement, Preference, Question, Ranking, choose};
 use crate::conformance::{self, Conformance};
+use crate::cost::InstructionBudget;
 use crate::emit::{Configuration, Proof as Proved};
 use crate::envelope::PhysicalEnvelope;
 use crate::law_text::LawParameters;
@@ -201,6 +202,9 @@ fn question<'a>(
         latency_ns: PerChange { make: latency.make.value.ns(), break_: latency.break_.value.ns() },
         clocks: resolved.ticks.value.iter().map(|&tick| resolved.clock(tick)).collect(),
         ram_bytes: resolved.ram.map(|ram| ram.value.0),
+        instructions: resolved
+            .instructions
+            .map(|most| InstructionBudget { most: most.value.0, core: resolved.core.map(|core| core.value) }),
         recordings: observed.iter().enumerate().map(trace).collect(),
         preference,
         only: None,

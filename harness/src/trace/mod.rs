@@ -26,7 +26,7 @@ mod write;
 pub use crate::level::Level;
 pub use channel::{Channel, ChannelKind};
 pub use error::{Fault, Lack, MAX_FAULTS, ReadError};
-pub use open::{list_channels, read_bytes, read_channels, read_path, read_stream};
+pub use open::{list_channels, read_bytes, read_channels, read_path, read_path_through, read_stream};
 pub use options::{DecimalMark, Delimiter, ReadOptions, ThresholdError, Thresholds, TimeUnit};
 pub use polarity::{Polarity, Unknown};
 pub use recording::{Note, Recording};

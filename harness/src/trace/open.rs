@@ -19,9 +19,21 @@ pub(super) const PREFIX: usize = 1 << 16;
 /// # Errors
 /// Everything that is wrong with the file, with its places.
 pub fn read_path(path: impl AsRef<Path>, options: &ReadOptions) -> Result<Recording, ReadError> {
+    read_path_through(path, options, |file| file)
+}
+
+/// As [`read_path`], with the file read through what `through` makes of it, such as a count of what is read.
+///
+/// # Errors
+/// As [`read_path`].
+pub fn read_path_through<R: Read>(
+    path: impl AsRef<Path>,
+    options: &ReadOptions,
+    through: impl FnOnce(File) -> R,
+) -> Result<Recording, ReadError> {
     let path = path.as_ref();
     let name = path.display().to_string();
-    read_stream(&name, open(path, &name)?, options)
+    read_stream(&name, through(open(path, &name)?), options)
 }
 
 /// Reads several channels of a file in one pass, in the order of `channels`; `options.channel` is not used.

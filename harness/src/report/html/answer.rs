@@ -5,7 +5,7 @@ use maud::{Markup, html};
 
 use crate::choose::Candidate;
 use crate::prove::{Beyond, Recovery};
-use crate::report::words;
+use crate::report::{claim_words, words};
 use crate::study::{Caution, Guarantees, Study};
 
 /// The whole answer.
@@ -73,10 +73,16 @@ fn more(study: &Study, best: &Candidate, found: &Guarantees) -> Markup {
                     }
                 }
             }
+            @if let Some(text) = failures(study) { dd { (text) } }
             @if !beyond.is_empty() { dt { "Beyond" } }
             @for line in beyond { dd { (line) } }
         }
     }
+}
+
+/// How few operations fail, by those that the recordings let one judge.
+fn failures(study: &Study) -> Option<String> {
+    claim_words::failures(&study.failures()?, study.claims.confidence)
 }
 
 fn fact(what: &str, value: &str, class: &str) -> Markup {
@@ -160,19 +166,17 @@ fn confidence(study: &Study) -> Vec<String> {
     let (confidence, coverage) = (study.resolved.confidence.value, study.resolved.coverage.value);
     let claims = [Change::Make, Change::Break].into_iter().filter_map(|change| {
         let claim = study.claims.bounce.at(change)?;
-        // Rounded down to a tenth of a percent, which understates what is covered.
-        let covered = (claim.covered * 1000.0).floor() / 10.0;
         let short = if claim.operations < claim.needed {
             format!("; {} are needed for {coverage}", claim.needed)
         } else {
             String::new()
         };
         Some(format!(
-            "with {confidence} confidence {covered:.1} % of {}s bounce no longer than {}, from {} recorded, were they \
-             independent{short}",
-            words::change(change),
-            words::at_most(claim.longest_ns),
-            claim.operations
+            "with {confidence} confidence {}, from {} recorded, were they independent{short}; designed for {}: {}",
+            claim_words::claim(&claim, change),
+            claim.operations,
+            words::at_most(study.claims.design.of(change).ns),
+            claim_words::design_basis(study.claims.design.of(change)),
         ))
     });
     let lines: Vec<String> = claims.collect();

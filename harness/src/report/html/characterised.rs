@@ -5,7 +5,7 @@ use maud::{Markup, html};
 
 use super::bounce::Limit;
 use super::timing::{self, Shown};
-use super::{Cell, Origin, Page, Section, answer, bounce, distribution, origin, requirement, table};
+use super::{Cell, Origin, Page, Section, answer, bounce, claims, distribution, origin, requirement, table};
 use crate::characterise::Claim;
 use crate::report::words;
 use crate::requirement::Resolved;
@@ -39,14 +39,8 @@ pub fn characterised(found: &Characterised<'_>, origin: &Origin) -> String {
     let mut sections = Vec::new();
     sections.extend(timing::section(&shown, "Recorded"));
     sections.extend(bounce::section(found.observed, |change| limits(found, change)));
-    let confidence = found.resolved.confidence.value.to_string();
-    let claim = |change| claim(found, change);
-    sections.extend(distribution::section(
-        found.observed,
-        claim,
-        |change| limits(found, change),
-        &confidence,
-    ));
+    sections.extend(distribution::section(found.observed, |change| limits(found, change)));
+    sections.extend(claims::section(found.claims));
     sections.push(figures(found.observed));
     sections.push(requirement::section(found.resolved));
     sections.push(origin::section(origin, found.observed, &[]));
@@ -78,10 +72,8 @@ fn answered(found: &Characterised<'_>) -> Markup {
     html! {
         @for change in [Change::Make, Change::Break] {
             @if let Some(claim) = claim(found, change) {
-                // Rounded down to a tenth of a percent, which understates what is covered.
-                @let covered = (claim.covered * 1000.0).floor() / 10.0;
                 p class="choice" {
-                    (format!("{covered:.1}")) " % of " (words::change(change)) "s bounce no longer than "
+                    (words::covered(claim.covered)) " of " (words::change(change)) "s bounce no longer than "
                     strong { (words::at_most(claim.longest_ns)) }
                 }
                 p class="note" {

@@ -5,7 +5,7 @@ use maud::{Markup, html};
 
 use super::bounce::{Limit, marked, told};
 use super::{Cell, Figure, Section, table};
-use crate::characterise::{Claim, quantile_type_7};
+use crate::characterise::quantile_type_7;
 use crate::report::plot::{Axis, Plane, Scale, linear_ticks, px};
 use crate::report::words;
 use crate::study::Observed;
@@ -17,12 +17,7 @@ const HISTOGRAM: (f64, f64) = (206.0, PLANE.top);
 const DISTRIBUTION: (f64, f64) = (PLANE.bottom, 250.0);
 
 /// The two figures; `None` where nothing was recorded whole.
-pub(super) fn section(
-    observed: &[Observed],
-    claim: impl Fn(Change) -> Option<Claim>,
-    limits: impl Fn(Change) -> Vec<Limit>,
-    confidence: &str,
-) -> Option<Section> {
+pub(super) fn section(observed: &[Observed], limits: impl Fn(Change) -> Vec<Limit>) -> Option<Section> {
     let figures: Vec<Figure> = [Change::Make, Change::Break]
         .into_iter()
         .filter_map(|change| figure(observed, change, &limits(change)))
@@ -32,30 +27,8 @@ pub(super) fn section(
     }
     let body = html! {
         div class="pair" { @for figure in &figures { (figure.markup()) } }
-        @for change in [Change::Make, Change::Break] {
-            @if let Some(claim) = claim(change) { (claimed(change, &claim, confidence)) }
-        }
-        p class="note" {
-            "The claim is a tolerance limit free of any assumed distribution (S. S. Wilks, Ann. Math. Stat. 12 (1941) \
-             91-96). It holds for operations that are independent of one another and of the kind that was recorded; \
-             operations that depend on one another allow less."
-        }
     };
     Some(Section { id: "bounce", heading: "How long it bounces".to_owned(), body })
-}
-
-fn claimed(change: Change, claim: &Claim, confidence: &str) -> Markup {
-    // Rounded down to a tenth of a percent, which understates what is covered.
-    let covered = (claim.covered * 1000.0).floor() / 10.0;
-    html! {
-        p {
-            "With " (confidence) " confidence, " (format!("{covered:.1}")) " % of " (words::change(change))
-            "s bounce no longer than " strong { (words::at_most(claim.longest_ns)) } ": "
-            (claim.operations) " recorded"
-            @if claim.operations < claim.needed { ", " (claim.needed) " needed for what is asked" }
-            "."
-        }
-    }
 }
 
 fn figure(observed: &[Observed], change: Change, limits: &[Limit]) -> Option<Figure> {

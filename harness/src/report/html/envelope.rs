@@ -40,6 +40,16 @@ fn in_ticks(envelope: &Envelope, tick: &str) -> Markup {
     }
 }
 
+/// An envelope in samples, where nothing is known of the time.
+pub(super) fn in_samples(envelope: &Envelope) -> Section {
+    let body = html! {
+        p { "For every row of samples in which" }
+        (sample_table(envelope))
+        p { "Nothing is claimed of a contact that does anything else." }
+    };
+    Section { id: "envelope", heading: "Envelope".to_owned(), body }
+}
+
 /// An envelope in samples.
 pub(super) fn sample_table(envelope: &Envelope) -> Markup {
     let Envelope { dwell, bounce, glitch, quiet, calm, lost, .. } = envelope;

@@ -1,5 +1,7 @@
 //! Measured latencies of the candidates, beside what is proved and what is asked.
 
+use std::collections::BTreeMap;
+
 use debounce_core::{Change, PerChange};
 use maud::{Markup, html};
 
@@ -13,7 +15,9 @@ use crate::study::Study;
 
 /// Candidates that are shown.
 const MOST: usize = 9;
-const ROW: f64 = 46.0;
+const ROW: f64 = 66.0;
+/// Height of the most frequent latency of a candidate.
+const STEPS: f64 = 22.0;
 const TOP: f64 = 30.0;
 
 /// The delays of the candidates; `None` where nothing was measured.
@@ -30,8 +34,9 @@ pub(super) fn section(study: &Study) -> Option<Section> {
         p {
             "The recommended candidate, the best of each other kind of logic, and the best that holds at each other tick. \
              The delay is from the first edge of an operation to the sample that reports it, over \
-             every operation recorded and every phase of the tick. The bar reaches from the median to 95 %, the thin \
-             line from the shortest to the longest; the diamond is what is proved never to be reached."
+             every operation recorded and every phase of the tick. The steps show how it is distributed, one step for \
+             each number of samples, as high as it is frequent. Below them the bar reaches from the median to 95 %, \
+             the thin line from the shortest to the longest; the diamond is what is proved never to be reached."
         }
         div class="pair" { @for figure in &figures { (figure.markup()) } }
     };
@@ -94,8 +99,8 @@ fn figure(study: &Study, chosen: &[&Candidate], change: Change) -> Option<Figure
     let proved = rows.iter().filter_map(|(one, _)| at(one.worst_below_ns, change));
     let longest = rows.iter().map(|(_, delay)| delay.below_ns).chain(proved).max().unwrap_or(1);
     // What is asked may be far beyond everything; then it is only said.
-    let reach = if asked <= longest * 3 { longest.max(asked) } else { longest };
-    let height = TOP + ROW * rows.len() as f64 + 58.0;
+    let reach = if asked <= longest * 2 { longest.max(asked) } else { longest };
+    let height = TOP + ROW * rows.len() as f64 + 54.0;
     let plane = Plane { width: 480.0, height, left: 6.0, right: 468.0, top: TOP, bottom: height - 48.0 };
     let x = Scale::linear((0.0, reach as f64 * 1.04), plane.across());
     let word = words::change(change);
@@ -134,18 +139,43 @@ fn figure(study: &Study, chosen: &[&Candidate], change: Change) -> Option<Figure
     })
 }
 
+/// How often each number of samples occurs over all recordings, rising; together 1.
+fn shares(candidate: &Candidate, change: Change) -> Vec<(u64, f64)> {
+    let mut counts: BTreeMap<u64, f64> = BTreeMap::new();
+    for figures in candidate.measured.iter().map(|measured| measured.at(change)) {
+        for one in figures.latency.iter().flat_map(|latency| &latency.samples.histogram) {
+            *counts.entry(one.samples).or_default() += one.share * f64::from(figures.changes);
+        }
+    }
+    let whole: f64 = counts.values().sum();
+    counts.into_iter().map(|(samples, count)| (samples, count / whole)).collect()
+}
+
+/// The distribution as steps above `bottom`: a latency of so many samples is a delay within the last of their ticks.
+fn steps(shares: &[(u64, f64)], tick_ns: f64, x: &Scale, bottom: f64) -> String {
+    let most = shares.iter().map(|(_, share)| *share).fold(0.0, f64::max);
+    let step = |&(samples, share): &(u64, f64)| {
+        let (from, until) = ((samples.saturating_sub(1)) as f64 * tick_ns, samples as f64 * tick_ns);
+        let (left, right) = (px(x.within(from)), px(x.within(until)));
+        format!("M{left} {}V{}H{right}V{}z", px(bottom), px(bottom - STEPS * share / most), px(bottom))
+    };
+    shares.iter().map(step).collect()
+}
+
 fn row(study: &Study, one: &Candidate, delay: &Delay, x: &Scale, top: f64, change: Change) -> Markup {
     let word = words::change(change);
     let place = |ns: u64| px(x.at(ns as f64));
-    let middle = top + 30.0;
+    let middle = top + 52.0;
+    let tick_ns = study.tick(one).nearest_ns() as f64;
     html! {
+        path class={ "steps " (word) } d=(steps(&shares(one, change), tick_ns, x, top + 43.0)) {}
         text class={ "row-name" @if !one.holds() { " fails" } } x="6" y=(px(top + 14.0)) {
             (one.parameters) ", " (study.tick(one)) @if !one.holds() { " (does not hold)" }
         }
         path class={ "whisker " (word) } d={ "M" (place(delay.best_ns)) " " (px(middle)) "H" (place(delay.below_ns))
-            "M" (place(delay.below_ns)) " " (px(middle - 5.0)) "v10" } {}
-        rect class={ "bar " (word) } x=(place(delay.median_ns)) y=(px(middle - 6.0))
-            width=(px(x.at(delay.p95_ns as f64) - x.at(delay.median_ns as f64))) height="12" {}
+            "M" (place(delay.below_ns)) " " (px(middle - 4.0)) "v8" } {}
+        rect class={ "bar " (word) } x=(place(delay.median_ns)) y=(px(middle - 4.0))
+            width=(px(x.at(delay.p95_ns as f64) - x.at(delay.median_ns as f64))) height="8" {}
         @if let Some(worst) = at(one.worst_below_ns, change) {
             path class="diamond" d={ "M" (place(worst)) " " (px(middle - 7.0)) "l7 7l-7 7l-7 -7z" } {}
         }
@@ -157,6 +187,9 @@ fn numbers(study: &Study, rows: &[(&Candidate, Delay)], change: Change) -> Marku
         .iter()
         .map(|(one, delay)| {
             let proved = at(one.worst_below_ns, change).map_or("-".to_owned(), words::at_most);
+            let shares = shares(one, change);
+            let shares: Vec<String> =
+                shares.iter().map(|(samples, share)| format!("{samples}: {:.1} %", share * 100.0)).collect();
             vec![
                 Cell::text(one.parameters.to_string()),
                 Cell::number(study.tick(one).to_string()),
@@ -166,9 +199,11 @@ fn numbers(study: &Study, rows: &[(&Candidate, Delay)], change: Change) -> Marku
                 Cell::number(words::at_most(delay.p99_ns)),
                 Cell::number(words::at_most(delay.below_ns)),
                 Cell::number(proved),
+                Cell::text(shares.join(", ")),
             ]
         })
         .collect();
-    let head = ["law", "tick", "shortest", "median", "95 %", "99 %", "below", "proved below"];
+    let head =
+        ["law", "tick", "shortest", "median", "95 %", "99 %", "below", "proved below", "samples: share"];
     table(&format!("Delay of a {}", words::change(change)), &head, &rows)
 }

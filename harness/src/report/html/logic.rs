@@ -16,6 +16,11 @@ const BESIDE: usize = 12;
 
 /// The machine behind a logic, minimised.
 pub(super) fn section(name: &str, machine: &MachineTable) -> Section {
+    section_as("logic", name, machine)
+}
+
+/// The same where a page has several; `id` is that of the section.
+pub(super) fn section_as(id: &'static str, name: &str, machine: &MachineTable) -> Section {
     let counts = machine.counts();
     let body = html! {
         p {
@@ -24,8 +29,8 @@ pub(super) fn section(name: &str, machine: &MachineTable) -> Section {
              is rest; an arrow is one sample, open or closed, with the edge it reports."
         }
         div class=[(machine.len() <= BESIDE).then_some("pair logic")] {
-        @match state_diagram_downward(machine, "logic") {
-            Some(diagram) => figure class="figure" id="state-diagram" {
+        @match state_diagram_downward(machine, id) {
+            Some(diagram) => figure class="figure" id={ (id) "-diagram" } {
                 h3 { "State diagram" }
                 div class={ "picture scroll" @if machine.len() > BESIDE { " tall" } } tabindex="0" role="region" aria-label="State diagram" { (PreEscaped(diagram)) }
                 figcaption { "The next-state table says the same." }
@@ -40,7 +45,7 @@ pub(super) fn section(name: &str, machine: &MachineTable) -> Section {
         }
         }
     };
-    Section { id: "logic", heading: "The logic".to_owned(), body }
+    Section { id, heading: "The logic".to_owned(), body }
 }
 
 fn states(machine: &MachineTable) -> Markup {

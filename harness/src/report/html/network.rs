@@ -101,8 +101,22 @@ fn figure(waveform: &Waveform, change: Change) -> Figure {
             path class={ "curve " (word) } d={ "M" (line(|point| point.typical).join("L")) } {}
         },
         caption: html! {},
-        data: None,
+        data: Some(numbers(waveform, word)),
     }
+}
+
+/// Rows of the table of one edge.
+const ROWS: usize = 20;
+
+/// Evenly spaced points, the first and the last among them.
+fn numbers(waveform: &Waveform, word: &str) -> Markup {
+    let every = waveform.points.len().saturating_sub(1).div_ceil(ROWS).max(1);
+    let row = |point: &crate::network::Point| {
+        let volts = [point.lowest, point.typical, point.highest].map(|volts| Cell::number(si(volts, "V")));
+        core::iter::once(Cell::number(si(point.seconds, "s"))).chain(volts).collect::<Vec<_>>()
+    };
+    let rows: Vec<Vec<Cell>> = waveform.points.iter().step_by(every).map(row).collect();
+    table(&format!("The pin after a {word}"), &["after", "lowest", "typical", "highest"], &rows)
 }
 
 fn answer(found: &Networked<'_>) -> Markup {

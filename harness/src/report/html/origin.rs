@@ -1,13 +1,13 @@
 //! How a result was obtained: with what, from what, and the command that obtains it again.
 
 use std::fs::File;
-use std::io::{self, Read};
+use std::io;
 use std::path::Path;
 
 use maud::html;
-use sha2::{Digest, Sha256};
 
 use super::{Cell, Section, table};
+use crate::digest::Digest;
 use crate::study::Observed;
 
 /// Where a report comes from.
@@ -38,8 +38,8 @@ impl SourceFile {
     /// A file by its contents.
     #[must_use]
     pub fn of_bytes(name: &str, role: &'static str, bytes: &[u8]) -> Self {
-        let digest = Sha256::digest(bytes);
-        Self { name: name.to_owned(), role, bytes: bytes.len() as u64, sha256: hexadecimal(&digest) }
+        let digest = Digest::of(bytes).expect("bytes in memory can be read");
+        Self::of_digest(name.to_owned(), role, digest)
     }
 
     /// A file by its path.
@@ -47,25 +47,16 @@ impl SourceFile {
     /// # Errors
     /// Where it cannot be read, or is a pipe or a device, which gives its bytes only once.
     pub fn of_path(path: &Path, role: &'static str) -> io::Result<Self> {
-        let mut file = File::open(path)?;
+        let file = File::open(path)?;
         if !file.metadata()?.is_file() {
             return Err(io::Error::other("it is no ordinary file and cannot be read twice"));
         }
-        let (mut hash, mut bytes, mut part) = (Sha256::new(), 0, vec![0; 1 << 16]);
-        loop {
-            let read = file.read(&mut part)?;
-            if read == 0 {
-                break;
-            }
-            hash.update(&part[..read]);
-            bytes += read as u64;
-        }
-        Ok(Self { name: path.display().to_string(), role, bytes, sha256: hexadecimal(&hash.finalize()) })
+        Ok(Self::of_digest(path.display().to_string(), role, Digest::of(file)?))
     }
-}
 
-fn hexadecimal(bytes: &[u8]) -> String {
-    bytes.iter().map(|byte| format!("{byte:02x}")).collect()
+    fn of_digest(name: String, role: &'static str, Digest { bytes, sha256 }: Digest) -> Self {
+        Self { name, role, bytes, sha256 }
+    }
 }
 
 /// Versions, seeds, files and the command.

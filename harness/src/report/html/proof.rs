@@ -32,14 +32,9 @@ pub struct Proved<'a> {
 /// The report of a proof.
 #[must_use]
 pub fn proof(proved: &Proved<'_>, origin: &Origin) -> String {
-    let envelope_body = html! {
-        p { "For every row of samples in which" }
-        (envelope::sample_table(proved.envelope))
-        p { "Nothing is claimed of a contact that does anything else." }
-    };
     let sections = vec![
         witness::of_proof(proved.proof),
-        super::Section { id: "envelope", heading: "Envelope".to_owned(), body: envelope_body },
+        envelope::in_samples(proved.envelope),
         logic::section(proved.name, &proved.machine.minimised().machine),
         origin::section(origin, &[], &method()),
     ];
@@ -99,10 +94,7 @@ fn answered(proved: &Proved<'_>) -> Markup {
 
 /// The latency in time, and against the limit.
 fn line(proved: &Proved<'_>, change: Change, worst: u32) -> Option<String> {
-    let time = proved.tick.map(|period| {
-        let below = TickClock::new(period).delay_ns(worst).1;
-        format!("less than {} at the nominal tick", words::at_most(below))
-    });
+    let time = proved.tick.map(|period| below(period, worst));
     let limit = proved.limit.map(|limit| {
         let limit = limit.at(change);
         format!(
@@ -112,6 +104,11 @@ fn line(proved: &Proved<'_>, change: Change, worst: u32) -> Option<String> {
     });
     let parts: Vec<String> = time.into_iter().chain(limit).collect();
     (!parts.is_empty()).then(|| parts.join("; "))
+}
+
+/// What so many samples come to in time.
+pub(super) fn below(period: Period, samples: u32) -> String {
+    format!("less than {} at the nominal tick", words::at_most(TickClock::new(period).delay_ns(samples).1))
 }
 
 fn size(proof: &Proof) -> Markup {

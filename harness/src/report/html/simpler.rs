@@ -33,11 +33,15 @@ pub(super) fn section(study: &Study) -> Option<Section> {
             "Of each kind of logic that does not hold at a tick of " (study.tick(shown[0].0))
             " the nearest miss, with a shortest waveform inside the envelope that shows why. " (LETTERS)
         }
-        @for (one, picture) in &shown {
-            h3 { code { (one.parameters) } }
-            @let reasons: Vec<String> = one.shortfalls.iter().map(words::shortfall).collect();
-            p { "Turned down because " (reasons.join("; ")) "." }
-            (picture)
+        div class="pair refused" {
+            @for (one, picture) in &shown {
+                div {
+                    h3 { code { (one.parameters) } }
+                    @let reasons: Vec<String> = one.shortfalls.iter().map(words::shortfall).collect();
+                    p { "Turned down because " (reasons.join("; ")) "." }
+                    (picture)
+                }
+            }
         }
     };
     Some(Section { id: "refused", heading: "What was turned down".to_owned(), body })

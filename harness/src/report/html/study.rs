@@ -5,17 +5,18 @@ use debounce_core::{Change, PerChange};
 use super::bounce::Limit;
 use super::timing::{self, LogicRun, Moment, Shown};
 use super::{
-    Origin, Page, Section, answer, bounce, conformance, cost, distribution, envelope, latency, logic,
+    Origin, Page, Section, answer, bounce, claims, conformance, cost, distribution, envelope, latency, logic,
     network, origin, plane, requirement, simpler, tick, witness,
 };
 use crate::choose::Candidate;
+use crate::clock_range::ClockRange;
 use crate::machine::MachineTable;
 use crate::study::{Guarantees, Observed, Study};
 use crate::trace::Trace;
 
-/// The report of a study.
+/// The report of a study; `range` answers [`ClockQuestion::of`](crate::clock_range::ClockQuestion::of) its requirement.
 #[must_use]
-pub fn study(study: &Study, invented: bool, origin: &Origin) -> String {
+pub fn study(study: &Study, range: &ClockRange, invented: bool, origin: &Origin) -> String {
     let title = &study.resolved.name.value;
     let best = study.ranking.recommended();
     let machine =
@@ -29,17 +30,11 @@ pub fn study(study: &Study, invented: bool, origin: &Origin) -> String {
     ));
     sections.extend(conformance::section(study));
     sections.extend(bounce::section(&study.observed, |change| limits(study, change)));
-    let confidence = study.resolved.confidence.value.to_string();
-    let claim = |change| study.claims.bounce.at(change);
-    sections.extend(distribution::section(
-        &study.observed,
-        claim,
-        |change| limits(study, change),
-        &confidence,
-    ));
+    sections.extend(distribution::section(&study.observed, |change| limits(study, change)));
+    sections.extend(claims::section(&study.claims));
     sections.extend(latency::section(study));
     sections.extend(plane::section(study));
-    sections.extend(tick::section(study));
+    sections.extend(tick::section(study, range));
     sections.extend(
         machine
             .as_ref()

@@ -4,15 +4,18 @@ use std::collections::BTreeSet;
 
 use debounce_core::Envelope;
 
-use super::{Characterised, Origin, Proved, characterised, proof, study};
+use super::{
+    Characterised, Compared, Limited, Origin, Proved, Reaching, characterised, compared, limit, proof,
+};
 use crate::characterise::SegmentOptions;
 use crate::choose::Preference;
+use crate::clock_range::{ClockQuestion, clock_range};
 use crate::demo;
 use crate::law_text::LawParameters;
 use crate::logic::Logic;
-use crate::machine::MachineTable;
+use crate::machine::{MachineTable, compare};
 use crate::problem::SourceText;
-use crate::prove::{Beyond, Effort, Limits, prove_within};
+use crate::prove::{Beyond, Effort, LimitAnswer, Limits, prove_within, solve_limit};
 use crate::requirement::{Requirement, parse};
 use crate::study::{Caution, Claims, Observed, Study, measured, observe};
 use crate::trace::{ReadOptions, read_bytes};
@@ -62,6 +65,38 @@ fn proved(law: &str, envelope: Envelope) -> String {
     )
 }
 
+fn machine(law: &str) -> MachineTable {
+    let logic = Logic::try_new(&law.parse().expect("a law")).expect("parameters");
+    MachineTable::of_table(&logic.table().expect("a table"))
+}
+
+fn told(one: &str, other: &str) -> String {
+    let machines = [&machine(one), &machine(other)];
+    let apart = compare(machines[0], machines[1]);
+    compared(&Compared { names: [one, other], machines, apart: apart.as_ref() }, &origin())
+}
+
+fn limited(envelope: Envelope) -> String {
+    let answer = solve_limit(&envelope, &Limits::default()).expect("within the limits");
+    let page = |found| limit(&Limited { envelope: &envelope, tick: None, caution: None, found }, &origin());
+    match &answer {
+        LimitAnswer::Solved(solution) => page(Ok(Reaching {
+            latency: solution.latency,
+            name: "the logic found",
+            machine: &MachineTable::of_table(&solution.logic),
+            proof: None,
+            evidence: "a search".to_owned(),
+            law: None,
+        })),
+        LimitAnswer::Unsolvable(reason) => page(Err(reason)),
+        _ => panic!("neither a limit nor none"),
+    }
+}
+
+fn page(study: &Study, invented: bool) -> String {
+    super::study(study, &clock_range(&ClockQuestion::of(&study.resolved)), invented, &origin())
+}
+
 fn origin() -> Origin {
     Origin { command: "harness study --output 'a & b'".to_owned(), ..Origin::default() }
 }
@@ -77,17 +112,17 @@ fn reports() -> Vec<(&'static str, String)> {
     let warnings = Caution::all(observed, &resolved, &claims);
     let found = Characterised { observed, resolved: &resolved, claims: &claims, warnings: &warnings };
     vec![
-        ("study", study(&studied(SAME, observed.to_vec()), true, &origin())),
-        ("choice", study(&studied(SAME, Vec::new()), false, &origin())),
+        ("study", page(&studied(SAME, observed.to_vec()), true)),
+        ("choice", page(&studied(SAME, Vec::new()), false)),
         (
             "nothing holds",
-            study(
-                &studied(("latency = \"50 ms\"", "latency = \"3 ms\""), observed.to_vec()),
-                true,
-                &origin(),
-            ),
+            page(&studied(("latency = \"50 ms\"", "latency = \"3 ms\""), observed.to_vec()), true),
         ),
         ("characterised", characterised(&found, &origin())),
+        ("limit", limited(Envelope::clean(20, 20).bounce(5, 3).glitch(1, 1).quiet(10))),
+        ("no logic", limited(Envelope::clean(20, 20).glitch(3, 3).quiet(2))),
+        ("different", told("integrator 3", "shift-register 3")),
+        ("equivalent", told("shift-register 4", "state-machine confirm=4")),
         ("proved", proved("integrator 5", Envelope::clean(20, 20).bounce(5, 3).glitch(1, 1).quiet(10))),
         ("refuted", proved("shift-register 2", Envelope::clean(40, 40).bounce(5, 5))),
     ]
@@ -163,7 +198,7 @@ fn pictures_have_words_for_those_who_do_not_see_them() {
 
 #[test]
 fn report_of_a_study_has_every_section_its_data_allow() {
-    let html = study(&studied(SAME, vec![recorded()]), true, &origin());
+    let html = page(&studied(SAME, vec![recorded()]), true);
     let sections = [
         "answer",
         "envelope",
@@ -171,6 +206,7 @@ fn report_of_a_study_has_every_section_its_data_allow() {
         "conformance",
         "overlay",
         "bounce",
+        "claims",
         "latency",
         "plane",
         "ticks",
@@ -185,8 +221,8 @@ fn report_of_a_study_has_every_section_its_data_allow() {
         html.split("<section id=\"").skip(1).filter_map(|rest| rest.split('"').next()).collect();
     assert_eq!(found, sections);
     // Without a recording there is nothing to show of one.
-    let html = study(&studied(SAME, Vec::new()), false, &origin());
-    for gone in ["recorded", "conformance", "overlay", "bounce", "latency"] {
+    let html = page(&studied(SAME, Vec::new()), false);
+    for gone in ["recorded", "conformance", "overlay", "bounce", "claims", "latency"] {
         assert!(!html.contains(&format!("<section id=\"{gone}\"")), "{gone}");
     }
     assert!(html.contains("whether a contact stays inside the envelope is not known"));
@@ -198,11 +234,11 @@ fn report_of_a_guarding_or_metering_contact_begins_with_its_caution() {
         ("guarding", "debouncing makes no input safe"),
         ("metering", "debouncing makes no input fit for trade"),
     ] {
-        let html = study(&studied(("control", role), Vec::new()), false, &origin());
+        let html = page(&studied(("control", role), Vec::new()), false);
         let caution = html.find(words).expect(role);
         assert!(caution < html.find("<nav").expect("contents"), "{role}");
     }
-    let html = study(&studied(SAME, Vec::new()), false, &origin());
+    let html = page(&studied(SAME, Vec::new()), false);
     assert!(
         html.contains("Nothing here has been assessed for such use."),
         "the general caution is in every report"
@@ -211,8 +247,7 @@ fn report_of_a_guarding_or_metering_contact_begins_with_its_caution() {
 
 #[test]
 fn report_escapes_what_it_is_given() {
-    let html =
-        study(&studied(("vent push-button", "<script>alert(1)</script> & co"), Vec::new()), false, &origin());
+    let html = page(&studied(("vent push-button", "<script>alert(1)</script> & co"), Vec::new()), false);
     assert!(html.contains("&lt;script&gt;alert(1)&lt;/script&gt; &amp; co"));
     assert!(!html.contains("<script>alert"));
     assert!(html.contains("'a &amp; b'"));
@@ -222,7 +257,37 @@ fn report_escapes_what_it_is_given() {
 fn report_of_the_same_study_has_the_same_bytes() {
     let found = studied(SAME, vec![recorded()]);
     let again = studied(SAME, vec![recorded()]);
-    assert_eq!(study(&found, true, &origin()), study(&again, true, &origin()));
+    assert_eq!(page(&found, true), page(&again, true));
+}
+
+#[test]
+fn report_of_a_limit_says_it_or_why_there_is_none() {
+    let found = limited(Envelope::clean(20, 20).bounce(5, 3).glitch(1, 1).quiet(10));
+    assert!(found.contains("<b>8 samples</b> <span>for a make") && found.contains("id=\"logic-diagram\""));
+    let none = limited(Envelope::clean(20, 20).glitch(3, 3).quiet(2));
+    assert!(none.contains("No logic whatever: ") && !none.contains("id=\"logic-diagram\""));
+}
+
+#[test]
+fn report_of_a_comparison_shows_the_samples_that_tell_apart_or_none() {
+    let different = told("integrator 3", "shift-register 3");
+    assert!(different.contains("after 5 samples") && different.contains("id=\"apart\""));
+    let same = told("shift-register 4", "state-machine confirm=4");
+    assert!(same.contains("Equivalent: ") && !same.contains("id=\"apart\""));
+}
+
+#[test]
+fn report_of_a_study_shows_claims_and_how_latency_is_distributed() {
+    let html = page(&studied(SAME, vec![recorded()]), true);
+    // 60 recorded cover 95 % with 95.3 % confidence: 1 - 0.95^60 (S. S. Wilks, 1941).
+    for part in [
+        "rank 1 of 60, with 95.3 % confidence",
+        "that claim with a margin of 25 %",
+        "0 missed, 0 doubled of 120",
+    ] {
+        assert!(html.contains(part), "{part}");
+    }
+    assert!(html.contains("class=\"steps make\"") && html.contains("class=\"steps break\""));
 }
 
 #[test]

@@ -5,6 +5,7 @@ use maud::html;
 
 use super::{Cell, Figure, Section, table, tick_curves};
 use crate::choose::{Candidate, ClockView};
+use crate::clock_range::ClockRange;
 use crate::quantity::TickPeriod;
 use crate::report::plot::{Axis, Plane, Scale, kept_apart, px};
 use crate::report::words;
@@ -45,7 +46,7 @@ fn later(pair: PerChange<u64>) -> u64 {
 }
 
 /// The figure; `None` where there are fewer than two tick periods to compare.
-pub(super) fn section(study: &Study) -> Option<Section> {
+pub(super) fn section(study: &Study, range: &ClockRange) -> Option<Section> {
     let rows: Vec<Row<'_>> = rows(study);
     if rows.iter().filter(|row| row.limit_ns().is_some() || row.best_ns().is_some()).count() < 2 {
         return None;
@@ -56,10 +57,13 @@ pub(super) fn section(study: &Study) -> Option<Section> {
     let physical_ns = later(study.ranking.physical_limit_ns);
     let drawn = rows.iter().flat_map(|row| [row.best_ns(), row.limit_ns()]).flatten();
     let highest = drawn.chain([physical_ns]).max()?;
+    let lines = tick_curves::lines(range);
+    // What a line says within the time allowed is drawn, or it would look as if there were nothing.
+    let along = lines.iter().filter_map(|line| line.highest_ns(allowed_ns as f64)).fold(0.0, f64::max);
+    let highest = highest.max(along.ceil() as u64);
     // What is asked is drawn unless it would leave all else in a corner.
     let shown_asked = allowed_ns <= highest.saturating_mul(3);
     let highest = if shown_asked { highest.max(allowed_ns) } else { highest };
-    let lines = tick_curves::lines(study);
     let last = lines.iter().map(tick_curves::Line::until_ns).fold(last, f64::max);
     let x = Scale::logarithmic((first * 0.85, last * 1.18), PLANE.across());
     let y = Scale::linear((0.0, highest as f64 * 1.06), PLANE.up());

@@ -1,8 +1,7 @@
 //! The best law of each kind over the whole range of tick periods, as lines to draw.
 
-use crate::clock_range::{ClockQuestion, Curve, clock_range};
+use crate::clock_range::{ClockRange, Curve};
 use crate::report::plot::{Scale, px};
-use crate::study::Study;
 
 /// The line of one kind of law: tick periods with the worst delay there, in nanoseconds.
 pub(super) struct Line {
@@ -19,8 +18,7 @@ const PLACES: u64 = 6;
 const MOST_PIECES: usize = 600;
 
 /// The lines of all kinds that work at any tick period.
-pub(super) fn lines(study: &Study) -> Vec<Line> {
-    let range = clock_range(&ClockQuestion::of(&study.resolved));
+pub(super) fn lines(range: &ClockRange) -> Vec<Line> {
     let line = |curve: &Curve| {
         let mut stretches: Vec<Vec<(f64, f64)>> = Vec::new();
         let mut reached = None;
@@ -48,6 +46,12 @@ impl Line {
     /// The longest tick period at which this kind works.
     pub(super) fn until_ns(&self) -> f64 {
         self.stretches.last().and_then(|stretch| stretch.last()).map_or(0.0, |point| point.0)
+    }
+
+    /// The longest worst delay that is not beyond `allowed`.
+    pub(super) fn highest_ns(&self, allowed: f64) -> Option<f64> {
+        let all = self.stretches.iter().flatten().map(|point| point.1);
+        all.filter(|&below| below <= allowed).max_by(f64::total_cmp)
     }
 
     /// The worst delay at the end of the longest stretch that is drawn: where its name belongs.

@@ -20,7 +20,7 @@ struct Wanted {
 }
 
 /// One report of each kind, and those that differ most from it.
-const REPORTS: [Wanted; 6] = [
+const REPORTS: [Wanted; 8] = [
     Wanted { name: "study", words: &["study"], code: 0 },
     Wanted {
         name: "characterised",
@@ -72,6 +72,12 @@ const REPORTS: [Wanted; 6] = [
         words: &["prove", "majority-register 9 of 16", "--envelope", "dwell=60 bounce=9 glitch=4 quiet=5"],
         code: 1,
     },
+    Wanted {
+        name: "limit",
+        words: &["limit", "--envelope", "dwell=20 bounce=5/3 glitch=1/1 quiet=10"],
+        code: 0,
+    },
+    Wanted { name: "different", words: &["compare", "integrator 3", "shift-register 3"], code: 1 },
 ];
 
 pub(super) fn run(session: &mut Session) {
