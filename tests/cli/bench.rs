@@ -48,6 +48,11 @@ impl Run {
         self.stdout.split_whitespace().collect::<Vec<_>>().join(" ")
     }
 
+    /// Standard error in the same way.
+    pub(crate) fn told(&self) -> String {
+        self.stderr.split_whitespace().collect::<Vec<_>>().join(" ")
+    }
+
     /// Checks the exit code.
     #[track_caller]
     pub(crate) fn ends(self, code: i32) -> Self {

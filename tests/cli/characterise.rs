@@ -89,8 +89,8 @@ fn characterise_of_too_few_operations_says_how_many_more() {
     let line = [&["characterise", "gate.vcd"][..], &HIGH].concat();
     let run = bench.run(&line).ends(0);
     // 59 for 95 %/95 %, 299 for 99 %/95 % (Wilks, 1941).
-    assert!(run.stderr.contains("20 makes are too few"), "{}", run.stderr);
-    assert!(run.stderr.contains("59 are needed; record 39 more"), "{}", run.stderr);
+    assert!(run.told().contains("20 makes are too few"), "{}", run.stderr);
+    assert!(run.told().contains("59 are needed; record 39 more"), "{}", run.stderr);
     assert!(
         run.flowing().contains("none for 95 % of makes: 20 recorded, 59 needed, 39 more"),
         "{}",
@@ -98,11 +98,11 @@ fn characterise_of_too_few_operations_says_how_many_more() {
     );
     // Whoever asks for a claim learns from the exit code that it cannot be made.
     let asked = bench.run(&[&line[..], &["--coverage", "99 %"]].concat()).ends(1);
-    assert!(asked.stderr.contains("299 are needed; record 279 more"), "{}", asked.stderr);
+    assert!(asked.told().contains("299 are needed; record 279 more"), "{}", asked.stderr);
     let less = bench.run(&[&line[..], &["--coverage", "80 %"]].concat()).ends(0);
     assert!(less.stderr.is_empty(), "{}", less.stderr);
     let study = bench.run(&[&["study", "gate.vcd"][..], &HIGH].concat());
-    assert!(study.stderr.contains("59 are needed"), "{}", study.stderr);
+    assert!(study.told().contains("59 are needed"), "{}", study.stderr);
 }
 
 /// Sixty presses, and half-way between two of them a disturbance of 40 us, so many times.
@@ -129,7 +129,7 @@ fn study_of_few_disturbances_assumes_and_says_how_many_it_takes() {
     let told = "too few to claim anything of 95 % of all with 95 % confidence, which takes 59 of each: 1 disturbance \
                 while open (1 ms assumed), 0 disturbances while closed (1 ms assumed), 0 rests between two \
                 disturbances (9 ms assumed); state what you know with --disturbance and --quiet-time, or record more";
-    assert!(run.stderr.contains(told), "{}", run.stderr);
+    assert!(run.told().contains(told), "{}", run.stderr);
     let row = quiet(&run.json());
     assert_eq!(
         (&row["recorded"], &row["needed"], &row["covered"]),
@@ -139,16 +139,16 @@ fn study_of_few_disturbances_assumes_and_says_how_many_it_takes() {
     assert_eq!(run.json()["result"]["pooled"]["quiet_ns"], serde_json::Value::Null);
     for command in ["study", "choose"] {
         let run = one.run(&[&[command, "gate.vcd", "--tick", "2 ms"][..], &HIGH].concat());
-        assert!(run.stderr.contains("0 rests between two disturbances (9 ms assumed)"), "{}", run.stderr);
+        assert!(run.told().contains("0 rests between two disturbances (9 ms assumed)"), "{}", run.stderr);
     }
     let study = one.run(&[&["study", "gate.vcd", "--tick", "2 ms"][..], &HIGH].concat()).flowing();
     assert!(study.contains("with at least 9 ms between two disturbances"), "{study}");
 
     // 59 disturbances have 58 rests between them, 60 have 59; 1 - 0.05^(1/59) is 4.95 % (Wilks, 1941).
     let run = Bench::with("gate.vcd", disturbed(59)).run(&line).ends(0);
-    assert!(run.stderr.contains("58 rests between two disturbances (9 ms assumed)"), "{}", run.stderr);
+    assert!(run.told().contains("58 rests between two disturbances (9 ms assumed)"), "{}", run.stderr);
     let run = Bench::with("gate.vcd", disturbed(60)).run(&line).ends(0);
-    assert!(!run.stderr.contains("rests"), "{}", run.stderr);
+    assert!(!run.told().contains("rests"), "{}", run.stderr);
     let row = quiet(&run.json());
     assert_eq!((&row["recorded"], &row["taken_from"]), (&59.into(), &"measured".into()));
     assert!((row["covered"].as_f64().expect("a share") - 0.950_492).abs() < 5e-7, "{row}");
@@ -166,7 +166,7 @@ fn characterise_of_an_inverted_line_says_so() {
     let run = bench.run(&["characterise", "gate.vcd", "--closed", "low"]).ends(0);
     let told = "gate.vcd: the line rests closed, 67 % of the time, at the beginning and at the end; if this contact \
                 rests open, the polarity is inverted: give --closed high";
-    assert!(run.stderr.contains(told), "{}", run.stderr);
+    assert!(run.told().contains(told), "{}", run.stderr);
     let json = bench.run(&["characterise", "gate.vcd", "--json", "--quiet"]).ends(0);
     assert!(json.stderr.is_empty());
     let warnings = json.json()["result"]["warnings"].to_string();
@@ -181,7 +181,7 @@ fn characterise_pools_recordings_and_tells_different_sample_periods() {
     let bench = Bench::with("a.vcd", presses(shuffled(30), 1)).and("b.vcd", presses(shuffled(31), 10));
     let line = [&["characterise", "a.vcd", "b.vcd"][..], &HIGH].concat();
     let run = bench.run(&line).ends(0);
-    assert!(run.stderr.contains("sample periods from 1 us to 10 us"), "{}", run.stderr);
+    assert!(run.told().contains("sample periods from 1 us to 10 us"), "{}", run.stderr);
     assert!(run.flowing().contains("Pooled 2 recordings"), "{}", run.stdout);
     assert!(run.flowing().contains("(61 recorded)"), "{}", run.stdout);
     let document = bench.run(&[&line[..], &["--json"]].concat()).ends(0).json();
@@ -201,11 +201,11 @@ fn characterise_of_drifting_bounces_warns() {
     let bench = Bench::with("gate.vcd", presses((0..60).map(|press| 200 + press * 20), 1));
     let run = bench.run(&[&["characterise", "gate.vcd"][..], &HIGH].concat()).ends(0);
     assert!(
-        run.stderr.contains("the bounces of the makes grow longer (trend test: chance"),
+        run.told().contains("the bounces of the makes grow longer (trend test: chance"),
         "{}",
         run.stderr
     );
-    assert!(run.stderr.contains("resemble their neighbours (runs test: chance"), "{}", run.stderr);
+    assert!(run.told().contains("resemble their neighbours (runs test: chance"), "{}", run.stderr);
     assert!(run.flowing().contains("not what independent ones show"), "{}", run.stdout);
 }
 
@@ -255,7 +255,7 @@ fn characterise_with_voltages_that_are_none_is_refused_or_told() {
     // Beyond the range of the instrument is beyond the threshold: the job can go on, and it is said.
     let bench = Bench::with("gate.csv", volts("9.9E37"));
     let run = bench.run(&[&line[..], &HIGH].concat()).ends(0);
-    assert!(run.stderr.contains("400 readings beyond the recorder's range"), "{}", run.stderr);
+    assert!(run.told().contains("400 readings beyond the recorder's range"), "{}", run.stderr);
     assert!(run.flowing().contains("2 makes, 2 breaks"), "{}", run.stdout);
 }
 

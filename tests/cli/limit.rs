@@ -70,7 +70,7 @@ fn limit_logic_is_written_in_every_format_and_nothing_else_is() {
 #[test]
 fn limit_logic_written_as_a_table_is_replayed() {
     let bench = Bench::with("vent.vcd", demo::RECORDING);
-    let recording = ["vent.vcd", "--closed", "high", "--tick", "5 ms"];
+    let recording = ["vent.vcd", "--closed", "high", "--tick", "5 ms", "--quiet-time", "20 ms"];
     bench.run(&[&["limit", "--machine", "best.kiss2"], &recording[..]].concat()).ends(0);
     let replay = |law: &str| bench.run(&[&["replay", law], &recording[..], &["--json"]].concat());
     assert_eq!(replay("best.kiss2").ends(0).json()["result"]["law"], "best.kiss2");

@@ -17,22 +17,20 @@ pub(super) fn between(lines: &mut Lines<'_>, figures: &Figures) -> io::Result<()
         let widths = disturbed.width_ns.map_or(String::new(), |width| {
             format!(", median {}, widest {}", seen(width.median), seen(width.max))
         });
+        let shortest = dwell.shortest_ns.map_or(String::new(), |shortest| {
+            let doubt = dwell.shortest_in_doubt_ns.map_or(String::new(), |ns| {
+                format!(" (a run of {} may have been an operation)", words::about(ns))
+            });
+            format!("for {} at least{doubt}; ", words::about(shortest))
+        });
+        let in_doubt = match disturbed.widest_in_doubt_ns {
+            0 => String::new(),
+            widest => format!(", and perhaps parts of bounces of up to {}", seen(widest)),
+        };
         lines.item(
             if position.is_closed() { "While closed" } else { "While open" },
-            &format!("{}{widths}", words::count(disturbed.count, "disturbance")),
+            &format!("{shortest}{}{widths}{in_doubt}", words::count(disturbed.count, "disturbance")),
         )?;
-        if disturbed.widest_in_doubt_ns > 0 {
-            lines.more(&format!(
-                "and perhaps parts of bounces, up to {}",
-                seen(disturbed.widest_in_doubt_ns)
-            ))?;
-        }
-        if let Some(shortest) = dwell.shortest_ns {
-            let doubt = dwell.shortest_in_doubt_ns.map_or(String::new(), |ns| {
-                format!("; a run of {} may have been an operation", words::about(ns))
-            });
-            lines.more(&format!("shortest {}{doubt}", words::about(shortest)))?;
-        }
     }
     let disturbed = figures.disturbances.open.count + figures.disturbances.closed.count;
     if figures.quiet_ns.is_none() && disturbed > 0 {
@@ -59,7 +57,7 @@ pub(super) fn between(lines: &mut Lines<'_>, figures: &Figures) -> io::Result<()
     lines.item(
         "Recorder",
         &format!(
-            "its sample period of {} is added to every figure that is claimed, and nothing shorter is seen",
+            "sample period {}: added to every claim; nothing shorter is seen",
             words::about(figures.resolution_ns)
         ),
     )
@@ -95,12 +93,13 @@ pub(super) fn of_kind(
     if let Some(Spread { min, median, p95, max, .. }) = found.edges {
         lines.more(&format!("edges {min} to {max}, median {median}, 95 % {p95}"))?;
     }
-    for (name, spread) in
-        [("longest quiet gap inside", found.longest_gap_ns), ("shortest pulse", found.shortest_pulse_ns)]
-    {
-        if let Some(spread) = spread {
-            lines.more(&format!("{name}: {}", quantiles(spread, period)))?;
-        }
+    if let Some(spread) = found.longest_gap_ns {
+        lines.more(&format!("longest quiet gap inside: {}", quantiles(spread, period)))?;
+    }
+    if let Some(Spread { min, median, max, .. }) = found.shortest_pulse_ns {
+        // How long the longest of the shortest are matters to nobody.
+        let [min, median, max] = [min, median, max].map(|ns| words::seen(ns, period));
+        lines.more(&format!("shortest pulse: {min} to {max}, median {median}"))?;
     }
     if found.count >= FEWEST {
         if let Some(histogram) = found.histogram(period).filter(|_| drawn) {

@@ -48,13 +48,19 @@ impl<'a> Lines<'a> {
     /// A labelled item.
     pub(super) fn item(&mut self, label: &str, text: &str) -> io::Result<()> {
         write!(self.out, "{LABEL}{label:<INDENT$}{LABEL:#}")?;
-        self.wrapped(text)
+        self.wrapped(text, INDENT)
     }
 
     /// A further line of the item before.
     pub(super) fn more(&mut self, text: &str) -> io::Result<()> {
         write!(self.out, "{:INDENT$}", "")?;
-        self.wrapped(text)
+        self.wrapped(text, INDENT)
+    }
+
+    /// A sentence behind a word that says what it is, such as a warning.
+    pub(super) fn sentence(&mut self, word: &str, text: &str) -> io::Result<()> {
+        write!(self.out, "{word}: ")?;
+        self.wrapped(text, word.len() + 2)
     }
 
     /// A command line to be typed again, broken only before options and as a shell takes it.
@@ -83,14 +89,14 @@ impl<'a> Lines<'a> {
         self.out.write_all(text.as_bytes())
     }
 
-    fn wrapped(&mut self, text: &str) -> io::Result<()> {
-        let mut column = INDENT;
+    fn wrapped(&mut self, text: &str, indent: usize) -> io::Result<()> {
+        let mut column = indent;
         for (index, word) in text.split(' ').enumerate() {
             let width = shown_width(word);
             if index > 0 {
                 if column + 1 + width > self.columns {
-                    write!(self.out, "\n{:INDENT$}", "")?;
-                    column = INDENT;
+                    write!(self.out, "\n{:indent$}", "")?;
+                    column = indent;
                 } else {
                     self.out.write_all(b" ")?;
                     column += 1;

@@ -14,6 +14,7 @@ use indicatif::{
 use serde_json::{Value, json};
 
 use super::ascii::{AsciiOnly, is_ascii_terminal};
+use super::lines::Lines;
 use super::{Failure, Outcome};
 use crate::problem::{Problem, Problems};
 
@@ -100,7 +101,11 @@ impl Session {
     pub fn warn(&self, message: &str) {
         if !self.options.quiet {
             // Losing a warning because nobody reads standard error is no reason to lose the answer.
-            drop(self.bars.suspend(|| to_stderr(&format!("warning: {message}\n"))));
+            drop(self.bars.suspend(|| {
+                let mut text = Vec::new();
+                Lines::new(&mut text).sentence("warning", message)?;
+                to_stderr(&String::from_utf8_lossy(&text))
+            }));
         }
     }
 
