@@ -23,8 +23,11 @@ fn choose_from_figures_alone_ranks_what_holds_and_says_what_was_assumed() {
     // Why each value was assumed is for those who ask.
     assert!(!run.flowing().contains("default: "), "{}", run.stdout);
     let run = Bench::new().run(&[&["choose", "--details"][..], &FIGURES].concat()).ends(0);
-    for part in ["required.shortest_closed = 70 ms, ", "(default: ", "by closed form; the majority register by exploring it"]
-    {
+    for part in [
+        "required.shortest_closed = 70 ms, ",
+        "(default: ",
+        "by closed form; the majority register by exploring it",
+    ] {
         assert!(run.flowing().contains(part), "\"{part}\" is not in {}", run.stdout);
     }
     assert!(run.stderr.is_empty(), "{}", run.stderr);

@@ -2,7 +2,7 @@
 
 use super::Sourced;
 use super::section::{Reader, Section};
-use super::words::Word;
+use super::words::{Word, word};
 use crate::problem::Problem;
 use crate::quantity::Time;
 use crate::trace::{DecimalMark, Delimiter, ReadOptions, TimeUnit, Unknown};
@@ -28,22 +28,7 @@ pub struct Reading {
     pub gap: Option<Sourced<Time>>,
 }
 
-macro_rules! spelled_here {
-    ($type:ident, $name:literal, { $($variant:ident = $word:literal,)+ }) => {
-        impl Word for $type {
-            const NAME: &'static str = $name;
-            const ALL: &'static [Self] = &[$(Self::$variant),+];
-
-            fn word(self) -> &'static str {
-                match self {
-                    $(Self::$variant => $word,)+
-                }
-            }
-        }
-    };
-}
-
-spelled_here! { TimeUnit, "a unit of time", {
+word! { TimeUnit, "a unit of time", {
     Seconds = "s",
     Milliseconds = "ms",
     Microseconds = "us",
@@ -52,16 +37,16 @@ spelled_here! { TimeUnit, "a unit of time", {
     Femtoseconds = "fs",
 } }
 
-spelled_here! { Delimiter, "a delimiter", {
+word! { Delimiter, "a delimiter", {
     Comma = "comma",
     Semicolon = "semicolon",
     Tab = "tab",
     Space = "space",
 } }
 
-spelled_here! { DecimalMark, "a decimal mark", { Point = "point", Comma = "comma", } }
+word! { DecimalMark, "a decimal mark", { Point = "point", Comma = "comma", } }
 
-spelled_here! { Unknown, "a way to take unknown values", {
+word! { Unknown, "a way to take unknown values", {
     Hold = "hold",
     Open = "open",
     Closed = "closed",

@@ -59,16 +59,7 @@ macro_rules! words {
 
 macro_rules! spelled {
     ($type:ident, $name:literal, { $($variant:ident = $word:literal,)+ }) => {
-        impl Word for $type {
-            const NAME: &'static str = $name;
-            const ALL: &'static [Self] = &[$(Self::$variant),+];
-
-            fn word(self) -> &'static str {
-                match self {
-                    $(Self::$variant => $word,)+
-                }
-            }
-        }
+        word! { $type, $name, { $($variant = $word,)+ } }
 
         impl FromStr for $type {
             type Err = WordError;
@@ -85,6 +76,22 @@ macro_rules! spelled {
         }
     };
 }
+
+macro_rules! word {
+    ($type:ident, $name:literal, { $($variant:ident = $word:literal,)+ }) => {
+        impl Word for $type {
+            const NAME: &'static str = $name;
+            const ALL: &'static [Self] = &[$(Self::$variant),+];
+
+            fn word(self) -> &'static str {
+                match self {
+                    $(Self::$variant => $word,)+
+                }
+            }
+        }
+    };
+}
+pub(super) use word;
 
 words! {
     /// What sort of contact it is; used for defaults and in reports only.
