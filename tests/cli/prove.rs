@@ -311,3 +311,25 @@ fn prove_that_would_not_fit_says_unfinished_and_ends_with_2() {
     let envelope = "dwell=100000000 bounce=5 glitch=1 quiet=100000";
     Bench::new().refuses(&["prove", "integrator 5", "--envelope", envelope], &[told]);
 }
+
+/// A proof that comes later than the requirement allows is no reason to be content.
+#[test]
+fn prove_holds_the_required_latency_against_the_proof() {
+    let text = "[required]\nlatency = \"20 ms\"\nshortest_closed = \"60 ms\"\nshortest_open = \"60 ms\"\n\
+                bounce = \"5 ms\"\ndisturbance = \"1 ms\"\nquiet = \"10 ms\"\n[clock]\ntick = \"4 ms\"\n";
+    let prove = |latency: &str, code: i32| {
+        let text = text.replace("20 ms", latency);
+        let bench = Bench::with("contact.toml", &text);
+        let law = "state-machine confirm=2 patience=2 lockout=1";
+        let asked = ["prove", law, "--requirement", "contact.toml"];
+        let json = bench.run(&[&asked[..], &["--json"]].concat()).ends(code).json();
+        let found = json["result"]["required_latency"]["make"].clone();
+        (bench.run(&asked).ends(code).flowing(), found)
+    };
+    let (text, late) = prove("10 ms", 1);
+    // 5 samples, each 2 % long, and the jitter of 20 us.
+    assert_eq!((&late["allowed_ns"], &late["below_ns"]), (&10_000_000.into(), &20_420_000.into()), "{text}");
+    assert!(text.contains("at most 5 samples (less than 20.5 ms), at least"), "{text}");
+    assert!(text.contains("10.5 ms more than the 10 ms required"), "{text}");
+    assert!(prove("40 ms", 0).0.contains("as required, 40 ms"));
+}

@@ -1,17 +1,17 @@
 //! The envelope of a command: given in ticks, or following from a requirement and one tick period.
 
 use clap::Args;
-use debounce_core::{Envelope, Period, TickClock};
+use debounce_core::{Envelope, PerChange, TickClock};
 
 use super::envelope_text::EnvelopeText;
 use super::input::Input;
 use super::recordings::RequirementInput;
 use super::{Failure, Session};
 use crate::problem::Problem;
-use crate::quantity::TickPeriod;
+use crate::quantity::{TickPeriod, Time};
 use crate::report::html::SourceFile;
 use crate::report::words;
-use crate::requirement::RequirementOptions;
+use crate::requirement::{Origin, RequirementOptions, Sourced};
 use crate::study::{Caution, Claims, measured};
 
 /// An envelope in ticks, or a requirement.
@@ -31,7 +31,15 @@ impl EnvelopeInput {
     pub(super) fn given(&self, session: &Session, with_files: bool) -> Result<EnvelopeGiven, Failure> {
         if let Some(EnvelopeText(envelope)) = self.envelope {
             let tick = self.tick_beside_envelope()?;
-            return Ok(EnvelopeGiven { envelope, tick, caution: None, files: Vec::new() });
+            let clock = tick.map(|tick| TickClock::new(tick.period()));
+            return Ok(EnvelopeGiven {
+                envelope,
+                tick,
+                clock,
+                allowed: PerChange::default(),
+                caution: None,
+                files: Vec::new(),
+            });
         }
         if self.input.is_empty() {
             return Err(Problem::new("no envelope is given")
@@ -49,9 +57,15 @@ impl EnvelopeInput {
             cautions.iter().for_each(|caution| session.warn(&caution.to_string()));
         }
         let tick = only(&resolved.ticks.value)?;
-        let envelope = resolved.physical().in_ticks(&resolved.clock(tick)).map_err(Problem::told)?;
+        let clock = resolved.clock(tick);
+        let envelope = resolved.physical().in_ticks(&clock).map_err(Problem::told)?;
         let files = if with_files { input.files()? } else { Vec::new() };
-        Ok(EnvelopeGiven { envelope, tick: Some(tick), caution: resolved.caution(), files })
+        let asked =
+            |latency: Sourced<Time>| (!matches!(latency.origin, Origin::Default(_))).then_some(latency.value);
+        let latency = resolved.required.latency;
+        let allowed = PerChange { make: asked(latency.make), break_: asked(latency.break_) };
+        let (tick, clock) = (Some(tick), Some(clock));
+        Ok(EnvelopeGiven { envelope, tick, clock, allowed, caution: resolved.caution(), files })
     }
 
     /// An envelope in ticks leaves nothing open but how long a tick is.
@@ -76,6 +90,10 @@ impl EnvelopeInput {
 pub(super) struct EnvelopeGiven {
     pub(super) envelope: Envelope,
     pub(super) tick: Option<TickPeriod>,
+    /// Of a requirement with its tolerance and jitter.
+    pub(super) clock: Option<TickClock>,
+    /// The latencies that a requirement states.
+    pub(super) allowed: PerChange<Option<Time>>,
     pub(super) caution: Option<&'static str>,
     pub(super) files: Vec<SourceFile>,
 }
@@ -107,10 +125,8 @@ pub(super) fn in_ticks(e: &Envelope) -> String {
     )
 }
 
-/// Samples, and the delay they stand for where the tick is known.
-pub(super) fn latency(samples: u32, tick: Option<Period>) -> String {
+/// Samples, and the delay they stand for where the clock is known.
+pub(super) fn latency(samples: u32, clock: Option<&TickClock>) -> String {
     let counted = words::count(samples as usize, "sample");
-    let Some(period) = tick else { return counted };
-    let below_ns = TickClock::new(period).delay_ns(samples).1;
-    format!("{counted} (less than {} at the nominal tick)", words::at_most(below_ns))
+    clock.map_or(counted.clone(), |clock| format!("{counted} ({})", words::delay_below(clock, samples)))
 }

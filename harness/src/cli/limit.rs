@@ -15,7 +15,6 @@ use crate::law_text::LawParameters;
 use crate::machine::MachineTable;
 use crate::problem::Problem;
 use crate::prove::{LimitAnswer, Limits, Solution, promptest_logic, prove_within, solve_limit};
-use crate::quantity::TickPeriod;
 use crate::report::html;
 
 /// What no logic can beat in an envelope, with a logic that reaches it.
@@ -60,7 +59,7 @@ impl LimitArguments {
     /// Runs the command.
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
         let given = self.envelope.given(session, self.report.is_wanted())?;
-        let EnvelopeGiven { envelope, tick, caution, files } = given;
+        let EnvelopeGiven { envelope, clock, caution, files, .. } = given;
         let report = self.report.prepare()?;
         let file = self.machine.as_deref().map(MachineFile::prepare).transpose()?;
         let solve = if self.earliest { promptest_logic } else { solve_limit };
@@ -86,12 +85,11 @@ impl LimitArguments {
         if let (Some(file), Known::Limit(reached)) = (file, &known) {
             written.extend(file.write(&reached.machine)?);
         }
-        let tick = tick.map(TickPeriod::period);
         if let Some(report) = report {
-            let limited = known.limited(&envelope, tick, caution);
+            let limited = known.limited(&envelope, clock, caution);
             written.push(report.write(session, files, |origin| html::limit(&limited, origin))?);
         }
-        Ok(Box::new(LimitFound { envelope, tick, known, written }))
+        Ok(Box::new(LimitFound { envelope, clock, known, written }))
     }
 }
 

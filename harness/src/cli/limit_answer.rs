@@ -3,7 +3,7 @@
 use std::io::{self, Write};
 use std::path::PathBuf;
 
-use debounce_core::{Change, Envelope, PerChange, Period};
+use debounce_core::{Change, Envelope, PerChange, TickClock};
 use serde_json::{Value, json};
 
 use super::envelope_input::{in_ticks, latency};
@@ -20,7 +20,7 @@ use crate::report::{json as report, words};
 /// What is known of the limit in an envelope.
 pub(super) struct LimitFound {
     pub(super) envelope: Envelope,
-    pub(super) tick: Option<Period>,
+    pub(super) clock: Option<TickClock>,
     pub(super) known: Known,
     pub(super) written: Vec<PathBuf>,
 }
@@ -37,7 +37,7 @@ impl Known {
     pub(super) fn limited<'a>(
         &'a self,
         envelope: &'a Envelope,
-        tick: Option<Period>,
+        clock: Option<TickClock>,
         caution: Option<&'static str>,
     ) -> Limited<'a> {
         let found = match self {
@@ -51,7 +51,7 @@ impl Known {
                 law: reached.law.filter(|_| reached.by_search).map(|law| law.to_string()),
             }),
         };
-        Limited { envelope, tick, caution, found }
+        Limited { envelope, clock, caution, found }
     }
 }
 
@@ -151,7 +151,7 @@ impl LimitFound {
         let PerChange { make, break_ } = reached.latency;
         lines.item("Limit", &strong("no logic whatever can promise less"))?;
         for (label, samples) in [("Make", make), ("Break", break_)] {
-            lines.item(label, &latency(samples, self.tick))?;
+            lines.item(label, &latency(samples, self.clock.as_ref()))?;
         }
         lines.item("Known from", &reached.evidence())?;
         lines.item(

@@ -99,7 +99,7 @@ impl ProveArguments {
         let name = self.logic()?;
         let logic = NamedLogic::read(&name, self.reading)?;
         let given = self.envelope.given(session, self.report.is_wanted())?;
-        let EnvelopeGiven { envelope, tick, caution, mut files } = given;
+        let EnvelopeGiven { envelope, tick, clock, allowed, caution, mut files } = given;
         if let (LogicName::Table(path), true) = (&name, self.report.is_wanted()) {
             files.push(source_file(path, "next-state table")?);
         }
@@ -114,7 +114,6 @@ impl ProveArguments {
         let effort = if self.thorough { Effort::Thorough } else { Effort::Quick };
         let beyond = session.during("searching beyond", || Beyond::of(&logic.table, &proof, effort, &limits));
         let again = self.again(&name, &envelope, tick);
-        let tick = tick.map(TickPeriod::period);
         let limit = match contract {
             Contract::Follow => known_limit(&envelope),
             Contract::Alternate => closed_form_limit(&envelope, contract),
@@ -124,7 +123,7 @@ impl ProveArguments {
             written.extend(file.write(&logic.machine)?);
         }
         if let (Some((folder, name)), Some((_, witness))) = (witness_file, proof.refutation()) {
-            let period = tick.unwrap_or_else(|| Period::from_ms(1));
+            let period = tick.map_or(Period::from_ms(1), TickPeriod::period);
             let mut files = folder.stage();
             files.add(&name, |out| write_witness(out, witness, period, &again))?;
             written.extend(files.commit()?);
@@ -137,12 +136,13 @@ impl ProveArguments {
                 proof: &proof,
                 limit,
                 beyond: &beyond,
-                tick,
+                clock,
+                allowed,
                 caution,
             };
             written.push(report.write(session, files, |origin| html::proof(&proved, origin))?);
         }
-        Ok(Box::new(Proved { logic, envelope, tick, proof, beyond, limit, written, again }))
+        Ok(Box::new(Proved { logic, envelope, clock, allowed, proof, beyond, limit, written, again }))
     }
 
     fn logic(&self) -> Result<LogicName, Problem> {

@@ -3,7 +3,7 @@
 use std::io::{self, Write};
 use std::path::PathBuf;
 
-use debounce_core::{Change, Envelope, PerChange, Period};
+use debounce_core::{Change, Envelope, PerChange, TickClock};
 use serde_json::{Value, json};
 
 use super::beyond_text::{beyond, still_bears};
@@ -13,6 +13,7 @@ use super::logic_name::NamedLogic;
 use super::report::written;
 use super::{Answer, Outcome};
 use crate::prove::{self, Beyond, Contract, Proof};
+use crate::quantity::Time;
 use crate::report::timing::TimingDiagram;
 use crate::report::{json as report, words};
 
@@ -20,7 +21,9 @@ use crate::report::{json as report, words};
 pub(super) struct Proved {
     pub(super) logic: NamedLogic,
     pub(super) envelope: Envelope,
-    pub(super) tick: Option<Period>,
+    pub(super) clock: Option<TickClock>,
+    /// The latencies that are required.
+    pub(super) allowed: PerChange<Option<Time>>,
     pub(super) proof: Proof,
     pub(super) beyond: Beyond,
     pub(super) limit: Option<PerChange<u32>>,
@@ -30,7 +33,9 @@ pub(super) struct Proved {
 
 impl Answer for Proved {
     fn outcome(&self) -> Outcome {
-        if self.proof.bounds().is_some() { Outcome::Holds } else { Outcome::DoesNotHold }
+        let in_time = |change| self.below_ns(change).is_none_or(|(below, allowed)| below <= allowed.ns());
+        let holds = self.proof.bounds().is_some() && [Change::Make, Change::Break].into_iter().all(in_time);
+        if holds { Outcome::Holds } else { Outcome::DoesNotHold }
     }
 
     fn write_text(&self, out: &mut dyn Write) -> io::Result<()> {
@@ -65,10 +70,13 @@ impl Answer for Proved {
                         if change == Change::Make { "Make" } else { "Break" },
                         &format!(
                             "at most {}, at least {}{limit}",
-                            latency(found.worst, self.tick),
+                            latency(found.worst, self.clock.as_ref()),
                             found.best
                         ),
                     )?;
+                    if let Some((below_ns, allowed)) = self.below_ns(change) {
+                        lines.more(&strong(&words::against(below_ns, allowed)))?;
+                    }
                 }
                 self.size(&mut lines)?;
                 beyond(&mut lines, &self.beyond)?;
@@ -102,6 +110,11 @@ impl Answer for Proved {
         value["limit_samples"] =
             json!(self.limit.map(|limit| json!({ "make": limit.make, "break": limit.break_ })));
         value["beyond"] = report::beyond(&self.beyond);
+        let allowed = |change| {
+            self.below_ns(change)
+                .map(|(below_ns, allowed)| json!({ "allowed_ns": allowed.ns(), "below_ns": below_ns }))
+        };
+        value["required_latency"] = json!({ "make": allowed(Change::Make), "break": allowed(Change::Break) });
         value["again"] = json!(self.again);
         value["written"] = self.written.iter().map(|path| path.display().to_string()).collect();
         value
@@ -109,6 +122,13 @@ impl Answer for Proved {
 }
 
 impl Proved {
+    /// What is proved of a latency that is required, and what is required; `None` where nothing is.
+    fn below_ns(&self, change: Change) -> Option<(u64, Time)> {
+        let (bounds, clock) = (self.proof.bounds()?, self.clock.as_ref()?);
+        let allowed = (*self.allowed.of(change))?;
+        Some((clock.delay_ns(bounds.latency.at(change).worst).1, allowed))
+    }
+
     fn size(&self, lines: &mut Lines<'_>) -> io::Result<()> {
         let counts = self.logic.machine.counts();
         lines.item(

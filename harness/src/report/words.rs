@@ -1,6 +1,6 @@
 //! Times, shares and bounds in words, the same everywhere.
 
-use debounce_core::{Change, Clause, PerPosition, Position};
+use debounce_core::{Change, Clause, PerPosition, Position, TickClock};
 
 use crate::choose::Shortfall;
 use crate::envelope::PhysicalEnvelope;
@@ -16,6 +16,24 @@ pub fn at_most(ns: u64) -> String {
 #[must_use]
 pub fn at_least(ns: u64) -> String {
     Time::from_ns(ns).shown(Rounding::Down).to_string()
+}
+
+/// What so many samples come to in time.
+#[must_use]
+pub fn delay_below(clock: &TickClock, samples: u32) -> String {
+    let below = at_most(clock.delay_ns(samples).1);
+    // A clock that nothing is said of but its tick.
+    let nominal = if *clock == TickClock::new(clock.period()) { " at the nominal tick" } else { "" };
+    format!("less than {below}{nominal}")
+}
+
+/// A bound beside the latency that is required: whether it is kept, and by how much.
+#[must_use]
+pub fn against(below_ns: u64, allowed: Time) -> String {
+    match below_ns.checked_sub(allowed.ns()) {
+        Some(over) if over > 0 => format!("{} more than the {allowed} required", at_most(over)),
+        _ => format!("as required, {allowed}"),
+    }
 }
 
 /// A time as it was measured.

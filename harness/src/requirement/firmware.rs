@@ -2,6 +2,7 @@
 
 use std::path::PathBuf;
 
+use super::resolve::default_jitter;
 use super::section::{Reader, Section};
 use super::{Requirement, Sourced, TickChoice, folder_of};
 use crate::law_text::LawParameters;
@@ -26,6 +27,10 @@ impl Requirement {
         let mut narrowed = self.clone();
         let Some(firmware) = &self.firmware else { return (narrowed, None) };
         if let Some(tick) = firmware.tick {
+            // The tick was chosen among others, and judged with the jitter that all of them had by default.
+            let others = self.tick_periods().value;
+            let shortest = others.iter().chain([&tick.value]).map(|tick| tick.nearest_ns()).min();
+            narrowed.clock.jitter = self.clock.jitter.or(shortest.map(default_jitter));
             narrowed.clock.ticks = Some(tick.map(|tick| TickChoice::OneOf(vec![tick])));
         }
         (narrowed, firmware.law.map(|law| law.value))
@@ -77,12 +82,13 @@ fn law(reader: &mut Reader, section: &mut Section<'_>) -> Option<Sourced<LawPara
 
 #[cfg(test)]
 mod tests {
-    use super::super::parse;
+    use super::super::{Measured, Requirement, parse};
     use crate::problem::SourceText;
+    use crate::quantity::Time;
 
     const SHIPPED: &str = "[clock]\ntick = [\"1 ms\", \"2 ms\"]\n[firmware]\nmodule = \"src/gate.rs\"\n";
 
-    fn parsed(text: &str) -> super::Requirement {
+    fn parsed(text: &str) -> Requirement {
         parse(SourceText::new("gate/contact.toml", text)).unwrap_or_else(|problems| panic!("{problems}"))
     }
 
@@ -102,6 +108,13 @@ mod tests {
         let (narrowed, law) = parsed(&stated).as_shipped();
         let ticks: Vec<String> = narrowed.tick_periods().value.iter().map(ToString::to_string).collect();
         assert_eq!((ticks, law), (vec!["2 ms".to_owned()], Some("integrator 5".parse().expect("a law"))));
+        let jitter = |requirement: &Requirement| {
+            requirement.resolve(&Measured::default()).expect("complete").jitter.value
+        };
+        let usual = parsed("[firmware]\nmodule = \"gate.rs\"\ntick = \"8 ms\"\n");
+        assert_eq!(jitter(&usual), jitter(&usual.as_shipped().0), "what was studied is what is shipped");
+        let faster = parsed("[firmware]\nmodule = \"gate.rs\"\ntick = \"10 us\"\n");
+        assert_eq!(jitter(&faster.as_shipped().0), Time::from_ns(200));
     }
 
     #[test]

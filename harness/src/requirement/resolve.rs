@@ -241,11 +241,7 @@ impl Requirement {
                     .into())
             }
             Some(jitter) => Ok(*jitter),
-            None => {
-                let default = Time::from_ns((shortest / 50).min(20_000));
-                let why = "a short interrupt latency: 20 us, or 2 % of the shortest tick period (our choice)";
-                Ok(Sourced::new(default, Origin::Default(why)))
-            }
+            None => Ok(default_jitter(shortest)),
         }
     }
 
@@ -336,6 +332,12 @@ impl<V> Figures<V> {
             calm: f(self.calm),
         }
     }
+}
+
+/// The jitter where none is stated, by the shortest of the tick periods in nanoseconds.
+pub(super) fn default_jitter(shortest: u64) -> Sourced<Time> {
+    let why = "a short interrupt latency: 20 us, or 2 % of the shortest tick period (our choice)";
+    Sourced::new(Time::from_ns((shortest / 50).min(20_000)), Origin::Default(why))
 }
 
 impl Resolved {

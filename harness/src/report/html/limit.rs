@@ -1,9 +1,8 @@
 //! The report of a limit: what no logic can beat, and a logic that reaches it.
 
-use debounce_core::{Change, Envelope, PerChange, Period};
+use debounce_core::{Change, Envelope, PerChange, TickClock};
 use maud::{Markup, html};
 
-use super::proof::below;
 use super::{Origin, Page, Section, envelope, logic, origin, witness};
 use crate::machine::MachineTable;
 use crate::prove::{NoLogic, Outcome, Proof, Witness};
@@ -14,8 +13,8 @@ use crate::report::words;
 pub struct Limited<'a> {
     /// The envelope in samples.
     pub envelope: &'a Envelope,
-    /// The tick period, where there is one.
-    pub tick: Option<Period>,
+    /// The sample clock, where one is known.
+    pub clock: Option<TickClock>,
     /// The caution for the role of the contact, where there is one.
     pub caution: Option<&'static str>,
     /// The limit, or why there is no logic.
@@ -86,7 +85,7 @@ fn answered(limited: &Limited<'_>) -> Markup {
                 @let samples = reaching.latency.at(change);
                 p class={ "fact " (words::change(change)) } {
                     b { (words::count(samples as usize, "sample")) } " "
-                    span { "for a " (words::change(change)) @if let Some(tick) = limited.tick { ", " (below(tick, samples)) } }
+                    span { "for a " (words::change(change)) @if let Some(clock) = &limited.clock { ", " (words::delay_below(clock, samples)) } }
                 }
             }
         }

@@ -1,11 +1,12 @@
 //! The report of a single proof.
 
-use debounce_core::{Change, Envelope, PerChange, Period, TickClock};
+use debounce_core::{Change, Envelope, PerChange, TickClock};
 use maud::{Markup, html};
 
 use super::{Origin, Page, answer, envelope, logic, origin, witness};
 use crate::machine::MachineTable;
 use crate::prove::{Beyond, Contract, Outcome, Proof};
+use crate::quantity::Time;
 use crate::report::words;
 
 /// A finished proof with everything a report says of it.
@@ -23,8 +24,10 @@ pub struct Proved<'a> {
     pub limit: Option<PerChange<u32>>,
     /// What holds beyond the bounds.
     pub beyond: &'a Beyond,
-    /// The tick period, where there is one.
-    pub tick: Option<Period>,
+    /// The sample clock, where one is known.
+    pub clock: Option<TickClock>,
+    /// The latency that is required for a make and for a break, where one is.
+    pub allowed: PerChange<Option<Time>>,
     /// The caution for the role of the contact, where there is one.
     pub caution: Option<&'static str>,
 }
@@ -94,7 +97,8 @@ fn answered(proved: &Proved<'_>) -> Markup {
 
 /// The latency in time, and against the limit.
 fn line(proved: &Proved<'_>, change: Change, worst: u32) -> Option<String> {
-    let time = proved.tick.map(|period| below(period, worst));
+    let time = proved.clock.map(|clock| words::delay_below(&clock, worst));
+    let allowed = allowed(&proved.clock, *proved.allowed.of(change), worst);
     let limit = proved.limit.map(|limit| {
         let limit = limit.at(change);
         format!(
@@ -102,13 +106,14 @@ fn line(proved: &Proved<'_>, change: Change, worst: u32) -> Option<String> {
             f64::from(worst) / f64::from(limit)
         )
     });
-    let parts: Vec<String> = time.into_iter().chain(limit).collect();
+    let parts: Vec<String> = time.into_iter().chain(allowed).chain(limit).collect();
     (!parts.is_empty()).then(|| parts.join("; "))
 }
 
-/// What so many samples come to in time.
-pub(super) fn below(period: Period, samples: u32) -> String {
-    format!("less than {} at the nominal tick", words::at_most(TickClock::new(period).delay_ns(samples).1))
+/// Whether a required latency is kept.
+fn allowed(clock: &Option<TickClock>, allowed: Option<Time>, worst: u32) -> Option<String> {
+    let (clock, allowed) = (clock.as_ref()?, allowed?);
+    Some(words::against(clock.delay_ns(worst).1, allowed))
 }
 
 fn size(proof: &Proof) -> Markup {

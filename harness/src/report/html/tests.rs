@@ -2,7 +2,7 @@
 
 use std::collections::BTreeSet;
 
-use debounce_core::Envelope;
+use debounce_core::{Envelope, PerChange};
 
 use super::{
     Characterised, Compared, Limited, Origin, Proved, Reaching, characterised, compared, limit, proof,
@@ -49,7 +49,7 @@ fn proved(law: &str, envelope: Envelope) -> String {
     let found = prove_within(&table, &envelope, &Limits::default()).expect("a proof");
     let machine = MachineTable::of_table(&table);
     let beyond = Beyond::of(&table, &found, Effort::Quick, &Limits::default());
-    let (name, limit, tick, caution) = (law, None, None, None);
+    let (name, limit, clock, caution) = (law, None, None, None);
     proof(
         &Proved {
             name,
@@ -58,7 +58,8 @@ fn proved(law: &str, envelope: Envelope) -> String {
             proof: &found,
             limit,
             beyond: &beyond,
-            tick,
+            clock,
+            allowed: PerChange::default(),
             caution,
         },
         &origin(),
@@ -78,7 +79,7 @@ fn told(one: &str, other: &str) -> String {
 
 fn limited(envelope: Envelope) -> String {
     let answer = solve_limit(&envelope, &Limits::default()).expect("within the limits");
-    let page = |found| limit(&Limited { envelope: &envelope, tick: None, caution: None, found }, &origin());
+    let page = |found| limit(&Limited { envelope: &envelope, clock: None, caution: None, found }, &origin());
     match &answer {
         LimitAnswer::Solved(solution) => page(Ok(Reaching {
             latency: solution.latency,
