@@ -37,7 +37,7 @@ pub struct RequirementOptions {
     /// Channel of the recordings given as arguments
     #[arg(long, value_name = "NAME", help_heading = "Requirement")]
     pub channel: Option<String>,
-    /// Where the recordings were taken: contact, or pin behind the [network] of the requirement file
+    /// Where the recordings were taken: contact, or pin behind the network that the requirement file states
     #[arg(long, value_name = "PLACE", help_heading = "Requirement")]
     pub taken_at: Option<TakenAt>,
     /// At or below this voltage the line reads low
