@@ -165,7 +165,7 @@ fn study_of_few_disturbances_assumes_and_says_how_many_it_takes() {
 #[test]
 fn study_of_what_is_only_perhaps_a_disturbance_says_that_none_was_recorded() {
     let bench = Bench::with("gate.vcd", presses(shuffled(60).chain([4_000]), 1));
-    let told = "0 disturbances while closed (2.51 ms taken, for what are perhaps parts of bounces)";
+    let told = "0 disturbances while closed (2.50 ms taken, for what are perhaps parts of bounces)";
     for command in ["study", "choose", "characterise"] {
         let run = bench.run(&[&[command, "gate.vcd"][..], &HIGH].concat());
         assert!(run.flowing().contains("0 disturbances") || command == "choose", "{}", run.stdout);

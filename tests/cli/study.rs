@@ -11,7 +11,7 @@ fn study_of_the_demo_says_on_one_screen_what_to_do() {
         "invented",
         "Recorded     ",
         "Envelope     ",
-        "Assumed      calm = 0 ns (by default; choose --details says why)\n",
+        "Assumed      calm = 0 ns, lost = 0 ticks (by default; choose --details says why)\n",
         "Recommended  ",
         "Proved       ",
         "Measured     ",
@@ -118,7 +118,16 @@ fn study_says_which_values_are_defaults() {
 #[test]
 fn study_that_finds_nothing_speaks_of_no_proof_and_names_the_latency_asked_for() {
     let bench = Bench::with("vent.vcd", harness::demo::RECORDING);
-    let figures = ["--shortest", "40 ms", "--disturbance", "4 ms", "--quiet-time", "9 ms"];
+    let figures = [
+        "--shortest-closed",
+        "40 ms",
+        "--shortest-open",
+        "40 ms",
+        "--disturbance",
+        "4 ms",
+        "--quiet-time",
+        "15 ms",
+    ];
     let study = |latency| {
         let line = ["study", "vent.vcd", "--closed", "high", "--latency", latency];
         bench.run(&[&line[..], &figures].concat()).ends(1)
