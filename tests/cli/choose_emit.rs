@@ -2,7 +2,7 @@
 
 use std::process::Command;
 
-use crate::bench::Bench;
+use crate::bench::{Bench, Run};
 
 const FIGURES: [&str; 8] =
     ["--bounce", "5 ms", "--disturbance", "300 us", "--quiet-time", "5 ms", "--latency", "20 ms"];
@@ -38,6 +38,7 @@ fn choose_for_what_nothing_can_do_ends_with_1_and_says_by_how_much() {
     let run = Bench::new().run(&["choose", "--bounce", "5 ms", "--latency", "2 ms"]).ends(1);
     assert!(run.stdout.contains("None holds"), "{}", run.stdout);
     assert!(run.flowing().contains("more than the 2 ms allowed"), "{}", run.stdout);
+    assert!(!run.stdout.contains("none that holds beats it"), "no row has the mark: {}", run.stdout);
     let json =
         Bench::new().run(&["choose", "--bounce", "5 ms", "--latency", "2 ms", "--json"]).ends(1).json();
     assert_eq!((&json["outcome"], &json["schema"]), (&"does-not-hold".into(), &1.into()));
@@ -128,4 +129,26 @@ fn choose_shows_where_each_law_works_over_all_tick_periods() {
     );
     assert_eq!(result["sleep"]["operations_per_hour"], 60);
     assert_eq!(result["slowest_by_tolerance"].as_array().map(Vec::len), Some(5));
+}
+
+/// A column is no narrower than its header and its times: only a law may be broken, between its parameters.
+#[test]
+fn table_of_candidates_breaks_no_header_and_no_time_at_80_columns() {
+    let vent = Bench::with("vent.vcd", harness::demo::RECORDING);
+    let table = |latency: &str| {
+        let mut command = vent.command();
+        command.env("COLUMNS", "80").args(["choose", "vent.vcd", "--closed", "high", "--tick", "1 ms"]);
+        let run = Run::of(command.args(["--latency", latency]).output().expect("the command runs"));
+        let rows: Vec<String> =
+            run.stdout.lines().skip_while(|line| !line.contains(" law ")).map(str::to_owned).collect();
+        rows.split(|row| row.is_empty()).next().expect("a table").to_vec()
+    };
+    for (latency, last) in [("15 ms", " make"), ("100 ms", "")] {
+        let rows = table(latency);
+        for header in ["law ", "tick ", "make < ", "break < ", "median ", "bytes"] {
+            assert!(rows[0].contains(header), "{rows:#?}");
+        }
+        assert!(rows[1].matches(" ms ").count() >= 4 && rows[1].ends_with(last), "{rows:#?}");
+        assert!(rows.iter().all(|row| row.len() <= 80), "{rows:#?}");
+    }
 }

@@ -59,3 +59,40 @@ fn replay_gives_the_same_bytes_twice_and_json_that_parses() {
     assert_eq!((&json["outcome"], &json["command"]), (&"does-not-hold".into(), &"replay".into()));
     assert!(!json["result"]["runs"][0]["measured"].is_null(), "{json}");
 }
+
+#[test]
+fn replay_at_many_ticks_takes_one_line_for_each() {
+    let line = ["replay", "integrator 3", "vent.vcd", "--closed", "high"];
+    let run = demo_bench().run(&[&line[..], &["--tick", "1 ms, 2 ms, 5 ms, 10 ms"]].concat());
+    let rows = |tick: &str| run.stdout.lines().filter(|line| line.starts_with(tick)).count();
+    assert!(["1 ms ", "2 ms ", "5 ms ", "10 ms "].into_iter().all(|tick| rows(tick) == 1), "{}", run.stdout);
+    assert!(run.stdout.lines().count() <= 12, "{}", run.stdout);
+    assert!(run.flowing().contains("; none missed, "), "{}", run.stdout);
+    assert!(run.flowing().contains("--tick with one period shows where they are"), "{}", run.stdout);
+    // One line tells the same as the whole of one period.
+    let one = demo_bench().run(&[&line[..], &["--tick", "5 ms"]].concat()).flowing();
+    let worst =
+        one.split("always less than ").nth(1).and_then(|rest| rest.split(';').next()).expect("a delay");
+    assert!(run.stdout.contains(&format!("5 ms         make < {worst}, ")), "{worst}: {}", run.stdout);
+}
+
+/// A last break so near the end that no tick may see it is no change that was judged.
+#[test]
+fn replay_counts_what_the_recording_cuts_off_apart() {
+    let mut csv = "time_ms,gate\n0,0\n".to_owned();
+    for operation in 0..3 {
+        let make = 100 + operation * 300;
+        csv.push_str(&format!("{make},1\n{},0\n", make + 100));
+    }
+    csv.push_str("801,0\n");
+    let bench = Bench::with("gate.csv", csv);
+    let line =
+        ["replay", "shift-register 3", "gate.csv", "--time-unit", "ms", "--closed", "high", "--tick", "1 ms"];
+    let text = bench.run(&line).ends(0).flowing();
+    assert!(text.contains("Makes 3 changes; "), "{text}");
+    assert!(
+        text.contains("Breaks 2 changes and 1 more too near the end of the recording to be judged; "),
+        "{text}"
+    );
+    assert!(text.contains("of 5 changes; "), "{text}");
+}

@@ -11,6 +11,7 @@ fn study_of_the_demo_says_on_one_screen_what_to_do() {
         "invented",
         "Recorded     ",
         "Envelope     ",
+        "Assumed      calm = 0 ns, lost = 0 ticks (by default; choose --details says why)\n",
         "Recommended  ",
         "Proved       ",
         "Measured     ",
@@ -96,4 +97,53 @@ fn study_that_does_not_hold_ends_with_1_and_writes_no_module() {
     assert!(run.stdout.contains("Recommended  nothing: none of "), "{}", run.stdout);
     let names: Vec<String> = bench.listing().into_keys().collect();
     assert_eq!(names, ["results", "results/report.html", "results/study.json", "vent.vcd"]);
+}
+
+#[test]
+fn study_says_which_values_are_defaults() {
+    let bench = Bench::with("vent.vcd", harness::demo::RECORDING);
+    let line = ["study", "vent.vcd", "--closed", "high", "--latency", "50 ms", "--tick", "5 ms"];
+    let run = bench.run(&line);
+    for part in
+        ["calm = 0 ns", "tolerance = 2 %", "jitter = 20 us", "(by default; choose --details says why)"]
+    {
+        assert!(run.flowing().contains(part), "\"{part}\" is not in {}", run.stdout);
+    }
+    // What was given or measured is none.
+    for part in ["latency.make = ", "tick = ", "bounce.make = "] {
+        assert!(!run.flowing().contains(part), "\"{part}\" is in {}", run.stdout);
+    }
+}
+
+#[test]
+fn study_that_finds_nothing_speaks_of_no_proof_and_names_the_latency_asked_for() {
+    let bench = Bench::with("vent.vcd", harness::demo::RECORDING);
+    let figures = [
+        "--shortest-closed",
+        "40 ms",
+        "--shortest-open",
+        "40 ms",
+        "--disturbance",
+        "4 ms",
+        "--quiet-time",
+        "15 ms",
+    ];
+    let study = |latency| {
+        let line = ["study", "vent.vcd", "--closed", "high", "--latency", latency];
+        bench.run(&[&line[..], &figures].concat()).ends(1)
+    };
+    let hopeless = study("10 us").flowing();
+    for part in [
+        "10 us for a make and 10 us for a break are required",
+        "lies inside the required envelope; nothing is proved of it",
+        "Next relax what is asked: in this envelope no tick and no logic can be so quick",
+    ] {
+        assert!(hopeless.contains(part), "\"{part}\" is not in {hopeless}");
+    }
+    assert!(!hopeless.contains("envelope of the proof") && !hopeless.contains("exceeds"), "{hopeless}");
+
+    let line = ["study", "vent.vcd", "--closed", "high", "--latency", "10 us", "--bounce", "1 ms"];
+    let exceeding = bench.run(&[&line[..], &figures].concat()).ends(1).flowing();
+    assert!(exceeding.contains("leaves the envelope at "), "{exceeding}");
+    assert!(exceeding.contains("state the figures that the recording exceeds"), "{exceeding}");
 }

@@ -141,3 +141,19 @@ fn network_that_is_wrong_is_refused_by_all_that_read_recordings() {
         refuses("slip.toml", ("slip.toml:3:12", "\"pn\" is not a place where a recording is taken", help));
     }
 }
+
+#[test]
+fn envelope_behind_a_network_is_said_to_be_the_one_at_the_pin() {
+    let bench = bench();
+    let says = |line: &[&str], part: &str| {
+        let text = bench.run(&[line, &["--time-unit", "us"]].concat()).flowing();
+        assert!(text.contains(part), "\"{part}\" is not in {text}");
+    };
+    for command in ["study", "choose"] {
+        let network = [command, "gate.csv", "-r", "network.toml"];
+        says(&network, "Envelope at the pin, behind the network: the line stays closed");
+        says(&[command, "gate.csv", "-r", "bare.toml"], "Envelope the contact stays closed");
+    }
+    // The bounce at the pin stands on a default, and that is said where the design is.
+    says(&["study", "-r", "pin.toml"], "for a contact that bounces for 10 ms (the default)");
+}

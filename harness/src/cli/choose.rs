@@ -4,10 +4,11 @@ use std::io::{self, Write};
 use std::path::PathBuf;
 
 use clap::Args;
-use comfy_table::{ColumnConstraint, ContentArrangement, Table, Width};
+use comfy_table::{ColumnConstraint, ContentArrangement, Table};
 use debounce_core::Clause;
 use serde_json::{Value, json};
 
+use super::assumed::assumed;
 use super::clock_text::ClockView;
 use super::input::Input;
 use super::lines::{Lines, columns, strong};
@@ -22,8 +23,8 @@ use crate::clock_range::{Activity, ClockQuestion, asleep, clock_range, slowest_b
 use crate::problem::Problem;
 use crate::quantity::counted;
 use crate::report::clock_plot::ClockPlot;
-use crate::report::{characterised, html, json as report, words};
-use crate::requirement::{InFront, Origin, Resolved};
+use crate::report::{characterised, html, json as report, nothing_words, words};
+use crate::requirement::InFront;
 use crate::study::Study;
 
 /// Ranks laws, parameters and tick periods for a requirement.
@@ -141,8 +142,7 @@ impl Answer for Chosen {
     fn write_text(&self, out: &mut dyn Write) -> io::Result<()> {
         let ranking = &self.study.ranking;
         let mut lines = Lines::new(out);
-        lines
-            .item("Envelope", &format!("the contact {}", words::envelope(&self.study.physical).join("; ")))?;
+        lines.item("Envelope", &words::envelope_at_pin(&self.study.resolved))?;
         network(&mut lines, self.study.resolved.network.as_ref())?;
         if !self.study.observed.is_empty() {
             claims(&mut lines, &self.study.claims)?;
@@ -167,13 +167,18 @@ impl Answer for Chosen {
                 for shortfall in ranking.candidates.iter().take(1).flat_map(|nearest| &nearest.shortfalls) {
                     lines.more(&format!("the first: {}", words::shortfall(shortfall)))?;
                 }
+                if let Some(text) = nothing_words::latency_shortfall(&self.study) {
+                    lines.more(&text)?;
+                }
             }
         }
         lines.plain("\n")?;
         lines.plain(&candidate_table(&self.study, self.list))?;
         lines.plain("\n")?;
-        lines.item("*", "none that holds beats it in delay, ticks a second and RAM together")?;
-        lines.plain("\n")?;
+        if ranking.candidates.iter().take(self.list).any(|one| one.pareto) {
+            lines.item("*", "none that holds beats it in delay, ticks a second and RAM together")?;
+            lines.plain("\n")?;
+        }
         self.clock.write(&mut lines, self.details)?;
         if self.plot {
             let latency = &self.study.resolved.required.latency;
@@ -216,6 +221,10 @@ pub(super) fn network(lines: &mut Lines<'_>, front: Option<&InFront>) -> io::Res
     Ok(())
 }
 
+/// Columns at which the table has room for everything side by side, and below which it has not even for its numbers.
+const ROOMY: usize = 100;
+const NARROW: usize = 72;
+
 /// The first candidates as a table.
 fn candidate_table(study: &Study, list: usize) -> String {
     let mut table = Table::new();
@@ -225,7 +234,13 @@ fn candidate_table(study: &Study, list: usize) -> String {
     let listed = || study.ranking.candidates.iter().take(list);
     // Where all that are listed hold, there is nothing to lack, and more room for the rest.
     let has_lack = listed().any(|one| !one.holds());
-    let mut header = vec!["", "law", "tick", "make <", "break <", "x limit", "median", "bytes"];
+    let has_mark = listed().any(|one| one.pareto);
+    let has_limit = !has_lack || columns() >= ROOMY;
+    let mut header: Vec<&str> = has_mark.then_some("").into_iter().collect();
+    let law = header.len();
+    header.extend(["law", "tick", "make <", "break <"]);
+    header.extend(has_limit.then_some("x limit"));
+    header.extend(["median", "bytes"]);
     header.extend(has_lack.then_some("lacks"));
     table.set_header(header);
     for one in listed() {
@@ -234,26 +249,23 @@ fn candidate_table(study: &Study, list: usize) -> String {
         });
         let median =
             one.measured.iter().filter_map(|m| m.make.latency.as_ref()).map(|l| l.delay.median_ns).max();
-        let mut row = vec![
-            if one.pareto { "*".to_owned() } else { String::new() },
-            one.parameters.to_string(),
-            study.tick(one).to_string(),
-            make,
-            break_,
-            match (one.times_limit, one.worst_below_ns) {
-                (Some(times), _) => format!("{times:.2}"),
-                (None, Some(_)) => "limit unknown".into(),
-                (None, None) => "-".into(),
-            },
-            median.map_or("-".into(), words::about),
-            one.state_bytes.to_string(),
-        ];
+        let mark = if one.pareto { "*" } else { "" };
+        let mut row: Vec<String> = has_mark.then(|| mark.to_owned()).into_iter().collect();
+        row.extend([one.parameters.to_string(), study.tick(one).to_string(), make, break_]);
+        row.extend(has_limit.then(|| match (one.times_limit, one.worst_below_ns) {
+            (Some(times), _) => format!("{times:.2}"),
+            (None, Some(_)) => "unknown".into(),
+            (None, None) => "-".into(),
+        }));
+        row.extend([median.map_or("-".into(), words::about), one.state_bytes.to_string()]);
         row.extend(has_lack.then(|| one.shortfalls.first().map(lacks).unwrap_or_default()));
         table.add_row(row);
     }
-    if let Some(law) = table.column_mut(1) {
-        // Room for the name of a law and its first parameter, then for two side by side.
-        law.set_constraint(ColumnConstraint::LowerBoundary(Width::Fixed(26)));
+    // The law takes what room is left and may be broken between its parameters; a header or a time is never broken.
+    if columns() >= NARROW {
+        for column in table.column_iter_mut().filter(|column| column.index != law) {
+            column.set_constraint(ColumnConstraint::ContentWidth);
+        }
     }
     table.trim_fmt() + "\n"
 }
@@ -273,36 +285,4 @@ fn lacks(shortfall: &Shortfall) -> String {
         }
         Shortfall::FailsOnRecording { recording } => format!("recording {}", recording + 1),
     }
-}
-
-/// Every value that nobody gave; with `details` why it is what it is, those for the same reason together.
-fn assumed(lines: &mut Lines<'_>, resolved: &Resolved, details: bool) -> io::Result<()> {
-    let mut groups: Vec<(String, Vec<String>)> = Vec::new();
-    for row in resolved.rows() {
-        // What the network does has just been said.
-        if matches!(row.origin, Origin::Given { .. } | Origin::Option(_) | Origin::Network) {
-            continue;
-        }
-        let (reason, key) = match row.origin {
-            Origin::Default(_) if !details => ("by default".to_owned(), short(row.key)),
-            origin => (origin.to_string(), if details { row.key } else { short(row.key) }),
-        };
-        let value = format!("{key} = {}", row.text);
-        match groups.iter_mut().find(|(known, _)| *known == reason) {
-            Some((_, values)) => values.push(value),
-            None => groups.push((reason, vec![value])),
-        }
-    }
-    for (reason, values) in &groups {
-        lines.item("Assumed", &format!("{} ({reason})", values.join(", ")))?;
-    }
-    if !details && !groups.is_empty() {
-        lines.more("--details says why each of them, and more of clock and sleep")?;
-    }
-    Ok(())
-}
-
-/// A key without its section, which is told by the name.
-fn short(key: &'static str) -> &'static str {
-    key.split_once('.').map_or(key, |(_, name)| name)
 }

@@ -4,6 +4,7 @@
 //! of standard output that goes away ends the run quietly, with the exit code that the answer has.
 
 mod ascii;
+mod assumed;
 mod beyond_text;
 mod characterise;
 mod choose;

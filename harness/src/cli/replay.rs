@@ -1,5 +1,7 @@
 //! `harness replay`: one law over recordings.
 
+mod overview;
+
 use std::io::{self, Write};
 use std::path::{Path, PathBuf};
 
@@ -19,7 +21,7 @@ use crate::nearest::nearest_scoped;
 use crate::problem::Problem;
 use crate::prove::{Witness, WitnessTick};
 use crate::quantity::{Share, TickPeriod, counted};
-use crate::replay::{ClockMeasurement, Draws, Failures, PreparedClock};
+use crate::replay::{ClockMeasurement, Draws, Failures, Measurement, PreparedClock};
 use crate::report::timing::TimingDiagram;
 use crate::report::{characterised, claim_words, words};
 use crate::requirement::Word;
@@ -168,6 +170,10 @@ impl Answer for Replayed {
 
     fn write_text(&self, out: &mut dyn Write) -> io::Result<()> {
         let mut lines = Lines::new(out);
+        let ticks = self.runs.iter().filter(|run| run.recording == 0).count();
+        if ticks > TICKS {
+            return self.overview(&mut lines, ticks);
+        }
         for run in &self.runs {
             let one = &self.observed[run.recording];
             lines.item("Replayed", &format!("{} at {} over {}", self.law, run.tick, one.name))?;
@@ -198,15 +204,14 @@ impl Answer for Replayed {
 
 impl Replayed {
     fn figures(&self, lines: &mut Lines<'_>, run: &Run) -> io::Result<()> {
-        let changes = |number: u32| counted(u64::from(number), "change");
         let exact = &run.measured.nominal;
         for change in [Change::Make, Change::Break] {
             let figures = exact.at(change);
+            let judged = judged(exact, change);
             let text = match &figures.latency {
-                None => format!("{}, none reported", changes(figures.changes)),
+                None => format!("{judged}, none reported"),
                 Some(latency) => format!(
-                    "{}; delay median {}, 95 % {}, 99 % {}, always less than {}; at most {}",
-                    changes(figures.changes),
+                    "{judged}; delay median {}, 95 % {}, 99 % {}, always less than {}; at most {}",
                     words::about(latency.delay.median_ns),
                     words::about(latency.delay.p95_ns),
                     words::about(latency.delay.p99_ns),
@@ -279,8 +284,21 @@ impl Replayed {
     }
 }
 
+/// Tick periods that are shown with all their figures.
+const TICKS: usize = 2;
+
 /// Places listed on the screen.
 const SHOWN: usize = 5;
+
+/// How many changes of one kind could be judged, and how many the recording ends too early for: they count in no rate.
+fn judged(exact: &Measurement, change: Change) -> String {
+    let undecided = exact.undecided.iter().filter(|one| one.change == change).count() as u64;
+    let judged = counted(u64::from(exact.at(change).changes).saturating_sub(undecided), "change");
+    match undecided {
+        0 => judged,
+        more => format!("{judged} and {more} more too near the end of the recording to be judged"),
+    }
+}
 
 /// Columns before the change and in all.
 const BEFORE: u64 = 4;

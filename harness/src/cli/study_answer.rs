@@ -7,6 +7,7 @@ use std::path::PathBuf;
 use debounce_core::PerChange;
 use serde_json::{Value, json};
 
+use super::assumed::assumed_briefly;
 use super::choose::network;
 use super::lines::{Lines, grouped, strong};
 use super::recorded::{claims, recorded};
@@ -15,7 +16,7 @@ use super::{Answer, Outcome};
 use crate::choose::{Candidate, Judgement};
 use crate::prove::Recovery;
 use crate::quantity::{TickPeriod, counted};
-use crate::report::{claim_words, json, words};
+use crate::report::{claim_words, json, nothing_words, words};
 use crate::requirement::TakenAt;
 use crate::study::{Guarantees, Study};
 
@@ -42,8 +43,9 @@ impl Answer for StudyAnswer {
         if !study.observed.is_empty() {
             claims(&mut lines, &study.claims)?;
         }
-        lines.item("Envelope", &format!("the contact {}", words::envelope(&study.physical).join("; ")))?;
+        lines.item("Envelope", &words::envelope_at_pin(&study.resolved))?;
         network(&mut lines, study.resolved.network.as_ref())?;
+        assumed_briefly(&mut lines, &study.resolved)?;
         match (study.ranking.recommended(), &study.guarantees) {
             (Some(best), Some(found)) => self.recommended(&mut lines, best, found)?,
             _ => nothing_holds(&mut lines, study)?,
@@ -130,12 +132,13 @@ impl StudyAnswer {
         for (one, conforms) in self.study.observed.iter().zip(&self.study.conformance) {
             if conforms.conforms() {
                 let inside = match one.taken_at.map(|taken_at| taken_at.value) {
-                    None | Some(TakenAt::Pin) => "lies inside the envelope of the proof",
                     Some(TakenAt::Contact) => {
-                        "lies inside the envelope of the contact that the network was worked out for"
+                        "the envelope of the contact that the network was worked out for"
                     }
+                    _ if self.study.guarantees.is_some() => "the envelope of the proof",
+                    _ => "the required envelope; nothing is proved of it",
                 };
-                lines.item("Conforms", &format!("{} {inside}", one.name))?;
+                lines.item("Conforms", &format!("{} lies inside {inside}", one.name))?;
                 continue;
             }
             let number = conforms.violations.len();
@@ -161,10 +164,7 @@ impl StudyAnswer {
 
     fn next(&self, lines: &mut Lines<'_>) -> io::Result<()> {
         if !self.study.holds() {
-            return lines.item(
-                "Next",
-                "relax what is asked, record the contact again, or state the figures that the recording exceeds",
-            );
+            return lines.item("Next", nothing_words::advice(&self.study));
         }
         written(lines, &self.written)?;
         if self.written.iter().any(|path| path.extension().is_some_and(|ending| ending == "rs")) {
@@ -226,10 +226,8 @@ pub(super) fn nothing_holds(lines: &mut Lines<'_>, study: &Study) -> io::Result<
     if let Judgement::Unproven(why) = &nearest.judgement {
         lines.more(&format!("  {why}"))?;
     }
-    let PerChange { make, break_ } = ranking.physical_limit_ns;
-    lines.more(&format!(
-        "no logic at any tick can promise less than {} at a make or {} at a break in this envelope",
-        words::at_most(make),
-        words::at_most(break_)
-    ))
+    if let Some(text) = nothing_words::latency_shortfall(study) {
+        lines.more(&text)?;
+    }
+    lines.more(&nothing_words::least_of_all(study))
 }

@@ -25,12 +25,13 @@ pub fn claim(claim: &Claim, change: Change) -> String {
 pub fn limit(claims: &Claims, claim: &Claim, change: Change) -> String {
     match claim.limit {
         Some(limit) => format!(
-            "{} of {}s bounce no longer than {}, rank {} of {}, with {} confidence (asked {})",
+            "{} of {}s bounce no longer than {}, rank {} of {} ({}), with {} confidence (asked {})",
             claims.coverage,
             words::change(change),
             words::at_most(limit.ns),
             limit.rank,
             claim.operations,
+            if limit.rank == 1 { "the longest" } else { "counted from the longest" },
             words::covered(limit.confidence),
             claims.confidence,
         ),
@@ -48,21 +49,32 @@ pub fn limit(claims: &Claims, claim: &Claim, change: Change) -> String {
 /// On which claim the bounce that is designed for stands.
 #[must_use]
 pub fn design_basis(design: &DesignBounce) -> String {
-    match (design.origin, design.margin) {
-        (Origin::Measured, Some(margin)) => format!("that claim with a margin of {margin}"),
-        (origin, _) => match design.covered {
-            Some(covered) => format!(
-                "{origin}; {} of {} recorded were longer, so it covers {} of all",
-                design.longer,
-                design.recorded,
-                words::covered(covered)
-            ),
-            None if design.recorded > 0 => {
-                format!("{origin}; every one of {} recorded was longer", design.recorded)
-            }
-            None => format!("{origin}; none was recorded"),
-        },
+    if let (Origin::Measured, Some(margin)) = (design.origin, design.margin) {
+        return format!("that claim with a margin of {margin}");
     }
+    let origin = design_origin(design);
+    match design.covered {
+        Some(covered) => format!(
+            "{origin}; {} of {} recorded were longer, so it covers {} of all",
+            design.longer,
+            design.recorded,
+            words::covered(covered)
+        ),
+        None if design.recorded > 0 => {
+            format!("{origin}; every one of {} recorded was longer", design.recorded)
+        }
+        None => format!("{origin}; none was recorded"),
+    }
+}
+
+/// Where the bounce that is designed for comes from; where a network lengthens it, also what it lengthens.
+fn design_origin(design: &DesignBounce) -> String {
+    let Some(contact) = design.of_contact else { return design.origin.to_string() };
+    let from = match contact.origin {
+        Origin::Default(_) => "the default".to_owned(),
+        origin => origin.to_string(),
+    };
+    format!("{}, for a contact that bounces for {} ({from})", design.origin, contact.value)
 }
 
 /// With which confidence how few operations fail, by those that a replay could judge.

@@ -7,6 +7,7 @@ pub mod clock_plot;
 pub mod html;
 pub mod json;
 pub mod network;
+pub mod nothing_words;
 pub mod plot;
 pub mod si;
 pub mod state_diagram;

@@ -5,6 +5,7 @@ use debounce_core::{Change, Clause, PerPosition, Position, TickClock};
 use crate::choose::Shortfall;
 use crate::envelope::PhysicalEnvelope;
 use crate::quantity::{Rounding, Time, counted};
+use crate::requirement::Resolved;
 
 /// A time that must not be understated.
 #[must_use]
@@ -114,6 +115,16 @@ pub fn shortfall(shortfall: &Shortfall) -> String {
         ),
         Shortfall::FailsOnRecording { recording } => format!("fails on recording {}", recording + 1),
     }
+}
+
+/// The envelope that must be served, in one sentence: of the contact, or of the pin where a network stands before it.
+#[must_use]
+pub fn envelope_at_pin(resolved: &Resolved) -> String {
+    let subject = match &resolved.network {
+        None => "the contact",
+        Some(_) => "at the pin, behind the network: the line",
+    };
+    format!("{subject} {}", envelope(&resolved.physical()).join("; "))
 }
 
 /// The envelope in words, one clause a line, so that all readers can agree on it.

@@ -8,7 +8,7 @@ use super::{Claims, Extreme, ExtremeOf, Observed};
 use crate::characterise::{GapOrigin, Independence, independence, resting};
 use crate::quantity::{Share, Time};
 use crate::report::words;
-use crate::requirement::{ContactKind, Level, Resolved};
+use crate::requirement::{ContactKind, Level, Origin, Resolved};
 
 /// Something that weakens what the recordings show. It ends with what to do.
 #[derive(Clone, PartialEq, Debug)]
@@ -116,7 +116,7 @@ impl Caution {
     }
 
     /// Times in a position apart from disturbances, for they are stated and recorded in different ways. What was not
-    /// recorded at all is no reason for doubt in a recording.
+    /// recorded at all is no reason for doubt in a recording, unless something in doubt was taken all the same.
     fn few_seen(claims: &Claims) -> Vec<Self> {
         let is_stay = |extreme: &Extreme| matches!(extreme.of, ExtremeOf::Stay(_));
         let (stays, disturbed): (Vec<Extreme>, Vec<Extreme>) =
@@ -124,7 +124,8 @@ impl Caution {
         let few = |extremes: Vec<Extreme>| {
             let is_recorded = extremes.iter().any(|extreme| extreme.count > 0);
             let unsupported: Vec<Extreme> = extremes.into_iter().filter(Extreme::is_unsupported).collect();
-            (is_recorded && !unsupported.is_empty()).then_some(Self::FewSeen {
+            let is_taken = unsupported.iter().any(|extreme| extreme.taken.origin == Origin::Measured);
+            (is_taken || is_recorded && !unsupported.is_empty()).then_some(Self::FewSeen {
                 extremes: unsupported,
                 coverage: claims.coverage,
                 confidence: claims.confidence,

@@ -5,8 +5,8 @@ use debounce_core::{Change, PerChange};
 use super::{Extreme, Observed, measured, pooled};
 use crate::characterise::tolerance::{self, ToleranceError};
 use crate::characterise::{Claim, Figures};
-use crate::quantity::Share;
-use crate::requirement::{Origin, Resolved};
+use crate::quantity::{Share, Time};
+use crate::requirement::{Origin, Resolved, Sourced};
 
 /// What all recordings together allow to claim.
 #[derive(Clone, PartialEq, Debug)]
@@ -32,6 +32,9 @@ pub struct DesignBounce {
     pub ns: u64,
     /// Where it comes from: the longest recorded with the margin added, a stated one, or a default.
     pub origin: Origin,
+    /// The bounce of the contact that it was worked out from, where a network stands in front of the pin at which it
+    /// was recorded.
+    pub of_contact: Option<Sourced<Time>>,
     /// The margin that was added to the longest recorded; `None` where the figure was not measured.
     pub margin: Option<Share>,
     /// Bounces recorded, and how many of them may be longer than the design.
@@ -85,9 +88,11 @@ impl DesignBounce {
     ) -> Result<Self, ToleranceError> {
         let taken = resolved.required.bounce.at(change);
         // What was recorded behind the network is to be held against what the network makes of the contact.
-        let (ns, origin) = match &resolved.network {
-            Some(front) if behind => (front.at_pin.physical.bounce_ns.at(change), Origin::Network),
-            _ => (taken.value.ns(), taken.origin),
+        let (ns, origin, of_contact) = match &resolved.network {
+            Some(front) if behind => {
+                (front.at_pin.physical.bounce_ns.at(change), Origin::Network, Some(taken))
+            }
+            _ => (taken.value.ns(), taken.origin, None),
         };
         let recorded = safe_bounces_ns.len() as u64;
         let longer = recorded - safe_bounces_ns.partition_point(|&bounce| bounce <= ns) as u64;
@@ -96,6 +101,6 @@ impl DesignBounce {
             false => None,
         };
         let margin = (origin == Origin::Measured).then_some(resolved.margin.value);
-        Ok(Self { ns, origin, margin, recorded, longer, covered })
+        Ok(Self { ns, origin, of_contact, margin, recorded, longer, covered })
     }
 }

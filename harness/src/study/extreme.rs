@@ -131,8 +131,12 @@ impl ExtremeOf {
 /// How few were recorded, and what is taken all the same.
 impl fmt::Display for Extreme {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        let taken = match self.taken.origin {
-            Origin::Measured => "taken, with the margin",
+        let taken = match (self.taken.origin, self.count, self.of) {
+            (Origin::Measured, 0, ExtremeOf::Disturbance(_)) => {
+                "taken, for what are perhaps parts of bounces"
+            }
+            (Origin::Measured, 0, _) => "taken, from what is in doubt",
+            (Origin::Measured, ..) => "taken, with the margin",
             _ => "assumed",
         };
         write!(f, "{} ({} {taken})", self.of.counted(self.count), self.taken.value)

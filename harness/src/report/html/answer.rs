@@ -5,7 +5,7 @@ use maud::{Markup, html};
 
 use crate::choose::Candidate;
 use crate::prove::{Beyond, Recovery};
-use crate::report::{claim_words, words};
+use crate::report::{claim_words, nothing_words, words};
 use crate::study::{Caution, Guarantees, Study};
 
 /// The whole answer.
@@ -142,7 +142,8 @@ fn nothing(study: &Study) -> Markup {
                 (nearest.shortfalls.iter().map(words::shortfall).collect::<Vec<_>>().join("; ")) "."
             }
         }
-        p { "Relax what is asked, allow a faster tick, or state the figures that the recording exceeds." }
+        @if let Some(text) = nothing_words::latency_shortfall(study) { p { (text) "." } }
+        p { "Next: " (nothing_words::advice(study)) "." }
     }
 }
 
@@ -156,7 +157,10 @@ fn fits(study: &Study) -> Markup {
                  proved does not cover what was recorded: see " a href="#conformance" { "Do the recordings fit?" }
             }
         } @else if !study.observed.is_empty() {
-            p class="holds" { "Every recording lies inside the envelope of the proof." }
+            p class="holds" {
+                "Every recording lies inside the "
+                @if study.guarantees.is_some() { "envelope of the proof." } @else { "required envelope." }
+            }
         }
     }
 }
