@@ -12,7 +12,7 @@ use crate::raw_input::quoted;
 use crate::trace::builder::{Reading, TraceBuilder};
 use crate::trace::error::{Faults, Place};
 use crate::trace::range::{VoltRange, propose};
-use crate::trace::{Note, ReadOptions, Recording, Thresholds, TimeUnit};
+use crate::trace::{Note, ReadOptions, Recording, SamplePeriod, Thresholds, TimeUnit};
 
 /// A column that is followed.
 #[derive(Debug)]
@@ -224,6 +224,11 @@ impl<'a> Rows<'a> {
         let end_ns = self.now_ns.saturating_add(tail_ns);
         let stated = self.options.resolution_ns.or(self.options.sample_period_ns);
         let resolution_ns = stated.unwrap_or_else(|| self.resolution_ns());
+        let period = match stated {
+            Some(_) => SamplePeriod::Stated,
+            None if self.is_sampled() => SamplePeriod::Spacing,
+            None => SamplePeriod::Digits,
+        };
         let shift = whole_ns(self.shift).filter(|&by_ns| by_ns > 0).map(|by_ns| Note::Shifted { by_ns });
         let is_assumed = self.layout.time_unit.is_none() && self.options.sample_period_ns.is_none();
         let assumed = is_assumed.then_some(Note::SecondsAssumed);
@@ -247,7 +252,7 @@ impl<'a> Rows<'a> {
             match lane.builder.finish(end_ns, resolution_ns) {
                 Some((trace, mut notes)) => {
                     notes.extend([shift, assumed, preamble, rounded, clipped].into_iter().flatten());
-                    recordings.push(Recording { channel: lane.name, trace, notes });
+                    recordings.push(Recording { channel: lane.name, trace, period, notes });
                 }
                 None if !faults.is_empty() => {}
                 None => faults.whole_file(format!("channel {} never has a known value", lane.name)),
