@@ -3,7 +3,7 @@
 use std::io::{self, Read};
 
 use super::header::{Header, Scale, section};
-use super::select::{Part, Selected};
+use super::select::{Part, Selected, channels};
 use super::tokens::Tokens;
 use crate::raw_input::quoted;
 use crate::trace::builder::{Reading, TraceBuilder};
@@ -271,7 +271,7 @@ impl<'a> Body<'a> {
         };
         for target in self.targets {
             if let Part::Volts(pair) = target.part
-                && (!faults.is_empty() || target.range.misses(&target.name, pair, faults))
+                && (!faults.is_empty() || target.range.misses(&target.name, pair, &channels(self.header), faults))
             {
                 continue;
             }
