@@ -50,6 +50,22 @@ pub enum SegmentError {
         /// The longest run, those at the ends of the recording included.
         longest_ns: u64,
     },
+    /// The line changes all the time, at the gap that was stated.
+    #[error(
+        "the stated gap of {} ends no burst: of the {} no two are further apart than {}; state a shorter gap, or \
+         leave it out to have it found",
+        Time::from_ns(*.gap_ns),
+        counted(*.edges as u64, "edge"),
+        Time::from_ns(*.longest_ns)
+    )]
+    GapTooLong {
+        /// The number of edges.
+        edges: usize,
+        /// The longest run, those at the ends of the recording included.
+        longest_ns: u64,
+        /// The gap that was stated.
+        gap_ns: u64,
+    },
     /// A gap of 0 would make every edge an operation of its own, bounce included.
     #[error(
         "a gap of 0 ns ends no burst; state how long the line rests between two operations, such as 20 ms"
@@ -81,8 +97,14 @@ pub fn segment(trace: &Trace, options: &SegmentOptions) -> Result<Segmentation, 
     }
     let longest_ns = longest_run(trace);
     // Unless somebody states how long this one rests.
-    if longest_ns < options.gap_ns.unwrap_or(LEAST_REST_NS) && options.gap_ns != Some(0) {
-        return Err(SegmentError::NeverSettles { edges: edges.len(), longest_ns });
+    match options.gap_ns {
+        None if longest_ns < LEAST_REST_NS => {
+            return Err(SegmentError::NeverSettles { edges: edges.len(), longest_ns });
+        }
+        Some(gap_ns) if longest_ns < gap_ns => {
+            return Err(SegmentError::GapTooLong { edges: edges.len(), longest_ns, gap_ns });
+        }
+        _ => {}
     }
     let gap = match options.gap_ns {
         Some(0) => return Err(SegmentError::GapOfZero),

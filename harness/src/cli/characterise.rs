@@ -134,7 +134,7 @@ impl Answer for Characterised {
             recorded(&mut lines, one)?;
             gap(&mut lines, one)?;
             if several {
-                figures::between(&mut lines, &one.figures)?;
+                figures::between(&mut lines, &one.figures, one.recording.period)?;
             }
         }
         if several {
@@ -142,7 +142,7 @@ impl Answer for Characterised {
             lines
                 .item("Pooled", &format!("{all}, {} in all", words::about(self.claims.pooled.recorded_ns)))?;
         }
-        figures::between(&mut lines, &self.claims.pooled)?;
+        figures::between(&mut lines, &self.claims.pooled, figures::period_of(&self.observed))?;
         for change in [Change::Make, Change::Break] {
             figures::of_kind(&mut lines, &self.claims.pooled, change, self.histogram)?;
         }
@@ -196,7 +196,8 @@ fn gap(lines: &mut Lines<'_>, one: &Observed) -> io::Result<()> {
     let fragments = one.segmentation.fragments.len();
     if fragments > 0 {
         let cut = words::count(fragments, "burst");
-        lines.more(&format!("{cut} cut off by an end of the recording, which count as nothing"))?;
+        let counts = if fragments == 1 { "counts" } else { "count" };
+        lines.more(&format!("{cut} cut off by an end of the recording, which {counts} as nothing"))?;
     }
     Ok(())
 }

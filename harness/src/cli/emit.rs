@@ -1,7 +1,7 @@
 //! `harness emit`: the Rust configuration for the firmware.
 
 use std::io::{self, Write};
-use std::path::PathBuf;
+use std::path::{Path, PathBuf};
 
 use clap::Args;
 use serde_json::{Value, json};
@@ -60,6 +60,7 @@ Examples:
 impl EmitArguments {
     /// Runs the command.
     pub(super) fn run(&self, session: &Session) -> Result<Box<dyn Answer>, Failure> {
+        self.input.recordings.iter().try_for_each(|path| no_law(path))?;
         let input = Input::with_or_without_recordings(&self.input, session)?;
         let file = self.output.as_deref().map(OutputFolder::of_file).transpose()?;
         if let Some(law) = &self.law {
@@ -88,6 +89,16 @@ impl EmitArguments {
         }
         Ok(Box::new(Emitted { study, module: Some(module), written }))
     }
+}
+
+/// Refuses a law in the place of a recording, where other commands take it.
+fn no_law(path: &Path) -> Result<(), Problem> {
+    let text = path.to_string_lossy();
+    if path.exists() || text.parse::<LawParameters>().is_err() {
+        return Ok(());
+    }
+    let problem = Problem::new(format!("\"{text}\" stands where a recording does, and reads as a law"));
+    Err(problem.help(format!("give --law \"{text}\"")))
 }
 
 /// A module, or why there is none.

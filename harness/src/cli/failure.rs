@@ -3,6 +3,7 @@
 use std::io;
 use std::process::ExitCode;
 
+use super::lines::{columns, wrap};
 use crate::problem::{Problem, Problems, plain_reason};
 
 /// What a command found out.
@@ -63,7 +64,7 @@ impl Failure {
     /// The problems as they are shown to a person.
     #[must_use]
     pub fn rendered(&self) -> String {
-        let shown: Vec<String> = self.problems.iter().map(Problem::rendered).collect();
+        let shown: Vec<String> = self.problems.iter().map(|problem| wrapped(&problem.rendered())).collect();
         shown.join("\n\n") + "\n"
     }
 
@@ -73,6 +74,19 @@ impl Failure {
             .help("make room where the output goes, or send it elsewhere")
             .into()
     }
+}
+
+/// The same with its lines of help wrapped, unless they hold a command line. An excerpt of a source keeps its lines.
+fn wrapped(rendered: &str) -> String {
+    let (columns, word) = (columns(), "help: ");
+    let lines = rendered.split('\n').map(|line| {
+        let plain = anstream::adapter::strip_str(line).to_string();
+        match plain.starts_with(word) && !plain.contains("harness ") {
+            true => wrap(line, word.len(), columns),
+            false => line.to_owned(),
+        }
+    });
+    lines.collect::<Vec<_>>().join("\n")
 }
 
 impl From<Problems> for Failure {

@@ -7,10 +7,15 @@ use debounce_core::{Change, Position};
 use super::lines::Lines;
 use crate::characterise::{Figures, Histogram, Spread};
 use crate::report::{claim_words, words};
-use crate::study::Claims;
+use crate::study::{Claims, Observed};
+use crate::trace::SamplePeriod;
 
 /// What lies between the operations: disturbances, dwell, quiet; and what the recorder could not see.
-pub(super) fn between(lines: &mut Lines<'_>, figures: &Figures) -> io::Result<()> {
+pub(super) fn between(
+    lines: &mut Lines<'_>,
+    figures: &Figures,
+    period: SamplePeriod,
+) -> io::Result<()> {
     let seen = |ns| words::seen(ns, figures.resolution_ns);
     for position in Position::BOTH {
         let (disturbed, dwell) = (figures.disturbances.of(position), figures.dwell.of(position));
@@ -21,7 +26,7 @@ pub(super) fn between(lines: &mut Lines<'_>, figures: &Figures) -> io::Result<()
             let doubt = dwell.shortest_in_doubt_ns.map_or(String::new(), |ns| {
                 format!(" (a run of {} may have been an operation)", words::about(ns))
             });
-            format!("for {} at least{doubt}; ", words::about(shortest))
+            format!("for {} at least{doubt}; ", words::at_least(shortest))
         });
         let in_doubt = match disturbed.widest_in_doubt_ns {
             0 => String::new(),
@@ -36,7 +41,17 @@ pub(super) fn between(lines: &mut Lines<'_>, figures: &Figures) -> io::Result<()
     if figures.quiet_ns.is_none() && disturbed > 0 {
         lines.item("Quiet", "not known: no two disturbances were recorded one after the other")?;
     }
-    if let Some(quiet) = figures.quiet_ns {
+    if let Some(quiet) = figures.quiet_ns.filter(|_| figures.rests == 0) {
+        let apart = words::at_least(quiet);
+        lines.item(
+            "Quiet",
+            &format!(
+                "no rest between two disturbances was recorded; with parts of bounces that may be disturbances, \
+                 they lie {apart} apart at least"
+            ),
+        )?;
+    }
+    if let Some(quiet) = figures.quiet_ns.filter(|_| figures.rests > 0) {
         let rate = Some(figures.disturbances_per_second()).filter(|&rate| rate > 0.0);
         lines.item(
             "Quiet",
@@ -56,11 +71,35 @@ pub(super) fn between(lines: &mut Lines<'_>, figures: &Figures) -> io::Result<()
     }
     lines.item(
         "Recorder",
-        &format!(
-            "sample period {}: added to every claim; nothing shorter is seen",
-            words::about(figures.resolution_ns)
-        ),
+        &match taken_by(period) {
+            None => format!(
+                "sample period {}: added to every claim; nothing shorter is seen",
+                words::about(figures.resolution_ns)
+            ),
+            Some(by) => format!(
+                "sample period taken for {}, by {by}, and added to every claim; state --resolution if the recorder \
+                 was coarser",
+                words::about(figures.resolution_ns)
+            ),
+        },
     )
+}
+
+/// What a sample period was guessed by, where it was.
+fn taken_by(period: SamplePeriod) -> Option<&'static str> {
+    match period {
+        SamplePeriod::Stated | SamplePeriod::Spacing => None,
+        SamplePeriod::TimeScale => Some("the time scale of the file"),
+        SamplePeriod::Digits => Some("the last digit of its times"),
+    }
+}
+
+/// Where the sample period of several recordings comes from, which is that of the coarsest; of equals a guess.
+pub(super) fn period_of(observed: &[Observed]) -> SamplePeriod {
+    let periods = observed.iter().map(|one| (one.segmentation.resolution_ns, one.recording.period));
+    periods
+        .max_by_key(|&(ns, period)| (ns, taken_by(period).is_some()))
+        .map_or(SamplePeriod::Stated, |(_, period)| period)
 }
 
 fn significant(rate: f64) -> String {

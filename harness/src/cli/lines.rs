@@ -109,6 +109,35 @@ impl<'a> Lines<'a> {
     }
 }
 
+/// A line broken between words before `columns`, the further lines indented; what stands in quotation marks is copied
+/// in one piece, so it is not broken.
+pub(super) fn wrap(line: &str, indent: usize, columns: usize) -> String {
+    let (mut text, mut column) = (String::new(), 0);
+    for word in unbroken(line) {
+        let width = shown_width(word);
+        if column > 0 && column + 1 + width > columns {
+            text.push('\n');
+            text.push_str(&" ".repeat(indent));
+            column = indent;
+        } else if column > 0 {
+            text.push(' ');
+            column += 1;
+        }
+        text.push_str(word);
+        column += width;
+    }
+    text
+}
+
+/// The words of a line; quoted words are one.
+fn unbroken(line: &str) -> impl Iterator<Item = &str> {
+    let (mut is_quoted, is_paired) = (false, line.matches('"').count().is_multiple_of(2));
+    line.split(move |letter| {
+        is_quoted ^= letter == '"' && is_paired;
+        letter == ' ' && !is_quoted
+    })
+}
+
 /// The columns a word takes, colour codes left out.
 fn shown_width(word: &str) -> usize {
     UnicodeWidthStr::width(anstream::adapter::strip_str(word).to_string().as_str())

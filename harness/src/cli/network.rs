@@ -14,7 +14,7 @@ use super::{Answer, Failure, Outcome, Session};
 use crate::network::{Analysis, Delay, Review, Waveform, caution, review};
 use crate::problem::Problem;
 use crate::quantity::Spread;
-use crate::report::si::si;
+use crate::report::si::{at_least, at_most, between, si};
 use crate::report::{html, network as report, words};
 use crate::requirement::{Level, NetworkOptions, NetworkTable, Origin, ResolvedNetwork, Role, read};
 
@@ -194,14 +194,14 @@ impl NetworkAnswer {
             let Delay { min, typ, max } = delay.at(change);
             lines.item(label, &format!(
                 "read after {} at least, {} typically, {} at most; the edge takes up to {} at its threshold",
-                si(min, "s"), si(typ, "s"), si(max, "s"), si(slowest_edge.at(change), "s/V")
+                at_least(min, "s"), si(typ, "s"), at_most(max, "s"), at_most(slowest_edge.at(change), "s/V")
             ))?;
         }
         lines.item(
             "Recovery",
             &format!(
                 "a position held for {} is seen whatever came before it; a quicker operation may be lost",
-                si(*recovery, "s")
+                at_most(*recovery, "s")
             ),
         )
     }
@@ -231,17 +231,17 @@ impl NetworkAnswer {
     fn contact(&self, lines: &mut Lines<'_>) -> io::Result<()> {
         let Analysis { inrush, inrush_lasts, steady, energy, held_power, cable_inrush, .. } = &self.analysis;
         let cable = if *cable_inrush > 0.0 {
-            format!(" and, for some nanoseconds, up to {} from the cable", si(*cable_inrush, "A"))
+            format!(" and, for some nanoseconds, up to {} from the cable", at_most(*cable_inrush, "A"))
         } else {
             String::new()
         };
         lines.item(
             "Contact",
             &format!(
-                "carries {} for {} just after a make{cable} (up to {} of energy), then {}",
+                "carries {} for up to {} just after a make{cable} (up to {} of energy), then {}",
                 range(*inrush, "A"),
-                si(*inrush_lasts, "s"),
-                si(*energy, "J"),
+                at_most(*inrush_lasts, "s"),
+                at_most(*energy, "J"),
                 range(*steady, "A")
             ),
         )?;
@@ -256,13 +256,12 @@ fn width(seconds: f64, period: f64) -> String {
     } else if seconds >= period {
         "of any width".to_owned()
     } else {
-        format!("up to {}", si(seconds, "s"))
+        format!("up to {}", at_least(seconds, "s"))
     }
 }
 
 fn range(spread: Spread, unit: &str) -> String {
-    let (least, most) = (si(spread.min, unit), si(spread.max, unit));
-    if least == most { least } else { format!("{least} to {most}") }
+    between(spread.min, spread.max, unit)
 }
 
 /// Seconds, days or years: what a mean time between failures is told in.

@@ -41,13 +41,15 @@ pub(super) fn operations(lines: &mut Lines<'_>, one: &Observed) -> io::Result<()
                 lines.plain("in doubt (?):\n")?;
                 shown = true;
             }
-            lines.plain(&format!(
-                "{:>6} {}, by a rest of {} at {}\n",
-                index + 1,
-                found.doubt.text(),
-                words::about(found.run_ns),
-                words::instant(found.at_ns)
-            ))?;
+            lines.item(
+                &format!("{:>6}", index + 1),
+                &format!(
+                    "{}, by a rest of {} at {}",
+                    found.doubt.text(),
+                    words::about(found.run_ns),
+                    words::instant(found.at_ns)
+                ),
+            )?;
         }
     }
     Ok(())

@@ -95,7 +95,10 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
     let arguments: Vec<OsString> = arguments.into_iter().collect();
     let line = match CommandLine::try_parse_from(&arguments) {
         Ok(line) => line,
-        Err(error) => return usage(&error, arguments.iter().any(|argument| argument == "--json")),
+        Err(error) => {
+            let error = below_zero(&arguments).unwrap_or(error);
+            return usage(&error, arguments.iter().any(|argument| argument == "--json"));
+        }
     };
     let Some(command) = line.command else {
         return end(first_steps(), 0);
@@ -107,6 +110,23 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
         Err(failure) => (session.print_failure(&failure), Failure::CODE),
     };
     end(printed, code)
+}
+
+/// What is wrong with a value such as "-3 ms": it looks like an option, and being told so helps nobody.
+fn below_zero(arguments: &[OsString]) -> Option<clap::Error> {
+    let is_value = |word: &str| word.strip_prefix('-').is_some_and(|rest| rest.starts_with(|c: char| c.is_ascii_digit()));
+    let mut joined: Vec<OsString> = Vec::new();
+    for argument in arguments {
+        let before = joined.last_mut().filter(|before| before.to_string_lossy().starts_with("--"));
+        match before.filter(|_| argument.to_str().is_some_and(is_value)) {
+            Some(option) => {
+                option.push("=");
+                option.push(argument);
+            }
+            None => joined.push(argument.clone()),
+        }
+    }
+    CommandLine::try_parse_from(joined).err().filter(|error| error.kind() == ErrorKind::ValueValidation)
 }
 
 /// The exit code, unless the output was lost.

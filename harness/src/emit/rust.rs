@@ -171,20 +171,25 @@ fn clock(configuration: &Configuration) -> String {
 
 fn requirement(configuration: &Configuration) -> String {
     let required = &configuration.required;
+    // The figure of a comment is rounded; it must not promise more than the constant below it.
+    let (down, up) = (Rounding::Down, Rounding::Up);
+    let (latency, shortest) = (&required.latency, &required.shortest);
+    let (bounce, disturbance) = (&required.bounce, &required.disturbance);
     let rows = [
-        ("Longest allowed delay of the report of a make", "LATENCY_MAKE", required.latency.make),
-        ("Longest allowed delay of the report of a break", "LATENCY_BREAK", required.latency.break_),
-        ("Shortest time open", "SHORTEST_OPEN", required.shortest.open),
-        ("Shortest time closed", "SHORTEST_CLOSED", required.shortest.closed),
-        ("Longest bounce after a make", "BOUNCE_MAKE", required.bounce.make),
-        ("Longest bounce after a break", "BOUNCE_BREAK", required.bounce.break_),
-        ("Widest disturbance that begins while open", "DISTURBANCE_OPEN", required.disturbance.open),
-        ("Widest disturbance that begins while closed", "DISTURBANCE_CLOSED", required.disturbance.closed),
-        ("Shortest time between two disturbances", "QUIET", required.quiet),
-        ("Shortest settled time between a bounce and a disturbance", "CALM", required.calm),
+        ("Longest allowed delay of the report of a make", "LATENCY_MAKE", latency.make, down),
+        ("Longest allowed delay of the report of a break", "LATENCY_BREAK", latency.break_, down),
+        ("Shortest time open", "SHORTEST_OPEN", shortest.open, down),
+        ("Shortest time closed", "SHORTEST_CLOSED", shortest.closed, down),
+        ("Longest bounce after a make", "BOUNCE_MAKE", bounce.make, up),
+        ("Longest bounce after a break", "BOUNCE_BREAK", bounce.break_, up),
+        ("Widest disturbance that begins while open", "DISTURBANCE_OPEN", disturbance.open, up),
+        ("Widest disturbance that begins while closed", "DISTURBANCE_CLOSED", disturbance.closed, up),
+        ("Shortest time between two disturbances", "QUIET", required.quiet, down),
+        ("Shortest settled time between a bounce and a disturbance", "CALM", required.calm, down),
     ];
-    let constants = rows.map(|(doc, name, time)| {
-        constant(&format!("{doc}, in nanoseconds: {time}."), &format!("{name}_NS"), "u64", time.ns())
+    let constants = rows.map(|(doc, name, time, rounding)| {
+        let doc = format!("{doc}, in nanoseconds: {}.", time.shown(rounding));
+        constant(&doc, &format!("{name}_NS"), "u64", time.ns())
     });
     constants.join("\n")
 }

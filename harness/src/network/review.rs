@@ -7,7 +7,7 @@ use super::model::Input;
 use super::series::{Series, not_preferred};
 use crate::level::Level;
 use crate::quantity::Spread;
-use crate::report::si::si;
+use crate::report::si::{at_least, at_most, between, si};
 use crate::report::words;
 use crate::requirement::ResolvedNetwork;
 
@@ -74,16 +74,15 @@ impl Review {
             let thresholds = resolved.network.input.thresholds(resolved.network.supply.typ);
             let is_high = (position == Position::Open) == (resolved.network.closed == Level::Low);
             let needs = if is_high {
-                format!("high surely only from {}", si(thresholds.rising.max, "V"))
+                format!("high surely only from {}", at_most(thresholds.rising.max, "V"))
             } else {
-                format!("low surely only up to {}", si(thresholds.falling.min, "V"))
+                format!("low surely only up to {}", at_least(thresholds.falling.min, "V"))
             };
             self.trouble(
                 format!(
-                    "while {} the pin rests at {} to {}, and the input reads {needs}: some units never read it",
+                    "while {} the pin rests at {}, and the input reads {needs}: some units never read it",
                     words::position(position),
-                    si(min, "V"),
-                    si(max, "V")
+                    between(min, max, "V")
                 ),
                 "make pull smaller or series and discharge smaller, or reduce the leakage",
             );
@@ -106,7 +105,7 @@ impl Review {
                     format!(
                         "the edge after a {} takes up to {}, and the plain input {} bears {}: it may switch several times and draw current",
                         words::change(change),
-                        si(slowest, "s/V"),
+                        at_most(slowest, "s/V"),
                         class.name,
                         si(allowed, "s/V")
                     ),
@@ -126,7 +125,7 @@ impl Review {
             self.trouble(
                 format!(
                     "the closed contact carries as little as {}, and needs {least} to stay clean",
-                    si(steady.min, "A")
+                    at_least(steady.min, "A")
                 ),
                 "make pull smaller, raise the supply, or take a contact for smaller currents",
             );
@@ -134,7 +133,7 @@ impl Review {
         if resolved.least_current.is_none() && steady.min < SILVER_AMPERES {
             self.notes.push(format!(
                 "the closed contact carries as little as {}; a silver contact asks for 1 mA at 5 V, one of gold for 0.1 mA (data sheet Omron B3F); say what yours needs with least_current",
-                si(steady.min, "A")
+                at_least(steady.min, "A")
             ));
         }
         self.rushes(resolved, analysis);
@@ -147,7 +146,7 @@ impl Review {
             self.trouble(
                 format!(
                     "the closed contact carries up to {}, and bears {}",
-                    si(analysis.steady.max, "A"),
+                    at_most(analysis.steady.max, "A"),
                     si(most, "A")
                 ),
                 "make pull larger, or take a contact for larger currents",
@@ -159,7 +158,7 @@ impl Review {
         if let Some(most) = most.filter(|most| analysis.cable_inrush > *most) {
             self.notes.push(format!(
                 "the cable alone can put {} through the contact for some nanoseconds (50 ohm of wave resistance assumed), more than the {} it bears",
-                si(analysis.cable_inrush, "A"),
+                at_most(analysis.cable_inrush, "A"),
                 si(most, "A")
             ));
         }
@@ -168,12 +167,12 @@ impl Review {
             return;
         }
         let told =
-            format!("for about {}, {} of energy", si(analysis.inrush_lasts, "s"), si(analysis.energy, "J"));
+            format!("for about {}, {} of energy", si(analysis.inrush_lasts, "s"), at_most(analysis.energy, "J"));
         if let Some(most) = most.filter(|most| analysis.inrush.max > *most) {
             self.trouble(
                 format!(
                     "at a make the contact carries up to {} ({told}), and bears {}",
-                    si(analysis.inrush.max, "A"),
+                    at_most(analysis.inrush.max, "A"),
                     si(most, "A")
                 ),
                 "put a resistor between contact and capacitor with discharge or series",
@@ -182,7 +181,7 @@ impl Review {
         if most.is_none() && analysis.inrush.max > NOTED_AMPERES {
             self.notes.push(format!(
                 "at a make the contact discharges the capacitor with up to {} ({told}), which wears small contacts and can weld them; a discharge or series resistor limits it",
-                si(analysis.inrush.max, "A")
+                at_most(analysis.inrush.max, "A")
             ));
         }
     }

@@ -29,7 +29,7 @@ pub use error::{Fault, Lack, MAX_FAULTS, ReadError};
 pub use open::{list_channels, read_bytes, read_channels, read_path, read_path_through, read_stream};
 pub use options::{DecimalMark, Delimiter, ReadOptions, ThresholdError, Thresholds, TimeUnit};
 pub use polarity::{Polarity, Unknown};
-pub use recording::{Note, Recording};
+pub use recording::{Note, Recording, SamplePeriod};
 pub use write::write_vcd;
 
 /// A recorded line: which position it looked to be in, from `start_ns` to `end_ns`.

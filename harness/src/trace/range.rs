@@ -1,5 +1,6 @@
 //! The range of a channel in volts, and whether two thresholds lie inside it.
 
+use super::channel::{Channel, listed};
 use super::error::{Faults, Lack};
 use super::options::Thresholds;
 
@@ -61,7 +62,13 @@ impl VoltRange {
     }
 
     /// Says so where the voltage never reaches both thresholds: such a line never changes.
-    pub(super) fn misses(&self, name: &str, pair: Thresholds, faults: &mut Faults) -> bool {
+    pub(super) fn misses(
+        &self,
+        name: &str,
+        pair: Thresholds,
+        channels: &[Channel],
+        faults: &mut Faults,
+    ) -> bool {
         let Self { least, greatest, .. } = *self;
         // A range of no reading, or with readings beyond it, is not known.
         if self.readings == 0 || self.clipped > 0 {
@@ -76,7 +83,7 @@ impl VoltRange {
         };
         let clipped = self.seems_clipped(least > falling, greatest < rising);
         faults.whole_file(format!("channel {name} {what}: it holds {least} V to {greatest} V{clipped}"));
-        propose(least, greatest, faults);
+        propose(name, (least, greatest), channels, faults);
         true
     }
 
@@ -95,8 +102,32 @@ impl VoltRange {
     }
 }
 
+/// A range in volts as narrow as this is taken for noise: no logic has so small a swing (common practice; the smallest
+/// in use, that of LVDS, is a quarter of a volt, TIA-644, from memory).
+const NOISE_VOLTS: f64 = 0.1;
+
+/// Whether a voltage that changes so little is likely to be nothing but noise.
+pub(super) fn is_noise(least: f64, greatest: f64) -> bool {
+    greatest > least && greatest - least < NOISE_VOLTS
+}
+
 /// Thresholds at 30 % and 70 % of the range seen, as CMOS inputs have them of their supply (common practice).
-pub(super) fn propose(least: f64, greatest: f64, faults: &mut Faults) {
+///
+/// Where the range looks like noise, the other ones among `channels` are proposed instead.
+pub(super) fn propose(name: &str, (least, greatest): (f64, f64), channels: &[Channel], faults: &mut Faults) {
+    if is_noise(least, greatest) {
+        let others: Vec<Channel> = channels.iter().filter(|channel| channel.name != name).cloned().collect();
+        let Some(other) = others.first() else {
+            faults.help(
+                "check the probe and the range of the recorder; if it is the contact all the same, state two \
+                 thresholds inside that range",
+            );
+            return;
+        };
+        faults.help(format!("is this the right channel? the others are: {}", listed(&others)));
+        faults.lack(Lack::Channel { such_as: Some(other.name.clone()) });
+        return;
+    }
     let at = |part: f64| {
         let volts = least + part * (greatest - least);
         // Three digits of the range are as much as a proposal is worth.
@@ -128,7 +159,7 @@ mod tests {
             range.see(volts).expect("a voltage");
         }
         let mut faults = Faults::default();
-        let misses = range.misses("a", Thresholds::try_new(0.8, 2.0).expect("in order"), &mut faults);
+        let misses = range.misses("a", Thresholds::try_new(0.8, 2.0).expect("in order"), &[], &mut faults);
         assert_eq!(misses, expected.is_some());
         let message = misses.then(|| faults.into_error("f").faults()[0].message().to_owned());
         assert_eq!(message.as_deref(), expected);

@@ -14,7 +14,7 @@ use super::builder::{Reading, TraceBuilder};
 use super::channel::{Channel, ChannelKind};
 use super::csv::Lines;
 use super::error::{Faults, Place};
-use super::{Note, ReadOptions, Recording};
+use super::{Note, ReadOptions, Recording, SamplePeriod};
 use crate::raw_input::quoted;
 
 /// What a file of this kind begins with.
@@ -253,7 +253,7 @@ fn recording(frame: &Frame, runs: &[Run], options: &ReadOptions, faults: &mut Fa
     if end == End::Stopped {
         notes.push(Note::RecorderStopped);
     }
-    Some(Recording { channel: CHANNEL.to_owned(), trace, notes })
+    Some(Recording { channel: CHANNEL.to_owned(), trace, period: SamplePeriod::Stated, notes })
 }
 
 /// The words of one line, each with its column.

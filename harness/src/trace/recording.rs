@@ -15,8 +15,24 @@ pub struct Recording {
     pub channel: String,
     /// What was recorded, polarity turned.
     pub trace: Trace,
+    /// Where the sample period of the trace comes from.
+    pub period: SamplePeriod,
     /// What the reader decided or left out, for the user to know; empty when there was nothing to decide.
     pub notes: Vec<Note>,
+}
+
+/// Where the sample period of a recording comes from.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+#[non_exhaustive]
+pub enum SamplePeriod {
+    /// An option, or the recorder itself, says it.
+    Stated,
+    /// The rows are that far apart.
+    Spacing,
+    /// Taken for one unit of the time scale of a VCD; the recorder may have been coarser.
+    TimeScale,
+    /// Taken for one of the last digit of the times of a CSV; the recorder may have been coarser.
+    Digits,
 }
 
 /// Something that a reader decided on its own.

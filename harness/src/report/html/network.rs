@@ -6,7 +6,7 @@ use maud::{Markup, html};
 use super::{Cell, Figure, Origin, Page, Section, origin, table};
 use crate::network::{Analysis, Delay, Review, Waveform};
 use crate::report::plot::{Axis, Plane, Scale, kept_apart, px};
-use crate::report::si::si;
+use crate::report::si::{at_least, at_most, between, si};
 use crate::report::words;
 use crate::requirement::ResolvedNetwork;
 
@@ -136,8 +136,8 @@ fn answer(found: &Networked<'_>) -> Markup {
             @for change in [Change::Make, Change::Break] {
                 @let Delay { min, max, .. } = delay.of(change);
                 p class={ "fact " (words::change(change)) } {
-                    b { (si(*max, "s")) } " "
-                    span { "at most until a " (words::change(change)) " is read, at least " (si(*min, "s")) }
+                    b { (at_most(*max, "s")) } " "
+                    span { "at most until a " (words::change(change)) " is read, at least " (at_least(*min, "s")) }
                 }
             }
         }
@@ -147,27 +147,26 @@ fn answer(found: &Networked<'_>) -> Markup {
 
 fn figures(analysis: &Analysis) -> Markup {
     let row = |name: String, value: String| vec![Cell::text(name), Cell::number(value)];
-    let spread = |least: f64, most: f64, unit| format!("{} to {}", si(least, unit), si(most, unit));
     let mut rows = Vec::new();
     for change in [Change::Make, Change::Break] {
         let Delay { min, typ, max } = analysis.delay.of(change);
         let word = words::change(change);
-        rows.push(row(format!("delay of a {word}"), spread(*min, *max, "s")));
+        rows.push(row(format!("delay of a {word}"), between(*min, *max, "s")));
         rows.push(row(format!("delay of a {word}, typical"), si(*typ, "s")));
     }
     for position in Position::BOTH {
         let word = words::position(position);
         rows.push(row(
             format!("lone pulse rejected while {word}"),
-            si(*analysis.lone_pulse.of(position), "s"),
+            at_least(*analysis.lone_pulse.of(position), "s"),
         ));
     }
     let Analysis { inrush, steady, energy, held_power, .. } = analysis;
-    rows.push(row("contact current just after a make".to_owned(), spread(inrush.min, inrush.max, "A")));
-    rows.push(row("it lasts, at most about".to_owned(), si(analysis.inrush_lasts, "s")));
-    rows.push(row("contact current, steady".to_owned(), spread(steady.min, steady.max, "A")));
-    rows.push(row("energy at a make, at most".to_owned(), si(*energy, "J")));
-    rows.push(row("power while held closed".to_owned(), spread(held_power.min, held_power.max, "W")));
+    rows.push(row("contact current just after a make".to_owned(), between(inrush.min, inrush.max, "A")));
+    rows.push(row("it lasts, at most about".to_owned(), at_most(analysis.inrush_lasts, "s")));
+    rows.push(row("contact current, steady".to_owned(), between(steady.min, steady.max, "A")));
+    rows.push(row("energy at a make, at most".to_owned(), at_most(*energy, "J")));
+    rows.push(row("power while held closed".to_owned(), between(held_power.min, held_power.max, "W")));
     table("What the network does", &["figure", "value"], &rows)
 }
 

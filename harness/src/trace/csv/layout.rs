@@ -11,6 +11,7 @@ use super::header::{Column, Unit, unit_cell};
 use super::line::{decoded, is_skipped, split};
 use super::number::{self, Yoctoseconds};
 use crate::nearest::nearest_scoped;
+use crate::quantity::counted;
 use crate::raw_input::quoted;
 use crate::trace::channel::listed;
 use crate::trace::error::{Faults, Lack};
@@ -34,6 +35,9 @@ pub(super) struct Layout {
     /// The columns that can be channels, in order.
     pub(super) candidates: Vec<(usize, ChannelKind)>,
 }
+
+/// Of fewer lines than this nobody can say that most of them are no rows.
+const FEWEST_LINES: usize = 6;
 
 /// The beginning of a file, as far as it shows the layout.
 struct Sample<'a> {
@@ -76,6 +80,15 @@ impl<'a> Sample<'a> {
         (rows.len(), rows.iter().filter(is_whole).count())
     }
 
+    /// Whether this is some other text, such as a script, with numbers in it: from the first row on most lines are
+    /// none, and nobody said how they are to be read. A recording gone bad has a header or more good rows than that.
+    fn is_other_text(&self, rows: &[usize], options: &ReadOptions) -> bool {
+        let Some(&first) = rows.first().filter(|_| options.time_column.is_none()) else { return false };
+        let lines = (first..self.lines.len()).filter(|&line| !is_skipped(self.lines[line])).count();
+        let (header, _) = header_above(self, first, self.rising_column(rows));
+        rows.len() * 2 < lines && lines >= FEWEST_LINES && !header.iter().any(Column::is_time)
+    }
+
     fn time(&self, cell: &[u8]) -> Option<Yoctoseconds> {
         number::time(cell, self.mark, 0).ok().map(|time| time.at)
     }
@@ -105,6 +118,19 @@ pub(super) fn detect(lines: Vec<&[u8]>, options: &ReadOptions, faults: &mut Faul
         faults.whole_file("holds no row of a time and a level");
         faults.help("a row is a time and a level or a voltage, as in \"0.001,1\"; give the delimiter if it is unusual");
         faults.lack(Lack::Delimiter);
+        return None;
+    }
+    if sample.is_other_text(&rows, options) {
+        let lines = sample.lines.iter().filter(|line| !is_skipped(line)).count();
+        faults.whole_file(format!(
+            "is no recording that this reads: of its first {} only {} a time and a level",
+            counted(lines as u64, "line"),
+            if rows.len() == 1 { "1 looks like".to_owned() } else { format!("{} look like", rows.len()) }
+        ));
+        faults.help(
+            "a recording is a VCD, a CSV with a time and a level or a voltage in each row, as in \"0.001,1\", or the \
+             text of the firmware's own recorder",
+        );
         return None;
     }
     let guess = sample.rising_column(&rows);

@@ -11,8 +11,8 @@ use super::number::{self, PER_NS, Yoctoseconds};
 use crate::raw_input::quoted;
 use crate::trace::builder::{Reading, TraceBuilder};
 use crate::trace::error::{Faults, Place};
-use crate::trace::range::{VoltRange, propose};
-use crate::trace::{Note, ReadOptions, Recording, Thresholds, TimeUnit};
+use crate::trace::range::{VoltRange, is_noise, propose};
+use crate::trace::{Channel, Note, ReadOptions, Recording, SamplePeriod, Thresholds, TimeUnit};
 
 /// A column that is followed.
 #[derive(Debug)]
@@ -165,7 +165,14 @@ impl<'a> Rows<'a> {
                 }
                 self.last_place = time.last_place;
             }
-            Some(before) if time.at <= before => {
+            Some(before) if time.at == before => {
+                return Err(format!(
+                    "time {} is also that of the row before it; export more digits of the times, or leave one of \
+                     the two rows out",
+                    quoted(cell).trim_matches('"')
+                ));
+            }
+            Some(before) if time.at < before => {
                 let before = String::from_utf8_lossy(&self.before_text).into_owned();
                 return Err(format!(
                     "time {} is not later than the {before} before it; put the rows in the order of their times",
@@ -224,6 +231,11 @@ impl<'a> Rows<'a> {
         let end_ns = self.now_ns.saturating_add(tail_ns);
         let stated = self.options.resolution_ns.or(self.options.sample_period_ns);
         let resolution_ns = stated.unwrap_or_else(|| self.resolution_ns());
+        let period = match stated {
+            Some(_) => SamplePeriod::Stated,
+            None if self.is_sampled() => SamplePeriod::Spacing,
+            None => SamplePeriod::Digits,
+        };
         let shift = whole_ns(self.shift).filter(|&by_ns| by_ns > 0).map(|by_ns| Note::Shifted { by_ns });
         let is_assumed = self.layout.time_unit.is_none() && self.options.sample_period_ns.is_none();
         let assumed = is_assumed.then_some(Note::SecondsAssumed);
@@ -233,12 +245,12 @@ impl<'a> Rows<'a> {
         let rounded = self.was_rounded.then_some(Note::RoundedTimes);
         let mut recordings = Vec::new();
         for lane in self.lanes {
-            if lane.lacks_thresholds(self.options.thresholds, faults) {
+            if lane.lacks_thresholds(self.options.thresholds, &self.layout.channels(), faults) {
                 continue;
             }
             // What is wrong with each cell stands in the list already.
             if let Some(pair) = self.options.thresholds
-                && (!faults.is_empty() || lane.range.misses(&lane.name, pair, faults))
+                && (!faults.is_empty() || lane.range.misses(&lane.name, pair, &self.layout.channels(), faults))
             {
                 continue;
             }
@@ -247,7 +259,7 @@ impl<'a> Rows<'a> {
             match lane.builder.finish(end_ns, resolution_ns) {
                 Some((trace, mut notes)) => {
                     notes.extend([shift, assumed, preamble, rounded, clipped].into_iter().flatten());
-                    recordings.push(Recording { channel: lane.name, trace, notes });
+                    recordings.push(Recording { channel: lane.name, trace, period, notes });
                 }
                 None if !faults.is_empty() => {}
                 None => faults.whole_file(format!("channel {} never has a known value", lane.name)),
@@ -307,16 +319,23 @@ impl Lane {
     }
 
     /// Says so when the column holds voltages and there is nothing to turn them into levels.
-    fn lacks_thresholds(&self, thresholds: Option<Thresholds>, faults: &mut Faults) -> bool {
+    fn lacks_thresholds(
+        &self,
+        thresholds: Option<Thresholds>,
+        channels: &[Channel],
+        faults: &mut Faults,
+    ) -> bool {
         let Some(place) = self.first_number.filter(|_| thresholds.is_none()) else { return false };
         let (name, least, greatest) = (&self.name, self.range.least, self.range.greatest);
+        let holds = format!("channel {name} holds voltages, from {least} V to {greatest} V");
         faults.at(
             place,
-            format!(
-                "channel {name} holds voltages, from {least} V to {greatest} V; levels need two thresholds"
-            ),
+            match is_noise(least, greatest) {
+                true => format!("{holds}, which look like noise"),
+                false => format!("{holds}; levels need two thresholds"),
+            },
         );
-        propose(least, greatest, faults);
+        propose(name, (least, greatest), channels, faults);
         true
     }
 }

@@ -3,13 +3,13 @@
 use std::io::{self, Read};
 
 use super::header::{Header, Scale, section};
-use super::select::{Part, Selected};
+use super::select::{Part, Selected, channels};
 use super::tokens::Tokens;
 use crate::raw_input::quoted;
 use crate::trace::builder::{Reading, TraceBuilder};
 use crate::trace::error::{Faults, Place};
 use crate::trace::range::VoltRange;
-use crate::trace::{Level, Note, ReadOptions, Recording};
+use crate::trace::{Level, Note, ReadOptions, Recording, SamplePeriod};
 
 /// No (further) target.
 const NONE: u32 = u32::MAX;
@@ -265,9 +265,13 @@ impl<'a> Body<'a> {
     pub(super) fn finish(self, faults: &mut Faults) -> Vec<Recording> {
         let mut recordings = Vec::with_capacity(self.targets.len());
         let resolution_ns = self.options.resolution_ns.unwrap_or(self.scale.multiply);
+        let period = match self.options.resolution_ns {
+            Some(_) => SamplePeriod::Stated,
+            None => SamplePeriod::TimeScale,
+        };
         for target in self.targets {
             if let Part::Volts(pair) = target.part
-                && (!faults.is_empty() || target.range.misses(&target.name, pair, faults))
+                && (!faults.is_empty() || target.range.misses(&target.name, pair, &channels(self.header), faults))
             {
                 continue;
             }
@@ -279,7 +283,7 @@ impl<'a> Body<'a> {
                     if target.range.clipped() > 0 {
                         notes.push(Note::Clipped { readings: target.range.clipped() });
                     }
-                    recordings.push(Recording { channel: target.name, trace, notes });
+                    recordings.push(Recording { channel: target.name, trace, period, notes });
                 }
                 None => faults.whole_file(format!("channel {} never has a known value", target.name)),
             }
