@@ -257,3 +257,70 @@ fn recording_that_contradicts_every_requirement_is_characterised_all_the_same() 
         study.stderr
     );
 }
+
+#[test]
+fn recording_with_two_rows_of_one_time_is_told_so() {
+    let told = (
+        "eq.csv:4:1",
+        "time 0.5 is also that of the row before it",
+        &["export more digits of the times, or leave one of the two rows out"][..],
+    );
+    Bench::with("eq.csv", "Time [s],A\n0.0,0\n0.5,1\n0.5,0\n0.9,1\n").refuses(&["study", "eq.csv"], &[told]);
+}
+
+#[test]
+fn recording_of_a_dead_channel_names_the_others() {
+    let rows: String = (0..40)
+        .map(|row| format!("{row},{},{}\n", f64::from(row % 5) / 100.0, row % 2 * 5 + row % 3))
+        .collect();
+    let bench = Bench::with("scope.csv", format!("time [ms],gate [V],lamp [V],\n{rows}"));
+    let told = (
+        "scope.csv:2:3",
+        "channel gate holds voltages, from 0 V to 0.04 V, which look like noise",
+        &["is this the right channel? the others are: lamp (volts)", "give --channel \"lamp\""][..],
+    );
+    bench.refuses(&["study", "scope.csv", "--channel", "gate"], &[told]);
+    // The same with thresholds that it misses; and the other channel gets thresholds.
+    let line =
+        ["study", "scope.csv", "--channel", "gate", "--threshold-low", "0.8 V", "--threshold-high", "2 V"];
+    let told =
+        ("scope.csv", "never reaches the upper threshold of 2 V", &["the others are: lamp (volts)"][..]);
+    bench.refuses(&line, &[told]);
+    let run = bench.run(&["study", "scope.csv", "--channel", "lamp"]).ends(2);
+    assert!(run.told().contains("give --threshold-low \"2.1 V\""), "{}", run.stderr);
+}
+
+#[test]
+fn recording_that_is_a_script_is_no_recording() {
+    let script = "import random\nrandom.seed(5)\ndef bounces(t, n):\n    if n == 0: return [(t, 1)]\n    x = [1, 2, 3]\n\
+                  0, 1\n    for x in ts:\n        c = 1 - c\n    return ev\nops(12)\nprint(out)\nprint(ev)\nprint(t)\n";
+    let told = (
+        "gen.py",
+        "is no recording that this reads: of its first",
+        &["a recording is a VCD, a CSV with a time"][..],
+    );
+    Bench::with("gen.py", script).refuses(&["characterise", "gen.py"], &[told]);
+}
+
+#[test]
+fn recording_without_so_long_a_rest_as_stated_is_told_how_long_it_is() {
+    let edges: String = (1..50).map(|edge| format!("#{}\n{}!\n", edge * 400_000, edge % 2)).collect();
+    let told = (
+        "gate.vcd",
+        "the stated gap of 1 s ends no burst: of the 49 edges no two are further apart than 400 ms",
+        &["state a shorter gap"][..],
+    );
+    Bench::with("gate.vcd", vcd(&format!("#0\n0!\n{edges}#20000000\n")))
+        .refuses(&["characterise", "gate.vcd", "--channel", "gate", "--gap", "1 s"], &[told]);
+}
+
+#[test]
+fn help_of_an_error_is_wrapped_and_quoted_text_is_not_broken() {
+    let run = Bench::with("gate.csv", "t,gate\n0,0\n2,1\n5,0\n").run(&["study", "gate.csv"]).ends(2);
+    assert!(
+        run.stderr.lines().filter(|line| !line.starts_with("error")).all(|line| line.len() <= 80),
+        "{}",
+        run.stderr
+    );
+    assert!(run.stderr.contains("\n      ") && run.stderr.contains("\"10 us\""), "{}", run.stderr);
+}

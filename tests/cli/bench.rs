@@ -162,7 +162,7 @@ impl Bench {
                     help.iter().any(|help| help.contains(part)),
                     "\"{part}\" is not in {help:?}: {shown}"
                 );
-                assert!(run.stderr.contains(part), "{part}: {shown}");
+                assert!(run.told().contains(part), "{part}: {shown}");
             }
         }
         let has_help =

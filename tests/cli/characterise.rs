@@ -37,6 +37,18 @@ fn characterise_lists_every_operation_in_80_columns_and_as_json() {
     assert!(run.stderr.is_empty(), "{}", run.stderr);
     let rows: Vec<&str> = run.stdout.lines().skip_while(|line| !line.starts_with("number kind")).collect();
     assert!(rows.iter().all(|row| row.chars().count() <= 80), "{}", run.stdout);
+    // So are the lines that say what is in doubt: a spike some time before or after a change.
+    let changes: String = (1..30_u64)
+        .map(|press| {
+            let (at, spike) = (press * 300_000, press % 3 * 700);
+            let (from, to) = (at + 50_000 - spike, at + 50_010 - spike);
+            format!("#{at}\n1!\n#{from}\n0!\n#{to}\n1!\n#{}\n0!\n", at + 50_700)
+        })
+        .collect();
+    let head = presses([], 1).replace("#0\n0!\n", "").replace("#0\n", "");
+    let doubtful = Bench::with("gate.vcd", format!("{head}#0\n0!\n{changes}#9900000\n")).run(&line).ends(0);
+    assert!(doubtful.stdout.contains("in doubt (?):"), "{}", doubtful.stdout);
+    assert!(doubtful.stdout.lines().all(|row| row.len() <= 80), "{}", doubtful.stdout);
     let first = rows.iter().find(|row| row.trim_start().starts_with("1 make")).expect("a row");
     let cells: Vec<&str> = first.split_whitespace().collect();
     assert_eq!(
@@ -300,4 +312,44 @@ fn replay_bounds_the_rate_of_misses() {
     let hasty =
         bench.run(&["replay", "shift-register 1", "gate.vcd", "--closed", "high", "--tick", "100 us"]);
     assert!(hasty.flowing().contains("60 doubled of 120 changes"), "{}", hasty.stdout);
+}
+
+#[test]
+fn characterise_calls_a_guessed_sample_period_one() {
+    let guessed = "if it is coarser, state --resolution";
+    let bench = Bench::with("gate.vcd", presses(shuffled(20), 1));
+    let run = bench.run(&["characterise", "gate.vcd", "--closed", "high"]).ends(0).flowing();
+    assert!(run.contains("taken for 1 us, by the time scale") && run.contains(guessed), "{run}");
+    let line = ["characterise", "gate.vcd", "--closed", "high", "--resolution", "2 us"];
+    let run = bench.run(&line).ends(0).flowing();
+    assert!(run.contains("sample period 2 us: added to every claim") && !run.contains(guessed), "{run}");
+
+    let csv = "Time [s],gate\n0.000000000,0\n0.300000000,1\n0.300161010,0\n0.300463320,1\n0.500000000,0\n\
+               0.900000000,1\n1.300000000,0\n2.000000000,0\n";
+    let line = ["characterise", "gate.csv", "--closed", "high"];
+    let run = Bench::with("gate.csv", csv).run(&line).ends(0).flowing();
+    assert!(run.contains("taken for 1 ns, by the last digit") && run.contains(guessed), "{run}");
+    // Samples at even times show their period.
+    let rows: String =
+        (0..400).map(|row| format!("{}.{:03},{}\n", row / 100, row % 100 * 10, row / 50 % 2)).collect();
+    let run = Bench::with("gate.csv", format!("Time [s],gate\n{rows}")).run(&line).ends(0).flowing();
+    assert!(run.contains("sample period 10 ms: added to every claim"), "{run}");
+}
+
+#[test]
+fn characterise_rounds_the_shortest_times_down() {
+    // A press of 60.664 ms, whose nearest three digits, 60.7 ms, would be too long.
+    let text = "Time [us],gate\n0,0\n300000,1\n360664,0\n721000,1\n781664,0\n1200000,0\n";
+    let line = ["characterise", "gate.csv", "--closed", "high"];
+    let run = Bench::with("gate.csv", text).run(&line).ends(0).flowing();
+    assert!(run.contains("While closed for 60.6 ms at least"), "{run}");
+}
+
+#[test]
+fn characterise_of_one_cut_burst_without_disturbances_counts_in_the_singular() {
+    let text = "Time [us],gate\n0,0\n100,1\n300000,0\n600000,1\n900000,0\n1200000,1\n1500000,0\n2000000,0\n";
+    let line = ["characterise", "gate.csv", "--closed", "high"];
+    let run = Bench::with("gate.csv", text).run(&line).ends(0).flowing();
+    assert!(run.contains("1 burst cut off by an end of the recording, which counts as nothing"), "{run}");
+    assert!(!run.contains("0 rests recorded"), "{run}");
 }

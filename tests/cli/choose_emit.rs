@@ -131,6 +131,7 @@ fn choose_shows_where_each_law_works_over_all_tick_periods() {
     assert_eq!(result["slowest_by_tolerance"].as_array().map(Vec::len), Some(5));
 }
 
+<<<<<<< HEAD
 /// A column is no narrower than its header and its times: only a law may be broken, between its parameters.
 #[test]
 fn table_of_candidates_breaks_no_header_and_no_time_at_80_columns() {
@@ -151,4 +152,37 @@ fn table_of_candidates_breaks_no_header_and_no_time_at_80_columns() {
         assert!(rows[1].matches(" ms ").count() >= 4 && rows[1].ends_with(last), "{rows:#?}");
         assert!(rows.iter().all(|row| row.len() <= 80), "{rows:#?}");
     }
+=======
+#[test]
+fn emit_of_a_law_in_the_place_of_a_recording_says_where_it_belongs() {
+    let told = ("", "reads as a law", &["give --law \"integrator 6\""][..]);
+    Bench::new().refuses(&["emit", "integrator 6", "--bounce", "5 ms", "--latency", "20 ms"], &[told]);
+}
+
+#[test]
+fn emit_comments_promise_no_more_than_their_constants() {
+    let line = [
+        "emit",
+        "--bounce",
+        "5.0001 ms",
+        "--latency",
+        "40 ms",
+        "--shortest-open",
+        "81.36 ms",
+        "--tick",
+        "1 ms",
+    ];
+    let module = Bench::new().run(&line).ends(0).stdout;
+    let comment =
+        "/// Shortest time open, in nanoseconds: 81.3 ms.\npub const SHORTEST_OPEN_NS: u64 = 81_360_000;";
+    assert!(module.contains(comment), "{module}");
+    let comment = "/// Longest bounce after a make, in nanoseconds: 5.01 ms.\n";
+    assert!(module.contains(comment), "{module}");
+}
+
+#[test]
+fn latency_below_zero_is_told_as_a_time() {
+    let told = ("", "\"-3 ms\" is below zero; a time is zero or more", &[][..]);
+    Bench::new().refuses_usage(&["study", "--latency", "-3 ms"], told);
+>>>>>>> messages
 }

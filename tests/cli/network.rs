@@ -290,3 +290,30 @@ fn study_behind_a_network_measures_at_the_pin() {
         assert!(run.flowing().contains(part), "\"{part}\" is not in {}", run.stdout);
     }
 }
+
+/// The bounds of this network lie on the wrong side of the nearest three digits: 793.24 us, 147.51 us and 16.23 us.
+#[test]
+fn network_bounds_are_rounded_to_the_safe_side() {
+    let table = "[network]\nsupply = \"3.3 V 5 %\"\npull = \"47 kohm 5 %\"\nseries = \"1 kohm 5 %\"\n\
+                 capacitor = \"10 nF 10 % X7R\"\n";
+    let bench = Bench::with("contact.toml", table);
+    let run = bench.run(&["network", "-r", "contact.toml"]).ends(0);
+    let delays =
+        bench.run(&["network", "-r", "contact.toml", "--json"]).ends(0).json()["result"]["delay_seconds"]
+            .clone();
+    let us = |change: &str, end: &str| delays[change][end].as_f64().expect("a number") * 1e6;
+    assert!(
+        (us("break", "max") - 793.24).abs() < 0.1 && (us("break", "min") - 147.51).abs() < 0.02,
+        "{delays}"
+    );
+    assert!((us("make", "max") - 16.23).abs() < 0.01, "{delays}");
+    for part in [
+        "read after 147 us at least",
+        "794 us at most",
+        "16.3 us at most",
+        "held for 794 us is seen",
+        "up to 147 us while closed",
+    ] {
+        assert!(run.flowing().contains(part), "\"{part}\" is not in {}", run.stdout);
+    }
+}

@@ -11,11 +11,7 @@ use crate::study::{Claims, Observed};
 use crate::trace::SamplePeriod;
 
 /// What lies between the operations: disturbances, dwell, quiet; and what the recorder could not see.
-pub(super) fn between(
-    lines: &mut Lines<'_>,
-    figures: &Figures,
-    period: SamplePeriod,
-) -> io::Result<()> {
+pub(super) fn between(lines: &mut Lines<'_>, figures: &Figures, period: SamplePeriod) -> io::Result<()> {
     let seen = |ns| words::seen(ns, figures.resolution_ns);
     for position in Position::BOTH {
         let (disturbed, dwell) = (figures.disturbances.of(position), figures.dwell.of(position));
@@ -77,8 +73,7 @@ pub(super) fn between(
                 words::about(figures.resolution_ns)
             ),
             Some(by) => format!(
-                "sample period taken for {}, by {by}, and added to every claim; state --resolution if the recorder \
-                 was coarser",
+                "taken for {}, by the {by}; if it is coarser, state --resolution",
                 words::about(figures.resolution_ns)
             ),
         },
@@ -89,8 +84,8 @@ pub(super) fn between(
 fn taken_by(period: SamplePeriod) -> Option<&'static str> {
     match period {
         SamplePeriod::Stated | SamplePeriod::Spacing => None,
-        SamplePeriod::TimeScale => Some("the time scale of the file"),
-        SamplePeriod::Digits => Some("the last digit of its times"),
+        SamplePeriod::TimeScale => Some("time scale"),
+        SamplePeriod::Digits => Some("last digit"),
     }
 }
 

@@ -114,7 +114,9 @@ pub fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
 
 /// What is wrong with a value such as "-3 ms": it looks like an option, and being told so helps nobody.
 fn below_zero(arguments: &[OsString]) -> Option<clap::Error> {
-    let is_value = |word: &str| word.strip_prefix('-').is_some_and(|rest| rest.starts_with(|c: char| c.is_ascii_digit()));
+    let is_value = |word: &str| {
+        word.strip_prefix('-').is_some_and(|rest| rest.starts_with(|c: char| c.is_ascii_digit()))
+    };
     let mut joined: Vec<OsString> = Vec::new();
     for argument in arguments {
         let before = joined.last_mut().filter(|before| before.to_string_lossy().starts_with("--"));

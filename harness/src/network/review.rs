@@ -166,8 +166,11 @@ impl Review {
         if resolved.network.capacitor.max <= 0.0 {
             return;
         }
-        let told =
-            format!("for about {}, {} of energy", si(analysis.inrush_lasts, "s"), at_most(analysis.energy, "J"));
+        let told = format!(
+            "for about {}, {} of energy",
+            si(analysis.inrush_lasts, "s"),
+            at_most(analysis.energy, "J")
+        );
         if let Some(most) = most.filter(|most| analysis.inrush.max > *most) {
             self.trouble(
                 format!(

@@ -133,7 +133,11 @@ mod tests {
             (0.1 + 0.2, "V", "300 mV", "300 mV"),
             (0.3 - 1e-12, "V", "300 mV", "300 mV"),
         ] {
-            assert_eq!((at_least(value, unit).as_str(), at_most(value, unit).as_str()), (least, most), "{value}");
+            assert_eq!(
+                (at_least(value, unit).as_str(), at_most(value, unit).as_str()),
+                (least, most),
+                "{value}"
+            );
         }
     }
 

@@ -250,7 +250,8 @@ impl<'a> Rows<'a> {
             }
             // What is wrong with each cell stands in the list already.
             if let Some(pair) = self.options.thresholds
-                && (!faults.is_empty() || lane.range.misses(&lane.name, pair, &self.layout.channels(), faults))
+                && (!faults.is_empty()
+                    || lane.range.misses(&lane.name, pair, &self.layout.channels(), faults))
             {
                 continue;
             }

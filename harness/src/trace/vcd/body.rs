@@ -271,7 +271,8 @@ impl<'a> Body<'a> {
         };
         for target in self.targets {
             if let Part::Volts(pair) = target.part
-                && (!faults.is_empty() || target.range.misses(&target.name, pair, &channels(self.header), faults))
+                && (!faults.is_empty()
+                    || target.range.misses(&target.name, pair, &channels(self.header), faults))
             {
                 continue;
             }
