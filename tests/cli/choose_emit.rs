@@ -131,7 +131,6 @@ fn choose_shows_where_each_law_works_over_all_tick_periods() {
     assert_eq!(result["slowest_by_tolerance"].as_array().map(Vec::len), Some(5));
 }
 
-<<<<<<< HEAD
 /// A column is no narrower than its header and its times: only a law may be broken, between its parameters.
 #[test]
 fn table_of_candidates_breaks_no_header_and_no_time_at_80_columns() {
@@ -152,7 +151,8 @@ fn table_of_candidates_breaks_no_header_and_no_time_at_80_columns() {
         assert!(rows[1].matches(" ms ").count() >= 4 && rows[1].ends_with(last), "{rows:#?}");
         assert!(rows.iter().all(|row| row.len() <= 80), "{rows:#?}");
     }
-=======
+}
+
 #[test]
 fn emit_of_a_law_in_the_place_of_a_recording_says_where_it_belongs() {
     let told = ("", "reads as a law", &["give --law \"integrator 6\""][..]);
@@ -184,5 +184,4 @@ fn emit_comments_promise_no_more_than_their_constants() {
 fn latency_below_zero_is_told_as_a_time() {
     let told = ("", "\"-3 ms\" is below zero; a time is zero or more", &[][..]);
     Bench::new().refuses_usage(&["study", "--latency", "-3 ms"], told);
->>>>>>> messages
 }
