@@ -318,7 +318,7 @@ fn recording_without_so_long_a_rest_as_stated_is_told_how_long_it_is() {
 fn help_of_an_error_is_wrapped_and_quoted_text_is_not_broken() {
     let run = Bench::with("gate.csv", "t,gate\n0,0\n2,1\n5,0\n").run(&["study", "gate.csv"]).ends(2);
     assert!(
-        run.stderr.lines().filter(|line| !line.starts_with("error")).all(|line| line.len() <= 80),
+        run.stderr.lines().filter(|line| !line.starts_with("error")).all(|line| line.len() <= 100),
         "{}",
         run.stderr
     );

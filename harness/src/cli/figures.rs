@@ -73,7 +73,7 @@ pub(super) fn between(lines: &mut Lines<'_>, figures: &Figures, period: SamplePe
                 words::about(figures.resolution_ns)
             ),
             Some(by) => format!(
-                "taken for {}, by the {by}; if it is coarser, state --resolution",
+                "sample period {} by the {by}; if coarser, say --resolution",
                 words::about(figures.resolution_ns)
             ),
         },

@@ -76,13 +76,15 @@ fn three_digits(value: f64, rounding: Rounding) -> f64 {
         Rounding::Down => nearest <= value + SAME * value.abs(),
     };
     let exponent: i32 = text.split_once('e').and_then(|(_, digits)| digits.parse().ok()).unwrap_or(0);
-    // Counted in units of the last digit, so that the sum is exact.
-    let last_digits = (nearest / 10_f64.powi(exponent - 2)).round();
-    match rounding {
-        _ if is_safe => nearest,
-        Rounding::Down => (last_digits - 1.0) * 10_f64.powi(exponent - 2),
-        _ => (last_digits + 1.0) * 10_f64.powi(exponent - 2),
+    if is_safe {
+        return nearest;
     }
+    let step = if rounding == Rounding::Down { -1.0 } else { 1.0 };
+    // Below a power of ten the digits are finer: 1.00 k is followed by 999.
+    let is_power = nearest.abs() == 10_f64.powi(exponent) && nearest * step < 0.0;
+    let last = exponent - if is_power { 3 } else { 2 };
+    // Counted in units of the last digit, so that the sum is exact.
+    ((nearest / 10_f64.powi(last)).round() + step) * 10_f64.powi(last)
 }
 
 /// Two values that differ by less than this part of them are the same: the sums behind them are no better.

@@ -302,7 +302,7 @@ fn csv_bad_rows_are_all_listed_with_their_places() {
             "3:2: the row has 1 of the 2 fields that it needs",
             "4:1: \"abc\" is not a time; a time is a number such as 0.001",
             "5:3: \"up\" is not a level; use 0 or 1, or low or high",
-            "7:1: time 3 is not later than the 3 before it; put the rows in the order of their times",
+            "7:1: time 3 is also that of the row before it; export more digits of the times, or leave one of the two rows out",
             "8:1: time 2 is not later than the 3 before it; put the rows in the order of their times",
             "9:3: \"\" is not a level; use 0 or 1, or low or high",
             "10:1: \"nan\" is not a time: it is not finite; a time is a number such as 0.001",
